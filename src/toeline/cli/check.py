@@ -1,0 +1,23 @@
+"""`toeline check`: is this file fit to run?"""
+
+from pathlib import Path
+
+import click
+
+from toeline.cli.input_files import INPUT_FILE, is_canal, load_plans
+from toeline.cli.terminal import show
+
+
+@click.command(short_help="Check a canal or day file and list every fault.")
+@click.argument("file", type=INPUT_FILE)
+def command(file: Path) -> None:
+    """Read FILE, a canal or a day with its canal, and tell in one line what it holds.
+
+    Every fault is listed with its file, line and key, what was found and what is allowed; exit status 2.
+    Nothing is run and nothing is written.
+    """
+    from toeline.cli.input_pages import canal_line, day_line
+    from toeline.scenario import load_canal
+
+    line = canal_line(load_canal(file)) if is_canal(file) else day_line(load_plans(file))
+    show(f"{file}: {line}. No faults found.")

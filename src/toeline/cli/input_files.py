@@ -1,0 +1,50 @@
+"""The files that commands are given: which kind one is, and a day loaded for each of its plans."""
+
+import difflib
+import tomllib
+from collections.abc import Iterable, Sequence
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+import click
+
+if TYPE_CHECKING:
+    from toeline.scenario import Scenario
+
+INPUT_FILE = click.Path(exists=True, dir_okay=False, path_type=Path)
+
+_HDF5_SIGNATURE = b"\x89HDF\r\n\x1a\n"
+_CANAL_TABLES = {"sections", "surfaces", "pools", "gates"}
+
+
+def is_run(path: Path) -> bool:
+    """Whether the file is a finished or stopped run (NetCDF-4, by its signature)."""
+    with path.open("rb") as file:
+        return file.read(len(_HDF5_SIGNATURE)) == _HDF5_SIGNATURE
+
+
+def is_canal(path: Path) -> bool:
+    """Whether a TOML file describes a canal; one that cannot be read counts as a day, whose loader says why."""
+    try:
+        tables = tomllib.loads(path.read_text(encoding="utf-8"))
+    except (tomllib.TOMLDecodeError, UnicodeDecodeError):
+        return False
+    return not _CANAL_TABLES.isdisjoint(tables)
+
+
+def load_plans(day: Path, plan: str | None = None, overrides: Sequence[str] = ()) -> list["Scenario"]:
+    """The day once for every plan in it (once where it has none), or for the one that was picked.
+
+    Raises ScenarioError with all faults, UsageError where there is no such plan.
+    """
+    from toeline.scenario import load_scenario, plan_names
+
+    names = [plan] if plan is not None else list(plan_names(day)) or [None]
+    return [load_scenario(day, plan=name, overrides=overrides) for name in names]
+
+
+def did_you_mean(word: str, known: Iterable[str]) -> str:
+    """A hint for a mistyped name: the nearest known one, or all of them."""
+    known = list(known)
+    near = difflib.get_close_matches(word, known, n=1, cutoff=0.5)
+    return f"Did you mean {near[0]!r}?" if near else f"Known: {', '.join(known)}."

@@ -1,0 +1,81 @@
+"""The command `toeline`: a group that loads a command's file when it is called.
+
+Nothing heavy is imported here or at the top of a command's file, so that `toeline --help` opens at once.
+"""
+
+from importlib import import_module
+
+import click
+
+from toeline import __version__
+from toeline.cli.terminal import note
+from toeline.errors import ScenarioError, ToelineError
+
+COMMANDS = ("new", "check", "run", "describe", "rating")
+INTERRUPTED = 130
+
+
+class Failure(click.ClickException):
+    """An error that the user can act on: its message alone, on the error stream."""
+
+    def __init__(self, message: str, exit_status: int):
+        super().__init__(message)
+        self.exit_code = exit_status
+
+    def show(self, file: object = None) -> None:
+        note(self.message)
+
+
+class LazyGroup(click.Group):
+    """A group whose commands are found by the name of their file."""
+
+    def list_commands(self, ctx: click.Context) -> list[str]:
+        return list(COMMANDS)
+
+    def get_command(self, ctx: click.Context, cmd_name: str) -> click.Command | None:
+        if cmd_name not in COMMANDS:
+            return None
+        command: click.Command = import_module(f"toeline.cli.{cmd_name}").command
+        return command
+
+    def resolve_command(
+        self, ctx: click.Context, args: list[str]
+    ) -> tuple[str | None, click.Command | None, list[str]]:
+        name = args[0]
+        if name not in COMMANDS and not name.startswith("-") and not ctx.resilient_parsing:
+            ctx.fail(f"there is no command {name!r}. {did_you_mean(name, COMMANDS)}")
+        return super().resolve_command(ctx, args)
+
+    def invoke(self, ctx: click.Context) -> object:
+        try:
+            return super().invoke(ctx)
+        except ToelineError as error:
+            raise Failure(describe_error(error), error.exit_status) from error
+        except KeyboardInterrupt:
+            raise Failure("Stopped.", INTERRUPTED) from None
+        except OSError as error:
+            raise Failure(f"Error: {error.filename or 'output'}: {error.strerror or error}", 1) from error
+
+
+def describe_error(error: ToelineError) -> str:
+    """The message for the error stream: every fault on its own line, then how many."""
+    if not isinstance(error, ScenarioError):
+        return f"Error: {error}"
+    count = len(error.faults)
+    return f"{error}\nError: {count} {'fault' if count == 1 else 'faults'} in the input; nothing was run."
+
+
+@click.group(
+    cls=LazyGroup,
+    context_settings={"help_option_names": ["-h", "--help"]},
+    epilog="Exit status: 0 done; 1 the run failed; 2 wrong use or a fault in the input; "
+    "3 a limit was passed (with --strict); 130 stopped by Ctrl-C.",
+)
+@click.version_option(__version__, prog_name="toeline")
+def main() -> None:
+    """Plan a day of an irrigation canal: step its pools and check gates through the schedule.
+
+    Toeline tells the levels, the discharges, whether each gate flows free or drowned, and where the
+    hydraulic jump below it stands against its apron. A planning aid: it commands nothing, a qualified
+    engineer reviews its limits and results, and no state that it shows is safe to enter.
+    """

@@ -1,0 +1,86 @@
+"""`toeline run`: step the canal through the day."""
+
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+import click
+
+from toeline.cli.input_files import INPUT_FILE, load_plans
+from toeline.cli.terminal import note, page_width, progress_bar, show
+from toeline.errors import RunError
+
+if TYPE_CHECKING:
+    import xarray
+
+    from toeline.scenario import Scenario
+
+RUN_FAILED = 1
+LIMIT_PASSED = 3
+
+
+@click.command(short_help="Run a day and write the results to a file.")
+@click.argument("day", type=INPUT_FILE)
+@click.option(
+    "-o", "--output", type=click.Path(dir_okay=False, path_type=Path), metavar="FILE",
+    help="The file of results; DAY.nc in the working directory unless given. With several plans the name of the "
+    "plan goes before its ending: DAY.PLAN.nc.",
+)
+@click.option("--plan", metavar="NAME", help="Run this plan alone. Of several plans each runs, to its own file.")
+@click.option(
+    "--set", "overrides", multiple=True, metavar="KEY=VALUE",
+    help="Change a value of the day file for this run, such as period.length='\"6 h\"'. May be repeated.",
+)
+@click.option("--overwrite", is_flag=True, help="Replace a file of results that exists.")
+@click.option("--strict", is_flag=True, help="Exit with status 3 if a limit was passed.")
+@click.pass_context
+def command(
+    ctx: click.Context, day: Path, output: Path | None, plan: str | None, overrides: tuple[str, ...],
+    overwrite: bool, strict: bool,
+) -> None:
+    """Step the canal of the file DAY through its schedule, and tell what goes wrong, where, when and by how much.
+
+    While it goes on the results are written to FILE.partial, which becomes FILE when the run is complete. Stopped
+    by Ctrl-C (exit status 130), what was done so far stays in FILE.partial and can be described like a whole run.
+    """
+    from toeline.cli.output_files import choose_outputs, refuse_outputs
+
+    scenarios = load_plans(day, plan, overrides)
+    outputs = choose_outputs(scenarios, output)
+    refuse_outputs(outputs, scenarios, overwrite)
+    tell_of_compiling()
+    statuses = {run_plan(*pair, overwrite, strict) for pair in zip(scenarios, outputs, strict=True)}
+    ctx.exit(RUN_FAILED if RUN_FAILED in statuses else max(statuses))
+
+
+def tell_of_compiling() -> None:
+    """Say why the first run on a machine is slow to start."""
+    from toeline.hydraulics.kernel import cache_is_warm
+
+    if not cache_is_warm():
+        note("Compiling the equations for this machine: once, about a minute. Later runs start at once.")
+
+
+def run_plan(scenario: "Scenario", output: Path, overwrite: bool, strict: bool) -> int:
+    """Run one plan, show its page and return the exit status; a failed run tells why and what is left of it."""
+    from toeline import simulate
+    from toeline.report.run_summary import run_summary
+
+    try:
+        with progress_bar(scenario.plan or scenario.day_path.stem) as progress:
+            dataset = simulate(scenario, output, overwrite=overwrite, progress=progress)
+    except KeyboardInterrupt:
+        note(f"Stopped by Ctrl-C. {what_is_left(output)}")
+        raise click.exceptions.Exit(INTERRUPTED) from None
+    except RunError as error:
+        note(f"Error: {error}\n{what_is_left(output)}")
+        return RUN_FAILED
+    with dataset:
+        show(run_summary(dataset, scenario.display, width=page_width()))
+        return LIMIT_PASSED if strict and passes_a_limit(dataset) else 0
+
+
+def what_is_left(output: Path) -> str:
+    partial = output.with_name(f"{output.name}.partial")
+    if not partial.exists():
+        return "Nothing was written."
+    return f"What was done so far is in {partial}; see it with: toeline describe {partial}"

@@ -1,0 +1,47 @@
+"""What the commands say, and where: pages on standard output, everything else on the error stream."""
+
+import os
+import shutil
+import sys
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager
+
+import click
+
+WIDEST_PAGE = 80
+
+
+def show(page: str) -> None:
+    """Print a page. A reader who has closed the pipe has seen enough: the command goes on, and its status stands."""
+    try:
+        click.echo(page)
+    except BrokenPipeError:
+        nowhere = os.open(os.devnull, os.O_WRONLY)
+        os.dup2(nowhere, sys.stdout.fileno())
+
+
+def note(line: str) -> None:
+    """Tell the user something that is not the result."""
+    click.echo(line, err=True)
+
+
+def page_width() -> int:
+    """Columns for a page: those of the terminal, 80 at most; 80 where there is no terminal."""
+    if not sys.stdout.isatty():
+        return WIDEST_PAGE
+    return min(WIDEST_PAGE, shutil.get_terminal_size().columns)
+
+
+@contextmanager
+def progress_bar(label: str) -> Iterator[Callable[[float], None] | None]:
+    """Draw a bar on the error stream if that is a terminal, and yield what moves it (a fraction 0 to 1)."""
+    if not sys.stderr.isatty():
+        yield None
+        return
+    from rich.console import Console
+    from rich.progress import BarColumn, Progress, TaskProgressColumn, TextColumn, TimeRemainingColumn
+
+    columns = (TextColumn("{task.description}", markup=False), BarColumn(), TaskProgressColumn(), TimeRemainingColumn())
+    with Progress(*columns, console=Console(stderr=True), transient=True) as bar:
+        task = bar.add_task(label, total=1.0)
+        yield lambda fraction: bar.update(task, completed=fraction)

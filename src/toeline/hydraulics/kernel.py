@@ -1,0 +1,75 @@
+"""The one compile decorator, and where compiled code is kept.
+
+numba's own disk cache notices an edit only in the file of the function itself, not in the files it calls. The cache
+folder here is named by a digest of every kernel source, the compile flags and numba's version, so that an edit
+anywhere compiles afresh and a stale result cannot come back.
+"""
+
+import hashlib
+import os
+import sys
+import tempfile
+from collections.abc import Callable
+from pathlib import Path
+from typing import ParamSpec, TypeVar
+
+import numba
+
+P = ParamSpec("P")
+R = TypeVar("R")
+
+_FLAGS = {"error_model": "numpy", "nogil": True, "fastmath": False}
+_KERNEL_ROOMS = ("hydraulics", "engine")
+
+
+def _source_digest() -> str:
+    package = Path(__file__).resolve().parent.parent
+    digest = hashlib.sha256(f"{numba.__version__} {sys.version} {sorted(_FLAGS.items())}".encode())
+    digest.update(str(numba.config.BOUNDSCHECK).encode())
+    for room in _KERNEL_ROOMS:
+        for source in sorted((package / room).glob("*.py")):
+            digest.update(source.read_bytes())
+    return digest.hexdigest()[:20]
+
+
+def _cache_home() -> Path:
+    if "TOELINE_CACHE_DIR" in os.environ:
+        return Path(os.environ["TOELINE_CACHE_DIR"])
+    if sys.platform == "win32" and "LOCALAPPDATA" in os.environ:
+        return Path(os.environ["LOCALAPPDATA"]) / "toeline" / "cache"
+    return Path(os.environ.get("XDG_CACHE_HOME") or Path.home() / ".cache") / "toeline"
+
+
+def _writable_folder() -> Path | None:
+    """The stamped cache folder, made if need be; None where nothing can be written."""
+    stamp = _source_digest()
+    user = os.environ.get("USER") or os.environ.get("USERNAME") or "user"
+    for home in (_cache_home(), Path(tempfile.gettempdir()) / f"toeline-{user}"):
+        folder = home / stamp
+        try:
+            folder.mkdir(parents=True, exist_ok=True)
+        except (OSError, RuntimeError):
+            continue
+        if os.access(folder, os.W_OK):
+            return folder
+    return None
+
+
+_FOLDER = _writable_folder()
+
+
+def kernel(function: Callable[P, R]) -> Callable[P, R]:
+    """Compile a function of scalars, arrays and named tuples; the plain function where NUMBA_DISABLE_JIT is set."""
+    before = numba.config.CACHE_DIR
+    numba.config.CACHE_DIR = str(_FOLDER or "")
+    try:
+        return numba.njit(cache=_FOLDER is not None, **_FLAGS)(function)
+    finally:
+        numba.config.CACHE_DIR = before
+
+
+def cache_is_warm() -> bool:
+    """Whether an earlier run has left the compiled time loop on disk (or nothing is to be compiled)."""
+    if numba.config.DISABLE_JIT:
+        return True
+    return _FOLDER is not None and any(_FOLDER.rglob("advance.advance-*.nbc"))

@@ -1,0 +1,341 @@
+"""Discharge of an underflow gate: one law, continuous from closed through free, drowned, clear of water and overtopped.
+
+Depths are counted from the downstream floor unless they are said to be over the sill. The law solves its own approach
+velocity, so that the discharge is a function of the two levels and the opening alone.
+"""
+
+import math
+from typing import NamedTuple
+
+from toeline.constants import GRAVITY
+from toeline.hydraulics.cross_section import BETA, geometry, static_moment
+from toeline.hydraulics.kernel import kernel
+from toeline.hydraulics.weir import weir_discharge
+
+CLOSED, FREE, NEAR_MODULAR_LIMIT, DROWNED, CLEAR_OF_WATER, CLEAR_AND_DROWNED, OVERTOPPED, REVERSE = range(8)
+
+QUALITY_GOOD, QUALITY_NEAR_LIMIT, QUALITY_LIP_NEAR_SURFACE, QUALITY_VERY_DROWNED, QUALITY_REVERSE = range(5)
+
+SHARP_EDGE_CONTRACTION = 0.61
+BLEND = 0.025
+"""Half width of the blended range about the modular limit, in tail depths (choice)."""
+LINEAR_HEAD = 0.01
+"""Head [m] below which the discharge falls linearly to zero (choice)."""
+LIP_CONTACT = 0.5
+"""Opening over upstream energy head from which the contraction begins to vanish (choice)."""
+VERY_DROWNED = 0.95
+"""Tailwater over headwater, both above the sill, from which the discharge of a drowned gate is poorly known."""
+LEAST_LOSS = 0.3
+"""Least share of the velocity head in the throat that an approach as fast as the throat leaves to be supplied (choice)."""
+APPROACH_PASSES = 6
+
+
+class UnderflowGate(NamedTuple):
+    """A gate as its law sees it; all floats, SI."""
+
+    width: float  # m, all bays together
+    sill_level: float  # m above datum
+    floor_level: float  # m above datum, downstream floor, not above the sill
+    upstream_bed_level: float  # m above datum, not above the sill
+    contraction: float = SHARP_EDGE_CONTRACTION  # of a vertical lip; ignored for a radial gate
+    radius: float = 0.0  # m, of a radial gate; 0 for a vertical one
+    pinion_height: float = 0.0  # m above the sill
+    discharge_factor: float = 1.0  # site calibration
+    leaf_height: float = math.inf  # m from lip to top; inf where the leaf cannot be overtopped
+    leaf_weir_coefficient: float = 1.7  # m^0.5/s
+    leakage: float = 0.0  # m³/s under 1 m of head
+
+
+class GateFlow(NamedTuple):
+    """What passes a gate, and the jet that it makes."""
+
+    discharge: float  # m³/s, signed, leaf and leakage included
+    underflow: float  # m³/s, below the lip
+    free_discharge: float  # m³/s, underflow with the tailwater out of the way
+    jet_thickness: float  # m over the sill
+    energy_head: float  # m, upstream, over the sill, of the free discharge
+    roller_depth: float  # m over the floor; NaN unless drowned
+    modular_limit_depth: float  # m over the floor: tail depth at which the roller reaches the jet; NaN if not asked for
+    state: int
+    quality: int
+
+
+@kernel
+def contraction_coefficient(gate, opening, energy_head):
+    """Jet thickness over opening [1].
+
+    Vertical: the gate's own value (0.61 sharp edged, Henderson 1966). Radial: 1 − 0.75t + 0.36t², t = θ/90° (Toch 1955,
+    fit by Henderson 1966). From a lip at half the energy head on it rises to 1 at the full head (choice).
+    """
+    base = gate.contraction
+    if gate.radius > 0.0:
+        cosine = (gate.pinion_height - opening) / gate.radius
+        t = math.acos(min(max(cosine, -1.0), 1.0)) / (0.5 * math.pi)
+        base = 1.0 - 0.75 * t + 0.36 * t * t if t < 1.0 else SHARP_EDGE_CONTRACTION
+    if energy_head <= opening:
+        return 1.0
+    excess = (opening / energy_head - LIP_CONTACT) / (1.0 - LIP_CONTACT)
+    return base if excess <= 0.0 else base + (1.0 - base) * excess * excess
+
+
+@kernel
+def free_jet(gate, upstream_section, headwater_level, opening):
+    """Energy head over the sill [m], jet thickness [m], discharge [m³/s] and lip thickness C_c·a [m] of free flow.
+
+    Q = φ·b·h·√(2g(E − h)), h = min(C_c·a, ⅔E): past ⅔E the gate is clear of water and the flow critical over the sill.
+    """
+    head = headwater_level - gate.sill_level
+    if head <= 0.0 or opening <= 0.0:
+        return max(head, 0.0), 0.0, 0.0, 0.0
+    approach_area = geometry(upstream_section, headwater_level - gate.upstream_bed_level)[0]
+    energy, lip, jet, discharge = head, 0.0, 0.0, 0.0
+    for _ in range(APPROACH_PASSES):
+        lip = contraction_coefficient(gate, opening, energy) * opening
+        jet = min(lip, energy * 2.0 / 3.0)
+        discharge = gate.discharge_factor * gate.width * jet * math.sqrt(2.0 * GRAVITY * (energy - jet))
+        velocity = discharge / approach_area
+        energy = head + min(velocity * velocity / (2.0 * GRAVITY), 0.5 * head)
+    return energy, jet, discharge, lip
+
+
+@kernel
+def modular_limit_depth(gate, downstream_section, jet, discharge):
+    """Tail depth over the floor [m] at which the roller just reaches a free jet of the given thickness: the modular limit."""
+    surface = jet + gate.sill_level - gate.floor_level
+    flux = downstream_section[BETA] * discharge * discharge / GRAVITY
+    force = static_moment(downstream_section, surface) + flux / (gate.width * jet)
+    y = surface
+    while _tail_force(downstream_section, flux, y) <= force or not _is_subcritical(downstream_section, flux, y):
+        y *= 1.5
+    return _limit_from_above(downstream_section, flux, force, y)
+
+
+@kernel
+def _tail_force(section, flux, depth):
+    return static_moment(section, depth) + flux / geometry(section, depth)[0]
+
+
+@kernel
+def _is_subcritical(section, flux, depth):
+    area, width, _, _ = geometry(section, depth)
+    return flux * width < area * area * area
+
+
+@kernel
+def _limit_from_above(section, flux, force, start):
+    """Newton from a subcritical depth whose force is not below the wanted one; the force is convex there."""
+    y = start
+    for _ in range(60):
+        area, width, _, _ = geometry(section, y)
+        step = (static_moment(section, y) + flux / area - force) / (area - flux * width / (area * area))
+        y -= step
+        if step < 1e-12 * start:
+            break
+    return y
+
+
+@kernel
+def _throat_loss(gate, thickness, approach_per_square):
+    """1/(2g(φbh)²) less the approach velocity head, both per Q² [s²/m⁵]."""
+    throat = gate.discharge_factor * gate.width * thickness
+    full = 1.0 / (2.0 * GRAVITY * throat * throat)
+    return max(full - approach_per_square, LEAST_LOSS * full)
+
+
+@kernel
+def drowned_discharge(gate, section, head_depth, tail_depth, jet, lip, approach_per_square):
+    """Discharge [m³/s] and roller depth [m] of a drowned gate: energy to the throat and momentum over the floor together.
+
+    `head_depth` is the headwater over the downstream floor, `lip` = C_c·a. Where the roller does not reach the lip of a
+    gate clear of water, the throat is the water over the sill (an open throat).
+    """
+    if head_depth <= tail_depth:
+        return 0.0, tail_depth
+    discharge, roller = _drowned_under_lip(gate, section, head_depth, tail_depth, lip, approach_per_square)
+    step = gate.sill_level - gate.floor_level
+    if roller - step >= lip or jet >= lip:
+        return discharge, roller
+    return _drowned_open_throat(gate, section, head_depth, tail_depth, jet, lip, approach_per_square)
+
+
+@kernel
+def _drowned_under_lip(gate, section, head_depth, tail_depth, jet, approach_per_square):
+    """Newton in the roller depth from the tail depth down, where the residual is positive and convex."""
+    flux = section[BETA] / GRAVITY * (1.0 / (gate.width * jet) - 1.0 / geometry(section, tail_depth)[0])
+    loss = _throat_loss(gate, jet, approach_per_square)
+    tail_moment = static_moment(section, tail_depth)
+    least = jet + gate.sill_level - gate.floor_level
+    if flux <= 0.0 or tail_depth <= least:
+        return math.sqrt(max(head_depth - max(tail_depth, least), 0.0) / loss), max(tail_depth, least)
+    ratio = loss / flux
+    low, high, y = least, tail_depth, tail_depth
+    for _ in range(60):
+        residual = head_depth - y - ratio * (tail_moment - static_moment(section, y))
+        if residual > 0.0:
+            high = y
+        else:
+            low = y
+        slope = ratio * geometry(section, y)[0] - 1.0
+        step = residual / slope if slope > 0.0 else math.inf
+        y = y - step if low < y - step <= high else 0.5 * (low + high)
+        if abs(step) < 1e-12 * tail_depth or high - low < 1e-13 * tail_depth:
+            break
+    return math.sqrt(max(head_depth - y, 0.0) / loss), y
+
+
+@kernel
+def _drowned_open_throat(gate, section, head_depth, tail_depth, jet, lip, approach_per_square):
+    """Bisection in the roller depth between critical flow over the sill and the lip or the tailwater."""
+    step = gate.sill_level - gate.floor_level
+    low, high = min(jet + step, tail_depth), min(lip + step, tail_depth)
+    tail_area, tail_moment = geometry(section, tail_depth)[0], static_moment(section, tail_depth)
+    for _ in range(48):
+        y = 0.5 * (low + high)
+        squared = max(head_depth - y, 0.0) / _throat_loss(gate, y - step, approach_per_square)
+        flux = section[BETA] * squared / GRAVITY * (1.0 / (gate.width * (y - step)) - 1.0 / tail_area)
+        if static_moment(section, y) + flux > tail_moment:
+            high = y
+        else:
+            low = y
+    return math.sqrt(max(head_depth - y, 0.0) / _throat_loss(gate, y - step, approach_per_square)), y
+
+
+@kernel
+def _underflow_one_way(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening):
+    """Flow below the lip with the headwater higher than the tailwater by at least `LINEAR_HEAD`."""
+    energy, jet, free, lip = free_jet(gate, upstream_section, headwater_level, opening)
+    state = CLEAR_OF_WATER if jet < lip or opening <= 0.0 else FREE
+    tail_depth = tailwater_level - gate.floor_level
+    step = gate.sill_level - gate.floor_level
+    if free <= 0.0 or tail_depth <= step:
+        return GateFlow(free, free, free, jet, energy, math.nan, math.nan, state, QUALITY_GOOD)
+    flux = downstream_section[BETA] * free * free / GRAVITY
+    force = static_moment(downstream_section, jet + step) + flux / (gate.width * jet)
+    above = tail_depth / (1.0 - BLEND)
+    if not _is_subcritical(downstream_section, flux, above) or _tail_force(downstream_section, flux, above) <= force:
+        return GateFlow(free, free, free, jet, energy, math.nan, math.nan, state, QUALITY_GOOD)
+    below = tail_depth / (1.0 + BLEND)
+    head_depth = headwater_level - gate.floor_level
+    approach = (energy - (headwater_level - gate.sill_level)) / (free * free)
+    if _is_subcritical(downstream_section, flux, below) and _tail_force(downstream_section, flux, below) >= force:
+        q, roller = drowned_discharge(gate, downstream_section, head_depth, tail_depth, jet, lip, approach)
+        state = CLEAR_AND_DROWNED if state == CLEAR_OF_WATER else DROWNED
+        return GateFlow(q, q, free, jet, energy, roller, math.nan, state, QUALITY_GOOD)
+    limit = _limit_from_above(downstream_section, flux, force, above)
+    top = min((1.0 + BLEND) * limit, energy + step)
+    q_top, _ = drowned_discharge(gate, downstream_section, head_depth, top, jet, lip, approach)
+    share = (tail_depth - (1.0 - BLEND) * limit) / (top - (1.0 - BLEND) * limit)
+    q = free + (q_top - free) * min(max(share, 0.0), 1.0)
+    return GateFlow(q, q, free, jet, energy, math.nan, limit, NEAR_MODULAR_LIMIT, QUALITY_NEAR_LIMIT)
+
+
+@kernel
+def _underflow(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening):
+    """`_underflow_one_way`, scaled linearly to zero over the last centimetre of head."""
+    head = headwater_level - tailwater_level
+    if head >= LINEAR_HEAD:
+        return _underflow_one_way(
+            gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening
+        )
+    lowered = headwater_level - LINEAR_HEAD
+    flow = _underflow_one_way(gate, upstream_section, downstream_section, headwater_level, lowered, opening)
+    q = flow.discharge * max(head, 0.0) / LINEAR_HEAD
+    return GateFlow(
+        q, q, flow.free_discharge, flow.jet_thickness, flow.energy_head, flow.roller_depth,
+        flow.modular_limit_depth, flow.state, flow.quality,
+    )  # fmt: skip
+
+
+@kernel
+def reversed_gate(gate):
+    """The gate seen from the other side: no step, sides exchanged."""
+    return UnderflowGate(
+        gate.width, gate.sill_level, gate.sill_level, gate.floor_level, gate.contraction, gate.radius,
+        gate.pinion_height, gate.discharge_factor, gate.leaf_height, gate.leaf_weir_coefficient, gate.leakage,
+    )  # fmt: skip
+
+
+@kernel
+def gate_flow(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening):
+    """Everything that passes a gate, as a `GateFlow`.
+
+    Levels in m above datum, opening in m above the sill. Free flow by energy; drowned flow by energy to the jet and
+    momentum below it (Henry 1950; Henderson 1966, ch. 6); linear between 0.975 and 1.025 of the modular limit (choice);
+    water above the leaf by the weir formula, drowned after Villemonte 1947. The state says which; the quality says where
+    the discharge is poorly known: near the limit, lip near the surface (a > E/2), tailwater ≥ 0.95 of headwater, reverse.
+    """
+    if tailwater_level > headwater_level:
+        turned = reversed_gate(gate)
+        flow = _underflow(turned, downstream_section, upstream_section, tailwater_level, headwater_level, opening)
+        sign = -1.0
+    else:
+        flow = _underflow(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening)
+        sign = 1.0
+    crest = gate.sill_level + opening + gate.leaf_height
+    over = weir_discharge(gate.leaf_weir_coefficient, gate.width, crest, headwater_level, tailwater_level)
+    through = _leakage(gate, headwater_level, tailwater_level)
+    state = _state(flow.state, opening, sign, over)
+    quality = _quality(gate, flow, headwater_level, tailwater_level, opening, sign)
+    return GateFlow(
+        sign * flow.discharge + over + through, sign * flow.discharge, flow.free_discharge, flow.jet_thickness,
+        flow.energy_head, flow.roller_depth, flow.modular_limit_depth, state, quality,
+    )  # fmt: skip
+
+
+@kernel
+def gate_discharge(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening):
+    """Discharge of a gate [m³/s], signed; see `gate_flow`."""
+    return gate_flow(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening).discharge
+
+
+@kernel
+def _leakage(gate, headwater_level, tailwater_level):
+    """Flow past the seals: leakage·√head, linear below a centimetre; none from water below the sill."""
+    high, low = max(headwater_level, tailwater_level), min(headwater_level, tailwater_level)
+    head = high - max(low, gate.sill_level)
+    if gate.leakage == 0.0 or head <= 0.0:
+        return 0.0
+    size = math.sqrt(head) if head > LINEAR_HEAD else head / math.sqrt(LINEAR_HEAD)
+    return math.copysign(gate.leakage * size, headwater_level - tailwater_level)
+
+
+@kernel
+def _state(state, opening, sign, over):
+    if over != 0.0:
+        return OVERTOPPED
+    if opening <= 0.0:
+        return CLOSED
+    return REVERSE if sign < 0.0 else state
+
+
+@kernel
+def _quality(gate, flow, headwater_level, tailwater_level, opening, sign):
+    if opening <= 0.0:
+        return QUALITY_GOOD
+    if sign < 0.0:
+        return QUALITY_REVERSE
+    drowned = flow.state in (DROWNED, CLEAR_AND_DROWNED)
+    if drowned and tailwater_level - gate.sill_level >= VERY_DROWNED * (headwater_level - gate.sill_level):
+        return QUALITY_VERY_DROWNED
+    if opening > LIP_CONTACT * flow.energy_head:
+        return QUALITY_LIP_NEAR_SURFACE
+    return flow.quality
+
+
+@kernel
+def opening_for_discharge(gate, upstream_section, downstream_section, headwater_level, tailwater_level, discharge, largest):
+    """Opening [m] that passes a discharge [m³/s] at given levels, and the discharge at that opening.
+
+    Bisection on [0, `largest`]; the end of the range nearest to the wanted discharge where none passes it.
+    """
+    low, high = 0.0, largest
+    for _ in range(60):
+        middle = 0.5 * (low + high)
+        q = gate_discharge(gate, upstream_section, downstream_section, headwater_level, tailwater_level, middle)
+        if q < discharge:
+            low = middle
+        else:
+            high = middle
+    best = 0.5 * (low + high)
+    passed = gate_discharge(gate, upstream_section, downstream_section, headwater_level, tailwater_level, best)
+    return best, passed

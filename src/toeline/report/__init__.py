@@ -1,0 +1,1 @@
+"""Pages for people, from the finished run alone."""
