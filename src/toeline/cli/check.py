@@ -16,7 +16,8 @@ def command(file: Path) -> None:
     Every fault is listed with its file, line and key, what was found and what is allowed; exit status 2.
     Nothing is run and nothing is written.
     """
-    from toeline.cli.input_pages import canal_line, day_line
+    from toeline.cli.canal_page import canal_line
+    from toeline.cli.day_page import day_line
     from toeline.scenario import load_canal
 
     line = canal_line(load_canal(file)) if is_canal(file) else day_line(load_plans(file))

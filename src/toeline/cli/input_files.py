@@ -1,8 +1,7 @@
 """The files that commands are given: which kind one is, and a day loaded for each of its plans."""
 
-import difflib
 import tomllib
-from collections.abc import Iterable, Sequence
+from collections.abc import Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -39,12 +38,5 @@ def load_plans(day: Path, plan: str | None = None, overrides: Sequence[str] = ()
     """
     from toeline.scenario import load_scenario, plan_names
 
-    names = [plan] if plan is not None else list(plan_names(day)) or [None]
+    names: Sequence[str | None] = (plan,) if plan is not None else plan_names(day) or (None,)
     return [load_scenario(day, plan=name, overrides=overrides) for name in names]
-
-
-def did_you_mean(word: str, known: Iterable[str]) -> str:
-    """A hint for a mistyped name: the nearest known one, or all of them."""
-    known = list(known)
-    near = difflib.get_close_matches(word, known, n=1, cutoff=0.5)
-    return f"Did you mean {near[0]!r}?" if near else f"Known: {', '.join(known)}."

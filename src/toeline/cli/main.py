@@ -6,28 +6,21 @@ Nothing heavy is imported here or at the top of a command's file, so that `toeli
 from importlib import import_module
 
 import click
+from click.exceptions import Exit
 
 from toeline import __version__
+from toeline.cli.exit_status import ExitStatus
 from toeline.cli.terminal import note
-from toeline.errors import ScenarioError, ToelineError
+from toeline.errors import ScenarioError, ToelineError, UsageError
 
 COMMANDS = ("new", "check", "run", "describe", "rating")
-INTERRUPTED = 130
-
-
-class Failure(click.ClickException):
-    """An error that the user can act on: its message alone, on the error stream."""
-
-    def __init__(self, message: str, exit_status: int):
-        super().__init__(message)
-        self.exit_code = exit_status
-
-    def show(self, file: object = None) -> None:
-        note(self.message)
 
 
 class LazyGroup(click.Group):
-    """A group whose commands are found by the name of their file."""
+    """A group whose commands are found by the name of their file.
+
+    An error that the user can act on ends in its message on the error stream and an exit status, without a traceback.
+    """
 
     def list_commands(self, ctx: click.Context) -> list[str]:
         return list(COMMANDS)
@@ -43,21 +36,28 @@ class LazyGroup(click.Group):
     ) -> tuple[str | None, click.Command | None, list[str]]:
         name = args[0]
         if name not in COMMANDS and not name.startswith("-") and not ctx.resilient_parsing:
-            ctx.fail(f"there is no command {name!r}. {did_you_mean(name, COMMANDS)}")
+            from toeline.scenario.misfits import nearest
+
+            raise UsageError(f'there is no command "{name}"; {nearest(name, COMMANDS)}')
         return super().resolve_command(ctx, args)
 
     def invoke(self, ctx: click.Context) -> object:
         try:
             return super().invoke(ctx)
         except ToelineError as error:
-            raise Failure(describe_error(error), error.exit_status) from error
+            note(error_words(error))
+            raise Exit(error.exit_status) from error
         except KeyboardInterrupt:
-            raise Failure("Stopped.", INTERRUPTED) from None
+            note("Stopped.")
+            raise Exit(ExitStatus.INTERRUPTED) from None
+        except BrokenPipeError:
+            raise
         except OSError as error:
-            raise Failure(f"Error: {error.filename or 'output'}: {error.strerror or error}", 1) from error
+            note(f"Error: {error.filename or 'output'}: {error.strerror or error}")
+            raise Exit(ExitStatus.RUN_FAILED) from error
 
 
-def describe_error(error: ToelineError) -> str:
+def error_words(error: ToelineError) -> str:
     """The message for the error stream: every fault on its own line, then how many."""
     if not isinstance(error, ScenarioError):
         return f"Error: {error}"

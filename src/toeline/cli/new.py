@@ -12,6 +12,9 @@ from toeline.cli.terminal import show
 def command(directory: Path) -> None:
     """Write an invented canal and one day of it to DIR, ready to run and to be replaced by yours.
 
-    DIR is made if it does not exist. A file that is already there is never replaced.
+    DIR is made if it does not exist. No file that is already there is replaced.
     """
-    from toeline.scenario.starter import write_starter
+    from toeline.scenario import write_starter
+
+    paths = [str(path) for path in write_starter(directory)]
+    show(f"Wrote {' and '.join(paths)}; all in them is invented. Try: toeline run {paths[-1]}")

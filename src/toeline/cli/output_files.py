@@ -6,6 +6,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from toeline.errors import UsageError
+from toeline.results.run_file import partial_of, resolved_target
 
 if TYPE_CHECKING:
     from toeline.scenario import Scenario
@@ -20,22 +21,20 @@ def choose_outputs(scenarios: Sequence["Scenario"], output: Path | None) -> list
     wanted = output or Path(f"{day.day_path.stem}.nc")
     if len(day.day.plans) < 2:
         return [wanted]
-    return [wanted.with_name(f"{wanted.stem}.{_as_file_name(scenario.plan or '')}{wanted.suffix}") for scenario in scenarios]
-
-
-def _as_file_name(plan: str) -> str:
-    return re.sub(r"[^\w.-]+", "_", plan)
+    plans = (re.sub(r"[^\w.-]+", "_", scenario.plan or "") for scenario in scenarios)
+    return [wanted.with_name(f"{wanted.stem}.{plan}{wanted.suffix}") for plan in plans]
 
 
 def refuse_outputs(outputs: Sequence[Path], scenarios: Sequence["Scenario"], overwrite: bool) -> None:
     """Raise UsageError, before any work is done, where writing an output would fail or lose something."""
     if len(set(outputs)) < len(outputs):
-        raise UsageError(f"two plans would go to one file, {outputs[0]}: rename a plan, or run one at a time with --plan.")
+        raise UsageError("two plans would go to one file: rename a plan, or run one at a time with --plan.")
     inputs = {path.resolve() for s in scenarios for path in (s.day_path, s.canal_path, s.start_file) if path}
     for output in outputs:
-        if output.resolve() in inputs:
+        if resolved_target(output) in inputs:
             raise UsageError(f"{output} is an input of this run and would be lost: name another file with -o.")
         if not output.parent.is_dir():
             raise UsageError(f"there is no directory {output.parent} to write {output.name} in.")
-        if output.exists() and not overwrite:
-            raise UsageError(f"{output} exists: name another file with -o, or replace it with --overwrite.")
+        for standing in (output, partial_of(output)):
+            if standing.exists() and not overwrite:
+                raise UsageError(f"{standing} exists: name another file with -o, or replace it with --overwrite.")

@@ -4,38 +4,46 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 import click
+from click.exceptions import Exit
 
+from toeline.cli.exit_status import ExitStatus
 from toeline.cli.input_files import INPUT_FILE, load_plans
 from toeline.cli.terminal import note, page_width, progress_bar, show
 from toeline.errors import RunError
 
 if TYPE_CHECKING:
-    import xarray
-
     from toeline.scenario import Scenario
-
-RUN_FAILED = 1
-LIMIT_PASSED = 3
 
 
 @click.command(short_help="Run a day and write the results to a file.")
 @click.argument("day", type=INPUT_FILE)
 @click.option(
-    "-o", "--output", type=click.Path(dir_okay=False, path_type=Path), metavar="FILE",
+    "-o",
+    "--output",
+    type=click.Path(dir_okay=False, path_type=Path),
+    metavar="FILE",
     help="The file of results; DAY.nc in the working directory unless given. With several plans the name of the "
     "plan goes before its ending: DAY.PLAN.nc.",
 )
 @click.option("--plan", metavar="NAME", help="Run this plan alone. Of several plans each runs, to its own file.")
 @click.option(
-    "--set", "overrides", multiple=True, metavar="KEY=VALUE",
+    "--set",
+    "overrides",
+    multiple=True,
+    metavar="KEY=VALUE",
     help="Change a value of the day file for this run, such as period.length='\"6 h\"'. May be repeated.",
 )
 @click.option("--overwrite", is_flag=True, help="Replace a file of results that exists.")
 @click.option("--strict", is_flag=True, help="Exit with status 3 if a limit was passed.")
 @click.pass_context
 def command(
-    ctx: click.Context, day: Path, output: Path | None, plan: str | None, overrides: tuple[str, ...],
-    overwrite: bool, strict: bool,
+    ctx: click.Context,
+    day: Path,
+    output: Path | None,
+    plan: str | None,
+    overrides: tuple[str, ...],
+    overwrite: bool,
+    strict: bool,
 ) -> None:
     """Step the canal of the file DAY through its schedule, and tell what goes wrong, where, when and by how much.
 
@@ -49,7 +57,7 @@ def command(
     refuse_outputs(outputs, scenarios, overwrite)
     tell_of_compiling()
     statuses = {run_plan(*pair, overwrite, strict) for pair in zip(scenarios, outputs, strict=True)}
-    ctx.exit(RUN_FAILED if RUN_FAILED in statuses else max(statuses))
+    ctx.exit(ExitStatus.RUN_FAILED if ExitStatus.RUN_FAILED in statuses else max(statuses))
 
 
 def tell_of_compiling() -> None:
@@ -60,7 +68,7 @@ def tell_of_compiling() -> None:
         note("Compiling the equations for this machine: once, about a minute. Later runs start at once.")
 
 
-def run_plan(scenario: "Scenario", output: Path, overwrite: bool, strict: bool) -> int:
+def run_plan(scenario: "Scenario", output: Path, overwrite: bool, strict: bool) -> ExitStatus:
     """Run one plan, show its page and return the exit status; a failed run tells why and what is left of it."""
     from toeline import simulate
     from toeline.report.run_summary import run_summary
@@ -70,17 +78,19 @@ def run_plan(scenario: "Scenario", output: Path, overwrite: bool, strict: bool) 
             dataset = simulate(scenario, output, overwrite=overwrite, progress=progress)
     except KeyboardInterrupt:
         note(f"Stopped by Ctrl-C. {what_is_left(output)}")
-        raise click.exceptions.Exit(INTERRUPTED) from None
+        raise Exit(ExitStatus.INTERRUPTED) from None
     except RunError as error:
         note(f"Error: {error}\n{what_is_left(output)}")
-        return RUN_FAILED
+        return ExitStatus.RUN_FAILED
     with dataset:
         show(run_summary(dataset, scenario.display, width=page_width()))
-        return LIMIT_PASSED if strict and passes_a_limit(dataset) else 0
+        return ExitStatus.LIMIT_PASSED if strict and passes_a_limit(dataset) else ExitStatus.DONE
 
 
 def what_is_left(output: Path) -> str:
-    partial = output.with_name(f"{output.name}.partial")
+    from toeline.results.run_file import partial_of
+
+    partial = partial_of(output)
     if not partial.exists():
         return "Nothing was written."
     return f"What was done so far is in {partial}; see it with: toeline describe {partial}"

@@ -5,17 +5,22 @@ from collections.abc import Sequence
 
 INDENT = "  "
 GAP = "  "
+NARROWEST = 20
 
 
 def heading(text: str) -> str:
     return text.upper()
 
 
+def counted(count: int, noun: str) -> str:
+    return f"{count} {noun}" if count == 1 else f"{count} {noun}s"
+
+
 def paragraph(text: str, width: int, *, indent: str = INDENT, hanging: str | None = None) -> str:
     """The text filled to the width; lines after the first start with `hanging` (the indent, unless given)."""
     return textwrap.fill(
         text,
-        max(width, 20),
+        max(width, NARROWEST),
         initial_indent=indent,
         subsequent_indent=indent if hanging is None else hanging,
         break_on_hyphens=False,
@@ -23,22 +28,22 @@ def paragraph(text: str, width: int, *, indent: str = INDENT, hanging: str | Non
 
 
 def table(header: Sequence[str], rows: Sequence[Sequence[str]], width: int) -> str:
-    """Columns side by side, the first to the left and the others to the right.
+    """Columns side by side, words to the left and numbers to the right.
 
     Where that is wider than the page, every row becomes a block of its own, one line a column.
     """
-    widths = [max(len(row[column]) for row in (header, *rows)) for column in range(len(header))]
-    if len(INDENT) + sum(widths) + len(GAP) * (len(widths) - 1) > width:
+    columns = [[row[place] for row in (header, *rows)] for place in range(len(header))]
+    cells = [_aligned(column) for column in columns]
+    if len(INDENT) + sum(len(column[0]) + len(GAP) for column in cells) - len(GAP) > width:
         return "\n".join(_block(header, row, width) for row in rows)
-    return "\n".join(_line(row, widths) for row in (header, *rows))
+    return "\n".join((INDENT + GAP.join(line)).rstrip() for line in zip(*cells, strict=True))
 
 
-def _line(cells: Sequence[str], widths: Sequence[int]) -> str:
-    first, *others = (
-        cell.rjust(size) if column else cell.ljust(size)
-        for column, (cell, size) in enumerate(zip(cells, widths, strict=True))
-    )
-    return (INDENT + GAP.join([first, *others])).rstrip()
+def _aligned(column: Sequence[str]) -> list[str]:
+    """The cells of a column under its header, all of one width."""
+    size = max(len(cell) for cell in column)
+    is_number = all(cell[:1] in "+-0123456789" for cell in column[1:])
+    return [cell.rjust(size) if is_number else cell.ljust(size) for cell in column]
 
 
 def _block(header: Sequence[str], row: Sequence[str], width: int) -> str:

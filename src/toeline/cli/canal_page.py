@@ -1,0 +1,75 @@
+"""A canal in words: one line for `check`, one page for `describe`."""
+
+from collections.abc import Iterator
+from typing import TYPE_CHECKING
+
+from toeline.report.layout import counted, heading, paragraph, table
+from toeline.units import Display
+
+if TYPE_CHECKING:
+    from toeline.scenario import CanalFile
+    from toeline.scenario.schema.canal import Canal
+    from toeline.scenario.schema.gates import Gate
+    from toeline.scenario.schema.offtakes import Offtake
+    from toeline.scenario.schema.pools import Pool
+
+
+POOL_COLUMNS = ("", "length", "bed at head", "bed at end", "target", "protected floor")
+GATE_COLUMNS = ("", "kind", "bays", "sill", "opens to", "hoist")
+OFFTAKE_COLUMNS = ("", "pool", "below its head", "kind")
+
+
+def canal_line(file: "CanalFile") -> str:
+    canal = file.canal
+    things = (("pool", canal.pools), ("gate", canal.gates), ("offtake", canal.offtakes))
+    numbers = ", ".join(counted(len(listed), noun) for noun, listed in things)
+    length = Display(file.units).length(sum(pool.length for pool in canal.pools))
+    return f"canal {canal.name}, {length} long: {numbers}; plain numbers are {file.units}"
+
+
+def canal_page(file: "CanalFile", width: int) -> str:
+    """Pools, gates, offtakes and ends, from the head down."""
+    canal, display = file.canal, Display(file.units)
+    tables = (
+        ("Pools", POOL_COLUMNS, [_pool_row(pool, canal, display) for pool in canal.pools]),
+        ("Gates", GATE_COLUMNS, [_gate_row(gate, display) for gate in canal.gates]),
+        ("Offtakes", OFFTAKE_COLUMNS, [_offtake_row(offtake, display) for offtake in canal.offtakes]),
+    )
+    lines = [paragraph(canal_line(file), width, indent="")]
+    for title, columns, rows in tables:
+        if rows:
+            lines += ["", heading(title), table(columns, rows, width)]
+    return "\n".join([*lines, "", heading("Ends"), *_ends(canal, display, width)])
+
+
+def _pool_row(pool: "Pool", canal: "Canal", display: Display) -> tuple[str, ...]:
+    levels = (pool.bed_level, pool.end_bed_level, float("nan") if pool.target_level is None else pool.target_level)
+    protected = display.length(_protected_length(pool, canal))
+    return (pool.name, display.length(pool.length), *(display.level(level) for level in levels), protected)
+
+
+def _protected_length(pool: "Pool", canal: "Canal") -> float:
+    """From the pool's head to where the protected surfaces without a gap end [m]."""
+    length = 0.0
+    for stretch in pool.stretches:
+        if not canal.surfaces[stretch.surface].protected:
+            break
+        length += stretch.length
+    return length
+
+
+def _gate_row(gate: "Gate", display: Display) -> tuple[str, ...]:
+    bays = f"{gate.bays} of {display.length(gate.bay_width)}"
+    hoist = "at once" if gate.hoist_speed is None else display.speed(gate.hoist_speed)
+    levels = (display.level(gate.sill_level), display.opening(gate.max_opening))
+    return (gate.name, gate.kind, bays, *levels, hoist)
+
+
+def _offtake_row(offtake: "Offtake", display: Display) -> tuple[str, ...]:
+    return (offtake.name, offtake.pool, display.length(offtake.chainage), offtake.kind)
+
+
+def _ends(canal: "Canal", display: Display, width: int) -> Iterator[str]:
+    for name, end in (("head", canal.head), ("tail", canal.tail)):
+        level = "" if end.level is None else f" {display.level(end.level)}"
+        yield paragraph(f"{name}: {end.kind}{level}", width)

@@ -1,0 +1,68 @@
+"""A day in words: one line for `check`, one page for `describe`."""
+
+from collections.abc import Callable, Sequence
+from typing import TYPE_CHECKING
+
+from toeline.report.clock import clock_text, duration_text, later, span_text
+from toeline.report.layout import counted, heading, paragraph, table
+from toeline.report.orders import order_words
+
+if TYPE_CHECKING:
+    from toeline.scenario import Order, Scenario, Series
+
+
+def day_line(plans: Sequence["Scenario"]) -> str:
+    day, period = plans[0].day, plans[0].day.period
+    orders = "; ".join(f"{_plan_name(plan)}, {counted(len(plan.orders), 'order')}" for plan in plans)
+    length = duration_text(period.length_ms / 1000)
+    return f"day {day.title} on {plans[0].canal.name}, {length} from {period.start:%Y-%m-%d %H:%M}: {orders}"
+
+
+def _plan_name(plan: "Scenario") -> str:
+    return f"plan {plan.plan}" if plan.plan else "no plan"
+
+
+def day_page(plans: Sequence["Scenario"], width: int) -> str:
+    """What flows in, what is asked, and the orders of every plan."""
+    first = plans[0]
+    start = first.day.period.start
+    end = later(start, first.day.period.length_ms / 1000)
+    lines = [
+        paragraph(f"{first.day.title}, on {first.canal.name} ({first.canal_path})", width, indent=""),
+        paragraph(f"{start:%A %Y-%m-%d}, {span_text(start, end, start)}; the start: {_start_words(first)}", width),
+        "",
+        heading("Water"),
+        table(("", "at the start", "least", "greatest"), _water_rows(first), width),
+    ]
+    for plan in plans:
+        lines += ["", f"{heading('Orders')} of {_plan_name(plan)}: {len(plan.orders)}"]
+        if plan.orders:
+            lines.append(table(("time", "gate", "order"), [_order_row(order, first) for order in plan.orders], width))
+    return "\n".join(lines)
+
+
+def _start_words(scenario: "Scenario") -> str:
+    start = scenario.day.start
+    if start.file is not None:
+        return f"the end of {start.file}"
+    return f"{start.state}, openings {start.openings}" if isinstance(start.openings, str) else f"{start.state}"
+
+
+def _water_rows(scenario: "Scenario") -> list[tuple[str, ...]]:
+    day, display = scenario.day, scenario.display
+    discharges = {"inflow": day.inflow} | {f"asked at {name}": series for name, series in day.deliveries.items()}
+    levels = {"level of the reservoir": day.head, "level at the tail": day.tail}
+    return [
+        *(_water_row(name, series, display.discharge) for name, series in discharges.items() if series is not None),
+        *(_water_row(name, series, display.level) for name, series in levels.items() if series is not None),
+    ]
+
+
+def _water_row(name: str, series: "Series", write: Callable[[float], str]) -> tuple[str, ...]:
+    return (name, write(series.at(0)), write(float(series.values.min())), write(float(series.values.max())))
+
+
+def _order_row(order: "Order", scenario: "Scenario") -> tuple[str, ...]:
+    start = scenario.day.period.start
+    words = order_words(order.kind, order.value, scenario.display)
+    return (clock_text(later(start, order.at / 1000), start), order.gate, words)

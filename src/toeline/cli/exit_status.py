@@ -1,0 +1,13 @@
+"""What the exit status of a command means."""
+
+from enum import IntEnum
+
+
+class ExitStatus(IntEnum):
+    """0 and 3 leave a complete file of results, 1 and 130 what was done so far, 2 nothing."""
+
+    DONE = 0
+    RUN_FAILED = 1
+    WRONG_USE = 2
+    LIMIT_PASSED = 3
+    INTERRUPTED = 130

@@ -1,0 +1,99 @@
+"""`toeline rating`: what a gate passes."""
+
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+import click
+
+from toeline.cli.input_files import INPUT_FILE
+from toeline.cli.terminal import page_width, show
+from toeline.errors import UsageError
+
+if TYPE_CHECKING:
+    from toeline.scenario import CanalFile
+    from toeline.units import UnitSystem
+
+QUANTITIES = "LEVEL[,LEVEL...]"
+
+
+@click.command(short_help="Tabulate the discharge of a gate, its modular limit and where its jump leaves the floor.")
+@click.argument("canal", type=INPUT_FILE)
+@click.argument("gate")
+@click.option("--headwater", metavar=QUANTITIES, help="Levels above the gate, such as 103.2,103.6 or '340 ft'.")
+@click.option("--tailwater", metavar=QUANTITIES, help="Levels below the gate.")
+@click.option("--opening", metavar="OPENING[,OPENING...]", help="Openings, lip above sill.")
+@click.option(
+    "--csv",
+    "csv_file",
+    type=click.Path(dir_okay=False, path_type=Path),
+    metavar="FILE",
+    help="Write the table to FILE as well, one row a value, in SI.",
+)
+@click.option("--overwrite", is_flag=True, help="Replace a CSV file that exists.")
+def command(
+    canal: Path,
+    gate: str,
+    headwater: str | None,
+    tailwater: str | None,
+    opening: str | None,
+    csv_file: Path | None,
+    overwrite: bool,
+) -> None:
+    """Tabulate the discharge of GATE of the file CANAL by headwater, tailwater and opening.
+
+    For each headwater and opening it tells the modular limit, the tailwater above which the flow is drowned, and
+    the tailwater below which the end of the jump leaves the protected floor. What is not given is chosen from the
+    levels of the canal. Plain numbers are in the units of the canal file.
+    """
+    from toeline.cli.rating_page import rating_page, write_csv
+    from toeline.network.rating import rating_table
+    from toeline.scenario import load_canal
+    from toeline.units import Display
+
+    if csv_file is not None and csv_file.exists() and not overwrite:
+        raise UsageError(f"{csv_file} exists: name another file, or replace it with --overwrite.")
+    canal_file = load_canal(canal)
+    check_gate(canal_file, gate)
+    rows = rating_table(canal_file, gate, *chosen_values(canal_file, gate, headwater, tailwater, opening))
+    show(rating_page(rows, f"{gate}, {canal_file.canal.name}", Display(canal_file.units), page_width()))
+    if csv_file is not None:
+        write_csv(csv_file, rows, canal_file.units)
+
+
+def chosen_values(
+    canal_file: "CanalFile", gate: str, headwater: str | None, tailwater: str | None, opening: str | None
+) -> list[list[float]]:
+    """Headwaters, tailwaters and openings in SI: those given, the others from the levels of the canal."""
+    from toeline.network.rating import default_rating_levels
+
+    given = (("--headwater", headwater), ("--tailwater", tailwater), ("--opening", opening))
+    chosen = default_rating_levels(canal_file, gate)
+    return [
+        lengths(option, text, canal_file.units) if text else list(default)
+        for (option, text), default in zip(given, chosen, strict=True)
+    ]
+
+
+def lengths(option: str, text: str, system: "UnitSystem") -> list[float]:
+    """The lengths of a list such as "3.2, 3.6" or "340 ft", rising, in SI."""
+    from toeline.units import parse_quantity
+
+    try:
+        return sorted({parse_quantity(_plain_or_text(part.strip()), "length", system) for part in text.split(",")})
+    except ValueError as error:
+        raise UsageError(f"{option}: {error}") from error
+
+
+def _plain_or_text(part: str) -> float | str:
+    try:
+        return float(part)
+    except ValueError:
+        return part
+
+
+def check_gate(canal_file: "CanalFile", gate: str) -> None:
+    from toeline.scenario.misfits import nearest
+
+    names = [known.name for known in canal_file.canal.gates]
+    if gate not in names:
+        raise UsageError(f'{canal_file.canal.name} has no gate "{gate}"; {nearest(gate, names)}')

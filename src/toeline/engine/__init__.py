@@ -1,0 +1,1 @@
+"""The time loop: a chain of stored water and the links between it."""

@@ -1,0 +1,288 @@
+"""The day from stop to stop: Python sets the forcing and the gates, compiled code does the rest."""
+
+import math
+from collections.abc import Callable
+
+import numpy as np
+
+from toeline.engine.advance import LEG_DONE, STEP_TOO_SMALL, Appointments, Pace, advance, write_now
+from toeline.engine.gate_link import gate_levels
+from toeline.engine.gate_motion import KINDS, GateMotion, OrderRecord
+from toeline.engine.output import Watch
+from toeline.engine.rows import filled_block, new_rows
+from toeline.engine.settling import round_trip, surge_bounds
+from toeline.engine.state import Forcing, Tables, new_stage, new_state, new_totals
+from toeline.engine.step import begin_leg, set_forcing, start_from_levels
+from toeline.errors import RunError
+from toeline.hydraulics.underflow_gate import UnderflowGate, opening_for_discharge
+from toeline.network.initial_state import Start
+from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, TAIL_LEVEL, Network
+from toeline.network.timetable import Timetable
+
+BLOCK_ROWS = 720
+"""Rows of output after which a block is handed on."""
+
+JET_POINTS = 400
+"""Most points of a jet's profile."""
+
+FIRST_STEP = 10.0
+"""First step [s] of a day that starts steady (choice)."""
+
+LEAST_CHANGE = 1e-9
+"""Change of a discharge [m³/s] below which nothing is said to settle."""
+
+END_STATE_ARRAYS = ("level", "volume", "discharge", "convective_head", "imbalance")
+
+
+class Run:
+    """One day being stepped. `sink.write(block)` receives the output as it is made."""
+
+    def __init__(self, network: Network, timetable: Timetable, sink, start: Start | dict[str, np.ndarray]):
+        self.network, self.timetable, self.sink = network, timetable, sink
+        self.tables = Tables(
+            network.channel, network.nodes, network.links, network.gates, network.offtakes, network.boundary, network.pools
+        )
+        nodes, offtakes = network.node_count, network.offtake_count
+        self.state, self.middle, self.after = (new_state(nodes, offtakes) for _ in range(3))
+        self.stage, self.totals = new_stage(nodes), new_totals(offtakes)
+        self.forcing = Forcing(*(np.zeros(timetable.forcing_size) for _ in range(3)))
+        self.pace = Pace(
+            np.array([timetable.tolerance]), np.array([timetable.longest_step / 1000.0]), np.array([FIRST_STEP]),
+            np.zeros(1), np.zeros(3, np.int64),
+        )  # fmt: skip
+        every = np.array([timetable.every, timetable.profiles_every], np.int64)
+        self.appointments = Appointments(np.zeros(1, np.int64), every, np.zeros(2, np.int64))
+        self.rows = self._new_rows()
+        self.watch = self._new_watch()
+        self.time = 0
+        self.orders = list(timetable.orders)
+        self.records: list[OrderRecord] = []
+        openings = start["end_opening"] if isinstance(start, dict) else start.opening
+        self.motions = [GateMotion(g, float(a)) for g, a in zip(timetable.rules_of_gates, openings, strict=True)]
+        self._take_over(start) if isinstance(start, dict) else self._start_at(start)
+        canal = slice(0, network.canal_node_count)
+        self.watch.start_storage[0] = self._pool_volumes(canal)
+
+    def go(self, progress: Callable[[float], None] | None = None) -> None:
+        """Step to the end of the period; raises RunError where no step can be solved."""
+        stops = self.timetable.stops()
+        while self.time < self.timetable.length:
+            self._act()
+            stop = int(stops[np.searchsorted(stops, self.time, side="right")])
+            moving = [motion.until for motion in self.motions if motion.is_moving]
+            self._leg(min([stop, *moving]))
+            if progress is not None:
+                progress(self.time / self.timetable.length)
+        self._last_row()
+        for motion in self.motions:
+            motion.end_of_day()
+        self.flush()
+
+    def flush(self) -> None:
+        """Hand on what has been filled."""
+        final = next((k for k, record in enumerate(self.records) if not record.is_final), len(self.records))
+        done, self.records = self.records[:final], self.records[final:]
+        self.sink.write(filled_block(self.rows) | _order_arrays(done))
+        self.rows.filled[:] = 0
+
+    def end_state(self) -> dict[str, np.ndarray]:
+        """Everything that the next day needs to go on as if this one had not ended."""
+        left = {"end_" + name: getattr(self.state, name).copy() for name in END_STATE_ARRAYS}
+        watch = self.watch
+        return left | {
+            "end_opening": np.array([motion.opening for motion in self.motions]),
+            "end_target_opening": np.array([motion.target for motion in self.motions]),
+            "end_ordered_opening": np.array([motion.ordered for motion in self.motions]),
+            "end_motion_remaining": self._seconds_left(np.array([m.until if m.is_moving else 0 for m in self.motions])),
+            "end_surge_upstream": watch.surge_upstream.copy(),
+            "end_surge_downstream": watch.surge_downstream.copy(),
+            "end_surge_remaining_upstream": self._seconds_left(watch.surge_until[:, 0]),
+            "end_surge_remaining_downstream": self._seconds_left(watch.surge_until[:, 1]),
+            "end_settling_remaining": self._seconds_left(watch.settled_at),
+            "end_next_step": self.pace.next_step.copy(),
+        }
+
+    def _seconds_left(self, until: np.ndarray) -> np.ndarray:
+        return np.maximum(until - self.time, 0) / 1000.0
+
+    def _start_at(self, start: Start) -> None:
+        self.state.level[:] = start.level
+        self.state.discharge[:] = start.discharge
+        start_from_levels(self.tables, self.state, self.stage)
+
+    def _take_over(self, end: dict[str, np.ndarray]) -> None:
+        for name in END_STATE_ARRAYS:
+            getattr(self.state, name)[:] = end["end_" + name]
+        self.pace.next_step[:] = end["end_next_step"]
+        for k, motion in enumerate(self.motions):
+            remaining = round(float(end["end_motion_remaining"][k]) * 1000.0)
+            motion.resume(float(end["end_target_opening"][k]), float(end["end_ordered_opening"][k]), remaining)
+        self.watch.surge_upstream[:] = end["end_surge_upstream"]
+        self.watch.surge_downstream[:] = end["end_surge_downstream"]
+        self.watch.surge_until[:, 0] = np.round(end["end_surge_remaining_upstream"] * 1000.0)
+        self.watch.surge_until[:, 1] = np.round(end["end_surge_remaining_downstream"] * 1000.0)
+        self.watch.settled_at[:] = np.round(end["end_settling_remaining"] * 1000.0)
+
+    def _new_rows(self):
+        network, timetable = self.network, self.timetable
+        spare = timetable.longest_step // timetable.every + 4
+        profiles = timetable.longest_step // timetable.profiles_every + 4
+        return new_rows(
+            BLOCK_ROWS + spare, BLOCK_ROWS * timetable.every // timetable.profiles_every + 2 * profiles,
+            network.gate_count, len(network.names.pools), network.offtake_count, network.canal_node_count,
+        )  # fmt: skip
+
+    def _new_watch(self) -> Watch:
+        network, gates, pools = self.network, self.network.gate_count, len(self.network.names.pools)
+        return Watch(
+            bank_level=np.nan_to_num(network.names.bank_level, nan=np.inf),
+            lining_level=np.nan_to_num(network.names.lining_level, nan=np.inf),
+            start_storage=np.zeros(1),
+            surge_upstream=np.zeros(gates),
+            surge_downstream=np.zeros(gates),
+            surge_until=np.zeros((gates, 2), np.int64),
+            settled_at=np.zeros(pools, np.int64),
+            level=np.zeros(network.channel.chainage.size),
+            link_discharge=np.zeros(network.node_count + 1),
+            chainages=np.zeros(JET_POINTS),
+            depths=np.zeros(JET_POINTS),
+        )
+
+    def _pool_volumes(self, canal: slice) -> float:
+        return float(np.sum(self.state.volume[canal]))
+
+    def _act(self) -> None:
+        """What people do at a stop: orders, and changes that leave a pool settling."""
+        before = self.forcing.now.copy()
+        self.forcing.value[:] = self.timetable.values_at(self.time)
+        self._note_changes(before)
+        while self.orders and self.orders[0].at <= self.time:
+            self._carry_out(self.orders.pop(0))
+
+    def _carry_out(self, order) -> None:
+        g = self.network.names.gates.index(order.gate)
+        motion = self.motions[g]
+        up, down = gate_levels(
+            self.network.gates, g, self.state.level, self.forcing.value[FORCING_HEAD], self.forcing.value[FORCING_TAIL]
+        )
+        wanted, note = self._wanted_opening(order, g, up, down)
+        opening = motion.opening
+        record = motion.order(self.time, order.kind, order.value, wanted, note)
+        self.records.append(record)
+        if record.is_final and math.isnan(record.completed):
+            return
+        self._note_move(g, up, down, opening, motion)
+
+    def _wanted_opening(self, order, g: int, up: float, down: float) -> tuple[float, str]:
+        motion = self.motions[g]
+        if order.kind == "opening":
+            return order.value, ""
+        if order.kind == "by":
+            return motion.ordered + order.value, ""
+        gates, shapes = self.network.gates, self.network.channel.shapes
+        law = UnderflowGate(*(float(v) for v in gates.law[g]))
+        opening, passed = opening_for_discharge(
+            law, shapes[gates.upstream_shape[g]], shapes[gates.downstream_shape[g]], up, down,
+            order.value, motion.gate.max_opening,
+        )  # fmt: skip
+        if abs(passed - order.value) > 1e-3 + 1e-6 * abs(order.value):
+            return opening, f"the gate passes {passed:.3f} m3/s at {opening:.3f} m with the present levels"
+        return opening, ""
+
+    def _note_move(self, g: int, up: float, down: float, opening: float, motion: GateMotion) -> None:
+        """Surge bounds of a move, and until when the pools above and below settle."""
+        heights = surge_bounds(self.network.channel, self.network.gates, g, up, down, opening, motion.target)
+        if abs(heights[2]) < LEAST_CHANGE:
+            return
+        arrival = max(motion.until, self.time)
+        for side, (bound, height) in enumerate(
+            ((self.watch.surge_upstream, heights[0]), (self.watch.surge_downstream, heights[1]))
+        ):
+            pool = self._pool_beside(g, side)
+            if pool is None:
+                continue
+            running = bound[g] if self.watch.surge_until[g, side] > self.time else 0.0
+            bound[g] = running + height if running * height >= 0.0 else max(running, height, key=abs)
+            settled = self._settled_after(pool, arrival)
+            self.watch.surge_until[g, side] = settled
+            self.watch.settled_at[pool] = max(self.watch.settled_at[pool], settled)
+
+    def _pool_beside(self, g: int, side: int) -> int | None:
+        """Index of the pool above (side 0) or below (side 1) a gate; None beyond the canal's ends."""
+        pools, gates = self.network.pools, self.network.gates
+        node = gates.upstream_node[g] if side == 0 else gates.downstream_node[g]
+        if node < 0 or node >= self.network.canal_node_count:
+            return None
+        return int(np.searchsorted(pools.last_node, node))
+
+    def _settled_after(self, pool: int, time: int) -> int:
+        pools = self.network.pools
+        seconds = round_trip(
+            self.network.channel, pools.first_node[pool], pools.last_node[pool], self.state.level, self.state.discharge
+        )
+        return time + round(1000.0 * seconds) if math.isfinite(seconds) else self.timetable.length + 1
+
+    def _note_changes(self, before: np.ndarray) -> None:
+        """Pools that a change of inflow, of the tail level or of a delivery leaves settling."""
+        if self.time == 0:
+            return
+        changed = np.abs(self.forcing.value - before) > LEAST_CHANGE
+        network = self.network
+        first = FORCING_GATES + network.gate_count
+        pools = set()
+        if changed[FORCING_HEAD] and network.links.gate[0] < 0:
+            pools.add(0)
+        if changed[FORCING_TAIL] and network.links.kind[-1] == TAIL_LEVEL:
+            pools.add(len(network.names.pools) - 1)
+        for k, node in enumerate(network.offtakes.node):
+            if changed[first + k] or changed[first + network.offtake_count + k]:
+                pools.add(int(np.searchsorted(network.pools.last_node, node)))
+        for pool in pools:
+            self.watch.settled_at[pool] = max(self.watch.settled_at[pool], self._settled_after(pool, self.time))
+
+    def _leg(self, until: int) -> None:
+        """Advance to the next stop."""
+        gates = slice(FORCING_GATES, FORCING_GATES + self.network.gate_count)
+        self.forcing.value[gates] = [motion.opening for motion in self.motions]
+        self.forcing.rate[:] = self.timetable.rates_between(self.time, until)
+        self.forcing.rate[gates] = [motion.rate() for motion in self.motions]
+        self.appointments.leg_start[0], self.pace.done[0] = self.time, 0.0
+        seconds, outcome = (until - self.time) / 1000.0, None
+        while outcome != LEG_DONE:
+            outcome = advance(
+                self.tables, self.state, self.middle, self.after, self.stage, self.totals, self.forcing, self.watch,
+                self.rows, self.pace, self.appointments, seconds, self.timetable.local_inertia,
+            )  # fmt: skip
+            if outcome == STEP_TOO_SMALL:
+                self.time += round(self.pace.done[0] * 1000.0)
+                self.flush()
+                raise RunError(f"no step could be solved {self.time / 1000.0:.1f} s after the start; the output ends there")
+            if outcome != LEG_DONE or self.rows.filled[0] >= BLOCK_ROWS:
+                self.flush()
+        self.time = until
+        for motion in self.motions:
+            motion.arrive(until)
+        set_forcing(self.forcing, seconds)
+
+    def _last_row(self) -> None:
+        """The state at the very end, which no leg begins."""
+        self.forcing.value[:] = self.forcing.now
+        self.forcing.rate[:] = 0.0
+        begin_leg(self.tables, self.state, self.stage, self.forcing)
+        due = self.appointments.due
+        if due[0] <= self.time:
+            write_now(self.tables, self.state, self.totals, self.watch, self.rows, self.forcing, self.time, due[1] <= self.time)
+
+
+def _order_arrays(records: list[OrderRecord]) -> dict[str, np.ndarray]:
+    return {
+        "order_time": np.array([record.time for record in records], np.int64),
+        "order_gate": np.array([record.gate for record in records], object),
+        "order_kind": np.array([KINDS.index(record.kind) for record in records], np.int8),
+        "order_value": np.array([record.value for record in records], float),
+        "order_opening_before": np.array([record.before for record in records], float),
+        "order_opening_after": np.array([record.after for record in records], float),
+        "order_completed": np.array([record.completed for record in records], float),
+        "order_status": np.array([record.status for record in records], np.int8),
+        "order_reason": np.array([record.reason for record in records], object),
+    }

@@ -1,0 +1,285 @@
+"""Steady water-surface profiles along a channel whose section and bed vary linearly between nodes.
+
+Subcritical profiles go upstream node by node with the one-discharge energy balance that the time loop uses for its
+reach links; supercritical profiles go downstream in substeps fine enough to place a jump.
+"""
+
+import math
+from typing import NamedTuple
+
+import numpy as np
+
+from toeline.constants import GRAVITY
+from toeline.hydraulics import status
+from toeline.hydraulics.critical_flow import critical_depth
+from toeline.hydraulics.cross_section import ALPHA, BETA, geometry, packed, static_moment
+from toeline.hydraulics.kernel import kernel
+
+DEPTH_STEP = 0.04
+"""Relative change of depth in one substep of a supercritical profile (choice: toe within 0.5 %)."""
+
+DRY_DEPTH, WET_DEPTH = 0.02, 0.10
+"""Depths [m] between which a drying node hands its say in the conveyance of a link to its upstream neighbour (choice)."""
+
+REACHED_END, TURNED_CRITICAL, FULL = 0, 1, 2
+
+
+class Channel(NamedTuple):
+    """A channel by its n nodes, downstream in order; between nodes everything varies linearly."""
+
+    chainage: np.ndarray  # (n) m
+    bed_level: np.ndarray  # (n) m above datum
+    shape: np.ndarray  # (n) int64, row of `shapes`
+    roughness: np.ndarray  # (n) Manning's n
+    transition_loss: np.ndarray  # (n) k of k·|ΔV²|/2g between a node and the next
+    shapes: np.ndarray  # (s, w) section arrays, see cross_section
+
+
+def channel(chainage, bed_level, sections, roughness, transition_loss=0.0) -> Channel:
+    """A `Channel` from plain sequences: one section array and one value a node (or one value for all)."""
+
+    nodes = np.asarray(chainage, float)
+    each = [np.ascontiguousarray(np.broadcast_to(np.asarray(v, float), nodes.shape)) for v in (bed_level, roughness, transition_loss)]
+    table = packed(list(sections))
+    return Channel(nodes, each[0], np.arange(nodes.size), each[1], each[2], table)
+
+
+@kernel
+def link_geometry(channel, node, weight, depth):
+    """Area, top width, perimeter, its slope [m², m, m, 1] and roughness at the fraction `weight` between a node and the next."""
+    a, t, p, dp = geometry(channel.shapes[channel.shape[node]], depth)
+    n = channel.roughness[node]
+    if weight > 0.0:
+        n += weight * (channel.roughness[node + 1] - n)
+        if channel.shape[node + 1] != channel.shape[node]:
+            a2, t2, p2, dp2 = geometry(channel.shapes[channel.shape[node + 1]], depth)
+            a, t = a + weight * (a2 - a), t + weight * (t2 - t)
+            p, dp = p + weight * (p2 - p), dp + weight * (dp2 - dp)
+    return a, t, p, dp, n
+
+
+@kernel
+def link_bed(channel, node, weight):
+    """Bed level [m] at the fraction `weight` between a node and the next."""
+    if weight <= 0.0:
+        return channel.bed_level[node]
+    return channel.bed_level[node] + weight * (channel.bed_level[node + 1] - channel.bed_level[node])
+
+
+@kernel
+def link_force(channel, node, weight, discharge, depth):
+    """Specific force M + βQ²/(gA) [m³] at the fraction `weight` between a node and the next."""
+    here = channel.shapes[channel.shape[node]]
+    moment, area, beta = static_moment(here, depth), geometry(here, depth)[0], here[BETA]
+    if weight > 0.0 and channel.shape[node + 1] != channel.shape[node]:
+        there = channel.shapes[channel.shape[node + 1]]
+        moment += weight * (static_moment(there, depth) - moment)
+        area += weight * (geometry(there, depth)[0] - area)
+        beta += weight * (there[BETA] - beta)
+    return moment + beta * discharge * discharge / (GRAVITY * area)
+
+
+@kernel
+def link_alpha(channel, node, weight):
+    """Velocity-head coefficient at the fraction `weight` between a node and the next."""
+    alpha = channel.shapes[channel.shape[node], ALPHA]
+    if weight > 0.0:
+        alpha += weight * (channel.shapes[channel.shape[node + 1], ALPHA] - alpha)
+    return alpha
+
+
+@kernel
+def link_critical_depth(channel, node, weight, discharge):
+    """Critical depth [m] at the fraction `weight` between a node and the next; see `critical_depth`."""
+    if weight <= 0.0 or channel.shape[node + 1] == channel.shape[node]:
+        return critical_depth(channel.shapes[channel.shape[node]], discharge)[0]
+    wanted = link_alpha(channel, node, weight) * discharge * discharge / GRAVITY
+    y = critical_depth(channel.shapes[channel.shape[node]], discharge)[0]
+    for _ in range(200):
+        area, width, _, _, _ = link_geometry(channel, node, weight, y)
+        step = math.log(wanted * width / (area * area * area)) / max(3.0 * y * width / area, 1.0)
+        y *= math.exp(min(max(step, -1.5), 1.5))
+        if abs(step) < 1e-12:
+            break
+    return y
+
+
+@kernel
+def _friction(area, perimeter, roughness, discharge):
+    """Friction slope of Manning from area and perimeter."""
+    return (roughness * discharge / area) ** 2 * (perimeter / area) ** (4.0 / 3.0)
+
+
+@kernel
+def supercritical_profile(channel, first, last, chainage, depth, discharge, chainage_out, depth_out):
+    """March the jet downstream by the energy equation from a chainage and a depth below critical.
+
+    Fills `chainage_out` and `depth_out` [m] and returns their count and how it ended: REACHED_END at node `last`,
+    TURNED_CRITICAL (the last point is critical), FULL where the output is. Friction is averaged over each substep; with
+    no change of section a substep is taken in depth (direct step), else in distance (standard step) (Chow 1959, ch. 10).
+    """
+    node = first
+    while node < last - 1 and channel.chainage[node + 1] <= chainage:
+        node += 1
+    x, y, count = chainage, depth, 1
+    chainage_out[0], depth_out[0] = x, y
+    while count < chainage_out.size:
+        if x >= channel.chainage[node + 1]:
+            node += 1
+            if node >= last:
+                return count, REACHED_END
+        x, y, critical = _substep(channel, node, x, y, discharge)
+        chainage_out[count], depth_out[count] = x, y
+        count += 1
+        if critical:
+            return count, TURNED_CRITICAL
+    return count, FULL
+
+
+@kernel
+def _substep(channel, node, x, y, discharge):
+    """Chainage and depth after one substep inside a link, and whether the flow turned critical there."""
+    span = channel.chainage[node + 1] - channel.chainage[node]
+    bed_slope = (channel.bed_level[node] - channel.bed_level[node + 1]) / span
+    weight = (x - channel.chainage[node]) / span
+    area, width, perimeter, _, n = link_geometry(channel, node, weight, y)
+    alpha = link_alpha(channel, node, weight)
+    head = alpha * discharge * discharge / (2.0 * GRAVITY * area * area)
+    friction = _friction(area, perimeter, n, discharge)
+    froude_squared = 2.0 * head * width / area
+    prismatic = channel.shape[node] == channel.shape[node + 1] and channel.roughness[node] == channel.roughness[node + 1]
+    rest = channel.chainage[node + 1] - x
+    if prismatic:
+        moved, y_next, critical = _step_in_depth(channel, node, y, head, friction, bed_slope, discharge)
+        if 0.0 < moved <= rest:
+            return x + moved, y_next, critical
+    gradient = abs(bed_slope - friction) / max(froude_squared - 1.0, 1e-3)
+    step = min(rest, DEPTH_STEP * y / max(gradient, 1e-9), 0.25 * span if not prismatic else rest)
+    x_next = channel.chainage[node + 1] if rest - step < 1e-9 else x + step
+    y_next, critical = _step_in_distance(channel, node, x, x_next, y, head, friction, discharge)
+    return x_next, y_next, critical
+
+
+@kernel
+def _step_in_depth(channel, node, y, head, friction, bed_slope, discharge):
+    """Distance to a depth 4 % on the way that the profile takes, the depth, and whether it is critical."""
+    section = channel.shapes[channel.shape[node]]
+    y_next = y * (1.0 + DEPTH_STEP) if friction > bed_slope else y / (1.0 + DEPTH_STEP)
+    area, width, perimeter, _ = geometry(section, y_next)
+    head_next = section[ALPHA] * discharge * discharge / (2.0 * GRAVITY * area * area)
+    critical = head_next * 2.0 * width <= area
+    if critical:
+        y_next = critical_depth(section, discharge)[0]
+        area, _, perimeter, _ = geometry(section, y_next)
+        head_next = section[ALPHA] * discharge * discharge / (2.0 * GRAVITY * area * area)
+    mean_friction = 0.5 * (friction + _friction(area, perimeter, channel.roughness[node], discharge))
+    return (y_next + head_next - y - head) / (bed_slope - mean_friction), y_next, critical
+
+
+@kernel
+def _step_in_distance(channel, node, x, x_next, y, head, friction, discharge):
+    """Depth at the end of a substep by Newton's method on the energy balance, and whether it turned critical."""
+    span = channel.chainage[node + 1] - channel.chainage[node]
+    w, w_next = (x - channel.chainage[node]) / span, (x_next - channel.chainage[node]) / span
+    step, loss = x_next - x, channel.transition_loss[node]
+    wanted = link_bed(channel, node, w) - link_bed(channel, node, w_next) + y + head - 0.5 * step * friction
+    alpha = link_alpha(channel, node, w_next)
+    critical = link_critical_depth(channel, node, w_next, discharge)
+    y_next = min(y, 0.98 * critical)
+    for _ in range(50):
+        area, width, perimeter, perimeter_slope, n = link_geometry(channel, node, w_next, y_next)
+        head_next = alpha * discharge * discharge / (2.0 * GRAVITY * area * area)
+        friction_next = _friction(area, perimeter, n, discharge)
+        towards = 1.0 if head_next >= head else -1.0
+        excess = y_next + head_next + 0.5 * step * friction_next + loss * towards * (head_next - head) - wanted
+        head_slope = -2.0 * head_next * width / area
+        friction_growth = friction_next / 3.0 * (4.0 * perimeter_slope / perimeter - 10.0 * width / area)
+        slope = 1.0 + head_slope * (1.0 + loss * towards) + 0.5 * step * friction_growth
+        if slope >= 0.0:
+            return critical, True
+        change = -excess / slope
+        y_next += max(change, -0.5 * y_next)
+        if y_next >= critical:
+            return critical, True
+        if abs(change) < 1e-12 * y_next:
+            return y_next, False
+    return critical, True
+
+
+@kernel
+def link_conveyance(k_up, k_down, dk_up, dk_down, depth_up, depth_down):
+    """Conveyance of a reach link [m³/s] and its derivatives to the upstream and downstream depth.
+
+    The mean of both nodes; as the shallower one dries the weight moves to the upstream node alone, so that water can enter
+    a dry cell and cannot leave an empty one. "Upstream" is the side the water comes from.
+    """
+    shallow = min(depth_up, depth_down)
+    if shallow >= WET_DEPTH:
+        return 0.5 * (k_up + k_down), 0.5 * dk_up, 0.5 * dk_down
+    s = max((shallow - DRY_DEPTH) / (WET_DEPTH - DRY_DEPTH), 0.0)
+    share = 1.0 - 0.5 * s * s * (3.0 - 2.0 * s)
+    tilt = -3.0 * s * (1.0 - s) / (WET_DEPTH - DRY_DEPTH) * (k_up - k_down)
+    from_up, from_down = (tilt, 0.0) if depth_up <= depth_down else (0.0, tilt)
+    return share * k_up + (1.0 - share) * k_down, share * dk_up + from_up, (1.0 - share) * dk_down + from_down
+
+
+@kernel
+def upstream_level(channel, node, level_down, discharge, point_loss):
+    """Level [m] at a node from the level at the next in steady subcritical flow, and a status.
+
+    z_i + αQ²/2gA_i² = z_{i+1} + αQ²/2gA_{i+1}² + Δx·Q²/K² + local losses, K the mean of both conveyances. Bisection on the
+    subcritical side; NO_SOLUTION (critical depth) where no subcritical depth balances.
+    """
+    section = channel.shapes[channel.shape[node]]
+    low = channel.bed_level[node] + max(critical_depth(section, discharge)[0], 1e-6)
+    if _energy_gap(channel, node, low, level_down, discharge, point_loss) > 0.0:
+        return low, status.NO_SOLUTION
+    high = max(low, level_down) + 1.0
+    while _energy_gap(channel, node, high, level_down, discharge, point_loss) < 0.0:
+        high += 1.0
+        if high > low + 1e3:
+            return math.nan, status.NO_SOLUTION
+    while high - low > 1e-14 * (1.0 + abs(high)):
+        middle = 0.5 * (low + high)
+        if middle <= low or middle >= high:
+            break
+        if _energy_gap(channel, node, middle, level_down, discharge, point_loss) > 0.0:
+            high = middle
+        else:
+            low = middle
+    return 0.5 * (low + high), status.OK
+
+
+@kernel
+def _energy_gap(channel, node, level, level_down, discharge, point_loss):
+    """Energy upstream less energy downstream and losses [m]."""
+    y_up, y_down = level - channel.bed_level[node], level_down - channel.bed_level[node + 1]
+    a_up, _, p_up, _, n_up = link_geometry(channel, node, 0.0, y_up)
+    a_down, _, p_down, _, n_down = link_geometry(channel, node + 1, 0.0, y_down)
+    k_up = a_up * (a_up / p_up) ** (2.0 / 3.0) / n_up
+    k_down = a_down * (a_down / p_down) ** (2.0 / 3.0) / n_down
+    k = link_conveyance(k_up, k_down, 0.0, 0.0, y_up, y_down)[0]
+    half = discharge * abs(discharge) / (2.0 * GRAVITY)
+    head_up = link_alpha(channel, node, 0.0) * discharge * discharge / (2.0 * GRAVITY * a_up * a_up)
+    head_down = link_alpha(channel, node + 1, 0.0) * discharge * discharge / (2.0 * GRAVITY * a_down * a_down)
+    mean_area = 0.5 * (a_up + a_down)
+    local = half * point_loss / (mean_area * mean_area)
+    local += channel.transition_loss[node] * half * abs(1.0 / (a_up * a_up) - 1.0 / (a_down * a_down))
+    friction = (channel.chainage[node + 1] - channel.chainage[node]) * discharge * abs(discharge) / (k * k)
+    return level + head_up - level_down - head_down - friction - local
+
+
+@kernel
+def subcritical_profile(channel, first, last, level, discharge, point_loss, levels_out):
+    """Levels [m] of steady flow from node `last`, whose level is given, up to node `first`, and a status.
+
+    `point_loss` holds k of k·V²/2g between each node and the next. NO_SOLUTION at the first node that would be critical;
+    levels above it are then not filled.
+    """
+    levels_out[last] = level
+    for node in range(last - 1, first - 1, -1):
+        z, flag = upstream_level(channel, node, levels_out[node + 1], discharge, point_loss[node])
+        if flag != status.OK:
+            return flag
+        levels_out[node] = z
+    return status.OK

@@ -1,0 +1,224 @@
+"""Where the jump below a gate stands, and how much tailwater there is to spare."""
+
+import math
+from typing import NamedTuple
+
+from toeline.constants import GRAVITY
+from toeline.hydraulics.critical_flow import supercritical_depth
+from toeline.hydraulics.cross_section import OWN, TRAPEZOID
+from toeline.hydraulics.gradually_varied_flow import (
+    link_bed,
+    link_critical_depth,
+    link_force,
+    link_geometry,
+    supercritical_profile,
+)
+from toeline.hydraulics.hydraulic_jump import (
+    LENGTH_NOT_DEFINED,
+    jump_length,
+    subcritical_depth_of_force,
+)
+from toeline.hydraulics.kernel import kernel
+from toeline.hydraulics.submerged_jump import jet_force
+
+JUMP_NONE, JUMP_DROWNED, JUMP_ON_APRON, JUMP_ON_PROTECTION, JUMP_BEYOND_PROTECTION, JUMP_SWEPT_OUT = range(6)
+
+
+class Jet(NamedTuple):
+    """A jet below a gate, at the contracted section."""
+
+    discharge: float  # m³/s
+    width: float  # m
+    depth: float  # m on the floor
+    full_depth: float  # m, spread over the whole section with the same energy
+    froude: float  # 1, over its own width
+    force: float  # m³, dead water beside it included
+
+
+class FreeJump(NamedTuple):
+    """A free jump by its toe; chainages along the channel."""
+
+    chainage: float  # m; NaN where the jet leaves the channel's end
+    depth: float  # m at the toe
+    froude: float  # 1 at the toe
+    sequent: float  # m
+    length: float  # m; NaN where not defined
+    length_quality: int
+    energy_loss: float  # m
+
+
+@kernel
+def jet_on_floor(section, jet_width, thickness, step, discharge):
+    """The jet of a gate after its fall of `step` [m] onto the floor: y₁ + q²/(2gy₁²) = h + q²/(2gh²) + step, as a `Jet`."""
+    q = discharge / jet_width
+    energy = thickness + q * q / (2.0 * GRAVITY * thickness * thickness) + step
+    depth = _alternate_depth(q, energy) if step > 0.0 else thickness
+    full, _ = supercritical_depth(section, discharge, energy)
+    froude = q / (depth * math.sqrt(GRAVITY * depth))
+    return Jet(discharge, jet_width, depth, full, froude, jet_force(section, discharge, jet_width, depth, depth))
+
+
+@kernel
+def _alternate_depth(q, energy):
+    """Supercritical root of y + q²/(2gy²) = E, in closed form."""
+    cosine = 1.0 - 27.0 * q * q / (4.0 * GRAVITY * energy * energy * energy)
+    angle = math.acos(min(max(cosine, -1.0), 1.0))
+    y = energy / 3.0 * (1.0 + 2.0 * math.cos((angle + 4.0 * math.pi) / 3.0))
+    for _ in range(2):
+        head = q * q / (2.0 * GRAVITY * y * y)
+        slope = 1.0 - 2.0 * head / y
+        if slope < -1e-3:
+            y -= (y + head - energy) / slope
+    return y
+
+
+@kernel
+def tail_depth_at(channel, levels, node, weight, discharge):
+    """Depth of the tailwater [m] between a node and the next; shallower than critical counts as critical."""
+    level = levels[node] + weight * (levels[node + 1] - levels[node])
+    depth = level - link_bed(channel, node, weight)
+    width_area = link_geometry(channel, node, weight, max(depth, 0.0))
+    area, width = width_area[0], width_area[1]
+    if area * area * area * GRAVITY > discharge * discharge * width:
+        return depth
+    return link_critical_depth(channel, node, weight, discharge)
+
+
+@kernel
+def _node_below(channel, first, last, chainage):
+    node = first
+    while node < last - 1 and channel.chainage[node + 1] <= chainage:
+        node += 1
+    return node, (chainage - channel.chainage[node]) / (channel.chainage[node + 1] - channel.chainage[node])
+
+
+@kernel
+def drowning_depth(section, jet):
+    """Tail depth [m] at which the jump would just stand at the contracted section."""
+    return subcritical_depth_of_force(section, jet.discharge, jet.force)[0]
+
+
+@kernel
+def free_jump(channel, first, last, levels, jet, chainages, depths, count):
+    """The jump on a jet's profile (`supercritical_profile`) under a tailwater given by the nodes' levels, as a `FreeJump`.
+
+    The toe is the first place where the jet's specific force has fallen to the tailwater's. Called for a jet whose force at
+    the start exceeds the tailwater's. Chainage NaN where that happens nowhere: swept out of the channel.
+    """
+    before, node = jet.force, first
+    x_before = chainages[0]
+    for k in range(count):
+        x, y = chainages[k], depths[k]
+        while node < last - 1 and channel.chainage[node + 1] <= x:
+            node += 1
+        weight = (x - channel.chainage[node]) / (channel.chainage[node + 1] - channel.chainage[node])
+        tail = tail_depth_at(channel, levels, node, weight, jet.discharge)
+        force = jet.force if k == 0 else link_force(channel, node, weight, jet.discharge, y)
+        excess = force - link_force(channel, node, weight, jet.discharge, tail)
+        if excess <= 0.0 and k > 0:
+            share = before / (before - excess)
+            toe = x_before + share * (x - x_before)
+            depth = depths[k - 1] + share * (y - depths[k - 1])
+            return _jump_at(channel, first, last, levels, jet.discharge, toe, depth)
+        before, x_before = excess, x
+    return FreeJump(math.nan, math.nan, math.nan, math.nan, math.nan, LENGTH_NOT_DEFINED, math.nan)
+
+
+@kernel
+def _jump_at(channel, first, last, levels, discharge, toe, depth):
+    node, weight = _node_below(channel, first, last, toe)
+    tail = tail_depth_at(channel, levels, node, weight, discharge)
+    area, width, _, _, _ = link_geometry(channel, node, weight, depth)
+    froude = discharge * math.sqrt(width / (GRAVITY * area)) / area
+    length, quality = link_jump_length(channel, node, weight, depth, froude, tail)
+    tail_area = link_geometry(channel, node, weight, tail)[0]
+    head = discharge * discharge / (2.0 * GRAVITY)
+    loss = depth + head / (area * area) - tail - head / (tail_area * tail_area)
+    return FreeJump(toe, depth, froude, tail, length, quality, max(loss, 0.0))
+
+
+@kernel
+def link_jump_length(channel, node, weight, depth, froude, sequent):
+    """`jump_length` in the section between a node and the next, not defined unless both are trapezoids."""
+    here, there = channel.shapes[channel.shape[node]], channel.shapes[channel.shape[node + 1]]
+    if here[0] != TRAPEZOID or there[0] != TRAPEZOID or sequent > min(here[1], there[1]):
+        return math.nan, LENGTH_NOT_DEFINED
+    bottom = here[OWN] + weight * (there[OWN] - here[OWN])
+    slope = here[OWN + 1] + weight * (there[OWN + 1] - here[OWN + 1])
+    return jump_length(bottom, slope, depth, froude, sequent)
+
+
+@kernel
+def sequent_in_link(channel, node, weight, discharge, depth):
+    """Sequent depth [m] of a supercritical depth in the section between a node and the next; Newton's method from above."""
+    force = link_force(channel, node, weight, discharge, depth)
+    area, width, _, _, _ = link_geometry(channel, node, weight, depth)
+    froude_squared = discharge * discharge * width / (GRAVITY * area * area * area)
+    y = 0.5 * depth * (math.sqrt(1.0 + 8.0 * froude_squared) - 1.0)
+    for _ in range(60):
+        area, width, _, _, _ = link_geometry(channel, node, weight, y)
+        slope = area - discharge * discharge * width / (GRAVITY * area * area)
+        if slope <= 0.0:
+            break
+        step = (link_force(channel, node, weight, discharge, y) - force) / slope
+        y -= step
+        if abs(step) < 1e-10 * y:
+            break
+    return y
+
+
+@kernel
+def _end_of_jump_from(channel, first, last, discharge, x, depth):
+    """Where a jump with its toe at x would end (its toe where the length is not defined), and its sequent depth."""
+    node, weight = _node_below(channel, first, last, x)
+    sequent = sequent_in_link(channel, node, weight, discharge, depth)
+    area, width, _, _, _ = link_geometry(channel, node, weight, depth)
+    froude = discharge * math.sqrt(width / (GRAVITY * area)) / area
+    length, _ = link_jump_length(channel, node, weight, depth, froude, sequent)
+    return (x if math.isnan(length) else x + length), sequent
+
+
+@kernel
+def protection_margin(channel, first, last, levels, discharge, chainages, depths, count, protection_end):
+    """How far the tailwater could fall [m], its whole profile alike, before the jump's end passes `protection_end`.
+
+    Negative: how much it is short. From the profile of the free jet: the toe whose jump ends at the end of the protection;
+    margin = tailwater level there less the level of the sequent depth. NaN where the jet turns critical before any such toe.
+    """
+    low, high = 0, count - 1
+    end_low, sequent = _end_of_jump_from(channel, first, last, discharge, chainages[low], depths[low])
+    if end_low > protection_end:
+        x = chainages[low]
+    else:
+        if _end_of_jump_from(channel, first, last, discharge, chainages[high], depths[high])[0] < protection_end:
+            return math.nan
+        while high - low > 1:
+            middle = (low + high) // 2
+            if _end_of_jump_from(channel, first, last, discharge, chainages[middle], depths[middle])[0] <= protection_end:
+                low = middle
+            else:
+                high = middle
+        x, sequent = _between(channel, first, last, discharge, chainages, depths, low, high, protection_end)
+    node, weight = _node_below(channel, first, last, x)
+    level = levels[node] + weight * (levels[node + 1] - levels[node])
+    return level - link_bed(channel, node, weight) - sequent
+
+
+@kernel
+def _between(channel, first, last, discharge, chainages, depths, low, high, protection_end):
+    """Toe and sequent depth of the jump that ends at `protection_end`, between two points of the profile."""
+    end_low, sequent_low = _end_of_jump_from(channel, first, last, discharge, chainages[low], depths[low])
+    end_high, sequent_high = _end_of_jump_from(channel, first, last, discharge, chainages[high], depths[high])
+    share = (protection_end - end_low) / (end_high - end_low) if end_high > end_low else 0.0
+    x = chainages[low] + share * (chainages[high] - chainages[low])
+    return x, sequent_low + share * (sequent_high - sequent_low)
+
+
+@kernel
+def jump_state(end_distance, apron_end, protection_end):
+    """State of a free jump by the distance of its end from the gate [m]."""
+    if end_distance <= apron_end:
+        return JUMP_ON_APRON
+    if end_distance <= protection_end:
+        return JUMP_ON_PROTECTION
+    return JUMP_BEYOND_PROTECTION

@@ -1,0 +1,379 @@
+"""From the scenario's pools, gates and offtakes to the tables of the time loop."""
+
+import math
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from toeline.hydraulics import cross_section, offtake, status
+from toeline.hydraulics.critical_flow import critical_depth
+from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH, Channel
+from toeline.hydraulics.underflow_gate import SHARP_EDGE_CONTRACTION, UnderflowGate
+from toeline.hydraulics.uniform_flow import normal_depth
+from toeline.network.tables import (
+    FREE_OVERFALL,
+    GATE,
+    HEAD,
+    INFLOW,
+    NORMAL_DEPTH,
+    RATING,
+    REACH,
+    TAIL_LEVEL,
+    Boundary,
+    Gates,
+    Links,
+    Names,
+    Network,
+    Nodes,
+    Offtakes,
+    Pools,
+)
+
+SUDDEN_CHANGE_LENGTH = 1.0
+"""Length [m] given to a change of section without a transition."""
+
+BARE_TAIL_LENGTH = 100.0
+"""Length [m] of level, unprotected floor below a tail gate whose floor is not described."""
+
+TAIL_BASIN_LENGTH = 20.0
+"""Length [m] of canal that stands for the water just below a tail gate with a rating beyond (choice)."""
+
+RESERVOIR_WIDTH = 1e9
+"""Width [m] of the section above a head gate: still water."""
+
+TAIL_KINDS = {"level": TAIL_LEVEL, "rating": RATING, "free overfall": FREE_OVERFALL, "normal depth": NORMAL_DEPTH}
+OFFTAKE_KINDS = {"demand": offtake.DEMAND, "orifice": offtake.ORIFICE, "weir": offtake.WEIR}
+
+
+def build_network(scenario) -> Network:
+    """Tables of a checked scenario.
+
+    Raises ScenarioError where a stretch is steep for the largest discharge that the day can bring.
+    """
+    return network_of(scenario.canal, scenario.day.period.spacing)
+
+
+def network_of(canal, spacing: float) -> Network:
+    """Tables of a canal with nodes at most `spacing` metres apart."""
+    lines = _lay_out(canal, spacing)
+    has_tail_gate = canal.gates and canal.gates[-1].downstream == "tail"
+    has_basin = bool(has_tail_gate) and canal.tail.kind != "level"
+    shapes = _Shapes(canal)
+    channel = _channel(lines, shapes)
+    canal_nodes = sum(len(line.nodes) for line in lines[: len(canal.pools)])
+    return Network(
+        channel=channel,
+        nodes=_nodes(lines, channel, canal_nodes, has_basin),
+        links=_links(canal, lines, canal_nodes, has_basin),
+        gates=_gates(canal, lines, channel, shapes, canal_nodes),
+        offtakes=_offtakes(canal, lines, channel),
+        boundary=_boundary(canal),
+        pools=_pools(lines[: len(canal.pools)]),
+        has_tail_basin=has_basin,
+        names=_names(canal, lines, canal_nodes),
+    )
+
+
+@dataclass
+class _Node:
+    """A node while it is laid out: sections by name, the second one blended in by weight."""
+
+    distance: float  # m from the start of its line
+    bed: float
+    section: str
+    blend: tuple[str, float] | None
+    surface: str
+    transition_loss: float = 0.0  # of the link to the next node
+
+
+@dataclass
+class _Line:
+    """The nodes of a pool, or of the floor beyond the tail gate."""
+
+    start: float  # m from the head of the canal
+    nodes: list[_Node] = field(default_factory=list)
+    first_index: int = 0
+
+    @property
+    def last_index(self) -> int:
+        return self.first_index + len(self.nodes) - 1
+
+
+def _lay_out(canal, spacing: float) -> list[_Line]:
+    lines, start, index = [], 0.0, 0
+    for pool in canal.pools:
+        line = _Line(start, _pool_nodes(pool.stretches, pool.bed_level, spacing), index)
+        lines.append(line)
+        start, index = start + line.nodes[-1].distance, index + len(line.nodes)
+    if canal.gates and canal.gates[-1].downstream == "tail":
+        lines.append(_Line(start, _tail_floor(canal, spacing), index))
+    return lines
+
+
+def _tail_floor(canal, spacing: float) -> list[_Node]:
+    tail, gate = canal.tail, canal.gates[-1]
+    bed = tail.floor_level if tail.floor_level is not None else gate.sill_level
+    if tail.stretches:
+        return _pool_nodes(tail.stretches, bed, spacing)
+    last = canal.pools[-1].stretches[-1]
+    section = tail.section or last.section
+    surface = tail.surface or ""
+    return [_Node(d, bed, section, None, surface) for d in (0.0, BARE_TAIL_LENGTH)]
+
+
+def _pool_nodes(stretches, bed: float, spacing: float) -> list[_Node]:
+    """Nodes at both ends of every stretch and in between; a change of section is spread over a transition."""
+    first = stretches[0]
+    nodes = [_Node(0.0, bed, first.section, None, first.surface)]
+    before = first.section
+    for stretch in stretches:
+        length, level = stretch.length, nodes[-1].bed
+        blend = stretch.section != before
+        if blend and not stretch.transition:
+            sudden = min(SUDDEN_CHANGE_LENGTH, 0.5 * length)
+            _append(nodes, stretch, sudden, spacing, before)
+            length, blend = length - sudden, False
+        _append(nodes, stretch, length, spacing, before if blend else None)
+        nodes[-1].bed = level - stretch.slope * stretch.length
+        before = stretch.section
+    return nodes
+
+
+def _append(nodes: list[_Node], stretch, length: float, spacing: float, blended_from: str | None) -> None:
+    """Add the nodes of one length of a stretch behind those already laid."""
+    start, bed = nodes[-1].distance, nodes[-1].bed
+    nodes[-1].surface = stretch.surface
+    count = max(1, math.ceil(length / spacing - 1e-9))
+    for k in range(1, count + 1):
+        weight = k / count
+        blend = (blended_from, 1.0 - weight) if blended_from and k < count else None
+        nodes[-1].transition_loss = stretch.transition_loss if blended_from else 0.0
+        nodes.append(
+            _Node(start + length * weight, bed - stretch.slope * length * weight, stretch.section, blend, stretch.surface)
+        )
+
+
+class _Shapes:
+    """Section arrays by name and blend, each once."""
+
+    def __init__(self, canal):
+        self.sections = {name: _section(section) for name, section in canal.sections.items()}
+        self.roughness = {name: section.roughness for name, section in canal.sections.items()}
+        self.rows: list[np.ndarray] = []
+        self.index: dict[tuple, int] = {}
+
+    def row(self, name: str, blend: tuple[str, float] | None) -> int:
+        key = (name, blend)
+        if key not in self.index:
+            array = self.sections[name]
+            if blend is not None:
+                array = cross_section.blended(array, self.sections[blend[0]], blend[1])
+            self.index[key] = self.add(array)
+        return self.index[key]
+
+    def add(self, array: np.ndarray) -> int:
+        self.rows.append(array)
+        return len(self.rows) - 1
+
+    def roughness_at(self, name: str, blend: tuple[str, float] | None) -> float:
+        n = self.roughness[name]
+        return n if blend is None else n + blend[1] * (self.roughness[blend[0]] - n)
+
+
+def _section(section) -> np.ndarray:
+    """Section array of the scenario's section; walls are vertical above the bank where one is given."""
+    alpha, beta = section.velocity_coefficient, section.momentum_coefficient
+    top = section.bank_height if section.bank_height is not None else math.inf
+    if section.shape == "points":
+        stations, levels = zip(*section.points, strict=True)
+        return cross_section.surveyed(stations, levels, alpha, beta)
+    if section.shape == "circle":
+        return cross_section.circle(section.diameter, alpha, beta)
+    width = section.bottom_width if section.shape != "triangle" else 0.0
+    slope = section.side_slope if section.shape != "rectangle" else 0.0
+    return cross_section.trapezoid(width, slope, top, alpha, beta)
+
+
+def _channel(lines: list[_Line], shapes: _Shapes) -> Channel:
+    nodes = [(line, node) for line in lines for node in line.nodes]
+    shape = np.array([shapes.row(node.section, node.blend) for _, node in nodes], np.int64)
+    shapes.add(cross_section.rectangle(RESERVOIR_WIDTH))
+    return Channel(
+        chainage=np.array([line.start + node.distance for line, node in nodes]),
+        bed_level=np.array([node.bed for _, node in nodes]),
+        shape=shape,
+        roughness=np.array([shapes.roughness_at(node.section, node.blend) for _, node in nodes]),
+        transition_loss=np.array([node.transition_loss for _, node in nodes]),
+        shapes=cross_section.packed(shapes.rows),
+    )
+
+
+def _nodes(lines: list[_Line], channel: Channel, canal_nodes: int, has_basin: bool) -> Nodes:
+    count = canal_nodes + int(has_basin)
+    cell = np.zeros(count)
+    for line in lines:
+        last = min(line.last_index, canal_nodes - 1)
+        half = 0.5 * np.diff(channel.chainage[line.first_index : last + 1])
+        cell[line.first_index : last] += half
+        cell[line.first_index + 1 : last + 1] += half
+    if has_basin:
+        cell[-1] = TAIL_BASIN_LENGTH
+    at_dry = np.array([cross_section.geometry(row, DRY_DEPTH)[:3] for row in channel.shapes])
+    return Nodes(cell, *(np.ascontiguousarray(column) for column in at_dry.T))
+
+
+def _links(canal, lines: list[_Line], canal_nodes: int, has_basin: bool) -> Links:
+    count = canal_nodes + int(has_basin)
+    kind, gate = np.full(count + 1, REACH, np.int64), np.full(count + 1, -1, np.int64)
+    length, point_loss = np.zeros(count + 1), np.zeros(count + 1)
+    for pool, line in zip(canal.pools, lines, strict=False):
+        for k in range(1, len(line.nodes)):
+            length[line.first_index + k] = line.nodes[k].distance - line.nodes[k - 1].distance
+        for loss in pool.point_losses:
+            ends = [node.distance for node in line.nodes[1:]]
+            point_loss[line.first_index + 1 + int(np.searchsorted(ends, loss.chainage))] += loss.coefficient
+    kind[0] = INFLOW
+    kind[count] = TAIL_KINDS[canal.tail.kind]
+    length[count] = 1.0 if kind[count] == TAIL_LEVEL else 0.0
+    for g, link in enumerate(_gate_links(canal, lines)):
+        kind[link], gate[link], length[link] = GATE, g, 0.0
+    return Links(kind, length, point_loss, gate)
+
+
+def _gate_links(canal, lines: list[_Line]) -> list[int]:
+    """The link of every gate: the one above the first node of the pool below it."""
+    starts = {pool.name: line.first_index for pool, line in zip(canal.pools, lines, strict=False)}
+    starts["tail"] = lines[len(canal.pools) - 1].last_index + 1
+    return [starts[gate.downstream] for gate in canal.gates]
+
+
+def _gates(canal, lines: list[_Line], channel: Channel, shapes: _Shapes, canal_nodes: int) -> Gates:
+    names = [pool.name for pool in canal.pools] + ["tail"]
+    below = [lines[names.index(gate.downstream)] for gate in canal.gates]
+    above = [HEAD if gate.upstream == "head" else lines[names.index(gate.upstream)].last_index for gate in canal.gates]
+    reservoir = len(shapes.rows) - 1
+    law, ends = [], []
+    for gate, up, line in zip(canal.gates, above, below, strict=True):
+        floor = float(channel.bed_level[line.first_index])
+        bed = gate.sill_level if up == HEAD else float(channel.bed_level[up])
+        law.append(gate_law(gate, floor, bed))
+        ends.append(_protected_ends(canal, line))
+    return Gates(
+        law=np.array(law, float).reshape(len(law), len(UnderflowGate._fields)),
+        upstream_node=np.array(above, np.int64),
+        downstream_node=np.array([line.first_index for line in below], np.int64),
+        upstream_shape=np.array([reservoir if up == HEAD else channel.shape[up] for up in above], np.int64),
+        downstream_shape=np.array([channel.shape[line.first_index] for line in below], np.int64),
+        floor_last=np.array([line.last_index for line in below], np.int64),
+        apron_end=np.array([end[0] for end in ends], float),
+        protection_end=np.array([end[1] for end in ends], float),
+    )
+
+
+def gate_law(gate, floor_level: float, upstream_bed_level: float) -> UnderflowGate:
+    """The law's view of a gate of the scenario."""
+    return UnderflowGate(
+        width=gate.bays * gate.bay_width,
+        sill_level=gate.sill_level,
+        floor_level=floor_level,
+        upstream_bed_level=upstream_bed_level,
+        contraction=gate.contraction if gate.contraction is not None else SHARP_EDGE_CONTRACTION,
+        radius=gate.radius if gate.kind == "radial" else 0.0,
+        pinion_height=gate.pinion_height if gate.kind == "radial" else 0.0,
+        discharge_factor=gate.discharge_factor,
+        leaf_height=gate.leaf_height if gate.leaf_height is not None else math.inf,
+        leaf_weir_coefficient=gate.leaf_weir_coefficient,
+        leakage=gate.leakage,
+    )
+
+
+def _protected_ends(canal, line: _Line) -> tuple[float, float]:
+    """Where the concrete apron ends, and the last protected surface without a gap [m from the gate]."""
+    apron = protection = 0.0
+    on_apron = True
+    for node, following in zip(line.nodes[:-1], line.nodes[1:], strict=True):
+        surface = canal.surfaces.get(node.surface)
+        if surface is None or not surface.protected:
+            break
+        on_apron = on_apron and surface.apron
+        apron = following.distance if on_apron else apron
+        protection = following.distance
+    return apron, protection
+
+
+def _offtakes(canal, lines: list[_Line], channel: Channel) -> Offtakes:
+    """Every offtake at the node nearest to it."""
+    names = [pool.name for pool in canal.pools]
+    nodes = []
+    for take in canal.offtakes:
+        line = lines[names.index(take.pool)]
+        distances = np.array([node.distance for node in line.nodes])
+        nodes.append(line.first_index + int(np.argmin(np.abs(distances - take.chainage))))
+    sills = [
+        take.sill_level if take.sill_level is not None else channel.bed_level[node]
+        for take, node in zip(canal.offtakes, nodes, strict=True)
+    ]
+    return Offtakes(
+        node=np.array(nodes, np.int64),
+        kind=np.array([OFFTAKE_KINDS[take.kind] for take in canal.offtakes], np.int64),
+        sill_level=np.array(sills, float),
+        width=np.array([take.width or 0.0 for take in canal.offtakes], float),
+        coefficient=np.array([take.coefficient or 0.0 for take in canal.offtakes], float),
+    )
+
+
+def _boundary(canal) -> Boundary:
+    rating = np.array(canal.tail.rating or [[0.0, 0.0], [1.0, 1.0]], float)
+    return Boundary(
+        np.array([canal.tail.slope or 0.0]), np.ascontiguousarray(rating[:, 0]), np.ascontiguousarray(rating[:, 1])
+    )
+
+
+def _pools(lines: list[_Line]) -> Pools:
+    return Pools(
+        np.array([line.first_index for line in lines], np.int64), np.array([line.last_index for line in lines], np.int64)
+    )
+
+
+def _names(canal, lines: list[_Line], canal_nodes: int) -> Names:
+    surfaces = tuple(canal.surfaces)
+    nodes = [node for line in lines for node in line.nodes][:canal_nodes]
+    limits = {name: surface.velocity_limit for name, surface in canal.surfaces.items()}
+    return Names(
+        pools=tuple(pool.name for pool in canal.pools),
+        gates=tuple(gate.name for gate in canal.gates),
+        offtakes=tuple(take.name for take in canal.offtakes),
+        surfaces=surfaces,
+        node_surface=np.array([surfaces.index(node.surface) for node in nodes], np.int8),
+        velocity_limit=np.array([_or_nan(limits[node.surface]) for node in nodes]),
+        lining_level=np.array([_line_level(canal, node, "lining_height") for node in nodes]),
+        bank_level=np.array([_line_level(canal, node, "bank_height") for node in nodes]),
+        target_level=np.array([_or_nan(pool.target_level) for pool in canal.pools]),
+    )
+
+
+def _or_nan(value: float | None) -> float:
+    return math.nan if value is None else value
+
+
+def _line_level(canal, node: _Node, height: str) -> float:
+    """Level of the lining's or the bank's top at a node; through a transition it goes from one height to the other."""
+    here = _or_nan(getattr(canal.sections[node.section], height))
+    if node.blend is None:
+        return node.bed + here
+    there = _or_nan(getattr(canal.sections[node.blend[0]], height))
+    return node.bed + here + node.blend[1] * (there - here)
+
+
+def steep_stretches(canal, discharge: float) -> list[tuple[int, int, float, float]]:
+    """Stretches whose normal depth is below critical: pool index, stretch index, normal and critical depth [m]."""
+    found = []
+    sections = {name: _section(section) for name, section in canal.sections.items()}
+    for p, pool in enumerate(canal.pools):
+        for s, stretch in enumerate(pool.stretches):
+            section, n = sections[stretch.section], canal.sections[stretch.section].roughness
+            normal, flag = normal_depth(section, n, stretch.slope, discharge)
+            critical, _ = critical_depth(section, discharge)
+            if flag == status.OK and normal < critical:
+                found.append((p, s, normal, critical))
+    return found

@@ -1,0 +1,95 @@
+"""Everything that is known in advance of the day: series, orders, and when the time loop has to stop for them."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL
+from toeline.scenario.series import Series
+
+HOUR_MS = 3_600_000
+
+
+@dataclass(frozen=True)
+class Timetable:
+    """The day on an integer clock [ms from the start of the period]."""
+
+    start_epoch_ms: int
+    length: int
+    tolerance: float  # m
+    longest_step: int  # ms
+    local_inertia: bool
+    every: int  # ms, rows
+    profiles_every: int  # ms
+    series: dict  # forcing index → Series
+    orders: tuple  # scenario orders by time
+    rules_of_gates: tuple  # scenario gates, for travel, hoist and bands
+    gate_count: int
+    offtake_count: int
+
+    def stops(self) -> np.ndarray:
+        """Times [ms] at which the loop has to stop: changes, orders, whole hours of the clock, the end."""
+        first_hour = -self.start_epoch_ms % HOUR_MS
+        times = [np.arange(first_hour, self.length, HOUR_MS)]
+        times += [np.asarray(series.times) for series in self.series.values()]
+        times.append(np.array([order.at for order in self.orders], np.int64))
+        all_times = np.unique(np.concatenate(times).astype(np.int64))
+        inside = all_times[(all_times > 0) & (all_times < self.length)]
+        return np.append(inside, self.length)
+
+    def values_at(self, time: int) -> np.ndarray:
+        """Forcing [SI] at a time, gate openings left at zero."""
+        value = np.zeros(self.forcing_size)
+        for index, series in self.series.items():
+            value[index] = series.at(time)
+        return value
+
+    def rates_between(self, time: int, until: int) -> np.ndarray:
+        """Rates of change [SI a second] between two stops."""
+        rate = np.zeros(self.forcing_size)
+        for index, series in self.series.items():
+            if series.shape == "lines":
+                rate[index] = (series.at(until) - series.at(time)) * 1000.0 / (until - time)
+        return rate
+
+    @property
+    def forcing_size(self) -> int:
+        """Head, tail, an opening a gate, a demand and an opening an offtake."""
+        return FORCING_GATES + self.gate_count + 2 * self.offtake_count
+
+
+def timetable_of(scenario, network) -> Timetable:
+    """The day of a checked scenario on the integer clock."""
+    day, canal = scenario.day, scenario.canal
+    period = day.period
+    return Timetable(
+        start_epoch_ms=round(period.start.timestamp() * 1000),
+        length=period.length_ms,
+        tolerance=period.level_tolerance,
+        longest_step=period.longest_step_ms,
+        local_inertia=period.local_inertia,
+        every=day.output.every_ms,
+        profiles_every=day.output.profiles_every_ms,
+        series=_series(day, canal, network),
+        orders=scenario.orders,
+        rules_of_gates=tuple(canal.gates),
+        gate_count=network.gate_count,
+        offtake_count=network.offtake_count,
+    )
+
+
+def _series(day, canal, network) -> dict:
+    """Every forcing but the gate openings as a series, constants too."""
+
+    def constant(value: float) -> Series:
+        return Series(np.array([0], np.int64), np.array([value]), "steps")
+
+    head = day.inflow if canal.head.kind == "inflow" else day.head or constant(canal.head.level)
+    tail = day.tail or constant(canal.tail.level if canal.tail.level is not None else 0.0)
+    series = {FORCING_HEAD: head, FORCING_TAIL: tail}
+    first = FORCING_GATES + network.gate_count
+    count = network.offtake_count
+    for k, take in enumerate(canal.offtakes):
+        series[first + k] = day.deliveries.get(take.name, constant(0.0 if take.kind == "demand" else np.nan))
+        series[first + count + k] = day.offtake_openings.get(take.name, constant(take.opening or 0.0))
+    return series

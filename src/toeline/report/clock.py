@@ -1,0 +1,38 @@
+"""Times and durations as people say them."""
+
+from datetime import UTC, datetime, time, timedelta
+
+
+def later(start: datetime, seconds: float) -> datetime:
+    """The local time so long after the start; elapsed time, whatever the clocks there do meanwhile."""
+    return (start.astimezone(UTC) + timedelta(seconds=seconds)).astimezone(start.tzinfo)
+
+
+def clock_text(moment: datetime, start: datetime) -> str:
+    """A local time of a period that starts at `start`: "07:12" on its first day, with the date on others.
+
+    The midnight that ends the first day is "24:00". Where the clocks have changed since the start, the offset from
+    UTC stands beside the time.
+    """
+    moment = later(moment, 30).replace(second=0, microsecond=0)
+    text = moment.strftime("%H:%M")
+    if moment.date() > start.date():
+        ends_first_day = moment.time() == time() and moment.date() == start.date() + timedelta(days=1)
+        text = "24:00" if ends_first_day else moment.strftime("%Y-%m-%d %H:%M")
+    return text if moment.utcoffset() == start.utcoffset() else f"{text} ({moment:%z})"
+
+
+def span_text(begin: datetime, end: datetime, start: datetime) -> str:
+    """From when to when, and how long that is, in a period that starts at `start`."""
+    elapsed = (end.astimezone(UTC) - begin.astimezone(UTC)).total_seconds()
+    return f"{clock_text(begin, start)} to {clock_text(end, start)} ({duration_text(elapsed)})"
+
+
+def duration_text(seconds: float) -> str:
+    """A duration to the minute: "51 min", "2 h 05 min", "24 h"."""
+    if 0 < seconds < 30:
+        return "under 1 min"
+    hours, minutes = divmod(round(seconds / 60), 60)
+    if not hours:
+        return f"{minutes} min"
+    return f"{hours} h {minutes:02d} min" if minutes else f"{hours} h"

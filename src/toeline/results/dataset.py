@@ -1,0 +1,132 @@
+"""The run as a labelled dataset: collected in memory, or opened from a file, with the same metadata."""
+
+import os
+from collections.abc import Mapping
+from datetime import UTC, datetime, timedelta, timezone, tzinfo
+from pathlib import Path
+from zoneinfo import ZoneInfo
+
+import numpy as np
+import xarray as xr
+
+from toeline.errors import UsageError
+from toeline.results.encoding import (
+    Rows,
+    cf_attributes,
+    end_state_values,
+    fill_value,
+    rows_by_dimension,
+    sizes_of,
+    static_values,
+    surface_names_of,
+)
+from toeline.results.provenance import SOURCE_PREFIX
+from toeline.results.run_file import is_being_written
+from toeline.results.variables import GROWING_DIMENSIONS, VARIABLES, growing
+
+_NEVER_WRITTEN = 9e36
+"""Just below the value that NetCDF gives to float64 values that were never written."""
+
+
+class DatasetSink:
+    """Collects a run in memory; `dataset` is there once the run has closed the sink."""
+
+    def __init__(self, static: Mapping[str, np.ndarray], attributes: Mapping[str, str], start: datetime):
+        self._attributes = dict(attributes)
+        self._start = start
+        self._static = static_values(static)
+        self._sizes = sizes_of(static)
+        self._parts: dict[str, list[Rows]] = {dimension: [self._no_rows(dimension)] for dimension in GROWING_DIMENSIONS}
+        self._dataset: xr.Dataset | None = None
+
+    @property
+    def dataset(self) -> xr.Dataset:
+        """The run, decoded, as `open_run` gives it."""
+        if self._dataset is None:
+            raise RuntimeError("the run has not closed this sink yet")
+        return self._dataset
+
+    def write(self, block: Mapping[str, np.ndarray]) -> None:
+        """Keep a copy of the rows of a block, in any number."""
+        for dimension, rows in rows_by_dimension(block).items():
+            self._parts[dimension].append(rows)
+
+    def close(self, outcome: str, end_state: Mapping[str, np.ndarray] | None = None) -> None:
+        """Join the rows into the dataset."""
+        values = self._static | end_state_values(end_state or {})
+        for parts in self._parts.values():
+            values |= {name: np.concatenate([rows[name] for rows in parts]) for name in parts[0]}
+        self._dataset = self._decoded(values, self._attributes | {"outcome": outcome})
+
+    def _no_rows(self, dimension: str) -> Rows:
+        shapes = {v: (0, *(self._sizes[d] for d in v.dimensions[1:])) for v in growing(dimension)}
+        return {v.name: np.empty(shape, object if v.dtype == "text" else v.dtype) for v, shape in shapes.items()}
+
+    def _decoded(self, values: Rows, attributes: dict[str, str]) -> xr.Dataset:
+        surface_names = surface_names_of(attributes)
+        variables = {}
+        for name in (name for name in VARIABLES if name in values):
+            variable = VARIABLES[name]
+            cf = cf_attributes(variable, self._start, surface_names)
+            if (fill := fill_value(variable)) is not None:
+                cf["_FillValue"] = fill
+            array = values[name].astype(str) if variable.dtype == "text" else values[name]
+            variables[name] = xr.Variable(variable.dimensions, array, cf)
+        return xr.decode_cf(xr.Dataset(variables, attrs=attributes)).load()
+
+
+def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
+    """Open a run file, finished or not, values loaded when needed; close it after use, or open it in a `with`.
+
+    Of a run that was killed, rows that never reached the disk are left out; attribute `outcome` says how it ended.
+    UsageError for a file that is missing, still being written, or no run of Toeline.
+    """
+    file = _existing(path)
+    try:
+        raw = xr.open_dataset(file, engine="netcdf4", decode_times=False)
+    except (OSError, ValueError) as error:
+        raise UsageError(f"{file} is no readable NetCDF file") from error
+    if not str(raw.attrs.get("source", "")).startswith(SOURCE_PREFIX):
+        raw.close()
+        raise UsageError(f"{file} is not the file of a Toeline run")
+    run = xr.decode_cf(raw.isel(_rows_on_disk(raw)))
+    run.set_close(raw.close)
+    return run
+
+
+def _existing(path: str | os.PathLike[str]) -> Path:
+    file = Path(path)
+    if not file.exists():
+        partial = file.with_name(file.name + ".partial")
+        hint = f"; an unfinished run is in {partial}" if partial.exists() else ""
+        raise UsageError(f"{file} does not exist{hint}")
+    if not file.is_file():
+        raise UsageError(f"{file} is not a file")
+    if is_being_written(file):
+        raise UsageError(f"{file} is being written by a run that is still going on; open it when that has ended")
+    return file
+
+
+def _rows_on_disk(raw: xr.Dataset) -> dict[str, slice]:
+    """The rows along each clock that were written: a row never written has the fill value as its time."""
+    counts = {clock: int(np.sum(raw[clock].values < _NEVER_WRITTEN)) for clock in ("time", "profile_time")}
+    return {clock: slice(0, count) for clock, count in counts.items()}
+
+
+def timezone_of(run: xr.Dataset) -> tzinfo:
+    """Time zone in which people read the run: its zone, else the offset of its start."""
+    if run.attrs["zone"]:
+        return ZoneInfo(run.attrs["zone"])
+    offset = datetime.strptime(run.attrs["utc_offset"], "%z").utcoffset()
+    return timezone(offset or timedelta(0))
+
+
+def utc(instant: np.datetime64) -> datetime:
+    """An instant of the run as an aware time, exact to the microsecond."""
+    microseconds = int((instant - np.datetime64(0, "us")) / np.timedelta64(1, "us"))
+    return datetime(1970, 1, 1, tzinfo=UTC) + timedelta(microseconds=microseconds)
+
+
+def local_time(run: xr.Dataset, instant: np.datetime64) -> datetime:
+    """An instant of the run as people there read it."""
+    return utc(instant).astimezone(timezone_of(run))

@@ -1,0 +1,250 @@
+"""Every output variable, said once: the writer, the dataset in memory, axis labels and the reference page read this.
+
+A variable whose first dimension is `time`, `profile_time` or `order` grows while the run goes on; one of the state
+dimensions is written at the end of the run; all others are fixed before it starts.
+"""
+
+from dataclasses import dataclass
+from typing import Literal
+
+GROWING_DIMENSIONS = ("time", "profile_time", "order")
+CLOCK = "seconds since the start of the period"
+"""Unit of all times in the registry; the file names the instant itself, in UTC."""
+
+FLOW_STATES = (
+    "closed", "free", "near_modular_limit", "drowned", "clear_of_water", "clear_and_drowned", "overtopped", "reverse",
+)
+DISCHARGE_QUALITIES = ("good", "near_modular_limit", "lip_near_surface", "very_drowned", "reverse")
+JUMP_STATES = ("none", "drowned", "on_apron", "on_protection", "beyond_protection", "swept_out_of_pool")
+JUMP_KINDS = ("none", "undular", "weak", "oscillating", "steady", "strong")
+LENGTH_QUALITIES = ("not_defined", "good", "poorly_known")
+ORDER_KINDS = ("opening", "by", "discharge")
+ORDER_STATUSES = ("accepted", "trimmed", "refused", "replaced")
+
+
+@dataclass(frozen=True)
+class Variable:
+    """One output variable.
+
+    `dtype` is how it is stored: f4, f8, i1, i4 or text. `standard_name` is set only where the CF table has one.
+    `flags` are the meanings of the values 0, 1, 2, ...; `companions` name the variables that qualify this one.
+    """
+
+    name: str
+    dimensions: tuple[str, ...]
+    unit: str | None
+    long_name: str
+    comment: str = ""
+    standard_name: str | None = None
+    dtype: Literal["f4", "f8", "i1", "i4", "text"] = "f4"
+    flags: tuple[str, ...] = ()
+    companions: tuple[str, ...] = ()
+    is_state: bool = False
+
+    @property
+    def grows(self) -> bool:
+        """Whether rows are added while the run goes on."""
+        return bool(self.dimensions) and self.dimensions[0] in GROWING_DIMENSIONS
+
+    @property
+    def cell_methods(self) -> str | None:
+        """All values along a time axis hold at the instant, none is a mean over the step."""
+        along_time = self.dimensions[:1] in (("time",), ("profile_time",)) and self.dimensions != (self.name,)
+        return f"{self.dimensions[0]}: point" if along_time and not self.flags else None
+
+
+_GATES, _POOLS, _OFFTAKES, _PROFILE = ("time", "gate"), ("time", "pool"), ("time", "offtake"), ("profile_time", "node")
+_SURFACE = "water_surface_height_above_reference_datum"
+_LEVEL = "above the datum of the canal file, whose altitude is not known here"
+_JUMP = ("jump_state", "jump_length_quality")
+
+
+def _flag(name: str, dimensions: tuple[str, ...], meaning: str, flags: tuple[str, ...], comment: str = "",
+          standard_name: str | None = None) -> Variable:
+    return Variable(name, dimensions, None, meaning, comment, standard_name, dtype="i1", flags=flags)
+
+
+def _text(name: str, dimensions: tuple[str, ...], meaning: str, comment: str = "") -> Variable:
+    return Variable(name, dimensions, None, meaning, comment, dtype="text")
+
+
+def _state(name: str, dimensions: tuple[str, ...], unit: str, meaning: str, comment: str = "") -> Variable:
+    return Variable(name, dimensions, unit, meaning, comment, dtype="f8", is_state=True)
+
+
+_CLOCKS = (
+    Variable("time", ("time",), CLOCK, "time of the output step", standard_name="time", dtype="f8"),
+    Variable("profile_time", ("profile_time",), CLOCK, "time of the long profile", standard_name="time", dtype="f8"),
+)
+
+_GATE_SERIES = (
+    Variable("gate_opening", _GATES, "m", "opening of the gate, lip above sill", "as moved, not as ordered"),
+    Variable("gate_discharge", _GATES, "m3 s-1", "discharge of the gate", "downstream positive; all bays together",
+             companions=("gate_flow_state", "discharge_quality")),
+    _flag("gate_flow_state", _GATES, "state of the flow through the gate", FLOW_STATES, standard_name="status_flag"),
+    _flag("discharge_quality", _GATES, "how well the discharge of the gate is known", DISCHARGE_QUALITIES,
+          standard_name="quality_flag",
+          comment="near the modular limit, with the lip near the surface and when very drowned, gate ratings are poor"),
+    Variable("gate_headwater_level", _GATES, "m", "water level just above the gate", _LEVEL, _SURFACE),
+    Variable("gate_tailwater_level", _GATES, "m", "water level just below the gate", _LEVEL, _SURFACE),
+    Variable("jet_depth", _GATES, "m", "depth of the jet at the contracted section",
+             "above the floor below the gate; missing where there is no jet"),
+    Variable("jet_froude_number", _GATES, "1", "Froude number of the jet at the contracted section"),
+    Variable("sequent_depth", _GATES, "m", "sequent depth of the jet", "above the floor; the tail depth a jump at the "
+             "contracted section needs"),
+    Variable("roller_depth", _GATES, "m", "depth of the roller at the gate",
+             "above the floor; missing where the jump is not drowned"),
+    _flag("jump_state", _GATES, "where the hydraulic jump stands", JUMP_STATES, standard_name="status_flag",
+          comment="by the end of the jump, or by its toe where the length is not defined; a drowned jump is a roller at "
+          "the gate, which drowns people"),
+    _flag("jump_kind", _GATES, "kind of the hydraulic jump by the Froude number before it", JUMP_KINDS),
+    Variable("jump_toe_distance", _GATES, "m", "distance of the toe of the jump from the gate",
+             "downstream positive; missing where there is no free jump", companions=_JUMP),
+    Variable("jump_end_distance", _GATES, "m", "distance of the end of the jump from the gate",
+             "end of the roller where drowned; missing where the length is not defined", companions=_JUMP),
+    _flag("jump_length_quality", _GATES, "how well the length of the jump is known", LENGTH_QUALITIES,
+          standard_name="quality_flag"),
+    Variable("tailwater_margin", _GATES, "m", "tailwater level above that which would just drown the jump",
+             "at this headwater and opening with the free discharge; negative: a free jump"),
+    Variable("protection_margin", _GATES, "m", "fall of the tailwater until the jump's end passes the protected floor",
+             "the whole tailwater profile shifted alike; negative: how much it is short; missing where no tailwater "
+             "can do it", companions=_JUMP),
+    Variable("jump_power", _GATES, "W", "power lost in the hydraulic jump"),
+    Variable("surge_height_bound_upstream", _GATES, "m", "greatest height of the surge sent up the pool",
+             "of an instantaneous change as large as the last move of the gate; 0 when settled"),
+    Variable("surge_height_bound_downstream", _GATES, "m", "greatest height of the surge sent down the pool",
+             "of an instantaneous change as large as the last move of the gate; 0 when settled"),
+)
+
+_POOL_SERIES = (
+    _flag("settling", _POOLS, "whether waves of the last move still travel in the pool", ("settled", "settling"),
+          standard_name="status_flag",
+          comment="one wave round trip after a move; until then the quasi-steady levels are least trustworthy"),
+    Variable("pool_volume", _POOLS, "m3", "volume of water in the pool", dtype="f8"),
+    Variable("pool_head_level", _POOLS, "m", "water level at the upper end of the pool", _LEVEL, _SURFACE,
+             companions=("settling",)),
+    Variable("pool_tail_level", _POOLS, "m", "water level at the lower end of the pool", _LEVEL, _SURFACE,
+             companions=("settling",)),
+    Variable("pool_inflow", _POOLS, "m3 s-1", "discharge into the upper end of the pool"),
+    Variable("pool_outflow", _POOLS, "m3 s-1", "discharge out of the lower end of the pool"),
+    Variable("pool_losses", _POOLS, "m3 s-1", "seepage and evaporation less rain", "deliveries are not losses"),
+    Variable("pool_bank_margin", _POOLS, "m", "least height of the bank above the water along the pool",
+             "negative: over the bank; surges are not in it; missing where no bank is given", companions=("settling",)),
+    Variable("pool_lining_margin", _POOLS, "m", "least height of the lining above the water along the pool",
+             "negative: over the lining; surges are not in it; missing where no lining is given",
+             companions=("settling",)),
+)
+
+_OFFTAKE_SERIES = (
+    Variable("demand", _OFFTAKES, "m3 s-1", "discharge asked for at the offtake", "missing where nothing is asked"),
+    Variable("delivery", _OFFTAKES, "m3 s-1", "discharge delivered at the offtake"),
+    Variable("delivery_volume", _OFFTAKES, "m3", "volume delivered at the offtake since the start", dtype="f8"),
+)
+
+_CANAL_SERIES = (
+    Variable("canal_inflow", ("time",), "m3 s-1", "discharge into the canal at its head"),
+    Variable("canal_outflow", ("time",), "m3 s-1", "discharge out of the canal at its tail"),
+    Variable("canal_inflow_volume", ("time",), "m3", "volume taken in at the head since the start", dtype="f8"),
+    Variable("canal_outflow_volume", ("time",), "m3", "volume let out at the tail since the start", dtype="f8"),
+    Variable("canal_storage", ("time",), "m3", "volume of water in all pools", dtype="f8"),
+    Variable("balance_residual", ("time",), "m3", "residual of the water ledger since the start",
+             "inflow less deliveries, losses, outflow and growth of storage", dtype="f8"),
+)
+
+_PROFILES = (
+    Variable("water_level", _PROFILE, "m", "water level", _LEVEL, _SURFACE),
+    Variable("discharge", _PROFILE, "m3 s-1", "discharge along the canal", "downstream positive",
+             "water_volume_transport_in_river_channel"),
+    Variable("velocity", _PROFILE, "m s-1", "mean velocity of the section", "downstream positive"),
+)
+
+_ORDERS = (
+    Variable("order_time", ("order",), CLOCK, "time of the order", dtype="f8"),
+    _text("order_gate", ("order",), "gate of the order"),
+    _flag("order_kind", ("order",), "what the order gives", ORDER_KINDS,
+          comment="opening: the opening to reach; by: the change of the opening; discharge: what it is to pass then"),
+    Variable("order_value", ("order",), None, "value given by the order",
+             "in m, or in m3 s-1 where a discharge is given", dtype="f8"),
+    Variable("order_opening_before", ("order",), "m", "opening when the order came"),
+    Variable("order_opening_after", ("order",), "m", "opening that the order led to"),
+    Variable("order_completed", ("order",), CLOCK, "time at which the leaf stood", "missing where refused", dtype="f8"),
+    _flag("order_status", ("order",), "what became of the order", ORDER_STATUSES),
+    _text("order_reason", ("order",), "why the order was trimmed, refused or replaced"),
+)
+
+_GATE_FACTS = (
+    _text("gate", ("gate",), "name of the gate"),
+    Variable("gate_chainage", ("gate",), "m", "chainage of the gate", "from the head, downstream positive", dtype="f8"),
+    Variable("gate_sill_level", ("gate",), "m", "level of the sill", _LEVEL, dtype="f8"),
+    Variable("gate_floor_level", ("gate",), "m", "level of the floor just below the gate", _LEVEL, dtype="f8"),
+    Variable("gate_width", ("gate",), "m", "open width of all bays", dtype="f8"),
+    Variable("gate_max_opening", ("gate",), "m", "greatest opening", dtype="f8"),
+    Variable("gate_apron_end", ("gate",), "m", "distance of the end of the apron from the gate", dtype="f8"),
+    Variable("gate_protection_end", ("gate",), "m", "distance of the end of the protected floor from the gate",
+             "where the last protected surface without a gap ends", dtype="f8"),
+    _text("gate_upstream_pool", ("gate",), "pool above the gate", "head: the source"),
+    _text("gate_downstream_pool", ("gate",), "pool below the gate", "tail: beyond the last pool"),
+)
+
+_POOL_FACTS = (
+    _text("pool", ("pool",), "name of the pool"),
+    Variable("pool_length", ("pool",), "m", "length of the pool", dtype="f8"),
+    Variable("pool_target_level", ("pool",), "m", "target level at the lower end of the pool", _LEVEL, dtype="f8"),
+    Variable("pool_wave_round_trip", ("pool",), "s", "time of a small wave down the pool and back", "at the start",
+             dtype="f8"),
+)
+
+_OFFTAKE_FACTS = (
+    _text("offtake", ("offtake",), "name of the offtake"),
+    _text("offtake_pool", ("offtake",), "pool of the offtake"),
+    Variable("offtake_chainage", ("offtake",), "m", "chainage of the offtake", "from the head, downstream positive",
+             dtype="f8"),
+)
+
+_NODE_FACTS = (
+    Variable("node", ("node",), "1", "number of the node, from the head", dtype="i4"),
+    Variable("chainage", ("node",), "m", "chainage", "from the head, downstream positive", dtype="f8"),
+    Variable("bed_level", ("node",), "m", "level of the bed", _LEVEL, dtype="f8"),
+    Variable("lining_level", ("node",), "m", "level of the top of the lining", _LEVEL, dtype="f8"),
+    Variable("bank_level", ("node",), "m", "level of the top of the bank", _LEVEL, dtype="f8"),
+    Variable("node_pool", ("node",), "1", "position of the node's pool in the list of pools",
+             "from 0; -1 beyond the last gate", dtype="i4"),
+    Variable("surface", ("node",), None, "surface of the floor", "named as in the canal file", dtype="i1"),
+    Variable("velocity_limit", ("node",), "m s-1", "greatest velocity allowed over the surface",
+             "of the canal file; missing where none is given", dtype="f8"),
+)
+
+_END_STATE = (
+    _state("end_level", ("state_node",), "m", "water level at the end of the run", _LEVEL),
+    _state("end_volume", ("state_node",), "m3", "volume stored at the end of the run"),
+    _state("end_discharge", ("state_link",), "m3 s-1", "discharge at the end of the run"),
+    _state("end_convective_head", ("state_link",), "m", "convective head at the end of the run"),
+    _state("end_opening", ("state_gate",), "m", "opening at the end of the run"),
+    _state("end_target_opening", ("state_gate",), "m", "opening the leaf is moving to at the end of the run"),
+    _state("end_ordered_opening", ("state_gate",), "m", "opening last ordered", "'by' orders count from it"),
+    _state("end_next_step", (), "s", "length of the step that would have come next"),
+    _state("end_time", (), CLOCK, "time of the end state"),
+)
+
+VARIABLES = {
+    variable.name: variable
+    for group in (_CLOCKS, _GATE_SERIES, _POOL_SERIES, _OFFTAKE_SERIES, _CANAL_SERIES, _PROFILES, _ORDERS, _GATE_FACTS,
+                  _POOL_FACTS, _OFFTAKE_FACTS, _NODE_FACTS, _END_STATE)
+    for variable in group
+}
+"""The registry: every variable by its name, in the order in which files and the reference page list them."""
+
+
+def growing(dimension: str) -> list[Variable]:
+    """Variables that gain rows along `dimension` (time, profile_time or order) while the run goes on."""
+    return [variable for variable in VARIABLES.values() if variable.dimensions[:1] == (dimension,)]
+
+
+def fixed() -> list[Variable]:
+    """Variables known before the run starts."""
+    return [variable for variable in VARIABLES.values() if not variable.grows and not variable.is_state]
+
+
+def end_state() -> list[Variable]:
+    """Variables from which the next run can start."""
+    return [variable for variable in VARIABLES.values() if variable.is_state]

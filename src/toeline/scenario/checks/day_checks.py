@@ -1,0 +1,108 @@
+"""What must hold between a day file and its canal."""
+
+from collections.abc import Iterable, Iterator
+from pathlib import Path
+
+from toeline.scenario.misfits import Misfit, length_outside, nearest, shown
+from toeline.scenario.orders import Order
+from toeline.scenario.schema.canal import Canal
+from toeline.scenario.schema.day import TO_HOLD_TARGETS, Day
+from toeline.scenario.schema.gates import Gate
+from toeline.units import UnitSystem, quantity_text
+
+
+def misfits_of_day(day: Day, canal: Canal, folder: Path, system: UnitSystem) -> Iterator[Misfit]:
+    """Find what is wrong between a day and its canal; quantities in messages are in the units of the day file."""
+    yield from _misfits_of_ends(day, canal)
+    yield from _misfits_of_offtakes(day.deliveries, "deliveries", "demand", canal)
+    yield from _misfits_of_offtakes(day.offtake_openings, "offtake_openings", "orifice", canal)
+    yield from _misfits_of_output(day)
+    yield from _misfits_of_start(day, canal, folder, system)
+
+
+def _misfits_of_ends(day: Day, canal: Canal) -> Iterator[Misfit]:
+    if canal.head.kind == "inflow" and day.inflow is None:
+        yield Misfit(("inflow",), 'required with the canal\'s head kind = "inflow", but not given')
+    if canal.head.kind == "reservoir" and day.inflow is not None:
+        yield Misfit(("inflow",), 'not used with the canal\'s head kind = "reservoir": the head gate lets the water in')
+    if canal.head.kind == "inflow" and day.head is not None:
+        yield Misfit(("head",), 'not used with the canal\'s head kind = "inflow", which has no level')
+    if canal.tail.kind != "level" and day.tail is not None:
+        yield Misfit(("tail",), f'not used with the canal\'s tail kind = "{canal.tail.kind}"')
+
+
+def _misfits_of_offtakes(names: Iterable[str], key: str, kind: str, canal: Canal) -> Iterator[Misfit]:
+    of_kind = [offtake.name for offtake in canal.offtakes if offtake.kind == kind]
+    others = {offtake.name: offtake.kind for offtake in canal.offtakes}
+    for name in names:
+        if name in of_kind:
+            continue
+        reason = f"is of kind {others[name]}, not {kind}" if name in others else "is no offtake of the canal"
+        yield Misfit((key, name), f"{shown(name)} {reason}; {nearest(name, of_kind)}")
+
+
+def _misfits_of_output(day: Day) -> Iterator[Misfit]:
+    for key in ("every", "profiles_every"):
+        if getattr(day.output, f"{key}_ms") > day.period.length_ms:
+            yield Misfit(("output", key), "longer than the period; allowed: up to the length of the period")
+
+
+def _misfits_of_start(day: Day, canal: Canal, folder: Path, system: UnitSystem) -> Iterator[Misfit]:
+    start = day.start
+    if start.file is not None and not (folder / start.file).is_file():
+        yield Misfit(("start", "file"), f"found {shown(start.file)}; there is no such file")
+    if start.openings == TO_HOLD_TARGETS:
+        yield from _misfits_of_holding(day, canal)
+    elif isinstance(start.openings, dict):
+        yield from _misfits_of_openings(start.openings, start.state, canal, system)
+
+
+def _misfits_of_holding(day: Day, canal: Canal) -> Iterator[Misfit]:
+    has_reservoir = canal.head.kind == "reservoir"
+    if has_reservoir and day.start.inflow is None:
+        yield Misfit(("start", "inflow"), f'required with openings "{TO_HOLD_TARGETS}" and a reservoir, but not given')
+    if not has_reservoir and day.start.inflow is not None:
+        yield Misfit(("start", "inflow"), 'not used with the canal\'s head kind = "inflow": the day\'s inflow says it')
+    above_gates = {gate.upstream for gate in canal.gates}
+    lacking = [pool.name for pool in canal.pools if pool.name in above_gates and pool.target_level is None]
+    if lacking:
+        names = ", ".join(f'"{name}"' for name in lacking)
+        message = f'found "{TO_HOLD_TARGETS}", but the canal file gives no target_level for {names}'
+        yield Misfit(("start", "openings"), message)
+
+
+def _misfits_of_openings(
+    openings: dict[str, float], state: str | None, canal: Canal, system: UnitSystem
+) -> Iterator[Misfit]:
+    gates = {gate.name: gate for gate in canal.gates}
+    for name, opening in openings.items():
+        path = ("start", "openings", name)
+        if name not in gates:
+            yield Misfit(path, f"{shown(name)} is no gate of the canal; {nearest(name, gates)}")
+        else:
+            yield from _misfits_of_opening(path, gates[name], opening, system)
+    missing = [name for name in gates if name not in openings]
+    if state == "steady" and missing:
+        names = ", ".join(f'"{name}"' for name in missing)
+        yield Misfit(("start", "openings"), f"a steady start needs the opening of every gate; missing: {names}")
+
+
+def _misfits_of_opening(path: tuple[str, ...], gate: Gate, opening: float, system: UnitSystem) -> Iterator[Misfit]:
+    if opening > gate.max_opening:
+        yield length_outside(path, opening, "up to the max_opening of the gate", gate.max_opening, system)
+    if gate.is_avoided(opening):
+        found = quantity_text(opening, "length", system)
+        yield Misfit(path, f"found {found}, which lies in a band of the gate's avoid_openings")
+
+
+def misfits_of_orders(orders: list[Order], canal: Canal) -> Iterator[Misfit]:
+    """Find orders to unknown gates, and two for one gate at one time; paths begin with the index of the order."""
+    gates = [gate.name for gate in canal.gates]
+    seen: set[tuple[int, str]] = set()
+    for index, order in enumerate(orders):
+        if order.gate not in gates:
+            message = f"found {shown(order.gate)}, which is no gate of the canal; {nearest(order.gate, gates)}"
+            yield Misfit((index, "gate"), message)
+        if (order.at, order.gate) in seen:
+            yield Misfit((index, "at"), f"{shown(order.gate)} already has an order for that time")
+        seen.add((order.at, order.gate))

@@ -1,0 +1,252 @@
+"""From the two input files to a scenario that is right in itself, or to all faults found in them."""
+
+import hashlib
+from collections.abc import Iterable, Iterator
+from dataclasses import dataclass, field, replace
+from pathlib import Path
+from typing import Any, Literal, TypeVar
+
+from pydantic import ValidationError
+
+from toeline.errors import Fault, ScenarioError, UsageError
+from toeline.scenario.checks.canal_checks import misfits_of_canal
+from toeline.scenario.checks.day_checks import misfits_of_day, misfits_of_orders
+from toeline.scenario.input_file import InputFile, read_input_file
+from toeline.scenario.messages import csv_faults_of, misfits_of
+from toeline.scenario.misfits import Misfit, in_quotes, nearest, shown
+from toeline.scenario.orders import Order
+from toeline.scenario.overrides import read_overrides
+from toeline.scenario.reading import Reading
+from toeline.scenario.schema.canal import Canal
+from toeline.scenario.schema.day import Day, Period
+from toeline.scenario.schema.table import Table
+from toeline.scenario.times import Clock, read_zone
+from toeline.units import Display, UnitSystem
+
+AnyTable = TypeVar("AnyTable", bound=Table)
+
+
+@dataclass(frozen=True)
+class CanalFile:
+    """A canal file that is right in itself."""
+
+    canal: Canal
+    source: InputFile = field(repr=False)
+
+    @property
+    def units(self) -> UnitSystem:
+        """Units of the file."""
+        return self.canal.units
+
+    @property
+    def path(self) -> Path:
+        """Where the file is."""
+        return self.source.path
+
+    @property
+    def text(self) -> str:
+        """The file, verbatim."""
+        return self.source.text
+
+    def locate(self, *key_path: str | int) -> int | None:
+        """Give the line of a key path such as ("pools", 2, "bed_level"), indices from 0."""
+        return self.source.line(*key_path)
+
+    def fault(self, message: str, *key_path: str | int) -> Fault:
+        """Give a fault at a key path, indices from 0."""
+        return self.source.fault(message, *key_path)
+
+
+@dataclass(frozen=True)
+class Scenario:
+    """A day on a canal with one plan: everything that a run needs, in SI."""
+
+    canal: Canal
+    day: Day
+    plan: str | None
+    orders: tuple[Order, ...]
+    start_file: Path | None
+    input_hash: str
+    display: Display
+    canal_source: InputFile = field(repr=False)
+    day_source: InputFile = field(repr=False)
+
+    @property
+    def canal_text(self) -> str:
+        """The canal file, verbatim."""
+        return self.canal_source.text
+
+    @property
+    def day_text(self) -> str:
+        """The day file, verbatim."""
+        return self.day_source.text
+
+    @property
+    def canal_path(self) -> Path:
+        """Where the canal file is."""
+        return self.canal_source.path
+
+    @property
+    def day_path(self) -> Path:
+        """Where the day file is."""
+        return self.day_source.path
+
+    def fault(self, message: str, *key_path: str | int, file: Literal["canal", "day"] = "canal") -> Fault:
+        """Give a fault at a key path such as ("pools", 2, "stretches", 1), indices from 0."""
+        source = self.canal_source if file == "canal" else self.day_source
+        return source.fault(message, *key_path)
+
+
+def load_canal(path: Path | str) -> CanalFile:
+    """Read and check a canal file. Raises ScenarioError with all faults found."""
+    source = read_input_file(Path(path))
+    system = _units_named(source) or UnitSystem.metric
+    canal = _validated(Canal, source, Reading(system, source.path.parent))
+    _raise_if_any(source.fault(misfit.message, *misfit.path) for misfit in misfits_of_canal(canal))
+    return CanalFile(canal, source)
+
+
+def load_scenario(path: Path | str, *, plan: str | None = None, overrides: Iterable[str] = ()) -> Scenario:
+    """Read and check a day file, its canal file and the CSV files that it names.
+
+    `plan` names the plan to run; a day with one plan needs no name. `overrides` set keys of the day file anew,
+    as 'period.length="6 h"'. Raises ScenarioError with all faults found, and UsageError where several plans are there
+    and none is named, where the named one is not there, or where an override is no key=value.
+    """
+    source = read_input_file(Path(path)).overridden(read_overrides(overrides))
+    canal_file, faults = _canal_of(source)
+    reading = _reading_of_day(source, canal_file)
+    try:
+        day = _validated(Day, source, reading)
+    except ScenarioError as error:
+        raise ScenarioError([*faults, *error.faults]) from None
+    if canal_file is None:
+        raise ScenarioError(faults)
+    plans = {name: _placed(orders.orders, name, source) for name, orders in day.plans.items()}
+    _raise_if_any(_faults_between(day, plans, canal_file, source, reading))
+    return _scenario(canal_file, source, day, plans, _chosen(plan, plans, source), reading)
+
+
+def plan_names(path: Path | str) -> tuple[str, ...]:
+    """Give the names of the plans of a day file, without checking it. Raises ScenarioError where it is no TOML."""
+    plans = read_input_file(Path(path)).data.get("plans")
+    return tuple(plans) if isinstance(plans, dict) else ()
+
+
+def _canal_of(day: InputFile) -> tuple[CanalFile | None, list[Fault]]:
+    """Load the canal of a day; give the faults in place of it, none where the day does not name it properly."""
+    name = day.data.get("canal")
+    if not isinstance(name, str) or not name:
+        return None, []
+    path = day.path.parent / name
+    if not path.is_file():
+        return None, [day.fault(f"found {shown(name)}; there is no such file", "canal")]
+    try:
+        return load_canal(path), []
+    except ScenarioError as error:
+        return None, error.faults
+
+
+def _reading_of_day(source: InputFile, canal_file: CanalFile | None) -> Reading:
+    """Find what the rest of the day file is read with: its units, zone and period."""
+    units_of_canal = canal_file.units if canal_file else UnitSystem.metric
+    reading = Reading(_units_named(source) or units_of_canal, source.path.parent)
+    try:
+        reading.zone = read_zone(source.data["zone"]) if "zone" in source.data else None
+        period = Period.model_validate(source.data.get("period"), context=reading)
+    except ValueError:
+        return reading  # these faults are found again, with all others, when the whole day is read
+    reading.clock = Clock(period.start, period.length_ms)
+    return reading
+
+
+def _units_named(source: InputFile) -> UnitSystem | None:
+    try:
+        return UnitSystem(source.data.get("units", ""))
+    except ValueError:
+        return None
+
+
+def _validated(table: type[AnyTable], source: InputFile, reading: Reading) -> AnyTable:
+    try:
+        return table.model_validate(source.data, context=reading)
+    except ValidationError as error:
+        faults = [source.fault(message, *path) for path, message in misfits_of(error, table)]
+        raise ScenarioError([*faults, *csv_faults_of(error)]) from None
+
+
+def _placed(orders: list[Order], plan: str, source: InputFile) -> list[Order]:
+    """Give the orders with the place where they are written; those of a CSV file have it already."""
+    places = [source.fault("", "plans", plan, "orders", index) for index in range(len(orders))]
+    return [
+        order if order.file else replace(order, file=place.file, line=place.line)
+        for order, place in zip(orders, places, strict=True)
+    ]
+
+
+def _faults_between(
+    day: Day, plans: dict[str, list[Order]], canal_file: CanalFile, source: InputFile, reading: Reading
+) -> Iterator[Fault]:
+    for misfit in misfits_of_day(day, canal_file.canal, reading.folder, reading.system):
+        yield source.fault(misfit.message, *misfit.path)
+    for name, orders in plans.items():
+        for misfit in misfits_of_orders(orders, canal_file.canal):
+            yield _fault_of_order(misfit, name, orders, source)
+
+
+def _fault_of_order(misfit: Misfit, plan: str, orders: list[Order], source: InputFile) -> Fault:
+    index, key = misfit.path
+    order = orders[int(index)]
+    fault = source.fault(misfit.message, "plans", plan, "orders", index, key)
+    is_in_csv = order.file != fault.file
+    return Fault(order.file, order.line, str(key), misfit.message) if is_in_csv else fault
+
+
+def _raise_if_any(faults: Iterable[Fault]) -> None:
+    found = list(faults)
+    if found:
+        raise ScenarioError(found)
+
+
+def _chosen(plan: str | None, plans: dict[str, Any], source: InputFile) -> str | None:
+    if plan is not None and plan not in plans:
+        raise UsageError(f"{source.path}: there is no plan {shown(plan)}; {nearest(plan, plans)}")
+    if plan is None and len(plans) > 1:
+        raise UsageError(f"{source.path}: the day has several plans; name one of {in_quotes(plans)}")
+    return plan or next(iter(plans), None)
+
+
+def _scenario(
+    canal_file: CanalFile,
+    source: InputFile,
+    day: Day,
+    plans: dict[str, list[Order]],
+    plan: str | None,
+    reading: Reading,
+) -> Scenario:
+    orders = sorted(plans[plan], key=lambda order: order.at) if plan else []
+    start_file = reading.folder / day.start.file if day.start.file else None
+    return Scenario(
+        canal=canal_file.canal,
+        day=day,
+        plan=plan,
+        orders=tuple(orders),
+        start_file=start_file,
+        input_hash=_input_hash(canal_file.source, source, plan, reading, start_file),
+        display=Display(reading.system),
+        canal_source=canal_file.source,
+        day_source=source,
+    )
+
+
+def _input_hash(
+    canal: InputFile, day: InputFile, plan: str | None, reading: Reading, start_file: Path | None
+) -> str:
+    """Digest everything that the numbers of a run depend on; each part is led by its length."""
+    parts = [canal.text, day.text, plan or "", *(override.text for override in day.overrides)]
+    parts += [part for item in sorted(reading.csv_texts.items()) for part in item]
+    digest = hashlib.sha256()
+    for part in [text.encode() for text in parts] + ([start_file.read_bytes()] if start_file else []):
+        digest.update(len(part).to_bytes(8, "big"))
+        digest.update(part)
+    return digest.hexdigest()

@@ -1,0 +1,81 @@
+"""What is wrong with a value, before it is known in which line it stands."""
+
+import difflib
+import json
+from collections.abc import Iterable
+from datetime import date, datetime, time
+from typing import Any, NamedTuple
+
+from toeline.errors import Fault
+from toeline.scenario.locate import KeyPath
+from toeline.units import UnitSystem, quantity_text
+
+LONGEST_SHOWN = 60
+"""Characters of a value that a message repeats."""
+
+
+class Misfit(NamedTuple):
+    """One thing wrong, at a key path counted from the value under test."""
+
+    path: KeyPath
+    message: str
+
+
+class MisfitsError(ValueError):
+    """Several things wrong inside one value."""
+
+    def __init__(self, items: Iterable[Misfit]):
+        self.items = tuple(items)
+        super().__init__("; ".join(item.message for item in self.items))
+
+
+class CsvFaultsError(ValueError):
+    """Faults in a CSV file that the value names, each with its own line."""
+
+    def __init__(self, faults: Iterable[Fault]):
+        self.faults = tuple(faults)
+        super().__init__("; ".join(str(fault) for fault in self.faults))
+
+
+def length_outside(path: KeyPath, found: float, allowed: str, limit: float, system: UnitSystem) -> Misfit:
+    """Say that a length or level [m] lies outside a limit [m], both in the units of the file."""
+    found_text, limit_text = (quantity_text(value, "length", system) for value in (found, limit))
+    return Misfit(path, f"found {found_text}; allowed: {allowed}, {limit_text}")
+
+
+def shown(value: Any) -> str:
+    """Write a value found in a file as the file would have it, shortened where it is long."""
+    match value:
+        case bool():
+            return str(value).lower()
+        case str():
+            return json.dumps(_shortened(value), ensure_ascii=False)
+        case int() if abs(value) >= 10**20:
+            return "a whole number of more than 20 digits"
+        case datetime() | date() | time():
+            return value.isoformat()
+        case list():
+            return f"an array of {len(value)}"
+        case dict():
+            return "a table"
+    return str(value)
+
+
+def _shortened(text: str) -> str:
+    return text if len(text) <= LONGEST_SHOWN else text[: LONGEST_SHOWN - 3] + "..."
+
+
+def nearest(word: str, known: Iterable[str]) -> str:
+    """Point from a word that is not known to the one that was probably meant, else name what is known."""
+    by_lower_case = {name.lower(): name for name in known}
+    close = difflib.get_close_matches(word.lower(), by_lower_case, n=1)
+    if close:
+        return f'did you mean "{by_lower_case[close[0]]}"?'
+    if not by_lower_case:
+        return "there is none here"
+    return "known: " + in_quotes(by_lower_case.values())
+
+
+def in_quotes(words: Iterable[str]) -> str:
+    """List words in quotes."""
+    return ", ".join(f'"{word}"' for word in words)

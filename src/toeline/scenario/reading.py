@@ -1,0 +1,29 @@
+"""What a validator knows of the file that it reads."""
+
+from dataclasses import dataclass, field
+from pathlib import Path
+from typing import Any
+from zoneinfo import ZoneInfo
+
+from toeline.scenario.times import Clock
+from toeline.units import UnitSystem
+
+
+@dataclass
+class Reading:
+    """Units of plain numbers, the folder of files named, the zone and period of a day, and the CSV files read so far.
+
+    Without a clock, as where the period itself is at fault, times have no meaning and are not read.
+    """
+
+    system: UnitSystem = UnitSystem.metric
+    folder: Path = Path()
+    zone: ZoneInfo | None = None
+    clock: Clock | None = None
+    csv_texts: dict[str, str] = field(default_factory=dict)
+
+
+def reading_of(info: Any) -> Reading:
+    """Give the reading that a pydantic validation runs under; SI units where it has none."""
+    reading = info.context
+    return reading if isinstance(reading, Reading) else Reading()

@@ -1,0 +1,27 @@
+"""The canal file as a whole."""
+
+from typing import Annotated
+
+from pydantic import Field
+
+from toeline.scenario.schema.ends import Head, Tail
+from toeline.scenario.schema.gates import Gate
+from toeline.scenario.schema.offtakes import Offtake
+from toeline.scenario.schema.pools import Pool
+from toeline.scenario.schema.sections import Section, Surface
+from toeline.scenario.schema.table import Name, Table
+from toeline.units import UnitSystem
+
+
+class Canal(Table):
+    """The canal file: written once and kept for years."""
+
+    name: Name = Field(description="Name of the canal.")
+    units: Annotated[UnitSystem, Field(strict=False)] = Field(description="Units of plain numbers in this file.")
+    sections: dict[Name, Section] = Field(min_length=1, description="Cross-sections by name.")
+    surfaces: dict[Name, Surface] = Field(min_length=1, description="Surfaces of the floor by name.")
+    pools: list[Pool] = Field(min_length=1, description="Pools from the head down.")
+    gates: list[Gate] = Field([], description="Gates from the head down.")
+    offtakes: list[Offtake] = Field([], description="Offtakes, in any order.")
+    head: Head = Field(description="The upper end of the canal.")
+    tail: Tail = Field(description="The lower end of the canal.")

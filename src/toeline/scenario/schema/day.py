@@ -1,0 +1,163 @@
+"""The day file as a whole."""
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from datetime import datetime
+from typing import Annotated, Any, Literal
+
+from pydantic import Field, ValidationInfo
+
+from toeline.scenario.misfits import Misfit, MisfitsError, shown
+from toeline.scenario.reading import reading_of
+from toeline.scenario.schema.day_series import Delivery, Inflow, LevelSeries, OpeningSeries
+from toeline.scenario.schema.plans import Plan
+from toeline.scenario.schema.table import DischargeOrZero, FileName, Name, Table
+from toeline.scenario.schema.value_kinds import Duration, Quantity, Text, ValueKind
+from toeline.scenario.times import read_start, read_zone
+from toeline.units import UnitSystem
+
+TO_HOLD_TARGETS = "to hold targets"
+
+
+@dataclass(frozen=True)
+class Zone(ValueKind):
+    """A name of the tz database."""
+
+    def read(self, value: Any, info: ValidationInfo) -> str:
+        return read_zone(value).key
+
+    def describe(self) -> str:
+        return "name of the tz database"
+
+    def json_schema(self) -> dict[str, Any]:
+        return {"type": "string"}
+
+
+@dataclass(frozen=True)
+class PeriodStart(ValueKind):
+    """Date and time with offset, or local in the zone of the day."""
+
+    def read(self, value: Any, info: ValidationInfo) -> datetime:
+        return read_start(value, reading_of(info).zone)
+
+    def describe(self) -> str:
+        return "date and time with offset from UTC; the offset may be left out where a zone is given"
+
+    def json_schema(self) -> dict[str, Any]:
+        return {"type": "string", "format": "date-time"}
+
+
+@dataclass(frozen=True)
+class OpeningsAtStart(ValueKind):
+    """Openings by gate, or those that hold the target levels."""
+
+    opening: Quantity
+
+    def read(self, value: Any, info: ValidationInfo) -> Any:
+        if value is None:
+            return {"steady": TO_HOLD_TARGETS, "dry": {}}.get(info.data.get("state", ""))
+        if value == TO_HOLD_TARGETS:
+            return value
+        if not isinstance(value, dict):
+            raise ValueError(f'found {shown(value)}; allowed: "{TO_HOLD_TARGETS}" or a table of openings by gate')
+        return self._by_gate(value, info)
+
+    def _by_gate(self, table: dict[str, Any], info: ValidationInfo) -> dict[str, float]:
+        openings, misfits = {}, []
+        for gate, value in table.items():
+            try:
+                openings[gate] = self.opening.read(value, info)
+            except ValueError as error:
+                misfits.append(Misfit((gate,), str(error)))
+        if misfits:
+            raise MisfitsError(misfits)
+        return openings
+
+    def describe(self) -> str:
+        return f'"{TO_HOLD_TARGETS}", or a table of openings by gate: {self.opening.describe()}'
+
+    def json_schema(self) -> dict[str, Any]:
+        by_gate = {"type": "object", "additionalProperties": self.opening.json_schema()}
+        return {"anyOf": [{"const": TO_HOLD_TARGETS}, by_gate]}
+
+
+class Period(Table):
+    """The time that is simulated, and how finely."""
+
+    start: Annotated[datetime, PeriodStart()] = Field(description="When it starts.")
+    length_ms: Annotated[int, Duration("1 min", "400 d")] = Field(alias="length", description="How long it lasts.")
+    level_tolerance: Annotated[float, Quantity("length", least=1e-9, most=0.1)] = Field(
+        0.003, description="Error of level that one time step may make."
+    )
+    spacing: Annotated[float, Quantity("length", least=1.0, most=1000.0)] = Field(
+        100.0, description="Largest distance between two computed points along a pool."
+    )
+    longest_step_ms: Annotated[int, Duration("1 s", "6 h")] = Field(
+        900_000, alias="longest_step", description="Longest time step."
+    )
+    local_inertia: bool = Field(
+        False, description="Whether the inertia of the water is kept: to measure what the quasi-steady view leaves out."
+    )
+
+
+class Output(Table):
+    """How often results are written."""
+
+    every_ms: Annotated[int, Duration("1 s", "24 h")] = Field(
+        60_000, alias="every", description="Time between values of gates, pools and offtakes."
+    )
+    profiles_every_ms: Annotated[int, Duration("1 s", "24 h")] = Field(
+        600_000, alias="profiles_every", description="Time between long profiles of the whole canal."
+    )
+
+
+class Start(Table):
+    """The state of the canal at the start of the period."""
+
+    state: Literal["steady", "dry"] | None = Field(
+        None, description="steady: steady flow at the first values of the day; dry: an empty canal."
+    )
+    file: FileName | None = Field(None, description="Run file to go on from the end of, in place of a state.")
+    openings: Annotated[
+        Literal["to hold targets"] | dict[str, float] | None,
+        OpeningsAtStart(Quantity("length", least=0.0, most=1000.0)),
+    ] = Field(
+        None,
+        validate_default=True,
+        description="Openings of the gates. Left out: those that hold the targets (steady), closed (dry).",
+    )
+    inflow: DischargeOrZero | None = Field(
+        None, description="Discharge from the reservoir, for a steady start that holds the targets."
+    )
+
+    def misfits(self, system: UnitSystem) -> Iterator[Misfit]:
+        if (self.state is None) == (self.file is None):
+            yield Misfit(("state",), 'exactly one of "state" and "file" is required')
+        if self.file is not None and self.openings is not None:
+            yield Misfit(("openings",), "not used with file, which holds the openings")
+        if self.state == "dry" and self.openings == TO_HOLD_TARGETS:
+            yield Misfit(("openings",), f'found "{TO_HOLD_TARGETS}"; allowed with a dry start: openings by gate')
+        if self.inflow is not None and not (self.state == "steady" and self.openings == TO_HOLD_TARGETS):
+            yield Misfit(("inflow",), f'not used without a steady start with openings "{TO_HOLD_TARGETS}"')
+
+
+class Day(Table):
+    """The day file: written daily for a canal."""
+
+    canal: FileName = Field(description="The canal file.")
+    title: Annotated[str, Text("text of one line")] = Field(description="What the day is about, for headings.")
+    units: Annotated[UnitSystem, Field(strict=False)] | None = Field(
+        None, description="Units of plain numbers in this file and of output for people. Left out: those of the canal."
+    )
+    zone: Annotated[str, Zone()] | None = Field(
+        None, description="Time zone of the canal, for local times and days on which the clocks change."
+    )
+    period: Period = Field(description="The time that is simulated.")
+    output: Output = Field(default_factory=Output, description="How often results are written.")
+    inflow: Inflow | None = Field(None, description="Discharge into the first pool, where no reservoir feeds it.")
+    deliveries: dict[str, Delivery] = Field({}, description="Discharge asked by each demand offtake; else 0.")
+    offtake_openings: dict[str, OpeningSeries] = Field({}, description="Opening of orifice offtakes that are moved.")
+    head: LevelSeries | None = Field(None, description="Level of the reservoir, where it changes during the day.")
+    tail: LevelSeries | None = Field(None, description="Level beyond the end, where it changes during the day.")
+    start: Start = Field(description="The state of the canal at the start.")
+    plans: dict[Name, Plan] = Field({}, description="Ways of operating the day, by name.")

@@ -1,0 +1,103 @@
+"""Plans of a day file: orders to gates as an array or a CSV file."""
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from typing import Annotated, Any, cast
+
+from pydantic import Field, ValidationError, ValidationInfo
+
+from toeline.scenario.csv_rows import Columns, number_or_text, read_csv
+from toeline.scenario.messages import misfits_of
+from toeline.scenario.misfits import CsvFaultsError, Misfit, MisfitsError, in_quotes, shown
+from toeline.scenario.orders import Order, OrderKind
+from toeline.scenario.reading import reading_of
+from toeline.scenario.schema.table import DischargeOrZero, Name, SizeOrZero, Table
+from toeline.scenario.schema.value_kinds import Moment, Quantity, ValueKind
+from toeline.scenario.text_file import UnreadableFileError
+from toeline.units import UnitSystem
+
+_ACTIONS = ("opening", "by", "discharge")
+_COLUMNS = Columns(("at", "gate"), _ACTIONS)
+
+
+class OrderEntry(Table):
+    """One order as written."""
+
+    at: Annotated[int, Moment(before_end=True)] = Field(description="When the gate begins to move.")
+    gate: Name = Field(description="Name of the gate.")
+    opening: SizeOrZero | None = Field(None, description="The opening to have.")
+    by: Annotated[float, Quantity("length", least=-1000.0, most=1000.0)] | None = Field(
+        None, description="The change from the opening last ordered; negative closes."
+    )
+    discharge: DischargeOrZero | None = Field(
+        None, description="The discharge to pass then, by the gate law at the levels of that moment."
+    )
+
+    def misfits(self, system: UnitSystem) -> Iterator[Misfit]:
+        given = [key for key in _ACTIONS if getattr(self, key) is not None]
+        if len(given) != 1:
+            found = in_quotes(given) or "none"
+            yield Misfit((), f"found {found}; allowed: exactly one of {in_quotes(_ACTIONS)}")
+        if self.by == 0.0:
+            yield Misfit(("by",), "found 0, which moves nothing")
+
+    def order(self, file: str = "", line: int | None = None) -> Order:
+        """Give the order, with the place where it is written."""
+        kind = next(key for key in _ACTIONS if getattr(self, key) is not None)
+        return Order(self.at, self.gate, cast(OrderKind, kind), getattr(self, kind), file, line)
+
+
+@dataclass(frozen=True)
+class OrdersKind(ValueKind):
+    """Orders as an array of tables, or the name of a CSV file with one row an order."""
+
+    def read(self, value: Any, info: ValidationInfo) -> list[Order]:
+        if isinstance(value, list):
+            return self._from_array(value, info)
+        if isinstance(value, str):
+            return self._from_csv(value, info)
+        raise ValueError(f"found {shown(value)}; allowed: {self.describe()}")
+
+    @staticmethod
+    def _from_array(items: list[Any], info: ValidationInfo) -> list[Order]:
+        orders, misfits = [], []
+        for index, item in enumerate(items):
+            try:
+                orders.append(OrderEntry.model_validate(item, context=info.context).order())
+            except ValidationError as error:
+                misfits += [Misfit((index, *path), text) for path, text in misfits_of(error, OrderEntry)]
+        if misfits:
+            raise MisfitsError(misfits)
+        return orders
+
+    @staticmethod
+    def _from_csv(name: str, info: ValidationInfo) -> list[Order]:
+        reading = reading_of(info)
+        try:
+            file = read_csv(reading.folder / name, _COLUMNS)
+        except UnreadableFileError as error:
+            raise ValueError(f"found {shown(name)}; {error}") from None
+        reading.csv_texts[name] = file.text
+        orders = []
+        for line, row in file.rows:
+            entry = {key: number_or_text(cell) if key in _ACTIONS else cell for key, cell in row.items()}
+            try:
+                orders.append(OrderEntry.model_validate(entry, context=info.context).order(str(file.path), line))
+            except ValidationError as error:
+                for path, text in misfits_of(error, OrderEntry):
+                    file.report(line, str(path[0]) if path else "", text)
+        if file.faults:
+            raise CsvFaultsError(file.faults)
+        return orders
+
+    def describe(self) -> str:
+        return "an array of orders, or the name of a CSV file with the columns at,gate,opening,by,discharge"
+
+    def json_schema(self) -> dict[str, Any]:
+        return {"anyOf": [{"type": "string"}, {"type": "array", "items": OrderEntry.model_json_schema()}]}
+
+
+class Plan(Table):
+    """One way of operating the day."""
+
+    orders: Annotated[list[Order], OrdersKind()] = Field([], description="What the gates are ordered to do.")

@@ -1,0 +1,35 @@
+"""`toeline describe` of a canal and of a day."""
+
+
+def test_a_canal_is_described_from_the_head_down(folder, call):
+    page = call("describe", "canal.toml").stdout
+    assert page.index("Upper pool") < page.index("Lower pool") < page.index("Middle check") < page.index("Last check")
+    assert "  Lower pool  635.00 m      49.20 m     49.08 m  50.60 m          15.00 m\n" in page
+
+
+def test_a_day_is_described_with_the_orders_of_every_plan(folder, call):
+    page = call("describe", "day.toml").stdout
+    assert "ORDERS of plan hold: 0\n" in page
+    assert "  06:20  Middle check  open by 0.05 m\n" in page
+
+
+def test_values_are_in_the_units_of_the_day(folder, call):
+    day = folder / "day.toml"
+    day.write_text(day.read_text().replace("title =", 'units = "us customary"\ntitle ='))
+    page = call("describe", "day.toml").stdout
+    assert "3.0 ft3/s" in page
+    assert "m3/s" not in page
+
+
+def test_no_line_is_wider_than_80_columns(folder, call):
+    canal = folder / "canal.toml"
+    canal.write_text(canal.read_text().replace("Middle check", "Middle check beside the long row of old alder trees"))
+    page = call("describe", "canal.toml").stdout
+    assert max(len(line) for line in page.splitlines()) <= 80
+
+
+def test_a_file_that_is_no_run_is_refused(folder, call):
+    (folder / "run.nc").write_bytes(b"\x89HDF\r\n\x1a\n and no more")
+    result = call("describe", "run.nc")
+    assert (result.exit_code, result.stdout) == (2, "")
+    assert "run.nc" in result.stderr

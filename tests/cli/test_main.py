@@ -1,0 +1,89 @@
+"""The command as a whole: how it opens, and how it ends."""
+
+import subprocess
+import sys
+
+import click
+import pytest
+from click.testing import CliRunner
+
+import toeline
+from toeline.cli.main import COMMANDS, LazyGroup, main
+from toeline.errors import Fault, RunError, ScenarioError, UsageError
+
+HEAVY = {"numpy", "numba", "xarray", "netCDF4", "matplotlib", "pydantic", "scipy", "rich"}
+
+
+def imported_by(*arguments: str) -> set[str]:
+    """Names of the modules that a fresh interpreter imports for these arguments."""
+    command = [sys.executable, "-X", "importtime", "-m", "toeline", *arguments]
+    result = subprocess.run(command, capture_output=True, text=True, check=True)
+    return {line.rpartition("|")[2].strip() for line in result.stderr.splitlines() if line.startswith("import time:")}
+
+
+@pytest.mark.parametrize("arguments", [("--help",), ("--version",), ("run", "--help")])
+def test_help_opens_without_heavy_imports(arguments):
+    packages = {module.partition(".")[0] for module in imported_by(*arguments)}
+    assert "click" in packages
+    assert not packages & HEAVY
+
+
+def test_help_names_every_command_and_exit_status_and_the_caution():
+    text = CliRunner().invoke(main, ["--help"]).output
+    for expected in (*COMMANDS, "Exit status", "130", "no state", "safe to enter"):
+        assert expected in text
+
+
+def test_the_version_is_that_of_the_package():
+    assert toeline.__version__ in CliRunner().invoke(main, ["--version"]).output
+
+
+def test_a_mistyped_command_names_the_nearest():
+    result = CliRunner().invoke(main, ["rnu"])
+    assert result.exit_code == 2
+    assert result.stderr == 'Error: there is no command "rnu"; did you mean "run"?\n'
+    assert result.stdout == ""
+
+
+def failing_group(error: BaseException) -> click.Command:
+    """A group that finds only the command `fail`, which raises."""
+
+    @click.command()
+    def fail() -> None:
+        raise error
+
+    class Group(LazyGroup):
+        def get_command(self, ctx, cmd_name):
+            return fail
+
+    return Group()
+
+
+@pytest.mark.parametrize(
+    ("error", "status", "message"),
+    [
+        (UsageError("day.nc exists"), 2, "Error: day.nc exists\n"),
+        (RunError("stopped at 07:12"), 1, "Error: stopped at 07:12\n"),
+        (KeyboardInterrupt(), 130, "Stopped.\n"),
+        (PermissionError(13, "Permission denied", "day.nc"), 1, "Error: day.nc: Permission denied\n"),
+    ],
+)
+def test_an_error_for_the_user_is_a_message_and_an_exit_status(error, status, message):
+    result = CliRunner().invoke(failing_group(error), ["run"])
+    assert (result.exit_code, result.stderr, result.stdout) == (status, message, "")
+
+
+def test_faults_stand_one_a_line_and_are_counted():
+    faults = [Fault("day.toml", 3, "title", "required, but not given"), Fault("canal.toml", 2, "units", "found 3")]
+    result = CliRunner().invoke(failing_group(ScenarioError(faults)), ["run"])
+    assert result.exit_code == 2
+    assert result.stderr.splitlines() == [
+        "canal.toml:2: units: found 3",
+        "day.toml:3: title: required, but not given",
+        "Error: 2 faults in the input; nothing was run.",
+    ]
+
+
+def test_a_fault_of_the_program_itself_keeps_its_traceback():
+    result = CliRunner().invoke(failing_group(ZeroDivisionError()), ["run"])
+    assert isinstance(result.exception, ZeroDivisionError)

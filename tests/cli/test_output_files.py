@@ -1,0 +1,70 @@
+"""Where a run is written, and what must not be lost by it."""
+
+from pathlib import Path
+
+import pytest
+
+from toeline.cli.input_files import load_plans
+from toeline.cli.output_files import choose_outputs, refuse_outputs
+from toeline.errors import UsageError
+
+
+def one_plan(folder: Path) -> Path:
+    day = folder / "day.toml"
+    day.write_text(day.read_text().partition("[plans.raise]")[0])
+    return day
+
+
+def test_a_day_with_one_plan_goes_to_its_name_in_the_working_directory(folder):
+    assert choose_outputs(load_plans(one_plan(folder)), None) == [Path("day.nc")]
+
+
+def test_each_of_several_plans_goes_to_its_own_file(folder):
+    assert choose_outputs(load_plans(folder / "day.toml"), None) == [Path("day.hold.nc"), Path("day.raise.nc")]
+
+
+def test_one_plan_picked_of_several_keeps_its_file(folder):
+    assert choose_outputs(load_plans(folder / "day.toml", "raise"), None) == [Path("day.raise.nc")]
+
+
+def test_a_given_name_gets_the_plan_before_its_ending(folder):
+    outputs = choose_outputs(load_plans(folder / "day.toml"), Path("out/today.nc"))
+    assert outputs == [Path("out/today.hold.nc"), Path("out/today.raise.nc")]
+
+
+def test_a_plan_named_with_a_slash_stays_in_the_folder(folder):
+    day = folder / "day.toml"
+    day.write_text(day.read_text().replace("plans.raise", 'plans."raise / late"'))
+    assert choose_outputs(load_plans(day), None)[1] == Path("day.raise_late.nc")
+
+
+@pytest.mark.parametrize(
+    ("output", "reason"),
+    [
+        ("day.toml", "is an input of this run"),
+        ("canal.toml", "is an input of this run"),
+        ("nowhere/day.nc", "no directory nowhere"),
+        (".", "directory"),
+    ],
+)
+def test_an_output_that_would_lose_something_or_fail_is_refused_even_with_overwrite(folder, output, reason):
+    scenarios = load_plans(one_plan(folder))
+    with pytest.raises(UsageError, match=reason):
+        refuse_outputs([Path(output)], scenarios, overwrite=True)
+
+
+@pytest.mark.parametrize("standing", ["day.nc", "day.nc.partial"])
+def test_what_stands_is_replaced_only_when_told(folder, standing):
+    (folder / standing).touch()
+    scenarios = load_plans(one_plan(folder))
+    with pytest.raises(UsageError, match=f"{standing} exists"):
+        refuse_outputs([Path("day.nc")], scenarios, overwrite=False)
+    refuse_outputs([Path("day.nc")], scenarios, overwrite=True)
+
+
+def test_two_plans_never_share_a_file(folder):
+    day = folder / "day.toml"
+    day.write_text(day.read_text().replace("plans.raise", 'plans."a/b"').replace("plans.hold", 'plans."a b"'))
+    scenarios = load_plans(day)
+    with pytest.raises(UsageError, match="two plans would go to one file"):
+        refuse_outputs(choose_outputs(scenarios, None), scenarios, overwrite=False)

@@ -1,0 +1,33 @@
+"""What the commands say, and where."""
+
+import subprocess
+import sys
+
+from toeline.cli.terminal import page_width, progress_bar
+
+
+def test_a_page_for_a_pipe_is_80_columns_wide(capsys):
+    assert page_width() == 80
+
+
+def test_nothing_is_drawn_where_there_is_no_terminal(capsys):
+    with progress_bar("proposed") as progress:
+        assert progress is None
+    captured = capsys.readouterr()
+    assert (captured.out, captured.err) == ("", "")
+
+
+def test_a_reader_who_closes_the_pipe_changes_nothing():
+    program = (
+        "import sys; from toeline.cli.terminal import show\n"
+        "for line in range(50_000): show(f'line {line}')\n"
+        "sys.exit(3)"
+    )
+    writer = subprocess.Popen([sys.executable, "-c", program], stdout=subprocess.PIPE, stderr=subprocess.PIPE)
+    assert writer.stdout is not None
+    assert writer.stderr is not None
+    writer.stdout.readline()
+    writer.stdout.close()
+    complaint = writer.stderr.read()
+    writer.stderr.close()
+    assert (writer.wait(), complaint) == (3, b"")
