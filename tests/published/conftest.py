@@ -13,8 +13,8 @@ import pytest
 
 from toeline.constants import GRAVITY
 from toeline.hydraulics.critical_flow import specific_force
-from toeline.hydraulics.cross_section import geometry, packed
-from toeline.hydraulics.gradually_varied_flow import Channel, subcritical_profile, supercritical_profile
+from toeline.hydraulics.cross_section import geometry
+from toeline.hydraulics.gradually_varied_flow import channel, subcritical_profile, supercritical_profile
 from toeline.hydraulics.jump_location import Jet, free_jump
 
 
@@ -47,39 +47,39 @@ def units():
 def prismatic():
     """Makes a channel of one section: prismatic(section, length, slope, roughness, nodes)."""
 
-    def make(section, length, slope, roughness, nodes=2, outlet_bed=0.0):
+    def make(section, length, slope, roughness, nodes=2):
         chainage = np.linspace(0.0, length, nodes)
-        bed = outlet_bed + slope * (length - chainage)
-        same = np.zeros(nodes, np.int64)
-        return Channel(chainage, bed, same, np.full(nodes, float(roughness)), np.zeros(nodes), packed([section]))
+        made = channel(chainage, slope * (length - chainage), [section] * nodes, roughness)
+        made.nodes.section[:] = 0
+        return made
 
     return make
 
 
 class Profiles:
-    """Profiles and the jump between them, in a whole channel."""
+    """Profiles and the jump between them, over the whole length of a channel."""
 
     def jet_profile(self, channel, depth, discharge, start=0.0, points=4000):
         """Chainages and depths of the supercritical profile, and how it ended."""
         x, y = np.empty(points), np.empty(points)
-        count, end = supercritical_profile(channel, 0, channel.chainage.size - 1, start, depth, discharge, x, y)
+        count, end = supercritical_profile(channel, 0, channel.nodes.size - 1, start, depth, discharge, x, y)
         return x[:count], y[:count], end
 
-    def backwater(self, channel, level, discharge):
-        """Levels of the subcritical profile, NaN above the place where it turns critical."""
-        levels = np.full(channel.chainage.size, np.nan)
-        none = np.zeros(channel.chainage.size)
-        subcritical_profile(channel, 0, channel.chainage.size - 1, level, discharge, none, levels)
-        return levels
+    def backwater(self, channel, depth, discharge):
+        """Depths of the subcritical profile above a depth at the lower end; NaN above the place where it turns critical."""
+        levels, no_loss = np.full(channel.nodes.size, np.nan), np.zeros(channel.nodes.size)
+        level = channel.nodes.bed_level[-1] + depth
+        subcritical_profile(channel, 0, channel.nodes.size - 1, level, discharge, no_loss, levels)
+        return levels - channel.nodes.bed_level
 
-    def jump(self, channel, levels, depth, discharge, start=0.0):
-        """The free jump of a jet that fills the section from its start."""
-        section = channel.shapes[channel.shape[0]]
+    def jump(self, channel, tail_depths, depth, discharge, start=0.0):
+        """The free jump of a jet that fills the section from its start, under tail depths by node (or one for all)."""
+        section = channel.shapes[channel.nodes.section[0]]
         area, width = geometry(section, depth)[:2]
         froude = discharge / area * math.sqrt(width / (GRAVITY * area))
         jet = Jet(discharge, width, depth, depth, froude, specific_force(section, discharge, depth))
         x, y, _ = self.jet_profile(channel, depth, discharge, start)
-        return free_jump(channel, 0, channel.chainage.size - 1, levels, jet, x, y, x.size)
+        return free_jump(channel, 0, channel.nodes.size - 1, channel.nodes.bed_level + tail_depths, jet, x, y, x.size)
 
 
 @pytest.fixture

@@ -32,7 +32,7 @@ def test_rectangle_of_ten_metres(rectangle_of_ten_metres):
 @pytest.fixture
 def small_trapezoid(units):
     """Trapezoid b = 0.5 m, z = 1, Q = 0.2 m³/s, y₁ = 0.1 m. Published (Maurer, open textbook, example 5.9, g = 9.8067);
-    the recomputed values differ by up to 0.06 %.
+    the recomputed values differ by up to 0.06 %, the power by 0.12 % (it stands on a unit weight of 9.79 kN/m³).
     """
     return trapezoid(0.5, 1.0), units(9.8067).discharge(0.2), 0.1
 
@@ -48,7 +48,7 @@ def test_small_trapezoid(small_trapezoid):
     assert specific_energy(section, discharge, toe) == pytest.approx(0.66651, rel=4e-4)
     assert specific_energy(section, discharge, sequent) == pytest.approx(0.41053, rel=4e-4)
     assert loss == pytest.approx(0.25598, rel=7e-4)
-    assert WATER_DENSITY * 9.8067 * 0.2 * loss == pytest.approx(501.4, rel=1.1e-3)
+    assert WATER_DENSITY * 9.79 * 0.2 * loss == pytest.approx(501.4, rel=1e-3)
 
 
 @pytest.fixture(

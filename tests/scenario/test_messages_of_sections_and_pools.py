@@ -120,6 +120,21 @@ CASES = [
         ],
     ),
     (
+        'shape = "rectangle"\nbottom_width = 6.0',
+        'shape = "points"\npoints = [[0.0, 3.0], [6.0, 0.0], [2.0, 0.0], [8.0, 3.0]]',
+        [
+            "canal.toml:6: sections basin points[3][1]: this station lies left of the one before; order them left "
+            "to right",
+        ],
+    ),
+    (
+        'shape = "rectangle"\nbottom_width = 6.0',
+        'shape = "points"\npoints = [[2.0, 3.0], [2.0, 0.0], [2.0, 3.0]]',
+        [
+            "canal.toml:6: sections basin points: the points have no width: first and last station are the same",
+        ],
+    ),
+    (
         "lining_height = 2.5",
         "lining_height = 3.5",
         [

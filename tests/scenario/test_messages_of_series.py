@@ -25,8 +25,8 @@ CASES = [
         [
             'day.toml:13: deliveries "North lateral"[2][1]: found "24:30"; a time of the first day goes from '
             '"00:00" to "24:00"; allowed after that: "+30 h" (from the start) or date and time (ISO 8601)',
-            'day.toml:13: deliveries "North lateral"[3][1]: found "+25 h", which is 25 h after the start, by '
-            "the clock; the period ends 24 h after its start",
+            'day.toml:13: deliveries "North lateral"[3][1]: found "+25 h", which is 25 h after the start; '
+            "the period ends 24 h after its start",
         ],
     ),
     (

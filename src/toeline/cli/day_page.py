@@ -5,7 +5,7 @@ from typing import TYPE_CHECKING
 
 from toeline.report.clock import clock_text, duration_text, later, span_text
 from toeline.report.layout import counted, heading, paragraph, table
-from toeline.report.orders import order_words
+from toeline.report.order_words import order_words
 
 if TYPE_CHECKING:
     from toeline.scenario import Order, Scenario, Series

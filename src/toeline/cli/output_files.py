@@ -6,7 +6,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from toeline.errors import UsageError
-from toeline.results.run_file import partial_of, resolved_target
+from toeline.results.run_file import RunFile
 
 if TYPE_CHECKING:
     from toeline.scenario import Scenario
@@ -31,10 +31,11 @@ def refuse_outputs(outputs: Sequence[Path], scenarios: Sequence["Scenario"], ove
         raise UsageError("two plans would go to one file: rename a plan, or run one at a time with --plan.")
     inputs = {path.resolve() for s in scenarios for path in (s.day_path, s.canal_path, s.start_file) if path}
     for output in outputs:
-        if resolved_target(output) in inputs:
+        file = RunFile(output, overwrite)
+        if file.path in inputs:
             raise UsageError(f"{output} is an input of this run and would be lost: name another file with -o.")
         if not output.parent.is_dir():
             raise UsageError(f"there is no directory {output.parent} to write {output.name} in.")
-        for standing in (output, partial_of(output)):
+        for standing in (output, file.partial_path):
             if standing.exists() and not overwrite:
                 raise UsageError(f"{standing} exists: name another file with -o, or replace it with --overwrite.")

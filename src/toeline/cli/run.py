@@ -71,6 +71,7 @@ def tell_of_compiling() -> None:
 def run_plan(scenario: "Scenario", output: Path, overwrite: bool, strict: bool) -> ExitStatus:
     """Run one plan, show its page and return the exit status; a failed run tells why and what is left of it."""
     from toeline import simulate
+    from toeline.findings.incidents import incidents
     from toeline.report.run_summary import run_summary
 
     try:
@@ -84,13 +85,14 @@ def run_plan(scenario: "Scenario", output: Path, overwrite: bool, strict: bool) 
         return ExitStatus.RUN_FAILED
     with dataset:
         show(run_summary(dataset, scenario.display, width=page_width()))
-        return ExitStatus.LIMIT_PASSED if strict and passes_a_limit(dataset) else ExitStatus.DONE
+        note(f"Results are in {output}.")
+        return ExitStatus.LIMIT_PASSED if strict and incidents(dataset) else ExitStatus.DONE
 
 
 def what_is_left(output: Path) -> str:
-    from toeline.results.run_file import partial_of
+    from toeline.results.run_file import RunFile
 
-    partial = partial_of(output)
+    partial = RunFile(output, overwrite=False).partial_path
     if not partial.exists():
         return "Nothing was written."
     return f"What was done so far is in {partial}; see it with: toeline describe {partial}"

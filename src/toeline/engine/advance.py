@@ -1,13 +1,12 @@
 """The compiled loop from one stop to the next: adaptive steps, output inside them."""
 
 import math
-from typing import NamedTuple
 
 import numpy as np
 
 from toeline.engine.output import fill_profile, fill_row
 from toeline.engine.step import accept, begin_leg, set_forcing, try_step
-from toeline.hydraulics.kernel import kernel
+from toeline.hydraulics.kernel import inner_kernel, kernel
 
 LEG_DONE, BLOCK_FULL, STEP_TOO_SMALL = range(3)
 
@@ -18,93 +17,107 @@ RESTART_STEP = 2.0
 JUMP = 1e-4
 """Change of a discharge [m³/s] at a stop that counts as a jump (choice)."""
 GROWTH = 3.0
+"""Largest ratio of a step to the one before."""
 END_SLACK = 1e-6
-"""Time [s] below which a rest of a leg is taken along with the step."""
+"""Time [s] below which the rest of a leg is taken along with a step."""
 
-
-class Pace(NamedTuple):
-    """How steps are chosen, and counts for people."""
-
-    tolerance: np.ndarray  # (1) m, of a level in one step
-    longest: np.ndarray  # (1) s
-    next_step: np.ndarray  # (1) s, wish for the next step
-    done: np.ndarray  # (1) s of the leg already advanced
-    counts: np.ndarray  # (3) int64: steps, rejected, linear solves
-
-
-class Appointments(NamedTuple):
-    """When output is due, in whole milliseconds from the start of the period."""
-
-    leg_start: np.ndarray  # (1) int64
-    every: np.ndarray  # (2) int64: rows, profiles
-    due: np.ndarray  # (2) int64: next row, next profile
+PACE = np.dtype(
+    [
+        ("tolerance", float),  # m, of a level in one step
+        ("longest_step", float),  # s
+        ("next_step", float),  # s, wish for the next step
+        ("done", float),  # s of the leg already advanced
+        ("leg_start", np.int64),  # ms from the start of the period
+        ("every", np.int64),  # ms between rows
+        ("profiles_every", np.int64),  # ms between profiles
+        ("due", np.int64),  # ms, next row
+        ("profile_due", np.int64),  # ms, next profile
+        ("steps", np.int64),
+        ("rejected", np.int64),
+        ("solves", np.int64),
+    ]
+)
+"""How steps are chosen, when output is due, and counts for people."""
 
 
 @kernel
-def advance(tables, state, middle, after, stage, totals, forcing, watch, rows, pace, appointments, leg, inertial):
+def advance(tables, state, middle, after, work, totals, forcing, watch, rows, paces, leg, inertial):
     """Advance the state through a leg of `leg` seconds; call again with the same leg after BLOCK_FULL.
 
     Output due at or after the start and before the end of the leg goes to `rows`. After a jump of the forcing the steps
     start small. Returns LEG_DONE, BLOCK_FULL or STEP_TOO_SMALL.
     """
-    if pace.done[0] == 0.0 and begin_leg(tables, state, stage, forcing) > JUMP:
-        pace.next_step[0] = min(pace.next_step[0], RESTART_STEP)
-    while pace.done[0] < leg:
-        if not _room_for_a_step(rows, pace, appointments):
+    pace = paces[0]
+    if pace.done == 0.0 and begin_leg(tables, state, work, forcing) > JUMP:
+        pace.next_step = min(pace.next_step, RESTART_STEP)
+    while pace.done < leg:
+        if not has_room(rows, pace):
             return BLOCK_FULL
-        rest = leg - pace.done[0]
-        wish = min(pace.next_step[0], pace.longest[0])
-        h = rest if wish >= rest - END_SLACK else (wish if wish < 0.6 * rest else 0.5 * rest)
-        solves, error = try_step(tables, state, middle, after, stage, forcing, pace.done[0], h, inertial)
-        pace.counts[2] += solves
-        if solves == 0 or error > pace.tolerance[0]:
-            pace.counts[1] += 1
-            shrink = 0.25 if solves == 0 else max(0.9 * (pace.tolerance[0] / error) ** (1.0 / 3.0), 0.2)
-            pace.next_step[0] = h * shrink
-            if pace.next_step[0] < SHORTEST_STEP:
+        rest, wish = leg - pace.done, min(pace.next_step, pace.longest_step)
+        h = step_towards(rest, wish)
+        solves, error = try_step(tables, state, middle, after, work, forcing, pace.done, h, inertial)
+        pace.solves += solves
+        if solves == 0 or error > pace.tolerance:
+            pace.rejected += 1
+            pace.next_step = h * (0.25 if solves == 0 else max(step_ratio(pace.tolerance, error), 0.2))
+            if pace.next_step < SHORTEST_STEP:
                 return STEP_TOO_SMALL
             continue
-        end = leg if h == rest else pace.done[0] + h
-        _write_due(tables, state, middle, after, totals, watch, rows, pace, appointments, forcing, h, end)
-        accept(tables, state, middle, after, stage, totals, h)
-        pace.counts[0] += 1
-        growth = min(0.9 * (pace.tolerance[0] / max(error, 1e-12)) ** (1.0 / 3.0), GROWTH)
-        pace.next_step[0] = max(h * growth, wish) if h < wish else h * growth
-        pace.done[0] = end
+        end = leg if h == rest else pace.done + h
+        write_due(tables, state, middle, after, totals, watch, rows, pace, forcing, h, end)
+        accept(tables, state, middle, after, work, totals, h)
+        pace.steps += 1
+        grown = h * min(step_ratio(pace.tolerance, error), GROWTH)
+        pace.next_step = max(grown, wish) if h < wish else grown
+        pace.done = end
     return LEG_DONE
 
 
-@kernel
-def _room_for_a_step(rows, pace, appointments):
+@inner_kernel
+def step_towards(rest, wish):
+    """The wished step [s], stretched or halved so that no sliver of the leg is left."""
+    if wish >= rest - END_SLACK:
+        return rest
+    return wish if wish < 0.6 * rest else 0.5 * rest
+
+
+@inner_kernel
+def step_ratio(tolerance, error):
+    """Ratio of the next step to this one for a third-order estimate of the error."""
+    return 0.9 * (tolerance / max(error, 1e-12)) ** (1.0 / 3.0)
+
+
+@inner_kernel
+def has_room(rows, pace):
     """Whether the block can take the output of one more step of the longest kind."""
-    longest = int(math.ceil(pace.longest[0] * 1000.0))
-    most, most_profiles = longest // appointments.every[0] + 2, longest // appointments.every[1] + 2
-    return rows.filled[0] + most <= rows.time.size and rows.filled[1] + most_profiles <= rows.profile_time.size
+    longest = int(math.ceil(pace.longest_step * 1000.0))
+    most, most_profiles = longest // pace.every + 2, longest // pace.profiles_every + 2
+    return rows.filled[0] + most <= rows.canal.size and rows.filled[1] + most_profiles <= rows.profile_time.size
 
 
-@kernel
-def _write_due(tables, state, middle, after, totals, watch, rows, pace, appointments, forcing, h, end):
+@inner_kernel
+def write_due(tables, state, middle, after, totals, watch, rows, pace, forcing, h, end):
     """Rows and profiles due from the start of the step until just before its end."""
-    start_ms, start = appointments.leg_start[0], pace.done[0]
-    for k in range(2):
-        while True:
-            due = (appointments.due[k] - start_ms) / 1000.0
-            if due >= end:
-                break
-            at = min(max((due - start) / h, 0.0), 1.0)
-            set_forcing(forcing, due)
-            if k == 0:
-                fill_row(
-                    tables, state, middle, after, totals, watch, rows, appointments.due[0], h, at, forcing.now
-                )
-            else:
-                fill_profile(tables, state, middle, after, watch, rows, appointments.due[1], h, at, forcing.now)
-            appointments.due[k] += appointments.every[k]
+    while (pace.due - pace.leg_start) / 1000.0 < end:
+        seconds = (pace.due - pace.leg_start) / 1000.0
+        set_forcing(forcing, seconds)
+        at = min(max((seconds - pace.done) / h, 0.0), 1.0)
+        fill_row(tables, state, middle, after, totals, watch, rows, pace.due, h, at, forcing)
+        pace.due += pace.every
+    while (pace.profile_due - pace.leg_start) / 1000.0 < end:
+        seconds = (pace.profile_due - pace.leg_start) / 1000.0
+        set_forcing(forcing, seconds)
+        at = min(max((seconds - pace.done) / h, 0.0), 1.0)
+        fill_profile(tables, state, middle, after, watch, rows, pace.profile_due, h, at, forcing)
+        pace.profile_due += pace.profiles_every
 
 
 @kernel
-def write_now(tables, state, totals, watch, rows, forcing, time_ms, profile):
-    """Row, and profile if asked for, of the state as it stands; `forcing.now` is that of the time."""
-    fill_row(tables, state, state, state, totals, watch, rows, time_ms, 0.0, 0.0, forcing.now)
-    if profile:
-        fill_profile(tables, state, state, state, watch, rows, time_ms, 0.0, 0.0, forcing.now)
+def write_end(tables, state, work, totals, watch, rows, paces, forcing, time_ms):
+    """Row and profile of the state at the very end, where they are due; no leg begins there."""
+    pace = paces[0]
+    begin_leg(tables, state, work, forcing)
+    if pace.due <= time_ms:
+        fill_row(tables, state, state, state, totals, watch, rows, time_ms, 0.0, 0.0, forcing)
+    if pace.profile_due <= time_ms:
+        fill_profile(tables, state, state, state, watch, rows, time_ms, 0.0, 0.0, forcing)

@@ -3,59 +3,96 @@
 import math
 
 from toeline.hydraulics.canal_tail import free_overfall_discharge, rating_discharge
-from toeline.hydraulics.kernel import kernel
+from toeline.hydraulics.kernel import inner_kernel, kernel
 from toeline.hydraulics.underflow_gate import UnderflowGate, gate_discharge, gate_flow
 from toeline.hydraulics.uniform_flow import conveyance
-from toeline.network.tables import FREE_OVERFALL, NORMAL_DEPTH
+from toeline.network.tables import (
+    FORCING_GATES,
+    FORCING_HEAD,
+    FORCING_TAIL,
+    FREE_OVERFALL,
+    GATE,
+    INFLOW,
+    NORMAL_DEPTH,
+    TAIL_LEVEL,
+)
 
 LEVEL_NUDGE = 1e-6
 """Step [m] of the finite differences of the gate law."""
 
-
-@kernel
-def gate_of(gates, g):
-    """The law's view of gate g."""
-    row = gates.law[g]
-    return UnderflowGate(row[0], row[1], row[2], row[3], row[4], row[5], row[6], row[7], row[8], row[9], row[10])
+LEAST_TAIL_CONVEYANCE = 1e-6
+"""Floor of the conveyance [m³/s] of the metre of canal before a tail level."""
 
 
 @kernel
-def gate_discharge_at(channel, gates, g, level_up, level_down, opening):
-    """Discharge of gate g [m³/s] at two levels and an opening."""
-    up, down = channel.shapes[gates.upstream_shape[g]], channel.shapes[gates.downstream_shape[g]]
-    return gate_discharge(gate_of(gates, g), up, down, level_up, level_down, opening)
+def law_of(gate):
+    """The law's view of a gate row."""
+    return UnderflowGate(
+        gate.width, gate.sill_level, gate.floor_level, gate.upstream_bed_level, gate.contraction, gate.radius,
+        gate.pinion_height, gate.discharge_factor, gate.leaf_height, gate.leaf_weir_coefficient, gate.leakage,
+    )  # fmt: skip
 
 
 @kernel
-def gate_flow_at(channel, gates, g, level_up, level_down, opening):
-    """`GateFlow` of gate g at two levels and an opening."""
-    up, down = channel.shapes[gates.upstream_shape[g]], channel.shapes[gates.downstream_shape[g]]
-    return gate_flow(gate_of(gates, g), up, down, level_up, level_down, opening)
+def gate_discharge_at(shapes, gate, level_up, level_down, opening):
+    """Discharge of a gate row [m³/s] at two levels and an opening."""
+    up, down = shapes[gate.upstream_section], shapes[gate.downstream_section]
+    return gate_discharge(law_of(gate), up, down, level_up, level_down, opening)
 
 
 @kernel
-def gate_levels(gates, g, level, head_level, tail_level):
-    """Headwater and tailwater level [m] of gate g from the nodes or the boundaries beside it."""
-    up = head_level if gates.upstream_node[g] < 0 else level[gates.upstream_node[g]]
-    down = tail_level if gates.downstream_node[g] >= level.size else level[gates.downstream_node[g]]
+def gate_flow_at(shapes, gate, level_up, level_down, opening):
+    """`GateFlow` of a gate row at two levels and an opening."""
+    up, down = shapes[gate.upstream_section], shapes[gate.downstream_section]
+    return gate_flow(law_of(gate), up, down, level_up, level_down, opening)
+
+
+@kernel
+def gate_levels(gate, level, nodes, head_level, tail_level):
+    """Headwater and tailwater level [m] of a gate row, from the first `nodes` levels or the boundaries beyond."""
+    up = head_level if gate.upstream_node < 0 else level[gate.upstream_node]
+    down = tail_level if gate.downstream_node >= nodes else level[gate.downstream_node]
     return up, down
 
 
-@kernel
-def gate_slopes(channel, gates, g, level_up, level_down, opening, discharge):
-    """Derivatives of a gate's discharge to the level above (not negative) and below (not positive) [m²/s]."""
-    above = gate_discharge_at(channel, gates, g, level_up + LEVEL_NUDGE, level_down, opening)
-    below = gate_discharge_at(channel, gates, g, level_up, level_down + LEVEL_NUDGE, opening)
-    return max(above - discharge, 0.0) / LEVEL_NUDGE, min(below - discharge, 0.0) / LEVEL_NUDGE
+@inner_kernel
+def gate_balance(shapes, gate, up, down, opening, q):
+    """Residual q − Q(levels) of a gate [m³/s] and its derivatives to the level above, q and the level below."""
+    passed = gate_discharge_at(shapes, gate, up, down, opening)
+    above = gate_discharge_at(shapes, gate, up + LEVEL_NUDGE, down, opening)
+    below = gate_discharge_at(shapes, gate, up, down + LEVEL_NUDGE, opening)
+    by_up, by_down = max(above - passed, 0.0) / LEVEL_NUDGE, min(below - passed, 0.0) / LEVEL_NUDGE
+    return q - passed, -by_up, 1.0, -by_down
 
 
-@kernel
-def tail_discharge(channel, boundary, kind, node, level):
+@inner_kernel
+def tail_discharge(tables, kind, node, level):
     """Discharge [m³/s] that leaves the last node over a free overfall, by a rating or at normal depth."""
-    section = channel.shapes[channel.shape[node]]
-    depth = level - channel.bed_level[node]
+    site = tables.channel.nodes[node]
+    section, depth = tables.channel.shapes[site.section], level - site.bed_level
     if kind == FREE_OVERFALL:
         return free_overfall_discharge(section, depth)
     if kind == NORMAL_DEPTH:
-        return conveyance(section, channel.roughness[node], depth) * math.sqrt(boundary.slope[0])
-    return rating_discharge(boundary.rating_level, boundary.rating_discharge, level)
+        return conveyance(section, site.roughness, depth) * math.sqrt(tables.tail_slope[0])
+    return rating_discharge(tables.tail_rating[0], tables.tail_rating[1], level)
+
+
+@inner_kernel
+def boundary_balance(tables, index, nodes, q, forcing, last_conveyance):
+    """Residual of a link that is not a reach, and its derivatives to the level above, the discharge and the level below."""
+    link = tables.links[index]
+    if link.kind == INFLOW:
+        return q - forcing[FORCING_HEAD].now, 0.0, 1.0, 0.0
+    if link.kind == GATE:
+        gate = tables.gates[link.gate]
+        up, down = gate_levels(gate, nodes.level, nodes.size, forcing[FORCING_HEAD].now, forcing[FORCING_TAIL].now)
+        return gate_balance(tables.channel.shapes, gate, up, down, forcing[FORCING_GATES + link.gate].now, q)
+    last = nodes.size - 1
+    level = nodes[last].level
+    if link.kind == TAIL_LEVEL:
+        k = max(last_conveyance, LEAST_TAIL_CONVEYANCE)
+        loss = link.length / (k * k)
+        return level - forcing[FORCING_TAIL].now - q * abs(q) * loss, 1.0, -2.0 * abs(q) * loss, 0.0
+    passed = tail_discharge(tables, link.kind, last, level)
+    nudged = tail_discharge(tables, link.kind, last, level + LEVEL_NUDGE)
+    return q - passed, -(nudged - passed) / LEVEL_NUDGE, 1.0, 0.0

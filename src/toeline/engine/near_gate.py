@@ -3,10 +3,16 @@
 import math
 
 from toeline.constants import GRAVITY, WATER_DENSITY
-from toeline.engine.gate_link import gate_flow_at, gate_levels, gate_of
+from toeline.engine.gate_link import gate_flow_at
 from toeline.hydraulics.cross_section import geometry
 from toeline.hydraulics.gradually_varied_flow import link_force, supercritical_profile
-from toeline.hydraulics.hydraulic_jump import NO_JUMP, jump_kind, subcritical_depth_of_force
+from toeline.hydraulics.hydraulic_jump import (
+    LENGTH_GOOD,
+    LENGTH_NOT_DEFINED,
+    NO_JUMP,
+    jump_kind,
+    subcritical_depth_of_force,
+)
 from toeline.hydraulics.jump_location import (
     JUMP_DROWNED,
     JUMP_NONE,
@@ -18,10 +24,9 @@ from toeline.hydraulics.jump_location import (
     protection_margin,
     tail_depth_at,
 )
-from toeline.hydraulics.kernel import kernel
+from toeline.hydraulics.kernel import inner_kernel
 from toeline.hydraulics.submerged_jump import jet_force, roller_depth, roller_length, submergence
 from toeline.hydraulics.underflow_gate import CLEAR_AND_DROWNED, CLOSED, DROWNED, REVERSE
-from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL
 
 JET_START = 1.0
 """Distance of the contracted section from the lip, in openings (choice; common practice is 1 to 2)."""
@@ -29,124 +34,123 @@ JET_START = 1.0
 LEAST_JET_FROUDE = 1.0 + 1e-6
 
 
-@kernel
-def judge_gate(tables, rows, row, g, solved_level, level, now, chainages, depths):
-    """Fill one row of gate output; returns the gate's discharge [m³/s].
+@inner_kernel
+def judge_gate(channel, gate, up, down, opening, level, jet, out):
+    """Fill a gate's record of output from its two levels, its opening and the levels along the channel.
 
-    `solved_level` are the unknown levels, `level` those of all channel nodes, the floor beyond a tail gate included.
+    `jet` is scratch, (2, points). Returns the discharge [m³/s].
     """
-    gates, out, opening = tables.gates, rows.gates, now[FORCING_GATES + g]
-    up, down = gate_levels(gates, g, solved_level, now[FORCING_HEAD], now[FORCING_TAIL])
-    flow = gate_flow_at(tables.channel, gates, g, up, down, opening)
-    out.gate_opening[row, g] = opening
-    out.gate_discharge[row, g] = flow.discharge
-    out.gate_flow_state[row, g] = flow.state
-    out.discharge_quality[row, g] = flow.quality
-    out.gate_headwater_level[row, g] = max(up, gates.law[g, 3])
-    out.gate_tailwater_level[row, g] = max(down, gates.law[g, 2])
-    _no_jump(out, row, g)
-    if opening <= 0.0 or flow.state in (CLOSED, REVERSE) or flow.underflow <= 0.0:
+    flow = gate_flow_at(channel.shapes, gate, up, down, opening)
+    out.gate_opening = opening
+    out.gate_discharge = flow.discharge
+    out.gate_flow_state = flow.state
+    out.discharge_quality = flow.quality
+    out.gate_headwater_level = max(up, gate.upstream_bed_level)
+    out.gate_tailwater_level = max(down, gate.floor_level)
+    no_jump(out)
+    if opening <= 0.0 or flow.state == CLOSED or flow.state == REVERSE or flow.underflow <= 0.0:
         return flow.discharge
-    gate = gate_of(gates, g)
-    section = tables.channel.shapes[gates.downstream_shape[g]]
-    step = gate.sill_level - gate.floor_level
+    section, step = channel.shapes[gate.downstream_section], gate.sill_level - gate.floor_level
     free = jet_on_floor(section, gate.width, flow.jet_thickness, step, flow.free_discharge)
+    drowned = flow.state == DROWNED or flow.state == CLEAR_AND_DROWNED
     if free.froude > LEAST_JET_FROUDE:
-        _judge_jump(tables, out, row, g, gate, section, flow, free, up, level, opening, chainages, depths)
-    elif flow.state in (DROWNED, CLEAR_AND_DROWNED):
-        _drowned_jump(tables, out, row, g, gate, section, flow, up, level)
+        drowned = judge_jet(channel, gate, section, flow, free, level, opening, drowned, jet, out)
+    if drowned:
+        drowned_jump(channel.shapes, gate, section, flow, up, down, out)
     return flow.discharge
 
 
-@kernel
-def _no_jump(out, row, g):
-    out.jump_state[row, g] = JUMP_NONE
-    out.jump_kind[row, g] = NO_JUMP
-    out.jump_length_quality[row, g] = 0
-    out.jet_depth[row, g] = math.nan
-    out.jet_froude_number[row, g] = math.nan
-    out.sequent_depth[row, g] = math.nan
-    out.roller_depth[row, g] = math.nan
-    out.jump_toe_distance[row, g] = math.nan
-    out.jump_end_distance[row, g] = math.nan
-    out.tailwater_margin[row, g] = math.nan
-    out.protection_margin[row, g] = math.nan
-    out.jump_energy_loss[row, g] = math.nan
-    out.jump_power[row, g] = math.nan
+@inner_kernel
+def no_jump(out):
+    """A record that says that there is no jump."""
+    out.jump_state = JUMP_NONE
+    out.jump_kind = NO_JUMP
+    out.jump_length_quality = LENGTH_NOT_DEFINED
+    out.jet_depth = math.nan
+    out.jet_froude_number = math.nan
+    out.sequent_depth = math.nan
+    out.roller_depth = math.nan
+    out.jump_toe_distance = math.nan
+    out.jump_end_distance = math.nan
+    out.tailwater_margin = math.nan
+    out.protection_margin = math.nan
+    out.jump_energy_loss = math.nan
+    out.jump_power = math.nan
 
 
-@kernel
-def _judge_jump(tables, out, row, g, gate, section, flow, free, up, level, opening, chainages, depths):
-    """Margins from the free jet, then the jump of the present discharge."""
-    first, last = tables.gates.downstream_node[g], tables.gates.floor_last[g]
-    origin = tables.channel.chainage[first]
-    start = min(origin + JET_START * opening, 0.5 * (origin + tables.channel.chainage[first + 1]))
-    weight = (start - origin) / (tables.channel.chainage[first + 1] - origin)
+@inner_kernel
+def judge_jet(channel, gate, section, flow, free, level, opening, drowned, jet, out):
+    """Margins from the free jet, then the free jump of the present discharge; returns whether the jump is drowned."""
+    first, last = gate.downstream_node, gate.floor_last
+    origin, following = channel.nodes[first].chainage, channel.nodes[first + 1].chainage
+    start = min(origin + JET_START * opening, 0.5 * (origin + following))
+    weight = (start - origin) / (following - origin)
     tail_level = level[first] + weight * (level[first + 1] - level[first])
-    out.tailwater_margin[row, g] = tail_level - gate.floor_level - drowning_depth(section, free)
-    count, _ = supercritical_profile(
-        tables.channel, first, last, start, free.full_depth, free.discharge, chainages, depths
+    out.tailwater_margin = tail_level - gate.floor_level - drowning_depth(section, free)
+    count, _ = supercritical_profile(channel, first, last, start, free.full_depth, free.discharge, jet[0], jet[1])
+    out.protection_margin = protection_margin(
+        channel, first, last, level, free.discharge, jet[0], jet[1], count, origin + gate.protection_end
     )
-    out.protection_margin[row, g] = protection_margin(
-        tables.channel, first, last, level, free.discharge, chainages, depths, count, origin + tables.gates.protection_end[g]
-    )
-    if flow.state in (DROWNED, CLEAR_AND_DROWNED):
-        _drowned_jump(tables, out, row, g, gate, section, flow, up, level)
-        return
-    jet = free
+    if drowned:
+        return True
+    present = free
     if flow.underflow < free.discharge:
-        jet = jet_on_floor(section, gate.width, flow.jet_thickness, gate.sill_level - gate.floor_level, flow.underflow)
-    tail = tail_depth_at(tables.channel, level, first, weight, jet.discharge)
-    if jet.force <= link_force(tables.channel, first, weight, jet.discharge, tail):
-        _drowned_jump(tables, out, row, g, gate, section, flow, up, level)
-        return
-    if jet.froude <= LEAST_JET_FROUDE:
-        return
+        step = gate.sill_level - gate.floor_level
+        present = jet_on_floor(section, gate.width, flow.jet_thickness, step, flow.underflow)
+    tail = tail_depth_at(channel, level, first, weight, present.discharge)
+    if present.force <= link_force(channel, first, weight, present.discharge, tail):
+        return True
+    if present.froude <= LEAST_JET_FROUDE:
+        return False
     if flow.underflow < free.discharge:
         count, _ = supercritical_profile(
-            tables.channel, first, last, start, jet.full_depth, jet.discharge, chainages, depths
+            channel, first, last, start, present.full_depth, present.discharge, jet[0], jet[1]
         )
-    jump = free_jump(tables.channel, first, last, level, jet, chainages, depths, count)
-    out.jet_depth[row, g] = jet.depth
-    out.jet_froude_number[row, g] = jet.froude
+    jump = free_jump(channel, first, last, level, present, jet[0], jet[1], count)
+    out.jet_depth = present.depth
+    out.jet_froude_number = present.froude
+    fill_free_jump(gate, jump, origin, present.discharge, out)
+    return False
+
+
+@inner_kernel
+def fill_free_jump(gate, jump, origin, discharge, out):
+    """A free jump, or a jet that leaves the channel."""
     if math.isnan(jump.chainage):
-        out.jump_state[row, g] = JUMP_SWEPT_OUT
+        out.jump_state = JUMP_SWEPT_OUT
         return
     toe = jump.chainage - origin
     end = toe if math.isnan(jump.length) else toe + jump.length
-    out.jump_state[row, g] = jump_state(end, tables.gates.apron_end[g], tables.gates.protection_end[g])
-    out.jump_kind[row, g] = jump_kind(jump.froude)
-    out.jump_length_quality[row, g] = jump.length_quality
-    out.sequent_depth[row, g] = jump.sequent
-    out.jump_toe_distance[row, g] = toe
-    out.jump_end_distance[row, g] = toe + jump.length
-    out.jump_energy_loss[row, g] = jump.energy_loss
-    out.jump_power[row, g] = WATER_DENSITY * GRAVITY * jet.discharge * jump.energy_loss
+    out.jump_state = jump_state(end, gate.apron_end, gate.protection_end)
+    out.jump_kind = jump_kind(jump.froude)
+    out.jump_length_quality = jump.length_quality
+    out.sequent_depth = jump.sequent
+    out.jump_toe_distance = toe
+    out.jump_end_distance = toe + jump.length
+    out.jump_energy_loss = jump.energy_loss
+    out.jump_power = WATER_DENSITY * GRAVITY * discharge * jump.energy_loss
 
 
-@kernel
-def _drowned_jump(tables, out, row, g, gate, section, flow, up, level):
+@inner_kernel
+def drowned_jump(shapes, gate, section, flow, up, down, out):
     """A roller at the gate: its depth over the jet, which keeps its thickness, its end and what it dissipates."""
-    q, thickness = flow.underflow, flow.jet_thickness
-    tail_depth = level[tables.gates.downstream_node[g]] - gate.floor_level
+    q, thickness, tail_depth = flow.underflow, flow.jet_thickness, down - gate.floor_level
     force = jet_force(section, q, gate.width, thickness, thickness)
     sequent, _ = subcritical_depth_of_force(section, q, force)
     depth = flow.roller_depth
     if math.isnan(depth):
         depth, _ = roller_depth(section, q, gate.width, thickness, tail_depth)
-    unit = q / gate.width
     tail_area = geometry(section, tail_depth)[0]
-    above = tables.channel.shapes[tables.gates.upstream_shape[g]]
-    up_area = geometry(above, up - gate.upstream_bed_level)[0]
+    up_area = geometry(shapes[gate.upstream_section], up - gate.upstream_bed_level)[0]
     head = q * q / (2.0 * GRAVITY)
-    loss = up + head / (up_area * up_area) - gate.floor_level - tail_depth - head / (tail_area * tail_area)
-    out.jump_state[row, g] = JUMP_DROWNED
-    out.jet_depth[row, g] = thickness
-    out.jet_froude_number[row, g] = unit / (thickness * math.sqrt(GRAVITY * thickness))
-    out.sequent_depth[row, g] = sequent
-    out.roller_depth[row, g] = depth
-    out.jump_toe_distance[row, g] = 0.0
-    out.jump_end_distance[row, g] = roller_length(sequent, submergence(tail_depth, sequent))
-    out.jump_length_quality[row, g] = 1
-    out.jump_energy_loss[row, g] = max(loss, 0.0)
-    out.jump_power[row, g] = WATER_DENSITY * GRAVITY * q * max(loss, 0.0)
+    loss = max(up - down + head / (up_area * up_area) - head / (tail_area * tail_area), 0.0)
+    out.jump_state = JUMP_DROWNED
+    out.jet_depth = thickness
+    out.jet_froude_number = q / (gate.width * thickness * math.sqrt(GRAVITY * thickness))
+    out.sequent_depth = sequent
+    out.roller_depth = depth
+    out.jump_toe_distance = 0.0
+    out.jump_end_distance = roller_length(sequent, submergence(tail_depth, sequent))
+    out.jump_length_quality = LENGTH_GOOD if out.jump_end_distance >= 0.0 else LENGTH_NOT_DEFINED
+    out.jump_energy_loss = loss
+    out.jump_power = WATER_DENSITY * GRAVITY * q * loss

@@ -1,35 +1,48 @@
 """One instant inside a step: levels and discharges interpolated, gates and jumps judged for them, a row filled."""
 
+import math
 from typing import NamedTuple
 
 import numpy as np
 
+from toeline.engine.gate_link import gate_levels
 from toeline.engine.near_gate import judge_gate
-from toeline.engine.step import DIAGONAL, GAMMA, WEIGHT, canal_outflow_link
+from toeline.engine.step import DIAGONAL, GAMMA, canal_outflow_link, weighted
 from toeline.hydraulics.cross_section import geometry
 from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH
-from toeline.hydraulics.kernel import kernel
-from toeline.network.tables import FORCING_GATES, FORCING_TAIL, GATE
+from toeline.hydraulics.kernel import inner_kernel
+from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, GATE
+
+JET_POINTS = 400
+"""Most points of a jet's profile."""
+
+GATE_WATCH = np.dtype(
+    [
+        ("surge_upstream", float),  # m, bound of the last moves
+        ("surge_downstream", float),  # m
+        ("surge_upstream_until", np.int64),  # ms, when the pool above has settled
+        ("surge_downstream_until", np.int64),  # ms
+    ]
+)
+
+BANKS = np.dtype([("bank_level", float), ("lining_level", float)])
+"""Of a canal node [m], inf where none."""
 
 
 class Watch(NamedTuple):
     """What the output needs beside the state."""
 
-    bank_level: np.ndarray  # (canal nodes) m, inf where none
-    lining_level: np.ndarray  # (canal nodes) m, inf where none
-    start_storage: np.ndarray  # (1) m³ in the canal at the start of the day
-    surge_upstream: np.ndarray  # (g) m, bound of the last move
-    surge_downstream: np.ndarray  # (g) m
-    surge_until: np.ndarray  # (g, 2) int64 ms, when the pool above and below has settled
+    banks: np.recarray  # (canal nodes) of BANKS
+    gates: np.recarray  # (g) of GATE_WATCH
     settled_at: np.ndarray  # (p) int64 ms
+    start_storage: np.ndarray  # (1) m³ in the canal at the start of the day
     level: np.ndarray  # (all channel nodes) m, scratch
-    link_discharge: np.ndarray  # (n + 1) m³/s, scratch
-    chainages: np.ndarray  # scratch of the jets
-    depths: np.ndarray  # scratch of the jets
+    discharge: np.ndarray  # (n + 1) m³/s, scratch
+    jet: np.ndarray  # (2, JET_POINTS) chainages and depths, scratch
 
 
-@kernel
-def _quadratic(at, start, middle, end):
+@inner_kernel
+def quadratic(at, start, middle, end):
     """Value at a fraction of the step through its start, its stage at γ and its end."""
     by_start = (at - GAMMA) * (at - 1.0) / GAMMA
     by_middle = at * (at - 1.0) / (GAMMA * (GAMMA - 1.0))
@@ -37,131 +50,135 @@ def _quadratic(at, start, middle, end):
     return by_start * start + by_middle * middle + by_end * end
 
 
-@kernel
-def _levels_at(tables, before, after, h, at, now, level):
-    """Levels at a fraction of the step: cubic Hermite in wet nodes, linear in drying ones."""
+@inner_kernel
+def levels_at(tables, before, after, h, at, tail_level, level):
+    """Levels at a fraction of the step: cubic Hermite in wet nodes, linear in drying ones; level water beyond a tail gate."""
     square, cube = at * at, at * at * at
     end = 3.0 * square - 2.0 * cube
     rate_start, rate_end = h * (cube - 2.0 * square + at), h * (cube - square)
-    for node in range(before.level.size):
-        z = before.level[node] + end * (after.level[node] - before.level[node])
-        dry = tables.channel.bed_level[node] + 2.0 * DRY_DEPTH
-        if before.level[node] > dry and after.level[node] > dry:
-            cell = tables.nodes.cell_length[node]
-            z += rate_start * before.net_inflow[node] / (cell * before.width[node])
-            z += rate_end * after.net_inflow[node] / (cell * after.width[node])
-        level[node] = z
-    beyond = now[FORCING_TAIL]
-    if tables.gates.downstream_node.size > 0 and before.level.size < level.size:
-        last_gate = tables.gates.downstream_node.size - 1
-        if tables.gates.downstream_node[last_gate] < before.level.size:
-            beyond = level[tables.gates.downstream_node[last_gate]]
-    for node in range(before.level.size, level.size):
-        level[node] = beyond
+    count = before.nodes.size
+    for k in range(count):
+        old, new = before.nodes[k], after.nodes[k]
+        dry = tables.channel.nodes[k].bed_level + 2.0 * DRY_DEPTH
+        z = old.level + end * (new.level - old.level)
+        if old.level > dry and new.level > dry:
+            cell = tables.cells[k].length
+            z += rate_start * old.net_inflow / (cell * old.width) + rate_end * new.net_inflow / (cell * new.width)
+        level[k] = z
+    beyond = tail_level
+    if level.size > count and tables.gates[tables.gates.size - 1].downstream_node < count:
+        beyond = level[count - 1]
+    for k in range(count, level.size):
+        level[k] = beyond
 
 
-@kernel
-def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at, now):
-    """Fill the next row of output; `at` is the fraction of the step, `now` the forcing of that time."""
+@inner_kernel
+def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at, forcing):
+    """Fill the next row of output; `at` is the fraction of the step, `forcing` set to that time."""
     row = rows.filled[0]
     rows.filled[0] += 1
-    rows.time[row] = time_ms
-    _levels_at(tables, before, after, h, at, now, watch.level)
-    solved = watch.level[: before.level.size]
-    for link in range(before.discharge.size):
-        watch.link_discharge[link] = _quadratic(at, before.discharge[link], middle.discharge[link], after.discharge[link])
-    for link in range(before.discharge.size):
-        if tables.links.kind[link] == GATE:
-            g = tables.links.gate[link]
-            watch.link_discharge[link] = judge_gate(
-                tables, rows, row, g, solved, watch.level, now, watch.chainages, watch.depths
-            )
-            _fill_surge(rows.gates, watch, row, g, time_ms)
-    _fill_pools(tables, before, middle, after, watch, rows.pools, row, time_ms, at)
-    delivered = _fill_offtakes(tables, before, middle, after, totals, rows.offtakes, row, h, at, now)
-    _fill_canal(tables, before, middle, after, totals, watch, rows, row, h, at, delivered)
+    head_level, tail_level = forcing[FORCING_HEAD].now, forcing[FORCING_TAIL].now
+    levels_at(tables, before, after, h, at, tail_level, watch.level)
+    for index in range(before.links.size):
+        watch.discharge[index] = quadratic(
+            at, before.links[index].discharge, middle.links[index].discharge, after.links[index].discharge
+        )
+        link = tables.links[index]
+        if link.kind == GATE:
+            gate, out, guard = tables.gates[link.gate], rows.gates[row, link.gate], watch.gates[link.gate]
+            up, down = gate_levels(gate, watch.level, before.nodes.size, head_level, tail_level)
+            opening = forcing[FORCING_GATES + link.gate].now
+            watch.discharge[index] = judge_gate(tables.channel, gate, up, down, opening, watch.level, watch.jet, out)
+            out.surge_height_bound_upstream = guard.surge_upstream if time_ms < guard.surge_upstream_until else 0.0
+            out.surge_height_bound_downstream = guard.surge_downstream if time_ms < guard.surge_downstream_until else 0.0
+    storage = fill_pools(tables, before, middle, after, watch, rows.pools[row], time_ms, at)
+    delivered = fill_offtakes(tables, before, middle, after, totals, rows.offtakes[row], h, at, forcing)
+    canal = rows.canal[row]
+    canal.time = time_ms
+    canal.canal_storage = storage
+    fill_canal(tables, before, middle, after, totals, watch, canal, h, at)
+    change = storage - watch.start_storage[0]
+    canal.balance_residual = canal.canal_inflow_volume - canal.canal_outflow_volume - delivered - change
 
 
-@kernel
-def _fill_surge(out, watch, row, g, time_ms):
-    out.surge_height_bound_upstream[row, g] = watch.surge_upstream[g] if time_ms < watch.surge_until[g, 0] else 0.0
-    out.surge_height_bound_downstream[row, g] = watch.surge_downstream[g] if time_ms < watch.surge_until[g, 1] else 0.0
-
-
-@kernel
-def _fill_pools(tables, before, middle, after, watch, out, row, time_ms, at):
-    for p in range(tables.pools.first_node.size):
-        first, last = tables.pools.first_node[p], tables.pools.last_node[p]
+@inner_kernel
+def fill_pools(tables, before, middle, after, watch, out, time_ms, at):
+    """Fill a row of pools; returns the volume in the canal [m³]."""
+    storage = 0.0
+    for p in range(tables.pools.size):
+        first, last = tables.pools[p].first_node, tables.pools[p].last_node
         start = inner = end = 0.0
-        bank = lining = np.inf
-        for node in range(first, last + 1):
-            start += before.volume[node]
-            inner += middle.volume[node]
-            end += after.volume[node]
-            bank = min(bank, watch.bank_level[node] - watch.level[node])
-            lining = min(lining, watch.lining_level[node] - watch.level[node])
-        out.settling[row, p] = 1 if time_ms < watch.settled_at[p] else 0
-        out.pool_volume[row, p] = _quadratic(at, start, inner, end)
-        out.pool_head_level[row, p] = max(watch.level[first], tables.channel.bed_level[first])
-        out.pool_tail_level[row, p] = max(watch.level[last], tables.channel.bed_level[last])
-        out.pool_inflow[row, p] = watch.link_discharge[first]
-        out.pool_outflow[row, p] = watch.link_discharge[last + 1]
-        out.pool_losses[row, p] = 0.0
-        out.pool_bank_margin[row, p] = bank if bank < np.inf else np.nan
-        out.pool_lining_margin[row, p] = lining if lining < np.inf else np.nan
+        bank = lining = math.inf
+        for k in range(first, last + 1):
+            start += before.nodes[k].volume
+            inner += middle.nodes[k].volume
+            end += after.nodes[k].volume
+            bank = min(bank, watch.banks[k].bank_level - watch.level[k])
+            lining = min(lining, watch.banks[k].lining_level - watch.level[k])
+        pool = out[p]
+        pool.settling = 1 if time_ms < watch.settled_at[p] else 0
+        pool.pool_volume = quadratic(at, start, inner, end)
+        pool.pool_head_level = max(watch.level[first], tables.channel.nodes[first].bed_level)
+        pool.pool_tail_level = max(watch.level[last], tables.channel.nodes[last].bed_level)
+        pool.pool_inflow = watch.discharge[first]
+        pool.pool_outflow = watch.discharge[last + 1]
+        pool.pool_losses = 0.0
+        pool.pool_bank_margin = bank if bank < math.inf else math.nan
+        pool.pool_lining_margin = lining if lining < math.inf else math.nan
+        storage += pool.pool_volume
+    return storage
 
 
-@kernel
-def _total_at(at, h, total, start, middle, end):
+@inner_kernel
+def total_at(at, h, total, start, middle, end):
     """A running total at a fraction of the step, consistent with the stored volumes there."""
     inner = total + DIAGONAL * h * (start + middle)
-    last = total + h * (WEIGHT * (start + middle) + DIAGONAL * end)
-    return _quadratic(at, total, inner, last)
+    return quadratic(at, total, inner, total + h * weighted(start, middle, end))
 
 
-@kernel
-def _fill_offtakes(tables, before, middle, after, totals, out, row, h, at, now):
-    """Returns the volume delivered by all offtakes [m³]."""
-    first_demand = FORCING_GATES + tables.gates.apron_end.size
+@inner_kernel
+def fill_offtakes(tables, before, middle, after, totals, out, h, at, forcing):
+    """Fill a row of offtakes; returns the volume delivered by all [m³]."""
+    first_demand = FORCING_GATES + tables.gates.size
     delivered = 0.0
     for k in range(before.delivery.size):
-        out.demand[row, k] = now[first_demand + k]
-        out.delivery[row, k] = _quadratic(at, before.delivery[k], middle.delivery[k], after.delivery[k])
-        volume = _total_at(at, h, totals.delivery[k], before.delivery[k], middle.delivery[k], after.delivery[k])
-        out.delivery_volume[row, k] = volume
-        delivered += volume
+        start, inner, end = before.delivery[k], middle.delivery[k], after.delivery[k]
+        take = out[k]
+        take.demand = forcing[first_demand + k].now
+        take.delivery = quadratic(at, start, inner, end)
+        take.delivery_volume = total_at(at, h, totals.delivery[k], start, inner, end)
+        delivered += take.delivery_volume
     return delivered
 
 
-@kernel
-def _fill_canal(tables, before, middle, after, totals, watch, rows, row, h, at, delivered):
-    out, last = rows.canal, canal_outflow_link(tables)
-    inflow = _total_at(at, h, totals.inflow[0], before.discharge[0], middle.discharge[0], after.discharge[0])
-    outflow = _total_at(at, h, totals.outflow[0], before.discharge[last], middle.discharge[last], after.discharge[last])
-    storage = 0.0
-    for p in range(tables.pools.first_node.size):
-        storage += rows.pools.pool_volume[row, p]
-    out.canal_inflow[row] = watch.link_discharge[0]
-    out.canal_outflow[row] = watch.link_discharge[last]
-    out.canal_inflow_volume[row] = inflow
-    out.canal_outflow_volume[row] = outflow
-    out.canal_storage[row] = storage
-    out.balance_residual[row] = inflow - outflow - delivered - (storage - watch.start_storage[0])
+@inner_kernel
+def fill_canal(tables, before, middle, after, totals, watch, canal, h, at):
+    """Fill what comes into and leaves the canal."""
+    out = canal_outflow_link(tables)
+    canal.canal_inflow = watch.discharge[0]
+    canal.canal_outflow = watch.discharge[out]
+    canal.canal_inflow_volume = total_at(
+        at, h, totals.canal[0], before.links[0].discharge, middle.links[0].discharge, after.links[0].discharge
+    )
+    canal.canal_outflow_volume = total_at(
+        at, h, totals.canal[1], before.links[out].discharge, middle.links[out].discharge, after.links[out].discharge
+    )
 
 
-@kernel
-def fill_profile(tables, before, middle, after, watch, rows, time_ms, h, at, now):
+@inner_kernel
+def fill_profile(tables, before, middle, after, watch, rows, time_ms, h, at, forcing):
     """Fill the next row of the long profile."""
     row = rows.filled[1]
     rows.filled[1] += 1
     rows.profile_time[row] = time_ms
-    _levels_at(tables, before, after, h, at, now, watch.level)
-    out = rows.profiles
-    for node in range(out.water_level.shape[1]):
-        above = _quadratic(at, before.discharge[node], middle.discharge[node], after.discharge[node])
-        below = _quadratic(at, before.discharge[node + 1], middle.discharge[node + 1], after.discharge[node + 1])
-        bed = tables.channel.bed_level[node]
-        area = geometry(tables.channel.shapes[tables.channel.shape[node]], watch.level[node] - bed)[0]
-        out.water_level[row, node] = max(watch.level[node], bed)
-        out.discharge[row, node] = 0.5 * (above + below)
-        out.velocity[row, node] = 0.5 * (above + below) / area if watch.level[node] > bed + DRY_DEPTH else 0.0
+    levels_at(tables, before, after, h, at, forcing[FORCING_TAIL].now, watch.level)
+    for k in range(rows.profiles.shape[1]):
+        above, below = before.links[k], before.links[k + 1]
+        start = 0.5 * (above.discharge + below.discharge)
+        inner = 0.5 * (middle.links[k].discharge + middle.links[k + 1].discharge)
+        end = 0.5 * (after.links[k].discharge + after.links[k + 1].discharge)
+        site, out = tables.channel.nodes[k], rows.profiles[row, k]
+        depth = watch.level[k] - site.bed_level
+        out.water_level = max(watch.level[k], site.bed_level)
+        out.discharge = quadratic(at, start, inner, end)
+        out.velocity = out.discharge / geometry(tables.channel.shapes[site.section], depth)[0] if depth > DRY_DEPTH else 0.0

@@ -5,16 +5,16 @@ from collections.abc import Callable
 
 import numpy as np
 
-from toeline.engine.advance import LEG_DONE, STEP_TOO_SMALL, Appointments, Pace, advance, write_now
-from toeline.engine.gate_link import gate_levels
+from toeline.engine.advance import LEG_DONE, PACE, STEP_TOO_SMALL, advance, write_end
+from toeline.engine.gate_link import gate_levels, law_of
 from toeline.engine.gate_motion import KINDS, GateMotion, OrderRecord
-from toeline.engine.output import Watch
+from toeline.engine.output import BANKS, GATE_WATCH, JET_POINTS, Watch
 from toeline.engine.rows import filled_block, new_rows
 from toeline.engine.settling import round_trip, surge_bounds
-from toeline.engine.state import Forcing, Tables, new_stage, new_state, new_totals
-from toeline.engine.step import begin_leg, set_forcing, start_from_levels
+from toeline.engine.state import FORCING, new_state, new_totals, new_work, zeros
+from toeline.engine.step import set_forcing, start_from_levels
 from toeline.errors import RunError
-from toeline.hydraulics.underflow_gate import UnderflowGate, opening_for_discharge
+from toeline.hydraulics.underflow_gate import opening_for_discharge
 from toeline.network.initial_state import Start
 from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, TAIL_LEVEL, Network
 from toeline.network.timetable import Timetable
@@ -22,46 +22,34 @@ from toeline.network.timetable import Timetable
 BLOCK_ROWS = 720
 """Rows of output after which a block is handed on."""
 
-JET_POINTS = 400
-"""Most points of a jet's profile."""
-
 FIRST_STEP = 10.0
 """First step [s] of a day that starts steady (choice)."""
 
 LEAST_CHANGE = 1e-9
 """Change of a discharge [m³/s] below which nothing is said to settle."""
 
-END_STATE_ARRAYS = ("level", "volume", "discharge", "convective_head", "imbalance")
+END_OF_NODES = ("level", "volume")
+END_OF_LINKS = ("discharge", "convective_head", "imbalance")
 
 
 class Run:
     """One day being stepped. `sink.write(block)` receives the output as it is made."""
 
     def __init__(self, network: Network, timetable: Timetable, sink, start: Start | dict[str, np.ndarray]):
-        self.network, self.timetable, self.sink = network, timetable, sink
-        self.tables = Tables(
-            network.channel, network.nodes, network.links, network.gates, network.offtakes, network.boundary, network.pools
-        )
+        self.network, self.timetable, self.sink, self.tables = network, timetable, sink, network.tables
         nodes, offtakes = network.node_count, network.offtake_count
         self.state, self.middle, self.after = (new_state(nodes, offtakes) for _ in range(3))
-        self.stage, self.totals = new_stage(nodes), new_totals(offtakes)
-        self.forcing = Forcing(*(np.zeros(timetable.forcing_size) for _ in range(3)))
-        self.pace = Pace(
-            np.array([timetable.tolerance]), np.array([timetable.longest_step / 1000.0]), np.array([FIRST_STEP]),
-            np.zeros(1), np.zeros(3, np.int64),
-        )  # fmt: skip
-        every = np.array([timetable.every, timetable.profiles_every], np.int64)
-        self.appointments = Appointments(np.zeros(1, np.int64), every, np.zeros(2, np.int64))
-        self.rows = self._new_rows()
-        self.watch = self._new_watch()
+        self.work, self.totals = new_work(nodes), new_totals(offtakes)
+        self.forcing = zeros(timetable.forcing_size, FORCING)
+        self.pace = self._new_pace()
+        self.rows, self.watch = self._new_rows(), self._new_watch()
         self.time = 0
         self.orders = list(timetable.orders)
         self.records: list[OrderRecord] = []
         openings = start["end_opening"] if isinstance(start, dict) else start.opening
-        self.motions = [GateMotion(g, float(a)) for g, a in zip(timetable.rules_of_gates, openings, strict=True)]
+        self.motions = [GateMotion(g, float(a)) for g, a in zip(timetable.gates, openings, strict=True)]
         self._take_over(start) if isinstance(start, dict) else self._start_at(start)
-        canal = slice(0, network.canal_node_count)
-        self.watch.start_storage[0] = self._pool_volumes(canal)
+        self.watch.start_storage[0] = np.sum(self.state.nodes.volume[: network.canal_node_count])
 
     def go(self, progress: Callable[[float], None] | None = None) -> None:
         """Step to the end of the period; raises RunError where no step can be solved."""
@@ -87,18 +75,19 @@ class Run:
 
     def end_state(self) -> dict[str, np.ndarray]:
         """Everything that the next day needs to go on as if this one had not ended."""
-        left = {"end_" + name: getattr(self.state, name).copy() for name in END_STATE_ARRAYS}
-        watch = self.watch
+        left = {"end_" + name: self.state.nodes[name].copy() for name in END_OF_NODES}
+        left |= {"end_" + name: self.state.links[name].copy() for name in END_OF_LINKS}
+        surge = self.watch.gates
         return left | {
             "end_opening": np.array([motion.opening for motion in self.motions]),
             "end_target_opening": np.array([motion.target for motion in self.motions]),
             "end_ordered_opening": np.array([motion.ordered for motion in self.motions]),
             "end_motion_remaining": self._seconds_left(np.array([m.until if m.is_moving else 0 for m in self.motions])),
-            "end_surge_upstream": watch.surge_upstream.copy(),
-            "end_surge_downstream": watch.surge_downstream.copy(),
-            "end_surge_remaining_upstream": self._seconds_left(watch.surge_until[:, 0]),
-            "end_surge_remaining_downstream": self._seconds_left(watch.surge_until[:, 1]),
-            "end_settling_remaining": self._seconds_left(watch.settled_at),
+            "end_surge_upstream": surge.surge_upstream.copy(),
+            "end_surge_downstream": surge.surge_downstream.copy(),
+            "end_surge_upstream_remaining": self._seconds_left(surge.surge_upstream_until),
+            "end_surge_downstream_remaining": self._seconds_left(surge.surge_downstream_until),
+            "end_settling_remaining": self._seconds_left(self.watch.settled_at),
             "end_next_step": self.pace.next_step.copy(),
         }
 
@@ -106,22 +95,29 @@ class Run:
         return np.maximum(until - self.time, 0) / 1000.0
 
     def _start_at(self, start: Start) -> None:
-        self.state.level[:] = start.level
-        self.state.discharge[:] = start.discharge
-        start_from_levels(self.tables, self.state, self.stage)
+        self.state.nodes.level, self.state.links.discharge = start.level, start.discharge
+        start_from_levels(self.tables, self.state, self.work)
 
     def _take_over(self, end: dict[str, np.ndarray]) -> None:
-        for name in END_STATE_ARRAYS:
-            getattr(self.state, name)[:] = end["end_" + name]
-        self.pace.next_step[:] = end["end_next_step"]
+        for name in END_OF_NODES:
+            self.state.nodes[name] = end["end_" + name]
+        for name in END_OF_LINKS:
+            self.state.links[name] = end["end_" + name]
+        self.pace.next_step = end["end_next_step"]
         for k, motion in enumerate(self.motions):
             remaining = round(float(end["end_motion_remaining"][k]) * 1000.0)
             motion.resume(float(end["end_target_opening"][k]), float(end["end_ordered_opening"][k]), remaining)
-        self.watch.surge_upstream[:] = end["end_surge_upstream"]
-        self.watch.surge_downstream[:] = end["end_surge_downstream"]
-        self.watch.surge_until[:, 0] = np.round(end["end_surge_remaining_upstream"] * 1000.0)
-        self.watch.surge_until[:, 1] = np.round(end["end_surge_remaining_downstream"] * 1000.0)
+        for side in ("upstream", "downstream"):
+            self.watch.gates[f"surge_{side}"] = end[f"end_surge_{side}"]
+            self.watch.gates[f"surge_{side}_until"] = np.round(end[f"end_surge_{side}_remaining"] * 1000.0)
         self.watch.settled_at[:] = np.round(end["end_settling_remaining"] * 1000.0)
+
+    def _new_pace(self) -> np.recarray:
+        timetable, pace = self.timetable, zeros(1, PACE)
+        pace.tolerance, pace.longest_step = timetable.tolerance, timetable.longest_step / 1000.0
+        pace.every, pace.profiles_every = timetable.every, timetable.profiles_every
+        pace.next_step = FIRST_STEP
+        return pace
 
     def _new_rows(self):
         network, timetable = self.network, self.timetable
@@ -133,28 +129,24 @@ class Run:
         )  # fmt: skip
 
     def _new_watch(self) -> Watch:
-        network, gates, pools = self.network, self.network.gate_count, len(self.network.names.pools)
+        network, names = self.network, self.network.names
+        banks = zeros(network.canal_node_count, BANKS)
+        banks.bank_level = np.nan_to_num(names.bank_level, nan=np.inf)
+        banks.lining_level = np.nan_to_num(names.lining_level, nan=np.inf)
         return Watch(
-            bank_level=np.nan_to_num(network.names.bank_level, nan=np.inf),
-            lining_level=np.nan_to_num(network.names.lining_level, nan=np.inf),
+            banks=banks,
+            gates=zeros(network.gate_count, GATE_WATCH),
+            settled_at=np.zeros(len(names.pools), np.int64),
             start_storage=np.zeros(1),
-            surge_upstream=np.zeros(gates),
-            surge_downstream=np.zeros(gates),
-            surge_until=np.zeros((gates, 2), np.int64),
-            settled_at=np.zeros(pools, np.int64),
-            level=np.zeros(network.channel.chainage.size),
-            link_discharge=np.zeros(network.node_count + 1),
-            chainages=np.zeros(JET_POINTS),
-            depths=np.zeros(JET_POINTS),
+            level=np.zeros(self.tables.channel.nodes.size),
+            discharge=np.zeros(network.node_count + 1),
+            jet=np.zeros((2, JET_POINTS)),
         )
-
-    def _pool_volumes(self, canal: slice) -> float:
-        return float(np.sum(self.state.volume[canal]))
 
     def _act(self) -> None:
         """What people do at a stop: orders, and changes that leave a pool settling."""
         before = self.forcing.now.copy()
-        self.forcing.value[:] = self.timetable.values_at(self.time)
+        self.forcing.value = self.timetable.values_at(self.time)
         self._note_changes(before)
         while self.orders and self.orders[0].at <= self.time:
             self._carry_out(self.orders.pop(0))
@@ -162,9 +154,11 @@ class Run:
     def _carry_out(self, order) -> None:
         g = self.network.names.gates.index(order.gate)
         motion = self.motions[g]
+        row = self.tables.gates[g]
         up, down = gate_levels(
-            self.network.gates, g, self.state.level, self.forcing.value[FORCING_HEAD], self.forcing.value[FORCING_TAIL]
-        )
+            row, self.state.nodes.level, self.network.node_count,
+            self.forcing.value[FORCING_HEAD], self.forcing.value[FORCING_TAIL],
+        )  # fmt: skip
         wanted, note = self._wanted_opening(order, g, up, down)
         opening = motion.opening
         record = motion.order(self.time, order.kind, order.value, wanted, note)
@@ -179,10 +173,9 @@ class Run:
             return order.value, ""
         if order.kind == "by":
             return motion.ordered + order.value, ""
-        gates, shapes = self.network.gates, self.network.channel.shapes
-        law = UnderflowGate(*(float(v) for v in gates.law[g]))
+        row, shapes = self.tables.gates[g], self.tables.channel.shapes
         opening, passed = opening_for_discharge(
-            law, shapes[gates.upstream_shape[g]], shapes[gates.downstream_shape[g]], up, down,
+            law_of(row), shapes[row.upstream_section], shapes[row.downstream_section], up, down,
             order.value, motion.gate.max_opening,
         )  # fmt: skip
         if abs(passed - order.value) > 1e-3 + 1e-6 * abs(order.value):
@@ -191,35 +184,31 @@ class Run:
 
     def _note_move(self, g: int, up: float, down: float, opening: float, motion: GateMotion) -> None:
         """Surge bounds of a move, and until when the pools above and below settle."""
-        heights = surge_bounds(self.network.channel, self.network.gates, g, up, down, opening, motion.target)
-        if abs(heights[2]) < LEAST_CHANGE:
+        up_height, down_height, change = surge_bounds(
+            self.tables.channel.shapes, self.tables.gates[g], up, down, opening, motion.target
+        )
+        if abs(change) < LEAST_CHANGE:
             return
-        arrival = max(motion.until, self.time)
-        for side, (bound, height) in enumerate(
-            ((self.watch.surge_upstream, heights[0]), (self.watch.surge_downstream, heights[1]))
-        ):
-            pool = self._pool_beside(g, side)
+        for side, height in (("upstream", up_height), ("downstream", down_height)):
+            pool, watch = self._pool_beside(g, side), self.watch.gates
             if pool is None:
                 continue
-            running = bound[g] if self.watch.surge_until[g, side] > self.time else 0.0
-            bound[g] = running + height if running * height >= 0.0 else max(running, height, key=abs)
-            settled = self._settled_after(pool, arrival)
-            self.watch.surge_until[g, side] = settled
+            running = watch[f"surge_{side}"][g] if watch[f"surge_{side}_until"][g] > self.time else 0.0
+            settled = self._settled_after(pool, max(motion.until, self.time))
+            watch[f"surge_{side}"][g] = running + height if running * height >= 0.0 else max(running, height, key=abs)
+            watch[f"surge_{side}_until"][g] = settled
             self.watch.settled_at[pool] = max(self.watch.settled_at[pool], settled)
 
-    def _pool_beside(self, g: int, side: int) -> int | None:
-        """Index of the pool above (side 0) or below (side 1) a gate; None beyond the canal's ends."""
-        pools, gates = self.network.pools, self.network.gates
-        node = gates.upstream_node[g] if side == 0 else gates.downstream_node[g]
+    def _pool_beside(self, g: int, side: str) -> int | None:
+        """Index of the pool above ("upstream") or below a gate; None beyond the canal's ends."""
+        node = self.tables.gates[f"{side}_node"][g]
         if node < 0 or node >= self.network.canal_node_count:
             return None
-        return int(np.searchsorted(pools.last_node, node))
+        return int(np.searchsorted(self.tables.pools.last_node, node))
 
     def _settled_after(self, pool: int, time: int) -> int:
-        pools = self.network.pools
-        seconds = round_trip(
-            self.network.channel, pools.first_node[pool], pools.last_node[pool], self.state.level, self.state.discharge
-        )
+        ends = self.tables.pools[pool]
+        seconds = round_trip(self.tables.channel, ends.first_node, ends.last_node, self.state)
         return time + round(1000.0 * seconds) if math.isfinite(seconds) else self.timetable.length + 1
 
     def _note_changes(self, before: np.ndarray) -> None:
@@ -230,13 +219,13 @@ class Run:
         network = self.network
         first = FORCING_GATES + network.gate_count
         pools = set()
-        if changed[FORCING_HEAD] and network.links.gate[0] < 0:
+        if changed[FORCING_HEAD] and self.tables.links.gate[0] < 0:
             pools.add(0)
-        if changed[FORCING_TAIL] and network.links.kind[-1] == TAIL_LEVEL:
+        if changed[FORCING_TAIL] and self.tables.links.kind[-1] == TAIL_LEVEL:
             pools.add(len(network.names.pools) - 1)
-        for k, node in enumerate(network.offtakes.node):
+        for k, node in enumerate(self.tables.offtakes.node):
             if changed[first + k] or changed[first + network.offtake_count + k]:
-                pools.add(int(np.searchsorted(network.pools.last_node, node)))
+                pools.add(int(np.searchsorted(self.tables.pools.last_node, node)))
         for pool in pools:
             self.watch.settled_at[pool] = max(self.watch.settled_at[pool], self._settled_after(pool, self.time))
 
@@ -244,19 +233,17 @@ class Run:
         """Advance to the next stop."""
         gates = slice(FORCING_GATES, FORCING_GATES + self.network.gate_count)
         self.forcing.value[gates] = [motion.opening for motion in self.motions]
-        self.forcing.rate[:] = self.timetable.rates_between(self.time, until)
+        self.forcing.rate = self.timetable.rates_between(self.time, until)
         self.forcing.rate[gates] = [motion.rate() for motion in self.motions]
-        self.appointments.leg_start[0], self.pace.done[0] = self.time, 0.0
+        self.pace.leg_start, self.pace.done = self.time, 0.0
         seconds, outcome = (until - self.time) / 1000.0, None
         while outcome != LEG_DONE:
             outcome = advance(
-                self.tables, self.state, self.middle, self.after, self.stage, self.totals, self.forcing, self.watch,
-                self.rows, self.pace, self.appointments, seconds, self.timetable.local_inertia,
+                self.tables, self.state, self.middle, self.after, self.work, self.totals, self.forcing, self.watch,
+                self.rows, self.pace, seconds, self.timetable.local_inertia,
             )  # fmt: skip
             if outcome == STEP_TOO_SMALL:
-                self.time += round(self.pace.done[0] * 1000.0)
-                self.flush()
-                raise RunError(f"no step could be solved {self.time / 1000.0:.1f} s after the start; the output ends there")
+                self._give_up()
             if outcome != LEG_DONE or self.rows.filled[0] >= BLOCK_ROWS:
                 self.flush()
         self.time = until
@@ -264,14 +251,17 @@ class Run:
             motion.arrive(until)
         set_forcing(self.forcing, seconds)
 
+    def _give_up(self) -> None:
+        self.time += round(float(self.pace.done[0]) * 1000.0)
+        self.flush()
+        raise RunError(f"no step could be solved {self.time / 1000.0:.1f} s after the start; the output ends there")
+
     def _last_row(self) -> None:
-        """The state at the very end, which no leg begins."""
-        self.forcing.value[:] = self.forcing.now
-        self.forcing.rate[:] = 0.0
-        begin_leg(self.tables, self.state, self.stage, self.forcing)
-        due = self.appointments.due
-        if due[0] <= self.time:
-            write_now(self.tables, self.state, self.totals, self.watch, self.rows, self.forcing, self.time, due[1] <= self.time)
+        self.forcing.value = self.forcing.now
+        self.forcing.rate = 0.0
+        write_end(
+            self.tables, self.state, self.work, self.totals, self.watch, self.rows, self.pace, self.forcing, self.time
+        )
 
 
 def _order_arrays(records: list[OrderRecord]) -> dict[str, np.ndarray]:

@@ -1,93 +1,97 @@
-"""The arrays that the time loop changes in place."""
+"""The arrays that the time loop changes in place: records by node and by link."""
 
 from typing import NamedTuple
 
 import numpy as np
 
-from toeline.hydraulics.gradually_varied_flow import Channel
-from toeline.network.tables import Boundary, Gates, Links, Nodes, Offtakes, Pools
+STORED = np.dtype(
+    [
+        ("level", float),  # m above datum
+        ("volume", float),  # m³, exact sum of what came and went
+        ("net_inflow", float),  # m³/s, dV/dt
+        ("width", float),  # m, dA/dz of the storage
+    ]
+)
+"""A node of the state."""
+
+CARRIED = np.dtype(
+    [
+        ("discharge", float),  # m³/s
+        ("convective_head", float),  # m, of a reach link
+        ("convective_rate", float),  # m/s, its rate of change
+        ("convective_share", float),  # 1 in calm flow, 0 from critical flow on
+        ("imbalance", float),  # m of head that accelerates the link's water (local inertia)
+        ("mean_area", float),  # m² of a reach link
+    ]
+)
+"""A link of the state."""
+
+NODE_WORK = np.dtype(
+    [
+        ("area", float),  # m² of storage
+        ("width", float),  # m, its derivative to the level
+        ("conveyance", float),  # m³/s
+        ("conveyance_slope", float),  # m²/s
+        ("inverse_area", float),  # α/A² [1/m⁴]
+        ("inverse_area_slope", float),  # [1/m⁵]
+        ("volume_base", float),  # m³ that the stage starts from
+        ("source", float),  # m³/s, deliveries, negative
+        ("source_slope", float),  # m²/s
+    ]
+)
+
+LINK_WORK = np.dtype(
+    [
+        ("convective_base", float),  # m that the stage starts from
+        ("momentum_base", float),  # m of head an area, left by earlier stages
+    ]
+)
+
+MATRIX_ROW = np.dtype([("pivot", float), ("lower", float), ("upper", float), ("x", float)])
+"""Inverse pivot, coefficients and unknown of a row: link, node, link …"""
+
+FORCING = np.dtype([("value", float), ("rate", float), ("now", float)])
+"""At the start of a leg, a second, and at the time of a stage; see network.tables for the order."""
 
 
 class State(NamedTuple):
-    """Where the canal stands, by node (n) and link (n + 1)."""
+    """Where the canal stands."""
 
-    level: np.ndarray  # (n) m
-    volume: np.ndarray  # (n) m³, exact sum of what came and went
-    discharge: np.ndarray  # (n + 1) m³/s
-    convective_head: np.ndarray  # (n + 1) m, C of a reach link
-    net_inflow: np.ndarray  # (n) m³/s, dV/dt
-    convective_rate: np.ndarray  # (n + 1) m/s, dC/dt
-    convective_share: np.ndarray  # (n + 1), 1 in calm flow, 0 from critical flow on
-    imbalance: np.ndarray  # (n + 1) m of head left to accelerate the link's water (local inertia)
-    mean_area: np.ndarray  # (n + 1) m² of a reach link
-    width: np.ndarray  # (n) m, dA/dz of the storage
+    nodes: np.recarray  # (n) of STORED
+    links: np.recarray  # (n + 1) of CARRIED
     delivery: np.ndarray  # (d) m³/s
 
 
-class Forcing(NamedTuple):
-    """What people and weather do to the canal between two stops: linear in time; see network.tables for the order."""
+class Work(NamedTuple):
+    """Scratch of the implicit stages."""
 
-    value: np.ndarray  # (f) at the start of the leg
-    rate: np.ndarray  # (f) a second
-    now: np.ndarray  # (f) at the time of a stage
-
-
-class Tables(NamedTuple):
-    """The tables of a Network as one argument of compiled code."""
-
-    channel: Channel
-    nodes: Nodes
-    links: Links
-    gates: Gates
-    offtakes: Offtakes
-    boundary: Boundary
-    pools: Pools
+    nodes: np.recarray  # (n) of NODE_WORK
+    links: np.recarray  # (n + 1) of LINK_WORK
+    rows: np.recarray  # (2n + 1) of MATRIX_ROW
 
 
 class Totals(NamedTuple):
     """Volumes since the start of the day [m³], advanced with the same weights as the stored volumes."""
 
-    inflow: np.ndarray  # (1)
-    outflow: np.ndarray  # (1)
+    canal: np.ndarray  # (2) inflow, outflow
     delivery: np.ndarray  # (d)
 
 
-class Stage(NamedTuple):
-    """Scratch of the implicit stages."""
-
-    area: np.ndarray  # (n) m², storage area of the section
-    width: np.ndarray  # (n) m, its derivative to the level
-    conveyance: np.ndarray  # (n) m³/s
-    conveyance_slope: np.ndarray  # (n) m²/s
-    inverse_area: np.ndarray  # (n) α/A² [1/m⁴]
-    inverse_area_slope: np.ndarray  # (n) [1/m⁵]
-    volume_base: np.ndarray  # (n) m³, what the stage starts from
-    convective_base: np.ndarray  # (n + 1) m
-    momentum_base: np.ndarray  # (n + 1) m of head an area, earlier stages of the local inertia
-    source: np.ndarray  # (n) m³/s, deliveries, negative
-    source_slope: np.ndarray  # (n) m²/s
-    correction: np.ndarray  # (2n + 1) link, node, link … as in the matrix
-    pivot: np.ndarray  # (2n + 1) inverse pivots
-    lower: np.ndarray  # (2n + 1)
-    upper: np.ndarray  # (2n + 1)
-    error: np.ndarray  # (n) m
+def zeros(count: int, kind: np.dtype) -> np.recarray:
+    """A record array of zeros."""
+    return np.zeros(count, kind).view(np.recarray)
 
 
 def new_state(nodes: int, offtakes: int) -> State:
     """A state of zeros."""
-    sizes = dict.fromkeys(State._fields, nodes + 1)
-    sizes |= dict.fromkeys(("level", "volume", "net_inflow", "width"), nodes) | {"delivery": offtakes}
-    return State(**{name: np.zeros(size) for name, size in sizes.items()})
+    return State(zeros(nodes, STORED), zeros(nodes + 1, CARRIED), np.zeros(offtakes))
+
+
+def new_work(nodes: int) -> Work:
+    """Scratch for a canal of so many nodes."""
+    return Work(zeros(nodes, NODE_WORK), zeros(nodes + 1, LINK_WORK), zeros(2 * nodes + 1, MATRIX_ROW))
 
 
 def new_totals(offtakes: int) -> Totals:
     """Totals of zero."""
-    return Totals(np.zeros(1), np.zeros(1), np.zeros(offtakes))
-
-
-def new_stage(nodes: int) -> Stage:
-    """Scratch for a canal of so many nodes."""
-    sizes = dict.fromkeys(Stage._fields, nodes)
-    sizes |= dict.fromkeys(("convective_base", "momentum_base"), nodes + 1)
-    sizes |= dict.fromkeys(("correction", "pivot", "lower", "upper"), 2 * nodes + 1)
-    return Stage(**{name: np.zeros(size) for name, size in sizes.items()})
+    return Totals(np.zeros(2), np.zeros(offtakes))

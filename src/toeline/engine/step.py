@@ -6,21 +6,21 @@ With γ = 2 − √2, d = γ/2 and w = √2/4: stage at γh, V_γ = V_n + d·h·
 
 import math
 
-from toeline.constants import GRAVITY
-from toeline.engine.gate_link import gate_discharge_at, gate_levels, gate_slopes, tail_discharge
+from toeline.engine.gate_link import boundary_balance
 from toeline.engine.reach_link import (
     CONVECTIVE_TIME,
     convective_share,
     convective_target,
+    inertia_head,
     inertia_share,
     node_geometry,
     reach_balance,
 )
 from toeline.engine.tridiagonal import back_substitute, solve_with_factors
 from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH
-from toeline.hydraulics.kernel import kernel
+from toeline.hydraulics.kernel import inner_kernel, kernel
 from toeline.hydraulics.offtake import offtake_discharge
-from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, GATE, INFLOW, REACH, TAIL_LEVEL
+from toeline.network.tables import FORCING_GATES, REACH, TAIL_LEVEL
 
 GAMMA = 2.0 - math.sqrt(2.0)
 DIAGONAL = GAMMA / 2.0
@@ -32,277 +32,263 @@ ITERATIONS = 12
 LOWEST_DEPTH = -0.5
 """Depth [m] below which the image of an empty node is not followed."""
 DEMAND_NUDGE = 1e-5
+PREDICTED = 0.02
+"""Largest change of a level [m] in the first guess of a stage."""
 
 
 @kernel
 def set_forcing(forcing, seconds):
-    """Put the forcing at a time since the start of the leg into `forcing.now`."""
-    for k in range(forcing.now.size):
-        forcing.now[k] = forcing.value[k] + forcing.rate[k] * seconds
+    """Put the forcing at a time since the start of the leg into `now`."""
+    for k in range(forcing.size):
+        forcing[k].now = forcing[k].value + forcing[k].rate * seconds
 
 
-@kernel
-def set_sources(tables, level, now, stage, delivery):
+@inner_kernel
+def set_sources(tables, nodes, forcing, work, delivery):
     """Deliveries at the present levels, and what they take from each node with its derivative."""
-    offtakes = tables.offtakes
-    for node in range(level.size):
-        stage.source[node] = 0.0
-        stage.source_slope[node] = 0.0
-    count = offtakes.node.size
-    first_demand = FORCING_GATES + tables.gates.apron_end.size
+    for node in range(nodes.size):
+        work.nodes[node].source = 0.0
+        work.nodes[node].source_slope = 0.0
+    count = tables.offtakes.size
+    first_demand = FORCING_GATES + tables.gates.size
     for k in range(count):
-        node = offtakes.node[k]
-        demand, opening = now[first_demand + k], now[first_demand + count + k]
-        q = offtake_discharge(
-            offtakes.kind[k], demand, offtakes.sill_level[k], offtakes.width[k], opening, offtakes.coefficient[k], level[node]
-        )
+        take = tables.offtakes[k]
+        demand, opening = forcing[first_demand + k].now, forcing[first_demand + count + k].now
+        level = nodes[take.node].level
+        q = offtake_discharge(take.kind, demand, take.sill_level, take.width, opening, take.coefficient, level)
         nudged = offtake_discharge(
-            offtakes.kind[k], demand, offtakes.sill_level[k], offtakes.width[k], opening, offtakes.coefficient[k],
-            level[node] + DEMAND_NUDGE,
-        )  # fmt: skip
+            take.kind, demand, take.sill_level, take.width, opening, take.coefficient, level + DEMAND_NUDGE
+        )
         delivery[k] = q
-        stage.source[node] -= q
-        stage.source_slope[node] -= (nudged - q) / DEMAND_NUDGE
+        work.nodes[take.node].source -= q
+        work.nodes[take.node].source_slope -= (nudged - q) / DEMAND_NUDGE
 
 
-@kernel
-def boundary_balance(tables, stage, link, level, q, now):
-    """Residual of a link that is not a reach, and its derivatives to the level above, the discharge and the level below."""
-    kind = tables.links.kind[link]
-    if kind == INFLOW:
-        return q - now[FORCING_HEAD], 0.0, 1.0, 0.0
-    if kind == GATE:
-        g = tables.links.gate[link]
-        up, down = gate_levels(tables.gates, g, level, now[FORCING_HEAD], now[FORCING_TAIL])
-        opening = now[FORCING_GATES + g]
-        passed = gate_discharge_at(tables.channel, tables.gates, g, up, down, opening)
-        by_up, by_down = gate_slopes(tables.channel, tables.gates, g, up, down, opening, passed)
-        return q - passed, -by_up, 1.0, -by_down
-    last = level.size - 1
-    if kind == TAIL_LEVEL:
-        loss = tables.links.length[link] / max(stage.conveyance[last], 1e-6) ** 2
-        return level[last] - now[FORCING_TAIL] - q * abs(q) * loss, 1.0, -2.0 * abs(q) * loss, 0.0
-    passed = tail_discharge(tables.channel, tables.boundary, kind, last, level[last])
-    nudged = tail_discharge(tables.channel, tables.boundary, kind, last, level[last] + 1e-6)
-    return q - passed, -(nudged - passed) / 1e-6, 1.0, 0.0
+@inner_kernel
+def geometry_pass(tables, nodes, work):
+    """Areas and conveyances of all nodes at their present levels."""
+    for node in range(nodes.size):
+        site = tables.channel.nodes[node]
+        section = tables.channel.shapes[site.section]
+        node_geometry(site, tables.cells[node], section, nodes[node].level, work.nodes[node])
 
 
-@kernel
-def _inertia(tables, stage, link, q, share, earlier_velocity, seconds):
-    """Head that accelerates a link's water less what earlier stages left, and its derivatives to discharge and mean area."""
-    mean = 0.5 * (stage.area[link - 1] + stage.area[link])
-    mass = share * tables.links.length[link] / (GRAVITY * seconds)
-    base = share * stage.momentum_base[link]
-    head = mass * (q / mean - earlier_velocity * mean) - base * mean
-    return head, mass / mean, -mass * (q / (mean * mean) + earlier_velocity) - base
+@inner_kernel
+def reach_row(tables, before, after, work, index, seconds, head_factor, inertial):
+    """Residual and derivatives of a reach link in a stage."""
+    link, site_up, site_down = tables.links[index], tables.channel.nodes[index - 1], tables.channel.nodes[index]
+    up, down = work.nodes[index - 1], work.nodes[index]
+    level_up, level_down = after.nodes[index - 1].level, after.nodes[index].level
+    q, earlier = after.links[index].discharge, before.links[index]
+    left, by_up, by_q, by_down = reach_balance(
+        link, site_up.transition_loss, up, down, level_up, level_down, level_up - site_up.bed_level,
+        level_down - site_down.bed_level, q, work.links[index].convective_base, head_factor * earlier.convective_share,
+    )  # fmt: skip
+    if inertial:
+        head, head_q, head_area = stage_inertia(tables, before, work, index, q, seconds)
+        left, by_q = left - head, by_q - head_q
+        by_up, by_down = by_up - 0.5 * head_area * up.width, by_down - 0.5 * head_area * down.width
+    return left, by_up, by_q, by_down
 
 
-@kernel
-def assemble(tables, before, stage, level, discharge, seconds, head_factor, inertial, now):
+@inner_kernel
+def stage_inertia(tables, before, work, index, q, seconds):
+    """`inertia_head` of a reach link at the present areas."""
+    site_up, site_down = tables.channel.nodes[index - 1], tables.channel.nodes[index]
+    share = inertia_share(
+        before.nodes[index - 1].level - site_up.bed_level, before.nodes[index].level - site_down.bed_level
+    )
+    earlier = before.links[index]
+    flux = earlier.discharge / (earlier.mean_area * earlier.mean_area)
+    mean = 0.5 * (work.nodes[index - 1].area + work.nodes[index].area)
+    return inertia_head(tables.links[index].length, share, mean, q, flux, work.links[index].momentum_base, seconds)
+
+
+@inner_kernel
+def assemble(tables, before, after, work, seconds, head_factor, inertial, forcing):
     """Fill the Newton matrix and right side at the present levels and discharges, and sweep it forward as it is made."""
-    x, pivot, lower, upper = stage.correction, stage.pivot, stage.lower, stage.upper
-    count = level.size
-    for node in range(count):
-        node_geometry(tables.channel, tables.nodes, node, level[node], stage)
-    for link in range(count + 1):
-        q = discharge[link]
-        if tables.links.kind[link] == REACH:
-            left, by_up, by_q, by_down = reach_balance(
-                tables.channel, tables.links, stage, link, level[link - 1], level[link], q,
-                stage.convective_base[link], head_factor * before.convective_share[link],
-            )  # fmt: skip
-            if inertial:
-                share = inertia_share(tables.channel, link, before.level[link - 1], before.level[link])
-                earlier = before.discharge[link] / (before.mean_area[link] * before.mean_area[link])
-                head, head_q, head_area = _inertia(tables, stage, link, q, share, earlier, seconds)
-                left, by_q = left - head, by_q - head_q
-                by_up -= 0.5 * head_area * stage.width[link - 1]
-                by_down -= 0.5 * head_area * stage.width[link]
+    geometry_pass(tables, after.nodes, work)
+    count = after.nodes.size
+    last_conveyance = work.nodes[count - 1].conveyance
+    pivot_before = upper_before = x_before = 0.0
+    for index in range(count + 1):
+        q = after.links[index].discharge
+        if tables.links[index].kind == REACH:
+            left, by_up, by_q, by_down = reach_row(tables, before, after, work, index, seconds, head_factor, inertial)
         else:
-            left, by_up, by_q, by_down = boundary_balance(tables, stage, link, level, q, now)
-        row = 2 * link
-        if link == 0:
-            pivot[0], x[0] = 1.0 / by_q, -left
-        else:
-            factor = by_up * pivot[row - 1]
-            lower[row] = by_up
-            pivot[row] = 1.0 / (by_q - factor * upper[row - 1])
-            x[row] = -left - factor * x[row - 1]
-        upper[row] = by_down
-        if link < count:
-            factor = -seconds * pivot[row]
-            excess = tables.nodes.cell_length[link] * stage.area[link] - stage.volume_base[link]
-            excess -= seconds * (q - discharge[link + 1] + stage.source[link])
-            storage = tables.nodes.cell_length[link] * stage.width[link] - seconds * stage.source_slope[link]
-            lower[row + 1] = -seconds
-            pivot[row + 1] = 1.0 / (storage - factor * upper[row])
-            upper[row + 1] = seconds
-            x[row + 1] = -excess - factor * x[row]
+            left, by_up, by_q, by_down = boundary_balance(tables, index, after.nodes, q, forcing, last_conveyance)
+        row, factor = work.rows[2 * index], by_up * pivot_before
+        row.lower, row.upper = by_up, by_down
+        row.pivot = 1.0 / (by_q - factor * upper_before)
+        row.x = -left - factor * x_before
+        if index == count:
+            break
+        node, below, factor = work.nodes[index], work.rows[2 * index + 1], -seconds * row.pivot
+        cell = tables.cells[index].length
+        excess = cell * node.area - node.volume_base - seconds * (q - after.links[index + 1].discharge + node.source)
+        below.lower, below.upper = -seconds, seconds
+        below.pivot = 1.0 / (cell * node.width - seconds * node.source_slope - factor * by_down)
+        below.x = -excess - factor * row.x
+        pivot_before, upper_before, x_before = below.pivot, seconds, below.x
 
 
-@kernel
-def _apply(tables, stage, level, discharge):
+@inner_kernel
+def apply_correction(tables, after, work):
     """Add the correction, each level within half its depth or 5 cm; returns the largest change of a level [m] that counts."""
-    x, largest = stage.correction, 0.0
-    discharge[0] += x[0]
-    for node in range(level.size):
-        depth = level[node] - tables.channel.bed_level[node]
+    largest = 0.0
+    after.links[0].discharge += work.rows[0].x
+    for k in range(after.nodes.size):
+        node, row = after.nodes[k], work.rows[2 * k + 1]
+        depth = node.level - tables.channel.nodes[k].bed_level
         most = max(0.5 * depth, 0.05)
-        change = min(max(x[2 * node + 1], -most), most)
-        if depth + change < LOWEST_DEPTH:
-            change = LOWEST_DEPTH - depth
-        x[2 * node + 1] = change
-        level[node] += change
-        discharge[node + 1] += x[2 * node + 2]
-        dry_width = tables.nodes.dry_width[tables.channel.shape[node]]
-        felt = abs(change) if depth >= DRY_DEPTH else abs(change) * min(stage.width[node] / dry_width, 1.0)
+        change = max(min(max(row.x, -most), most), LOWEST_DEPTH - depth)
+        row.x = change
+        node.level += change
+        after.links[k + 1].discharge += work.rows[2 * k + 2].x
+        felt = abs(change)
+        if depth < DRY_DEPTH:
+            felt *= min(work.nodes[k].width / tables.cells[k].dry_width, 1.0)
         largest = max(largest, felt)
     return largest
 
 
-@kernel
-def solve_stage(tables, before, after, stage, seconds, head_factor, inertial, now):
+@inner_kernel
+def solve_stage(tables, before, after, work, seconds, head_factor, inertial, forcing):
     """Newton's method for the levels and discharges in `after`; returns the number of solves, 0 where it failed."""
-    level, discharge = after.level, after.discharge
     last_change = math.inf
     for k in range(ITERATIONS):
-        set_sources(tables, level, now, stage, after.delivery)
-        assemble(tables, before, stage, level, discharge, seconds, head_factor, inertial, now)
-        back_substitute(stage.pivot, stage.upper, stage.correction)
-        change = _apply(tables, stage, level, discharge)
+        set_sources(tables, after.nodes, forcing, work, after.delivery)
+        assemble(tables, before, after, work, seconds, head_factor, inertial, forcing)
+        back_substitute(work.rows)
+        change = apply_correction(tables, after, work)
         if not math.isfinite(change) or (k > 5 and change > 0.9 * last_change and change > 0.05):
             return 0
         if change < LEVEL_CONVERGED:
-            _finish_stage(tables, before, after, stage, seconds, head_factor, inertial, now)
+            finish_stage(tables, before, after, work, seconds, head_factor, inertial, forcing)
             return k + 1
         last_change = change
     return 0
 
 
-@kernel
-def _finish_stage(tables, before, after, stage, seconds, head_factor, inertial, now):
+@inner_kernel
+def finish_stage(tables, before, after, work, seconds, head_factor, inertial, forcing):
     """Rates and volumes of a solved stage; areas follow the last correction to first order."""
-    set_sources(tables, after.level, now, stage, after.delivery)
-    count = after.level.size
-    x = stage.correction
-    for node in range(count):
-        change = x[2 * node + 1]
-        after.width[node] = stage.width[node]
-        stage.area[node] += stage.width[node] * change
-        stage.inverse_area[node] += stage.inverse_area_slope[node] * change
-        after.net_inflow[node] = after.discharge[node] - after.discharge[node + 1] + stage.source[node]
-        after.volume[node] = stage.volume_base[node] + seconds * after.net_inflow[node]
-    for link in range(1, count):
-        if tables.links.kind[link] != REACH:
+    set_sources(tables, after.nodes, forcing, work, after.delivery)
+    for k in range(after.nodes.size):
+        node, scratch, change = after.nodes[k], work.nodes[k], work.rows[2 * k + 1].x
+        node.width = scratch.width
+        scratch.area += scratch.width * change
+        scratch.inverse_area += scratch.inverse_area_slope * change
+        node.net_inflow = after.links[k].discharge - after.links[k + 1].discharge + scratch.source
+        node.volume = scratch.volume_base + seconds * node.net_inflow
+    for index in range(1, after.nodes.size):
+        if tables.links[index].kind != REACH:
             continue
-        q = after.discharge[link]
+        link, up, down = after.links[index], work.nodes[index - 1], work.nodes[index]
         target = convective_target(
-            before.convective_share[link], q, stage.inverse_area[link - 1], stage.inverse_area[link]
+            before.links[index].convective_share, link.discharge, up.inverse_area, down.inverse_area
         )
-        after.convective_head[link] = stage.convective_base[link] + head_factor * target
-        after.convective_rate[link] = (target - after.convective_head[link]) / CONVECTIVE_TIME
-        mean = 0.5 * (stage.area[link - 1] + stage.area[link])
-        after.mean_area[link] = mean
+        link.convective_head = work.links[index].convective_base + head_factor * target
+        link.convective_rate = (target - link.convective_head) / CONVECTIVE_TIME
+        link.mean_area = 0.5 * (up.area + down.area)
         if inertial:
-            share = inertia_share(tables.channel, link, before.level[link - 1], before.level[link])
-            earlier = before.discharge[link] / (before.mean_area[link] * before.mean_area[link])
-            after.imbalance[link] = _inertia(tables, stage, link, q, share, earlier, seconds)[0]
+            link.imbalance = stage_inertia(tables, before, work, index, link.discharge, seconds)[0]
 
 
-@kernel
-def _predict(tables, before, after, seconds):
+@inner_kernel
+def predict(tables, before, after, seconds):
     """First guess of the stage at γh: wet nodes follow their rate."""
-    for node in range(before.level.size):
-        change = 0.0
-        if before.level[node] - tables.channel.bed_level[node] > 2.0 * DRY_DEPTH:
-            change = seconds * before.net_inflow[node] / (tables.nodes.cell_length[node] * before.width[node])
-        after.level[node] = before.level[node] + min(max(change, -0.02), 0.02)
-    copy(after.discharge, before.discharge)
+    for k in range(before.nodes.size):
+        node, change = before.nodes[k], 0.0
+        if node.level - tables.channel.nodes[k].bed_level > 2.0 * DRY_DEPTH:
+            change = seconds * node.net_inflow / (tables.cells[k].length * node.width)
+        after.nodes[k].level = node.level + min(max(change, -PREDICTED), PREDICTED)
+        after.links[k].discharge = before.links[k].discharge
+    last = before.nodes.size
+    after.links[last].discharge = before.links[last].discharge
 
 
-@kernel
-def copy(to, source):
-    """Copy an array without a temporary."""
-    for k in range(to.size):
-        to[k] = source[k]
+@inner_kernel
+def extrapolate(start, middle, end):
+    """First guess of the end stage, on the line through start and middle."""
+    ratio = (1.0 - GAMMA) / GAMMA
+    for k in range(end.nodes.size):
+        end.nodes[k].level = middle.nodes[k].level + ratio * (middle.nodes[k].level - start.nodes[k].level)
+    for k in range(end.links.size):
+        here, there = middle.links[k].discharge, start.links[k].discharge
+        end.links[k].discharge = here + ratio * (here - there)
 
 
-@kernel
-def try_step(tables, before, middle, after, stage, forcing, start, h, inertial):
+@inner_kernel
+def base_of_middle(before, work, seconds, scale):
+    """What the stage at γh starts from."""
+    for k in range(before.nodes.size):
+        work.nodes[k].volume_base = before.nodes[k].volume + seconds * before.nodes[k].net_inflow
+    for k in range(1, before.nodes.size):
+        link = before.links[k]
+        work.links[k].convective_base = scale * (link.convective_head + seconds * link.convective_rate)
+        work.links[k].momentum_base = link.imbalance / link.mean_area
+
+
+@inner_kernel
+def base_of_end(before, middle, work, weight, scale):
+    """What the stage at the end of the step starts from; `weight` = w·h."""
+    for k in range(before.nodes.size):
+        work.nodes[k].volume_base = before.nodes[k].volume + weight * (before.nodes[k].net_inflow + middle.nodes[k].net_inflow)
+    for k in range(1, before.nodes.size):
+        link, inner = before.links[k], middle.links[k]
+        rate = link.convective_rate + inner.convective_rate
+        work.links[k].convective_base = scale * (link.convective_head + weight * rate)
+        left = link.imbalance / link.mean_area + inner.imbalance / inner.mean_area
+        work.links[k].momentum_base = WEIGHT / DIAGONAL * left
+
+
+@inner_kernel
+def try_step(tables, before, middle, after, work, forcing, start, h, inertial):
     """One step of h seconds from `before` at `start` seconds of the leg into `after`.
 
     Returns the number of linear solves (0 where a stage could not be solved) and the largest estimated error of a level [m].
     """
     seconds = DIAGONAL * h
-    head_factor = seconds / CONVECTIVE_TIME / (1.0 + seconds / CONVECTIVE_TIME)
     scale = 1.0 / (1.0 + seconds / CONVECTIVE_TIME)
-    _base_of_middle(before, stage, seconds, scale, inertial)
+    head_factor = 1.0 - scale
+    base_of_middle(before, work, seconds, scale)
     set_forcing(forcing, start + GAMMA * h)
-    _predict(tables, before, middle, GAMMA * h)
-    first = solve_stage(tables, before, middle, stage, seconds, head_factor, inertial, forcing.now)
+    predict(tables, before, middle, GAMMA * h)
+    first = solve_stage(tables, before, middle, work, seconds, head_factor, inertial, forcing)
     if first == 0:
         return 0, math.inf
-    _base_of_end(before, middle, stage, WEIGHT * h, scale, inertial)
+    base_of_end(before, middle, work, WEIGHT * h, scale)
     set_forcing(forcing, start + h)
-    _extrapolate(before.level, middle.level, after.level)
-    _extrapolate(before.discharge, middle.discharge, after.discharge)
-    second = solve_stage(tables, before, after, stage, seconds, head_factor, inertial, forcing.now)
+    extrapolate(before, middle, after)
+    second = solve_stage(tables, before, after, work, seconds, head_factor, inertial, forcing)
     if second == 0:
         return 0, math.inf
-    return first + second, _error(tables, before, middle, after, stage, h)
+    return first + second, step_error(tables, before, middle, after, work, h)
 
 
-@kernel
-def _base_of_middle(before, stage, seconds, scale, inertial):
-    """What the stage at γh starts from."""
-    for node in range(before.volume.size):
-        stage.volume_base[node] = before.volume[node] + seconds * before.net_inflow[node]
-    for link in range(before.discharge.size):
-        stage.convective_base[link] = scale * (before.convective_head[link] + seconds * before.convective_rate[link])
-        if inertial:
-            stage.momentum_base[link] = before.imbalance[link] / before.mean_area[link]
-
-
-@kernel
-def _base_of_end(before, middle, stage, weight, scale, inertial):
-    """What the stage at the end of the step starts from; `weight` = w·h."""
-    for node in range(before.volume.size):
-        stage.volume_base[node] = before.volume[node] + weight * (before.net_inflow[node] + middle.net_inflow[node])
-    for link in range(before.discharge.size):
-        rate = before.convective_rate[link] + middle.convective_rate[link]
-        stage.convective_base[link] = scale * (before.convective_head[link] + weight * rate)
-        if inertial:
-            left = before.imbalance[link] / before.mean_area[link] + middle.imbalance[link] / middle.mean_area[link]
-            stage.momentum_base[link] = WEIGHT / DIAGONAL * left
-
-
-@kernel
-def _extrapolate(start, middle, end):
-    """First guess of the end stage, on the line through start and middle."""
-    for k in range(end.size):
-        end[k] = middle[k] + (middle[k] - start[k]) * ((1.0 - GAMMA) / GAMMA)
-
-
-@kernel
-def _error(tables, before, middle, after, stage, h):
+@inner_kernel
+def step_error(tables, before, middle, after, work, h):
     """Largest error of a level [m] by the embedded third-order formula, filtered through the stage's factors."""
-    x = stage.correction
-    x[x.size - 1] = 0.0
-    for node in range(after.level.size):
-        x[2 * node] = 0.0
-        x[2 * node + 1] = (h / 3.0) * (
-            (4.0 * WEIGHT - 1.0) * before.net_inflow[node] - middle.net_inflow[node] + 2.0 * DIAGONAL * after.net_inflow[node]
+    rows = work.rows
+    rows[rows.size - 1].x = 0.0
+    for k in range(after.nodes.size):
+        rows[2 * k].x = 0.0
+        rows[2 * k + 1].x = (h / 3.0) * (
+            (4.0 * WEIGHT - 1.0) * before.nodes[k].net_inflow
+            - middle.nodes[k].net_inflow
+            + 2.0 * DIAGONAL * after.nodes[k].net_inflow
         )
-    solve_with_factors(stage.pivot, stage.lower, stage.upper, x)
+    solve_with_factors(rows)
     largest = 0.0
-    for node in range(after.level.size):
-        dry_width = tables.nodes.dry_width[tables.channel.shape[node]]
-        largest = max(largest, abs(x[2 * node + 1]) * min(after.width[node] / dry_width, 1.0))
+    for k in range(after.nodes.size):
+        felt = min(after.nodes[k].width / tables.cells[k].dry_width, 1.0)
+        largest = max(largest, abs(rows[2 * k + 1].x) * felt)
     return largest
 
 
-@kernel
-def begin_leg(tables, state, stage, forcing):
+@inner_kernel
+def begin_leg(tables, state, work, forcing):
     """Evaluate everything that follows from levels, volumes, convective heads and reach discharges afresh.
 
     Gates, boundaries and deliveries take the forcing at the start of the leg. Returns the largest change of a discharge
@@ -310,82 +296,76 @@ def begin_leg(tables, state, stage, forcing):
     that a run that starts from an end state goes on as the unbroken one.
     """
     set_forcing(forcing, 0.0)
-    for k in range(state.delivery.size):
-        stage.correction[k] = state.delivery[k]
-    set_sources(tables, state.level, forcing.now, stage, state.delivery)
     largest = 0.0
     for k in range(state.delivery.size):
-        largest = max(largest, abs(state.delivery[k] - stage.correction[k]))
-    for node in range(state.level.size):
-        node_geometry(tables.channel, tables.nodes, node, state.level[node], stage)
-        state.width[node] = stage.width[node]
-    for link in range(state.discharge.size):
-        kind = tables.links.kind[link]
+        work.rows[k].x = state.delivery[k]
+    set_sources(tables, state.nodes, forcing, work, state.delivery)
+    for k in range(state.delivery.size):
+        largest = max(largest, abs(state.delivery[k] - work.rows[k].x))
+    geometry_pass(tables, state.nodes, work)
+    last_conveyance = work.nodes[state.nodes.size - 1].conveyance
+    for index in range(state.links.size):
+        kind, link = tables.links[index].kind, state.links[index]
         if kind == REACH:
-            _restart_reach(tables, state, stage, link)
+            restart_reach(link, work.nodes[index - 1], work.nodes[index])
         elif kind != TAIL_LEVEL:
-            left = boundary_balance(tables, stage, link, state.level, state.discharge[link], forcing.now)[0]
-            state.discharge[link] -= left
+            left = boundary_balance(tables, index, state.nodes, link.discharge, forcing, last_conveyance)[0]
+            link.discharge -= left
             largest = max(largest, abs(left))
-    for node in range(state.level.size):
-        state.net_inflow[node] = state.discharge[node] - state.discharge[node + 1] + stage.source[node]
+    for k in range(state.nodes.size):
+        node = state.nodes[k]
+        node.width = work.nodes[k].width
+        node.net_inflow = state.links[k].discharge - state.links[k + 1].discharge + work.nodes[k].source
     return largest
 
 
-@kernel
-def _restart_reach(tables, state, stage, link):
-    q = state.discharge[link]
-    state.mean_area[link] = 0.5 * (stage.area[link - 1] + stage.area[link])
-    state.convective_share[link] = convective_share(tables.channel, stage, link, q)
-    target = convective_target(
-        state.convective_share[link], q, stage.inverse_area[link - 1], stage.inverse_area[link]
-    )
-    state.convective_rate[link] = (target - state.convective_head[link]) / CONVECTIVE_TIME
+@inner_kernel
+def restart_reach(link, up, down):
+    """What a reach link's state implies at the present areas."""
+    link.mean_area = 0.5 * (up.area + down.area)
+    link.convective_share = convective_share(up, down, link.discharge)
+    target = convective_target(link.convective_share, link.discharge, up.inverse_area, down.inverse_area)
+    link.convective_rate = (target - link.convective_head) / CONVECTIVE_TIME
 
 
 @kernel
-def start_from_levels(tables, state, stage):
+def start_from_levels(tables, state, work):
     """Volumes, and convective heads in balance with the discharges, of a state known by levels and discharges."""
-    for node in range(state.level.size):
-        node_geometry(tables.channel, tables.nodes, node, state.level[node], stage)
-        state.volume[node] = tables.nodes.cell_length[node] * stage.area[node]
-    for link in range(1, state.level.size):
-        if tables.links.kind[link] == REACH:
-            share = convective_share(tables.channel, stage, link, state.discharge[link])
-            state.convective_head[link] = convective_target(
-                share, state.discharge[link], stage.inverse_area[link - 1], stage.inverse_area[link]
-            )
+    geometry_pass(tables, state.nodes, work)
+    for k in range(state.nodes.size):
+        state.nodes[k].volume = tables.cells[k].length * work.nodes[k].area
+    for index in range(1, state.nodes.size):
+        if tables.links[index].kind == REACH:
+            link, up, down = state.links[index], work.nodes[index - 1], work.nodes[index]
+            share = convective_share(up, down, link.discharge)
+            link.convective_head = convective_target(share, link.discharge, up.inverse_area, down.inverse_area)
 
 
-@kernel
-def accept(tables, state, middle, after, stage, totals, h):
+@inner_kernel
+def accept(tables, state, middle, after, work, totals, h):
     """Take `after` as the new state, add up what came and went, and judge anew how calm each reach link is."""
-    totals.inflow[0] += h * _weighted(state.discharge[0], middle.discharge[0], after.discharge[0])
     out = canal_outflow_link(tables)
-    totals.outflow[0] += h * _weighted(state.discharge[out], middle.discharge[out], after.discharge[out])
+    totals.canal[0] += h * weighted(state.links[0].discharge, middle.links[0].discharge, after.links[0].discharge)
+    totals.canal[1] += h * weighted(state.links[out].discharge, middle.links[out].discharge, after.links[out].discharge)
     for k in range(totals.delivery.size):
-        totals.delivery[k] += h * _weighted(state.delivery[k], middle.delivery[k], after.delivery[k])
-    copy(state.level, after.level)
-    copy(state.volume, after.volume)
-    copy(state.discharge, after.discharge)
-    copy(state.convective_head, after.convective_head)
-    copy(state.net_inflow, after.net_inflow)
-    copy(state.convective_rate, after.convective_rate)
-    copy(state.imbalance, after.imbalance)
-    copy(state.mean_area, after.mean_area)
-    copy(state.width, after.width)
-    copy(state.delivery, after.delivery)
-    for link in range(1, state.level.size):
-        if tables.links.kind[link] == REACH:
-            state.convective_share[link] = convective_share(tables.channel, stage, link, state.discharge[link])
+        totals.delivery[k] += h * weighted(state.delivery[k], middle.delivery[k], after.delivery[k])
+        state.delivery[k] = after.delivery[k]
+    for k in range(state.nodes.size):
+        state.nodes[k] = after.nodes[k]
+    for index in range(state.links.size):
+        state.links[index] = after.links[index]
+        if tables.links[index].kind == REACH:
+            link = state.links[index]
+            link.convective_share = convective_share(work.nodes[index - 1], work.nodes[index], link.discharge)
 
 
-@kernel
+@inner_kernel
 def canal_outflow_link(tables):
     """The link by which water leaves the canal: the last, or the tail gate where a basin stands beyond it."""
-    return tables.pools.last_node[tables.pools.last_node.size - 1] + 1
+    return tables.pools[tables.pools.size - 1].last_node + 1
 
 
-@kernel
-def _weighted(start, middle, end):
+@inner_kernel
+def weighted(start, middle, end):
+    """Mean over a step by the weights of the method."""
     return WEIGHT * (start + middle) + DIAGONAL * end

@@ -1,24 +1,25 @@
 """Solution with the factors of a tridiagonal matrix; the factors are made while the matrix is (`step.assemble`).
 
-Row k: lower[k]·x[k−1] + diagonal·x[k] + upper[k]·x[k+1] = right[k]. `pivot` holds inverse pivots. No pivoting: the
-matrix of storage and links is quasi-definite.
+Row k: lower[k]·x[k−1] + diagonal·x[k] + upper[k]·x[k+1] = right[k]. Rows keep inverse pivots. No pivoting: the matrix of
+storage and links is quasi-definite.
 """
 
-from toeline.hydraulics.kernel import kernel
+from toeline.hydraulics.kernel import inner_kernel
 
 
-@kernel
-def back_substitute(pivot, upper, x):
+@inner_kernel
+def back_substitute(rows):
     """Second sweep, in place: x holds the right side after the first sweep."""
-    last = x.size - 1
-    x[last] *= pivot[last]
-    for k in range(last - 1, -1, -1):
-        x[k] = (x[k] - upper[k] * x[k + 1]) * pivot[k]
+    after = 0.0
+    for k in range(rows.size - 1, -1, -1):
+        row = rows[k]
+        after = (row.x - row.upper * after) * row.pivot
+        row.x = after
 
 
-@kernel
-def solve_with_factors(pivot, lower, upper, x):
-    """Both sweeps, in place, for another right side."""
-    for k in range(1, x.size):
-        x[k] -= lower[k] * pivot[k - 1] * x[k - 1]
-    back_substitute(pivot, upper, x)
+@inner_kernel
+def solve_with_factors(rows):
+    """Both sweeps, in place, for another right side in x."""
+    for k in range(1, rows.size):
+        rows[k].x -= rows[k].lower * rows[k - 1].pivot * rows[k - 1].x
+    back_substitute(rows)

@@ -13,7 +13,7 @@ from collections.abc import Sequence
 
 import numpy as np
 
-from toeline.hydraulics.kernel import kernel
+from toeline.hydraulics.kernel import inner_kernel, kernel
 
 TRAPEZOID = 0.0
 CIRCLE = 1.0
@@ -249,7 +249,7 @@ def static_moment(section, depth):
     return section[row + 6] + d * (section[row + 1] + d * (section[row + 2] / 2.0 + d * section[row + 3] / 6.0))
 
 
-@kernel
+@inner_kernel
 def _row_below(section, y):
     """Where the row starts whose depth interval holds y."""
     low, high = 0, int(section[OWN])
@@ -262,7 +262,7 @@ def _row_below(section, y):
     return OWN + 1 + ROW * low
 
 
-@kernel
+@inner_kernel
 def _circle_geometry(diameter, y):
     half_angle = math.acos(min(max(1.0 - 2.0 * y / diameter, -1.0), 1.0))
     half_width = math.sqrt(max(y * (diameter - y), 0.0))
@@ -271,7 +271,7 @@ def _circle_geometry(diameter, y):
     return area, 2.0 * half_width, diameter * half_angle, slope
 
 
-@kernel
+@inner_kernel
 def _circle_moment(diameter, y):
     """∫A dy = (y − r)·A + ⅔·(half width)³."""
     area, width, _, _ = _circle_geometry(diameter, y)

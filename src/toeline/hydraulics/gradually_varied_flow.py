@@ -13,7 +13,7 @@ from toeline.constants import GRAVITY
 from toeline.hydraulics import status
 from toeline.hydraulics.critical_flow import critical_depth
 from toeline.hydraulics.cross_section import ALPHA, BETA, geometry, packed, static_moment
-from toeline.hydraulics.kernel import kernel
+from toeline.hydraulics.kernel import inner_kernel, kernel
 
 DEPTH_STEP = 0.04
 """Relative change of depth in one substep of a supercritical profile (choice: toe within 0.5 %)."""
@@ -24,35 +24,42 @@ DRY_DEPTH, WET_DEPTH = 0.02, 0.10
 REACHED_END, TURNED_CRITICAL, FULL = 0, 1, 2
 
 
+CHANNEL_NODE = np.dtype(
+    [
+        ("chainage", float),  # m
+        ("bed_level", float),  # m above datum
+        ("roughness", float),  # Manning's n
+        ("transition_loss", float),  # k of k·|ΔV²|/2g between this node and the next
+        ("section", np.int64),  # row of `Channel.shapes`
+    ]
+)
+
+
 class Channel(NamedTuple):
     """A channel by its n nodes, downstream in order; between nodes everything varies linearly."""
 
-    chainage: np.ndarray  # (n) m
-    bed_level: np.ndarray  # (n) m above datum
-    shape: np.ndarray  # (n) int64, row of `shapes`
-    roughness: np.ndarray  # (n) Manning's n
-    transition_loss: np.ndarray  # (n) k of k·|ΔV²|/2g between a node and the next
+    nodes: np.recarray  # (n) of CHANNEL_NODE
     shapes: np.ndarray  # (s, w) section arrays, see cross_section
 
 
 def channel(chainage, bed_level, sections, roughness, transition_loss=0.0) -> Channel:
-    """A `Channel` from plain sequences: one section array and one value a node (or one value for all)."""
-
-    nodes = np.asarray(chainage, float)
-    each = [np.ascontiguousarray(np.broadcast_to(np.asarray(v, float), nodes.shape)) for v in (bed_level, roughness, transition_loss)]
-    table = packed(list(sections))
-    return Channel(nodes, each[0], np.arange(nodes.size), each[1], each[2], table)
+    """A `Channel` from plain sequences: chainage [m], bed level [m], one section array, Manning's n and transition loss a node
+    (or one number for all)."""
+    nodes = np.zeros(len(chainage), CHANNEL_NODE).view(np.recarray)
+    nodes.chainage, nodes.bed_level, nodes.roughness = chainage, bed_level, roughness
+    nodes.transition_loss, nodes.section = transition_loss, np.arange(len(chainage))
+    return Channel(nodes, packed(list(sections)))
 
 
 @kernel
 def link_geometry(channel, node, weight, depth):
     """Area, top width, perimeter, its slope [m², m, m, 1] and roughness at the fraction `weight` between a node and the next."""
-    a, t, p, dp = geometry(channel.shapes[channel.shape[node]], depth)
-    n = channel.roughness[node]
+    a, t, p, dp = geometry(channel.shapes[channel.nodes[node].section], depth)
+    n = channel.nodes[node].roughness
     if weight > 0.0:
-        n += weight * (channel.roughness[node + 1] - n)
-        if channel.shape[node + 1] != channel.shape[node]:
-            a2, t2, p2, dp2 = geometry(channel.shapes[channel.shape[node + 1]], depth)
+        n += weight * (channel.nodes[node + 1].roughness - n)
+        if channel.nodes[node + 1].section != channel.nodes[node].section:
+            a2, t2, p2, dp2 = geometry(channel.shapes[channel.nodes[node + 1].section], depth)
             a, t = a + weight * (a2 - a), t + weight * (t2 - t)
             p, dp = p + weight * (p2 - p), dp + weight * (dp2 - dp)
     return a, t, p, dp, n
@@ -62,17 +69,17 @@ def link_geometry(channel, node, weight, depth):
 def link_bed(channel, node, weight):
     """Bed level [m] at the fraction `weight` between a node and the next."""
     if weight <= 0.0:
-        return channel.bed_level[node]
-    return channel.bed_level[node] + weight * (channel.bed_level[node + 1] - channel.bed_level[node])
+        return channel.nodes[node].bed_level
+    return channel.nodes[node].bed_level + weight * (channel.nodes[node + 1].bed_level - channel.nodes[node].bed_level)
 
 
 @kernel
 def link_force(channel, node, weight, discharge, depth):
     """Specific force M + βQ²/(gA) [m³] at the fraction `weight` between a node and the next."""
-    here = channel.shapes[channel.shape[node]]
+    here = channel.shapes[channel.nodes[node].section]
     moment, area, beta = static_moment(here, depth), geometry(here, depth)[0], here[BETA]
-    if weight > 0.0 and channel.shape[node + 1] != channel.shape[node]:
-        there = channel.shapes[channel.shape[node + 1]]
+    if weight > 0.0 and channel.nodes[node + 1].section != channel.nodes[node].section:
+        there = channel.shapes[channel.nodes[node + 1].section]
         moment += weight * (static_moment(there, depth) - moment)
         area += weight * (geometry(there, depth)[0] - area)
         beta += weight * (there[BETA] - beta)
@@ -82,19 +89,19 @@ def link_force(channel, node, weight, discharge, depth):
 @kernel
 def link_alpha(channel, node, weight):
     """Velocity-head coefficient at the fraction `weight` between a node and the next."""
-    alpha = channel.shapes[channel.shape[node], ALPHA]
+    alpha = channel.shapes[channel.nodes[node].section, ALPHA]
     if weight > 0.0:
-        alpha += weight * (channel.shapes[channel.shape[node + 1], ALPHA] - alpha)
+        alpha += weight * (channel.shapes[channel.nodes[node + 1].section, ALPHA] - alpha)
     return alpha
 
 
 @kernel
 def link_critical_depth(channel, node, weight, discharge):
     """Critical depth [m] at the fraction `weight` between a node and the next; see `critical_depth`."""
-    if weight <= 0.0 or channel.shape[node + 1] == channel.shape[node]:
-        return critical_depth(channel.shapes[channel.shape[node]], discharge)[0]
+    if weight <= 0.0 or channel.nodes[node + 1].section == channel.nodes[node].section:
+        return critical_depth(channel.shapes[channel.nodes[node].section], discharge)[0]
     wanted = link_alpha(channel, node, weight) * discharge * discharge / GRAVITY
-    y = critical_depth(channel.shapes[channel.shape[node]], discharge)[0]
+    y = critical_depth(channel.shapes[channel.nodes[node].section], discharge)[0]
     for _ in range(200):
         area, width, _, _, _ = link_geometry(channel, node, weight, y)
         step = math.log(wanted * width / (area * area * area)) / max(3.0 * y * width / area, 1.0)
@@ -104,7 +111,7 @@ def link_critical_depth(channel, node, weight, discharge):
     return y
 
 
-@kernel
+@inner_kernel
 def _friction(area, perimeter, roughness, discharge):
     """Friction slope of Manning from area and perimeter."""
     return (roughness * discharge / area) ** 2 * (perimeter / area) ** (4.0 / 3.0)
@@ -119,12 +126,12 @@ def supercritical_profile(channel, first, last, chainage, depth, discharge, chai
     no change of section a substep is taken in depth (direct step), else in distance (standard step) (Chow 1959, ch. 10).
     """
     node = first
-    while node < last - 1 and channel.chainage[node + 1] <= chainage:
+    while node < last - 1 and channel.nodes[node + 1].chainage <= chainage:
         node += 1
     x, y, count = chainage, depth, 1
     chainage_out[0], depth_out[0] = x, y
     while count < chainage_out.size:
-        if x >= channel.chainage[node + 1]:
+        if x >= channel.nodes[node + 1].chainage:
             node += 1
             if node >= last:
                 return count, REACHED_END
@@ -136,34 +143,34 @@ def supercritical_profile(channel, first, last, chainage, depth, discharge, chai
     return count, FULL
 
 
-@kernel
+@inner_kernel
 def _substep(channel, node, x, y, discharge):
     """Chainage and depth after one substep inside a link, and whether the flow turned critical there."""
-    span = channel.chainage[node + 1] - channel.chainage[node]
-    bed_slope = (channel.bed_level[node] - channel.bed_level[node + 1]) / span
-    weight = (x - channel.chainage[node]) / span
+    span = channel.nodes[node + 1].chainage - channel.nodes[node].chainage
+    bed_slope = (channel.nodes[node].bed_level - channel.nodes[node + 1].bed_level) / span
+    weight = (x - channel.nodes[node].chainage) / span
     area, width, perimeter, _, n = link_geometry(channel, node, weight, y)
     alpha = link_alpha(channel, node, weight)
     head = alpha * discharge * discharge / (2.0 * GRAVITY * area * area)
     friction = _friction(area, perimeter, n, discharge)
     froude_squared = 2.0 * head * width / area
-    prismatic = channel.shape[node] == channel.shape[node + 1] and channel.roughness[node] == channel.roughness[node + 1]
-    rest = channel.chainage[node + 1] - x
+    prismatic = channel.nodes[node].section == channel.nodes[node + 1].section and channel.nodes[node].roughness == channel.nodes[node + 1].roughness
+    rest = channel.nodes[node + 1].chainage - x
     if prismatic:
         moved, y_next, critical = _step_in_depth(channel, node, y, head, friction, bed_slope, discharge)
         if 0.0 < moved <= rest:
             return x + moved, y_next, critical
     gradient = abs(bed_slope - friction) / max(froude_squared - 1.0, 1e-3)
     step = min(rest, DEPTH_STEP * y / max(gradient, 1e-9), 0.25 * span if not prismatic else rest)
-    x_next = channel.chainage[node + 1] if rest - step < 1e-9 else x + step
+    x_next = channel.nodes[node + 1].chainage if rest - step < 1e-9 else x + step
     y_next, critical = _step_in_distance(channel, node, x, x_next, y, head, friction, discharge)
     return x_next, y_next, critical
 
 
-@kernel
+@inner_kernel
 def _step_in_depth(channel, node, y, head, friction, bed_slope, discharge):
     """Distance to a depth 4 % on the way that the profile takes, the depth, and whether it is critical."""
-    section = channel.shapes[channel.shape[node]]
+    section = channel.shapes[channel.nodes[node].section]
     y_next = y * (1.0 + DEPTH_STEP) if friction > bed_slope else y / (1.0 + DEPTH_STEP)
     area, width, perimeter, _ = geometry(section, y_next)
     head_next = section[ALPHA] * discharge * discharge / (2.0 * GRAVITY * area * area)
@@ -172,16 +179,16 @@ def _step_in_depth(channel, node, y, head, friction, bed_slope, discharge):
         y_next = critical_depth(section, discharge)[0]
         area, _, perimeter, _ = geometry(section, y_next)
         head_next = section[ALPHA] * discharge * discharge / (2.0 * GRAVITY * area * area)
-    mean_friction = 0.5 * (friction + _friction(area, perimeter, channel.roughness[node], discharge))
+    mean_friction = 0.5 * (friction + _friction(area, perimeter, channel.nodes[node].roughness, discharge))
     return (y_next + head_next - y - head) / (bed_slope - mean_friction), y_next, critical
 
 
-@kernel
+@inner_kernel
 def _step_in_distance(channel, node, x, x_next, y, head, friction, discharge):
     """Depth at the end of a substep by Newton's method on the energy balance, and whether it turned critical."""
-    span = channel.chainage[node + 1] - channel.chainage[node]
-    w, w_next = (x - channel.chainage[node]) / span, (x_next - channel.chainage[node]) / span
-    step, loss = x_next - x, channel.transition_loss[node]
+    span = channel.nodes[node + 1].chainage - channel.nodes[node].chainage
+    w, w_next = (x - channel.nodes[node].chainage) / span, (x_next - channel.nodes[node].chainage) / span
+    step, loss = x_next - x, channel.nodes[node].transition_loss
     wanted = link_bed(channel, node, w) - link_bed(channel, node, w_next) + y + head - 0.5 * step * friction
     alpha = link_alpha(channel, node, w_next)
     critical = link_critical_depth(channel, node, w_next, discharge)
@@ -230,8 +237,8 @@ def upstream_level(channel, node, level_down, discharge, point_loss):
     z_i + αQ²/2gA_i² = z_{i+1} + αQ²/2gA_{i+1}² + Δx·Q²/K² + local losses, K the mean of both conveyances. Bisection on the
     subcritical side; NO_SOLUTION (critical depth) where no subcritical depth balances.
     """
-    section = channel.shapes[channel.shape[node]]
-    low = channel.bed_level[node] + max(critical_depth(section, discharge)[0], 1e-6)
+    section = channel.shapes[channel.nodes[node].section]
+    low = channel.nodes[node].bed_level + max(critical_depth(section, discharge)[0], 1e-6)
     if _energy_gap(channel, node, low, level_down, discharge, point_loss) > 0.0:
         return low, status.NO_SOLUTION
     high = max(low, level_down) + 1.0
@@ -250,10 +257,10 @@ def upstream_level(channel, node, level_down, discharge, point_loss):
     return 0.5 * (low + high), status.OK
 
 
-@kernel
+@inner_kernel
 def _energy_gap(channel, node, level, level_down, discharge, point_loss):
     """Energy upstream less energy downstream and losses [m]."""
-    y_up, y_down = level - channel.bed_level[node], level_down - channel.bed_level[node + 1]
+    y_up, y_down = level - channel.nodes[node].bed_level, level_down - channel.nodes[node + 1].bed_level
     a_up, _, p_up, _, n_up = link_geometry(channel, node, 0.0, y_up)
     a_down, _, p_down, _, n_down = link_geometry(channel, node + 1, 0.0, y_down)
     k_up = a_up * (a_up / p_up) ** (2.0 / 3.0) / n_up
@@ -264,8 +271,8 @@ def _energy_gap(channel, node, level, level_down, discharge, point_loss):
     head_down = link_alpha(channel, node + 1, 0.0) * discharge * discharge / (2.0 * GRAVITY * a_down * a_down)
     mean_area = 0.5 * (a_up + a_down)
     local = half * point_loss / (mean_area * mean_area)
-    local += channel.transition_loss[node] * half * abs(1.0 / (a_up * a_up) - 1.0 / (a_down * a_down))
-    friction = (channel.chainage[node + 1] - channel.chainage[node]) * discharge * abs(discharge) / (k * k)
+    local += channel.nodes[node].transition_loss * half * abs(1.0 / (a_up * a_up) - 1.0 / (a_down * a_down))
+    friction = (channel.nodes[node + 1].chainage - channel.nodes[node].chainage) * discharge * abs(discharge) / (k * k)
     return level + head_up - level_down - head_down - friction - local
 
 

@@ -18,7 +18,7 @@ from toeline.hydraulics.hydraulic_jump import (
     jump_length,
     subcritical_depth_of_force,
 )
-from toeline.hydraulics.kernel import kernel
+from toeline.hydraulics.kernel import inner_kernel, kernel
 from toeline.hydraulics.submerged_jump import jet_force
 
 JUMP_NONE, JUMP_DROWNED, JUMP_ON_APRON, JUMP_ON_PROTECTION, JUMP_BEYOND_PROTECTION, JUMP_SWEPT_OUT = range(6)
@@ -58,7 +58,7 @@ def jet_on_floor(section, jet_width, thickness, step, discharge):
     return Jet(discharge, jet_width, depth, full, froude, jet_force(section, discharge, jet_width, depth, depth))
 
 
-@kernel
+@inner_kernel
 def _alternate_depth(q, energy):
     """Supercritical root of y + q²/(2gy²) = E, in closed form."""
     cosine = 1.0 - 27.0 * q * q / (4.0 * GRAVITY * energy * energy * energy)
@@ -84,12 +84,12 @@ def tail_depth_at(channel, levels, node, weight, discharge):
     return link_critical_depth(channel, node, weight, discharge)
 
 
-@kernel
+@inner_kernel
 def _node_below(channel, first, last, chainage):
     node = first
-    while node < last - 1 and channel.chainage[node + 1] <= chainage:
+    while node < last - 1 and channel.nodes[node + 1].chainage <= chainage:
         node += 1
-    return node, (chainage - channel.chainage[node]) / (channel.chainage[node + 1] - channel.chainage[node])
+    return node, (chainage - channel.nodes[node].chainage) / (channel.nodes[node + 1].chainage - channel.nodes[node].chainage)
 
 
 @kernel
@@ -109,9 +109,9 @@ def free_jump(channel, first, last, levels, jet, chainages, depths, count):
     x_before = chainages[0]
     for k in range(count):
         x, y = chainages[k], depths[k]
-        while node < last - 1 and channel.chainage[node + 1] <= x:
+        while node < last - 1 and channel.nodes[node + 1].chainage <= x:
             node += 1
-        weight = (x - channel.chainage[node]) / (channel.chainage[node + 1] - channel.chainage[node])
+        weight = (x - channel.nodes[node].chainage) / (channel.nodes[node + 1].chainage - channel.nodes[node].chainage)
         tail = tail_depth_at(channel, levels, node, weight, jet.discharge)
         force = jet.force if k == 0 else link_force(channel, node, weight, jet.discharge, y)
         excess = force - link_force(channel, node, weight, jet.discharge, tail)
@@ -124,7 +124,7 @@ def free_jump(channel, first, last, levels, jet, chainages, depths, count):
     return FreeJump(math.nan, math.nan, math.nan, math.nan, math.nan, LENGTH_NOT_DEFINED, math.nan)
 
 
-@kernel
+@inner_kernel
 def _jump_at(channel, first, last, levels, discharge, toe, depth):
     node, weight = _node_below(channel, first, last, toe)
     tail = tail_depth_at(channel, levels, node, weight, discharge)
@@ -140,7 +140,7 @@ def _jump_at(channel, first, last, levels, discharge, toe, depth):
 @kernel
 def link_jump_length(channel, node, weight, depth, froude, sequent):
     """`jump_length` in the section between a node and the next, not defined unless both are trapezoids."""
-    here, there = channel.shapes[channel.shape[node]], channel.shapes[channel.shape[node + 1]]
+    here, there = channel.shapes[channel.nodes[node].section], channel.shapes[channel.nodes[node + 1].section]
     if here[0] != TRAPEZOID or there[0] != TRAPEZOID or sequent > min(here[1], there[1]):
         return math.nan, LENGTH_NOT_DEFINED
     bottom = here[OWN] + weight * (there[OWN] - here[OWN])
@@ -167,7 +167,7 @@ def sequent_in_link(channel, node, weight, discharge, depth):
     return y
 
 
-@kernel
+@inner_kernel
 def _end_of_jump_from(channel, first, last, discharge, x, depth):
     """Where a jump with its toe at x would end (its toe where the length is not defined), and its sequent depth."""
     node, weight = _node_below(channel, first, last, x)
@@ -204,7 +204,7 @@ def protection_margin(channel, first, last, levels, discharge, chainages, depths
     return level - link_bed(channel, node, weight) - sequent
 
 
-@kernel
+@inner_kernel
 def _between(channel, first, last, discharge, chainages, depths, low, high, protection_end):
     """Toe and sequent depth of the jump that ends at `protection_end`, between two points of the profile."""
     end_low, sequent_low = _end_of_jump_from(channel, first, last, discharge, chainages[low], depths[low])

@@ -9,7 +9,7 @@ from typing import NamedTuple
 
 from toeline.constants import GRAVITY
 from toeline.hydraulics.cross_section import BETA, geometry, static_moment
-from toeline.hydraulics.kernel import kernel
+from toeline.hydraulics.kernel import inner_kernel, kernel
 from toeline.hydraulics.weir import weir_discharge
 
 CLOSED, FREE, NEAR_MODULAR_LIMIT, DROWNED, CLEAR_OF_WATER, CLEAR_AND_DROWNED, OVERTOPPED, REVERSE = range(8)
@@ -110,18 +110,18 @@ def modular_limit_depth(gate, downstream_section, jet, discharge):
     return _limit_from_above(downstream_section, flux, force, y)
 
 
-@kernel
+@inner_kernel
 def _tail_force(section, flux, depth):
     return static_moment(section, depth) + flux / geometry(section, depth)[0]
 
 
-@kernel
+@inner_kernel
 def _is_subcritical(section, flux, depth):
     area, width, _, _ = geometry(section, depth)
     return flux * width < area * area * area
 
 
-@kernel
+@inner_kernel
 def _limit_from_above(section, flux, force, start):
     """Newton from a subcritical depth whose force is not below the wanted one; the force is convex there."""
     y = start
@@ -134,7 +134,7 @@ def _limit_from_above(section, flux, force, start):
     return y
 
 
-@kernel
+@inner_kernel
 def _throat_loss(gate, thickness, approach_per_square):
     """1/(2g(φbh)²) less the approach velocity head, both per Q² [s²/m⁵]."""
     throat = gate.discharge_factor * gate.width * thickness
@@ -158,7 +158,7 @@ def drowned_discharge(gate, section, head_depth, tail_depth, jet, lip, approach_
     return _drowned_open_throat(gate, section, head_depth, tail_depth, jet, lip, approach_per_square)
 
 
-@kernel
+@inner_kernel
 def _drowned_under_lip(gate, section, head_depth, tail_depth, jet, approach_per_square):
     """Newton in the roller depth from the tail depth down, where the residual is positive and convex."""
     flux = section[BETA] / GRAVITY * (1.0 / (gate.width * jet) - 1.0 / geometry(section, tail_depth)[0])
@@ -183,7 +183,7 @@ def _drowned_under_lip(gate, section, head_depth, tail_depth, jet, approach_per_
     return math.sqrt(max(head_depth - y, 0.0) / loss), y
 
 
-@kernel
+@inner_kernel
 def _drowned_open_throat(gate, section, head_depth, tail_depth, jet, lip, approach_per_square):
     """Bisection in the roller depth between critical flow over the sill and the lip or the tailwater."""
     step = gate.sill_level - gate.floor_level
@@ -200,7 +200,7 @@ def _drowned_open_throat(gate, section, head_depth, tail_depth, jet, lip, approa
     return math.sqrt(max(head_depth - y, 0.0) / _throat_loss(gate, y - step, approach_per_square)), y
 
 
-@kernel
+@inner_kernel
 def _underflow_one_way(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening):
     """Flow below the lip with the headwater higher than the tailwater by at least `LINEAR_HEAD`."""
     energy, jet, free, lip = free_jet(gate, upstream_section, headwater_level, opening)
@@ -229,7 +229,7 @@ def _underflow_one_way(gate, upstream_section, downstream_section, headwater_lev
     return GateFlow(q, q, free, jet, energy, math.nan, limit, NEAR_MODULAR_LIMIT, QUALITY_NEAR_LIMIT)
 
 
-@kernel
+@inner_kernel
 def _underflow(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening):
     """`_underflow_one_way`, scaled linearly to zero over the last centimetre of head."""
     head = headwater_level - tailwater_level
@@ -288,7 +288,7 @@ def gate_discharge(gate, upstream_section, downstream_section, headwater_level, 
     return gate_flow(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening).discharge
 
 
-@kernel
+@inner_kernel
 def _leakage(gate, headwater_level, tailwater_level):
     """Flow past the seals: leakage·√head, linear below a centimetre; none from water below the sill."""
     high, low = max(headwater_level, tailwater_level), min(headwater_level, tailwater_level)
@@ -299,7 +299,7 @@ def _leakage(gate, headwater_level, tailwater_level):
     return math.copysign(gate.leakage * size, headwater_level - tailwater_level)
 
 
-@kernel
+@inner_kernel
 def _state(state, opening, sign, over):
     if over != 0.0:
         return OVERTOPPED
@@ -308,7 +308,7 @@ def _state(state, opening, sign, over):
     return REVERSE if sign < 0.0 else state
 
 
-@kernel
+@inner_kernel
 def _quality(gate, flow, headwater_level, tailwater_level, opening, sign):
     if opening <= 0.0:
         return QUALITY_GOOD

@@ -7,26 +7,27 @@ import numpy as np
 
 from toeline.hydraulics import cross_section, offtake, status
 from toeline.hydraulics.critical_flow import critical_depth
-from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH, Channel
+from toeline.hydraulics.gradually_varied_flow import CHANNEL_NODE, DRY_DEPTH, Channel
 from toeline.hydraulics.underflow_gate import SHARP_EDGE_CONTRACTION, UnderflowGate
 from toeline.hydraulics.uniform_flow import normal_depth
 from toeline.network.tables import (
+    CELL,
     FREE_OVERFALL,
     GATE,
+    GATE_ROW,
     HEAD,
     INFLOW,
+    LINK,
     NORMAL_DEPTH,
+    OFFTAKE,
+    POOL,
     RATING,
     REACH,
     TAIL_LEVEL,
-    Boundary,
-    Gates,
-    Links,
     Names,
     Network,
-    Nodes,
-    Offtakes,
-    Pools,
+    Tables,
+    records,
 )
 
 SUDDEN_CHANGE_LENGTH = 1.0
@@ -61,17 +62,17 @@ def network_of(canal, spacing: float) -> Network:
     shapes = _Shapes(canal)
     channel = _channel(lines, shapes)
     canal_nodes = sum(len(line.nodes) for line in lines[: len(canal.pools)])
-    return Network(
+    tables = Tables(
         channel=channel,
-        nodes=_nodes(lines, channel, canal_nodes, has_basin),
+        cells=_cells(lines, channel, canal_nodes, has_basin),
         links=_links(canal, lines, canal_nodes, has_basin),
-        gates=_gates(canal, lines, channel, shapes, canal_nodes),
+        gates=_gates(canal, lines, channel, shapes),
         offtakes=_offtakes(canal, lines, channel),
-        boundary=_boundary(canal),
         pools=_pools(lines[: len(canal.pools)]),
-        has_tail_basin=has_basin,
-        names=_names(canal, lines, canal_nodes),
+        tail_slope=np.array([canal.tail.slope or 0.0]),
+        tail_rating=np.ascontiguousarray(np.array(canal.tail.rating or [[0.0, 0.0], [1.0, 1.0]], float).T),
     )
+    return Network(tables, has_basin, _names(canal, lines, canal_nodes))
 
 
 @dataclass
@@ -196,48 +197,50 @@ def _section(section) -> np.ndarray:
 
 def _channel(lines: list[_Line], shapes: _Shapes) -> Channel:
     nodes = [(line, node) for line in lines for node in line.nodes]
-    shape = np.array([shapes.row(node.section, node.blend) for _, node in nodes], np.int64)
+    section = [shapes.row(node.section, node.blend) for _, node in nodes]
     shapes.add(cross_section.rectangle(RESERVOIR_WIDTH))
-    return Channel(
-        chainage=np.array([line.start + node.distance for line, node in nodes]),
-        bed_level=np.array([node.bed for _, node in nodes]),
-        shape=shape,
-        roughness=np.array([shapes.roughness_at(node.section, node.blend) for _, node in nodes]),
-        transition_loss=np.array([node.transition_loss for _, node in nodes]),
-        shapes=cross_section.packed(shapes.rows),
+    table = records(
+        CHANNEL_NODE,
+        chainage=[line.start + node.distance for line, node in nodes],
+        bed_level=[node.bed for _, node in nodes],
+        section=section,
+        roughness=[shapes.roughness_at(node.section, node.blend) for _, node in nodes],
+        transition_loss=[node.transition_loss for _, node in nodes],
     )
+    return Channel(table, cross_section.packed(shapes.rows))
 
 
-def _nodes(lines: list[_Line], channel: Channel, canal_nodes: int, has_basin: bool) -> Nodes:
+def _cells(lines: list[_Line], channel: Channel, canal_nodes: int, has_basin: bool) -> np.recarray:
     count = canal_nodes + int(has_basin)
-    cell = np.zeros(count)
+    length = np.zeros(count)
     for line in lines:
         last = min(line.last_index, canal_nodes - 1)
-        half = 0.5 * np.diff(channel.chainage[line.first_index : last + 1])
-        cell[line.first_index : last] += half
-        cell[line.first_index + 1 : last + 1] += half
+        half = 0.5 * np.diff(channel.nodes.chainage[line.first_index : last + 1])
+        length[line.first_index : last] += half
+        length[line.first_index + 1 : last + 1] += half
     if has_basin:
-        cell[-1] = TAIL_BASIN_LENGTH
+        length[-1] = TAIL_BASIN_LENGTH
     at_dry = np.array([cross_section.geometry(row, DRY_DEPTH)[:3] for row in channel.shapes])
-    return Nodes(cell, *(np.ascontiguousarray(column) for column in at_dry.T))
+    area, width, perimeter = at_dry[channel.nodes.section[:count]].T
+    return records(CELL, length=length, dry_area=area, dry_width=width, dry_perimeter=perimeter)
 
 
-def _links(canal, lines: list[_Line], canal_nodes: int, has_basin: bool) -> Links:
+def _links(canal, lines: list[_Line], canal_nodes: int, has_basin: bool) -> np.recarray:
     count = canal_nodes + int(has_basin)
-    kind, gate = np.full(count + 1, REACH, np.int64), np.full(count + 1, -1, np.int64)
-    length, point_loss = np.zeros(count + 1), np.zeros(count + 1)
+    links = np.zeros(count + 1, LINK).view(np.recarray)
+    links.kind, links.gate = REACH, -1
     for pool, line in zip(canal.pools, lines, strict=False):
-        for k in range(1, len(line.nodes)):
-            length[line.first_index + k] = line.nodes[k].distance - line.nodes[k - 1].distance
+        ends = np.array([node.distance for node in line.nodes])
+        first = line.first_index + 1
+        links.length[first : line.last_index + 1] = np.diff(ends)
         for loss in pool.point_losses:
-            ends = [node.distance for node in line.nodes[1:]]
-            point_loss[line.first_index + 1 + int(np.searchsorted(ends, loss.chainage))] += loss.coefficient
-    kind[0] = INFLOW
-    kind[count] = TAIL_KINDS[canal.tail.kind]
-    length[count] = 1.0 if kind[count] == TAIL_LEVEL else 0.0
+            links.point_loss[first + int(np.searchsorted(ends[1:], loss.chainage))] += loss.coefficient
+    links.kind[0] = INFLOW
+    links.kind[count] = TAIL_KINDS[canal.tail.kind]
+    links.length[count] = 1.0 if links.kind[count] == TAIL_LEVEL else 0.0
     for g, link in enumerate(_gate_links(canal, lines)):
-        kind[link], gate[link], length[link] = GATE, g, 0.0
-    return Links(kind, length, point_loss, gate)
+        links[link] = (GATE, 0.0, 0.0, g)
+    return links
 
 
 def _gate_links(canal, lines: list[_Line]) -> list[int]:
@@ -247,27 +250,20 @@ def _gate_links(canal, lines: list[_Line]) -> list[int]:
     return [starts[gate.downstream] for gate in canal.gates]
 
 
-def _gates(canal, lines: list[_Line], channel: Channel, shapes: _Shapes, canal_nodes: int) -> Gates:
+def _gates(canal, lines: list[_Line], channel: Channel, shapes: _Shapes) -> np.recarray:
     names = [pool.name for pool in canal.pools] + ["tail"]
-    below = [lines[names.index(gate.downstream)] for gate in canal.gates]
-    above = [HEAD if gate.upstream == "head" else lines[names.index(gate.upstream)].last_index for gate in canal.gates]
-    reservoir = len(shapes.rows) - 1
-    law, ends = [], []
-    for gate, up, line in zip(canal.gates, above, below, strict=True):
-        floor = float(channel.bed_level[line.first_index])
-        bed = gate.sill_level if up == HEAD else float(channel.bed_level[up])
-        law.append(gate_law(gate, floor, bed))
-        ends.append(_protected_ends(canal, line))
-    return Gates(
-        law=np.array(law, float).reshape(len(law), len(UnderflowGate._fields)),
-        upstream_node=np.array(above, np.int64),
-        downstream_node=np.array([line.first_index for line in below], np.int64),
-        upstream_shape=np.array([reservoir if up == HEAD else channel.shape[up] for up in above], np.int64),
-        downstream_shape=np.array([channel.shape[line.first_index] for line in below], np.int64),
-        floor_last=np.array([line.last_index for line in below], np.int64),
-        apron_end=np.array([end[0] for end in ends], float),
-        protection_end=np.array([end[1] for end in ends], float),
-    )
+    rows = []
+    for gate in canal.gates:
+        line = lines[names.index(gate.downstream)]
+        up = HEAD if gate.upstream == "head" else lines[names.index(gate.upstream)].last_index
+        bed = gate.sill_level if up == HEAD else channel.nodes.bed_level[up]
+        law = gate_law(gate, channel.nodes.bed_level[line.first_index], bed)
+        sections = (
+            len(shapes.rows) - 1 if up == HEAD else channel.nodes.section[up],
+            channel.nodes.section[line.first_index],
+        )
+        rows.append((*law, up, line.first_index, *sections, line.last_index, *_protected_ends(canal, line)))
+    return np.array(rows, GATE_ROW).view(np.recarray)
 
 
 def gate_law(gate, floor_level: float, upstream_bed_level: float) -> UnderflowGate:
@@ -301,7 +297,7 @@ def _protected_ends(canal, line: _Line) -> tuple[float, float]:
     return apron, protection
 
 
-def _offtakes(canal, lines: list[_Line], channel: Channel) -> Offtakes:
+def _offtakes(canal, lines: list[_Line], channel: Channel) -> np.recarray:
     """Every offtake at the node nearest to it."""
     names = [pool.name for pool in canal.pools]
     nodes = []
@@ -310,29 +306,21 @@ def _offtakes(canal, lines: list[_Line], channel: Channel) -> Offtakes:
         distances = np.array([node.distance for node in line.nodes])
         nodes.append(line.first_index + int(np.argmin(np.abs(distances - take.chainage))))
     sills = [
-        take.sill_level if take.sill_level is not None else channel.bed_level[node]
+        take.sill_level if take.sill_level is not None else channel.nodes.bed_level[node]
         for take, node in zip(canal.offtakes, nodes, strict=True)
     ]
-    return Offtakes(
-        node=np.array(nodes, np.int64),
-        kind=np.array([OFFTAKE_KINDS[take.kind] for take in canal.offtakes], np.int64),
-        sill_level=np.array(sills, float),
-        width=np.array([take.width or 0.0 for take in canal.offtakes], float),
-        coefficient=np.array([take.coefficient or 0.0 for take in canal.offtakes], float),
+    return records(
+        OFFTAKE,
+        node=nodes,
+        kind=[OFFTAKE_KINDS[take.kind] for take in canal.offtakes],
+        sill_level=sills,
+        width=[take.width or 0.0 for take in canal.offtakes],
+        coefficient=[take.coefficient or 0.0 for take in canal.offtakes],
     )
 
 
-def _boundary(canal) -> Boundary:
-    rating = np.array(canal.tail.rating or [[0.0, 0.0], [1.0, 1.0]], float)
-    return Boundary(
-        np.array([canal.tail.slope or 0.0]), np.ascontiguousarray(rating[:, 0]), np.ascontiguousarray(rating[:, 1])
-    )
-
-
-def _pools(lines: list[_Line]) -> Pools:
-    return Pools(
-        np.array([line.first_index for line in lines], np.int64), np.array([line.last_index for line in lines], np.int64)
-    )
+def _pools(lines: list[_Line]) -> np.recarray:
+    return records(POOL, first_node=[line.first_index for line in lines], last_node=[line.last_index for line in lines])
 
 
 def _names(canal, lines: list[_Line], canal_nodes: int) -> Names:

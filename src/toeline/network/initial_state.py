@@ -40,7 +40,7 @@ class Demands:
 
 def dry_state(network: Network, openings: np.ndarray) -> Start:
     """An empty canal: every level well below its bed, nothing flows."""
-    level = network.channel.bed_level[: network.node_count] - 0.1
+    level = network.channel.nodes.bed_level[: network.node_count] - 0.1
     return Start(level, np.zeros(network.node_count + 1), openings)
 
 
@@ -50,8 +50,8 @@ def steady_at_targets(network: Network, inflow: float, tail_level: float, head_l
     Raises UsageError where a pool has no target, a gate cannot pass its share, or the flow would not be calm.
     """
     missing = [name for name, z in zip(network.names.pools, network.names.target_level, strict=True) if np.isnan(z)]
-    held = set(network.gates.upstream_node.tolist())
-    missing = [name for name, last in zip(network.names.pools, network.pools.last_node, strict=True) if name in missing and last in held]
+    held = set(network.tables.gates.upstream_node.tolist())
+    missing = [name for name, last in zip(network.names.pools, network.tables.pools.last_node, strict=True) if name in missing and last in held]
     if missing:
         raise UsageError(f"openings \"to hold targets\": no target_level given for {', '.join(missing)}")
     search = _Search(network, tail_level, demands)
@@ -72,7 +72,7 @@ def steady_at_openings(network: Network, inflow: float, tail_level: float, deman
 def steady_under_reservoir(network: Network, head_level: float, tail_level: float, demands: Demands, openings) -> Start:
     """Steady state below a reservoir with given openings: the inflow at which the head gate's headwater is the reservoir's."""
     search = _Search(network, tail_level, demands)
-    largest = search.passed(0, head_level, network.gates.law[0, 1] - 1.0, openings[0])
+    largest = search.passed(0, head_level, network.tables.gates.sill_level[0] - 1.0, openings[0])
 
     def lacking(inflow: float) -> float:
         level, _ = search.settle(inflow, lambda g, q, down: search.headwater(g, q, down, openings[g]))
@@ -86,7 +86,7 @@ def steady_under_reservoir(network: Network, head_level: float, tail_level: floa
 
 
 def _pool_above(network: Network, g: int) -> int:
-    return int(np.searchsorted(network.pools.last_node, network.gates.upstream_node[g]))
+    return int(np.searchsorted(network.tables.pools.last_node, network.tables.gates.upstream_node[g]))
 
 
 class _Search:
@@ -111,17 +111,17 @@ class _Search:
     def _discharges(self, inflow: float, taken: np.ndarray) -> np.ndarray:
         network = self.network
         drawn = np.zeros(network.node_count)
-        np.add.at(drawn, network.offtakes.node, taken)
+        np.add.at(drawn, network.tables.offtakes.node, taken)
         discharge = inflow - np.concatenate(([0.0], np.cumsum(drawn)))
         short = discharge < -1e-9
         if short.any():
-            pool = int(np.searchsorted(network.pools.last_node, np.argmax(short) - 1))
+            pool = int(np.searchsorted(network.tables.pools.last_node, np.argmax(short) - 1))
             name = network.names.pools[min(pool, len(network.names.pools) - 1)]
             raise UsageError(f"no steady state: the deliveries down to {name} exceed the inflow of {inflow:.3f} m3/s")
         return np.maximum(discharge, 0.0)
 
     def _delivery(self, k: int, level: np.ndarray) -> float:
-        takes = self.network.offtakes
+        takes = self.network.tables.offtakes
         return offtake_discharge(
             takes.kind[k], self.demands.discharge[k], takes.sill_level[k], takes.width[k], self.demands.opening[k],
             takes.coefficient[k], level[takes.node[k]],
@@ -129,7 +129,7 @@ class _Search:
 
     def _levels(self, discharge: np.ndarray, headwater_of) -> np.ndarray:
         """Levels from the tail up: a boundary, a gate or a reach at a time."""
-        network, links = self.network, self.network.links
+        network, links = self.network, self.network.tables.links
         level = np.full(network.node_count, np.nan)
         for node in range(network.node_count - 1, -1, -1):
             link, q = node + 1, discharge[node + 1]
@@ -145,11 +145,11 @@ class _Search:
 
     def _upstream(self, node: int, below: float, q: float) -> float:
         if q == 0.0:
-            return max(below, self.network.channel.bed_level[node])
-        z, flag = upstream_level(self.network.channel, node, below, q, self.network.links.point_loss[node + 1])
+            return max(below, self.network.channel.nodes.bed_level[node])
+        z, flag = upstream_level(self.network.channel, node, below, q, self.network.tables.links.point_loss[node + 1])
         if flag != status.OK:
-            pool = int(np.searchsorted(self.network.pools.last_node, node))
-            at = self.network.channel.chainage[node]
+            pool = int(np.searchsorted(self.network.tables.pools.last_node, node))
+            at = self.network.channel.nodes.chainage[node]
             raise UsageError(
                 f"no calm steady flow of {q:.3f} m3/s in {self.network.names.pools[pool]} at chainage {at:.0f} m: "
                 "the level below is too low for it (critical flow)"
@@ -157,21 +157,22 @@ class _Search:
         return z
 
     def _tail(self, kind: int, node: int, q: float) -> float:
-        channel, boundary = self.network.channel, self.network.boundary
-        section, bed, n = channel.shapes[channel.shape[node]], channel.bed_level[node], channel.roughness[node]
+        channel, tables = self.network.channel, self.network.tables
+        here = channel.nodes[node]
+        section, bed, n = channel.shapes[here.section], here.bed_level, here.roughness
         if kind == TAIL_LEVEL:
             k = conveyance(section, n, self.tail_level - bed)
             return self.tail_level + (q / k) ** 2 if k > 0.0 else self.tail_level
         if kind == RATING:
-            return float(np.interp(q, boundary.rating_discharge, boundary.rating_level))
+            return float(np.interp(q, tables.tail_rating[1], tables.tail_rating[0]))
         if kind == FREE_OVERFALL:
             return bed + critical_depth(section, q)[0]
-        return bed + normal_depth(section, n, boundary.slope[0], q)[0]
+        return bed + normal_depth(section, n, tables.tail_slope[0], q)[0]
 
     def _law(self, g: int):
-        gates, channel = self.network.gates, self.network.channel
-        up, down = channel.shapes[gates.upstream_shape[g]], channel.shapes[gates.downstream_shape[g]]
-        return UnderflowGate(*(float(v) for v in gates.law[g])), up, down
+        row, shapes = self.network.tables.gates[g], self.network.channel.shapes
+        law = UnderflowGate(*(float(row[name]) for name in UnderflowGate._fields))
+        return law, shapes[row.upstream_section], shapes[row.downstream_section]
 
     def passed(self, g: int, up: float, down: float, opening: float) -> float:
         """Discharge of a gate [m³/s]."""
@@ -179,7 +180,7 @@ class _Search:
 
     def headwater(self, g: int, q: float, below: float, opening: float) -> float:
         """Level above a gate [m] at which it passes a discharge; its sill or the level below where nothing flows."""
-        low = max(below, self.network.gates.law[g, 1])
+        low = max(below, self.network.tables.gates.sill_level[g])
         if q <= 1e-12:
             return low
         high = low + DEEPEST
@@ -195,9 +196,9 @@ class _Search:
 
     def opening(self, g: int, level: np.ndarray, discharge: np.ndarray, head_level: float, largest: float) -> float:
         """Opening [m] at which a gate passes its discharge at the levels beside it."""
-        gates = self.network.gates
+        gates = self.network.tables.gates
         up = head_level if gates.upstream_node[g] == HEAD else level[gates.upstream_node[g]]
-        link = int(np.flatnonzero(self.network.links.gate == g)[0])
+        link = int(np.flatnonzero(self.network.tables.links.gate == g)[0])
         down = self.tail_level if link == self.network.node_count else level[link]
         q = discharge[link]
         if q <= 1e-12:

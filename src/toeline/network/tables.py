@@ -10,6 +10,7 @@ from typing import NamedTuple
 import numpy as np
 
 from toeline.hydraulics.gradually_varied_flow import Channel
+from toeline.hydraulics.underflow_gate import UnderflowGate
 
 INFLOW, REACH, GATE, TAIL_LEVEL, FREE_OVERFALL, RATING, NORMAL_DEPTH = range(7)
 """Kinds of link."""
@@ -21,84 +22,93 @@ FORCING_HEAD, FORCING_TAIL, FORCING_GATES = 0, 1, 2
 """Where the forcing array holds the inflow or head level, the tail level and, from there on, gate openings."""
 
 
-class Nodes(NamedTuple):
-    """The n nodes whose levels are unknown, and the section rows by which they dry."""
+CELL = np.dtype(
+    [
+        ("length", float),  # m of canal that the node stands for
+        ("dry_area", float),  # m² at the dry depth, from which the area goes on exponentially
+        ("dry_width", float),  # m there
+        ("dry_perimeter", float),  # m there
+    ]
+)
+"""The storage of a node whose level is unknown."""
 
-    cell_length: np.ndarray  # (n) m of canal that a node stands for
-    dry_area: np.ndarray  # (s) m², area of a section row at the dry depth
-    dry_width: np.ndarray  # (s) m, its width there
-    dry_perimeter: np.ndarray  # (s) m
+LINK = np.dtype(
+    [
+        ("kind", np.int64),
+        ("length", float),  # m; 1 m of friction at a tail without a gate, 0 for other boundaries and gates
+        ("point_loss", float),  # k of k·V²/2g
+        ("gate", np.int64),  # index, -1 where there is none
+    ]
+)
 
+GATE_ROW = np.dtype(
+    [
+        *((name, float) for name in UnderflowGate._fields),
+        ("upstream_node", np.int64),  # HEAD for the reservoir
+        ("downstream_node", np.int64),  # of the channel; not an unknown one below a tail gate with a level beyond
+        ("upstream_section", np.int64),  # row of Channel.shapes
+        ("downstream_section", np.int64),
+        ("floor_last", np.int64),  # last node of the channel below
+        ("apron_end", float),  # m from the gate
+        ("protection_end", float),  # m from the gate
+    ]
+)
+"""A gate: the fields of its law, and where it stands."""
 
-class Links(NamedTuple):
-    """The n + 1 links."""
+OFFTAKE = np.dtype(
+    [
+        ("node", np.int64),
+        ("kind", np.int64),  # see hydraulics.offtake
+        ("sill_level", float),  # m above datum
+        ("width", float),  # m
+        ("coefficient", float),  # 1 of an orifice, m^0.5/s of a weir
+    ]
+)
 
-    kind: np.ndarray  # (n + 1) int64
-    length: np.ndarray  # (n + 1) m; 1 m of friction at a tail without a gate, else 0
-    point_loss: np.ndarray  # (n + 1) k of k·V²/2g
-    gate: np.ndarray  # (n + 1) int64 index, -1 where there is none
-
-
-class Gates(NamedTuple):
-    """The g gates, in order downstream."""
-
-    law: np.ndarray  # (g, 11) fields of an UnderflowGate
-    upstream_node: np.ndarray  # (g) int64, HEAD for the reservoir
-    downstream_node: np.ndarray  # (g) int64, a node of the channel (beyond the n nodes below a tail gate)
-    upstream_shape: np.ndarray  # (g) int64, section row
-    downstream_shape: np.ndarray  # (g) int64, section row
-    floor_last: np.ndarray  # (g) int64, last node of the channel below
-    apron_end: np.ndarray  # (g) m from the gate
-    protection_end: np.ndarray  # (g) m from the gate
-
-
-class Offtakes(NamedTuple):
-    """The d offtakes."""
-
-    node: np.ndarray  # (d) int64
-    kind: np.ndarray  # (d) int64, see hydraulics.offtake
-    sill_level: np.ndarray  # (d) m
-    width: np.ndarray  # (d) m
-    coefficient: np.ndarray  # (d) 1 or m^0.5/s
-
-
-class Boundary(NamedTuple):
-    """What lies beyond the tail."""
-
-    slope: np.ndarray  # (1) for NORMAL_DEPTH
-    rating_level: np.ndarray  # (r) m
-    rating_discharge: np.ndarray  # (r) m³/s
+POOL = np.dtype([("first_node", np.int64), ("last_node", np.int64)])
 
 
-class Pools(NamedTuple):
-    """The p pools by their nodes."""
+class Tables(NamedTuple):
+    """The canal as compiled code takes it: record arrays by node (n), link (n + 1), gate, offtake and pool."""
 
-    first_node: np.ndarray  # (p) int64
-    last_node: np.ndarray  # (p) int64
+    channel: Channel
+    cells: np.recarray  # (n) of CELL
+    links: np.recarray  # (n + 1) of LINK
+    gates: np.recarray  # (g) of GATE_ROW
+    offtakes: np.recarray  # (d) of OFFTAKE
+    pools: np.recarray  # (p) of POOL
+    tail_slope: np.ndarray  # (1) for NORMAL_DEPTH
+    tail_rating: np.ndarray  # (2, r) levels [m] and discharges [m³/s] for RATING
+
+
+def records(row: np.dtype, /, **columns) -> np.recarray:
+    """A record array from its columns, all of one length."""
+    table = np.zeros(len(next(iter(columns.values()))), row).view(np.recarray)
+    for name, values in columns.items():
+        table[name] = values
+    return table
 
 
 @dataclass(frozen=True)
 class Network:
     """All tables of a canal, and the names and levels that only people read.
 
-    `channel` holds the canal's nodes and, behind a tail gate, those of the floor beyond it. Of the n unknown nodes the
+    `tables.channel` holds the canal's nodes and, behind a tail gate, those of the floor beyond it. Of the n unknown nodes the
     last one is a basin beyond the tail gate where `has_tail_basin`; it is outside the canal and its ledger.
     """
 
-    channel: Channel
-    nodes: Nodes
-    links: Links
-    gates: Gates
-    offtakes: Offtakes
-    boundary: Boundary
-    pools: Pools
+    tables: Tables
     has_tail_basin: bool
     names: "Names"
 
     @property
+    def channel(self) -> Channel:
+        return self.tables.channel
+
+    @property
     def node_count(self) -> int:
         """Nodes with an unknown level, the tail basin included."""
-        return self.nodes.cell_length.size
+        return self.tables.cells.size
 
     @property
     def canal_node_count(self) -> int:
@@ -107,11 +117,11 @@ class Network:
 
     @property
     def gate_count(self) -> int:
-        return self.gates.upstream_node.size
+        return self.tables.gates.size
 
     @property
     def offtake_count(self) -> int:
-        return self.offtakes.node.size
+        return self.tables.offtakes.size
 
 
 @dataclass(frozen=True)

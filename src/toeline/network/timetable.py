@@ -23,7 +23,7 @@ class Timetable:
     profiles_every: int  # ms
     series: dict  # forcing index → Series
     orders: tuple  # scenario orders by time
-    rules_of_gates: tuple  # scenario gates, for travel, hoist and bands
+    gates: tuple  # of the scenario, for travel, hoist and bands
     gate_count: int
     offtake_count: int
 
@@ -72,7 +72,7 @@ def timetable_of(scenario, network) -> Timetable:
         profiles_every=day.output.profiles_every_ms,
         series=_series(day, canal, network),
         orders=scenario.orders,
-        rules_of_gates=tuple(canal.gates),
+        gates=tuple(canal.gates),
         gate_count=network.gate_count,
         offtake_count=network.offtake_count,
     )

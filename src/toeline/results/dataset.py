@@ -21,11 +21,7 @@ from toeline.results.encoding import (
     surface_names_of,
 )
 from toeline.results.provenance import SOURCE_PREFIX
-from toeline.results.run_file import is_being_written
 from toeline.results.variables import GROWING_DIMENSIONS, VARIABLES, growing
-
-_NEVER_WRITTEN = 9e36
-"""Just below the value that NetCDF gives to float64 values that were never written."""
 
 
 class DatasetSink:
@@ -76,41 +72,26 @@ class DatasetSink:
 
 
 def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
-    """Open a run file, finished or not, values loaded when needed; close it after use, or open it in a `with`.
+    """Open a run file, finished or .partial, values loaded when needed; close it after use, or open it in a `with`.
 
-    Of a run that was killed, rows that never reached the disk are left out; attribute `outcome` says how it ended.
-    UsageError for a file that is missing, still being written, or no run of Toeline.
+    Attribute `outcome` says how the run ended. UsageError for a file that is missing or no run of Toeline.
     """
-    file = _existing(path)
+    file = Path(path)
+    if not file.is_file():
+        raise UsageError(f"{file} is no file{_hint(file)}")
     try:
-        raw = xr.open_dataset(file, engine="netcdf4", decode_times=False)
+        run = xr.open_dataset(file, engine="netcdf4")
     except (OSError, ValueError) as error:
         raise UsageError(f"{file} is no readable NetCDF file") from error
-    if not str(raw.attrs.get("source", "")).startswith(SOURCE_PREFIX):
-        raw.close()
+    if not str(run.attrs.get("source", "")).startswith(SOURCE_PREFIX):
+        run.close()
         raise UsageError(f"{file} is not the file of a Toeline run")
-    run = xr.decode_cf(raw.isel(_rows_on_disk(raw)))
-    run.set_close(raw.close)
     return run
 
 
-def _existing(path: str | os.PathLike[str]) -> Path:
-    file = Path(path)
-    if not file.exists():
-        partial = file.with_name(file.name + ".partial")
-        hint = f"; an unfinished run is in {partial}" if partial.exists() else ""
-        raise UsageError(f"{file} does not exist{hint}")
-    if not file.is_file():
-        raise UsageError(f"{file} is not a file")
-    if is_being_written(file):
-        raise UsageError(f"{file} is being written by a run that is still going on; open it when that has ended")
-    return file
-
-
-def _rows_on_disk(raw: xr.Dataset) -> dict[str, slice]:
-    """The rows along each clock that were written: a row never written has the fill value as its time."""
-    counts = {clock: int(np.sum(raw[clock].values < _NEVER_WRITTEN)) for clock in ("time", "profile_time")}
-    return {clock: slice(0, count) for clock, count in counts.items()}
+def _hint(file: Path) -> str:
+    partial = file.with_name(file.name + ".partial")
+    return f"; an unfinished run is in {partial}" if partial.is_file() else ""
 
 
 def timezone_of(run: xr.Dataset) -> tzinfo:
@@ -121,10 +102,10 @@ def timezone_of(run: xr.Dataset) -> tzinfo:
     return timezone(offset or timedelta(0))
 
 
-def utc(instant: np.datetime64) -> datetime:
-    """An instant of the run as an aware time, exact to the microsecond."""
-    microseconds = int((instant - np.datetime64(0, "us")) / np.timedelta64(1, "us"))
-    return datetime(1970, 1, 1, tzinfo=UTC) + timedelta(microseconds=microseconds)
+def utc(instant: np.datetime64 | np.ndarray) -> datetime:
+    """An instant of the run (one datetime64 value) as an aware time, to the microsecond."""
+    naive: datetime = instant.astype("datetime64[us]").item()
+    return naive.replace(tzinfo=UTC)
 
 
 def local_time(run: xr.Dataset, instant: np.datetime64) -> datetime:

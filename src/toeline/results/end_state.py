@@ -45,7 +45,7 @@ def _check_finished(run: xr.Dataset, path: str | os.PathLike[str]) -> None:
 
 
 def _check_time(run: xr.Dataset, path: str | os.PathLike[str], start: datetime) -> None:
-    end = utc(run["end_time"].values[()])
+    end = utc(run["end_time"].values)
     if end != start:
         there = end.astimezone(start.tzinfo).isoformat()
         raise UsageError(f"{path} ends at {there}, but the period starts at {start.isoformat()}; they must be equal")

@@ -1,11 +1,7 @@
-"""The run file, written while the run goes on: one flat NetCDF-4 file that survives a kill at any moment.
-
-Rows are gathered into whole chunks; each whole chunk is written and brought to the disk. A part-filled compressed chunk
-is written once only, when the file is closed: rewriting one in place is what damages a file if the process dies.
-"""
+"""The run as one flat NetCDF-4 file, written while the run goes on."""
 
 import os
-import shutil
+import time
 from collections.abc import Iterator, Mapping
 from contextlib import contextmanager, suppress
 from datetime import datetime
@@ -26,23 +22,25 @@ from toeline.results.encoding import (
     surface_names_of,
 )
 from toeline.results.provenance import COMPLETE, UNFINISHED
-from toeline.results.run_file import bring_to_disk, claimed_partial, partial_of, publish, resolved_target
+from toeline.results.run_file import RunFile
 from toeline.results.variables import GROWING_DIMENSIONS, VARIABLES, Variable, growing
 
 TIME_CHUNK = 720
-PROFILE_CHUNK = 72
-PROFILE_CHUNK_VALUES = 16_384
-ORDERS_HELD = 64
+ORDER_CHUNK = 64
+PROFILE_CHUNK_VALUES = 65_536
 CHUNK_CACHE = 2**20
-SPACE_KEPT_FREE = 4 * 2**20
-"""Bytes of free disk below which the run stops while its file can still be closed."""
+"""Bytes for each variable; the default of 64 MiB would fill the memory."""
+
+COPY_EVERY = 1.0
+COPY_SHARE = 0.1
+"""A copy safe from a kill is taken every second of wall time, or so that copying takes no more than this share of it."""
 
 
 class NetcdfSink:
-    """Writes a run into PATH.partial and moves it to PATH when the run is complete.
+    """Writes a run; see `run_file` for the names of the file on the way.
 
-    A run that stops early is closed as PATH.partial and stays there; so does what a killed run had brought to the disk.
-    `time_chunk` is the number of output steps after which rows reach the disk: fewer for long runs with sparse output.
+    A run that stops early is kept as PATH.partial, with its outcome; so is what a killed run had done until a second
+    before. Of a complete run only PATH remains.
     """
 
     def __init__(
@@ -52,62 +50,61 @@ class NetcdfSink:
         attributes: Mapping[str, str],
         start: datetime,
         overwrite: bool = False,
-        *,
-        time_chunk: int = TIME_CHUNK,
     ):
-        """Create the file. UsageError, before anything is touched, if it may not or cannot be written."""
-        self.path = resolved_target(path)
-        self.partial_path = partial_of(self.path)
-        self._overwrite = overwrite
+        """Create the file. UsageError, before anything is touched, if it may not or cannot be written.
+
+        `static` holds the fixed variables by their registry names, `attributes` the global attributes; at `start`, an
+        aware time, the clocks of the blocks read 0.
+        """
+        self._run_file = RunFile(path, overwrite)
         self._start = start
         self._surface_names = surface_names_of(attributes)
         self._sizes = sizes_of(static)
-        self._chunks = _chunk_lengths(time_chunk, self._sizes["node"])
-        with claimed_partial(self.path, overwrite):
-            self._file = netCDF4.Dataset(self.partial_path, "w")
+        self._chunks = _chunk_lengths(self._sizes["node"])
+        with self._run_file.claimed():
+            self._file = netCDF4.Dataset(self._run_file.working_path, "w")
             try:
                 self._define(static_values(static), attributes)
             except BaseException:
                 self._file.close()
                 raise
-            self._identity = self.partial_path.stat()
         self._waiting = {dimension: self._buffer(dimension) for dimension in GROWING_DIMENSIONS}
         self._written = dict.fromkeys(GROWING_DIMENSIONS, 0)
         self._is_closed = False
+        with self._giving_up_on_failure():
+            self._save_copy()
 
     @property
     def written_path(self) -> Path:
-        """Where the rows written so far are: PATH after a complete run is closed, else PATH.partial."""
-        return self.partial_path if self.partial_path.exists() else self.path
+        """Where the run is: PATH once it is complete and closed, else PATH.partial."""
+        partial_path = self._run_file.partial_path
+        return partial_path if partial_path.exists() else self._run_file.path
 
     def write(self, block: Mapping[str, np.ndarray]) -> None:
-        """Take the rows of a block, in any number; whole chunks go to the disk.
+        """Take the rows of a block, in any number.
 
-        RunError if they cannot be written; the file is then closed and no more is taken.
+        RunError if they cannot be written; the last copy is then kept as PATH.partial, and no more is taken.
         """
-        before = dict(self._written)
         with self._giving_up_on_failure():
             for dimension, rows in rows_by_dimension(block).items():
                 self._gather(dimension, rows)
-            if self._written != before:
-                self._flush("order")
-                self._file.sync()
+            if time.monotonic() >= self._next_copy:
+                self._save_copy()
 
     def close(self, outcome: str, end_state: Mapping[str, np.ndarray] | None = None) -> None:
-        """Write the rest and close; of a complete run move PATH.partial to PATH. Closing twice does nothing."""
+        """Write the rest and close. Closing again, or after a failed write, does nothing."""
         if self._is_closed:
             return
         with self._giving_up_on_failure():
-            for dimension in GROWING_DIMENSIONS:
-                self._flush(dimension)
+            self._flush_all()
             self._write_end_state(end_state_values(end_state or {}))
             self._file.outcome = outcome
             self._file.close()
         self._is_closed = True
         if outcome == COMPLETE:
-            publish(self.partial_path, self.path, self._overwrite, self._identity)
+            self._run_file.finish()
         else:
-            bring_to_disk(self.partial_path)
+            self._run_file.keep_unfinished()
 
     def _define(self, static: Rows, attributes: Mapping[str, str]) -> None:
         self._file.setncatts({**attributes, "outcome": UNFINISHED})
@@ -120,7 +117,6 @@ class NetcdfSink:
                 self._create(variable)
         for name, values in static.items():
             self._file.variables[name][:] = values
-        self._file.sync()
 
     def _create(self, variable: Variable) -> None:
         is_compressed = variable.grows and variable.dtype != "text"
@@ -143,12 +139,13 @@ class NetcdfSink:
         return (self._chunks[length], *(max(1, self._sizes[other]) for other in others))
 
     def _buffer(self, dimension: str) -> "RowBuffer":
-        length = ORDERS_HELD if dimension == "order" else self._chunks[dimension]
+        length = self._chunks[dimension]
         shapes = {v.name: (length, *(self._sizes[d] for d in v.dimensions[1:])) for v in growing(dimension)}
         dtypes = {v.name: object if v.dtype == "text" else v.dtype for v in growing(dimension)}
         return RowBuffer({name: np.empty(shape, dtypes[name]) for name, shape in shapes.items()}, length)
 
     def _gather(self, dimension: str, rows: Rows) -> None:
+        """Let rows wait until they fill a chunk; write every whole chunk."""
         buffer = self._waiting[dimension]
         total = len(next(iter(rows.values())))
         taken = 0
@@ -156,24 +153,28 @@ class NetcdfSink:
             taken += buffer.take(rows, taken)
             if buffer.is_full:
                 self._flush(dimension)
+                self._written[dimension] += buffer.count
+                buffer.count = 0
 
     def _flush(self, dimension: str) -> None:
-        """Write the waiting rows. They count as written only when all variables are, so an interrupt loses none."""
+        """Write the waiting rows to their place. They go on waiting, to be written again when their chunk is whole."""
         buffer = self._waiting[dimension]
         first, last = self._written[dimension], self._written[dimension] + buffer.count
-        if last == first:
-            return
-        self._check_free_space(buffer)
-        for name in reversed(buffer.columns):  # the clock last: a row with a time is whole
-            self._file.variables[name][first:last] = buffer.columns[name][: buffer.count]
-        self._written[dimension] = last
-        buffer.count = 0
+        if last > first:
+            for name, column in buffer.columns.items():
+                self._file.variables[name][first:last] = column[: buffer.count]
 
-    def _check_free_space(self, buffer: "RowBuffer") -> None:
-        needed = SPACE_KEPT_FREE + sum(column.nbytes for column in buffer.columns.values())
-        free = shutil.disk_usage(self.partial_path.parent).free
-        if free < needed:
-            raise OSError(f"the disk is full: {free / 1e6:.1f} MB are free")
+    def _flush_all(self) -> None:
+        for dimension in GROWING_DIMENSIONS:
+            self._flush(dimension)
+
+    def _save_copy(self) -> None:
+        begin = time.monotonic()
+        self._flush_all()
+        self._file.sync()
+        self._run_file.save_copy()
+        end = time.monotonic()
+        self._next_copy = end + max(COPY_EVERY, (end - begin) / COPY_SHARE)
 
     def _write_end_state(self, end_state: Rows) -> None:
         for name, values in end_state.items():
@@ -186,16 +187,19 @@ class NetcdfSink:
 
     @contextmanager
     def _giving_up_on_failure(self) -> Iterator[None]:
-        """Turn a failed write into RunError, with the file closed as well as it can be."""
+        """Turn a failed write into RunError; the last copy stays."""
         try:
             yield
         except (OSError, RuntimeError) as error:  # netCDF4 raises RuntimeError for what HDF5 reports
-            reason = f"writing {self.partial_path} failed ({error}); what was written before stays in it"
             self._is_closed = True
             with suppress(OSError, RuntimeError):
-                self._file.outcome = f"stopped: {error}"
                 self._file.close()
-            raise RunError(reason) from error
+            free = self._run_file.free_space() / 1e6
+            self._run_file.abandon()
+            raise RunError(
+                f"writing {self._run_file.path} failed ({error}; {free:.1f} MB of disk are free); "
+                f"what was safe before is in {self._run_file.partial_path}"
+            ) from error
 
 
 class RowBuffer:
@@ -220,7 +224,7 @@ class RowBuffer:
         return number
 
 
-def _chunk_lengths(time_chunk: int, nodes: int) -> dict[str, int]:
-    """Rows of a chunk. Profiles in chunks of about 64 KiB, so that they too reach the disk steadily."""
-    profile_rows = max(1, min(PROFILE_CHUNK, time_chunk, PROFILE_CHUNK_VALUES // max(nodes, 1)))
-    return {"time": time_chunk, "profile_time": profile_rows, "order": 1}
+def _chunk_lengths(nodes: int) -> dict[str, int]:
+    """Rows of a chunk along each growing dimension."""
+    profile_rows = max(1, min(TIME_CHUNK, PROFILE_CHUNK_VALUES // max(nodes, 1)))
+    return {"time": TIME_CHUNK, "profile_time": profile_rows, "order": ORDER_CHUNK}

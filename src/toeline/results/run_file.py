@@ -1,11 +1,17 @@
-"""Where a run is written: into PATH.partial for one run alone, moved to PATH when complete.
+"""Where a run is written: three names, so that a run killed at any moment leaves a file that opens.
 
-Nothing a user has finished is touched before the new run is complete. While a run writes, HDF5 holds a lock on its
-.partial; the lock ends with the process, so what a killed run left behind never blocks the next one.
+    PATH.writing    the file being written, locked by HDF5; worthless to others, and never left but by a kill
+    PATH.partial    a whole copy of it, replaced in one step every second or so; what a run that stopped early leaves
+    PATH            the complete run
+
+HDF5 changes a file in many places when it writes a block: measured, one kill in a hundred at full writing speed left
+rows that could not be read. A copy taken between two blocks is whole, and stays so when the disk runs full.
+Nothing a user has finished is touched before the new run is complete.
 """
 
 import errno
 import os
+import shutil
 from collections.abc import Iterator
 from contextlib import contextmanager, suppress
 from pathlib import Path
@@ -20,8 +26,123 @@ except ImportError:  # Windows, which itself refuses to delete a file that is op
 _HDF5_SIGNATURE = b"\x89HDF\r\n\x1a\n"
 
 
-def resolved_target(path: str | os.PathLike[str]) -> Path:
-    """The file to write, links followed. UsageError for what cannot be the name of a run file."""
+class RunFile:
+    """The file of one run under its three names."""
+
+    def __init__(self, path: str | os.PathLike[str], overwrite: bool):
+        """UsageError if `path` cannot be the name of a run file. Nothing is created yet."""
+        self.path = _resolved(path)
+        self.partial_path = self.path.with_name(self.path.name + ".partial")
+        self.working_path = self.path.with_name(self.path.name + ".writing")
+        self._copying_path = self.path.with_name(self.path.name + ".copying")
+        self._overwrite = overwrite
+
+    def check(self) -> None:
+        """UsageError if one of the names is taken by what may not be overwritten, or another run is writing."""
+        for other in (self.partial_path, self.working_path):
+            if other.exists() and not other.is_file():
+                raise UsageError(f"{other} is in the way and is no file")
+        if self.working_path.exists() and _is_open_for_writing(self.working_path):
+            raise UsageError(f"another run is writing {self.path}; wait for it, or choose another name")
+        if self.path.exists():
+            self._check_finished_run()
+        if self.partial_path.exists() and not self._overwrite:
+            raise UsageError(
+                f"{self.partial_path} holds an unfinished run and is kept; rename it, or allow it to be overwritten"
+            )
+
+    @contextmanager
+    def claimed(self) -> Iterator[None]:
+        """Create PATH.writing, empty, for this run alone; the caller opens it, and so locks it, inside the with block.
+
+        UsageError if PATH or PATH.partial exists and may not be overwritten, if another run is writing, or if nothing
+        can be written there. If the block fails, no file is left.
+        """
+        try:
+            with _one_claim_at_a_time(self.path.parent):
+                self.check()
+                self._remove_left_overs()
+                os.close(os.open(self.working_path, os.O_CREAT | os.O_EXCL | os.O_WRONLY, 0o666))
+                try:
+                    yield
+                except BaseException:
+                    self.working_path.unlink(missing_ok=True)
+                    raise
+                self._identity = self.working_path.stat()
+        except OSError as error:
+            raise UsageError(f"{self.path} cannot be written: {self._reason(error)}") from error
+
+    def save_copy(self) -> None:
+        """Replace PATH.partial by what PATH.writing holds now. OSError if the disk is full."""
+        shutil.copyfile(self.working_path, self._copying_path)
+        with suppress(PermissionError):  # Windows, while somebody reads the last copy; the next one will do
+            self._copying_path.replace(self.partial_path)
+
+    def finish(self) -> None:
+        """Bring a complete, closed PATH.writing safely to the disk and to its own name, in one step.
+
+        RunError if that name was taken meanwhile, in which case the run is kept as PATH.partial, or if it fails.
+        """
+        try:
+            self._bring_to_disk()
+            if self.path.exists() and not self._overwrite:
+                self.working_path.replace(self.partial_path)
+                raise RunError(f"{self.path} appeared during the run; the complete run is in {self.partial_path}")
+            self.working_path.replace(self.path)
+            self._remove_left_overs()
+            self.partial_path.unlink(missing_ok=True)
+        except OSError as error:
+            raise RunError(f"the run is complete, but {self.path} cannot be written: {error}") from error
+
+    def keep_unfinished(self) -> None:
+        """Keep a closed PATH.writing as PATH.partial. RunError if that fails."""
+        try:
+            self._bring_to_disk()
+            self.working_path.replace(self.partial_path)
+        except OSError as error:
+            raise RunError(f"{self.partial_path} cannot be written: {error}") from error
+
+    def abandon(self) -> None:
+        """Remove a PATH.writing that failed; the last copy stays."""
+        with suppress(OSError):
+            self._remove_left_overs()
+
+    def free_space(self) -> int:
+        """Bytes free on the disk of the run."""
+        return shutil.disk_usage(self.path.parent).free
+
+    def _check_finished_run(self) -> None:
+        if not self._overwrite:
+            raise UsageError(f"{self.path} exists and is kept; choose another name, or allow it to be overwritten")
+        if not os.access(self.path, os.W_OK):
+            raise UsageError(f"{self.path} is write-protected and is kept")
+        with self.path.open("rb") as file:
+            if file.read(len(_HDF5_SIGNATURE)) not in (_HDF5_SIGNATURE, b""):
+                raise UsageError(f"{self.path} is no NetCDF-4 file and is kept; only an earlier run is overwritten")
+
+    def _remove_left_overs(self) -> None:
+        self.working_path.unlink(missing_ok=True)
+        self._copying_path.unlink(missing_ok=True)
+
+    def _bring_to_disk(self) -> None:
+        descriptor = os.open(self.working_path, os.O_RDWR)
+        try:
+            if not os.path.samestat(os.fstat(descriptor), self._identity):  # only where files cannot be locked
+                raise FileExistsError(errno.EEXIST, "another run took the place of this one")
+            os.fsync(descriptor)
+        finally:
+            os.close(descriptor)
+
+    def _reason(self, error: OSError) -> str:
+        if error.errno == errno.ENOENT:
+            return f"the directory {self.path.parent} does not exist"
+        if error.errno in (errno.EACCES, errno.EPERM):
+            return f"no permission in {self.path.parent}"
+        return error.strerror or str(error)
+
+
+def _resolved(path: str | os.PathLike[str]) -> Path:
+    """The file to write, links followed."""
     given = Path(path)
     try:
         str(given).encode("utf-8")
@@ -33,36 +154,9 @@ def resolved_target(path: str | os.PathLike[str]) -> Path:
         raise UsageError(f"{given} is a directory; give the name of a file")
     if is_taken and not is_file:
         raise UsageError(f"{given} is a pipe or device; a run is written into a file")
-    if resolved.suffix == ".partial":
-        raise UsageError(f"{given}: names ending in .partial are kept for unfinished runs; choose another")
+    if resolved.suffix in (".partial", ".writing", ".copying"):
+        raise UsageError(f"{given}: names ending in {resolved.suffix} are kept for unfinished runs; choose another")
     return resolved
-
-
-def partial_of(path: Path) -> Path:
-    """The file into which the run for `path` is written until it is complete."""
-    return path.with_name(path.name + ".partial")
-
-
-@contextmanager
-def claimed_partial(path: Path, overwrite: bool) -> Iterator[Path]:
-    """Create PATH.partial, empty, for the caller alone, who opens it inside the with block.
-
-    UsageError if PATH or PATH.partial exists and may not be overwritten, if another run is writing, or if nothing can
-    be written there. If the block fails, no file is left.
-    """
-    partial = partial_of(path)
-    try:
-        with _one_claim_at_a_time(path.parent):
-            _check_finished_run(path, overwrite)
-            _make_way(partial, overwrite)
-            os.close(os.open(partial, os.O_CREAT | os.O_EXCL | os.O_WRONLY, 0o666))
-            try:
-                yield partial
-            except BaseException:
-                partial.unlink(missing_ok=True)
-                raise
-    except OSError as error:
-        raise UsageError(f"{path} cannot be written: {_reason(error, path)}") from error
 
 
 @contextmanager
@@ -79,36 +173,11 @@ def _one_claim_at_a_time(directory: Path) -> Iterator[None]:
         os.close(descriptor)
 
 
-def _check_finished_run(path: Path, overwrite: bool) -> None:
-    if not path.exists():
-        return
-    if not overwrite:
-        raise UsageError(f"{path} exists and is kept; choose another name, or allow it to be overwritten")
-    if not os.access(path, os.W_OK):
-        raise UsageError(f"{path} is write-protected and is kept")
-    with path.open("rb") as file:
-        beginning = file.read(len(_HDF5_SIGNATURE))
-    if beginning not in (_HDF5_SIGNATURE, b""):
-        raise UsageError(f"{path} is no NetCDF-4 file and is kept; only an earlier run is overwritten")
-
-
-def _make_way(partial: Path, overwrite: bool) -> None:
-    if not partial.exists():
-        return
-    if not partial.is_file():
-        raise UsageError(f"{partial} is in the way and is no file")
-    if is_being_written(partial):
-        raise UsageError(f"another run is writing {partial}; wait for it, or choose another name")
-    if not overwrite:
-        raise UsageError(f"{partial} holds an unfinished run and is kept; rename it, or allow it to be overwritten")
-    partial.unlink()
-
-
-def is_being_written(partial: Path) -> bool:
-    """Whether a living process has the file open for writing."""
+def _is_open_for_writing(path: Path) -> bool:
+    """Whether a living process writes the file: HDF5's lock ends with the process."""
     if fcntl is None:
         return False
-    with partial.open("rb") as file:
+    with path.open("rb") as file:
         try:
             fcntl.flock(file, fcntl.LOCK_SH | fcntl.LOCK_NB)
         except BlockingIOError:
@@ -116,40 +185,3 @@ def is_being_written(partial: Path) -> bool:
         except OSError:  # a file system without locks
             return False
     return False
-
-
-def publish(partial: Path, path: Path, overwrite: bool, identity: os.stat_result) -> None:
-    """Bring a complete, closed .partial safely to the disk and under its own name, in one step.
-
-    `identity` is the state of the file when it was made. RunError if another file took its place, which only a system
-    without file locks allows; or, with the run kept in the .partial, if the name was taken meanwhile or the move fails.
-    """
-    try:
-        if not os.path.samestat(partial.stat(), identity):
-            raise FileNotFoundError(errno.ENOENT, "another run took its place")
-        if path.exists() and not overwrite:
-            raise FileExistsError(errno.EEXIST, "a file of this name appeared while the run went on")
-        bring_to_disk(partial)
-        partial.replace(path)
-    except OSError as error:
-        raise RunError(f"the run is complete, but {partial} cannot become {path}: {error.strerror}") from error
-    with suppress(OSError):  # not every system can open a directory
-        bring_to_disk(path.parent)
-
-
-def bring_to_disk(path: Path) -> None:
-    """Wait until the system has written what it holds of the file."""
-    flags = os.O_RDONLY if path.is_dir() else os.O_RDWR
-    descriptor = os.open(path, flags)
-    try:
-        os.fsync(descriptor)
-    finally:
-        os.close(descriptor)
-
-
-def _reason(error: OSError, path: Path) -> str:
-    if error.errno == errno.ENOENT:
-        return f"the directory {path.parent} does not exist"
-    if error.errno in (errno.EACCES, errno.EPERM):
-        return f"no permission in {path.parent}"
-    return error.strerror or str(error)

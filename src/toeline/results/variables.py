@@ -95,8 +95,8 @@ _GATE_SERIES = (
     Variable("roller_depth", _GATES, "m", "depth of the roller at the gate",
              "above the floor; missing where the jump is not drowned"),
     _flag("jump_state", _GATES, "where the hydraulic jump stands", JUMP_STATES, standard_name="status_flag",
-          comment="by the end of the jump, or by its toe where the length is not defined; a drowned jump is a roller at "
-          "the gate, which drowns people"),
+          comment="by the end of the jump, or by its toe where the length is not defined; a drowned jump is a roller "
+          "at the gate, which drowns people"),
     _flag("jump_kind", _GATES, "kind of the hydraulic jump by the Froude number before it", JUMP_KINDS),
     Variable("jump_toe_distance", _GATES, "m", "distance of the toe of the jump from the gate",
              "downstream positive; missing where there is no free jump", companions=_JUMP),

@@ -35,8 +35,9 @@ class InputFile:
     def fault(self, message: str, *key_path: str | int) -> Fault:
         """Give the fault at a key path, on its line, or in the override that set it."""
         key = human_key(key_path, self.data)
+        is_written = not key_path or key_path in self.lines
         for override in reversed(self.overrides):
-            if override.sets(key_path):
+            if override.sets(key_path) or (override.lies_in(key_path) and not is_written):
                 return Fault(override.origin, None, key, message)
         return Fault(str(self.path), self.line(*key_path), key, message)
 

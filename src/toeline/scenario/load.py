@@ -20,6 +20,7 @@ from toeline.scenario.reading import Reading
 from toeline.scenario.schema.canal import Canal
 from toeline.scenario.schema.day import Day, Period
 from toeline.scenario.schema.table import Table
+from toeline.scenario.text_file import is_there
 from toeline.scenario.times import Clock, read_zone
 from toeline.units import Display, UnitSystem
 
@@ -99,9 +100,11 @@ class Scenario:
 
 def load_canal(path: Path | str) -> CanalFile:
     """Read and check a canal file. Raises ScenarioError with all faults found."""
-    source = read_input_file(Path(path))
-    system = _units_named(source) or UnitSystem.metric
-    canal = _validated(Canal, source, Reading(system, source.path.parent))
+    return _checked_canal(read_input_file(Path(path)))
+
+
+def _checked_canal(source: InputFile) -> CanalFile:
+    canal = _validated(Canal, source, Reading(_units_of_canal(source), source.path.parent))
     _raise_if_any(source.fault(misfit.message, *misfit.path) for misfit in misfits_of_canal(canal))
     return CanalFile(canal, source)
 
@@ -114,17 +117,17 @@ def load_scenario(path: Path | str, *, plan: str | None = None, overrides: Itera
     and none is named, where the named one is not there, or where an override is no key=value.
     """
     source = read_input_file(Path(path)).overridden(read_overrides(overrides))
-    canal_file, faults = _canal_of(source)
-    reading = _reading_of_day(source, canal_file)
+    canal = _canal_of(source)
+    reading = _reading_of_day(source, canal.units)
     try:
         day = _validated(Day, source, reading)
     except ScenarioError as error:
-        raise ScenarioError([*faults, *error.faults]) from None
-    if canal_file is None:
-        raise ScenarioError(faults)
+        raise ScenarioError([*canal.faults, *error.faults]) from None
+    if canal.file is None:
+        raise ScenarioError(canal.faults)
     plans = {name: _placed(orders.orders, name, source) for name, orders in day.plans.items()}
-    _raise_if_any(_faults_between(day, plans, canal_file, source, reading))
-    return _scenario(canal_file, source, day, plans, _chosen(plan, plans, source), reading)
+    _raise_if_any(_faults_between(day, plans, canal.file, source, reading))
+    return _scenario(canal.file, source, day, plans, _chosen(plan, plans, source), reading)
 
 
 def plan_names(path: Path | str) -> tuple[str, ...]:
@@ -133,23 +136,37 @@ def plan_names(path: Path | str) -> tuple[str, ...]:
     return tuple(plans) if isinstance(plans, dict) else ()
 
 
-def _canal_of(day: InputFile) -> tuple[CanalFile | None, list[Fault]]:
-    """Load the canal of a day; give the faults in place of it, none where the day does not name it properly."""
+@dataclass(frozen=True)
+class _CanalOfDay:
+    """The canal of a day as far as it could be read, and the faults found in it."""
+
+    file: CanalFile | None = None
+    units: UnitSystem = UnitSystem.metric
+    faults: list[Fault] = field(default_factory=list)
+
+
+def _canal_of(day: InputFile) -> _CanalOfDay:
+    """Read the canal of a day; no faults where the day does not name it properly, which the day file is told."""
     name = day.data.get("canal")
     if not isinstance(name, str) or not name:
-        return None, []
-    path = day.path.parent / name
-    if not path.is_file():
-        return None, [day.fault(f"found {shown(name)}; there is no such file", "canal")]
+        return _CanalOfDay()
+    path, units = day.path.parent / name, UnitSystem.metric
+    if not is_there(path):
+        return _CanalOfDay(faults=[day.fault(f"found {shown(name)}; there is no such file", "canal")])
     try:
-        return load_canal(path), []
+        source = read_input_file(path)
+        units = _units_of_canal(source)
+        return _CanalOfDay(_checked_canal(source), units)
     except ScenarioError as error:
-        return None, error.faults
+        return _CanalOfDay(None, units, error.faults)
 
 
-def _reading_of_day(source: InputFile, canal_file: CanalFile | None) -> Reading:
+def _units_of_canal(source: InputFile) -> UnitSystem:
+    return _units_named(source) or UnitSystem.metric
+
+
+def _reading_of_day(source: InputFile, units_of_canal: UnitSystem) -> Reading:
     """Find what the rest of the day file is read with: its units, zone and period."""
-    units_of_canal = canal_file.units if canal_file else UnitSystem.metric
     reading = Reading(_units_named(source) or units_of_canal, source.path.parent)
     try:
         reading.zone = read_zone(source.data["zone"]) if "zone" in source.data else None

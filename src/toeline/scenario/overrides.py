@@ -27,6 +27,10 @@ class Override:
         """Say whether a key path lies at or inside what this sets."""
         return key_path[: len(self.path)] == self.path
 
+    def lies_in(self, key_path: KeyPath) -> bool:
+        """Say whether this sets something at or inside a key path."""
+        return self.path[: len(key_path)] == key_path
+
 
 def read_overrides(texts: Iterable[str]) -> tuple[Override, ...]:
     """Read overrides such as 'period.length="6 h"'. Raises UsageError for one that is no key=value in TOML."""

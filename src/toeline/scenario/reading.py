@@ -5,6 +5,9 @@ from pathlib import Path
 from typing import Any
 from zoneinfo import ZoneInfo
 
+from toeline.scenario.csv_rows import Columns, CsvFile, read_csv
+from toeline.scenario.misfits import shown
+from toeline.scenario.text_file import UnreadableFileError
 from toeline.scenario.times import Clock
 from toeline.units import UnitSystem
 
@@ -21,6 +24,15 @@ class Reading:
     zone: ZoneInfo | None = None
     clock: Clock | None = None
     csv_texts: dict[str, str] = field(default_factory=dict)
+
+    def read_csv(self, name: str, columns: Columns) -> CsvFile:
+        """Read a CSV file and keep its text. Raises ValueError where it is not there."""
+        try:
+            file = read_csv(self.folder / name, columns)
+        except UnreadableFileError as error:
+            raise ValueError(f"found {shown(name)}; {error}") from None
+        self.csv_texts[name] = file.text
+        return file
 
 
 def reading_of(info: Any) -> Reading:

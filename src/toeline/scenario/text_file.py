@@ -11,6 +11,14 @@ class UnreadableFileError(ValueError):
         super().__init__(message)
 
 
+def is_there(path: Path) -> bool:
+    """Say whether there is such a file; a path that none can have leads to none."""
+    try:
+        return path.is_file()
+    except OSError:
+        return False
+
+
 def read_text(path: Path) -> str:
     """Give the text of a UTF-8 file without a byte order mark. Raises UnreadableFileError."""
     try:

@@ -149,7 +149,7 @@ class Clock:
 
     def _beyond_the_end(self, since_start: int) -> str:
         return (
-            f"{_duration_text(since_start)} after the start, by the clock; "
+            f"{_duration_text(since_start)} after the start; "
             f"the period ends {_duration_text(self.length_ms)} after its start"
         )
 

@@ -1,0 +1,1 @@
+"""What must hold between tables that are right each by itself."""

@@ -8,6 +8,7 @@ from toeline.scenario.orders import Order
 from toeline.scenario.schema.canal import Canal
 from toeline.scenario.schema.day import TO_HOLD_TARGETS, Day
 from toeline.scenario.schema.gates import Gate
+from toeline.scenario.text_file import is_there
 from toeline.units import UnitSystem, quantity_text
 
 
@@ -49,7 +50,7 @@ def _misfits_of_output(day: Day) -> Iterator[Misfit]:
 
 def _misfits_of_start(day: Day, canal: Canal, folder: Path, system: UnitSystem) -> Iterator[Misfit]:
     start = day.start
-    if start.file is not None and not (folder / start.file).is_file():
+    if start.file is not None and not is_there(folder / start.file):
         yield Misfit(("start", "file"), f"found {shown(start.file)}; there is no such file")
     if start.openings == TO_HOLD_TARGETS:
         yield from _misfits_of_holding(day, canal)

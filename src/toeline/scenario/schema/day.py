@@ -11,7 +11,7 @@ from toeline.scenario.misfits import Misfit, MisfitsError, shown
 from toeline.scenario.reading import reading_of
 from toeline.scenario.schema.day_series import Delivery, Inflow, LevelSeries, OpeningSeries
 from toeline.scenario.schema.plans import Plan
-from toeline.scenario.schema.table import DischargeOrZero, FileName, Name, Table
+from toeline.scenario.schema.table import OPENING, DischargeOrZero, FileName, Name, Table
 from toeline.scenario.schema.value_kinds import Duration, Quantity, Text, ValueKind
 from toeline.scenario.times import read_start, read_zone
 from toeline.units import UnitSystem
@@ -118,10 +118,7 @@ class Start(Table):
         None, description="steady: steady flow at the first values of the day; dry: an empty canal."
     )
     file: FileName | None = Field(None, description="Run file to go on from the end of, in place of a state.")
-    openings: Annotated[
-        Literal["to hold targets"] | dict[str, float] | None,
-        OpeningsAtStart(Quantity("length", least=0.0, most=1000.0)),
-    ] = Field(
+    openings: Annotated[Literal["to hold targets"] | dict[str, float] | None, OpeningsAtStart(OPENING)] = Field(
         None,
         validate_default=True,
         description="Openings of the gates. Left out: those that hold the targets (steady), closed (dry).",

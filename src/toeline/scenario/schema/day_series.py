@@ -7,14 +7,13 @@ from typing import Annotated, Any
 import numpy as np
 from pydantic import Field, ValidationError, ValidationInfo
 
-from toeline.scenario.csv_rows import Columns, number_or_text, read_csv
+from toeline.scenario.csv_rows import Columns, number_or_text
 from toeline.scenario.messages import misfits_of
 from toeline.scenario.misfits import CsvFaultsError, Misfit, MisfitsError, shown
 from toeline.scenario.reading import reading_of
-from toeline.scenario.schema.table import FileName, Table
+from toeline.scenario.schema.table import DISCHARGE, LEVEL, OPENING, FileName, Table
 from toeline.scenario.schema.value_kinds import Moment, Quantity, ValueKind
 from toeline.scenario.series import Series, SeriesShape, constant
-from toeline.scenario.text_file import UnreadableFileError
 from toeline.units import UnitSystem
 
 _COLUMNS = Columns(("time", "value"))
@@ -104,12 +103,11 @@ class SeriesKind(ValueKind):
         return points.series(shape)
 
     def _from_csv(self, name: str, shape: SeriesShape, info: ValidationInfo) -> Series:
-        reading, columns = reading_of(info), _COLUMNS.required
         try:
-            file = read_csv(reading.folder / name, _COLUMNS)
-        except UnreadableFileError as error:
-            raise MisfitsError([Misfit(("file",), f"found {shown(name)}; {error}")]) from None
-        reading.csv_texts[name] = file.text
+            file = reading_of(info).read_csv(name, _COLUMNS)
+        except ValueError as error:
+            raise MisfitsError([Misfit(("file",), str(error))]) from None
+        columns = _COLUMNS.required
         points = _Points(self.quantity, info, lambda line, column, text: file.report(line, columns[column], text))
         for line, row in file.rows:
             points.add(line, row.get("time", ""), number_or_text(row.get("value", "")))
@@ -133,11 +131,7 @@ class SeriesKind(ValueKind):
         return {"anyOf": [value, pairs, table]}
 
 
-_DISCHARGE = Quantity("discharge", least=0.0, most=10_000.0)
-_LEVEL = Quantity("length", least=-10_000.0, most=10_000.0)
-_OPENING = Quantity("length", least=0.0, most=1000.0)
-
-Inflow = Annotated[Series, SeriesKind(_DISCHARGE, "lines")]
-Delivery = Annotated[Series, SeriesKind(_DISCHARGE, "steps")]
-OpeningSeries = Annotated[Series, SeriesKind(_OPENING, "steps")]
-LevelSeries = Annotated[Series, SeriesKind(_LEVEL, "lines")]
+Inflow = Annotated[Series, SeriesKind(DISCHARGE, "lines")]
+Delivery = Annotated[Series, SeriesKind(DISCHARGE, "steps")]
+OpeningSeries = Annotated[Series, SeriesKind(OPENING, "steps")]
+LevelSeries = Annotated[Series, SeriesKind(LEVEL, "lines")]

@@ -55,7 +55,7 @@ class Tail(Table):
         None, description="Name of the section beyond the last gate. Left out: that of the end of the last pool."
     )
     surface: Name | None = Field(
-        None, description="Name of the surface beyond the last gate. Left out: that of the end of the last pool."
+        None, description="Name of the surface beyond the last gate. Left out: none that is protected."
     )
     stretches: list[Stretch] = Field(
         [], description="The floor beyond the last gate as stretches, in place of section and surface."

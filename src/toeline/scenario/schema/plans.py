@@ -6,14 +6,14 @@ from typing import Annotated, Any, cast
 
 from pydantic import Field, ValidationError, ValidationInfo
 
-from toeline.scenario.csv_rows import Columns, number_or_text, read_csv
+from toeline.scenario.csv_rows import Columns, number_or_text
 from toeline.scenario.messages import misfits_of
 from toeline.scenario.misfits import CsvFaultsError, Misfit, MisfitsError, in_quotes, shown
 from toeline.scenario.orders import Order, OrderKind
 from toeline.scenario.reading import reading_of
 from toeline.scenario.schema.table import DischargeOrZero, Name, SizeOrZero, Table
+from toeline.scenario.schema.toml_json_schema import TomlJsonSchema
 from toeline.scenario.schema.value_kinds import Moment, Quantity, ValueKind
-from toeline.scenario.text_file import UnreadableFileError
 from toeline.units import UnitSystem
 
 _ACTIONS = ("opening", "by", "discharge")
@@ -72,12 +72,7 @@ class OrdersKind(ValueKind):
 
     @staticmethod
     def _from_csv(name: str, info: ValidationInfo) -> list[Order]:
-        reading = reading_of(info)
-        try:
-            file = read_csv(reading.folder / name, _COLUMNS)
-        except UnreadableFileError as error:
-            raise ValueError(f"found {shown(name)}; {error}") from None
-        reading.csv_texts[name] = file.text
+        file = reading_of(info).read_csv(name, _COLUMNS)
         orders = []
         for line, row in file.rows:
             entry = {key: number_or_text(cell) if key in _ACTIONS else cell for key, cell in row.items()}
@@ -94,7 +89,8 @@ class OrdersKind(ValueKind):
         return "an array of orders, or the name of a CSV file with the columns at,gate,opening,by,discharge"
 
     def json_schema(self) -> dict[str, Any]:
-        return {"anyOf": [{"type": "string"}, {"type": "array", "items": OrderEntry.model_json_schema()}]}
+        order = OrderEntry.model_json_schema(schema_generator=TomlJsonSchema)
+        return {"anyOf": [{"type": "string"}, {"type": "array", "items": order}]}
 
 
 class Plan(Table):

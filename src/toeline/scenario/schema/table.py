@@ -16,12 +16,16 @@ HEAD, TAIL = "head", "tail"
 
 Name = Annotated[str, Text()]
 FileName = Annotated[str, Text("file name, relative to the folder of the day file", longest=400)]
-Level = Annotated[float, Quantity("length", least=-10_000.0, most=10_000.0)]
+LEVEL = Quantity("length", least=-10_000.0, most=10_000.0)
+OPENING = Quantity("length", least=0.0, most=1000.0)
+DISCHARGE = Quantity("discharge", least=0.0, most=10_000.0)
+
+Level = Annotated[float, LEVEL]
 Length = Annotated[float, Quantity("length", above=0.0, most=1e6)]
 LengthOrZero = Annotated[float, Quantity("length", least=0.0, most=1e6)]
 Size = Annotated[float, Quantity("length", above=0.0, most=1000.0)]
-SizeOrZero = Annotated[float, Quantity("length", least=0.0, most=1000.0)]
-DischargeOrZero = Annotated[float, Quantity("discharge", least=0.0, most=10_000.0)]
+SizeOrZero = Annotated[float, OPENING]
+DischargeOrZero = Annotated[float, DISCHARGE]
 LevelAndDischarge = Annotated[tuple[Level, DischargeOrZero], Strict(False)]
 LevelAtStation = Annotated[tuple[Level, Level], Strict(False)]
 FromTo = Annotated[tuple[SizeOrZero, SizeOrZero], Strict(False)]

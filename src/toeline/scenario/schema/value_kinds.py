@@ -60,14 +60,14 @@ class Quantity(ValueKind):
         return number
 
     def _number(self, value: Any, system: UnitSystem) -> float | None:
-        if isinstance(value, bool) or not isinstance(value, int | float | str):
+        writable = (int, float, str) if self.dimension else (int, float)
+        if isinstance(value, bool) or not isinstance(value, writable):
             return None
         try:
             number = parse_quantity(value, self.dimension, system) if self.dimension else float(value)
         except (ValueError, OverflowError):
             return None
-        is_text_for_a_number = self.dimension is None and isinstance(value, str)
-        return number if math.isfinite(number) and not is_text_for_a_number else None
+        return number if math.isfinite(number) else None
 
     def _allowed(self, system: UnitSystem) -> str:
         if self.dimension:

@@ -2,7 +2,7 @@
 
 import pytest
 
-from toeline.report.orders import order_words
+from toeline.report.order_words import order_words
 from toeline.units import Display, UnitSystem
 
 

@@ -1,0 +1,57 @@
+"""The gates of a run: the two hazards below each, its least margins, and its hours in every state."""
+
+from collections.abc import Iterator, Sequence
+
+from toeline.findings.jumps import GateJumps
+from toeline.findings.series import Extreme
+from toeline.report.clock import duration_text
+from toeline.report.layout import paragraph, table
+from toeline.report.run_clock import RunClock
+from toeline.units import Display
+
+
+def hazard_lines(gates: Sequence[GateJumps], width: int) -> Iterator[str]:
+    """Floor and people side by side: little of one says nothing about the other."""
+    rows = [(gate.gate, _hours(gate.beyond_protection_hours), _hours(gate.roller_hours)) for gate in gates]
+    yield table(("", "floor: jump beyond protection", "people: drowned roller"), rows, width)
+    yield paragraph("No hour of any gate is safe to enter, with a roller or without.", width)
+
+
+def margin_lines(gates: Sequence[GateJumps], clock: RunClock, display: Display, width: int) -> Iterator[str]:
+    """How near each gate came, in tailwater level, and how far its jump reached."""
+    rows = [
+        (
+            gate.gate,
+            _extreme(gate.protection_margin, clock, display),
+            _extreme(gate.tailwater_margin, clock, display),
+            _extreme(gate.jump_end_distance, clock, display),
+        )
+        for gate in gates
+    ]
+    yield table(("", "protection margin", "tailwater margin", "jump ends at most"), rows, width)
+    yield paragraph(
+        "Protection margin: how far the tailwater could still fall before the jump's end passes the protected floor; "
+        "negative: how much is missing. Tailwater margin: how far it stands above the level that drowns the jump.",
+        width,
+    )
+
+
+def hour_lines(gates: Sequence[GateJumps], width: int) -> Iterator[str]:
+    """For how long each gate was in each state; states that no gate was in are left out."""
+    yield _hours_table("flow", [(gate.gate, gate.flow_state_hours) for gate in gates], width)
+    yield _hours_table("jump", [(gate.gate, gate.jump_state_hours) for gate in gates], width)
+
+
+def _hours_table(subject: str, rows: Sequence[tuple[str, dict[str, float]]], width: int) -> str:
+    states = [state for state in rows[0][1] if any(hours[state] for _, hours in rows)]
+    header = (subject, *(state.replace("_", " ") for state in states))
+    return table(header, [(gate, *(_hours(hours[state]) for state in states)) for gate, hours in rows], width)
+
+
+def _hours(hours: float) -> str:
+    return duration_text(hours * 3600) if hours else "-"
+
+
+def _extreme(extreme: Extreme, clock: RunClock, display: Display) -> str:
+    value = display.length(extreme.value)
+    return value if value == "-" else f"{value} at {clock.at(extreme.time)}"

@@ -1,0 +1,46 @@
+"""A run on one page, for the planner: first what goes wrong, then the rest."""
+
+from collections.abc import Iterable
+
+import xarray as xr
+
+from toeline.findings.incidents import incidents
+from toeline.findings.jumps import gate_jumps
+from toeline.findings.ledger import ledger
+from toeline.report.gates import hazard_lines, hour_lines, margin_lines
+from toeline.report.incidents import incident_lines
+from toeline.report.layout import heading, paragraph
+from toeline.report.orders import order_lines
+from toeline.report.run_clock import RunClock
+from toeline.report.water import ledger_lines
+from toeline.units import Display
+
+
+def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
+    """The page that ends `toeline run`, from the dataset alone, in the units of `display`."""
+    if not run.sizes["time"]:
+        return paragraph("The run was stopped before anything reached the disk.", width, indent="")
+    clock = RunClock(run)
+    gates = gate_jumps(run)
+    sections = (
+        ("What goes wrong", incident_lines(incidents(run), clock, display, width)),
+        ("Floor and people", hazard_lines(gates, width)),
+        ("Least margins", margin_lines(gates, clock, display, width)),
+        ("Hours in each state", hour_lines(gates, width)),
+        ("Orders", order_lines(run, clock, display, width)),
+        ("Water ledger", ledger_lines(ledger(run), width)),
+        ("Caution", [paragraph(run.attrs["comment"], width)]),
+    )
+    return "\n\n".join([_title(run, clock, width), *(_section(title, lines) for title, lines in sections)])
+
+
+def _title(run: xr.Dataset, clock: RunClock, width: int) -> str:
+    plan = f"plan {run.attrs['plan']}" if run.attrs["plan"] else "no plan"
+    day = f"{clock.start:%A %Y-%m-%d}, {clock.span(run['time'].values[0], run['time'].values[-1])}"
+    zone = run.attrs["zone"] or f"UTC{run.attrs['utc_offset']}"
+    first = paragraph(f"{run.attrs['canal']}: {run.attrs['title']}", width, indent="")
+    return f"{first}\n{paragraph(f'{plan}; {day}, {zone}; {run.attrs["outcome"]}', width)}"
+
+
+def _section(title: str, lines: Iterable[str]) -> str:
+    return "\n".join([heading(title), *lines])

@@ -1,0 +1,22 @@
+"""The water ledger of a run as a table."""
+
+from collections.abc import Iterator
+
+from toeline.findings.ledger import Ledger, acre_feet
+from toeline.report.layout import paragraph, table
+
+
+def ledger_lines(ledger: Ledger, width: int) -> Iterator[str]:
+    """What came in, where it went, and what is left unexplained, in both units."""
+    entries = {
+        "taken in at the head": ledger.inflow,
+        **{f"delivered, {offtake}": -volume for offtake, volume in ledger.deliveries.items()},
+        "let out at the tail": -ledger.outflow,
+        **{f"kept in {pool}": -change for pool, change in ledger.storage_changes.items()},
+    }
+    rows = [(name, f"{volume:,.0f}", f"{acre_feet(volume):,.2f}") for name, volume in entries.items()]
+    rows.append(("residual", f"{ledger.residual:.1e}", f"{acre_feet(ledger.residual):.1e}"))
+    yield table(("", "m3", "acre-ft"), rows, width)
+    yield paragraph(
+        "The residual is what the other lines leave over; it tells whether water was lost in computing.", width
+    )
