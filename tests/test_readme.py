@@ -16,6 +16,9 @@ def test_ci_does_exactly_the_two_commands():
 
 def test_every_page_that_the_pages_link_to_is_there():
     pages = [ROOT / "README.md", ROOT / "DEVELOPERS.md", *(ROOT / "docs").glob("*.md")]
-    links = [(page, link) for page in pages for link in re.findall(r"\]\(([^)#:]+)\)", page.read_text(encoding="utf-8"))]
-    missing = [f"{page.name}: {link}" for page, link in links if not (page.parent / link).exists()]
-    assert not missing
+    assert [
+        f"{page.name}: {link}"
+        for page in pages
+        for link in re.findall(r"\]\(([^)#:]+)\)", page.read_text(encoding="utf-8"))
+        if not (page.parent / link).exists()
+    ] == []

@@ -85,7 +85,7 @@ def run_plan(scenario: "Scenario", output: Path, overwrite: bool, strict: bool) 
         return ExitStatus.RUN_FAILED
     with dataset:
         show(run_summary(dataset, scenario.display, width=page_width()))
-        note(f"Results are in {output}.")
+        show(f"\nResults: {output}")
         return ExitStatus.LIMIT_PASSED if strict and incidents(dataset) else ExitStatus.DONE
 
 

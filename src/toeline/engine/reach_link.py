@@ -49,6 +49,8 @@ def reach_balance(link, transition_loss, up, down, level_up, level_down, depth_u
     """Head left over in a reach link [m], and its derivatives to the level above, the discharge and the level below.
 
     z_i − z_{i+1} + C − Q|Q|·(Δx/K² + local losses), with C = head_base + head_share·Q²/2g·(α/A_i² − α/A_{i+1}²).
+    The slope to the discharge is never less than at the balance with the present levels: from rest Newton's method would
+    overshoot.
     """
     if level_up >= level_down:
         k, dk_up, dk_down = link_conveyance(
@@ -68,11 +70,12 @@ def reach_balance(link, transition_loss, up, down, level_up, level_down, depth_u
         loss, loss_up, loss_down = loss + local, loss_up + local_up, loss_down + local_down
     half = head_share * q / (2.0 * GRAVITY)
     difference = up.inverse_area - down.inverse_area
-    left = level_up - level_down + head_base + half * q * difference - flux * loss
+    drive = level_up - level_down + head_base + half * q * difference
+    size = max(abs(q), math.sqrt(abs(drive) / loss))
     by_up = 1.0 + half * q * up.inverse_area_slope - flux * loss_up
     by_down = -1.0 - half * q * down.inverse_area_slope - flux * loss_down
-    by_discharge = 2.0 * half * difference - 2.0 * abs(q) * loss
-    return left, by_up, by_discharge, by_down
+    by_discharge = 2.0 * half * difference - 2.0 * size * loss
+    return drive - flux * loss, by_up, by_discharge, by_down
 
 
 @inner_kernel

@@ -88,7 +88,8 @@ class Run:
             "end_surge_upstream_remaining": self._seconds_left(surge.surge_upstream_until),
             "end_surge_downstream_remaining": self._seconds_left(surge.surge_downstream_until),
             "end_settling_remaining": self._seconds_left(self.watch.settled_at),
-            "end_next_step": self.pace.next_step.copy(),
+            "end_next_step": np.float64(self.pace.next_step[0]),
+            "end_time": np.float64(self.time / 1000.0),
         }
 
     def _seconds_left(self, until: np.ndarray) -> np.ndarray:
@@ -266,13 +267,13 @@ class Run:
 
 def _order_arrays(records: list[OrderRecord]) -> dict[str, np.ndarray]:
     return {
-        "order_time": np.array([record.time for record in records], np.int64),
+        "order_time": np.array([record.time / 1000.0 for record in records], float),
         "order_gate": np.array([record.gate for record in records], object),
         "order_kind": np.array([KINDS.index(record.kind) for record in records], np.int8),
         "order_value": np.array([record.value for record in records], float),
         "order_opening_before": np.array([record.before for record in records], float),
         "order_opening_after": np.array([record.after for record in records], float),
-        "order_completed": np.array([record.completed for record in records], float),
+        "order_completed": np.array([record.completed / 1000.0 for record in records], float),
         "order_status": np.array([record.status for record in records], np.int8),
         "order_reason": np.array([record.reason for record in records], object),
     }

@@ -10,6 +10,10 @@ import xarray as xr
 
 from toeline.findings.series import Extreme, greatest, hours_in_each, hours_of_rows, least
 
+_NEEDED = (
+    "gate_flow_state", "jump_state", "jump_kind", "protection_margin", "tailwater_margin", "jump_end_distance",
+)
+
 
 @dataclass(frozen=True)
 class GateJumps:
@@ -40,7 +44,8 @@ class GateJumps:
 
 def gate_jumps(run: xr.Dataset) -> list[GateJumps]:
     """All gates from the head down. Each output step stands for half of the time to its neighbours."""
-    return [_of_gate(run.isel(gate=index)) for index in range(run.sizes["gate"])]
+    needed = run[list(_NEEDED)].load()
+    return [_of_gate(needed.isel(gate=index)) for index in range(run.sizes["gate"])]
 
 
 def _of_gate(run: xr.Dataset) -> GateJumps:

@@ -56,5 +56,6 @@ def hours_in_each(flags: xr.DataArray, hours: np.ndarray) -> dict[str, float]:
 
 def hours_of_rows(times: np.ndarray) -> np.ndarray:
     """The hours for which each row stands: half of the steps beside it. They add up to the length of the run."""
-    steps = np.diff(times) / np.timedelta64(1, "h")
-    return (np.concatenate(([0.0], steps)) + np.concatenate((steps, [0.0]))) / 2.0
+    borders = np.concatenate((times[:1], times[:-1] + np.diff(times) / 2, times[-1:]))
+    hours: np.ndarray = np.diff(borders) / np.timedelta64(1, "h")
+    return hours

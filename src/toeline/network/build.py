@@ -46,14 +46,6 @@ TAIL_KINDS = {"level": TAIL_LEVEL, "rating": RATING, "free overfall": FREE_OVERF
 OFFTAKE_KINDS = {"demand": offtake.DEMAND, "orifice": offtake.ORIFICE, "weir": offtake.WEIR}
 
 
-def build_network(scenario) -> Network:
-    """Tables of a checked scenario.
-
-    Raises ScenarioError where a stretch is steep for the largest discharge that the day can bring.
-    """
-    return network_of(scenario.canal, scenario.day.period.spacing)
-
-
 def network_of(canal, spacing: float) -> Network:
     """Tables of a canal with nodes at most `spacing` metres apart."""
     lines = _lay_out(canal, spacing)
@@ -337,6 +329,7 @@ def _names(canal, lines: list[_Line], canal_nodes: int) -> Names:
         lining_level=np.array([_line_level(canal, node, "lining_height") for node in nodes]),
         bank_level=np.array([_line_level(canal, node, "bank_height") for node in nodes]),
         target_level=np.array([_or_nan(pool.target_level) for pool in canal.pools]),
+        max_opening=np.array([gate.max_opening for gate in canal.gates], float),
     )
 
 

@@ -137,3 +137,4 @@ class Names:
     lining_level: np.ndarray  # (canal nodes) m, NaN where none
     bank_level: np.ndarray  # (canal nodes) m, NaN where none
     target_level: np.ndarray  # (p) m, NaN where none
+    max_opening: np.ndarray  # (g) m

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL
-from toeline.scenario.series import Series
+from toeline.scenario.series import Series, constant
 
 HOUR_MS = 3_600_000
 
@@ -21,7 +21,7 @@ class Timetable:
     local_inertia: bool
     every: int  # ms, rows
     profiles_every: int  # ms
-    series: dict  # forcing index → Series
+    series: dict[int, Series]  # by forcing index
     orders: tuple  # scenario orders by time
     gates: tuple  # of the scenario, for travel, hoist and bands
     gate_count: int
@@ -78,12 +78,8 @@ def timetable_of(scenario, network) -> Timetable:
     )
 
 
-def _series(day, canal, network) -> dict:
+def _series(day, canal, network) -> dict[int, Series]:
     """Every forcing but the gate openings as a series, constants too."""
-
-    def constant(value: float) -> Series:
-        return Series(np.array([0], np.int64), np.array([value]), "steps")
-
     head = day.inflow if canal.head.kind == "inflow" else day.head or constant(canal.head.level)
     tail = day.tail or constant(canal.tail.level if canal.tail.level is not None else 0.0)
     series = {FORCING_HEAD: head, FORCING_TAIL: tail}

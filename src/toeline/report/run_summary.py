@@ -39,7 +39,7 @@ def _title(run: xr.Dataset, clock: RunClock, width: int) -> str:
     day = f"{clock.start:%A %Y-%m-%d}, {clock.span(run['time'].values[0], run['time'].values[-1])}"
     zone = run.attrs["zone"] or f"UTC{run.attrs['utc_offset']}"
     first = paragraph(f"{run.attrs['canal']}: {run.attrs['title']}", width, indent="")
-    return f"{first}\n{paragraph(f'{plan}; {day}, {zone}; {run.attrs["outcome"]}', width)}"
+    return first + "\n" + paragraph(f"{plan}; {day}, {zone}; {run.attrs['outcome']}", width)
 
 
 def _section(title: str, lines: Iterable[str]) -> str:

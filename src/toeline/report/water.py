@@ -14,9 +14,11 @@ def ledger_lines(ledger: Ledger, width: int) -> Iterator[str]:
         "let out at the tail": -ledger.outflow,
         **{f"kept in {pool}": -change for pool, change in ledger.storage_changes.items()},
     }
-    rows = [(name, f"{volume:,.0f}", f"{acre_feet(volume):,.2f}") for name, volume in entries.items()]
-    rows.append(("residual", f"{ledger.residual:.1e}", f"{acre_feet(ledger.residual):.1e}"))
+    rows = [(name, _rounded(volume, 0), _rounded(acre_feet(volume), 2)) for name, volume in entries.items()]
+    rows.append(("residual", f"{ledger.residual:.1g}", f"{acre_feet(ledger.residual):.1g}"))
     yield table(("", "m3", "acre-ft"), rows, width)
-    yield paragraph(
-        "The residual is what the other lines leave over; it tells whether water was lost in computing.", width
-    )
+    yield paragraph("The residual is what the other lines leave over: whether the computing lost water.", width)
+
+
+def _rounded(value: float, decimals: int) -> str:
+    return f"{round(value, decimals) + 0.0:,.{decimals}f}"  # + 0.0 turns -0.0 into 0.0

@@ -1,0 +1,144 @@
+"""The road from a checked scenario to a finished run."""
+
+import json
+import os
+from collections.abc import Callable
+from dataclasses import fields, is_dataclass
+from datetime import UTC, datetime
+from typing import Any
+
+import numpy as np
+import xarray as xr
+
+import toeline
+from toeline.engine.run import Run
+from toeline.engine.settling import round_trip
+from toeline.engine.state import new_state
+from toeline.errors import RunError
+from toeline.network.build import network_of
+from toeline.network.initial_state import Start
+from toeline.network.start import check_mild, starting_state
+from toeline.network.tables import HEAD, Network
+from toeline.network.timetable import timetable_of
+from toeline.results.dataset import DatasetSink, open_run
+from toeline.results.end_state import read_end_state
+from toeline.results.netcdf_writer import NetcdfSink
+from toeline.results.provenance import COMPLETE, run_attributes
+from toeline.scenario import Scenario
+
+
+def simulate(
+    scenario: Scenario,
+    output: str | os.PathLike[str] | None = None,
+    *,
+    overwrite: bool = False,
+    progress: Callable[[float], None] | None = None,
+) -> xr.Dataset:
+    """Step a day and return the run as a dataset; with `output` it is written there while it goes on.
+
+    `progress` is called with the fraction done. Raises ScenarioError where the day cannot start as asked, UsageError where
+    `output` exists and may not be overwritten, RunError where no step can be solved; what was done until then, as after a
+    KeyboardInterrupt, stays in `output`.partial.
+    """
+    network = network_of(scenario.canal, scenario.day.period.spacing)
+    timetable = timetable_of(scenario, network)
+    check_mild(scenario, timetable)
+    start = _start(scenario, network, timetable)
+    description = static_values(network, start), attributes(scenario), scenario.day.period.start
+    sink = DatasetSink(*description) if output is None else NetcdfSink(output, *description, overwrite=overwrite)
+    run = Run(network, timetable, sink, start)
+    try:
+        run.go(progress)
+    except (KeyboardInterrupt, RunError) as reason:
+        sink.close(_stopped(run, reason), {})
+        raise
+    sink.close(COMPLETE, run.end_state())
+    return sink.dataset if isinstance(sink, DatasetSink) else open_run(output)
+
+
+def _start(scenario: Scenario, network: Network, timetable) -> Start | dict[str, np.ndarray]:
+    if scenario.start_file is None:
+        return starting_state(scenario, network, timetable)
+    nodes = network.channel.nodes[: network.canal_node_count]
+    return read_end_state(
+        scenario.start_file, start=scenario.day.period.start, chainage=nodes.chainage, bed_level=nodes.bed_level,
+        gates=network.names.gates,
+    )  # fmt: skip
+
+
+def _stopped(run: Run, reason: BaseException) -> str:
+    at = datetime.fromtimestamp((run.timetable.start_epoch_ms + run.time) / 1000.0, UTC).isoformat()
+    return f"stopped at {at}: {reason if isinstance(reason, RunError) else 'interrupted'}"
+
+
+def attributes(scenario: Scenario) -> dict[str, str]:
+    """Global attributes of a run of a scenario."""
+    day = scenario.day
+    return run_attributes(
+        title=day.title, canal=scenario.canal.name, plan=scenario.plan, canal_text=scenario.canal_text,
+        day_text=scenario.day_text, settings=_settings(scenario), input_hash=scenario.input_hash,
+        surface_names=tuple(scenario.canal.surfaces), units_for_display=scenario.display.system.value, zone=day.zone,
+        start=day.period.start, version=toeline.__version__, created=datetime.now(UTC),
+    )  # fmt: skip
+
+
+def _settings(scenario: Scenario) -> dict[str, Any]:
+    """Canal and day with defaults filled in, fit for JSON."""
+    plain = {"canal": scenario.canal.model_dump(), "day": scenario.day.model_dump(exclude={"plans"})}
+    return json.loads(json.dumps(plain, default=_plain))
+
+
+def _plain(value: Any) -> Any:
+    """A value that JSON does not know, as one that it does."""
+    if is_dataclass(value) and not isinstance(value, type):
+        return {field.name: getattr(value, field.name) for field in fields(value)}
+    return value.tolist() if isinstance(value, np.ndarray) else str(value)
+
+
+def static_values(network: Network, start: Start | dict[str, np.ndarray]) -> dict[str, np.ndarray]:
+    """Coordinates and all that does not change during a run, by variable name."""
+    names, gates, nodes = network.names, network.tables.gates, network.channel.nodes[: network.canal_node_count]
+    pools, offtakes = network.tables.pools, network.tables.offtakes
+    beside = (*names.pools, "tail")
+    node_pool = np.searchsorted(pools.last_node, np.arange(nodes.size)).astype(np.int32)
+    return {
+        "gate": np.array(names.gates, object),
+        "gate_chainage": network.channel.nodes.chainage[gates.downstream_node],
+        "gate_sill_level": gates.sill_level,
+        "gate_floor_level": gates.floor_level,
+        "gate_width": gates.width,
+        "gate_max_opening": names.max_opening,
+        "gate_apron_end": gates.apron_end,
+        "gate_protection_end": gates.protection_end,
+        "gate_upstream_pool": np.array(
+            ["head" if up == HEAD else names.pools[node_pool[up]] for up in gates.upstream_node], object
+        ),
+        "gate_downstream_pool": np.array(
+            [beside[np.searchsorted(pools.last_node, down)] for down in gates.downstream_node], object
+        ),
+        "pool": np.array(names.pools, object),
+        "pool_length": nodes.chainage[pools.last_node] - nodes.chainage[pools.first_node],
+        "pool_target_level": names.target_level,
+        "pool_wave_round_trip": _round_trips(network, start),
+        "offtake": np.array(names.offtakes, object),
+        "offtake_pool": np.array([names.pools[node_pool[node]] for node in offtakes.node], object),
+        "offtake_chainage": nodes.chainage[offtakes.node],
+        "node": np.arange(nodes.size),
+        "chainage": nodes.chainage,
+        "bed_level": nodes.bed_level,
+        "lining_level": names.lining_level,
+        "bank_level": names.bank_level,
+        "node_pool": node_pool,
+        "surface": names.node_surface,
+        "velocity_limit": names.velocity_limit,
+    }
+
+
+def _round_trips(network: Network, start: Start | dict[str, np.ndarray]) -> np.ndarray:
+    """Wave round trip of every pool at the start [s]; NaN where a pool is dry."""
+    state = new_state(network.node_count, network.offtake_count)
+    is_stored = isinstance(start, dict)
+    state.nodes.level = start["end_level"] if is_stored else start.level
+    state.links.discharge = start["end_discharge"] if is_stored else start.discharge
+    trips = [round_trip(network.channel, pool.first_node, pool.last_node, state) for pool in network.tables.pools]
+    return np.where(np.isfinite(trips), trips, np.nan)

@@ -1,0 +1,168 @@
+"""`toeline run`: exit statuses, messages and files."""
+
+import os
+import pty
+import signal
+import subprocess
+import sys
+import time
+from pathlib import Path
+
+import pytest
+
+import toeline
+from toeline.errors import RunError
+
+
+@pytest.fixture
+def one_plan(folder: Path) -> Path:
+    """A day with no plan."""
+    day = folder / "day.toml"
+    day.write_text(day.read_text().partition("[plans.hold]")[0])
+    return day
+
+
+def files(folder: Path) -> set[str]:
+    return {file.name for file in folder.iterdir()} - {"canal.toml", "day.toml"}
+
+
+def test_a_day_is_run_told_and_written(one_plan, folder, call):
+    result = call("run", "day.toml")
+    assert result.exit_code == 0
+    assert result.stdout.startswith("Alder branch: A short morning\n")
+    assert result.stdout.endswith("Results: day.nc\n")
+    assert files(folder) == {"day.nc"}
+
+
+def test_each_plan_is_told_and_written_to_its_own_file(folder, call):
+    result = call("run", "day.toml")
+    assert (result.exit_code, files(folder)) == (0, {"day.hold.nc", "day.raise.nc"})
+    assert result.stdout.index("plan hold;") < result.stdout.index("plan raise;")
+
+
+def test_one_plan_can_be_picked(folder, call):
+    result = call("run", "day.toml", "--plan", "raise", "-o", "picked.nc")
+    assert (result.exit_code, files(folder)) == (0, {"picked.raise.nc"})
+
+
+def test_an_unknown_plan_names_the_nearest(folder, call):
+    result = call("run", "day.toml", "--plan", "rasie")
+    assert (result.exit_code, result.stdout, files(folder)) == (2, "", set())
+    assert 'did you mean "raise"?' in result.stderr
+
+
+def test_a_value_can_be_set_for_one_run(one_plan, call):
+    assert "06:00 to 06:30 (30 min)" in call("run", "day.toml", "--set", 'period.length="30 min"').stdout
+
+
+def test_a_fault_in_a_set_value_is_told_and_nothing_is_written(one_plan, folder, call):
+    result = call("run", "day.toml", "--set", 'period.lenght="30 min"')
+    assert (result.exit_code, result.stdout, files(folder)) == (2, "", set())
+    assert 'did you mean "length"?' in result.stderr
+
+
+def test_what_stands_is_refused_before_any_work(one_plan, folder, call, monkeypatch):
+    (folder / "day.nc").write_text("mine")
+    monkeypatch.setattr(toeline, "simulate", None)
+    result = call("run", "day.toml")
+    assert (result.exit_code, result.stdout) == (2, "")
+    assert "Error: day.nc exists: name another file with -o, or replace it with --overwrite." in result.stderr
+    assert (folder / "day.nc").read_text() == "mine"
+
+
+def test_an_earlier_run_is_replaced_when_told(one_plan, call):
+    call("run", "day.toml")
+    assert call("run", "day.toml", "--overwrite").exit_code == 0
+
+
+@pytest.mark.parametrize(("arguments", "status"), [([], 0), (["--strict"], 3)])
+def test_an_incident_changes_the_exit_status_only_where_strict(one_plan, folder, call, arguments, status):
+    day = folder / "day.toml"
+    day.write_text(day.read_text().replace('"East lateral" = [["06:00", 0.2]]', '"East lateral" = [["06:00", 90.0]]'))
+    result = call("run", "day.toml", *arguments)
+    assert result.exit_code == status
+    assert "East lateral: delivery shortfall" in result.stdout
+
+
+def failing(error: BaseException, partial: str | None = None):
+    """A simulation that fails, after it has written something if told so."""
+
+    def simulate(scenario, output, *, overwrite, progress):
+        if partial:
+            Path(partial).touch()
+        raise error
+
+    return simulate
+
+
+def test_a_run_that_fails_says_where_and_what_is_left(one_plan, call, monkeypatch):
+    monkeypatch.setattr(toeline, "simulate", failing(RunError("no step found at 07:12"), "day.nc.partial"))
+    result = call("run", "day.toml")
+    assert (result.exit_code, result.stdout) == (1, "")
+    assert result.stderr.splitlines()[-2:] == [
+        "Error: no step found at 07:12",
+        "What was done so far is in day.nc.partial; see it with: toeline describe day.nc.partial",
+    ]
+
+
+def test_one_plan_that_fails_does_not_keep_the_others_from_running(folder, call, monkeypatch):
+    monkeypatch.setattr(toeline, "simulate", failing(RunError("no step found")))
+    result = call("run", "day.toml")
+    assert (result.exit_code, result.stderr.count("no step found")) == (1, 2)
+
+
+def test_ctrl_c_says_what_is_left(one_plan, call, monkeypatch):
+    monkeypatch.setattr(toeline, "simulate", failing(KeyboardInterrupt(), "day.nc.partial"))
+    result = call("run", "day.toml")
+    assert (result.exit_code, result.stdout) == (130, "")
+    assert result.stderr.splitlines()[-1].startswith("Stopped by Ctrl-C. What was done so far is in day.nc.partial")
+
+
+def test_ctrl_c_before_anything_is_written_says_so(one_plan, call, monkeypatch):
+    monkeypatch.setattr(toeline, "simulate", failing(KeyboardInterrupt()))
+    assert call("run", "day.toml").stderr.endswith("Stopped by Ctrl-C. Nothing was written.\n")
+
+
+def test_ctrl_c_leaves_a_file_that_can_be_described(one_plan, folder):
+    command = [sys.executable, "-m", "toeline", "run", "day.toml", "--set", 'period.length="300 d"']
+    run = subprocess.Popen(command, stdout=subprocess.PIPE, stderr=subprocess.PIPE, text=True)
+    partial = folder / "day.nc.partial"
+    while not partial.exists() and run.poll() is None:
+        time.sleep(0.05)
+    run.send_signal(signal.SIGINT)
+    output, errors = run.communicate()
+    assert (run.returncode, output) == (130, "")
+    assert errors.splitlines()[-1].startswith("Stopped by Ctrl-C. What was done so far is in day.nc.partial")
+    page = subprocess.run(
+        [sys.executable, "-m", "toeline", "describe", "day.nc.partial"], capture_output=True, text=True, check=True
+    )
+    assert "run stopped early" in page.stdout
+    assert files(folder) == {"day.nc.partial"}
+
+
+def on_a_terminal(*arguments: str, **environment: str) -> str:
+    """What `toeline` draws on its error stream where that is a terminal."""
+    mine, its = pty.openpty()
+    command = [sys.executable, "-m", "toeline", *arguments]
+    surroundings = os.environ | {"TERM": "xterm"} | environment
+    run = subprocess.Popen(command, stdout=subprocess.DEVNULL, stderr=its, env=surroundings)
+    os.close(its)
+    drawn = b""
+    while chunk := _read(mine):
+        drawn += chunk
+    os.close(mine)
+    assert run.wait() == 0
+    return drawn.decode()
+
+
+def _read(terminal: int) -> bytes:
+    try:
+        return os.read(terminal, 4096)
+    except OSError:  # Linux: the other end is closed
+        return b""
+
+
+def test_a_terminal_gets_a_progress_bar_and_no_colour_where_none_is_wanted(folder):
+    drawn = on_a_terminal("run", "day.toml", "--plan", "hold", NO_COLOR="1")
+    assert "hold" in drawn
+    assert "\x1b[3" not in drawn.replace("\x1b[?", "")

@@ -1,0 +1,70 @@
+"""An invented morning of two gates, quiet unless a test says otherwise."""
+
+from collections.abc import Callable
+from datetime import datetime, timedelta, timezone
+
+import numpy as np
+import pytest
+import xarray as xr
+
+from toeline.results.dataset import DatasetSink
+from toeline.results.provenance import run_attributes
+from toeline.results.variables import VARIABLES, Variable
+from toeline.units import Display, UnitSystem
+
+START = datetime(2031, 5, 4, 6, tzinfo=timezone(timedelta(hours=2)))
+STEP_MS = 300_000
+SIZES = {"gate": 2, "pool": 2, "offtake": 1, "node": 4, "time": 49, "profile_time": 5, "order": 0}
+LABELS = {
+    "gate": ["Middle check", "Last check"],
+    "pool": ["Upper pool", "Lower pool"],
+    "offtake": ["East lateral"],
+    "gate_upstream_pool": ["Upper pool", "Lower pool"],
+    "gate_downstream_pool": ["Lower pool", "tail"],
+    "offtake_pool": ["Lower pool"],
+}
+DROWNED_FLOW, DROWNED_JUMP = 3, 1
+QUIET = {
+    "protection_margin": 0.30,
+    "tailwater_margin": 0.10,
+    "jump_end_distance": 9.0,
+    "jump_state": DROWNED_JUMP,
+    "gate_flow_state": DROWNED_FLOW,
+}
+
+
+def quiet(variable: Variable, sizes: dict[str, int]) -> np.ndarray:
+    shape = tuple(sizes[dimension] for dimension in variable.dimensions)
+    if variable.name in LABELS:
+        return np.array(LABELS[variable.name], dtype=object)
+    if variable.name in ("time", "profile_time"):
+        return np.arange(shape[0], dtype=np.int64) * STEP_MS * (12 if variable.name == "profile_time" else 1)
+    if variable.dtype == "text":
+        return np.full(shape, "", dtype=object)
+    return np.full(shape, QUIET.get(variable.name, 0.0))
+
+
+@pytest.fixture
+def invented_run() -> Callable[..., xr.Dataset]:
+    """Build the run with some variables given, and some global attributes."""
+
+    def build(outcome: str = "complete", attributes: dict[str, str] | None = None, **given: np.ndarray) -> xr.Dataset:
+        sizes = SIZES | {"order": len(given.get("order_time", ()))}
+        values = {v.name: given.get(v.name, quiet(v, sizes)) for v in VARIABLES.values() if not v.is_state}
+        growing = {name for name, variable in VARIABLES.items() if variable.grows}
+        about = run_attributes(
+            title="A short morning", canal="Alder branch", plan="raise", canal_text="", day_text="", settings={},
+            input_hash="0" * 64, surface_names=["bed"], units_for_display="metric", zone=None, start=START,
+            version="0.1.0", created=START,
+        )  # fmt: skip
+        sink = DatasetSink({n: v for n, v in values.items() if n not in growing}, about | (attributes or {}), START)
+        sink.write({name: value for name, value in values.items() if name in growing})
+        sink.close(outcome)
+        return sink.dataset
+
+    return build
+
+
+@pytest.fixture
+def metric() -> Display:
+    return Display(UnitSystem.metric)

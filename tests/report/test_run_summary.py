@@ -1,0 +1,139 @@
+"""A run on one page."""
+
+import numpy as np
+import pytest
+
+from toeline.constants import CAUTION
+from toeline.report.run_summary import run_summary
+from toeline.units import Display, UnitSystem
+
+
+def one_bad_hour(values: tuple[float, float], gate: int = 0, start: int = 14) -> np.ndarray:
+    """Per step and gate, the quiet value and for an hour another one."""
+    series = np.full((49, 2), values[0])
+    series[start : start + 12, gate] = values[1]
+    return series
+
+
+@pytest.fixture
+def swept_hour(invented_run):
+    """From about 07:10 for an hour the jump below the Middle check ends beyond the protected floor."""
+    return invented_run(
+        jump_state=one_bad_hour((1, 4)),
+        protection_margin=one_bad_hour((0.30, -0.14)),
+        jump_end_distance=one_bad_hour((9.0, 41.2)),
+        gate_protection_end=np.array([34.0, 34.0]),
+    )
+
+
+def section(page: str, title: str) -> str:
+    """The lines of one section, in one line."""
+    _, _, after = page.partition(f"{title.upper()}\n")
+    return " ".join(after.partition("\n\n")[0].split())
+
+
+def test_what_goes_wrong_comes_first_with_place_time_and_amount(swept_hour, metric):
+    page = run_summary(swept_hour, metric)
+    first = section(page, "What goes wrong")
+    assert page.index("WHAT GOES WRONG") < page.index("FLOOR AND PEOPLE")
+    assert "Middle check: jump beyond protection, 07:08 to 08:07 (58 min)" in first
+    assert "worst -0.14 m at 07:10" in first
+    assert "end of the jump from the gate 41.20 m; limit 34.00 m" in first
+
+
+def test_both_hazards_stand_side_by_side(swept_hour, metric):
+    line = section(run_summary(swept_hour, metric), "Floor and people")
+    assert "floor: jump beyond protection people: drowned roller" in line
+    assert "Middle check 1 h 3 h" in line
+    assert "Last check - 4 h" in line
+
+
+def test_a_quiet_run_is_not_called_safe(invented_run, metric):
+    page = run_summary(invented_run(), metric)
+    assert "No incident." in section(page, "What goes wrong")
+    assert "makes no place safe" in section(page, "What goes wrong")
+
+
+def test_many_incidents_of_one_kind_at_one_place_are_told_together(invented_run, metric):
+    bad = np.zeros((49, 2), dtype=bool)
+    bad[5:45:8, 0] = True
+    run = invented_run(jump_state=np.where(bad, 4, 1), protection_margin=np.where(bad, -0.10, 0.30))
+    first = section(run_summary(run, metric), "What goes wrong")
+    assert first.count("Middle check") == 1
+    assert "5 times between" in first
+
+
+def test_volumes_not_delivered_add_up(invented_run, metric):
+    demand, delivery = np.full((49, 1), 0.5), np.full((49, 1), 0.5)
+    delivery[10:12] = delivery[30:32] = 0.1
+    first = section(run_summary(invented_run(demand=demand, delivery=delivery), metric), "What goes wrong")
+    assert "East lateral: delivery shortfall" in first
+    assert "worst 0.100 m3/s" in first
+    assert "volume not delivered 480 m3" in first
+
+
+def test_margins_come_with_their_time(swept_hour, metric):
+    assert "Middle check -0.14 m at 07:10 0.10 m at 06:00 41.20 m at 07:10" in section(
+        run_summary(swept_hour, metric), "Least margins"
+    )
+
+
+def test_states_that_do_not_occur_are_left_out(swept_hour, metric):
+    hours = section(run_summary(swept_hour, metric), "Hours in each state")
+    assert "beyond protection" in hours
+    assert "undular" not in hours
+    assert "overtopped" not in hours
+
+
+def test_the_ledger_is_in_both_units_with_its_residual(invented_run, metric):
+    volume = np.linspace(0.0, 12_334.8183754752, 49)
+    page = run_summary(invented_run(canal_inflow_volume=volume, canal_outflow_volume=volume), metric)
+    water = section(page, "Water ledger")
+    assert "taken in at the head 12,335 10.00" in water
+    assert "let out at the tail -12,335 -10.00" in water
+    assert "delivered, East lateral 0 0.00" in water
+    assert "residual 0 0" in water
+
+
+def order(invented_run, status: int, reason: str):
+    return invented_run(
+        order_time=np.array([1200.0]), order_gate=np.array(["Middle check"], dtype=object), order_kind=np.array([0]),
+        order_value=np.array([2.5]), order_opening_before=np.array([0.4]), order_opening_after=np.array([1.2]),
+        order_completed=np.array([1500.0]), order_status=np.array([status]),
+        order_reason=np.array([reason], dtype=object),
+    )  # fmt: skip
+
+
+def test_a_trimmed_order_tells_why(invented_run, metric):
+    run = order(invented_run, 1, "travel is 0 to 1.200 m")
+    orders = section(run_summary(run, metric), "Orders")
+    assert orders == (
+        "1 order, 0 carried out as given. 06:20 Middle check, open to 2.50 m: trimmed to 1.20 m: travel is 0 to 1.200 m"
+    )
+
+
+def test_an_order_carried_out_as_given_is_only_counted(invented_run, metric):
+    assert section(run_summary(order(invented_run, 0, ""), metric), "Orders") == "1 order, 1 carried out as given."
+
+
+def test_a_run_that_stopped_says_so_at_once(invented_run, metric):
+    page = run_summary(invented_run(outcome="stopped at 10:00: interrupted"), metric)
+    assert "stopped at 10:00: interrupted" in " ".join(page.partition("WHAT GOES WRONG")[0].split())
+    assert "run stopped early" in section(page, "What goes wrong")
+
+
+def test_a_run_without_a_row_says_that_nothing_is_there(invented_run, metric):
+    assert "before anything reached the disk" in run_summary(invented_run().isel(time=slice(0)), metric)
+
+
+def test_values_are_in_the_units_asked_for(swept_hour):
+    page = run_summary(swept_hour, Display(UnitSystem.us_customary))
+    assert "worst -0.46 ft" in page
+    assert " m at" not in page
+
+
+@pytest.mark.parametrize("width", [40, 80])
+def test_the_page_keeps_to_its_width_and_ends_with_the_caution(swept_hour, metric, width):
+    page = run_summary(swept_hour, metric, width=width)
+    assert max(len(line) for line in page.splitlines()) <= width
+    assert section(page, "Caution") == CAUTION

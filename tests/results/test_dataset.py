@@ -1,0 +1,83 @@
+"""Opening runs: exact times, local times, and clear words about files that are no run."""
+
+from datetime import UTC, datetime, timedelta, timezone
+
+import netCDF4
+import numpy as np
+import pytest
+
+from toeline.errors import UsageError
+from toeline.results.dataset import DatasetSink, local_time, open_run, timezone_of, utc
+from toeline.results.netcdf_writer import NetcdfSink
+
+
+@pytest.mark.parametrize("offset_hours", [0, 2, -9.5])
+def test_times_are_exact_and_utc(invented_run, tmp_path, offset_hours):
+    start = datetime(2031, 5, 4, 6, 30, tzinfo=timezone(timedelta(hours=offset_hours)))
+    run = invented_run(start=start, steps=4)
+    odd_ms = np.array([0, 1, 59_999, 31_536_000_001], dtype=np.int64)
+    sink = NetcdfSink(tmp_path / "run.nc", run.static(), run.attributes, start)
+    sink.write(next(run.blocks(4)) | {"time": odd_ms})
+    sink.close("complete")
+    with open_run(tmp_path / "run.nc") as opened:
+        first = np.datetime64(start.astimezone(UTC).replace(tzinfo=None), "ms")
+        np.testing.assert_array_equal(opened["time"], first + odd_ms)
+
+
+def test_an_order_never_carried_out_has_no_time_of_completion(invented_run):
+    run = invented_run(orders=2)
+    block = next(run.blocks(run.steps)) | {"order_completed": np.array([np.nan, 90.5])}
+    sink = DatasetSink(run.static(), run.attributes, run.start)
+    sink.write(block)
+    sink.close("complete")
+    completed = sink.dataset["order_completed"].values
+    assert np.isnat(completed[0])
+    assert utc(completed[1]) == run.start + timedelta(seconds=90.5)
+
+
+def test_the_dataset_is_not_there_before_the_run_has_closed_the_sink(invented_run):
+    run = invented_run()
+    with pytest.raises(RuntimeError, match="not closed"):
+        _ = DatasetSink(run.static(), run.attributes, run.start).dataset
+
+
+def test_chainage_is_a_coordinate_of_the_profile(invented_run):
+    run = invented_run()
+    dataset = run.write_to(DatasetSink(run.static(), run.attributes, run.start)).dataset
+    assert "chainage" in dataset["water_level"].coords
+
+
+@pytest.fixture
+def dataset(invented_run):
+    run = invented_run()
+    return run.write_to(DatasetSink(run.static(), run.attributes, run.start)).dataset
+
+
+def test_without_a_zone_local_time_has_the_offset_of_the_start(dataset):
+    assert local_time(dataset, np.datetime64("2031-05-04T06:00", "ns")).isoformat() == "2031-05-04T08:00:00+02:00"
+
+
+def test_with_a_zone_local_time_follows_its_clock_changes(dataset):
+    dataset.attrs["zone"] = "Europe/Lisbon"
+    assert str(timezone_of(dataset)) == "Europe/Lisbon"
+    assert local_time(dataset, np.datetime64("2031-01-04T06:00", "ns")).isoformat() == "2031-01-04T06:00:00+00:00"
+    assert local_time(dataset, np.datetime64("2031-07-04T06:00", "ns")).isoformat() == "2031-07-04T07:00:00+01:00"
+
+
+def test_a_missing_file_points_to_the_unfinished_run(invented_run, tmp_path):
+    run = invented_run()
+    NetcdfSink(tmp_path / "run.nc", run.static(), run.attributes, run.start).close("stopped at noon: interrupted")
+    with pytest.raises(UsageError, match=r"run\.nc is no file; an unfinished run is in .*run\.nc\.partial"):
+        open_run(tmp_path / "run.nc")
+
+
+def test_a_file_that_is_no_netcdf_is_refused(tmp_path):
+    (tmp_path / "day.toml").write_text("canal = 'canal.toml'")
+    with pytest.raises(UsageError, match="no readable NetCDF file"):
+        open_run(tmp_path / "day.toml")
+
+
+def test_a_netcdf_file_of_another_program_is_refused(tmp_path):
+    netCDF4.Dataset(tmp_path / "other.nc", "w").close()
+    with pytest.raises(UsageError, match="not the file of a Toeline run"):
+        open_run(tmp_path / "other.nc")
