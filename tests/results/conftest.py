@@ -48,10 +48,19 @@ class InventedRun:
     attributes: dict[str, str] = field(default_factory=attributes)
 
     def sizes(self) -> dict[str, int]:
-        return {"gate": self.gates, "pool": self.pools, "offtake": self.offtakes, "node": self.nodes,
-                "time": self.steps, "profile_time": self.profiles, "order": self.orders,
-                "state_node": self.nodes, "state_link": self.nodes + 1, "state_gate": self.gates,
-                "state_pool": self.pools}
+        return {
+            "gate": self.gates,
+            "pool": self.pools,
+            "offtake": self.offtakes,
+            "node": self.nodes,
+            "time": self.steps,
+            "profile_time": self.profiles,
+            "order": self.orders,
+            "state_node": self.nodes,
+            "state_link": self.nodes + 1,
+            "state_gate": self.gates,
+            "state_pool": self.pools,
+        }
 
     def values(self, name: str) -> np.ndarray:
         variable = VARIABLES[name]

@@ -58,10 +58,10 @@ def test_without_a_zone_local_time_has_the_offset_of_the_start(dataset):
 
 
 def test_with_a_zone_local_time_follows_its_clock_changes(dataset):
-    dataset.attrs["zone"] = "Europe/Lisbon"
-    assert str(timezone_of(dataset)) == "Europe/Lisbon"
-    assert local_time(dataset, np.datetime64("2031-01-04T06:00", "ns")).isoformat() == "2031-01-04T06:00:00+00:00"
-    assert local_time(dataset, np.datetime64("2031-07-04T06:00", "ns")).isoformat() == "2031-07-04T07:00:00+01:00"
+    dataset.attrs["zone"] = "CET"
+    assert str(timezone_of(dataset)) == "CET"
+    assert local_time(dataset, np.datetime64("2031-01-04T06:00", "ns")).isoformat() == "2031-01-04T07:00:00+01:00"
+    assert local_time(dataset, np.datetime64("2031-07-04T06:00", "ns")).isoformat() == "2031-07-04T08:00:00+02:00"
 
 
 def test_a_missing_file_points_to_the_unfinished_run(invented_run, tmp_path):

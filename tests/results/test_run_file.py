@@ -107,6 +107,17 @@ def test_a_file_that_appears_meanwhile_is_kept_and_so_is_the_run(sink, finish, t
     assert names_in(tmp_path) == ["run.nc", "run.nc.partial"]
 
 
+def test_a_run_whose_file_was_taken_away_never_touches_the_file_in_its_place(sink, finish, tmp_path):
+    """Only where the file system has no locks can this happen."""
+    running = sink(tmp_path / "run.nc")
+    (tmp_path / "run.nc.writing").unlink()
+    (tmp_path / "run.nc.writing").write_text("another run's")
+    with pytest.raises(RunError, match="another run took the place of this one"):
+        finish(running)
+    assert (tmp_path / "run.nc.writing").read_text() == "another run's"
+    assert not (tmp_path / "run.nc").exists()
+
+
 def test_a_link_is_followed(sink, finish, tmp_path):
     (tmp_path / "archive").mkdir()
     (tmp_path / "today.nc").symlink_to(tmp_path / "archive" / "run.nc")

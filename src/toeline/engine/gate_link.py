@@ -2,7 +2,9 @@
 
 import math
 
+from toeline.constants import GRAVITY
 from toeline.hydraulics.canal_tail import free_overfall_discharge, rating_discharge
+from toeline.hydraulics.gradually_varied_flow import LEAST_CONVEYANCE, link_conveyance
 from toeline.hydraulics.kernel import inner_kernel, kernel
 from toeline.hydraulics.underflow_gate import UnderflowGate, gate_discharge, gate_flow
 from toeline.hydraulics.uniform_flow import conveyance
@@ -19,9 +21,6 @@ from toeline.network.tables import (
 
 LEVEL_NUDGE = 1e-6
 """Step [m] of the finite differences of the gate law."""
-
-LEAST_TAIL_CONVEYANCE = 1e-6
-"""Floor of the conveyance [m³/s] of the metre of canal before a tail level."""
 
 
 @kernel
@@ -78,7 +77,33 @@ def tail_discharge(tables, kind, node, level):
 
 
 @inner_kernel
-def boundary_balance(tables, index, nodes, q, forcing, last_conveyance):
+def tail_level_balance(tables, link, last, level, tail_level, q, inner):
+    """Head left over in the last metre before a level beyond the tail, and its derivatives as in `reach_balance`.
+
+    Water that leaves loses its velocity head beyond; water that comes in takes its own from the level there.
+    """
+    site = tables.channel.nodes[last]
+    section, beyond = tables.channel.shapes[site.section], tail_level - site.bed_level
+    k_beyond = conveyance(section, site.roughness, beyond)
+    if level >= tail_level:
+        k, dk, _ = link_conveyance(inner.conveyance, k_beyond, inner.conveyance_slope, 0.0, level - site.bed_level, beyond)
+    else:
+        k, _, dk = link_conveyance(k_beyond, inner.conveyance, 0.0, inner.conveyance_slope, beyond, level - site.bed_level)
+    if k < LEAST_CONVEYANCE:
+        k, dk = LEAST_CONVEYANCE, 0.0
+    loss = link.length / (k * k)
+    by_level = 1.0 + q * abs(q) * 2.0 * loss / k * dk
+    if q < 0.0:
+        entry = inner.inverse_area / (2.0 * GRAVITY)
+        loss += entry
+        by_level -= q * abs(q) * inner.inverse_area_slope / (2.0 * GRAVITY)
+    drive = level - tail_level
+    size = max(abs(q), math.sqrt(abs(drive) / loss))
+    return drive - q * abs(q) * loss, by_level, -2.0 * size * loss, 0.0
+
+
+@inner_kernel
+def boundary_balance(tables, index, nodes, q, forcing, work):
     """Residual of a link that is not a reach, and its derivatives to the level above, the discharge and the level below."""
     link = tables.links[index]
     if link.kind == INFLOW:
@@ -90,9 +115,7 @@ def boundary_balance(tables, index, nodes, q, forcing, last_conveyance):
     last = nodes.size - 1
     level = nodes[last].level
     if link.kind == TAIL_LEVEL:
-        k = max(last_conveyance, LEAST_TAIL_CONVEYANCE)
-        loss = link.length / (k * k)
-        return level - forcing[FORCING_TAIL].now - q * abs(q) * loss, 1.0, -2.0 * abs(q) * loss, 0.0
+        return tail_level_balance(tables, link, last, level, forcing[FORCING_TAIL].now, q, work.nodes[last])
     passed = tail_discharge(tables, link.kind, last, level)
     nudged = tail_discharge(tables, link.kind, last, level + LEVEL_NUDGE)
     return q - passed, -(nudged - passed) / LEVEL_NUDGE, 1.0, 0.0

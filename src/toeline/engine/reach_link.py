@@ -4,7 +4,7 @@ import math
 
 from toeline.constants import GRAVITY
 from toeline.hydraulics.cross_section import ALPHA, geometry
-from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH, WET_DEPTH, link_conveyance
+from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH, LEAST_CONVEYANCE, WET_DEPTH, link_conveyance
 from toeline.hydraulics.kernel import inner_kernel
 
 CONVECTIVE_TIME = 20.0
@@ -12,10 +12,6 @@ CONVECTIVE_TIME = 20.0
 
 CALM_FROUDE, CRITICAL_FROUDE = 0.9, 1.0
 """Froude numbers between which the convective head fades out (choice)."""
-
-LEAST_CONVEYANCE = 1e-9
-"""Floor of a link's conveyance [m³/s]: a dry link stays solvable and passes nothing."""
-
 
 @inner_kernel
 def node_geometry(site, cell, section, level, work):

@@ -84,7 +84,9 @@ def zeros(count: int, kind: np.dtype) -> np.recarray:
 
 def new_state(nodes: int, offtakes: int) -> State:
     """A state of zeros."""
-    return State(zeros(nodes, STORED), zeros(nodes + 1, CARRIED), np.zeros(offtakes))
+    links = zeros(nodes + 1, CARRIED)
+    links.mean_area = links.convective_share = 1.0
+    return State(zeros(nodes, STORED), links, np.zeros(offtakes))
 
 
 def new_work(nodes: int) -> Work:

@@ -93,12 +93,13 @@ def reach_row(tables, before, after, work, index, seconds, head_factor, inertial
 
 @inner_kernel
 def stage_inertia(tables, before, work, index, q, seconds):
-    """`inertia_head` of a reach link at the present areas."""
+    """`inertia_head` of a reach link at the present areas; it fades with the convective head (local partial inertia, Fread et
+    al. 1996) and where a link dries."""
     site_up, site_down = tables.channel.nodes[index - 1], tables.channel.nodes[index]
-    share = inertia_share(
+    earlier = before.links[index]
+    share = earlier.convective_share * inertia_share(
         before.nodes[index - 1].level - site_up.bed_level, before.nodes[index].level - site_down.bed_level
     )
-    earlier = before.links[index]
     flux = earlier.discharge / (earlier.mean_area * earlier.mean_area)
     mean = 0.5 * (work.nodes[index - 1].area + work.nodes[index].area)
     return inertia_head(tables.links[index].length, share, mean, q, flux, work.links[index].momentum_base, seconds)
@@ -109,14 +110,13 @@ def assemble(tables, before, after, work, seconds, head_factor, inertial, forcin
     """Fill the Newton matrix and right side at the present levels and discharges, and sweep it forward as it is made."""
     geometry_pass(tables, after.nodes, work)
     count = after.nodes.size
-    last_conveyance = work.nodes[count - 1].conveyance
     pivot_before = upper_before = x_before = 0.0
     for index in range(count + 1):
         q = after.links[index].discharge
         if tables.links[index].kind == REACH:
             left, by_up, by_q, by_down = reach_row(tables, before, after, work, index, seconds, head_factor, inertial)
         else:
-            left, by_up, by_q, by_down = boundary_balance(tables, index, after.nodes, q, forcing, last_conveyance)
+            left, by_up, by_q, by_down = boundary_balance(tables, index, after.nodes, q, forcing, work)
         row, factor = work.rows[2 * index], by_up * pivot_before
         row.lower, row.upper = by_up, by_down
         row.pivot = 1.0 / (by_q - factor * upper_before)
@@ -303,13 +303,12 @@ def begin_leg(tables, state, work, forcing):
     for k in range(state.delivery.size):
         largest = max(largest, abs(state.delivery[k] - work.rows[k].x))
     geometry_pass(tables, state.nodes, work)
-    last_conveyance = work.nodes[state.nodes.size - 1].conveyance
     for index in range(state.links.size):
         kind, link = tables.links[index].kind, state.links[index]
         if kind == REACH:
             restart_reach(link, work.nodes[index - 1], work.nodes[index])
         elif kind != TAIL_LEVEL:
-            left = boundary_balance(tables, index, state.nodes, link.discharge, forcing, last_conveyance)[0]
+            left = boundary_balance(tables, index, state.nodes, link.discharge, forcing, work)[0]
             link.discharge -= left
             largest = max(largest, abs(left))
     for k in range(state.nodes.size):

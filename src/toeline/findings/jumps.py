@@ -11,7 +11,12 @@ import xarray as xr
 from toeline.findings.series import Extreme, greatest, hours_in_each, hours_of_rows, least
 
 _NEEDED = (
-    "gate_flow_state", "jump_state", "jump_kind", "protection_margin", "tailwater_margin", "jump_end_distance",
+    "gate_flow_state",
+    "jump_state",
+    "jump_kind",
+    "protection_margin",
+    "tailwater_margin",
+    "jump_end_distance",
 )
 
 

@@ -21,6 +21,9 @@ DEPTH_STEP = 0.04
 DRY_DEPTH, WET_DEPTH = 0.02, 0.10
 """Depths [m] between which a drying node hands its say in the conveyance of a link to its upstream neighbour (choice)."""
 
+LEAST_CONVEYANCE = 1e-9
+"""Floor of a link's conveyance [m³/s]: a dry link stays solvable and passes nothing."""
+
 REACHED_END, TURNED_CRITICAL, FULL = 0, 1, 2
 
 

@@ -33,7 +33,7 @@ CHUNK_CACHE = 2**20
 
 COPY_EVERY = 1.0
 COPY_SHARE = 0.1
-"""A copy safe from a kill is taken every second of wall time, or so that copying takes no more than this share of it."""
+"""A copy safe from a kill is taken every second of wall time, or less often: copying has no more than a tenth of it."""
 
 
 class NetcdfSink:
@@ -71,14 +71,10 @@ class NetcdfSink:
         self._waiting = {dimension: self._buffer(dimension) for dimension in GROWING_DIMENSIONS}
         self._written = dict.fromkeys(GROWING_DIMENSIONS, 0)
         self._is_closed = False
+        self.written_path: Path = self._run_file.partial_path
+        """Where the run can be read: PATH once it is complete and closed, PATH.partial until then."""
         with self._giving_up_on_failure():
             self._save_copy()
-
-    @property
-    def written_path(self) -> Path:
-        """Where the run is: PATH once it is complete and closed, else PATH.partial."""
-        partial_path = self._run_file.partial_path
-        return partial_path if partial_path.exists() else self._run_file.path
 
     def write(self, block: Mapping[str, np.ndarray]) -> None:
         """Take the rows of a block, in any number.
@@ -103,6 +99,7 @@ class NetcdfSink:
         self._is_closed = True
         if outcome == COMPLETE:
             self._run_file.finish()
+            self.written_path = self._run_file.path
         else:
             self._run_file.keep_unfinished()
 

@@ -12,7 +12,14 @@ CLOCK = "seconds since the start of the period"
 """Unit of all times in the registry; the file names the instant itself, in UTC."""
 
 FLOW_STATES = (
-    "closed", "free", "near_modular_limit", "drowned", "clear_of_water", "clear_and_drowned", "overtopped", "reverse",
+    "closed",
+    "free",
+    "near_modular_limit",
+    "drowned",
+    "clear_of_water",
+    "clear_and_drowned",
+    "overtopped",
+    "reverse",
 )
 DISCHARGE_QUALITIES = ("good", "near_modular_limit", "lip_near_surface", "very_drowned", "reverse")
 JUMP_STATES = ("none", "drowned", "on_apron", "on_protection", "beyond_protection", "swept_out_of_pool")
@@ -59,8 +66,14 @@ _LEVEL = "above the datum of the canal file, whose altitude is not known here"
 _JUMP = ("jump_state", "jump_length_quality")
 
 
-def _flag(name: str, dimensions: tuple[str, ...], meaning: str, flags: tuple[str, ...], comment: str = "",
-          standard_name: str | None = None) -> Variable:
+def _flag(
+    name: str,
+    dimensions: tuple[str, ...],
+    meaning: str,
+    flags: tuple[str, ...],
+    comment: str = "",
+    standard_name: str | None = None,
+) -> Variable:
     return Variable(name, dimensions, None, meaning, comment, standard_name, dtype="i1", flags=flags)
 
 
@@ -72,6 +85,7 @@ def _state(name: str, dimensions: tuple[str, ...], unit: str, meaning: str, comm
     return Variable(name, dimensions, unit, meaning, comment, dtype="f8", is_state=True)
 
 
+# fmt: off
 _CLOCKS = (
     Variable("time", ("time",), CLOCK, "time of the output step", standard_name="time", dtype="f8"),
     Variable("profile_time", ("profile_time",), CLOCK, "time of the long profile", standard_name="time", dtype="f8"),
@@ -235,11 +249,24 @@ _END_STATE = (
     _state("end_next_step", (), "s", "length of the step that would have come next"),
     _state("end_time", (), CLOCK, "time of the end state"),
 )
+# fmt: on
 
 VARIABLES = {
     variable.name: variable
-    for group in (_CLOCKS, _GATE_SERIES, _POOL_SERIES, _OFFTAKE_SERIES, _CANAL_SERIES, _PROFILES, _ORDERS, _GATE_FACTS,
-                  _POOL_FACTS, _OFFTAKE_FACTS, _NODE_FACTS, _END_STATE)
+    for group in (
+        _CLOCKS,
+        _GATE_SERIES,
+        _POOL_SERIES,
+        _OFFTAKE_SERIES,
+        _CANAL_SERIES,
+        _PROFILES,
+        _ORDERS,
+        _GATE_FACTS,
+        _POOL_FACTS,
+        _OFFTAKE_FACTS,
+        _NODE_FACTS,
+        _END_STATE,
+    )
     for variable in group
 }
 """The registry: every variable by its name, in the order in which files and the reference page list them."""
