@@ -83,7 +83,9 @@ def test_supercritical_depth_has_the_energy(section, discharge, surplus):
     critical, _ = critical_depth(section, discharge)
     energy = (1.0 + surplus) * specific_energy(section, discharge, critical)
     depth, flag = supercritical_depth(section, discharge, energy)
-    by_bisection = brentq(lambda y: specific_energy(section, discharge, y) - energy, 1e-4 * critical, critical, xtol=1e-14)
+    by_bisection = brentq(
+        lambda y: specific_energy(section, discharge, y) - energy, 1e-4 * critical, critical, xtol=1e-14
+    )
     assert flag == status.OK
     assert specific_energy(section, discharge, depth) == pytest.approx(energy, rel=1e-10)
     assert depth == pytest.approx(by_bisection, rel=1e-6)

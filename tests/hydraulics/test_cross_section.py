@@ -152,7 +152,9 @@ def test_vertical_walls_above_the_top(make):
 
 
 def test_circle_near_the_crown():
-    """The slot joins on without a step, 0.1 mm below the crown of a circle of 1 m, and keeps the surface 2 cm wide."""
+    """The slot joins on without a step, 0.1 mm below the crown of a circle of 1 m, and keeps the surface 2 cm
+    wide.
+    """
     section = circle(1.0)
     top = section[1]
     assert 0.9998 < top < 1.0

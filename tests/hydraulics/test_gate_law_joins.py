@@ -1,5 +1,7 @@
 """The gate law has no step where one flow passes into another, so that a stepping solver can follow it."""
 
+from itertools import pairwise
+
 import pytest
 from scipy.optimize import brentq
 
@@ -68,7 +70,11 @@ def test_last_centimetre_of_head(case, opening):
 @pytest.mark.parametrize("opening", OPENINGS)
 def test_equal_levels(case, opening):
     assert _step(case, HEADWATER, opening=opening) < STEP_ALLOWED
-    assert _discharge(case, HEADWATER - NUDGE, opening=opening) >= 0.0 >= _discharge(case, HEADWATER + NUDGE, opening=opening)
+    assert (
+        _discharge(case, HEADWATER - NUDGE, opening=opening)
+        >= 0.0
+        >= _discharge(case, HEADWATER + NUDGE, opening=opening)
+    )
 
 
 @pytest.mark.parametrize("opening", OPENINGS)
@@ -124,10 +130,12 @@ def test_leaf_begins_to_overtop(case):
 
 
 def test_clear_gate_drowns(case):
-    """A gate clear of water in a pool with room: from critical flow over the sill to drowned, no step in the tailwater."""
+    """A gate clear of water in a pool with room: from critical flow over the sill to drowned, no step in the
+    tailwater.
+    """
     gate, _, downstream = case
     wide = (gate, rectangle(12.0), downstream)
     tails = [1.0 + 0.002 * k for k in range(495)]
     discharges = [_discharge(wide, tail, opening=2.6) for tail in tails]
-    assert all(b <= a * (1.0 + 1e-9) for a, b in zip(discharges, discharges[1:], strict=False))
-    assert max(a - b for a, b in zip(discharges, discharges[1:], strict=False)) < 0.06 * discharges[0]
+    assert all(b <= a * (1.0 + 1e-9) for a, b in pairwise(discharges))
+    assert max(a - b for a, b in pairwise(discharges)) < 0.06 * discharges[0]

@@ -43,7 +43,9 @@ def test_momentum_closes_and_energy_falls(section, toe, froude):
     sequent, flag = sequent_depth(section, discharge, toe)
     assert flag == status.OK
     assert toe < critical_depth(section, discharge)[0] < sequent
-    assert specific_force(section, discharge, sequent) == pytest.approx(specific_force(section, discharge, toe), rel=1e-9)
+    assert specific_force(section, discharge, sequent) == pytest.approx(
+        specific_force(section, discharge, toe), rel=1e-9
+    )
     assert energy_loss(section, discharge, toe, sequent) > 0.0
 
 
@@ -107,7 +109,9 @@ def test_uneven_flow_keeps_its_own_momentum():
     discharge = _discharge(section, 0.2, 3.0)
     sequent, flag = sequent_depth(section, discharge, 0.2)
     assert flag == status.OK
-    assert specific_force(section, discharge, sequent) == pytest.approx(specific_force(section, discharge, 0.2), rel=1e-9)
+    assert specific_force(section, discharge, sequent) == pytest.approx(
+        specific_force(section, discharge, 0.2), rel=1e-9
+    )
 
 
 def test_length_by_section():

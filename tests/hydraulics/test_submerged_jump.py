@@ -8,8 +8,8 @@ from hypothesis import strategies as st
 
 from toeline.constants import GRAVITY
 from toeline.hydraulics import status
-from toeline.hydraulics.cross_section import rectangle, static_moment, trapezoid
 from toeline.hydraulics.critical_flow import specific_force
+from toeline.hydraulics.cross_section import rectangle, static_moment, trapezoid
 from toeline.hydraulics.hydraulic_jump import subcritical_depth_of_force
 from toeline.hydraulics.submerged_jump import jet_force, roller_depth, roller_length
 
@@ -43,7 +43,9 @@ def test_dead_water_beside_a_narrow_jet():
     """Its pressure acts over the whole floor, the jet's momentum over its own width alone."""
     narrow, wide = rectangle(3.0), rectangle(5.0)
     added = static_moment(wide, 0.8) - static_moment(narrow, 0.8)
-    assert jet_force(wide, 6.0, 3.0, 0.3, 0.8) - jet_force(narrow, 6.0, 3.0, 0.3, 0.8) == pytest.approx(added, rel=1e-12)
+    assert jet_force(wide, 6.0, 3.0, 0.3, 0.8) - jet_force(narrow, 6.0, 3.0, 0.3, 0.8) == pytest.approx(
+        added, rel=1e-12
+    )
 
 
 def test_roller_length_ends_at_the_free_jump():

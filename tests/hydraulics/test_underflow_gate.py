@@ -40,7 +40,12 @@ STEPPED = UnderflowGate(WIDTH, 0.0, -0.5, -0.3)
 RADIAL = UnderflowGate(WIDTH, 0.0, 0.0, 0.0, radius=3.0, pinion_height=2.4)
 CALIBRATED = UnderflowGate(WIDTH, 0.0, 0.0, 0.0, contraction=0.65, discharge_factor=0.93)
 GATES = {"plain": PLAIN, "stepped": STEPPED, "radial": RADIAL, "calibrated": CALIBRATED}
-FLOORS = {"as wide": rectangle(WIDTH), "wider": rectangle(7.0), "trapezoid": trapezoid(WIDTH, 1.5), "β": rectangle(WIDTH, beta=1.08)}
+FLOORS = {
+    "as wide": rectangle(WIDTH),
+    "wider": rectangle(7.0),
+    "trapezoid": trapezoid(WIDTH, 1.5),
+    "β": rectangle(WIDTH, beta=1.08),
+}
 
 
 def _energy_level(gate, headwater, discharge):
@@ -65,7 +70,9 @@ def test_free_flow_keeps_its_energy(gate, floor, opening):
     velocity = flow.discharge / (gate.discharge_factor * WIDTH * flow.jet_thickness)
     assert flow.state == FREE
     assert flow.discharge == flow.free_discharge
-    assert flow.jet_thickness + velocity**2 / (2.0 * GRAVITY) == pytest.approx(_energy_level(gate, 2.0, flow.discharge), rel=1e-5)
+    assert flow.jet_thickness + velocity**2 / (2.0 * GRAVITY) == pytest.approx(
+        _energy_level(gate, 2.0, flow.discharge), rel=1e-5
+    )
     assert flow.energy_head == pytest.approx(_energy_level(gate, 2.0, flow.discharge), rel=1e-9)
 
 
@@ -87,7 +94,9 @@ def test_gate_clear_of_water_passes_critical_flow(gate):
     flow = gate_flow(gate, POOL, FLOORS["as wide"], 1.0, gate.floor_level, 1.4)
     critical = 2.0 / 3.0 * flow.energy_head
     assert flow.state == CLEAR_OF_WATER
-    assert flow.discharge == pytest.approx(gate.discharge_factor * WIDTH * critical * math.sqrt(GRAVITY * critical), rel=2e-3)
+    assert flow.discharge == pytest.approx(
+        gate.discharge_factor * WIDTH * critical * math.sqrt(GRAVITY * critical), rel=2e-3
+    )
 
 
 @pytest.mark.parametrize("tail", [1.92, 1.96, 1.985])
@@ -198,13 +207,18 @@ def test_opening_at_the_ends_of_its_range():
     largest, passed = opening_for_discharge(PLAIN, POOL, floor, 2.0, 0.2, 1e3, 0.8)
     assert largest == pytest.approx(0.8, rel=1e-12)
     assert passed == pytest.approx(gate_discharge(PLAIN, POOL, floor, 2.0, 0.2, 0.8), rel=1e-12)
-    assert opening_for_discharge(PLAIN, POOL, floor, 2.0, 0.2, 0.0, 0.8) == (pytest.approx(0.0, abs=1e-12), pytest.approx(0.0, abs=1e-9))
+    assert opening_for_discharge(PLAIN, POOL, floor, 2.0, 0.2, 0.0, 0.8) == (
+        pytest.approx(0.0, abs=1e-12),
+        pytest.approx(0.0, abs=1e-9),
+    )
 
 
-@pytest.mark.parametrize("share", [0.98, 0.8, 0.6, 0.4])
-@pytest.mark.parametrize("tail", [0.2, 0.6, 0.95, 1.2, 1.6, 1.9])
-def test_gate_wider_than_the_floor_below(share, tail):
-    """The law has no sense there, and stays finite, and between nothing and free flow."""
-    for opening in (0.1, 0.5, 1.1):
-        flow = gate_flow(PLAIN, POOL, trapezoid(share * WIDTH, 0.5), 2.0, tail, opening)
-        assert 0.0 <= flow.discharge <= flow.free_discharge * (1.0 + 1e-9)
+@pytest.mark.parametrize("share", [0.95, 0.6, 0.36])
+@pytest.mark.parametrize("side_slope", [0.0, 0.5])
+def test_gate_wider_than_the_floor_below(share, side_slope):
+    """The law has no sense there; it stays finite, and between nothing and free flow."""
+    narrow = trapezoid(share * WIDTH, side_slope)
+    for opening in (0.2, 0.64):
+        for tail in (0.02 * k for k in range(100)):
+            flow = gate_flow(PLAIN, POOL, narrow, 1.43, min(tail, 1.42), opening)
+            assert 0.0 <= flow.discharge <= flow.free_discharge * (1.0 + 1e-9), (opening, tail)

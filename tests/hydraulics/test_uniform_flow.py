@@ -30,7 +30,9 @@ def section(request):
 @pytest.mark.parametrize("discharge", [1e-3, 0.1, 1.0, 8.0])
 def test_normal_depth_carries_the_discharge(section, discharge):
     depth, flag = normal_depth(section, ROUGHNESS, SLOPE, discharge)
-    by_bisection = brentq(lambda y: conveyance(section, ROUGHNESS, y) * math.sqrt(SLOPE) - discharge, 1e-6, 20.0, xtol=1e-14)
+    by_bisection = brentq(
+        lambda y: conveyance(section, ROUGHNESS, y) * math.sqrt(SLOPE) - discharge, 1e-6, 20.0, xtol=1e-14
+    )
     assert flag == status.OK
     assert depth == pytest.approx(by_bisection, rel=1e-9)
     assert friction_slope(section, ROUGHNESS, discharge, depth) == pytest.approx(SLOPE, rel=1e-9)

@@ -21,8 +21,8 @@ from toeline.hydraulics.jump_location import Jet, free_jump
 class Units:
     """A source's system of units: its gravity, and the k of its Manning formula V = (k/n)·R^(2/3)·√S.
 
-    The equations know a discharge through Q²/g and n²Q² alone. With `discharge` and `roughness` they therefore give the
-    lengths of the source, in its own unit, although they work with standard gravity.
+    The equations know a discharge through Q²/g and n²Q² alone. With `discharge` and `roughness` they therefore give
+    the lengths of the source, in its own unit, although they work with standard gravity.
     """
 
     def __init__(self, gravity: float, manning: float = 1.0):
@@ -66,14 +66,18 @@ class Profiles:
         return x[:count], y[:count], end
 
     def backwater(self, channel, depth, discharge):
-        """Depths of the subcritical profile above a depth at the lower end; NaN above the place where it turns critical."""
+        """Depths of the subcritical profile above a depth at the lower end; NaN above the place where it turns
+        critical.
+        """
         levels, no_loss = np.full(channel.nodes.size, np.nan), np.zeros(channel.nodes.size)
         level = channel.nodes.bed_level[-1] + depth
         subcritical_profile(channel, 0, channel.nodes.size - 1, level, discharge, no_loss, levels)
         return levels - channel.nodes.bed_level
 
     def jump(self, channel, tail_depths, depth, discharge, start=0.0):
-        """The free jump of a jet that fills the section from its start, under tail depths by node (or one for all)."""
+        """The free jump of a jet that fills the section from its start, under tail depths by node (or one for
+        all).
+        """
         section = channel.shapes[channel.nodes.section[0]]
         area, width = geometry(section, depth)[:2]
         froude = discharge / area * math.sqrt(width / (GRAVITY * area))

@@ -1,4 +1,6 @@
-"""Profiles that can be integrated in closed form: wide channels after Chézy, and a jet on a level floor after Manning."""
+"""Profiles that can be integrated in closed form: wide channels after Chézy, and a jet on a level floor after
+Manning.
+"""
 
 import math
 from itertools import pairwise
@@ -33,7 +35,15 @@ def wide_chezy_channel(depths, distances, slope, chezy):
 
 
 @pytest.fixture(
-    params=[(0.5, -0.087751), (0.9, 0.613848), (1.05, 0.895773), (1.1, 0.680589), (1.5, 0.254813), (2, 0.131788), (3, 0.056398)],
+    params=[
+        (0.5, -0.087751),
+        (0.9, 0.613848),
+        (1.05, 0.895773),
+        (1.1, 0.680589),
+        (1.5, 0.254813),
+        (2, 0.131788),
+        (3, 0.056398),
+    ],
     ids=lambda row: f"Y={row[0]}",
 )
 def bresse_table(request):
@@ -99,8 +109,9 @@ def test_bresse_supercritical(bresse_supercritical, profiles):
     ids=["first year", "second year", "third year"],
 )
 def examination_pools(request):
-    """q m²/s, critical slope after Chézy, depth behind the jump m at S₀ = 0.01; metres to 5 m depth: exact (recomputed) and by
-    the level-pool shortcut of the published solutions (open-channel examination), which is 3 to 4.5 % long.
+    """q m²/s, critical slope after Chézy, depth behind the jump m at S₀ = 0.01; metres to 5 m depth: exact
+    (recomputed) and by the level-pool shortcut of the published solutions (open-channel examination), which is 3 to
+    4.5 % long.
     """
     return request.param
 

@@ -9,8 +9,8 @@ from toeline.hydraulics.underflow_gate import UnderflowGate, contraction_coeffic
 
 @pytest.fixture(params=[0.1, 0.2, 0.3, 0.4, 0.5])
 def vertical_sharp_edge(request):
-    """a/E. Practice value 0.61 (Henderson 1966, quoted second-hand); bounds 0.598 to 0.611 for a/E up to 0.5 (Benjamin
-    1956, Fangmeier & Strelkoff 1968, the range quoted second-hand).
+    """a/E. Practice value 0.61 (Henderson 1966, quoted second-hand); bounds 0.598 to 0.611 for a/E up to 0.5
+    (Benjamin 1956, Fangmeier & Strelkoff 1968, the range quoted second-hand).
     """
     return request.param
 
@@ -23,12 +23,20 @@ def test_vertical_sharp_edge(vertical_sharp_edge):
 
 
 @pytest.fixture(
-    params=[(20, 0.851, 0.901), (30, 0.790, 0.844), (45, 0.715, 0.758), (60, 0.660, 0.683), (75, 0.625, 0.632), (90, 0.610, 0.616)],
+    params=[
+        (20, 0.851, 0.901),
+        (30, 0.790, 0.844),
+        (45, 0.715, 0.758),
+        (60, 0.660, 0.683),
+        (75, 0.625, 0.632),
+        (90, 0.610, 0.616),
+    ],
     ids=lambda row: f"{row[0]}°",
 )
 def toch_radial_gates(request):
-    """Lip angle, C_c after Toch 1955 (fit by Henderson 1966; from memory, ±5 %), and after Clemmens, Strelkoff & Replogle
-    2003 (cubic from memory, not sure). The two differ by 6 % at 20° to 45°: not to be held tighter than ±7 %.
+    """Lip angle, C_c after Toch 1955 (fit by Henderson 1966; from memory, ±5 %), and after Clemmens, Strelkoff &
+    Replogle 2003 (cubic from memory, not sure). The two differ by 6 % at 20° to 45°: not to be held tighter than ±7
+    %.
     """
     return request.param
 

@@ -70,7 +70,9 @@ def test_swamee_runs_lower(rows_clear_of_both_limits):
 
 @pytest.fixture(params=[(4, 8, 0.5427), (5, 12, 0.5662)], ids=["y3/a=4 y0/a=8", "y3/a=5 y0/a=12"])
 def table_next_to_the_limit(request):
-    """Two more values of the table, 0.4 and 0.9 % above the modular limit, where Toeline interpolates (its choice)."""
+    """Two more values of the table, 0.4 and 0.9 % above the modular limit, where Toeline interpolates (its
+    choice).
+    """
     return request.param
 
 
@@ -85,7 +87,9 @@ def test_table_next_to_the_limit(table_next_to_the_limit):
 @pytest.mark.parametrize("opening_by_depth", [0.05, 0.1, 0.2, 0.3])
 @pytest.mark.parametrize("tail_by_depth", [0.75, 0.85, 0.95])
 def test_closed_form_without_approach_velocity(opening_by_depth, tail_by_depth):
-    """C_d = C_c·√(t − √(t² + (y₃/y₀)² − 1)), t = 1 − 2·C_c·(a/y₀)·(1 − C_c·a/y₃). Derived, identical to Bollrich's χ·μ."""
+    """C_d = C_c·√(t − √(t² + (y₃/y₀)² − 1)), t = 1 − 2·C_c·(a/y₀)·(1 − C_c·a/y₃). Derived, identical to Bollrich's
+    χ·μ.
+    """
     depth, opening, tail = 2.0, 2.0 * opening_by_depth, 2.0 * tail_by_depth
     jet = 0.61 * opening
     t = 1.0 - 2.0 * jet / depth * (1.0 - jet / tail)
@@ -98,8 +102,8 @@ def test_closed_form_without_approach_velocity(opening_by_depth, tail_by_depth):
 @pytest.fixture
 def textbook_drowned_gate(units):
     """y₀ = 3 m, y₃ = 1.5 m, a = 0.25 m, b = 6 m. Inputs published (textbook companion files, ch. 13, example 13.8).
-    Read off Henry's chart C_d = 0.47, Q = 5.41 m³/s (published; ±7 % for a reading from a chart). Energy and momentum:
-    Q = 5.597 m³/s, depth over the jet 1.0977 m, limit 1.2456 m (derived).
+    Read off Henry's chart C_d = 0.47, Q = 5.41 m³/s (published; ±7 % for a reading from a chart). Energy and
+    momentum: Q = 5.597 m³/s, depth over the jet 1.0977 m, limit 1.2456 m (derived).
     """
     section = rectangle(6.0)
     return section, gate_flow(UnderflowGate(6.0, 0.0, 0.0, 0.0), section, section, 3.0, 1.5, 0.25), units(9.81)
@@ -114,4 +118,6 @@ def test_textbook_drowned_gate(textbook_drowned_gate):
     assert _coefficient(flow.discharge, 3.0, 0.25, 6.0) == pytest.approx(0.4864, abs=6e-5)
     assert flow.roller_depth == pytest.approx(1.0977, abs=6e-5)
     gate = UnderflowGate(6.0, 0.0, 0.0, 0.0)
-    assert modular_limit_depth(gate, section, flow.jet_thickness, flow.free_discharge) == pytest.approx(1.2456, abs=6e-5)
+    assert modular_limit_depth(gate, section, flow.jet_thickness, flow.free_discharge) == pytest.approx(
+        1.2456, abs=6e-5
+    )

@@ -1,7 +1,9 @@
-"""One gate from its law to the place of the jump: wide rectangle, y₀ = 3.00 m, a = 0.50 m, C_c = 0.61, level apron, n = 0.015.
+"""One gate from its law to the place of the jump: wide rectangle, y₀ = 3.00 m, a = 0.50 m, C_c = 0.61, level apron,
+n = 0.015.
 
-Derived (g = 9.81): free q = 2.229384 m²/s, jet 0.3050 m, Fr₁ = 4.22572, modular limit 1.67657 m, y_c = 0.79720 m. The row
-of the source at a tailwater of 1.70 m is left out: it lies 1.4 % above the limit, where Toeline interpolates.
+Derived (g = 9.81): free q = 2.229384 m²/s, jet 0.3050 m, Fr₁ = 4.22572, modular limit 1.67657 m, y_c = 0.79720 m.
+The row of the source at a tailwater of 1.70 m is left out: it lies 1.4 % above the limit, where Toeline
+interpolates.
 """
 
 import math
@@ -72,7 +74,9 @@ def test_drowned_tailwaters(drowned_tailwaters, units):
     ids=lambda row: f"tailwater {row[0]}",
 )
 def free_tailwaters(request):
-    """Tailwater m, toe depth m, Fr at the toe, toe from the contracted section m, length after Hager 1992 m (from memory)."""
+    """Tailwater m, toe depth m, Fr at the toe, toe from the contracted section m, length after Hager 1992 m (from
+    memory).
+    """
     return request.param
 
 

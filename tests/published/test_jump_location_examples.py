@@ -16,9 +16,9 @@ WIDE = 1e7
 
 @pytest.fixture
 def maurer_example_5_10(units):
-    """b = 3 m, Q = 8 m³/s, n = 0.013, slope 0.018 then 0.0015. Published (Maurer): y_n1 0.498, y_n2 1.180, y_c 0.898 m; sequent
-    depths 1.476 and 0.666 m; with two steps the toe stands 44.6 m below the break. Converged: 45.435 m, Fr 1.568 at the
-    toe (recomputed).
+    """b = 3 m, Q = 8 m³/s, n = 0.013, slope 0.018 then 0.0015. Published (Maurer): y_n1 0.498, y_n2 1.180, y_c
+    0.898 m; sequent depths 1.476 and 0.666 m; with two steps the toe stands 44.6 m below the break. Converged:
+    45.435 m, Fr 1.568 at the toe (recomputed).
     """
     metric = units(9.81)
     return rectangle(3.0), metric.discharge(8.0), metric.roughness(0.013)
@@ -49,8 +49,9 @@ def test_jump_of_maurer_example_5_10(maurer_example_5_10, prismatic, profiles):
 
 @pytest.fixture
 def course_jet_after_jaeger(units):
-    """q = 1 m³/s on a width of 1 m, walls counted, n = 0.01, level, 0.10 m at the gate. Published (open course CE4353, after
-    Jaeger 1957; 31 steps, friction at mid-depth, g = 9.8: 1 % long at first). Exact: 80.124 m to 0.3506 m, 92.845 m to 0.47 m (recomputed).
+    """q = 1 m³/s on a width of 1 m, walls counted, n = 0.01, level, 0.10 m at the gate. Published (open course
+    CE4353, after Jaeger 1957; 31 steps, friction at mid-depth, g = 9.8: 1 % long at first). Exact: 80.124 m to
+    0.3506 m, 92.845 m to 0.47 m (recomputed).
     """
     in_print = {
         0.1119: 4.437, 0.1597: 22.202, 0.2074: 39.355, 0.2552: 55.182, 0.3029: 69.046, 0.3506: 80.326, 0.3984: 88.394,
@@ -81,9 +82,9 @@ def test_jet_leaves_a_short_floor(course_jet_after_jaeger, prismatic, profiles):
 
 @pytest.fixture
 def jet_below_a_small_gate(units):
-    """b = 1.545 m, S₀ = 0.00322, n = 0.015, Q = 5 m³/s, gate 0.32 m × C_c 0.67, tailwater 1.39 m. Published (unsigned work
-    sheet): y_c 1.02205, Fr₂ 0.6305, y₁ 0.72597 m; at 0.2144 m E = 11.8271 m, S_f = 0.5538. Exact: 19.478 m to
-    0.3144 m, 89.354 m to y₁ (recomputed; the sheet's single first step gives 16.905 m).
+    """b = 1.545 m, S₀ = 0.00322, n = 0.015, Q = 5 m³/s, gate 0.32 m × C_c 0.67, tailwater 1.39 m. Published
+    (unsigned work sheet): y_c 1.02205, Fr₂ 0.6305, y₁ 0.72597 m; at 0.2144 m E = 11.8271 m, S_f = 0.5538. Exact:
+    19.478 m to 0.3144 m, 89.354 m to y₁ (recomputed; the sheet's single first step gives 16.905 m).
     """
     metric = units(9.81)
     return rectangle(1.545), metric.discharge(5.0), metric.roughness(0.015), 0.32 * 0.67
@@ -110,8 +111,8 @@ def test_jump_below_a_small_gate(jet_below_a_small_gate, prismatic, profiles):
 
 @pytest.fixture
 def wide_level_apron(units):
-    """q = 2 m²/s, jet 0.15 m, n = 0.015, level, tailwater 1.80 m. Question published without an answer; toe depth 0.22386 m,
-    toe 18.782 m away (derived, closed form).
+    """q = 2 m²/s, jet 0.15 m, n = 0.015, level, tailwater 1.80 m. Question published without an answer; toe depth
+    0.22386 m, toe 18.782 m away (derived, closed form).
     """
     metric = units(9.81)
     return rectangle(WIDE), WIDE * metric.discharge(2.0), metric.roughness(0.015)
@@ -124,10 +125,13 @@ def test_wide_level_apron(wide_level_apron, prismatic, profiles):
     assert jump.chainage == pytest.approx(18.782, rel=0.005)
 
 
-@pytest.fixture(params=[(0, 0.0), (1, 0.7), (5, 3.2), (10, 6.7), (15, 11), (20, 15), (30, 25)], ids=lambda row: f"{row[0]} cm short")
+@pytest.fixture(
+    params=[(0, 0.0), (1, 0.7), (5, 3.2), (10, 6.7), (15, 11), (20, 15), (30, 25)], ids=lambda row: f"{row[0]} cm short"
+)
 def toe_by_shortfall(request):
-    """Centimetres of tailwater that fail to the sequent depth, and metres from the contracted section to the toe: h₁ = 2.0 m,
-    a = 0.30 m, b = 4 m, level concrete floor, n = 0.015. Derived, printed to the digit that a planner can use.
+    """Centimetres of tailwater that fail to the sequent depth, and metres from the contracted section to the toe:
+    h₁ = 2.0 m, a = 0.30 m, b = 4 m, level concrete floor, n = 0.015. Derived, printed to the digit that a planner
+    can use.
     """
     return request.param
 

@@ -10,8 +10,9 @@ from toeline.hydraulics.hydraulic_jump import energy_loss, sequent_depth
 
 @pytest.fixture
 def rectangle_of_ten_metres(units):
-    """Rectangle b = 10 m, y₁ = 0.8 m, V₁ = 7 m/s. Inputs published (textbook companion files, ch. 13, example 13.7);
-    printed results from memory (taken to be Çengel & Cimbala). The book rounds y₂ first: its loss and power are 1 % low.
+    """Rectangle b = 10 m, y₁ = 0.8 m, V₁ = 7 m/s. Inputs published (textbook companion files, ch. 13, example
+    13.7); printed results from memory (taken to be Çengel & Cimbala). The book rounds y₂ first: its loss and power
+    are 1 % low.
     """
     metric = units(9.81)
     return rectangle(10.0), metric.discharge(10.0 * 0.8 * 7.0), 0.8
@@ -31,8 +32,9 @@ def test_rectangle_of_ten_metres(rectangle_of_ten_metres):
 
 @pytest.fixture
 def small_trapezoid(units):
-    """Trapezoid b = 0.5 m, z = 1, Q = 0.2 m³/s, y₁ = 0.1 m. Published (Maurer, open textbook, example 5.9, g = 9.8067);
-    the recomputed values differ by up to 0.06 %, the power by 0.12 % (it stands on a unit weight of 9.79 kN/m³).
+    """Trapezoid b = 0.5 m, z = 1, Q = 0.2 m³/s, y₁ = 0.1 m. Published (Maurer, open textbook, example 5.9, g =
+    9.8067); the recomputed values differ by up to 0.06 %, the power by 0.12 % (it stands on a unit weight of 9.79
+    kN/m³).
     """
     return trapezoid(0.5, 1.0), units(9.8067).discharge(0.2), 0.1
 

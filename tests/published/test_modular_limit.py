@@ -70,8 +70,8 @@ def test_state_on_both_sides_of_the_limit(limit_of_lin_and_of_swamee):
     ids=["sharp", "rounded"],
 )
 def limit_of_iso_13550(request):
-    """C_c; h₂/a by H₁/a from (C_c/2)·[√(1 + 16(H₁/(C_c·a) − 1)) − 1]. Published (ISO 13550, legible in part, re-derived),
-    evaluated with H₁ = h₁: the approach velocity is left out, as above a wide approach.
+    """C_c; h₂/a by H₁/a from (C_c/2)·[√(1 + 16(H₁/(C_c·a) − 1)) − 1]. Published (ISO 13550, legible in part,
+    re-derived), evaluated with H₁ = h₁: the approach velocity is left out, as above a wide approach.
     """
     return request.param
 

@@ -27,7 +27,8 @@ SECTION = rectangle(WIDTH)
 )
 def submerged_jump_table(request):
     """Fr₁, S, y_t/y₁, y/y₁, y/y_t, L/y₂, ΔE/E₁. Depths by momentum (derived; Rajaratnam 1967), recomputed; length
-    y₂·(6.1 + 4.9 S) from memory (Govinda Rao & Rajaratnam 1963). The share of energy lost first rises, then falls with S.
+    y₂·(6.1 + 4.9 S) from memory (Govinda Rao & Rajaratnam 1963). The share of energy lost first rises, then falls
+    with S.
     """
     return request.param
 
@@ -51,7 +52,8 @@ def test_submerged_jump_table(submerged_jump_table):
 @pytest.fixture
 def drowned_gate_as_a_submerged_jump(units):
     """The drowned gate of textbook companion files, example 13.8, by energy and momentum: q = 0.93288 m²/s, jet
-    0.1525 m, Fr₁ 5.0013, sequent 1.0051 m, S 0.4924, depth over the jet 1.09765 m, length 8.556 m. Derived, two routes.
+    0.1525 m, Fr₁ 5.0013, sequent 1.0051 m, S 0.4924, depth over the jet 1.09765 m, length 8.556 m. Derived, two
+    routes.
     """
     return units(9.81).discharge(0.93288), 0.1525, 1.5
 

@@ -9,8 +9,8 @@ from toeline.hydraulics.surge import UPSTREAM, surge_height, wave_speeds
 
 @pytest.fixture
 def rejection_surge(units):
-    """b = 4 m, y₁ = 3 m, Q cut from 25 to 12 m³/s: y₂ = 3.75 m, c = 4.35 m/s. Published (worked example of an open course),
-    reproduced. The small-wave estimate ΔQ/(B·(c₀ − V₁)) gives 0.97 m (derived).
+    """b = 4 m, y₁ = 3 m, Q cut from 25 to 12 m³/s: y₂ = 3.75 m, c = 4.35 m/s. Published (worked example of an open
+    course), reproduced. The small-wave estimate ΔQ/(B·(c₀ − V₁)) gives 0.97 m (derived).
     """
     return rectangle(4.0), units(9.81), 25.0, 12.0, 3.0
 

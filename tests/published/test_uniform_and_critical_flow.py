@@ -9,8 +9,8 @@ from toeline.hydraulics.uniform_flow import friction_slope, kinematic_celerity, 
 
 @pytest.fixture
 def chow_example_10_1(units):
-    """b = 20 ft, z = 2, S₀ = 0.0016, n = 0.025, Q = 400 ft³/s, α = 1.10. From memory (Chow 1959, examples 10-1 and 10-2):
-    y_n = 3.36 ft, y_c = 2.22 ft; recomputed with k = 1.49, g = 32.2: 3.3560 and 2.2119 ft.
+    """b = 20 ft, z = 2, S₀ = 0.0016, n = 0.025, Q = 400 ft³/s, α = 1.10. From memory (Chow 1959, examples 10-1 and
+    10-2): y_n = 3.36 ft, y_c = 2.22 ft; recomputed with k = 1.49, g = 32.2: 3.3560 and 2.2119 ft.
     """
     return trapezoid(20.0, 2.0, alpha=1.10), units(32.2, 1.49)
 
@@ -41,7 +41,9 @@ def test_maurer_example_5_6(maurer_example_5_6):
 
 @pytest.fixture
 def maurer_example_5_1(units):
-    """b = 10 ft, z = 2, Q = 225 ft³/s, n = 0.016, S₀ = 0.0006: y_n = 3.406, y_c = 2.154 ft. Published (Maurer, k = 1.486)."""
+    """b = 10 ft, z = 2, Q = 225 ft³/s, n = 0.016, S₀ = 0.0006: y_n = 3.406, y_c = 2.154 ft. Published (Maurer, k =
+    1.486).
+    """
     return trapezoid(10.0, 2.0), units(32.2, 1.486)
 
 
@@ -54,8 +56,8 @@ def test_maurer_example_5_1(maurer_example_5_1):
 
 @pytest.fixture
 def maurer_example_5_3(units):
-    """b = 20 ft, z = 1, Q = 360 ft³/s, y = 3 ft: E = 3.42, least E = 3.03 ft. Published (Maurer). The slope printed beside
-    them is 3 % off by recomputation and not used.
+    """b = 20 ft, z = 1, Q = 360 ft³/s, y = 3 ft: E = 3.42, least E = 3.03 ft. Published (Maurer). The slope printed
+    beside them is 3 % off by recomputation and not used.
     """
     return trapezoid(20.0, 1.0), units(32.2).discharge(360.0)
 
@@ -68,8 +70,8 @@ def test_maurer_example_5_3(maurer_example_5_3):
 
 @pytest.fixture
 def koutitas_channel(units):
-    """b = 5 m, S₀ = 0.001, n = 0.02, Q = 55.4 m³/s. Inputs published (Koutitas 1983, after an open course); y_n = 4.9878 m
-    recomputed.
+    """b = 5 m, S₀ = 0.001, n = 0.02, Q = 55.4 m³/s. Inputs published (Koutitas 1983, after an open course); y_n =
+    4.9878 m recomputed.
     """
     return rectangle(5.0), units(9.8)
 

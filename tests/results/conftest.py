@@ -12,6 +12,8 @@ from toeline.results.variables import VARIABLES, growing
 
 START = datetime(2031, 5, 4, tzinfo=timezone(timedelta(hours=2)))
 MINUTE = 60_000
+OTHER_STATE = 9
+"""Length of the dimensions of the end state that no other variable has."""
 
 
 def attributes() -> dict[str, str]:
@@ -56,15 +58,12 @@ class InventedRun:
             "time": self.steps,
             "profile_time": self.profiles,
             "order": self.orders,
-            "state_node": self.nodes,
-            "state_link": self.nodes + 1,
             "state_gate": self.gates,
-            "state_pool": self.pools,
         }
 
     def values(self, name: str) -> np.ndarray:
         variable = VARIABLES[name]
-        shape = tuple(self.sizes()[dimension] for dimension in variable.dimensions)
+        shape = tuple(self.sizes().get(dimension, OTHER_STATE) for dimension in variable.dimensions)
         generator = np.random.default_rng([self.seed, *name.encode()])
         if name == "time":
             return np.arange(self.steps, dtype=np.int64) * MINUTE

@@ -5,6 +5,7 @@ from collections.abc import Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from toeline.cli.terminal import shown_path
 from toeline.errors import UsageError
 from toeline.results.run_file import RunFile
 
@@ -36,6 +37,6 @@ def refuse_outputs(outputs: Sequence[Path], scenarios: Sequence["Scenario"], ove
             raise UsageError(f"{output} is an input of this run and would be lost: name another file with -o.")
         if not output.parent.is_dir():
             raise UsageError(f"there is no directory {output.parent} to write {output.name} in.")
-        for standing in (output, file.partial_path):
+        for standing in (output, shown_path(file.partial_path)):
             if standing.exists() and not overwrite:
                 raise UsageError(f"{standing} exists: name another file with -o, or replace it with --overwrite.")

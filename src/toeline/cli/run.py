@@ -8,7 +8,7 @@ from click.exceptions import Exit
 
 from toeline.cli.exit_status import ExitStatus
 from toeline.cli.input_files import INPUT_FILE, load_plans
-from toeline.cli.terminal import note, page_width, progress_bar, show
+from toeline.cli.terminal import note, page_width, progress_bar, show, shown_path
 from toeline.errors import RunError
 
 if TYPE_CHECKING:
@@ -85,14 +85,14 @@ def run_plan(scenario: "Scenario", output: Path, overwrite: bool, strict: bool) 
         return ExitStatus.RUN_FAILED
     with dataset:
         show(run_summary(dataset, scenario.display, width=page_width()))
-        show(f"\nResults: {output}")
+        show(f"\nResults: {output}\n")
         return ExitStatus.LIMIT_PASSED if strict and incidents(dataset) else ExitStatus.DONE
 
 
 def what_is_left(output: Path) -> str:
     from toeline.results.run_file import RunFile
 
-    partial = RunFile(output, overwrite=False).partial_path
+    partial = shown_path(RunFile(output, overwrite=False).partial_path)
     if not partial.exists():
         return "Nothing was written."
     return f"What was done so far is in {partial}; see it with: toeline describe {partial}"

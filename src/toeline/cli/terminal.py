@@ -5,6 +5,7 @@ import shutil
 import sys
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
+from pathlib import Path
 
 import click
 
@@ -23,6 +24,11 @@ def show(page: str) -> None:
 def note(line: str) -> None:
     """Tell the user something that is not the result."""
     click.echo(line, err=True)
+
+
+def shown_path(path: Path) -> Path:
+    """A path as people type it: from the working directory where it lies inside."""
+    return path.relative_to(Path.cwd()) if path.is_relative_to(Path.cwd()) else path
 
 
 def page_width() -> int:

@@ -13,7 +13,7 @@ LEG_DONE, BLOCK_FULL, STEP_TOO_SMALL = range(3)
 SHORTEST_STEP = 1e-3
 """Step [s] below which a run is given up."""
 RESTART_STEP = 2.0
-"""First step [s] after a jump of an opening, an inflow or a delivery (choice)."""
+"""First step [s] after a jump or a kink of an opening, an inflow or a delivery (choice)."""
 JUMP = 1e-4
 """Change of a discharge [m³/s] at a stop that counts as a jump (choice)."""
 GROWTH = 3.0
@@ -41,14 +41,14 @@ PACE = np.dtype(
 
 
 @kernel
-def advance(tables, state, middle, after, work, totals, forcing, watch, rows, paces, leg, inertial):
+def advance(tables, state, middle, after, work, totals, forcing, watch, rows, paces, leg, has_kink, inertial):
     """Advance the state through a leg of `leg` seconds; call again with the same leg after BLOCK_FULL.
 
-    Output due at or after the start and before the end of the leg goes to `rows`. After a jump of the forcing the steps
-    start small. Returns LEG_DONE, BLOCK_FULL or STEP_TOO_SMALL.
+    Output due at or after the start and before the end of the leg goes to `rows`. After a jump of the forcing, or where
+    `has_kink` says that its rates are not those before, the steps start small. Returns LEG_DONE, BLOCK_FULL or STEP_TOO_SMALL.
     """
     pace = paces[0]
-    if pace.done == 0.0 and begin_leg(tables, state, work, forcing) > JUMP:
+    if pace.done == 0.0 and (begin_leg(tables, state, work, forcing) > JUMP or has_kink):
         pace.next_step = min(pace.next_step, RESTART_STEP)
     while pace.done < leg:
         if not has_room(rows, pace):

@@ -12,6 +12,9 @@ CONVECTIVE_TIME = 20.0
 
 CALM_FROUDE, CRITICAL_FROUDE = 0.9, 1.0
 """Froude numbers between which the convective head fades out (choice)."""
+DRY_HEAD = 1e-4
+"""Head [m] below which the discharge of a link with a dry end falls linearly to zero (choice)."""
+
 
 @inner_kernel
 def node_geometry(site, cell, section, level, work):
@@ -58,13 +61,14 @@ def reach_balance(link, transition_loss, up, down, level_up, level_down, depth_u
         )
     if k < LEAST_CONVEYANCE:
         k, dk_up, dk_down = LEAST_CONVEYANCE, 0.0, 0.0
-    flux = q * abs(q)
     loss = link.length / (k * k)
     loss_up, loss_down = -2.0 * loss / k * dk_up, -2.0 * loss / k * dk_down
     if link.point_loss > 0.0 or transition_loss > 0.0:
         local, local_up, local_down = _local_losses(link.point_loss, transition_loss, up, down)
         loss, loss_up, loss_down = loss + local, loss_up + local_up, loss_down + local_down
-    half = head_share * q / (2.0 * GRAVITY)
+    if min(depth_up, depth_down) < DRY_DEPTH:
+        return _dry_balance(level_up - level_down + head_base, loss, loss_up, loss_down, q)
+    flux, half = q * abs(q), head_share * q / (2.0 * GRAVITY)
     difference = up.inverse_area - down.inverse_area
     drive = level_up - level_down + head_base + half * q * difference
     size = max(abs(q), math.sqrt(abs(drive) / loss))
@@ -72,6 +76,19 @@ def reach_balance(link, transition_loss, up, down, level_up, level_down, depth_u
     by_down = -1.0 - half * q * down.inverse_area_slope - flux * loss_down
     by_discharge = 2.0 * half * difference - 2.0 * size * loss
     return drive - flux * loss, by_up, by_discharge, by_down
+
+
+@inner_kernel
+def _dry_balance(drive, loss, loss_up, loss_down, q):
+    """The balance of a link with a dry end, solved for its discharge: q less drive/√(loss·(|drive| + 0.1 mm)).
+
+    With next to no storage at the dry end the levels do not hold Newton's method; the discharge must follow them at once.
+    """
+    size = abs(drive) + DRY_HEAD
+    balanced = drive / math.sqrt(loss * size)
+    by_drive = (0.5 * abs(drive) + DRY_HEAD) / (size * math.sqrt(loss * size))
+    by_loss = -0.5 * balanced / loss
+    return q - balanced, -by_drive - by_loss * loss_up, 1.0, by_drive - by_loss * loss_down
 
 
 @inner_kernel

@@ -28,6 +28,9 @@ FIRST_STEP = 10.0
 LEAST_CHANGE = 1e-9
 """Change of a discharge [m³/s] below which nothing is said to settle."""
 
+SAME_RATE = 1e-9
+"""Difference of two rates of a forcing that is rounding of the clock."""
+
 END_OF_NODES = ("level", "volume")
 END_OF_LINKS = ("discharge", "convective_head", "imbalance")
 
@@ -88,6 +91,7 @@ class Run:
             "end_surge_upstream_remaining": self._seconds_left(surge.surge_upstream_until),
             "end_surge_downstream_remaining": self._seconds_left(surge.surge_downstream_until),
             "end_settling_remaining": self._seconds_left(self.watch.settled_at),
+            "end_rate": self.forcing.rate.copy(),
             "end_next_step": np.float64(self.pace.next_step[0]),
             "end_time": np.float64(self.time / 1000.0),
         }
@@ -105,6 +109,7 @@ class Run:
         for name in END_OF_LINKS:
             self.state.links[name] = end["end_" + name]
         self.pace.next_step = end["end_next_step"]
+        self.forcing.rate = end["end_rate"]
         for k, motion in enumerate(self.motions):
             remaining = round(float(end["end_motion_remaining"][k]) * 1000.0)
             motion.resume(float(end["end_target_opening"][k]), float(end["end_ordered_opening"][k]), remaining)
@@ -234,14 +239,16 @@ class Run:
         """Advance to the next stop."""
         gates = slice(FORCING_GATES, FORCING_GATES + self.network.gate_count)
         self.forcing.value[gates] = [motion.opening for motion in self.motions]
+        before = self.forcing.rate.copy()
         self.forcing.rate = self.timetable.rates_between(self.time, until)
         self.forcing.rate[gates] = [motion.rate() for motion in self.motions]
+        has_kink = bool(np.any(np.abs(self.forcing.rate - before) > SAME_RATE))
         self.pace.leg_start, self.pace.done = self.time, 0.0
         seconds, outcome = (until - self.time) / 1000.0, None
         while outcome != LEG_DONE:
             outcome = advance(
                 self.tables, self.state, self.middle, self.after, self.work, self.totals, self.forcing, self.watch,
-                self.rows, self.pace, seconds, self.timetable.local_inertia,
+                self.rows, self.pace, seconds, has_kink, self.timetable.local_inertia,
             )  # fmt: skip
             if outcome == STEP_TOO_SMALL:
                 self._give_up()
@@ -259,7 +266,6 @@ class Run:
 
     def _last_row(self) -> None:
         self.forcing.value = self.forcing.now
-        self.forcing.rate = 0.0
         write_end(
             self.tables, self.state, self.work, self.totals, self.watch, self.rows, self.pace, self.forcing, self.time
         )

@@ -84,11 +84,17 @@ def reach_row(tables, before, after, work, index, seconds, head_factor, inertial
         link, site_up.transition_loss, up, down, level_up, level_down, level_up - site_up.bed_level,
         level_down - site_down.bed_level, q, work.links[index].convective_base, head_factor * earlier.convective_share,
     )  # fmt: skip
-    if inertial:
+    if inertial and is_wet(site_up, site_down, level_up, level_down):
         head, head_q, head_area = stage_inertia(tables, before, work, index, q, seconds)
         left, by_q = left - head, by_q - head_q
         by_up, by_down = by_up - 0.5 * head_area * up.width, by_down - 0.5 * head_area * down.width
     return left, by_up, by_q, by_down
+
+
+@inner_kernel
+def is_wet(site_up, site_down, level_up, level_down):
+    """Whether both ends of a reach link are deeper than the dry depth."""
+    return min(level_up - site_up.bed_level, level_down - site_down.bed_level) >= DRY_DEPTH
 
 
 @inner_kernel
@@ -192,7 +198,9 @@ def finish_stage(tables, before, after, work, seconds, head_factor, inertial, fo
         link.convective_rate = (target - link.convective_head) / CONVECTIVE_TIME
         link.mean_area = 0.5 * (up.area + down.area)
         if inertial:
-            link.imbalance = stage_inertia(tables, before, work, index, link.discharge, seconds)[0]
+            site_up, site_down = tables.channel.nodes[index - 1], tables.channel.nodes[index]
+            wet = is_wet(site_up, site_down, after.nodes[index - 1].level, after.nodes[index].level)
+            link.imbalance = stage_inertia(tables, before, work, index, link.discharge, seconds)[0] if wet else 0.0
 
 
 @inner_kernel

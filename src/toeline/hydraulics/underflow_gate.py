@@ -151,11 +151,20 @@ def drowned_discharge(gate, section, head_depth, tail_depth, jet, lip, approach_
     """
     if head_depth <= tail_depth:
         return 0.0, tail_depth
-    discharge, roller = _drowned_under_lip(gate, section, head_depth, tail_depth, lip, approach_per_square)
-    step = gate.sill_level - gate.floor_level
-    if roller - step >= lip or jet >= lip:
-        return discharge, roller
-    return _drowned_open_throat(gate, section, head_depth, tail_depth, jet, lip, approach_per_square)
+    if jet < lip and not _reaches_lip(gate, section, head_depth, tail_depth, lip, approach_per_square):
+        return _drowned_open_throat(gate, section, head_depth, tail_depth, jet, lip, approach_per_square)
+    return _drowned_under_lip(gate, section, head_depth, tail_depth, lip, approach_per_square)
+
+
+@inner_kernel
+def _reaches_lip(gate, section, head_depth, tail_depth, lip, approach_per_square):
+    """Whether the roller of a gate clear of water stands up to its lip: the jet under the lip has less force than the tail."""
+    least = lip + gate.sill_level - gate.floor_level
+    if least >= tail_depth:
+        return False
+    flux = section[BETA] / GRAVITY * (1.0 / (gate.width * lip) - 1.0 / geometry(section, tail_depth)[0])
+    squared = (head_depth - least) / _throat_loss(gate, lip, approach_per_square)
+    return static_moment(section, least) + flux * squared < static_moment(section, tail_depth)
 
 
 @inner_kernel

@@ -14,7 +14,7 @@ def hazard_lines(gates: Sequence[GateJumps], width: int) -> Iterator[str]:
     """Floor and people side by side: little of one says nothing about the other."""
     rows = [(gate.gate, _hours(gate.beyond_protection_hours), _hours(gate.roller_hours)) for gate in gates]
     yield table(("", "floor: jump beyond protection", "people: drowned roller"), rows, width)
-    yield paragraph("No hour of any gate is safe to enter, with a roller or without.", width)
+    yield paragraph("At no hour is any place below a gate safe to enter, with a roller or without.", width)
 
 
 def margin_lines(gates: Sequence[GateJumps], clock: RunClock, display: Display, width: int) -> Iterator[str]:

@@ -32,8 +32,8 @@ CHUNK_CACHE = 2**20
 """Bytes for each variable; the default of 64 MiB would fill the memory."""
 
 COPY_EVERY = 1.0
-COPY_SHARE = 0.1
-"""A copy safe from a kill is taken every second of wall time, or less often: copying has no more than a tenth of it."""
+COPY_SHARE = 0.2
+"""A copy safe from a kill is taken every second of wall time, or less often: copying takes a fifth of it at most."""
 
 
 class NetcdfSink:
@@ -166,9 +166,9 @@ class NetcdfSink:
             self._flush(dimension)
 
     def _save_copy(self) -> None:
-        begin = time.monotonic()
         self._flush_all()
         self._file.sync()
+        begin = time.monotonic()
         self._run_file.save_copy()
         end = time.monotonic()
         self._next_copy = end + max(COPY_EVERY, (end - begin) / COPY_SHARE)

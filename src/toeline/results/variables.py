@@ -81,7 +81,7 @@ def _text(name: str, dimensions: tuple[str, ...], meaning: str, comment: str = "
     return Variable(name, dimensions, None, meaning, comment, dtype="text")
 
 
-def _state(name: str, dimensions: tuple[str, ...], unit: str, meaning: str, comment: str = "") -> Variable:
+def _state(name: str, dimensions: tuple[str, ...], unit: str | None, meaning: str, comment: str = "") -> Variable:
     return Variable(name, dimensions, unit, meaning, comment, dtype="f8", is_state=True)
 
 
@@ -246,6 +246,8 @@ _END_STATE = (
     _state("end_surge_upstream_remaining", ("state_gate",), "s", "time until the pool above has settled"),
     _state("end_surge_downstream_remaining", ("state_gate",), "s", "time until the pool below has settled"),
     _state("end_settling_remaining", ("state_pool",), "s", "time until the pool has settled"),
+    _state("end_rate", ("state_forcing",), None, "rates of change at the end of the run",
+           "a second; of head, tail, gate openings, demands and offtake openings in their units"),
     _state("end_next_step", (), "s", "length of the step that would have come next"),
     _state("end_time", (), CLOCK, "time of the end state"),
 )
