@@ -45,7 +45,7 @@ SECTIONS = {
     "surveyed": surveyed([0, 0, 2, 2.5, 3, 6, 6], [2, 0.8, 0.7, 0, 0.6, 0.75, 2]),
 }
 DEPTHS = (0.0, 1e-6, 1e-3, 0.5, 0.99, 1.0, 3.0, 50.0, 1e4)
-DISCHARGES = (0.0, 1e-9, 1e-3, 1.0, 1e3, 1e6, -1.0)
+DISCHARGES = (0.0, 1e-6, 1e-3, 1.0, 1e3, 1e6, -1.0)
 
 
 @pytest.fixture(params=SECTIONS.values(), ids=SECTIONS.keys())

@@ -117,8 +117,8 @@ def convective_share(up, down, q):
 
 
 @inner_kernel
-def inertia_share(depth_up, depth_down):
-    """Weight of the local inertia: 1 in a wet link, 0 once the shallower node is dry."""
+def wet_share(depth_up, depth_down):
+    """1 in a wet link, 0 once the shallower node is dry."""
     s = min(max((min(depth_up, depth_down) - DRY_DEPTH) / (WET_DEPTH - DRY_DEPTH), 0.0), 1.0)
     return s * s * (3.0 - 2.0 * s)
 

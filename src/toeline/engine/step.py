@@ -12,9 +12,9 @@ from toeline.engine.reach_link import (
     convective_share,
     convective_target,
     inertia_head,
-    inertia_share,
     node_geometry,
     reach_balance,
+    wet_share,
 )
 from toeline.engine.tridiagonal import back_substitute, solve_with_factors
 from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH
@@ -101,14 +101,10 @@ def is_wet(site_up, site_down, level_up, level_down):
 def stage_inertia(tables, before, work, index, q, seconds):
     """`inertia_head` of a reach link at the present areas; it fades with the convective head (local partial inertia, Fread et
     al. 1996) and where a link dries."""
-    site_up, site_down = tables.channel.nodes[index - 1], tables.channel.nodes[index]
     earlier = before.links[index]
-    share = earlier.convective_share * inertia_share(
-        before.nodes[index - 1].level - site_up.bed_level, before.nodes[index].level - site_down.bed_level
-    )
     flux = earlier.discharge / (earlier.mean_area * earlier.mean_area)
     mean = 0.5 * (work.nodes[index - 1].area + work.nodes[index].area)
-    return inertia_head(tables.links[index].length, share, mean, q, flux, work.links[index].momentum_base, seconds)
+    return inertia_head(tables.links[index].length, earlier.convective_share, mean, q, flux, work.links[index].momentum_base, seconds)
 
 
 @inner_kernel
@@ -314,7 +310,7 @@ def begin_leg(tables, state, work, forcing):
     for index in range(state.links.size):
         kind, link = tables.links[index].kind, state.links[index]
         if kind == REACH:
-            restart_reach(link, work.nodes[index - 1], work.nodes[index])
+            restart_reach(tables, state, work, index)
         elif kind != TAIL_LEVEL:
             left = boundary_balance(tables, index, state.nodes, link.discharge, forcing, work)[0]
             link.discharge -= left
@@ -327,10 +323,20 @@ def begin_leg(tables, state, work, forcing):
 
 
 @inner_kernel
-def restart_reach(link, up, down):
+def set_share(tables, state, work, index):
+    """Judge how calm a reach link is: the weight of its convective head and inertia, none where an end is dry."""
+    site_up, site_down = tables.channel.nodes[index - 1], tables.channel.nodes[index]
+    wet = wet_share(state.nodes[index - 1].level - site_up.bed_level, state.nodes[index].level - site_down.bed_level)
+    link = state.links[index]
+    link.convective_share = wet * convective_share(work.nodes[index - 1], work.nodes[index], link.discharge)
+
+
+@inner_kernel
+def restart_reach(tables, state, work, index):
     """What a reach link's state implies at the present areas."""
+    link, up, down = state.links[index], work.nodes[index - 1], work.nodes[index]
     link.mean_area = 0.5 * (up.area + down.area)
-    link.convective_share = convective_share(up, down, link.discharge)
+    set_share(tables, state, work, index)
     target = convective_target(link.convective_share, link.discharge, up.inverse_area, down.inverse_area)
     link.convective_rate = (target - link.convective_head) / CONVECTIVE_TIME
 
@@ -344,8 +350,10 @@ def start_from_levels(tables, state, work):
     for index in range(1, state.nodes.size):
         if tables.links[index].kind == REACH:
             link, up, down = state.links[index], work.nodes[index - 1], work.nodes[index]
-            share = convective_share(up, down, link.discharge)
-            link.convective_head = convective_target(share, link.discharge, up.inverse_area, down.inverse_area)
+            set_share(tables, state, work, index)
+            link.convective_head = convective_target(
+                link.convective_share, link.discharge, up.inverse_area, down.inverse_area
+            )
 
 
 @inner_kernel
@@ -363,7 +371,7 @@ def accept(tables, state, middle, after, work, totals, h):
         state.links[index] = after.links[index]
         if tables.links[index].kind == REACH:
             link = state.links[index]
-            link.convective_share = convective_share(work.nodes[index - 1], work.nodes[index], link.discharge)
+            set_share(tables, state, work, index)
 
 
 @inner_kernel
