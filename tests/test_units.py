@@ -120,10 +120,18 @@ def test_a_number_is_in_the_unit_of_the_file_and_text_in_its_own(value, dimensio
 @pytest.mark.parametrize(
     ("value", "dimension", "message"),
     [
-        ("6 yd", "length", 'found "6 yd"; allowed: a finite number in m, or text such as "2.5 m" with one of the units '
-                           "m, km, cm, mm, ft, in, mi"),
-        ("6", "length", 'found "6"; allowed: a finite number in m, or text such as "2.5 m" with one of the units '
-                        "m, km, cm, mm, ft, in, mi"),
+        (
+            "6 yd",
+            "length",
+            'found "6 yd"; allowed: a finite number in m, or text such as "2.5 m" with one of the units '
+            "m, km, cm, mm, ft, in, mi",
+        ),
+        (
+            "6",
+            "length",
+            'found "6"; allowed: a finite number in m, or text such as "2.5 m" with one of the units '
+            "m, km, cm, mm, ft, in, mi",
+        ),
         (90, "duration", 'found 90; allowed: text such as "15 min" with one of the units s, min, h, d'),
         ("0,5 h", "duration", 'found "0,5 h"; allowed: text such as "15 min" with one of the units s, min, h, d'),
     ],

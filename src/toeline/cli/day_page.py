@@ -30,10 +30,9 @@ def day_page(plans: Sequence["Scenario"], width: int) -> str:
     lines = [
         paragraph(f"{first.day.title}, on {first.canal.name} ({first.canal_path})", width, indent=""),
         paragraph(f"{start:%A %Y-%m-%d}, {span_text(start, end, start)}; the start: {_start_words(first)}", width),
-        "",
-        heading("Water"),
-        table(("", "at the start", "least", "greatest"), _water_rows(first), width),
     ]
+    if water := _water_rows(first):
+        lines += ["", heading("Water"), table(("", "at the start", "least", "greatest"), water, width)]
     for plan in plans:
         lines += ["", f"{heading('Orders')} of {_plan_name(plan)}: {len(plan.orders)}"]
         if plan.orders:

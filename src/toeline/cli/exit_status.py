@@ -9,5 +9,5 @@ class ExitStatus(IntEnum):
     DONE = 0
     RUN_FAILED = 1
     WRONG_USE = 2
-    LIMIT_PASSED = 3
+    INCIDENT_FOUND = 3
     INTERRUPTED = 130

@@ -7,6 +7,8 @@ from typing import TYPE_CHECKING
 
 import click
 
+from toeline.errors import UsageError
+
 if TYPE_CHECKING:
     from toeline.scenario import Scenario
 
@@ -34,9 +36,11 @@ def is_canal(path: Path) -> bool:
 def load_plans(day: Path, plan: str | None = None, overrides: Sequence[str] = ()) -> list["Scenario"]:
     """The day once for every plan in it (once where it has none), or for the one that was picked.
 
-    Raises ScenarioError with all faults, UsageError where there is no such plan.
+    Raises ScenarioError with all faults, UsageError where there is no such plan or the file is a canal.
     """
     from toeline.scenario import load_scenario, plan_names
 
+    if is_canal(day):
+        raise UsageError(f"{day} is a canal file: name a day file, which says what happens on it.")
     names: Sequence[str | None] = (plan,) if plan is not None else plan_names(day) or (None,)
     return [load_scenario(day, plan=name, overrides=overrides) for name in names]

@@ -69,7 +69,7 @@ def error_words(error: ToelineError) -> str:
     cls=LazyGroup,
     context_settings={"help_option_names": ["-h", "--help"]},
     epilog="Exit status: 0 done; 1 the run failed; 2 wrong use or a fault in the input; "
-    "3 a limit was passed (with --strict); 130 stopped by Ctrl-C.",
+    "3 there was an incident (with --strict); 130 stopped by Ctrl-C.",
 )
 @click.version_option(__version__, prog_name="toeline")
 def main() -> None:

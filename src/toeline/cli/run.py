@@ -34,7 +34,7 @@ if TYPE_CHECKING:
     help="Change a value of the day file for this run, such as period.length='\"6 h\"'. May be repeated.",
 )
 @click.option("--overwrite", is_flag=True, help="Replace a file of results that exists.")
-@click.option("--strict", is_flag=True, help="Exit with status 3 if a limit was passed.")
+@click.option("--strict", is_flag=True, help="Exit with status 3 if there was an incident.")
 @click.pass_context
 def command(
     ctx: click.Context,
@@ -86,7 +86,7 @@ def run_plan(scenario: "Scenario", output: Path, overwrite: bool, strict: bool) 
     with dataset:
         show(run_summary(dataset, scenario.display, width=page_width()))
         show(f"\nResults: {output}\n")
-        return ExitStatus.LIMIT_PASSED if strict and incidents(dataset) else ExitStatus.DONE
+        return ExitStatus.INCIDENT_FOUND if strict and incidents(dataset) else ExitStatus.DONE
 
 
 def what_is_left(output: Path) -> str:

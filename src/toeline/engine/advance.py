@@ -48,7 +48,7 @@ def advance(tables, state, middle, after, work, totals, forcing, watch, rows, pa
     `has_kink` says that its rates are not those before, the steps start small. Returns LEG_DONE, BLOCK_FULL or STEP_TOO_SMALL.
     """
     pace = paces[0]
-    if pace.done == 0.0 and (begin_leg(tables, state, work, forcing) > JUMP or has_kink):
+    if pace.done == 0.0 and (begin_leg(tables, state, work, forcing, inertial) > JUMP or has_kink):
         pace.next_step = min(pace.next_step, RESTART_STEP)
     while pace.done < leg:
         if not has_room(rows, pace):
@@ -113,10 +113,10 @@ def write_due(tables, state, middle, after, totals, watch, rows, pace, forcing, 
 
 
 @kernel
-def write_end(tables, state, work, totals, watch, rows, paces, forcing, time_ms):
+def write_end(tables, state, work, totals, watch, rows, paces, forcing, time_ms, inertial):
     """Row and profile of the state at the very end, where they are due; no leg begins there."""
     pace = paces[0]
-    begin_leg(tables, state, work, forcing)
+    begin_leg(tables, state, work, forcing, inertial)
     if pace.due <= time_ms:
         fill_row(tables, state, state, state, totals, watch, rows, time_ms, 0.0, 0.0, forcing)
     if pace.profile_due <= time_ms:

@@ -10,6 +10,9 @@ from toeline.hydraulics.kernel import inner_kernel
 CONVECTIVE_TIME = 20.0
 """Time [s] in which the convective head follows the flow; from 5 s on nothing below a widening grows (choice)."""
 
+INERTIAL_CONVECTIVE_TIME = 60.0
+"""The same with local inertia, where the water of a short widening link could swing with its pools (choice)."""
+
 CALM_FROUDE, CRITICAL_FROUDE = 0.9, 1.0
 """Froude numbers between which the convective head fades out (choice)."""
 DRY_HEAD = 1e-4
@@ -35,6 +38,12 @@ def node_geometry(site, cell, section, level, work):
     work.area, work.width = area, width
     work.conveyance = area * math.exp(math.log(area / perimeter) * (2.0 / 3.0)) / site.roughness
     work.conveyance_slope = work.conveyance / 3.0 * (5.0 * width / area - 2.0 * perimeter_slope / perimeter)
+
+
+@inner_kernel
+def convective_time(inertial):
+    """Time [s] in which the convective head follows the flow."""
+    return INERTIAL_CONVECTIVE_TIME if inertial else CONVECTIVE_TIME
 
 
 @inner_kernel

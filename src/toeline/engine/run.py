@@ -32,7 +32,7 @@ SAME_RATE = 1e-9
 """Difference of two rates of a forcing that is rounding of the clock."""
 
 END_OF_NODES = ("level", "volume")
-END_OF_LINKS = ("discharge", "convective_head", "imbalance")
+END_OF_LINKS = ("discharge", "convective_head", "convective_share", "imbalance")
 
 
 class Run:
@@ -267,8 +267,9 @@ class Run:
     def _last_row(self) -> None:
         self.forcing.value = self.forcing.now
         write_end(
-            self.tables, self.state, self.work, self.totals, self.watch, self.rows, self.pace, self.forcing, self.time
-        )
+            self.tables, self.state, self.work, self.totals, self.watch, self.rows, self.pace, self.forcing, self.time,
+            self.timetable.local_inertia,
+        )  # fmt: skip
 
 
 def _order_arrays(records: list[OrderRecord]) -> dict[str, np.ndarray]:

@@ -8,9 +8,9 @@ import math
 
 from toeline.engine.gate_link import boundary_balance
 from toeline.engine.reach_link import (
-    CONVECTIVE_TIME,
     convective_share,
     convective_target,
+    convective_time,
     inertia_head,
     node_geometry,
     reach_balance,
@@ -191,7 +191,7 @@ def finish_stage(tables, before, after, work, seconds, head_factor, inertial, fo
             before.links[index].convective_share, link.discharge, up.inverse_area, down.inverse_area
         )
         link.convective_head = work.links[index].convective_base + head_factor * target
-        link.convective_rate = (target - link.convective_head) / CONVECTIVE_TIME
+        link.convective_rate = (target - link.convective_head) / convective_time(inertial)
         link.mean_area = 0.5 * (up.area + down.area)
         if inertial:
             site_up, site_down = tables.channel.nodes[index - 1], tables.channel.nodes[index]
@@ -254,7 +254,7 @@ def try_step(tables, before, middle, after, work, forcing, start, h, inertial):
     Returns the number of linear solves (0 where a stage could not be solved) and the largest estimated error of a level [m].
     """
     seconds = DIAGONAL * h
-    scale = 1.0 / (1.0 + seconds / CONVECTIVE_TIME)
+    scale = 1.0 / (1.0 + seconds / convective_time(inertial))
     head_factor = 1.0 - scale
     base_of_middle(before, work, seconds, scale)
     set_forcing(forcing, start + GAMMA * h)
@@ -292,7 +292,7 @@ def step_error(tables, before, middle, after, work, h):
 
 
 @inner_kernel
-def begin_leg(tables, state, work, forcing):
+def begin_leg(tables, state, work, forcing, inertial):
     """Evaluate everything that follows from levels, volumes, convective heads and reach discharges afresh.
 
     Gates, boundaries and deliveries take the forcing at the start of the leg. Returns the largest change of a discharge
@@ -310,7 +310,7 @@ def begin_leg(tables, state, work, forcing):
     for index in range(state.links.size):
         kind, link = tables.links[index].kind, state.links[index]
         if kind == REACH:
-            restart_reach(tables, state, work, index)
+            restart_reach(state, work, index, inertial)
         elif kind != TAIL_LEVEL:
             left = boundary_balance(tables, index, state.nodes, link.discharge, forcing, work)[0]
             link.discharge -= left
@@ -323,22 +323,20 @@ def begin_leg(tables, state, work, forcing):
 
 
 @inner_kernel
-def set_share(tables, state, work, index):
-    """Judge how calm a reach link is: the weight of its convective head and inertia, none where an end is dry."""
+def calm_share(tables, state, work, index):
+    """How calm a reach link is: the weight of its convective head and inertia, none where an end is dry."""
     site_up, site_down = tables.channel.nodes[index - 1], tables.channel.nodes[index]
     wet = wet_share(state.nodes[index - 1].level - site_up.bed_level, state.nodes[index].level - site_down.bed_level)
-    link = state.links[index]
-    link.convective_share = wet * convective_share(work.nodes[index - 1], work.nodes[index], link.discharge)
+    return wet * convective_share(work.nodes[index - 1], work.nodes[index], state.links[index].discharge)
 
 
 @inner_kernel
-def restart_reach(tables, state, work, index):
+def restart_reach(state, work, index, inertial):
     """What a reach link's state implies at the present areas."""
     link, up, down = state.links[index], work.nodes[index - 1], work.nodes[index]
     link.mean_area = 0.5 * (up.area + down.area)
-    set_share(tables, state, work, index)
     target = convective_target(link.convective_share, link.discharge, up.inverse_area, down.inverse_area)
-    link.convective_rate = (target - link.convective_head) / CONVECTIVE_TIME
+    link.convective_rate = (target - link.convective_head) / convective_time(inertial)
 
 
 @kernel
@@ -350,7 +348,7 @@ def start_from_levels(tables, state, work):
     for index in range(1, state.nodes.size):
         if tables.links[index].kind == REACH:
             link, up, down = state.links[index], work.nodes[index - 1], work.nodes[index]
-            set_share(tables, state, work, index)
+            link.convective_share = calm_share(tables, state, work, index)
             link.convective_head = convective_target(
                 link.convective_share, link.discharge, up.inverse_area, down.inverse_area
             )
@@ -370,8 +368,9 @@ def accept(tables, state, middle, after, work, totals, h):
     for index in range(state.links.size):
         state.links[index] = after.links[index]
         if tables.links[index].kind == REACH:
-            link = state.links[index]
-            set_share(tables, state, work, index)
+            link, calm = state.links[index], calm_share(tables, state, work, index)
+            regained = (calm - link.convective_share) * h / (h + convective_time(False))
+            link.convective_share = min(calm, link.convective_share + regained)
 
 
 @inner_kernel

@@ -235,6 +235,8 @@ _END_STATE = (
     _state("end_volume", ("state_node",), "m3", "volume stored at the end of the run"),
     _state("end_discharge", ("state_link",), "m3 s-1", "discharge at the end of the run"),
     _state("end_convective_head", ("state_link",), "m", "convective head at the end of the run"),
+    _state("end_convective_share", ("state_link",), "1", "weight of the convective head at the end of the run",
+           "1 in calm flow, 0 from critical flow on"),
     _state("end_imbalance", ("state_link",), "m", "head that accelerates the water of a link at the end of the run",
            "zero without local inertia"),
     _state("end_opening", ("state_gate",), "m", "opening at the end of the run"),
