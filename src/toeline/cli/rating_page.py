@@ -40,7 +40,7 @@ def rating_page(rows: Sequence["RatingRow"], title: str, display: Display, width
     unit = FILE_UNITS["discharge"][display.system]
     blocks = [paragraph(title, width, indent="", hanging=""), paragraph(f"Discharge in {unit}.", width)]
     for headwater, group in groupby(rows, key=lambda row: row.headwater_level):
-        blocks += ["", heading(f"Headwater {display.level(headwater)}"), *_tables(list(group), display, width)]
+        blocks += ["", f"{heading('Headwater')} {display.level(headwater)}", *_tables(list(group), display, width)]
     return "\n".join([*blocks, "", paragraph(_legend(rows), width), paragraph(NOTES, width)])
 
 

@@ -4,14 +4,13 @@ import math
 
 from toeline.constants import GRAVITY, WATER_DENSITY
 from toeline.engine.gate_link import gate_flow_at
-from toeline.hydraulics.cross_section import geometry
+from toeline.hydraulics.cross_section import ALPHA, geometry
 from toeline.hydraulics.gradually_varied_flow import link_force, supercritical_profile
 from toeline.hydraulics.hydraulic_jump import (
     LENGTH_GOOD,
     LENGTH_NOT_DEFINED,
     NO_JUMP,
     jump_kind,
-    subcritical_depth_of_force,
 )
 from toeline.hydraulics.jump_location import (
     JUMP_DROWNED,
@@ -25,7 +24,7 @@ from toeline.hydraulics.jump_location import (
     tail_depth_at,
 )
 from toeline.hydraulics.kernel import inner_kernel
-from toeline.hydraulics.submerged_jump import jet_force, roller_depth, roller_length, submergence
+from toeline.hydraulics.submerged_jump import roller_depth, roller_length, submergence
 from toeline.hydraulics.underflow_gate import CLEAR_AND_DROWNED, CLOSED, DROWNED, REVERSE
 
 JET_START = 1.0
@@ -51,7 +50,8 @@ def judge_gate(channel, gate, up, down, opening, level, jet, out):
     if opening <= 0.0 or flow.state == CLOSED or flow.state == REVERSE or flow.underflow <= 0.0:
         return flow.discharge
     section, step = channel.shapes[gate.downstream_section], gate.sill_level - gate.floor_level
-    free = jet_on_floor(section, gate.width, flow.jet_thickness, step, flow.free_discharge)
+    width = gate.discharge_factor * gate.width
+    free = jet_on_floor(section, width, flow.jet_thickness, step, flow.free_discharge)
     drowned = flow.state == DROWNED or flow.state == CLEAR_AND_DROWNED
     if free.froude > LEAST_JET_FROUDE:
         drowned = judge_jet(channel, gate, section, flow, free, level, opening, drowned, jet, out)
@@ -87,7 +87,8 @@ def judge_jet(channel, gate, section, flow, free, level, opening, drowned, jet, 
     weight = (start - origin) / (following - origin)
     tail_level = level[first] + weight * (level[first + 1] - level[first])
     out.tailwater_margin = tail_level - gate.floor_level - drowning_depth(section, free)
-    count, _ = supercritical_profile(channel, first, last, start, free.full_depth, free.discharge, jet[0], jet[1])
+    far = gate.protection_last if drowned else last
+    count, _ = supercritical_profile(channel, first, far, start, free.full_depth, free.discharge, jet[0], jet[1])
     out.protection_margin = protection_margin(
         channel, first, last, level, free.discharge, jet[0], jet[1], count, origin + gate.protection_end
     )
@@ -96,7 +97,7 @@ def judge_jet(channel, gate, section, flow, free, level, opening, drowned, jet, 
     present = free
     if flow.underflow < free.discharge:
         step = gate.sill_level - gate.floor_level
-        present = jet_on_floor(section, gate.width, flow.jet_thickness, step, flow.underflow)
+        present = jet_on_floor(section, free.width, flow.jet_thickness, step, flow.underflow)
     tail = tail_depth_at(channel, level, first, weight, present.discharge)
     if present.force <= link_force(channel, first, weight, present.discharge, tail):
         return True
@@ -133,24 +134,31 @@ def fill_free_jump(gate, jump, origin, discharge, out):
 
 @inner_kernel
 def drowned_jump(shapes, gate, section, flow, up, down, out):
-    """A roller at the gate: its depth over the jet, which keeps its thickness, its end and what it dissipates."""
+    """A roller at the gate: its depth over the jet, which keeps its thickness, its end and what it dissipates.
+
+    The free sequent depth that submergence counts from is that of the jet on the floor; a jet slower than critical has none.
+    """
     q, thickness, tail_depth = flow.underflow, flow.jet_thickness, down - gate.floor_level
-    force = jet_force(section, q, gate.width, thickness, thickness)
-    sequent, _ = subcritical_depth_of_force(section, q, force)
-    depth = flow.roller_depth
-    if math.isnan(depth):
-        depth, _ = roller_depth(section, q, gate.width, thickness, tail_depth)
-    tail_area = geometry(section, tail_depth)[0]
-    up_area = geometry(shapes[gate.upstream_section], up - gate.upstream_bed_level)[0]
-    head = q * q / (2.0 * GRAVITY)
-    loss = max(up - down + head / (up_area * up_area) - head / (tail_area * tail_area), 0.0)
+    width, step = gate.discharge_factor * gate.width, gate.sill_level - gate.floor_level
     out.jump_state = JUMP_DROWNED
-    out.jet_depth = thickness
-    out.jet_froude_number = q / (gate.width * thickness * math.sqrt(GRAVITY * thickness))
-    out.sequent_depth = sequent
-    out.roller_depth = depth
     out.jump_toe_distance = 0.0
-    out.jump_end_distance = roller_length(sequent, submergence(tail_depth, sequent))
+    out.jet_depth = thickness
+    out.jet_froude_number = q / (width * thickness * math.sqrt(GRAVITY * thickness))
+    out.roller_depth = flow.roller_depth
+    if math.isnan(flow.roller_depth):
+        out.roller_depth, _ = roller_depth(section, q, width, thickness, tail_depth)
+    if out.jet_froude_number > LEAST_JET_FROUDE:
+        out.sequent_depth = drowning_depth(section, jet_on_floor(section, width, thickness, step, q))
+        out.jump_end_distance = roller_length(out.sequent_depth, submergence(tail_depth, out.sequent_depth))
     out.jump_length_quality = LENGTH_GOOD if out.jump_end_distance >= 0.0 else LENGTH_NOT_DEFINED
-    out.jump_energy_loss = loss
-    out.jump_power = WATER_DENSITY * GRAVITY * q * loss
+    above = shapes[gate.upstream_section]
+    loss = velocity_head(above, q, up - gate.upstream_bed_level) - velocity_head(section, q, tail_depth) + up - down
+    out.jump_energy_loss = max(loss, 0.0)
+    out.jump_power = WATER_DENSITY * GRAVITY * q * out.jump_energy_loss
+
+
+@inner_kernel
+def velocity_head(section, discharge, depth):
+    """αQ²/(2gA²) [m]."""
+    area = geometry(section, depth)[0]
+    return section[ALPHA] * discharge * discharge / (2.0 * GRAVITY * area * area)

@@ -45,6 +45,6 @@ def surge_bounds(shapes, gate, level_up, level_down, opening, opening_after):
 
 @inner_kernel
 def is_carried(section, discharge, depth):
-    """Whether a section with this discharge is deep enough for a surge to be spoken of: Fr² < 9."""
+    """Whether a section with this discharge is calm, so that a surge can travel both ways."""
     area, width, _, _ = geometry(section, depth)
-    return area > 0.0 and discharge * discharge * width < 9.0 * GRAVITY * area * area * area
+    return area > 0.0 and discharge * discharge * width < GRAVITY * area * area * area

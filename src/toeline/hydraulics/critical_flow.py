@@ -45,11 +45,16 @@ def critical_depth(section, discharge):
     if discharge == 0.0:
         return 0.0, status.OK
     wanted = section[ALPHA] * discharge * discharge / GRAVITY
-    y = 0.5
-    for _ in range(200):
+    y, low, high = 0.5, 0.0, math.inf
+    for k in range(200):
         area, width, _, _ = geometry(section, y)
         step = math.log(wanted * width / (area * area * area)) / max(3.0 * y * width / area, 1.0)
-        y *= math.exp(min(max(step, -1.5), 1.5))
+        low, high = (y, high) if step > 0.0 else (low, y)
+        if k < 60 or low == 0.0 or high == math.inf:
+            y *= math.exp(min(max(step, -1.5), 1.5))
+        else:
+            y = math.sqrt(low * high)
+            step = min(abs(step), math.log(high / low))
         if abs(step) < 1e-13:
             return y, status.OK
     return (y, status.OK) if abs(step) < 1e-9 else (math.nan, status.NOT_CONVERGED)

@@ -149,6 +149,9 @@ def _as_piecewise(section: np.ndarray) -> np.ndarray:
     radius = section[OWN] / 2
     angle = np.linspace(-math.pi, 0.0, CIRCLE_SIDES + 1)
     across, depth = radius * np.cos(angle), radius * (1.0 + np.sin(angle))
+    half = CIRCLE_SIDES // 2
+    depth[half:] = depth[half::-1]
+    depth[[0, -1]] = radius
     lower = _polygon_rows(across, depth)
     return _piecewise(*_closed_above(lower, radius), section[ALPHA], section[BETA])
 

@@ -188,14 +188,16 @@ def _step_in_depth(channel, node, y, head, friction, bed_slope, discharge):
 
 @inner_kernel
 def _step_in_distance(channel, node, x, x_next, y, head, friction, discharge):
-    """Depth at the end of a substep by Newton's method on the energy balance, and whether it turned critical."""
+    """Depth at the end of a substep by Newton's method on the energy balance, and whether it turned critical.
+
+    Below critical depth the balance falls with the depth; where its slope vanishes before it is met there is no such depth.
+    """
     span = channel.nodes[node + 1].chainage - channel.nodes[node].chainage
     w, w_next = (x - channel.nodes[node].chainage) / span, (x_next - channel.nodes[node].chainage) / span
     step, loss = x_next - x, channel.nodes[node].transition_loss
     wanted = link_bed(channel, node, w) - link_bed(channel, node, w_next) + y + head - 0.5 * step * friction
     alpha = link_alpha(channel, node, w_next)
-    critical = link_critical_depth(channel, node, w_next, discharge)
-    y_next = min(y, 0.98 * critical)
+    y_next = y
     for _ in range(50):
         area, width, perimeter, perimeter_slope, n = link_geometry(channel, node, w_next, y_next)
         head_next = alpha * discharge * discharge / (2.0 * GRAVITY * area * area)
@@ -205,15 +207,13 @@ def _step_in_distance(channel, node, x, x_next, y, head, friction, discharge):
         head_slope = -2.0 * head_next * width / area
         friction_growth = friction_next / 3.0 * (4.0 * perimeter_slope / perimeter - 10.0 * width / area)
         slope = 1.0 + head_slope * (1.0 + loss * towards) + 0.5 * step * friction_growth
-        if slope >= 0.0:
-            return critical, True
+        if slope >= 0.0 or 1.0 + head_slope >= 0.0:
+            break
         change = -excess / slope
         y_next += max(change, -0.5 * y_next)
-        if y_next >= critical:
-            return critical, True
-        if abs(change) < 1e-12 * y_next:
+        if abs(change) < 1e-9 * y_next:
             return y_next, False
-    return critical, True
+    return link_critical_depth(channel, node, w_next, discharge), True
 
 
 @kernel
@@ -274,7 +274,7 @@ def _energy_gap(channel, node, level, level_down, discharge, point_loss):
     head_down = link_alpha(channel, node + 1, 0.0) * discharge * discharge / (2.0 * GRAVITY * a_down * a_down)
     mean_area = 0.5 * (a_up + a_down)
     local = half * point_loss / (mean_area * mean_area)
-    local += channel.nodes[node].transition_loss * half * abs(1.0 / (a_up * a_up) - 1.0 / (a_down * a_down))
+    local += math.copysign(channel.nodes[node].transition_loss * abs(head_up - head_down), discharge)
     friction = (channel.nodes[node + 1].chainage - channel.nodes[node].chainage) * discharge * abs(discharge) / (k * k)
     return level + head_up - level_down - head_down - friction - local
 

@@ -31,6 +31,8 @@ def sequent_depth(section, discharge, depth):
     Equal specific force is the momentum equation of the jump on a level floor without friction (Bélanger; Chow 1959,
     ch. 15). Works both ways. Newton's method from the far side of the root, where the force is convex.
     """
+    if depth <= 0.0 or discharge == 0.0:
+        return depth, status.NO_SOLUTION
     force = specific_force(section, discharge, depth)
     critical, _ = critical_depth(section, discharge)
     if depth < critical:
@@ -96,7 +98,7 @@ def energy_loss(section, discharge, depth_before, depth_after):
 @kernel
 def jump_kind(froude):
     """Kind of a free jump by the Froude number at its toe (Bradley & Peterka 1957; Chow 1959, ch. 15)."""
-    if froude <= 1.0:
+    if not froude > 1.0:
         return NO_JUMP
     if froude <= 1.7:
         return UNDULAR

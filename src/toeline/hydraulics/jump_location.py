@@ -7,6 +7,7 @@ from toeline.constants import GRAVITY
 from toeline.hydraulics.critical_flow import supercritical_depth
 from toeline.hydraulics.cross_section import OWN, TRAPEZOID
 from toeline.hydraulics.gradually_varied_flow import (
+    link_alpha,
     link_bed,
     link_critical_depth,
     link_force,
@@ -79,7 +80,7 @@ def tail_depth_at(channel, levels, node, weight, discharge):
     depth = level - link_bed(channel, node, weight)
     width_area = link_geometry(channel, node, weight, max(depth, 0.0))
     area, width = width_area[0], width_area[1]
-    if area * area * area * GRAVITY > discharge * discharge * width:
+    if area * area * area * GRAVITY > link_alpha(channel, node, weight) * discharge * discharge * width:
         return depth
     return link_critical_depth(channel, node, weight, discharge)
 
@@ -128,11 +129,12 @@ def free_jump(channel, first, last, levels, jet, chainages, depths, count):
 def _jump_at(channel, first, last, levels, discharge, toe, depth):
     node, weight = _node_below(channel, first, last, toe)
     tail = tail_depth_at(channel, levels, node, weight, discharge)
+    alpha = link_alpha(channel, node, weight)
     area, width, _, _, _ = link_geometry(channel, node, weight, depth)
-    froude = discharge * math.sqrt(width / (GRAVITY * area)) / area
+    froude = discharge * math.sqrt(alpha * width / (GRAVITY * area)) / area
     length, quality = link_jump_length(channel, node, weight, depth, froude, tail)
     tail_area = link_geometry(channel, node, weight, tail)[0]
-    head = discharge * discharge / (2.0 * GRAVITY)
+    head = alpha * discharge * discharge / (2.0 * GRAVITY)
     loss = depth + head / (area * area) - tail - head / (tail_area * tail_area)
     return FreeJump(toe, depth, froude, tail, length, quality, max(loss, 0.0))
 
@@ -162,7 +164,7 @@ def sequent_in_link(channel, node, weight, discharge, depth):
             break
         step = (link_force(channel, node, weight, discharge, y) - force) / slope
         y -= step
-        if abs(step) < 1e-10 * y:
+        if abs(step) < 1e-8 * y:
             break
     return y
 
@@ -173,7 +175,7 @@ def _end_of_jump_from(channel, first, last, discharge, x, depth):
     node, weight = _node_below(channel, first, last, x)
     sequent = sequent_in_link(channel, node, weight, discharge, depth)
     area, width, _, _, _ = link_geometry(channel, node, weight, depth)
-    froude = discharge * math.sqrt(width / (GRAVITY * area)) / area
+    froude = discharge * math.sqrt(link_alpha(channel, node, weight) * width / (GRAVITY * area)) / area
     length, _ = link_jump_length(channel, node, weight, depth, froude, sequent)
     return (x if math.isnan(length) else x + length), sequent
 
@@ -186,32 +188,33 @@ def protection_margin(channel, first, last, levels, discharge, chainages, depths
     margin = tailwater level there less the level of the sequent depth. NaN where the jet turns critical before any such toe.
     """
     low, high = 0, count - 1
-    end_low, sequent = _end_of_jump_from(channel, first, last, discharge, chainages[low], depths[low])
+    while high > 1 and chainages[high - 1] >= protection_end:
+        high -= 1
+    end_low, sequent = _end_of_jump_from(channel, first, last, discharge, chainages[0], depths[0])
     if end_low > protection_end:
-        x = chainages[low]
-    else:
-        if _end_of_jump_from(channel, first, last, discharge, chainages[high], depths[high])[0] < protection_end:
-            return math.nan
-        while high - low > 1:
-            middle = (low + high) // 2
-            if _end_of_jump_from(channel, first, last, discharge, chainages[middle], depths[middle])[0] <= protection_end:
-                low = middle
-            else:
-                high = middle
-        x, sequent = _between(channel, first, last, discharge, chainages, depths, low, high, protection_end)
-    node, weight = _node_below(channel, first, last, x)
-    level = levels[node] + weight * (levels[node + 1] - levels[node])
-    return level - link_bed(channel, node, weight) - sequent
+        return _tail_over(channel, first, last, levels, chainages[0], sequent)
+    end_high, sequent_high = _end_of_jump_from(channel, first, last, discharge, chainages[high], depths[high])
+    if end_high < protection_end:
+        return math.nan
+    while high - low > 1:
+        share = (protection_end - end_low) / (end_high - end_low)
+        guess = low + min(max(int(share * (high - low) + 0.5), 1), high - low - 1)
+        end, sequent_guess = _end_of_jump_from(channel, first, last, discharge, chainages[guess], depths[guess])
+        if end <= protection_end:
+            low, end_low, sequent = guess, end, sequent_guess
+        else:
+            high, end_high, sequent_high = guess, end, sequent_guess
+    share = (protection_end - end_low) / (end_high - end_low) if end_high > end_low else 0.0
+    toe = chainages[low] + share * (chainages[high] - chainages[low])
+    return _tail_over(channel, first, last, levels, toe, sequent + share * (sequent_high - sequent))
 
 
 @inner_kernel
-def _between(channel, first, last, discharge, chainages, depths, low, high, protection_end):
-    """Toe and sequent depth of the jump that ends at `protection_end`, between two points of the profile."""
-    end_low, sequent_low = _end_of_jump_from(channel, first, last, discharge, chainages[low], depths[low])
-    end_high, sequent_high = _end_of_jump_from(channel, first, last, discharge, chainages[high], depths[high])
-    share = (protection_end - end_low) / (end_high - end_low) if end_high > end_low else 0.0
-    x = chainages[low] + share * (chainages[high] - chainages[low])
-    return x, sequent_low + share * (sequent_high - sequent_low)
+def _tail_over(channel, first, last, levels, x, depth):
+    """Height [m] of the tailwater over a depth at a chainage."""
+    node, weight = _node_below(channel, first, last, x)
+    level = levels[node] + weight * (levels[node + 1] - levels[node])
+    return level - link_bed(channel, node, weight) - depth
 
 
 @kernel

@@ -25,6 +25,8 @@ def roller_depth(section, discharge, jet_width, jet_depth, tail_depth):
     M(y_m) + βQ²/(g·b·h) = M(y₂) + βQ²/(g·A₂) (Govinda Rao & Rajaratnam 1963). NO_SOLUTION (and the jet depth) where the
     tailwater cannot hold a roller over the jet: the jump is free.
     """
+    if tail_depth <= 0.0:
+        return jet_depth, status.NO_SOLUTION
     flux = section[BETA] * discharge * discharge / GRAVITY
     tail = static_moment(section, tail_depth) + flux / geometry(section, tail_depth)[0]
     wanted = tail - flux / (jet_width * jet_depth)

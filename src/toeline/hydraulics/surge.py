@@ -21,8 +21,10 @@ def surge_height(section, discharge, depth, change, direction):
     feed the change: the whole depth is returned.
     """
     area = geometry(section, depth)[0]
-    if change == 0.0 or area <= 0.0:
+    if change == 0.0:
         return 0.0, 0.0, status.OK
+    if area <= 0.0:
+        return 0.0, math.nan, status.NO_SOLUTION
     flow, step = direction * discharge, direction * change
     low, high, found = _surge_bracket(section, flow, depth, step)
     if not found:

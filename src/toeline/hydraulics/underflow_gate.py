@@ -27,7 +27,9 @@ VERY_DROWNED = 0.95
 """Tailwater over headwater, both above the sill, from which the discharge of a drowned gate is poorly known."""
 LEAST_LOSS = 0.3
 """Least share of the velocity head in the throat that an approach as fast as the throat leaves to be supplied (choice)."""
-APPROACH_PASSES = 6
+LEAST_HEAD = 1e-6
+"""Head over the sill [m] below which nothing passes."""
+APPROACH_PASSES = 4
 
 
 class UnderflowGate(NamedTuple):
@@ -85,25 +87,42 @@ def free_jet(gate, upstream_section, headwater_level, opening):
     Q = φ·b·h·√(2g(E − h)), h = min(C_c·a, ⅔E): past ⅔E the gate is clear of water and the flow critical over the sill.
     """
     head = headwater_level - gate.sill_level
-    if head <= 0.0 or opening <= 0.0:
+    if head <= LEAST_HEAD or opening <= 0.0:
         return max(head, 0.0), 0.0, 0.0, 0.0
-    approach_area = geometry(upstream_section, headwater_level - gate.upstream_bed_level)[0]
-    energy, lip, jet, discharge = head, 0.0, 0.0, 0.0
+    width = jet_width(gate)
+    share = width / geometry(upstream_section, headwater_level - gate.upstream_bed_level)[0]
+    energy = head
     for _ in range(APPROACH_PASSES):
-        lip = contraction_coefficient(gate, opening, energy) * opening
-        jet = min(lip, energy * 2.0 / 3.0)
-        discharge = gate.discharge_factor * gate.width * jet * math.sqrt(2.0 * GRAVITY * (energy - jet))
-        velocity = discharge / approach_area
-        energy = head + min(velocity * velocity / (2.0 * GRAVITY), 0.5 * head)
-    return energy, jet, discharge, lip
+        energy = min(max(_with_approach(gate, head, energy, opening, share), head), 1.5 * head)
+    lip = contraction_coefficient(gate, opening, energy) * opening
+    jet = min(lip, energy * 2.0 / 3.0)
+    return energy, jet, width * jet * math.sqrt(2.0 * GRAVITY * (energy - jet)), lip
+
+
+@inner_kernel
+def _with_approach(gate, head, energy, opening, share):
+    """A better energy head [m] of free flow: head and velocity head of the approach; `share` = φ·b/A upstream."""
+    jet = contraction_coefficient(gate, opening, energy) * opening
+    if jet < energy * 2.0 / 3.0:
+        return jet + (head - jet) / max(1.0 - (share * jet) ** 2, 0.05)
+    factor = 4.0 / 27.0 * share * share * energy * energy
+    return energy - (energy - head - factor * energy) / max(1.0 - 3.0 * factor, 0.05)
+
+
+@kernel
+def jet_width(gate):
+    """Width of the jet [m]: the bays, with the site's discharge factor taken as a factor of the jet's area."""
+    return gate.discharge_factor * gate.width
 
 
 @kernel
 def modular_limit_depth(gate, downstream_section, jet, discharge):
     """Tail depth over the floor [m] at which the roller just reaches a free jet of the given thickness: the modular limit."""
     surface = jet + gate.sill_level - gate.floor_level
+    if discharge <= 0.0 or jet <= 0.0:
+        return surface
     flux = downstream_section[BETA] * discharge * discharge / GRAVITY
-    force = static_moment(downstream_section, surface) + flux / (gate.width * jet)
+    force = static_moment(downstream_section, surface) + flux / (jet_width(gate) * jet)
     y = surface
     while _tail_force(downstream_section, flux, y) <= force or not _is_subcritical(downstream_section, flux, y):
         y *= 1.5
@@ -128,6 +147,8 @@ def _limit_from_above(section, flux, force, start):
     for _ in range(60):
         area, width, _, _ = geometry(section, y)
         step = (static_moment(section, y) + flux / area - force) / (area - flux * width / (area * area))
+        if step >= y or not _is_subcritical(section, flux, y - step):
+            break
         y -= step
         if step < 1e-12 * start:
             break
@@ -137,23 +158,32 @@ def _limit_from_above(section, flux, force, start):
 @inner_kernel
 def _throat_loss(gate, thickness, approach_per_square):
     """1/(2g(φbh)²) less the approach velocity head, both per Q² [s²/m⁵]."""
-    throat = gate.discharge_factor * gate.width * thickness
+    throat = jet_width(gate) * thickness
     full = 1.0 / (2.0 * GRAVITY * throat * throat)
     return max(full - approach_per_square, LEAST_LOSS * full)
 
 
 @kernel
-def drowned_discharge(gate, section, head_depth, tail_depth, jet, lip, approach_per_square):
+def drowned_discharge(gate, section, head_depth, tail_depth, energy, opening, lip, approach_per_square):
     """Discharge [m³/s] and roller depth [m] of a drowned gate: energy to the throat and momentum over the floor together.
 
-    `head_depth` is the headwater over the downstream floor, `lip` = C_c·a. Where the roller does not reach the lip of a
-    gate clear of water, the throat is the water over the sill (an open throat).
+    `head_depth` is the headwater over the downstream floor, `energy` the upstream energy head over the sill, `lip` = C_c·a.
+    Where the roller does not reach the lip the throat is the water over the sill (an open throat); a lip that dips into the
+    surface passes no more than an open throat.
     """
     if head_depth <= tail_depth:
         return 0.0, tail_depth
-    if jet < lip and not _reaches_lip(gate, section, head_depth, tail_depth, lip, approach_per_square):
-        return _drowned_open_throat(gate, section, head_depth, tail_depth, jet, lip, approach_per_square)
-    return _drowned_under_lip(gate, section, head_depth, tail_depth, lip, approach_per_square)
+    critical = energy * 2.0 / 3.0
+    if lip >= critical and not _reaches_lip(gate, section, head_depth, tail_depth, lip, approach_per_square):
+        return _drowned_open_throat(gate, section, head_depth, tail_depth, critical, lip, approach_per_square)
+    discharge, roller = _drowned_under_lip(gate, section, head_depth, tail_depth, lip, approach_per_square)
+    if opening > LIP_CONTACT * energy:
+        most, open_roller = _drowned_open_throat(
+            gate, section, head_depth, tail_depth, critical, math.inf, approach_per_square
+        )
+        if most < discharge:
+            return most, open_roller
+    return discharge, roller
 
 
 @inner_kernel
@@ -162,7 +192,7 @@ def _reaches_lip(gate, section, head_depth, tail_depth, lip, approach_per_square
     least = lip + gate.sill_level - gate.floor_level
     if least >= tail_depth:
         return False
-    flux = section[BETA] / GRAVITY * (1.0 / (gate.width * lip) - 1.0 / geometry(section, tail_depth)[0])
+    flux = section[BETA] / GRAVITY * (1.0 / (jet_width(gate) * lip) - 1.0 / geometry(section, tail_depth)[0])
     squared = (head_depth - least) / _throat_loss(gate, lip, approach_per_square)
     return static_moment(section, least) + flux * squared < static_moment(section, tail_depth)
 
@@ -170,7 +200,7 @@ def _reaches_lip(gate, section, head_depth, tail_depth, lip, approach_per_square
 @inner_kernel
 def _drowned_under_lip(gate, section, head_depth, tail_depth, jet, approach_per_square):
     """Newton in the roller depth from the tail depth down, where the residual is positive and convex."""
-    flux = section[BETA] / GRAVITY * (1.0 / (gate.width * jet) - 1.0 / geometry(section, tail_depth)[0])
+    flux = section[BETA] / GRAVITY * (1.0 / (jet_width(gate) * jet) - 1.0 / geometry(section, tail_depth)[0])
     loss = _throat_loss(gate, jet, approach_per_square)
     tail_moment = static_moment(section, tail_depth)
     least = jet + gate.sill_level - gate.floor_level
@@ -186,6 +216,8 @@ def _drowned_under_lip(gate, section, head_depth, tail_depth, jet, approach_per_
             low = y
         slope = ratio * geometry(section, y)[0] - 1.0
         step = residual / slope if slope > 0.0 else math.inf
+        if abs(step) < 1e-12 * tail_depth:
+            break
         y = y - step if low < y - step <= high else 0.5 * (low + high)
         if abs(step) < 1e-12 * tail_depth or high - low < 1e-13 * tail_depth:
             break
@@ -201,7 +233,7 @@ def _drowned_open_throat(gate, section, head_depth, tail_depth, jet, lip, approa
     for _ in range(48):
         y = 0.5 * (low + high)
         squared = max(head_depth - y, 0.0) / _throat_loss(gate, y - step, approach_per_square)
-        flux = section[BETA] * squared / GRAVITY * (1.0 / (gate.width * (y - step)) - 1.0 / tail_area)
+        flux = section[BETA] * squared / GRAVITY * (1.0 / (jet_width(gate) * (y - step)) - 1.0 / tail_area)
         if static_moment(section, y) + flux > tail_moment:
             high = y
         else:
@@ -214,27 +246,31 @@ def _underflow_one_way(gate, upstream_section, downstream_section, headwater_lev
     """Flow below the lip with the headwater higher than the tailwater by at least `LINEAR_HEAD`."""
     energy, jet, free, lip = free_jet(gate, upstream_section, headwater_level, opening)
     state = CLEAR_OF_WATER if jet < lip or opening <= 0.0 else FREE
-    tail_depth = tailwater_level - gate.floor_level
-    step = gate.sill_level - gate.floor_level
-    if free <= 0.0 or tail_depth <= step:
+    tail_depth, step = tailwater_level - gate.floor_level, gate.sill_level - gate.floor_level
+    if free <= 0.0 or tail_depth <= 0.0:
         return GateFlow(free, free, free, jet, energy, math.nan, math.nan, state, QUALITY_GOOD)
     flux = downstream_section[BETA] * free * free / GRAVITY
-    force = static_moment(downstream_section, jet + step) + flux / (gate.width * jet)
+    force = static_moment(downstream_section, jet + step) + flux / (jet_width(gate) * jet)
     above = tail_depth / (1.0 - BLEND)
     if not _is_subcritical(downstream_section, flux, above) or _tail_force(downstream_section, flux, above) <= force:
         return GateFlow(free, free, free, jet, energy, math.nan, math.nan, state, QUALITY_GOOD)
-    below = tail_depth / (1.0 + BLEND)
-    head_depth = headwater_level - gate.floor_level
+    below, head_depth = tail_depth / (1.0 + BLEND), headwater_level - gate.floor_level
     approach = (energy - (headwater_level - gate.sill_level)) / (free * free)
     if _is_subcritical(downstream_section, flux, below) and _tail_force(downstream_section, flux, below) >= force:
-        q, roller = drowned_discharge(gate, downstream_section, head_depth, tail_depth, jet, lip, approach)
-        state = CLEAR_AND_DROWNED if state == CLEAR_OF_WATER else DROWNED
+        q, roller = drowned_discharge(
+            gate, downstream_section, head_depth, tail_depth, energy, opening, lip, approach
+        )
+        q = min(q, free)
+        if state == CLEAR_OF_WATER:
+            state, jet = CLEAR_AND_DROWNED, min(lip, roller - step)
+        else:
+            state = DROWNED
         return GateFlow(q, q, free, jet, energy, roller, math.nan, state, QUALITY_GOOD)
     limit = _limit_from_above(downstream_section, flux, force, above)
     top = min((1.0 + BLEND) * limit, energy + step)
-    q_top, _ = drowned_discharge(gate, downstream_section, head_depth, top, jet, lip, approach)
+    q_top, _ = drowned_discharge(gate, downstream_section, head_depth, top, energy, opening, lip, approach)
     share = (tail_depth - (1.0 - BLEND) * limit) / (top - (1.0 - BLEND) * limit)
-    q = free + (q_top - free) * min(max(share, 0.0), 1.0)
+    q = free + (min(q_top, free) - free) * min(max(share, 0.0), 1.0)
     return GateFlow(q, q, free, jet, energy, math.nan, limit, NEAR_MODULAR_LIMIT, QUALITY_NEAR_LIMIT)
 
 
@@ -337,6 +373,8 @@ def opening_for_discharge(gate, upstream_section, downstream_section, headwater_
 
     Bisection on [0, `largest`]; the end of the range nearest to the wanted discharge where none passes it.
     """
+    if discharge <= 0.0:
+        return 0.0, 0.0
     low, high = 0.0, largest
     for _ in range(60):
         middle = 0.5 * (low + high)

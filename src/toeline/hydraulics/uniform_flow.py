@@ -3,8 +3,11 @@
 import math
 
 from toeline.hydraulics import status
-from toeline.hydraulics.cross_section import geometry
+from toeline.hydraulics.cross_section import CIRCLE, OWN, geometry
 from toeline.hydraulics.kernel import kernel
+
+FULLEST = 0.9381813
+"""Depth over diameter at which a circle carries the most (Manning)."""
 
 
 @kernel
@@ -35,17 +38,18 @@ def normal_depth(section, roughness, slope, discharge):
     if slope <= 0.0 or discharge <= 0.0:
         return math.nan, status.NO_SOLUTION
     wanted = math.log(discharge * roughness / math.sqrt(slope))
-    y = 0.5
+    highest = FULLEST * section[OWN] if section[0] == CIRCLE else 1e4
+    if conveyance(section, roughness, highest) * math.sqrt(slope) < discharge:
+        return math.nan, status.NO_SOLUTION
+    y = min(0.5, 0.5 * highest)
     for _ in range(100):
         area, width, perimeter, perimeter_slope = geometry(section, y)
         gap = (5.0 * math.log(area) - 2.0 * math.log(perimeter)) / 3.0 - wanted
         growth = y * (5.0 * width / area - 2.0 * perimeter_slope / perimeter) / 3.0
         step = -gap / max(growth, 0.2)
-        y *= math.exp(min(max(step, -1.5), 1.5))
+        y = min(y * math.exp(min(max(step, -1.5), 1.5)), highest)
         if abs(step) < 1e-13:
             return y, status.OK
-        if y > 1e4:
-            return math.nan, status.NO_SOLUTION
     return (y, status.OK) if abs(gap) < 1e-9 else (math.nan, status.NOT_CONVERGED)
 
 

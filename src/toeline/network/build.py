@@ -254,7 +254,9 @@ def _gates(canal, lines: list[_Line], channel: Channel, shapes: _Shapes) -> np.r
             len(shapes.rows) - 1 if up == HEAD else channel.nodes.section[up],
             channel.nodes.section[line.first_index],
         )
-        rows.append((*law, up, line.first_index, *sections, line.last_index, *_protected_ends(canal, line)))
+        apron, protection = _protected_ends(canal, line)
+        protected = line.first_index + max(1, sum(node.distance <= protection for node in line.nodes) - 1)
+        rows.append((*law, up, line.first_index, *sections, line.last_index, protected, apron, protection))
     return np.array(rows, GATE_ROW).view(np.recarray)
 
 

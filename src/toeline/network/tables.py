@@ -49,6 +49,7 @@ GATE_ROW = np.dtype(
         ("upstream_section", np.int64),  # row of Channel.shapes
         ("downstream_section", np.int64),
         ("floor_last", np.int64),  # last node of the channel below
+        ("protection_last", np.int64),  # last node of its protected floor, at least one below the first
         ("apron_end", float),  # m from the gate
         ("protection_end", float),  # m from the gate
     ]

@@ -1,0 +1,58 @@
+"""`toeline rating`."""
+
+import csv
+
+import pytest
+
+LEVELS = ("--headwater", "51.4", "--tailwater", "49.8,50.6", "--opening", "0.2,0.4")
+
+
+def test_a_gate_is_rated_at_the_levels_given(folder, call):
+    result = call("rating", "canal.toml", "Middle check", *LEVELS)
+    assert result.exit_code == 0
+    assert result.stdout.startswith("Middle check, Alder branch\n")
+    assert "HEADWATER 51.40 m\n" in result.stdout
+
+
+def test_levels_of_the_canal_are_chosen_where_none_are_given(folder, call):
+    result = call("rating", "canal.toml", "Middle check")
+    assert result.exit_code == 0
+    assert result.stdout.count("HEADWATER") > 1
+
+
+def test_a_mistyped_gate_names_the_nearest(folder, call):
+    result = call("rating", "canal.toml", "Midle check")
+    assert (result.exit_code, result.stdout) == (2, "")
+    assert result.stderr == 'Error: Alder branch has no gate "Midle check"; did you mean "Middle check"?\n'
+
+
+def test_the_table_goes_to_a_csv_file_as_well(folder, call):
+    assert call("rating", "canal.toml", "Middle check", *LEVELS, "--csv", "rating.csv").exit_code == 0
+    with (folder / "rating.csv").open(newline="") as file:
+        rows = list(csv.DictReader(file))
+    assert [(row["opening [m]"], row["tailwater_level [m]"]) for row in rows] == [
+        ("0.2000", "49.8000"),
+        ("0.2000", "50.6000"),
+        ("0.4000", "49.8000"),
+        ("0.4000", "50.6000"),
+    ]
+
+
+def test_a_csv_file_that_stands_is_kept(folder, call):
+    (folder / "rating.csv").write_text("mine")
+    result = call("rating", "canal.toml", "Middle check", *LEVELS, "--csv", "rating.csv")
+    assert (result.exit_code, result.stdout, (folder / "rating.csv").read_text()) == (2, "", "mine")
+    assert "--overwrite" in result.stderr
+
+
+@pytest.mark.parametrize(("value", "reason"), [("4 gallons", "allowed"), ("high", "allowed"), ("", "allowed")])
+def test_what_is_no_length_is_refused_by_the_name_of_its_option(folder, call, value, reason):
+    result = call("rating", "canal.toml", "Middle check", "--opening", f"0.2,{value}")
+    assert (result.exit_code, result.stdout) == (2, "")
+    assert result.stderr.startswith("Error: --opening: found ")
+    assert reason in result.stderr
+
+
+def test_lengths_carry_their_own_units_where_given(folder, call):
+    result = call("rating", "canal.toml", "Middle check", *LEVELS[:4], "--opening", "20 cm, 0.4")
+    assert "0.20 m" in result.stdout
