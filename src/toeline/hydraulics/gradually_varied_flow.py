@@ -117,7 +117,8 @@ def link_critical_depth(channel, node, weight, discharge):
 @inner_kernel
 def _friction(area, perimeter, roughness, discharge):
     """Friction slope of Manning from area and perimeter."""
-    return (roughness * discharge / area) ** 2 * (perimeter / area) ** (4.0 / 3.0)
+    velocity = roughness * discharge / area
+    return velocity * velocity * math.exp(math.log(perimeter / area) * (4.0 / 3.0))
 
 
 @kernel
@@ -131,89 +132,105 @@ def supercritical_profile(channel, first, last, chainage, depth, discharge, chai
     node = first
     while node < last - 1 and channel.nodes[node + 1].chainage <= chainage:
         node += 1
-    x, y, count = chainage, depth, 1
-    chainage_out[0], depth_out[0] = x, y
+    here = _point(channel, node, chainage, depth, discharge)
+    chainage_out[0], depth_out[0], count = chainage, depth, 1
     while count < chainage_out.size:
-        if x >= channel.nodes[node + 1].chainage:
+        if here.chainage >= channel.nodes[node + 1].chainage:
             node += 1
             if node >= last:
                 return count, REACHED_END
-        x, y, critical = _substep(channel, node, x, y, discharge)
-        chainage_out[count], depth_out[count] = x, y
+        here = _substep(channel, node, here, discharge)
+        chainage_out[count], depth_out[count] = here.chainage, here.depth
         count += 1
-        if critical:
+        if here.is_critical:
             return count, TURNED_CRITICAL
     return count, FULL
 
 
+class _Point(NamedTuple):
+    """A point of a supercritical profile."""
+
+    chainage: float  # m
+    depth: float  # m
+    velocity_head: float  # m
+    froude_squared: float
+    friction: float  # slope
+    is_critical: bool
+
+
 @inner_kernel
-def _substep(channel, node, x, y, discharge):
-    """Chainage and depth after one substep inside a link, and whether the flow turned critical there."""
+def _point(channel, node, x, y, discharge):
     span = channel.nodes[node + 1].chainage - channel.nodes[node].chainage
-    bed_slope = (channel.nodes[node].bed_level - channel.nodes[node + 1].bed_level) / span
     weight = (x - channel.nodes[node].chainage) / span
     area, width, perimeter, _, n = link_geometry(channel, node, weight, y)
-    alpha = link_alpha(channel, node, weight)
-    head = alpha * discharge * discharge / (2.0 * GRAVITY * area * area)
-    friction = _friction(area, perimeter, n, discharge)
-    froude_squared = 2.0 * head * width / area
-    prismatic = channel.nodes[node].section == channel.nodes[node + 1].section and channel.nodes[node].roughness == channel.nodes[node + 1].roughness
-    rest = channel.nodes[node + 1].chainage - x
-    if prismatic:
-        moved, y_next, critical = _step_in_depth(channel, node, y, head, friction, bed_slope, discharge)
-        if 0.0 < moved <= rest:
-            return x + moved, y_next, critical
-    gradient = abs(bed_slope - friction) / max(froude_squared - 1.0, 1e-3)
-    step = min(rest, DEPTH_STEP * y / max(gradient, 1e-9), 0.25 * span if not prismatic else rest)
-    x_next = channel.nodes[node + 1].chainage if rest - step < 1e-9 else x + step
-    y_next, critical = _step_in_distance(channel, node, x, x_next, y, head, friction, discharge)
-    return x_next, y_next, critical
+    head = link_alpha(channel, node, weight) * discharge * discharge / (2.0 * GRAVITY * area * area)
+    return _Point(x, y, head, 2.0 * head * width / area, _friction(area, perimeter, n, discharge), False)
 
 
 @inner_kernel
-def _step_in_depth(channel, node, y, head, friction, bed_slope, discharge):
-    """Distance to a depth 4 % on the way that the profile takes, the depth, and whether it is critical."""
-    section = channel.shapes[channel.nodes[node].section]
-    y_next = y * (1.0 + DEPTH_STEP) if friction > bed_slope else y / (1.0 + DEPTH_STEP)
-    area, width, perimeter, _ = geometry(section, y_next)
-    head_next = section[ALPHA] * discharge * discharge / (2.0 * GRAVITY * area * area)
-    critical = head_next * 2.0 * width <= area
+def _substep(channel, node, here, discharge):
+    """The point after one substep inside a link."""
+    start, end = channel.nodes[node], channel.nodes[node + 1]
+    span, rest = end.chainage - start.chainage, end.chainage - here.chainage
+    bed_slope = (start.bed_level - end.bed_level) / span
+    if start.section == end.section and start.roughness == end.roughness:
+        there = _step_in_depth(channel.shapes[start.section], start.roughness, here, bed_slope, discharge)
+        if here.chainage < there.chainage <= end.chainage:
+            return there
+        longest = rest
+    else:
+        longest = 0.25 * span
+    gradient = abs(bed_slope - here.friction) / max(here.froude_squared - 1.0, 1e-3)
+    step = min(rest, DEPTH_STEP * here.depth / max(gradient, 1e-9), longest)
+    x_next = end.chainage if rest - step < 1e-9 else here.chainage + step
+    return _step_in_distance(channel, node, here, x_next, discharge)
+
+
+@inner_kernel
+def _step_in_depth(section, roughness, here, bed_slope, discharge):
+    """The point where the depth has changed by 4 % the way the profile goes, or has become critical."""
+    y = here.depth * (1.0 + DEPTH_STEP) if here.friction > bed_slope else here.depth / (1.0 + DEPTH_STEP)
+    area, width, perimeter, _ = geometry(section, y)
+    head = section[ALPHA] * discharge * discharge / (2.0 * GRAVITY * area * area)
+    critical = head * 2.0 * width <= area
     if critical:
-        y_next = critical_depth(section, discharge)[0]
-        area, _, perimeter, _ = geometry(section, y_next)
-        head_next = section[ALPHA] * discharge * discharge / (2.0 * GRAVITY * area * area)
-    mean_friction = 0.5 * (friction + _friction(area, perimeter, channel.nodes[node].roughness, discharge))
-    return (y_next + head_next - y - head) / (bed_slope - mean_friction), y_next, critical
+        y = critical_depth(section, discharge)[0]
+        area, width, perimeter, _ = geometry(section, y)
+        head = section[ALPHA] * discharge * discharge / (2.0 * GRAVITY * area * area)
+    friction = _friction(area, perimeter, roughness, discharge)
+    moved = (y + head - here.depth - here.velocity_head) / (bed_slope - 0.5 * (here.friction + friction))
+    return _Point(here.chainage + moved, y, head, 2.0 * head * width / area, friction, critical)
 
 
 @inner_kernel
-def _step_in_distance(channel, node, x, x_next, y, head, friction, discharge):
-    """Depth at the end of a substep by Newton's method on the energy balance, and whether it turned critical.
+def _step_in_distance(channel, node, here, x_next, discharge):
+    """The point at a chainage by Newton's method on the energy balance, critical where that cannot be met.
 
     Below critical depth the balance falls with the depth; where its slope vanishes before it is met there is no such depth.
     """
-    span = channel.nodes[node + 1].chainage - channel.nodes[node].chainage
-    w, w_next = (x - channel.nodes[node].chainage) / span, (x_next - channel.nodes[node].chainage) / span
-    step, loss = x_next - x, channel.nodes[node].transition_loss
-    wanted = link_bed(channel, node, w) - link_bed(channel, node, w_next) + y + head - 0.5 * step * friction
-    alpha = link_alpha(channel, node, w_next)
-    y_next = y
+    start, end = channel.nodes[node], channel.nodes[node + 1]
+    span, step, loss = end.chainage - start.chainage, x_next - here.chainage, start.transition_loss
+    weight = (x_next - start.chainage) / span
+    drop = (start.bed_level - end.bed_level) * step / span
+    wanted = drop + here.depth + here.velocity_head - 0.5 * step * here.friction
+    flux = link_alpha(channel, node, weight) * discharge * discharge / (2.0 * GRAVITY)
+    y = here.depth
     for _ in range(50):
-        area, width, perimeter, perimeter_slope, n = link_geometry(channel, node, w_next, y_next)
-        head_next = alpha * discharge * discharge / (2.0 * GRAVITY * area * area)
-        friction_next = _friction(area, perimeter, n, discharge)
-        towards = 1.0 if head_next >= head else -1.0
-        excess = y_next + head_next + 0.5 * step * friction_next + loss * towards * (head_next - head) - wanted
-        head_slope = -2.0 * head_next * width / area
-        friction_growth = friction_next / 3.0 * (4.0 * perimeter_slope / perimeter - 10.0 * width / area)
-        slope = 1.0 + head_slope * (1.0 + loss * towards) + 0.5 * step * friction_growth
+        area, width, perimeter, perimeter_slope, n = link_geometry(channel, node, weight, y)
+        head, friction = flux / (area * area), _friction(area, perimeter, n, discharge)
+        head_slope = -2.0 * head * width / area
+        towards = 1.0 if head >= here.velocity_head else -1.0
+        excess = y + head + 0.5 * step * friction + loss * towards * (head - here.velocity_head) - wanted
+        friction_slope = friction / 3.0 * (4.0 * perimeter_slope / perimeter - 10.0 * width / area)
+        slope = 1.0 + head_slope * (1.0 + loss * towards) + 0.5 * step * friction_slope
         if slope >= 0.0 or 1.0 + head_slope >= 0.0:
             break
-        change = -excess / slope
-        y_next += max(change, -0.5 * y_next)
-        if abs(change) < 1e-9 * y_next:
-            return y_next, False
-    return link_critical_depth(channel, node, w_next, discharge), True
+        change = max(-excess / slope, -0.5 * y)
+        y += change
+        if abs(change) < 1e-6 * y:
+            return _Point(x_next, y, head + head_slope * change, -head_slope, friction + friction_slope * change, False)
+    y = link_critical_depth(channel, node, weight, discharge)
+    return _Point(x_next, y, 0.5 * y, 1.0, here.friction, True)
 
 
 @kernel
