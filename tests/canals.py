@@ -63,18 +63,18 @@ def prismatic_canal(section: Table, length: float, slope: float, tail: Table, **
 
 def stepped_canal(
     pools: int, length: float, *, floor: list[Table] | None = None, slope: float = 1e-4, depth: float = 2.2,
-    gate: Table | None = None, **tables: Any,
+    drop: float = 0.3, gate: Table | None = None, **tables: Any,
 ) -> Table:  # fmt: skip
-    """Equal pools below an inflow, each closed by a gate on its bed, 0.3 m of drop at every gate.
+    """Equal pools below an inflow, each closed by a gate on its bed, the floor below it lower by `drop`.
 
     `floor` are the stretches at the head of every pool, an apron and riprap unless given; the rest of its length is a
-    trapezoid 6 m wide. Targets are `depth` above the bed.
+    trapezoid 6 m wide. Targets are `depth` above the bed. The level beyond the last gate is 1.5 m above its floor.
     """
     floor = APRON_AND_RIPRAP if floor is None else floor
     rest = length - sum(stretch["length"] for stretch in floor)
     stretches = [*floor, {"length": rest, "section": "canal", "surface": "lining", "slope": slope}]
     fall = slope * rest
-    beds = [(pools - k) * (fall + 0.3) for k in range(pools)]
+    beds = [(pools - k) * (fall + drop) for k in range(pools)]
     names = [f"P{k}" for k in range(pools)]
     return {
         "name": "stepped canal",

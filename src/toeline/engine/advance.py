@@ -12,7 +12,7 @@ LEG_DONE, BLOCK_FULL, STEP_TOO_SMALL = range(3)
 
 SHORTEST_STEP = 1e-3
 """Step [s] below which a run is given up."""
-RESTART_STEP = 2.0
+RESTART_STEP = 5.0
 """First step [s] after a jump or a kink of an opening, an inflow or a delivery (choice)."""
 JUMP = 1e-4
 """Change of a discharge [m³/s] at a stop that counts as a jump (choice)."""
@@ -44,7 +44,8 @@ PACE = np.dtype(
 def advance(tables, state, middle, after, work, totals, forcing, watch, rows, paces, leg, has_kink, inertial):
     """Advance the state through a leg of `leg` seconds; call again with the same leg after BLOCK_FULL.
 
-    Output due at or after the start and before the end of the leg goes to `rows`. After a jump of the forcing, or where
+    Output due at or after the start and before the end of the leg goes to `rows`; that of the very end, which no leg begins,
+    by a leg of no length. After a jump of the forcing, or where
     `has_kink` says that its rates are not those before, the steps start small. Returns LEG_DONE, BLOCK_FULL or STEP_TOO_SMALL.
     """
     pace = paces[0]
@@ -64,12 +65,15 @@ def advance(tables, state, middle, after, work, totals, forcing, watch, rows, pa
                 return STEP_TOO_SMALL
             continue
         end = leg if h == rest else pace.done + h
-        write_due(tables, state, middle, after, totals, watch, rows, pace, forcing, h, end)
+        until = pace.leg_start + end * 1000.0
+        write_due(tables, state, middle, after, totals, watch, rows, pace, forcing, h, until)
         accept(tables, state, middle, after, work, totals, h)
         pace.steps += 1
         grown = h * min(step_ratio(pace.tolerance, error), GROWTH)
         pace.next_step = max(grown, wish) if h < wish else grown
         pace.done = end
+    if leg == 0.0:
+        write_due(tables, state, state, state, totals, watch, rows, pace, forcing, 0.0, pace.leg_start + 1.0)
     return LEG_DONE
 
 
@@ -96,28 +100,21 @@ def has_room(rows, pace):
 
 
 @inner_kernel
-def write_due(tables, state, middle, after, totals, watch, rows, pace, forcing, h, end):
-    """Rows and profiles due from the start of the step until just before its end."""
-    while (pace.due - pace.leg_start) / 1000.0 < end:
-        seconds = (pace.due - pace.leg_start) / 1000.0
-        set_forcing(forcing, seconds)
-        at = min(max((seconds - pace.done) / h, 0.0), 1.0)
-        fill_row(tables, state, middle, after, totals, watch, rows, pace.due, h, at, forcing)
+def write_due(tables, before, middle, after, totals, watch, rows, pace, forcing, h, until):
+    """Rows and profiles due from the start of the step until `until` milliseconds of the period, itself left out."""
+    while pace.due < until:
+        at = set_instant(pace, forcing, pace.due, h)
+        fill_row(tables, before, middle, after, totals, watch, rows, pace.due, h, at, forcing)
         pace.due += pace.every
-    while (pace.profile_due - pace.leg_start) / 1000.0 < end:
-        seconds = (pace.profile_due - pace.leg_start) / 1000.0
-        set_forcing(forcing, seconds)
-        at = min(max((seconds - pace.done) / h, 0.0), 1.0)
-        fill_profile(tables, state, middle, after, watch, rows, pace.profile_due, h, at, forcing)
+    while pace.profile_due < until:
+        at = set_instant(pace, forcing, pace.profile_due, h)
+        fill_profile(tables, before, middle, after, watch, rows, pace.profile_due, h, at, forcing)
         pace.profile_due += pace.profiles_every
 
 
-@kernel
-def write_end(tables, state, work, totals, watch, rows, paces, forcing, time_ms, inertial):
-    """Row and profile of the state at the very end, where they are due; no leg begins there."""
-    pace = paces[0]
-    begin_leg(tables, state, work, forcing, inertial)
-    if pace.due <= time_ms:
-        fill_row(tables, state, state, state, totals, watch, rows, time_ms, 0.0, 0.0, forcing)
-    if pace.profile_due <= time_ms:
-        fill_profile(tables, state, state, state, watch, rows, time_ms, 0.0, 0.0, forcing)
+@inner_kernel
+def set_instant(pace, forcing, due, h):
+    """Set the forcing to an instant of the step [ms of the period]; returns the fraction of the step."""
+    seconds = (due - pace.leg_start) / 1000.0
+    set_forcing(forcing, seconds)
+    return min(max((seconds - pace.done) / h, 0.0), 1.0) if h > 0.0 else 0.0

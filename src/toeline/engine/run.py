@@ -5,7 +5,7 @@ from collections.abc import Callable
 
 import numpy as np
 
-from toeline.engine.advance import LEG_DONE, PACE, STEP_TOO_SMALL, advance, write_end
+from toeline.engine.advance import LEG_DONE, PACE, STEP_TOO_SMALL, advance
 from toeline.engine.gate_link import gate_levels, law_of
 from toeline.engine.gate_motion import KINDS, GateMotion, OrderRecord
 from toeline.engine.output import BANKS, GATE_WATCH, JET_POINTS, Watch
@@ -246,10 +246,7 @@ class Run:
         self.pace.leg_start, self.pace.done = self.time, 0.0
         seconds, outcome = (until - self.time) / 1000.0, None
         while outcome != LEG_DONE:
-            outcome = advance(
-                self.tables, self.state, self.middle, self.after, self.work, self.totals, self.forcing, self.watch,
-                self.rows, self.pace, seconds, has_kink, self.timetable.local_inertia,
-            )  # fmt: skip
+            outcome = self._advance(seconds, has_kink)
             if outcome == STEP_TOO_SMALL:
                 self._give_up()
             if outcome != LEG_DONE or self.rows.filled[0] >= BLOCK_ROWS:
@@ -266,9 +263,13 @@ class Run:
 
     def _last_row(self) -> None:
         self.forcing.value = self.forcing.now
-        write_end(
-            self.tables, self.state, self.work, self.totals, self.watch, self.rows, self.pace, self.forcing, self.time,
-            self.timetable.local_inertia,
+        self.pace.leg_start, self.pace.done = self.time, 0.0
+        self._advance(0.0, False)
+
+    def _advance(self, seconds: float, has_kink: bool) -> int:
+        return advance(
+            self.tables, self.state, self.middle, self.after, self.work, self.totals, self.forcing, self.watch,
+            self.rows, self.pace, seconds, has_kink, self.timetable.local_inertia,
         )  # fmt: skip
 
 

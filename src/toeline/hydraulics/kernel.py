@@ -63,7 +63,7 @@ _FOLDER = _writable_folder()
 
 def kernel(function: Callable[P, R]) -> Callable[P, R]:
     """Compile a function of scalars, arrays and named tuples; the plain function where NUMBA_DISABLE_JIT is set."""
-    return _compiled(function, no_cfunc_wrapper=True)
+    return _compiled(function, cache=_FOLDER is not None, no_cfunc_wrapper=True)
 
 
 def inner_kernel(function: Callable[P, R]) -> Callable[P, R]:
@@ -75,7 +75,7 @@ def _compiled(function: Callable[P, R], **flags: bool) -> Callable[P, R]:
     before = numba.config.CACHE_DIR
     numba.config.CACHE_DIR = str(_FOLDER or "")
     try:
-        return numba.njit(cache=_FOLDER is not None, **_FLAGS, **flags)(function)
+        return numba.njit(**_FLAGS, **flags)(function)
     finally:
         numba.config.CACHE_DIR = before
 
