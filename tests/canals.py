@@ -87,8 +87,8 @@ def stepped_canal(
         ],
         "gates": [
             {
-                "name": f"G{k}", "upstream": above, "downstream": below, "kind": "vertical", "bays": 2, "bay_width": 2.5,
-                "sill_level": bed - fall, "max_opening": 2.0, "smallest_move": 0.01, "hoist_speed": "0.1 m/min",
+                "name": f"G{k}", "upstream": above, "downstream": below, "kind": "vertical", "bays": 2, "bay_width":
+                2.5, "sill_level": bed - fall, "max_opening": 2.0, "smallest_move": 0.01, "hoist_speed": "0.1 m/min",
                 **(gate or {}),
             }
             for k, (above, below, bed) in enumerate(zip(names, [*names[1:], "tail"], beds, strict=True))

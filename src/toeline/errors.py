@@ -1,9 +1,9 @@
 """Everything that can go wrong on purpose, as one tree.
 
-    ToelineError            exit status 1
-    ├── RunError            the run could not go on; what was written stays readable
-    └── UsageError          exit status 2: the request cannot be carried out as it stands
-        └── ScenarioError   one or more faults in the input files, each with its place
+ToelineError            exit status 1
+├── RunError            the run could not go on; what was written stays readable
+└── UsageError          exit status 2: the request cannot be carried out as it stands
+    └── ScenarioError   one or more faults in the input files, each with its place
 """
 
 from dataclasses import dataclass

@@ -19,7 +19,7 @@ from toeline.network.build import network_of
 from toeline.network.initial_state import Start
 from toeline.network.start import check_mild, starting_state
 from toeline.network.tables import HEAD, Network
-from toeline.network.timetable import timetable_of
+from toeline.network.timetable import Timetable, timetable_of
 from toeline.results.dataset import DatasetSink, open_run
 from toeline.results.end_state import read_end_state
 from toeline.results.netcdf_writer import NetcdfSink
@@ -36,15 +36,18 @@ def simulate(
 ) -> xr.Dataset:
     """Step a day and return the run as a dataset; with `output` it is written there while it goes on.
 
-    `progress` is called with the fraction done. Raises ScenarioError where the day cannot start as asked, UsageError where
-    `output` exists and may not be overwritten, RunError where no step can be solved; what was done until then, as after a
-    KeyboardInterrupt, stays in `output`.partial.
+    `progress` is called with the fraction done. Raises ScenarioError where the day cannot start as asked, UsageError
+    where `output` exists and may not be overwritten, RunError where no step can be solved; what was done until then, as
+    after a KeyboardInterrupt, stays in `output`.partial.
     """
     network = network_of(scenario.canal, scenario.day.period.spacing)
     timetable = timetable_of(scenario, network)
     check_mild(scenario, timetable)
     start = _start(scenario, network, timetable)
-    description = static_values(network, start), attributes(scenario), scenario.day.period.start
+    level, discharge = (
+        (start["end_level"], start["end_discharge"]) if isinstance(start, dict) else (start.level, start.discharge)
+    )
+    description = static_values(network, level, discharge), attributes(scenario), scenario.day.period.start
     sink = DatasetSink(*description) if output is None else NetcdfSink(output, *description, overwrite=overwrite)
     run = Run(network, timetable, sink, start)
     try:
@@ -53,15 +56,15 @@ def simulate(
         sink.close(_stopped(run, reason), {})
         raise
     sink.close(COMPLETE, run.end_state())
-    return sink.dataset if isinstance(sink, DatasetSink) else open_run(output)
+    return sink.dataset if isinstance(sink, DatasetSink) else open_run(sink.written_path)
 
 
-def _start(scenario: Scenario, network: Network, timetable) -> Start | dict[str, np.ndarray]:
+def _start(scenario: Scenario, network: Network, timetable: Timetable) -> Start | dict[str, np.ndarray]:
     if scenario.start_file is None:
         return starting_state(scenario, network, timetable)
     nodes = network.channel.nodes[: network.canal_node_count]
     return read_end_state(
-        scenario.start_file, start=scenario.day.period.start, chainage=nodes.chainage, bed_level=nodes.bed_level,
+        scenario.start_file, start=scenario.day.period.start, chainage=nodes["chainage"], bed_level=nodes["bed_level"],
         gates=network.names.gates,
     )  # fmt: skip
 
@@ -95,15 +98,19 @@ def _plain(value: Any) -> Any:
     return value.tolist() if isinstance(value, np.ndarray) else str(value)
 
 
-def static_values(network: Network, start: Start | dict[str, np.ndarray]) -> dict[str, np.ndarray]:
-    """Coordinates and all that does not change during a run, by variable name."""
+def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) -> dict[str, np.ndarray]:
+    """Coordinates and all that does not change during a run, by variable name.
+
+    `level` [m] by node and `discharge` [m³/s] by link are those at the start.
+    """
     names, gates, nodes = network.names, network.tables.gates, network.channel.nodes[: network.canal_node_count]
+    chainage = nodes["chainage"]
     pools, offtakes = network.tables.pools, network.tables.offtakes
     beside = (*names.pools, "tail")
     node_pool = np.searchsorted(pools.last_node, np.arange(nodes.size)).astype(np.int32)
     return {
         "gate": np.array(names.gates, object),
-        "gate_chainage": network.channel.nodes.chainage[gates.downstream_node],
+        "gate_chainage": network.channel.nodes["chainage"][gates.downstream_node],
         "gate_sill_level": gates.sill_level,
         "gate_floor_level": gates.floor_level,
         "gate_width": gates.width,
@@ -117,15 +124,15 @@ def static_values(network: Network, start: Start | dict[str, np.ndarray]) -> dic
             [beside[np.searchsorted(pools.last_node, down)] for down in gates.downstream_node], object
         ),
         "pool": np.array(names.pools, object),
-        "pool_length": nodes.chainage[pools.last_node] - nodes.chainage[pools.first_node],
+        "pool_length": chainage[pools.last_node] - chainage[pools.first_node],
         "pool_target_level": names.target_level,
-        "pool_wave_round_trip": _round_trips(network, start),
+        "pool_wave_round_trip": _round_trips(network, level, discharge),
         "offtake": np.array(names.offtakes, object),
         "offtake_pool": np.array([names.pools[node_pool[node]] for node in offtakes.node], object),
-        "offtake_chainage": nodes.chainage[offtakes.node],
+        "offtake_chainage": chainage[offtakes.node],
         "node": np.arange(nodes.size),
-        "chainage": nodes.chainage,
-        "bed_level": nodes.bed_level,
+        "chainage": chainage,
+        "bed_level": nodes["bed_level"],
         "lining_level": names.lining_level,
         "bank_level": names.bank_level,
         "node_pool": node_pool,
@@ -134,11 +141,9 @@ def static_values(network: Network, start: Start | dict[str, np.ndarray]) -> dic
     }
 
 
-def _round_trips(network: Network, start: Start | dict[str, np.ndarray]) -> np.ndarray:
-    """Wave round trip of every pool at the start [s]; NaN where a pool is dry."""
+def _round_trips(network: Network, level: np.ndarray, discharge: np.ndarray) -> np.ndarray:
+    """Wave round trip of every pool [s]; NaN where a pool is dry."""
     state = new_state(network.node_count, network.offtake_count)
-    is_stored = isinstance(start, dict)
-    state.nodes.level = start["end_level"] if is_stored else start.level
-    state.links.discharge = start["end_discharge"] if is_stored else start.discharge
+    state.nodes["level"], state.links["discharge"] = level, discharge
     trips = [round_trip(network.channel, pool.first_node, pool.last_node, state) for pool in network.tables.pools]
     return np.where(np.isfinite(trips), trips, np.nan)

@@ -132,7 +132,8 @@ def wait_for_rows(partial: Path, run: subprocess.Popen[str]) -> None:
 
 
 def test_ctrl_c_leaves_a_file_that_can_be_described(one_plan, folder):
-    command = [sys.executable, "-m", "toeline", "run", "day.toml", "--set", 'period.length="300 d"']
+    long_day = ("--set", 'period.length="60 d"', "--set", 'output.every="1 s"')
+    command = [sys.executable, "-m", "toeline", "run", "day.toml", *long_day]
     run = subprocess.Popen(command, stdout=subprocess.PIPE, stderr=subprocess.PIPE, text=True)
     wait_for_rows(folder / "day.nc.partial", run)
     run.send_signal(signal.SIGINT)

@@ -2,10 +2,10 @@
 
 import numpy as np
 import pytest
+from tests.invariants.violent_days import write_day
+
 import toeline
 from toeline.errors import ScenarioError
-
-from tests.invariants.violent_days import write_day
 
 DAYS = 240
 IN_ONE_TEST = 12

@@ -60,8 +60,14 @@ def _sections(rng: np.random.Generator, width: float) -> dict[str, Any]:
     slope = rng.choice([0.0, 1.0, 1.5])
     canal = {"bottom_width": width, "side_slope": slope} if slope else {"bottom_width": width}
     return {
-        "basin": {"shape": "rectangle", "bottom_width": width * rng.uniform(0.8, 1.0), "roughness": 0.014, "bank_height": 4.0},
-        "canal": canal | {"shape": "trapezoid" if slope else "rectangle", "roughness": rng.uniform(0.012, 0.03), "bank_height": 4.0},
+        "basin": {
+            "shape": "rectangle",
+            "bottom_width": width * rng.uniform(0.8, 1.0),
+            "roughness": 0.014,
+            "bank_height": 4.0,
+        },
+        "canal": canal
+        | {"shape": "trapezoid" if slope else "rectangle", "roughness": rng.uniform(0.012, 0.03), "bank_height": 4.0},
     }
 
 
@@ -73,10 +79,14 @@ def _pools(rng: np.random.Generator) -> tuple[list[dict[str, Any]], list[float]]
         apron, riprap = rng.choice([(0.0, 0.0), (15.0, 0.0), (18.0, 12.0)])
         floor = [{"length": apron, "section": "basin", "surface": "apron"}] if apron else []
         if riprap:
-            floor.append({"length": riprap, "section": "canal", "surface": "riprap", "transition": True, "transition_loss": 0.2})
+            floor.append(
+                {"length": riprap, "section": "canal", "surface": "riprap", "transition": True, "transition_loss": 0.2}
+            )
         floor.append({"length": length, "section": "canal", "surface": "lining", "slope": slope})
         ends.append(bed - slope * length)
-        pools.append({"name": f"P{k}", "bed_level": bed, "target_level": ends[-1] + rng.uniform(1.2, 2.4), "stretches": floor})
+        pools.append(
+            {"name": f"P{k}", "bed_level": bed, "target_level": ends[-1] + rng.uniform(1.2, 2.4), "stretches": floor}
+        )
         bed = ends[-1] - rng.choice([0.0, 0.2, 0.8])
     return pools, ends
 
@@ -97,7 +107,12 @@ def _gate(rng: np.random.Generator, upstream: str, downstream: str, sill: float,
 
 def _offtakes(rng: np.random.Generator, bed: float) -> list[dict[str, Any]]:
     take = {"name": "T0", "pool": "P0", "chainage": 100.0, "sill_level": bed + 0.5}
-    return [take | rng.choice([{"kind": "demand"}, {"kind": "weir", "width": 0.6}, {"kind": "orifice", "width": 0.6, "opening": 0.3}])]
+    return [
+        take
+        | rng.choice(
+            [{"kind": "demand"}, {"kind": "weir", "width": 0.6}, {"kind": "orifice", "width": 0.6, "opening": 0.3}]
+        )
+    ]
 
 
 def _tail(rng: np.random.Generator, bed: float) -> dict[str, Any]:
@@ -137,7 +152,10 @@ def _day(rng: np.random.Generator, canal: dict[str, Any], local_inertia: bool, s
         day["deliveries"] = {"T0": [["00:00", 0.5], ["09:00", 3.0], ["15:00", 0.0]]}
     if canal["tail"]["kind"] == "level":
         low = canal["tail"]["level"]
-        day["tail"] = {"shape": "lines", "values": [["00:00", low], ["08:00", low], ["12:00", low + 3.0], ["20:00", low - 0.5]]}
+        day["tail"] = {
+            "shape": "lines",
+            "values": [["00:00", low], ["08:00", low], ["12:00", low + 3.0], ["20:00", low - 0.5]],
+        }
     return day
 
 

@@ -39,7 +39,14 @@ def test_a_span_over_the_change_of_clocks_counts_hours_that_pass():
 
 @pytest.mark.parametrize(
     ("seconds", "text"),
-    [(0, "0 min"), (12, "under 1 min"), (51 * 60, "51 min"), (7500, "2 h 05 min"), (86_400, "24 h")],
+    [
+        (0, "0 min"),
+        (12, "under 1 min"),
+        (51 * 60, "51 min"),
+        (7500, "2 h 05 min"),
+        (86_400, "24 h"),
+        (180.5 * 86_400, "180.5 d"),
+    ],
 )
 def test_a_duration_is_said_to_the_minute(seconds, text):
     assert duration_text(seconds) == text

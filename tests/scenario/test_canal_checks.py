@@ -4,7 +4,7 @@ import pytest
 
 from toeline.scenario import load_canal, load_scenario
 
-TAIL_GATE = '''[[gates]]
+TAIL_GATE = """[[gates]]
 name = "Tail gate"
 upstream = "Mill pool"
 downstream = "tail"
@@ -13,7 +13,7 @@ bay_width = 3.0
 sill_level = 18.8
 max_opening = 1.5
 
-'''
+"""
 
 
 def test_gates_out_of_order(folder):
@@ -73,7 +73,7 @@ def test_an_inflow_is_needed_where_no_reservoir_feeds_the_canal(us_folder):
     us_folder.replace("day.toml", '[inflow]\nfile = "inflow.csv"\n', "")
 
     assert us_folder.messages(plan=None) == [
-        "day.toml: inflow: required with the canal's head kind = \"inflow\", but not given"
+        'day.toml: inflow: required with the canal\'s head kind = "inflow", but not given'
     ]
 
 

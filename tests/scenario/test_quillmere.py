@@ -40,8 +40,9 @@ def test_every_day_in_the_folder_is_tested():
 
 
 def test_the_two_plans_of_the_morning_differ_at_the_lower_check_alone():
-    early, later = (load_scenario(QUILLMERE / "morning_increase.toml", plan=name).orders
-                    for name in ("early", "with_the_water"))
+    early, later = (
+        load_scenario(QUILLMERE / "morning_increase.toml", plan=name).orders for name in ("early", "with_the_water")
+    )
     different = {(o.at, o.gate, o.kind, o.value) for o in early} ^ {(o.at, o.gate, o.kind, o.value) for o in later}
 
     assert {gate for _, gate, _, _ in different} == {"Lower check"}

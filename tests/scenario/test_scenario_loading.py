@@ -249,9 +249,11 @@ def test_a_metric_day_on_a_us_customary_canal(us_folder):
 
 
 def test_a_zone_makes_the_clock_follow_it(us_folder):
-    us_folder.replace("day.toml", "[period]\nstart = 2031-05-04T00:00:00-07:00", (
-        'zone = "Europe/Berlin"\n[period]\nstart = 2025-03-30T00:00:00'
-    ))
+    us_folder.replace(
+        "day.toml",
+        "[period]\nstart = 2031-05-04T00:00:00-07:00",
+        ('zone = "Europe/Berlin"\n[period]\nstart = 2025-03-30T00:00:00'),
+    )
 
     scenario = load_scenario("day.toml")
 

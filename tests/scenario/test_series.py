@@ -90,10 +90,13 @@ CSV_FAULTS = [
         ['north.csv:3: time: found "05:00", which is not after the time before it; times must rise'],
     ),
     ("time,value\n06:00,-1\n", ["north.csv:2: value: found -1.0; allowed: from 0 m3/s to 10000 m3/s"]),
-    ("time,value\n06:00,nan\n", [
-        'north.csv:2: value: found nan; allowed: a finite number in m3/s, or text such as "2.5 m3/s" with one of '
-        "the units m3/s, L/s, m3/h, m3/day, ML/day, ft3/s, cfs, acre-ft/day",
-    ]),
+    (
+        "time,value\n06:00,nan\n",
+        [
+            'north.csv:2: value: found nan; allowed: a finite number in m3/s, or text such as "2.5 m3/s" with one of '
+            "the units m3/s, L/s, m3/h, m3/day, ML/day, ft3/s, cfs, acre-ft/day",
+        ],
+    ),
     ("time,value\n06:00;1\n", ["north.csv:2: found 1 cells; the header has 2: time, value"]),
 ]
 

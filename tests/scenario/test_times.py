@@ -64,19 +64,38 @@ def test_days_when_the_clocks_change_have_23_or_25_hours(clock, when, hours):
 @pytest.mark.parametrize(
     ("clock", "when", "message"),
     [
-        (SPRING, "02:30", 'found "02:30", which does not come on 2025-03-30, when the clocks change; allowed: the time '
-                          'from the start, such as "+7 h", or the time with its offset from UTC'),
-        (AUTUMN, "02:30", 'found "02:30", which comes twice on 2025-10-26, when the clocks change; allowed: the time '
-                          'from the start, such as "+7 h", or the time with its offset from UTC'),
-        (ORDINARY, "24:01", 'found "24:01"; a time of the first day goes from "00:00" to "24:00"; allowed after that: '
-                            '"+30 h" (from the start) or date and time (ISO 8601)'),
-        (ORDINARY, "06:75", 'found "06:75"; a time of the first day goes from "00:00" to "24:00"; allowed after that: '
-                            '"+30 h" (from the start) or date and time (ISO 8601)'),
-        (ORDINARY, "+49 h", 'found "+49 h", which is 49 h after the start; '
-                            "the period ends 48 h after its start"),
-        (ORDINARY, "2031-05-03T23:00", 'found "2031-05-03T23:00", which is before the start of the period, '
-                                       "2031-05-04T00:00:00+02:00; a time of a later day needs its date, or "
-                                       '"+30 h" from the start'),
+        (
+            SPRING,
+            "02:30",
+            'found "02:30", which does not come on 2025-03-30, when the clocks change; allowed: the time '
+            'from the start, such as "+7 h", or the time with its offset from UTC',
+        ),
+        (
+            AUTUMN,
+            "02:30",
+            'found "02:30", which comes twice on 2025-10-26, when the clocks change; allowed: the time '
+            'from the start, such as "+7 h", or the time with its offset from UTC',
+        ),
+        (
+            ORDINARY,
+            "24:01",
+            'found "24:01"; a time of the first day goes from "00:00" to "24:00"; allowed after that: '
+            '"+30 h" (from the start) or date and time (ISO 8601)',
+        ),
+        (
+            ORDINARY,
+            "06:75",
+            'found "06:75"; a time of the first day goes from "00:00" to "24:00"; allowed after that: '
+            '"+30 h" (from the start) or date and time (ISO 8601)',
+        ),
+        (ORDINARY, "+49 h", 'found "+49 h", which is 49 h after the start; the period ends 48 h after its start'),
+        (
+            ORDINARY,
+            "2031-05-03T23:00",
+            'found "2031-05-03T23:00", which is before the start of the period, '
+            "2031-05-04T00:00:00+02:00; a time of a later day needs its date, or "
+            '"+30 h" from the start',
+        ),
     ],
 )
 def test_a_time_outside_the_day_or_the_period_is_refused(clock, when, message):

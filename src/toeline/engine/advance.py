@@ -44,9 +44,10 @@ PACE = np.dtype(
 def advance(tables, state, middle, after, work, totals, forcing, watch, rows, paces, leg, has_kink, inertial):
     """Advance the state through a leg of `leg` seconds; call again with the same leg after BLOCK_FULL.
 
-    Output due at or after the start and before the end of the leg goes to `rows`; that of the very end, which no leg begins,
-    by a leg of no length. After a jump of the forcing, or where
-    `has_kink` says that its rates are not those before, the steps start small. Returns LEG_DONE, BLOCK_FULL or STEP_TOO_SMALL.
+    Output due at or after the start and before the end of the leg goes to `rows`; that of the very end, which no leg
+    begins, by a leg of no length. After a jump of the forcing, or where
+    `has_kink` says that its rates are not those before, the steps start small. Returns LEG_DONE, BLOCK_FULL or
+    STEP_TOO_SMALL.
     """
     pace = paces[0]
     if pace.done == 0.0 and (begin_leg(tables, state, work, forcing, inertial) > JUMP or has_kink):
@@ -94,7 +95,7 @@ def step_ratio(tolerance, error):
 @inner_kernel
 def has_room(rows, pace):
     """Whether the block can take the output of one more step of the longest kind."""
-    longest = int(math.ceil(pace.longest_step * 1000.0))
+    longest = math.ceil(pace.longest_step * 1000.0)
     most, most_profiles = longest // pace.every + 2, longest // pace.profiles_every + 2
     return rows.filled[0] + most <= rows.canal.size and rows.filled[1] + most_profiles <= rows.profile_time.size
 

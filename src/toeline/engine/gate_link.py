@@ -86,9 +86,13 @@ def tail_level_balance(tables, link, last, level, tail_level, q, inner):
     section, beyond = tables.channel.shapes[site.section], tail_level - site.bed_level
     k_beyond = conveyance(section, site.roughness, beyond)
     if level >= tail_level:
-        k, dk, _ = link_conveyance(inner.conveyance, k_beyond, inner.conveyance_slope, 0.0, level - site.bed_level, beyond)
+        k, dk, _ = link_conveyance(
+            inner.conveyance, k_beyond, inner.conveyance_slope, 0.0, level - site.bed_level, beyond
+        )
     else:
-        k, _, dk = link_conveyance(k_beyond, inner.conveyance, 0.0, inner.conveyance_slope, beyond, level - site.bed_level)
+        k, _, dk = link_conveyance(
+            k_beyond, inner.conveyance, 0.0, inner.conveyance_slope, beyond, level - site.bed_level
+        )
     if k < LEAST_CONVEYANCE:
         k, dk = LEAST_CONVEYANCE, 0.0
     loss = link.length / (k * k)
@@ -104,7 +108,9 @@ def tail_level_balance(tables, link, last, level, tail_level, q, inner):
 
 @inner_kernel
 def boundary_balance(tables, index, nodes, q, forcing, work):
-    """Residual of a link that is not a reach, and its derivatives to the level above, the discharge and the level below."""
+    """Residual of a link that is not a reach, and its derivatives to the level above, the discharge and the level
+    below.
+    """
     link = tables.links[index]
     if link.kind == INFLOW:
         return q - forcing[FORCING_HEAD].now, 0.0, 1.0, 0.0

@@ -1,4 +1,6 @@
-"""From orders to openings: travel, hoist speed, smallest move and avoided bands, in one place, and a list of what was done."""
+"""From orders to openings: travel, hoist speed, smallest move and avoided bands, in one place, and a list of what was
+done.
+"""
 
 import math
 from dataclasses import dataclass
@@ -108,7 +110,9 @@ class GateMotion:
 
 
 def allowed_opening(gate, wanted: float, ordered: float) -> tuple[float, int, str]:
-    """The opening [m] that a gate may be held at nearest to the wanted one, the status and the reason of any difference."""
+    """The opening [m] that a gate may be held at nearest to the wanted one, the status and the reason of any
+    difference.
+    """
     target, reasons = wanted, []
     if not 0.0 <= target <= gate.max_opening:
         target = min(max(target, 0.0), gate.max_opening)
@@ -119,7 +123,8 @@ def allowed_opening(gate, wanted: float, ordered: float) -> tuple[float, int, st
             reasons.append(f"openings between {low:.3f} and {high:.3f} m are not held")
             target = edge
     move = abs(target - ordered)
-    if move < gate.smallest_move - SAME_OPENING and target != wanted or 0.0 < move < gate.smallest_move - SAME_OPENING:
+    is_wanted = move > 0.0 or target != wanted
+    if is_wanted and move < gate.smallest_move - SAME_OPENING:
         reasons.append(f"a move of {move:.3f} m is smaller than the smallest, {gate.smallest_move:.3f} m")
         return ordered, REFUSED, "; ".join(reasons)
     return target, TRIMMED if reasons else ACCEPTED, "; ".join(reasons)

@@ -136,7 +136,8 @@ def fill_free_jump(gate, jump, origin, discharge, out):
 def drowned_jump(shapes, gate, section, flow, up, down, out):
     """A roller at the gate: its depth over the jet, which keeps its thickness, its end and what it dissipates.
 
-    The free sequent depth that submergence counts from is that of the jet on the floor; a jet slower than critical has none.
+    The free sequent depth that submergence counts from is that of the jet on the floor; a jet slower than critical
+    has none.
     """
     q, thickness, tail_depth = flow.underflow, flow.jet_thickness, down - gate.floor_level
     width, step = gate.discharge_factor * gate.width, gate.sill_level - gate.floor_level

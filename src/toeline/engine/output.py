@@ -52,7 +52,9 @@ def quadratic(at, start, middle, end):
 
 @inner_kernel
 def levels_at(tables, before, after, h, at, tail_level, level):
-    """Levels at a fraction of the step: cubic Hermite in wet nodes, linear in drying ones; level water beyond a tail gate."""
+    """Levels at a fraction of the step: cubic Hermite in wet nodes, linear in drying ones; level water beyond a tail
+    gate.
+    """
     square, cube = at * at, at * at * at
     end = 3.0 * square - 2.0 * cube
     rate_start, rate_end = h * (cube - 2.0 * square + at), h * (cube - square)
@@ -90,7 +92,9 @@ def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at,
             opening = forcing[FORCING_GATES + link.gate].now
             watch.discharge[index] = judge_gate(tables.channel, gate, up, down, opening, watch.level, watch.jet, out)
             out.surge_height_bound_upstream = guard.surge_upstream if time_ms < guard.surge_upstream_until else 0.0
-            out.surge_height_bound_downstream = guard.surge_downstream if time_ms < guard.surge_downstream_until else 0.0
+            out.surge_height_bound_downstream = (
+                guard.surge_downstream if time_ms < guard.surge_downstream_until else 0.0
+            )
     storage = fill_pools(tables, before, middle, after, watch, rows.pools[row], time_ms, at)
     delivered = fill_offtakes(tables, before, middle, after, totals, rows.offtakes[row], h, at, forcing)
     canal = rows.canal[row]
@@ -181,4 +185,6 @@ def fill_profile(tables, before, middle, after, watch, rows, time_ms, h, at, for
         depth = watch.level[k] - site.bed_level
         out.water_level = max(watch.level[k], site.bed_level)
         out.discharge = quadratic(at, start, inner, end)
-        out.velocity = out.discharge / geometry(tables.channel.shapes[site.section], depth)[0] if depth > DRY_DEPTH else 0.0
+        out.velocity = (
+            out.discharge / geometry(tables.channel.shapes[site.section], depth)[0] if depth > DRY_DEPTH else 0.0
+        )

@@ -53,12 +53,14 @@ def convective_target(share, discharge, inverse_up, inverse_down):
 
 
 @inner_kernel
-def reach_balance(link, transition_loss, up, down, level_up, level_down, depth_up, depth_down, q, head_base, head_share):
+def reach_balance(
+    link, transition_loss, up, down, level_up, level_down, depth_up, depth_down, q, head_base, head_share
+):
     """Head left over in a reach link [m], and its derivatives to the level above, the discharge and the level below.
 
     z_i − z_{i+1} + C − Q|Q|·(Δx/K² + local losses), with C = head_base + head_share·Q²/2g·(α/A_i² − α/A_{i+1}²).
-    The slope to the discharge is never less than at the balance with the present levels: from rest Newton's method would
-    overshoot.
+    The slope to the discharge is never less than at the balance with the present levels: from rest Newton's method
+    would overshoot.
     """
     if level_up >= level_down:
         k, dk_up, dk_down = link_conveyance(
@@ -91,7 +93,8 @@ def reach_balance(link, transition_loss, up, down, level_up, level_down, depth_u
 def _dry_balance(drive, loss, loss_up, loss_down, q):
     """The balance of a link with a dry end, solved for its discharge: q less drive/√(loss·(|drive| + 0.1 mm)).
 
-    With next to no storage at the dry end the levels do not hold Newton's method; the discharge must follow them at once.
+    With next to no storage at the dry end the levels do not hold Newton's method; the discharge must follow them at
+    once.
     """
     size = abs(drive) + DRY_HEAD
     balanced = drive / math.sqrt(loss * size)
@@ -134,10 +137,11 @@ def wet_share(depth_up, depth_down):
 
 @inner_kernel
 def inertia_head(length, share, mean, q, earlier_flux, momentum_base, seconds):
-    """Head that accelerates a link's water, less what earlier stages left, and its derivatives to discharge and mean area.
+    """Head that accelerates a link's water, less what earlier stages left, and its derivatives to discharge and mean
+    area.
 
-    Δx/g·(d(Q/A)/dt − Q/A²·dA/dt) = Δx/g·A·d(Q/A²)/dt, advanced with the weights of the stage: `earlier_flux` is Q/A² at the
-    start of the step.
+    Δx/g·(d(Q/A)/dt − Q/A²·dA/dt) = Δx/g·A·d(Q/A²)/dt, advanced with the weights of the stage: `earlier_flux` is Q/A²
+    at the start of the step.
     """
     mass = share * length / (GRAVITY * seconds)
     base = share * momentum_base

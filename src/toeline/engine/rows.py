@@ -98,5 +98,5 @@ def filled_block(rows: Rows) -> dict[str, np.ndarray]:
     block = {"profile_time": rows.profile_time[:profile_count].copy()}
     for table, size in ((rows.canal, count), (rows.gates, count), (rows.pools, count), (rows.offtakes, count),
                         (rows.profiles, profile_count)):  # fmt: skip
-        block |= {name: np.ascontiguousarray(table[:size][name]) for name in table.dtype.names}
+        block |= {name: np.ascontiguousarray(table[:size][name]) for name in table.dtype.names or ()}
     return block

@@ -2,10 +2,10 @@
 
 import math
 
+from toeline.constants import GRAVITY
 from toeline.engine.gate_link import gate_discharge_at
 from toeline.hydraulics.cross_section import geometry
 from toeline.hydraulics.kernel import inner_kernel, kernel
-from toeline.constants import GRAVITY
 from toeline.hydraulics.surge import DOWNSTREAM, UPSTREAM, surge_height, wave_speeds
 
 LEAST_SURGE_DEPTH = 0.05
@@ -14,7 +14,9 @@ LEAST_SURGE_DEPTH = 0.05
 
 @kernel
 def round_trip(channel, first, last, state):
-    """Time [s] for a small wave down and back up a pool, Σ Δx/(c + V) + Σ Δx/(c − V); infinite where it is dry or critical."""
+    """Time [s] for a small wave down and back up a pool, Σ Δx/(c + V) + Σ Δx/(c − V); infinite where it is dry or
+    critical.
+    """
     total = 0.0
     for k in range(first, last):
         here, there = channel.nodes[k], channel.nodes[k + 1]
@@ -29,8 +31,8 @@ def round_trip(channel, first, last, state):
 
 @kernel
 def surge_bounds(shapes, gate, level_up, level_down, opening, opening_after):
-    """Heights [m] of the surges up and down the pools if a gate went from one opening to another at once, and the change of
-    its discharge [m³/s]."""
+    """Heights [m] of the surges up and down the pools if a gate went from one opening to another at once, and the
+    change of its discharge [m³/s]."""
     before = gate_discharge_at(shapes, gate, level_up, level_down, opening)
     change = gate_discharge_at(shapes, gate, level_up, level_down, opening_after) - before
     section_up, section_down = shapes[gate.upstream_section], shapes[gate.downstream_section]

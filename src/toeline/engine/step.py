@@ -99,17 +99,21 @@ def is_wet(site_up, site_down, level_up, level_down):
 
 @inner_kernel
 def stage_inertia(tables, before, work, index, q, seconds):
-    """`inertia_head` of a reach link at the present areas; it fades with the convective head (local partial inertia, Fread et
-    al. 1996) and where a link dries."""
+    """`inertia_head` of a reach link at the present areas; it fades with the convective head (local partial inertia,
+    Fread et al. 1996) and where a link dries."""
     earlier = before.links[index]
     flux = earlier.discharge / (earlier.mean_area * earlier.mean_area)
     mean = 0.5 * (work.nodes[index - 1].area + work.nodes[index].area)
-    return inertia_head(tables.links[index].length, earlier.convective_share, mean, q, flux, work.links[index].momentum_base, seconds)
+    return inertia_head(
+        tables.links[index].length, earlier.convective_share, mean, q, flux, work.links[index].momentum_base, seconds
+    )
 
 
 @inner_kernel
 def assemble(tables, before, after, work, seconds, head_factor, inertial, forcing):
-    """Fill the Newton matrix and right side at the present levels and discharges, and sweep it forward as it is made."""
+    """Fill the Newton matrix and right side at the present levels and discharges, and sweep it forward as it is
+    made.
+    """
     geometry_pass(tables, after.nodes, work)
     count = after.nodes.size
     pivot_before = upper_before = x_before = 0.0
@@ -136,7 +140,9 @@ def assemble(tables, before, after, work, seconds, head_factor, inertial, forcin
 
 @inner_kernel
 def apply_correction(tables, after, work):
-    """Add the correction, each level within half its depth or 5 cm; returns the largest change of a level [m] that counts."""
+    """Add the correction, each level within half its depth or 5 cm; returns the largest change of a level [m] that
+    counts.
+    """
     largest = 0.0
     after.links[0].discharge += work.rows[0].x
     for k in range(after.nodes.size):
@@ -238,7 +244,9 @@ def base_of_middle(before, work, seconds, scale):
 def base_of_end(before, middle, work, weight, scale):
     """What the stage at the end of the step starts from; `weight` = w·h."""
     for k in range(before.nodes.size):
-        work.nodes[k].volume_base = before.nodes[k].volume + weight * (before.nodes[k].net_inflow + middle.nodes[k].net_inflow)
+        work.nodes[k].volume_base = before.nodes[k].volume + weight * (
+            before.nodes[k].net_inflow + middle.nodes[k].net_inflow
+        )
     for k in range(1, before.nodes.size):
         link, inner = before.links[k], middle.links[k]
         rate = link.convective_rate + inner.convective_rate
@@ -251,7 +259,8 @@ def base_of_end(before, middle, work, weight, scale):
 def try_step(tables, before, middle, after, work, forcing, start, h, inertial):
     """One step of h seconds from `before` at `start` seconds of the leg into `after`.
 
-    Returns the number of linear solves (0 where a stage could not be solved) and the largest estimated error of a level [m].
+    Returns the number of linear solves (0 where a stage could not be solved) and the largest estimated error of a
+    level [m].
     """
     seconds = DIAGONAL * h
     scale = 1.0 / (1.0 + seconds / convective_time(inertial))
@@ -296,8 +305,8 @@ def begin_leg(tables, state, work, forcing, inertial):
     """Evaluate everything that follows from levels, volumes, convective heads and reach discharges afresh.
 
     Gates, boundaries and deliveries take the forcing at the start of the leg. Returns the largest change of a discharge
-    [m³/s] that this brought: large after a jump of the forcing, within Newton's tolerance elsewhere. Done at every stop, so
-    that a run that starts from an end state goes on as the unbroken one.
+    [m³/s] that this brought: large after a jump of the forcing, within Newton's tolerance elsewhere. Done at every
+    stop, so that a run that starts from an end state goes on as the unbroken one.
     """
     set_forcing(forcing, 0.0)
     largest = 0.0

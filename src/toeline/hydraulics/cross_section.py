@@ -2,7 +2,8 @@
 
 A section is one float64 array, made by `rectangle`, `trapezoid`, `triangle`, `circle` or `surveyed`:
 
-    [0] shape  [1] top depth  [2..5] area, width, perimeter, static moment at the top depth  [6] alpha  [7] beta  [8..] shape's own
+    [0] shape  [1] top depth  [2..5] area, width, perimeter, static moment at the top depth  [6] alpha  [7] beta
+    [8..] shape's own
 
 Above its top depth (highest point of the section line) a section is continued by vertical walls, so that no level is
 out of range. The static moment M(y) = ∫A dy is taken about the water surface, hence dM/dy = A.
@@ -10,6 +11,7 @@ out of range. The static moment M(y) = ∫A dy is taken about the water surface,
 
 import math
 from collections.abc import Sequence
+from itertools import pairwise
 
 import numpy as np
 
@@ -25,16 +27,22 @@ ROW = 7
 """Values in a row of a piecewise section: depth, area, width, its slope, perimeter, its slope, static moment."""
 
 CIRCLE_SLOT = 0.02
-"""Width of the slot above a circle's crown, in diameters: keeps the surface width positive when a pipe runs full (choice)."""
+"""Width of the slot above a circle's crown, in diameters: keeps the surface width positive when a pipe runs full
+(choice).
+"""
 
 CIRCLE_SIDES = 512
 """Sides of the polygon that stands for a circle inside a transition."""
 
 
-def trapezoid(bottom_width: float, side_slope: float, top_depth: float = math.inf, alpha: float = 1.0, beta: float = 1.0):
+def trapezoid(
+    bottom_width: float, side_slope: float, top_depth: float = math.inf, alpha: float = 1.0, beta: float = 1.0
+):
     """A trapezoid; `side_slope` horizontal to 1 vertical, both sides alike [m, 1, m]. Returns the section array."""
     if bottom_width < 0 or side_slope < 0 or bottom_width + side_slope == 0 or top_depth <= 0:
-        raise ValueError("a trapezoid needs bottom width and side slope not negative, not both zero, and a positive top depth")
+        raise ValueError(
+            "a trapezoid needs bottom width and side slope not negative, not both zero, and a positive top depth"
+        )
     own = (bottom_width, side_slope, 2.0 * math.hypot(1.0, side_slope))
     return _with_top(TRAPEZOID, top_depth, own, alpha, beta)
 
@@ -69,7 +77,8 @@ def surveyed(stations: Sequence[float], levels: Sequence[float], alpha: float = 
         raise ValueError("a surveyed section needs points at more than one level")
     station = np.concatenate(([station[0]], station, [station[-1]]))
     level = np.concatenate(([level.max()], level, [level.max()])) - level.min()
-    return _piecewise(*_polygon_rows(station, level), alpha, beta)
+    depth, width, perimeter = _polygon_rows(station, level)
+    return _piecewise(depth, width, perimeter, alpha, beta)
 
 
 def blended(section_a: np.ndarray, section_b: np.ndarray, weight: float):
@@ -119,7 +128,7 @@ def _polygon_rows(station: np.ndarray, level: np.ndarray):
         part = np.where(high <= middle, 1.0, np.where(low >= middle, 0.0, (y - low) / rise))
         return float(np.sum(lengths * part))
 
-    bounds = list(zip(depth[:-1], depth[1:], strict=True))
+    bounds = list(pairwise(depth))
     width = np.array([[wetted(run, y, 0.5 * (a + b)) for y in (a, b)] for a, b in bounds])
     perimeter = np.array([[wetted(side, y, 0.5 * (a + b)) for y in (a, b)] for a, b in bounds])
     return depth, width, perimeter
@@ -153,7 +162,8 @@ def _as_piecewise(section: np.ndarray) -> np.ndarray:
     depth[half:] = depth[half::-1]
     depth[[0, -1]] = radius
     lower = _polygon_rows(across, depth)
-    return _piecewise(*_closed_above(lower, radius), section[ALPHA], section[BETA])
+    depths, width, perimeter = _closed_above(lower, radius)
+    return _piecewise(depths, width, perimeter, section[ALPHA], section[BETA])
 
 
 def _closed_above(lower, radius: float):
@@ -176,7 +186,7 @@ def _blended_piecewise(a: np.ndarray, b: np.ndarray, weight: float, alpha: float
     top = _blended_top(a[TOP], b[TOP], weight)
     depths = np.unique(np.concatenate((_breakpoints(a), _breakpoints(b), [0.0, top])))
     depths = depths[depths <= top]
-    bounds = list(zip(depths[:-1], depths[1:], strict=True))
+    bounds = list(pairwise(depths))
     ends = np.array([[_linear_ends(section, y0, y1) for y0, y1 in bounds] for section in (a, b)])
     mixed = (1.0 - weight) * ends[0] + weight * ends[1]
     return _piecewise(depths, mixed[:, :2], mixed[:, 2:], alpha, beta)
@@ -238,7 +248,9 @@ def wetted_perimeter(section, depth):
 
 @kernel
 def static_moment(section, depth):
-    """Static moment of the flow area about the water surface [m³] at a depth [m]: the integral of the area over depth."""
+    """Static moment of the flow area about the water surface [m³] at a depth [m]: the integral of the area over
+    depth.
+    """
     y = max(depth, 0.0)
     above = y - section[TOP]
     if above > 0.0:

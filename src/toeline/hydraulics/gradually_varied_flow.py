@@ -19,7 +19,9 @@ DEPTH_STEP = 0.04
 """Relative change of depth in one substep of a supercritical profile (choice: toe within 0.5 %)."""
 
 DRY_DEPTH, WET_DEPTH = 0.02, 0.10
-"""Depths [m] between which a drying node hands its say in the conveyance of a link to its upstream neighbour (choice)."""
+"""Depths [m] between which a drying node hands its say in the conveyance of a link to its upstream neighbour
+(choice).
+"""
 
 LEAST_CONVEYANCE = 1e-9
 """Floor of a link's conveyance [m³/s]: a dry link stays solvable and passes nothing."""
@@ -46,8 +48,8 @@ class Channel(NamedTuple):
 
 
 def channel(chainage, bed_level, sections, roughness, transition_loss=0.0) -> Channel:
-    """A `Channel` from plain sequences: chainage [m], bed level [m], one section array, Manning's n and transition loss a node
-    (or one number for all)."""
+    """A `Channel` from plain sequences: chainage [m], bed level [m], one section array, Manning's n and transition
+    loss a node (or one number for all)."""
     nodes = np.zeros(len(chainage), CHANNEL_NODE).view(np.recarray)
     nodes.chainage, nodes.bed_level, nodes.roughness = chainage, bed_level, roughness
     nodes.transition_loss, nodes.section = transition_loss, np.arange(len(chainage))
@@ -56,7 +58,9 @@ def channel(chainage, bed_level, sections, roughness, transition_loss=0.0) -> Ch
 
 @kernel
 def link_geometry(channel, node, weight, depth):
-    """Area, top width, perimeter, its slope [m², m, m, 1] and roughness at the fraction `weight` between a node and the next."""
+    """Area, top width, perimeter, its slope [m², m, m, 1] and roughness at the fraction `weight` between a node and
+    the next.
+    """
     a, t, p, dp = geometry(channel.shapes[channel.nodes[node].section], depth)
     n = channel.nodes[node].roughness
     if weight > 0.0:
@@ -127,7 +131,8 @@ def supercritical_profile(channel, first, last, chainage, depth, discharge, chai
 
     Fills `chainage_out` and `depth_out` [m] and returns their count and how it ended: REACHED_END at node `last`,
     TURNED_CRITICAL (the last point is critical), FULL where the output is. Friction is averaged over each substep; with
-    no change of section a substep is taken in depth (direct step), else in distance (standard step) (Chow 1959, ch. 10).
+    no change of section a substep is taken in depth (direct step), else in distance (standard step) (Chow 1959, ch.
+    10).
     """
     node = first
     while node < last - 1 and channel.nodes[node + 1].chainage <= chainage:
@@ -206,7 +211,8 @@ def _step_in_depth(section, roughness, here, bed_slope, discharge):
 def _step_in_distance(channel, node, here, x_next, discharge):
     """The point at a chainage by Newton's method on the energy balance, critical where that cannot be met.
 
-    Below critical depth the balance falls with the depth; where its slope vanishes before it is met there is no such depth.
+    Below critical depth the balance falls with the depth; where its slope vanishes before it is met there is no such
+    depth.
     """
     start, end = channel.nodes[node], channel.nodes[node + 1]
     span, step, loss = end.chainage - start.chainage, x_next - here.chainage, start.transition_loss
@@ -237,8 +243,8 @@ def _step_in_distance(channel, node, here, x_next, discharge):
 def link_conveyance(k_up, k_down, dk_up, dk_down, depth_up, depth_down):
     """Conveyance of a reach link [m³/s] and its derivatives to the upstream and downstream depth.
 
-    The mean of both nodes; as the shallower one dries the weight moves to the upstream node alone, so that water can enter
-    a dry cell and cannot leave an empty one. "Upstream" is the side the water comes from.
+    The mean of both nodes; as the shallower one dries the weight moves to the upstream node alone, so that water can
+    enter a dry cell and cannot leave an empty one. "Upstream" is the side the water comes from.
     """
     shallow = min(depth_up, depth_down)
     if shallow >= WET_DEPTH:
@@ -254,8 +260,8 @@ def link_conveyance(k_up, k_down, dk_up, dk_down, depth_up, depth_down):
 def upstream_level(channel, node, level_down, discharge, point_loss):
     """Level [m] at a node from the level at the next in steady subcritical flow, and a status.
 
-    z_i + αQ²/2gA_i² = z_{i+1} + αQ²/2gA_{i+1}² + Δx·Q²/K² + local losses, K the mean of both conveyances. Bisection on the
-    subcritical side; NO_SOLUTION (critical depth) where no subcritical depth balances.
+    z_i + αQ²/2gA_i² = z_{i+1} + αQ²/2gA_{i+1}² + Δx·Q²/K² + local losses, K the mean of both conveyances. Bisection
+    on the subcritical side; NO_SOLUTION (critical depth) where no subcritical depth balances.
     """
     section = channel.shapes[channel.nodes[node].section]
     low = channel.nodes[node].bed_level + max(critical_depth(section, discharge)[0], 1e-6)
@@ -300,8 +306,8 @@ def _energy_gap(channel, node, level, level_down, discharge, point_loss):
 def subcritical_profile(channel, first, last, level, discharge, point_loss, levels_out):
     """Levels [m] of steady flow from node `last`, whose level is given, up to node `first`, and a status.
 
-    `point_loss` holds k of k·V²/2g between each node and the next. NO_SOLUTION at the first node that would be critical;
-    levels above it are then not filled.
+    `point_loss` holds k of k·V²/2g between each node and the next. NO_SOLUTION at the first node that would be
+    critical; levels above it are then not filled.
     """
     levels_out[last] = level
     for node in range(last - 1, first - 1, -1):

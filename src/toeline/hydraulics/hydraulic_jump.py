@@ -26,7 +26,8 @@ SILVESTER_POWER = np.array([1.01, 0.905, 0.885, 0.836])
 
 @kernel
 def sequent_depth(section, discharge, depth):
-    """The other depth [m] with the same specific force, and a status; NO_SOLUTION (and the depth itself) at critical flow.
+    """The other depth [m] with the same specific force, and a status; NO_SOLUTION (and the depth itself) at critical
+    flow.
 
     Equal specific force is the momentum equation of the jump on a level floor without friction (Bélanger; Chow 1959,
     ch. 15). Works both ways. Newton's method from the far side of the root, where the force is convex.

@@ -12,7 +12,6 @@ from toeline.hydraulics.gradually_varied_flow import (
     link_critical_depth,
     link_force,
     link_geometry,
-    supercritical_profile,
 )
 from toeline.hydraulics.hydraulic_jump import (
     LENGTH_NOT_DEFINED,
@@ -50,7 +49,9 @@ class FreeJump(NamedTuple):
 
 @kernel
 def jet_on_floor(section, jet_width, thickness, step, discharge):
-    """The jet of a gate after its fall of `step` [m] onto the floor: y₁ + q²/(2gy₁²) = h + q²/(2gh²) + step, as a `Jet`."""
+    """The jet of a gate after its fall of `step` [m] onto the floor: y₁ + q²/(2gy₁²) = h + q²/(2gh²) + step, as a
+    `Jet`.
+    """
     q = discharge / jet_width
     energy = thickness + q * q / (2.0 * GRAVITY * thickness * thickness) + step
     depth = _alternate_depth(q, energy) if step > 0.0 else thickness
@@ -90,7 +91,9 @@ def _node_below(channel, first, last, chainage):
     node = first
     while node < last - 1 and channel.nodes[node + 1].chainage <= chainage:
         node += 1
-    return node, (chainage - channel.nodes[node].chainage) / (channel.nodes[node + 1].chainage - channel.nodes[node].chainage)
+    return node, (chainage - channel.nodes[node].chainage) / (
+        channel.nodes[node + 1].chainage - channel.nodes[node].chainage
+    )
 
 
 @kernel
@@ -101,10 +104,11 @@ def drowning_depth(section, jet):
 
 @kernel
 def free_jump(channel, first, last, levels, jet, chainages, depths, count):
-    """The jump on a jet's profile (`supercritical_profile`) under a tailwater given by the nodes' levels, as a `FreeJump`.
+    """The jump on a jet's profile (`supercritical_profile`) under a tailwater given by the nodes' levels, as a
+    `FreeJump`.
 
-    The toe is the first place where the jet's specific force has fallen to the tailwater's. Called for a jet whose force at
-    the start exceeds the tailwater's. Chainage NaN where that happens nowhere: swept out of the channel.
+    The toe is the first place where the jet's specific force has fallen to the tailwater's. Called for a jet whose
+    force at the start exceeds the tailwater's. Chainage NaN where that happens nowhere: swept out of the channel.
     """
     before, node = jet.force, first
     x_before = chainages[0]
@@ -152,7 +156,9 @@ def link_jump_length(channel, node, weight, depth, froude, sequent):
 
 @kernel
 def sequent_in_link(channel, node, weight, discharge, depth):
-    """Sequent depth [m] of a supercritical depth in the section between a node and the next; Newton's method from above."""
+    """Sequent depth [m] of a supercritical depth in the section between a node and the next; Newton's method from
+    above.
+    """
     force = link_force(channel, node, weight, discharge, depth)
     area, width, _, _, _ = link_geometry(channel, node, weight, depth)
     froude_squared = discharge * discharge * width / (GRAVITY * area * area * area)
@@ -184,8 +190,9 @@ def _end_of_jump_from(channel, first, last, discharge, x, depth):
 def protection_margin(channel, first, last, levels, discharge, chainages, depths, count, protection_end):
     """How far the tailwater could fall [m], its whole profile alike, before the jump's end passes `protection_end`.
 
-    Negative: how much it is short. From the profile of the free jet: the toe whose jump ends at the end of the protection;
-    margin = tailwater level there less the level of the sequent depth. NaN where the jet turns critical before any such toe.
+    Negative: how much it is short. From the profile of the free jet: the toe whose jump ends at the end of the
+    protection; margin = tailwater level there less the level of the sequent depth. NaN where the jet turns critical
+    before any such toe.
     """
     low, high = 0, count - 1
     while high > 1 and chainages[high - 1] >= protection_end:

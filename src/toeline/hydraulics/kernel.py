@@ -11,14 +11,15 @@ import sys
 import tempfile
 from collections.abc import Callable
 from pathlib import Path
-from typing import ParamSpec, TypeVar
+from typing import Any, ParamSpec, TypeVar
 
 import numba
 
+config: Any = numba.config
 P = ParamSpec("P")
 R = TypeVar("R")
 
-_FLAGS = {"error_model": "numpy", "nogil": True, "fastmath": False, "_nrt": False}
+_FLAGS: dict[str, Any] = {"error_model": "numpy", "nogil": True, "fastmath": False, "_nrt": False}
 """`_nrt`: kernels allocate nothing, so that numba need not count references (measured: a run takes half the time)."""
 
 _INNER = {"no_cpython_wrapper": True, "no_cfunc_wrapper": True}
@@ -28,7 +29,7 @@ _KERNEL_ROOMS = ("hydraulics", "engine")
 def _source_digest() -> str:
     package = Path(__file__).resolve().parent.parent
     digest = hashlib.sha256(f"{numba.__version__} {sys.version} {sorted(_FLAGS.items())}".encode())
-    digest.update(str(numba.config.BOUNDSCHECK).encode())
+    digest.update(str(config.BOUNDSCHECK).encode())
     for room in _KERNEL_ROOMS:
         for source in sorted((package / room).glob("*.py")):
             digest.update(source.read_bytes())
@@ -67,21 +68,23 @@ def kernel(function: Callable[P, R]) -> Callable[P, R]:
 
 
 def inner_kernel(function: Callable[P, R]) -> Callable[P, R]:
-    """A `kernel` that only kernels call: nothing is made for calls from Python (measured: a third of the compile time)."""
+    """A `kernel` that only kernels call: nothing is made for calls from Python (measured: a third of the compile
+    time).
+    """
     return _compiled(function, **_INNER)
 
 
-def _compiled(function: Callable[P, R], **flags: bool) -> Callable[P, R]:
-    before = numba.config.CACHE_DIR
-    numba.config.CACHE_DIR = str(_FOLDER or "")
+def _compiled(function: Callable[P, R], **flags: Any) -> Callable[P, R]:
+    before = config.CACHE_DIR
+    config.CACHE_DIR = str(_FOLDER or "")
     try:
         return numba.njit(**_FLAGS, **flags)(function)
     finally:
-        numba.config.CACHE_DIR = before
+        config.CACHE_DIR = before
 
 
 def cache_is_warm() -> bool:
     """Whether an earlier run has left the compiled time loop on disk (or nothing is to be compiled)."""
-    if numba.config.DISABLE_JIT:
+    if config.DISABLE_JIT:
         return True
     return _FOLDER is not None and any(_FOLDER.rglob("advance.advance-*.nbc"))

@@ -36,7 +36,9 @@ def orifice_discharge(coefficient, width, opening, head):
 
 @kernel
 def offtake_discharge(kind, demand, sill_level, width, opening, coefficient, water_level):
-    """Discharge [m³/s] that an offtake takes at a water level; every kind fades out over the last 5 cm above its sill."""
+    """Discharge [m³/s] that an offtake takes at a water level; every kind fades out over the last 5 cm above its
+    sill.
+    """
     head = water_level - sill_level
     if kind == DEMAND:
         return demand * taper(head)

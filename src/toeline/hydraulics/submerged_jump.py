@@ -10,7 +10,8 @@ from toeline.hydraulics.kernel import kernel
 
 @kernel
 def jet_force(section, discharge, jet_width, jet_depth, surface_depth):
-    """Specific force [m³] of a jet of the given width and depth with dead water over and beside it up to `surface_depth`.
+    """Specific force [m³] of a jet of the given width and depth with dead water over and beside it up to
+    `surface_depth`.
 
     M(surface) + βQ²/(g·b·h): the momentum equation's upper side below a gate.
     """

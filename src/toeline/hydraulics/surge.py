@@ -14,8 +14,8 @@ DOWNSTREAM, UPSTREAM = 1.0, -1.0
 def surge_height(section, discharge, depth, change, direction):
     """Change of depth [m] behind the front of a surge, speed of the front [m/s] along its way, and a status.
 
-    `change` of discharge [m³/s, positive downstream] made at once at the end of a pool; `direction` DOWNSTREAM below the
-    gate that moves, UPSTREAM above it. With velocities U counted along the way of the front, speed w:
+    `change` of discharge [m³/s, positive downstream] made at once at the end of a pool; `direction` DOWNSTREAM below
+    the gate that moves, UPSTREAM above it. With velocities U counted along the way of the front, speed w:
     continuity w·(A₂ − A₁) = ΔQ, momentum M₂ − M₁ = A₁/g·(w − U₁)·(U₂ − U₁) (Chow 1959, ch. 18; Henderson 1966, ch. 8).
     A negative surge flattens as it travels: its height is the bound at the gate. NO_SOLUTION where the pool cannot
     feed the change: the whole depth is returned.
@@ -43,7 +43,9 @@ def surge_height(section, discharge, depth, change, direction):
 
 @inner_kernel
 def _surge_bracket(section, flow, depth, step):
-    """Two heights between which the excess force rises through zero, the pair nearest to no surge, and whether it exists."""
+    """Two heights between which the excess force rises through zero, the pair nearest to no surge, and whether it
+    exists.
+    """
     if step > 0.0:
         high = 0.1 * depth
         while _excess_force(section, flow, depth, step, high) < 0.0:

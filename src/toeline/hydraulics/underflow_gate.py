@@ -26,7 +26,9 @@ LIP_CONTACT = 0.5
 VERY_DROWNED = 0.95
 """Tailwater over headwater, both above the sill, from which the discharge of a drowned gate is poorly known."""
 LEAST_LOSS = 0.3
-"""Least share of the velocity head in the throat that an approach as fast as the throat leaves to be supplied (choice)."""
+"""Least share of the velocity head in the throat that an approach as fast as the throat leaves to be supplied
+(choice).
+"""
 LEAST_HEAD = 1e-6
 """Head over the sill [m] below which nothing passes."""
 APPROACH_PASSES = 4
@@ -117,7 +119,9 @@ def jet_width(gate):
 
 @kernel
 def modular_limit_depth(gate, downstream_section, jet, discharge):
-    """Tail depth over the floor [m] at which the roller just reaches a free jet of the given thickness: the modular limit."""
+    """Tail depth over the floor [m] at which the roller just reaches a free jet of the given thickness: the modular
+    limit.
+    """
     surface = jet + gate.sill_level - gate.floor_level
     if discharge <= 0.0 or jet <= 0.0:
         return surface
@@ -165,11 +169,12 @@ def _throat_loss(gate, thickness, approach_per_square):
 
 @kernel
 def drowned_discharge(gate, section, head_depth, tail_depth, energy, opening, lip, approach_per_square):
-    """Discharge [m³/s] and roller depth [m] of a drowned gate: energy to the throat and momentum over the floor together.
+    """Discharge [m³/s] and roller depth [m] of a drowned gate: energy to the throat and momentum over the floor
+    together.
 
-    `head_depth` is the headwater over the downstream floor, `energy` the upstream energy head over the sill, `lip` = C_c·a.
-    Where the roller does not reach the lip the throat is the water over the sill (an open throat); a lip that dips into the
-    surface passes no more than an open throat.
+    `head_depth` is the headwater over the downstream floor, `energy` the upstream energy head over the sill, `lip` =
+    C_c·a. Where the roller does not reach the lip the throat is the water over the sill (an open throat); a lip that
+    dips into the surface passes no more than an open throat.
     """
     if head_depth <= tail_depth:
         return 0.0, tail_depth
@@ -188,7 +193,9 @@ def drowned_discharge(gate, section, head_depth, tail_depth, energy, opening, li
 
 @inner_kernel
 def _reaches_lip(gate, section, head_depth, tail_depth, lip, approach_per_square):
-    """Whether the roller of a gate clear of water stands up to its lip: the jet under the lip has less force than the tail."""
+    """Whether the roller of a gate clear of water stands up to its lip: the jet under the lip has less force than the
+    tail.
+    """
     least = lip + gate.sill_level - gate.floor_level
     if least >= tail_depth:
         return False
@@ -257,9 +264,7 @@ def _underflow_one_way(gate, upstream_section, downstream_section, headwater_lev
     below, head_depth = tail_depth / (1.0 + BLEND), headwater_level - gate.floor_level
     approach = (energy - (headwater_level - gate.sill_level)) / (free * free)
     if _is_subcritical(downstream_section, flux, below) and _tail_force(downstream_section, flux, below) >= force:
-        q, roller = drowned_discharge(
-            gate, downstream_section, head_depth, tail_depth, energy, opening, lip, approach
-        )
+        q, roller = drowned_discharge(gate, downstream_section, head_depth, tail_depth, energy, opening, lip, approach)
         q = min(q, free)
         if state == CLEAR_OF_WATER:
             state, jet = CLEAR_AND_DROWNED, min(lip, roller - step)
@@ -279,9 +284,7 @@ def _underflow(gate, upstream_section, downstream_section, headwater_level, tail
     """`_underflow_one_way`, scaled linearly to zero over the last centimetre of head."""
     head = headwater_level - tailwater_level
     if head >= LINEAR_HEAD:
-        return _underflow_one_way(
-            gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening
-        )
+        return _underflow_one_way(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening)
     lowered = headwater_level - LINEAR_HEAD
     flow = _underflow_one_way(gate, upstream_section, downstream_section, headwater_level, lowered, opening)
     q = flow.discharge * max(head, 0.0) / LINEAR_HEAD
@@ -306,8 +309,9 @@ def gate_flow(gate, upstream_section, downstream_section, headwater_level, tailw
 
     Levels in m above datum, opening in m above the sill. Free flow by energy; drowned flow by energy to the jet and
     momentum below it (Henry 1950; Henderson 1966, ch. 6); linear between 0.975 and 1.025 of the modular limit (choice);
-    water above the leaf by the weir formula, drowned after Villemonte 1947. The state says which; the quality says where
-    the discharge is poorly known: near the limit, lip near the surface (a > E/2), tailwater ≥ 0.95 of headwater, reverse.
+    water above the leaf by the weir formula, drowned after Villemonte 1947. The state says which; the quality says
+    where the discharge is poorly known: near the limit, lip near the surface (a > E/2), tailwater ≥ 0.95 of headwater,
+    reverse.
     """
     if tailwater_level > headwater_level:
         turned = reversed_gate(gate)
@@ -368,7 +372,9 @@ def _quality(gate, flow, headwater_level, tailwater_level, opening, sign):
 
 
 @kernel
-def opening_for_discharge(gate, upstream_section, downstream_section, headwater_level, tailwater_level, discharge, largest):
+def opening_for_discharge(
+    gate, upstream_section, downstream_section, headwater_level, tailwater_level, discharge, largest
+):
     """Opening [m] that passes a discharge [m³/s] at given levels, and the discharge at that opening.
 
     Bisection on [0, `largest`]; the end of the range nearest to the wanted discharge where none passes it.

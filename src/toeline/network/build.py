@@ -1,7 +1,6 @@
 """From the scenario's pools, gates and offtakes to the tables of the time loop."""
 
 import math
-from dataclasses import dataclass, field
 
 import numpy as np
 
@@ -10,6 +9,7 @@ from toeline.hydraulics.critical_flow import critical_depth
 from toeline.hydraulics.gradually_varied_flow import CHANNEL_NODE, DRY_DEPTH, Channel
 from toeline.hydraulics.underflow_gate import SHARP_EDGE_CONTRACTION, UnderflowGate
 from toeline.hydraulics.uniform_flow import normal_depth
+from toeline.network.layout import Line, Node, lay_out, protected_ends
 from toeline.network.tables import (
     CELL,
     FREE_OVERFALL,
@@ -29,12 +29,9 @@ from toeline.network.tables import (
     Tables,
     records,
 )
-
-SUDDEN_CHANGE_LENGTH = 1.0
-"""Length [m] given to a change of section without a transition."""
-
-BARE_TAIL_LENGTH = 100.0
-"""Length [m] of level, unprotected floor below a tail gate whose floor is not described."""
+from toeline.scenario.schema.canal import Canal
+from toeline.scenario.schema.gates import Gate
+from toeline.scenario.schema.sections import Section
 
 TAIL_BASIN_LENGTH = 20.0
 """Length [m] of canal that stands for the water just below a tail gate with a rating beyond (choice)."""
@@ -46,9 +43,9 @@ TAIL_KINDS = {"level": TAIL_LEVEL, "rating": RATING, "free overfall": FREE_OVERF
 OFFTAKE_KINDS = {"demand": offtake.DEMAND, "orifice": offtake.ORIFICE, "weir": offtake.WEIR}
 
 
-def network_of(canal, spacing: float) -> Network:
+def network_of(canal: Canal, spacing: float) -> Network:
     """Tables of a canal with nodes at most `spacing` metres apart."""
-    lines = _lay_out(canal, spacing)
+    lines = lay_out(canal, spacing)
     has_tail_gate = canal.gates and canal.gates[-1].downstream == "tail"
     has_basin = bool(has_tail_gate) and canal.tail.kind != "level"
     shapes = _Shapes(canal)
@@ -62,98 +59,19 @@ def network_of(canal, spacing: float) -> Network:
         offtakes=_offtakes(canal, lines, channel),
         pools=_pools(lines[: len(canal.pools)]),
         tail_slope=np.array([canal.tail.slope or 0.0]),
-        tail_rating=np.ascontiguousarray(np.array(canal.tail.rating or [[0.0, 0.0], [1.0, 1.0]], float).T),
+        tail_rating=np.ascontiguousarray(np.array(canal.tail.rating or [(0.0, 0.0), (1.0, 1.0)], float).T),
     )
     return Network(tables, has_basin, _names(canal, lines, canal_nodes))
-
-
-@dataclass
-class _Node:
-    """A node while it is laid out: sections by name, the second one blended in by weight."""
-
-    distance: float  # m from the start of its line
-    bed: float
-    section: str
-    blend: tuple[str, float] | None
-    surface: str
-    transition_loss: float = 0.0  # of the link to the next node
-
-
-@dataclass
-class _Line:
-    """The nodes of a pool, or of the floor beyond the tail gate."""
-
-    start: float  # m from the head of the canal
-    nodes: list[_Node] = field(default_factory=list)
-    first_index: int = 0
-
-    @property
-    def last_index(self) -> int:
-        return self.first_index + len(self.nodes) - 1
-
-
-def _lay_out(canal, spacing: float) -> list[_Line]:
-    lines, start, index = [], 0.0, 0
-    for pool in canal.pools:
-        line = _Line(start, _pool_nodes(pool.stretches, pool.bed_level, spacing), index)
-        lines.append(line)
-        start, index = start + line.nodes[-1].distance, index + len(line.nodes)
-    if canal.gates and canal.gates[-1].downstream == "tail":
-        lines.append(_Line(start, _tail_floor(canal, spacing), index))
-    return lines
-
-
-def _tail_floor(canal, spacing: float) -> list[_Node]:
-    tail, gate = canal.tail, canal.gates[-1]
-    bed = tail.floor_level if tail.floor_level is not None else gate.sill_level
-    if tail.stretches:
-        return _pool_nodes(tail.stretches, bed, spacing)
-    last = canal.pools[-1].stretches[-1]
-    section = tail.section or last.section
-    surface = tail.surface or ""
-    return [_Node(d, bed, section, None, surface) for d in (0.0, BARE_TAIL_LENGTH)]
-
-
-def _pool_nodes(stretches, bed: float, spacing: float) -> list[_Node]:
-    """Nodes at both ends of every stretch and in between; a change of section is spread over a transition."""
-    first = stretches[0]
-    nodes = [_Node(0.0, bed, first.section, None, first.surface)]
-    before = first.section
-    for stretch in stretches:
-        length, level = stretch.length, nodes[-1].bed
-        blend = stretch.section != before
-        if blend and not stretch.transition:
-            sudden = min(SUDDEN_CHANGE_LENGTH, 0.5 * length)
-            _append(nodes, stretch, sudden, spacing, before)
-            length, blend = length - sudden, False
-        _append(nodes, stretch, length, spacing, before if blend else None)
-        nodes[-1].bed = level - stretch.slope * stretch.length
-        before = stretch.section
-    return nodes
-
-
-def _append(nodes: list[_Node], stretch, length: float, spacing: float, blended_from: str | None) -> None:
-    """Add the nodes of one length of a stretch behind those already laid."""
-    start, bed = nodes[-1].distance, nodes[-1].bed
-    nodes[-1].surface = stretch.surface
-    count = max(1, math.ceil(length / spacing - 1e-9))
-    for k in range(1, count + 1):
-        weight = k / count
-        blend = (blended_from, 1.0 - weight) if blended_from and k < count else None
-        nodes[-1].transition_loss = stretch.transition_loss if blended_from else 0.0
-        nodes.append(
-            _Node(start + length * weight, bed - stretch.slope * length * weight, stretch.section, blend, stretch.surface)
-        )
 
 
 class _Shapes:
     """Section arrays by name and blend, each once."""
 
-    def __init__(self, canal):
+    def __init__(self, canal: Canal):
         self.sections = {name: _section(section) for name, section in canal.sections.items()}
         self.roughness = {name: section.roughness for name, section in canal.sections.items()}
         self.rows: list[np.ndarray] = []
-        self.index: dict[tuple, int] = {}
+        self.index: dict[tuple[str, tuple[str, float] | None], int] = {}
 
     def row(self, name: str, blend: tuple[str, float] | None) -> int:
         key = (name, blend)
@@ -173,21 +91,19 @@ class _Shapes:
         return n if blend is None else n + blend[1] * (self.roughness[blend[0]] - n)
 
 
-def _section(section) -> np.ndarray:
+def _section(section: Section) -> np.ndarray:
     """Section array of the scenario's section; walls are vertical above the bank where one is given."""
     alpha, beta = section.velocity_coefficient, section.momentum_coefficient
     top = section.bank_height if section.bank_height is not None else math.inf
     if section.shape == "points":
-        stations, levels = zip(*section.points, strict=True)
+        stations, levels = zip(*(section.points or ()), strict=True)
         return cross_section.surveyed(stations, levels, alpha, beta)
     if section.shape == "circle":
-        return cross_section.circle(section.diameter, alpha, beta)
-    width = section.bottom_width if section.shape != "triangle" else 0.0
-    slope = section.side_slope if section.shape != "rectangle" else 0.0
-    return cross_section.trapezoid(width, slope, top, alpha, beta)
+        return cross_section.circle(section.diameter or 0.0, alpha, beta)
+    return cross_section.trapezoid(section.bottom_width or 0.0, section.side_slope or 0.0, top, alpha, beta)
 
 
-def _channel(lines: list[_Line], shapes: _Shapes) -> Channel:
+def _channel(lines: list[Line], shapes: _Shapes) -> Channel:
     nodes = [(line, node) for line in lines for node in line.nodes]
     section = [shapes.row(node.section, node.blend) for _, node in nodes]
     shapes.add(cross_section.rectangle(RESERVOIR_WIDTH))
@@ -202,7 +118,7 @@ def _channel(lines: list[_Line], shapes: _Shapes) -> Channel:
     return Channel(table, cross_section.packed(shapes.rows))
 
 
-def _cells(lines: list[_Line], channel: Channel, canal_nodes: int, has_basin: bool) -> np.recarray:
+def _cells(lines: list[Line], channel: Channel, canal_nodes: int, has_basin: bool) -> np.recarray:
     count = canal_nodes + int(has_basin)
     length = np.zeros(count)
     for line in lines:
@@ -217,7 +133,7 @@ def _cells(lines: list[_Line], channel: Channel, canal_nodes: int, has_basin: bo
     return records(CELL, length=length, dry_area=area, dry_width=width, dry_perimeter=perimeter)
 
 
-def _links(canal, lines: list[_Line], canal_nodes: int, has_basin: bool) -> np.recarray:
+def _links(canal: Canal, lines: list[Line], canal_nodes: int, has_basin: bool) -> np.recarray:
     count = canal_nodes + int(has_basin)
     links = np.zeros(count + 1, LINK).view(np.recarray)
     links.kind, links.gate = REACH, -1
@@ -227,22 +143,22 @@ def _links(canal, lines: list[_Line], canal_nodes: int, has_basin: bool) -> np.r
         links.length[first : line.last_index + 1] = np.diff(ends)
         for loss in pool.point_losses:
             links.point_loss[first + int(np.searchsorted(ends[1:], loss.chainage))] += loss.coefficient
-    links.kind[0] = INFLOW
-    links.kind[count] = TAIL_KINDS[canal.tail.kind]
-    links.length[count] = 1.0 if links.kind[count] == TAIL_LEVEL else 0.0
+    tail = TAIL_KINDS[canal.tail.kind]
+    links[0] = (INFLOW, 0.0, 0.0, -1)
+    links[count] = (tail, 1.0 if tail == TAIL_LEVEL else 0.0, 0.0, -1)
     for g, link in enumerate(_gate_links(canal, lines)):
         links[link] = (GATE, 0.0, 0.0, g)
     return links
 
 
-def _gate_links(canal, lines: list[_Line]) -> list[int]:
+def _gate_links(canal: Canal, lines: list[Line]) -> list[int]:
     """The link of every gate: the one above the first node of the pool below it."""
     starts = {pool.name: line.first_index for pool, line in zip(canal.pools, lines, strict=False)}
     starts["tail"] = lines[len(canal.pools) - 1].last_index + 1
     return [starts[gate.downstream] for gate in canal.gates]
 
 
-def _gates(canal, lines: list[_Line], channel: Channel, shapes: _Shapes) -> np.recarray:
+def _gates(canal: Canal, lines: list[Line], channel: Channel, shapes: _Shapes) -> np.recarray:
     names = [pool.name for pool in canal.pools] + ["tail"]
     rows = []
     for gate in canal.gates:
@@ -254,13 +170,13 @@ def _gates(canal, lines: list[_Line], channel: Channel, shapes: _Shapes) -> np.r
             len(shapes.rows) - 1 if up == HEAD else channel.nodes.section[up],
             channel.nodes.section[line.first_index],
         )
-        apron, protection = _protected_ends(canal, line)
+        apron, protection = protected_ends(canal, line)
         protected = line.first_index + max(1, sum(node.distance <= protection for node in line.nodes) - 1)
         rows.append((*law, up, line.first_index, *sections, line.last_index, protected, apron, protection))
     return np.array(rows, GATE_ROW).view(np.recarray)
 
 
-def gate_law(gate, floor_level: float, upstream_bed_level: float) -> UnderflowGate:
+def gate_law(gate: Gate, floor_level: float, upstream_bed_level: float) -> UnderflowGate:
     """The law's view of a gate of the scenario."""
     return UnderflowGate(
         width=gate.bays * gate.bay_width,
@@ -268,8 +184,8 @@ def gate_law(gate, floor_level: float, upstream_bed_level: float) -> UnderflowGa
         floor_level=floor_level,
         upstream_bed_level=upstream_bed_level,
         contraction=gate.contraction if gate.contraction is not None else SHARP_EDGE_CONTRACTION,
-        radius=gate.radius if gate.kind == "radial" else 0.0,
-        pinion_height=gate.pinion_height if gate.kind == "radial" else 0.0,
+        radius=gate.radius or 0.0,
+        pinion_height=gate.pinion_height or 0.0,
         discharge_factor=gate.discharge_factor,
         leaf_height=gate.leaf_height if gate.leaf_height is not None else math.inf,
         leaf_weir_coefficient=gate.leaf_weir_coefficient,
@@ -277,21 +193,7 @@ def gate_law(gate, floor_level: float, upstream_bed_level: float) -> UnderflowGa
     )
 
 
-def _protected_ends(canal, line: _Line) -> tuple[float, float]:
-    """Where the concrete apron ends, and the last protected surface without a gap [m from the gate]."""
-    apron = protection = 0.0
-    on_apron = True
-    for node, following in zip(line.nodes[:-1], line.nodes[1:], strict=True):
-        surface = canal.surfaces.get(node.surface)
-        if surface is None or not surface.protected:
-            break
-        on_apron = on_apron and surface.apron
-        apron = following.distance if on_apron else apron
-        protection = following.distance
-    return apron, protection
-
-
-def _offtakes(canal, lines: list[_Line], channel: Channel) -> np.recarray:
+def _offtakes(canal: Canal, lines: list[Line], channel: Channel) -> np.recarray:
     """Every offtake at the node nearest to it."""
     names = [pool.name for pool in canal.pools]
     nodes = []
@@ -313,11 +215,11 @@ def _offtakes(canal, lines: list[_Line], channel: Channel) -> np.recarray:
     )
 
 
-def _pools(lines: list[_Line]) -> np.recarray:
+def _pools(lines: list[Line]) -> np.recarray:
     return records(POOL, first_node=[line.first_index for line in lines], last_node=[line.last_index for line in lines])
 
 
-def _names(canal, lines: list[_Line], canal_nodes: int) -> Names:
+def _names(canal: Canal, lines: list[Line], canal_nodes: int) -> Names:
     surfaces = tuple(canal.surfaces)
     nodes = [node for line in lines for node in line.nodes][:canal_nodes]
     limits = {name: surface.velocity_limit for name, surface in canal.surfaces.items()}
@@ -339,7 +241,7 @@ def _or_nan(value: float | None) -> float:
     return math.nan if value is None else value
 
 
-def _line_level(canal, node: _Node, height: str) -> float:
+def _line_level(canal: Canal, node: Node, height: str) -> float:
     """Level of the lining's or the bank's top at a node; through a transition it goes from one height to the other."""
     here = _or_nan(getattr(canal.sections[node.section], height))
     if node.blend is None:
@@ -348,7 +250,7 @@ def _line_level(canal, node: _Node, height: str) -> float:
     return node.bed + here + node.blend[1] * (there - here)
 
 
-def steep_stretches(canal, discharge: float) -> list[tuple[int, int, float, float]]:
+def steep_stretches(canal: Canal, discharge: float) -> list[tuple[int, int, float, float]]:
     """Stretches whose normal depth is below critical: pool index, stretch index, normal and critical depth [m]."""
     found = []
     sections = {name: _section(section) for name, section in canal.sections.items()}

@@ -1,5 +1,6 @@
 """The steady state that a day starts from, found pool by pool from the tail up."""
 
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -19,6 +20,10 @@ DISCHARGE_AGREES = 1e-12
 
 DEEPEST = 50.0
 """Height [m] over a gate's sill up to which its headwater is looked for."""
+
+
+HeadwaterOf = Callable[[int, float, float], float]
+"""Level above a gate [m] from its index, its discharge and the level below."""
 
 
 @dataclass(frozen=True)
@@ -44,16 +49,22 @@ def dry_state(network: Network, openings: np.ndarray) -> Start:
     return Start(level, np.zeros(network.node_count + 1), openings)
 
 
-def steady_at_targets(network: Network, inflow: float, tail_level: float, head_level: float, demands: Demands, largest) -> Start:
+def steady_at_targets(
+    network: Network, inflow: float, tail_level: float, head_level: float, demands: Demands, largest: Sequence[float]
+) -> Start:
     """Steady state with every pool at its target level; `largest` are the widest openings [m].
 
     Raises UsageError where a pool has no target, a gate cannot pass its share, or the flow would not be calm.
     """
     missing = [name for name, z in zip(network.names.pools, network.names.target_level, strict=True) if np.isnan(z)]
     held = set(network.tables.gates.upstream_node.tolist())
-    missing = [name for name, last in zip(network.names.pools, network.tables.pools.last_node, strict=True) if name in missing and last in held]
+    missing = [
+        name
+        for name, last in zip(network.names.pools, network.tables.pools.last_node, strict=True)
+        if name in missing and last in held
+    ]
     if missing:
-        raise UsageError(f"openings \"to hold targets\": no target_level given for {', '.join(missing)}")
+        raise UsageError(f'openings "to hold targets": no target_level given for {", ".join(missing)}')
     search = _Search(network, tail_level, demands)
     level, discharge = search.settle(inflow, lambda g, q, down: network.names.target_level[_pool_above(network, g)])
     openings = np.array(
@@ -62,15 +73,21 @@ def steady_at_targets(network: Network, inflow: float, tail_level: float, head_l
     return Start(level, discharge, openings)
 
 
-def steady_at_openings(network: Network, inflow: float, tail_level: float, demands: Demands, openings) -> Start:
+def steady_at_openings(
+    network: Network, inflow: float, tail_level: float, demands: Demands, openings: np.ndarray
+) -> Start:
     """Steady state for an inflow and given openings; raises UsageError where a gate cannot pass its share."""
     search = _Search(network, tail_level, demands)
     level, discharge = search.settle(inflow, lambda g, q, down: search.headwater(g, q, down, openings[g]))
     return Start(level, discharge, np.asarray(openings, float))
 
 
-def steady_under_reservoir(network: Network, head_level: float, tail_level: float, demands: Demands, openings) -> Start:
-    """Steady state below a reservoir with given openings: the inflow at which the head gate's headwater is the reservoir's."""
+def steady_under_reservoir(
+    network: Network, head_level: float, tail_level: float, demands: Demands, openings: np.ndarray
+) -> Start:
+    """Steady state below a reservoir with given openings: the inflow at which the head gate's headwater is the
+    reservoir's.
+    """
     search = _Search(network, tail_level, demands)
     largest = search.passed(0, head_level, network.tables.gates.sill_level[0] - 1.0, openings[0])
 
@@ -95,7 +112,7 @@ class _Search:
     def __init__(self, network: Network, tail_level: float, demands: Demands):
         self.network, self.tail_level, self.demands = network, tail_level, demands
 
-    def settle(self, inflow: float, headwater_of) -> tuple[np.ndarray, np.ndarray]:
+    def settle(self, inflow: float, headwater_of: HeadwaterOf) -> tuple[np.ndarray, np.ndarray]:
         """Levels and discharges that agree with the deliveries that they give."""
         network = self.network
         taken = self.demands.discharge.copy()
@@ -127,7 +144,7 @@ class _Search:
             takes.coefficient[k], level[takes.node[k]],
         )  # fmt: skip
 
-    def _levels(self, discharge: np.ndarray, headwater_of) -> np.ndarray:
+    def _levels(self, discharge: np.ndarray, headwater_of: HeadwaterOf) -> np.ndarray:
         """Levels from the tail up: a boundary, a gate or a reach at a time."""
         network, links = self.network, self.network.tables.links
         level = np.full(network.node_count, np.nan)
@@ -169,14 +186,15 @@ class _Search:
             return bed + critical_depth(section, q)[0]
         return bed + normal_depth(section, n, tables.tail_slope[0], q)[0]
 
-    def _law(self, g: int):
+    def _law(self, g: int) -> tuple[UnderflowGate, np.ndarray, np.ndarray]:
         row, shapes = self.network.tables.gates[g], self.network.channel.shapes
         law = UnderflowGate(*(float(row[name]) for name in UnderflowGate._fields))
         return law, shapes[row.upstream_section], shapes[row.downstream_section]
 
     def passed(self, g: int, up: float, down: float, opening: float) -> float:
         """Discharge of a gate [m³/s]."""
-        return gate_discharge(*self._law(g), up, down, opening)
+        law, above, beside = self._law(g)
+        return gate_discharge(law, above, beside, up, down, opening)
 
     def headwater(self, g: int, q: float, below: float, opening: float) -> float:
         """Level above a gate [m] at which it passes a discharge; its sill or the level below where nothing flows."""
@@ -203,7 +221,8 @@ class _Search:
         q = discharge[link]
         if q <= 1e-12:
             return 0.0
-        found, passed = opening_for_discharge(*self._law(g), up, down, q, largest)
+        law, above, beside = self._law(g)
+        found, passed = opening_for_discharge(law, above, beside, up, down, q, largest)
         if abs(passed - q) > 1e-6 * (1.0 + q):
             raise UsageError(
                 f"no steady state at the target levels: {self.network.names.gates[g]} passes {passed:.3f} m3/s "

@@ -15,30 +15,31 @@ from toeline.network.initial_state import (
 from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, Network
 from toeline.network.timetable import Timetable
 from toeline.scenario import Scenario
-from toeline.scenario.schema.day import TO_HOLD_TARGETS
 
 
 def starting_state(scenario: Scenario, network: Network, timetable: Timetable) -> Start:
     """Steady or dry, as the day file says; an end state is read elsewhere.
 
-    Raises ScenarioError, on the line of `[start]`, where there is no such steady state, and on the lines of stretches that
-    are steep for the largest discharge of the day.
+    Raises ScenarioError, on the line of `[start]`, where there is no such steady state, and on the lines of stretches
+    that are steep for the largest discharge of the day.
     """
     start, canal = scenario.day.start, scenario.canal
     forcing = timetable.values_at(0)
     first, count = FORCING_GATES + network.gate_count, network.offtake_count
     demands = Demands(np.nan_to_num(forcing[first : first + count]), forcing[first + count :])
-    openings = np.array([start.openings.get(gate.name, 0.0) for gate in canal.gates]) if start.openings != TO_HOLD_TARGETS else None
-    if start.state == "dry":
-        return dry_state(network, openings)
+    inflow, tail_level, head_level = start.inflow or 0.0, forcing[FORCING_TAIL], forcing[FORCING_HEAD]
+    if canal.head.kind == "inflow":
+        inflow = head_level
     try:
-        if openings is None:
-            inflow = forcing[FORCING_HEAD] if canal.head.kind == "inflow" else start.inflow
+        if not isinstance(start.openings, dict):
             largest = [gate.max_opening for gate in canal.gates]
-            return steady_at_targets(network, inflow, forcing[FORCING_TAIL], forcing[FORCING_HEAD], demands, largest)
+            return steady_at_targets(network, inflow, tail_level, head_level, demands, largest)
+        openings = np.array([start.openings.get(gate.name, 0.0) for gate in canal.gates])
+        if start.state == "dry":
+            return dry_state(network, openings)
         if canal.head.kind == "inflow":
-            return steady_at_openings(network, forcing[FORCING_HEAD], forcing[FORCING_TAIL], demands, openings)
-        return steady_under_reservoir(network, forcing[FORCING_HEAD], forcing[FORCING_TAIL], demands, openings)
+            return steady_at_openings(network, inflow, tail_level, demands, openings)
+        return steady_under_reservoir(network, head_level, tail_level, demands, openings)
     except UsageError as error:
         raise ScenarioError([scenario.fault(str(error), "start", file="day")]) from None
 

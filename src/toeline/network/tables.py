@@ -5,7 +5,7 @@ tail, so that n nodes have n + 1 links and every boundary is a link like any oth
 """
 
 from dataclasses import dataclass
-from typing import NamedTuple
+from typing import Any, NamedTuple
 
 import numpy as np
 
@@ -82,7 +82,7 @@ class Tables(NamedTuple):
     tail_rating: np.ndarray  # (2, r) levels [m] and discharges [m³/s] for RATING
 
 
-def records(row: np.dtype, /, **columns) -> np.recarray:
+def records(row: np.dtype, /, **columns: Any) -> np.recarray:
     """A record array from its columns, all of one length."""
     table = np.zeros(len(next(iter(columns.values()))), row).view(np.recarray)
     for name, values in columns.items():
@@ -94,8 +94,8 @@ def records(row: np.dtype, /, **columns) -> np.recarray:
 class Network:
     """All tables of a canal, and the names and levels that only people read.
 
-    `tables.channel` holds the canal's nodes and, behind a tail gate, those of the floor beyond it. Of the n unknown nodes the
-    last one is a basin beyond the tail gate where `has_tail_basin`; it is outside the canal and its ledger.
+    `tables.channel` holds the canal's nodes and, behind a tail gate, those of the floor beyond it. Of the n unknown
+    nodes the last one is a basin beyond the tail gate where `has_tail_basin`; it is outside the canal and its ledger.
     """
 
     tables: Tables

@@ -4,7 +4,11 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL
+from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, Network
+from toeline.scenario import Order, Scenario
+from toeline.scenario.schema.canal import Canal
+from toeline.scenario.schema.day import Day
+from toeline.scenario.schema.gates import Gate
 from toeline.scenario.series import Series, constant
 
 HOUR_MS = 3_600_000
@@ -22,8 +26,8 @@ class Timetable:
     every: int  # ms, rows
     profiles_every: int  # ms
     series: dict[int, Series]  # by forcing index
-    orders: tuple  # scenario orders by time
-    gates: tuple  # of the scenario, for travel, hoist and bands
+    orders: tuple[Order, ...]  # by time
+    gates: tuple[Gate, ...]  # of the scenario, for travel, hoist and bands
     gate_count: int
     offtake_count: int
 
@@ -58,7 +62,7 @@ class Timetable:
         return FORCING_GATES + self.gate_count + 2 * self.offtake_count
 
 
-def timetable_of(scenario, network) -> Timetable:
+def timetable_of(scenario: Scenario, network: Network) -> Timetable:
     """The day of a checked scenario on the integer clock."""
     day, canal = scenario.day, scenario.canal
     period = day.period
@@ -78,11 +82,12 @@ def timetable_of(scenario, network) -> Timetable:
     )
 
 
-def _series(day, canal, network) -> dict[int, Series]:
+def _series(day: Day, canal: Canal, network: Network) -> dict[int, Series]:
     """Every forcing but the gate openings as a series, constants too."""
-    head = day.inflow if canal.head.kind == "inflow" else day.head or constant(canal.head.level)
-    tail = day.tail or constant(canal.tail.level if canal.tail.level is not None else 0.0)
-    series = {FORCING_HEAD: head, FORCING_TAIL: tail}
+    series = {
+        FORCING_HEAD: day.inflow or day.head or constant(canal.head.level or 0.0),
+        FORCING_TAIL: day.tail or constant(canal.tail.level or 0.0),
+    }
     first = FORCING_GATES + network.gate_count
     count = network.offtake_count
     for k, take in enumerate(canal.offtakes):

@@ -2,6 +2,8 @@
 
 from datetime import UTC, datetime, time, timedelta
 
+HOURS_TOLD = 96
+
 
 def later(start: datetime, seconds: float) -> datetime:
     """The local time so long after the start; elapsed time, whatever the clocks there do meanwhile."""
@@ -29,10 +31,12 @@ def span_text(begin: datetime, end: datetime, start: datetime) -> str:
 
 
 def duration_text(seconds: float) -> str:
-    """A duration to the minute: "51 min", "2 h 05 min", "24 h"."""
+    """A duration to the minute: "51 min", "2 h 05 min", "24 h"; from four days on in days, "180.5 d"."""
     if 0 < seconds < 30:
         return "under 1 min"
     hours, minutes = divmod(round(seconds / 60), 60)
+    if hours >= HOURS_TOLD:
+        return f"{seconds / 86_400:.1f} d"
     if not hours:
         return f"{minutes} min"
     return f"{hours} h {minutes:02d} min" if minutes else f"{hours} h"

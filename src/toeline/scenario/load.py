@@ -256,9 +256,7 @@ def _scenario(
     )
 
 
-def _input_hash(
-    canal: InputFile, day: InputFile, plan: str | None, reading: Reading, start_file: Path | None
-) -> str:
+def _input_hash(canal: InputFile, day: InputFile, plan: str | None, reading: Reading, start_file: Path | None) -> str:
     """Digest everything that the numbers of a run depend on; each part is led by its length."""
     parts = [canal.text, day.text, plan or "", *(override.text for override in day.overrides)]
     parts += [part for item in sorted(reading.csv_texts.items()) for part in item]

@@ -40,7 +40,7 @@ def read_overrides(texts: Iterable[str]) -> tuple[Override, ...]:
 def _read(text: str) -> Override:
     key, equals, value = text.partition("=")
     if not equals:
-        raise UsageError(f"--set {text}: found no \"=\"; allowed: key=value, such as 'period.length=\"6 h\"'")
+        raise UsageError(f'--set {text}: found no "="; allowed: key=value, such as \'period.length="6 h"\'')
     return Override(text, _key_path(text, key), _value(text, value))
 
 

@@ -63,7 +63,7 @@ def _misfits_of_holding(day: Day, canal: Canal) -> Iterator[Misfit]:
     if has_reservoir and day.start.inflow is None:
         yield Misfit(("start", "inflow"), f'required with openings "{TO_HOLD_TARGETS}" and a reservoir, but not given')
     if not has_reservoir and day.start.inflow is not None:
-        yield Misfit(("start", "inflow"), 'not used with the canal\'s head kind = "inflow": the day\'s inflow says it')
+        yield Misfit(("start", "inflow"), "not used with the canal's head kind = \"inflow\": the day's inflow says it")
     above_gates = {gate.upstream for gate in canal.gates}
     lacking = [pool.name for pool in canal.pools if pool.name in above_gates and pool.target_level is None]
     if lacking:

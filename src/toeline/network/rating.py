@@ -1,0 +1,124 @@
+"""Rating of a gate: discharge by headwater, tailwater and opening, its modular limit, and the tailwater its jump
+needs.
+"""
+
+import math
+from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
+from itertools import product
+
+import numpy as np
+
+from toeline.hydraulics.gradually_varied_flow import supercritical_profile
+from toeline.hydraulics.jump_location import jet_on_floor, protection_margin
+from toeline.hydraulics.underflow_gate import UnderflowGate, free_jet, gate_flow, jet_width, modular_limit_depth
+from toeline.network.build import network_of
+from toeline.network.tables import Network
+from toeline.scenario import CanalFile
+
+SPACING = 100.0
+"""Spacing of nodes [m]; a jet's profile does not depend on it."""
+
+JET_POINTS = 400
+
+STATES = (
+    "closed", "free", "near_modular_limit", "drowned", "clear_of_water", "clear_and_drowned", "overtopped", "reverse",
+)  # fmt: skip
+QUALITIES = ("good", "near_modular_limit", "lip_near_surface", "very_drowned", "reverse")
+
+
+@dataclass(frozen=True)
+class RatingRow:
+    """One entry of a rating table; levels in m above datum, opening in m, discharge in m³/s.
+
+    `modular_limit_level` is the tailwater at which the flow begins to drown, `protection_limit_level` that below
+    which the end of the jump leaves the protected floor; NaN where there is none.
+    """
+
+    headwater_level: float
+    tailwater_level: float
+    opening: float
+    discharge: float
+    flow_state: str
+    modular_limit_level: float
+    protection_limit_level: float
+    quality: str
+
+
+def rating_table(
+    canal: CanalFile,
+    gate_name: str,
+    headwater_levels: Iterable[float],
+    tailwater_levels: Sequence[float],
+    openings: Sequence[float],
+) -> list[RatingRow]:
+    """Rows for every combination of headwater level, opening and tailwater level, in this order of change.
+
+    Raises ValueError where the canal has no gate of that name.
+    """
+    site = _Site(network_of(canal.canal, SPACING), gate_name)
+    rows = []
+    for up, opening in product(headwater_levels, openings):
+        limits = site.limits(float(up), float(opening))
+        rows += [site.row(float(up), float(down), float(opening), *limits) for down in tailwater_levels]
+    return rows
+
+
+def default_rating_levels(canal: CanalFile, gate_name: str) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+    """Headwater levels, tailwater levels and openings [m] that span the gate's work where the caller names none.
+
+    Headwaters about the target level (or the reservoir's), tailwaters from the floor below up to the headwater,
+    openings up to the travel.
+    """
+    names = [gate.name for gate in canal.canal.gates]
+    gate = canal.canal.gates[names.index(gate_name)]
+    pools = {pool.name: pool for pool in canal.canal.pools}
+    target = canal.canal.head.level if gate.upstream == "head" else pools[gate.upstream].target_level
+    top = target if target is not None else gate.sill_level + 1.5 * gate.max_opening
+    headwaters = np.array([top - 0.2, top, top + 0.2])
+    floor = _Site(network_of(canal.canal, SPACING), gate_name).law.floor_level
+    tailwaters = np.linspace(floor, top, 6)[:-1]
+    return headwaters, tailwaters, gate.max_opening * np.array([0.1, 0.2, 0.4, 0.6, 0.8, 1.0])
+
+
+class _Site:
+    """A gate with the sections beside it and the floor below."""
+
+    def __init__(self, network: Network, gate_name: str):
+        if gate_name not in network.names.gates:
+            raise ValueError(f"no gate named {gate_name!r}")
+        self.gate = network.tables.gates[network.names.gates.index(gate_name)]
+        self.law = UnderflowGate(*(float(self.gate[name]) for name in UnderflowGate._fields))
+        self.channel = network.channel
+        self.above = self.channel.shapes[self.gate.upstream_section]
+        self.below = self.channel.shapes[self.gate.downstream_section]
+
+    def row(self, up: float, down: float, opening: float, modular: float, protection: float) -> RatingRow:
+        flow = gate_flow(self.law, self.above, self.below, up, down, opening)
+        return RatingRow(
+            up, down, opening, flow.discharge, STATES[flow.state], modular, protection, QUALITIES[flow.quality]
+        )
+
+    def limits(self, up: float, opening: float) -> tuple[float, float]:
+        """Tailwater levels [m] of the modular limit and of the jump's end at the end of the protection."""
+        _, jet, discharge, _ = free_jet(self.law, self.above, up, opening)
+        if discharge <= 0.0:
+            return math.nan, math.nan
+        modular = self.law.floor_level + modular_limit_depth(self.law, self.below, jet, discharge)
+        return modular, self._protection_limit(jet, discharge, opening)
+
+    def _protection_limit(self, thickness: float, discharge: float, opening: float) -> float:
+        """Level of still tailwater, found as the margin of tailwater at the datum."""
+        step = self.law.sill_level - self.law.floor_level
+        jet = jet_on_floor(self.below, jet_width(self.law), thickness, step, discharge)
+        if jet.froude <= 1.0:
+            return math.nan
+        first, last = self.gate.downstream_node, self.gate.floor_last
+        origin = self.channel.nodes[first].chainage
+        chainages, depths = np.zeros(JET_POINTS), np.zeros(JET_POINTS)
+        count, _ = supercritical_profile(
+            self.channel, first, last, origin + opening, jet.full_depth, discharge, chainages, depths
+        )
+        level = np.zeros(self.channel.nodes.size)
+        end = origin + self.gate.protection_end
+        return -protection_margin(self.channel, first, last, level, discharge, chainages, depths, count, end)
