@@ -28,6 +28,7 @@ from toeline.hydraulics.underflow_gate import (
     free_jet,
     gate_discharge,
     gate_flow,
+    jet_width,
     modular_limit_depth,
     opening_for_discharge,
 )
@@ -81,7 +82,7 @@ def test_drowned_flow_keeps_energy_and_momentum(gate, floor, opening, tail):
     flow = gate_flow(gate, POOL, floor, 2.0, tail, opening)
     tail_depth = tail - gate.floor_level
     assert flow.state == DROWNED
-    momentum = jet_force(floor, flow.discharge, WIDTH, flow.jet_thickness, flow.roller_depth)
+    momentum = jet_force(floor, flow.discharge, jet_width(gate), flow.jet_thickness, flow.roller_depth)
     assert momentum == pytest.approx(specific_force(floor, flow.discharge, tail_depth), rel=1e-9)
     velocity = flow.discharge / (gate.discharge_factor * WIDTH * flow.jet_thickness)
     energy = gate.floor_level + flow.roller_depth + velocity**2 / (2.0 * GRAVITY)
