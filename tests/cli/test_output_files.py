@@ -27,6 +27,10 @@ def test_one_plan_picked_of_several_keeps_its_file(folder):
     assert choose_outputs(load_plans(folder / "day.toml", "raise"), None) == [Path("day.raise.nc")]
 
 
+def test_a_name_given_for_one_picked_plan_is_taken_as_it_is(folder):
+    assert choose_outputs(load_plans(folder / "day.toml", "raise"), Path("today.nc")) == [Path("today.nc")]
+
+
 def test_a_given_name_gets_the_plan_before_its_ending(folder):
     outputs = choose_outputs(load_plans(folder / "day.toml"), Path("out/today.nc"))
     assert outputs == [Path("out/today.hold.nc"), Path("out/today.raise.nc")]

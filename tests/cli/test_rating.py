@@ -55,4 +55,4 @@ def test_what_is_no_length_is_refused_by_the_name_of_its_option(folder, call, va
 
 def test_lengths_carry_their_own_units_where_given(folder, call):
     result = call("rating", "canal.toml", "Middle check", *LEVELS[:4], "--opening", "20 cm, 0.4")
-    assert "0.20 m" in result.stdout
+    assert "\n     0.20  " in result.stdout

@@ -33,9 +33,10 @@ ROWS = [
 
 def test_discharges_stand_by_opening_and_tailwater_with_both_limits():
     page = rating_page(ROWS, "Middle check, Alder branch", Display(UnitSystem.metric), 80)
-    assert "  opening  101.80 m  102.30 m  modular limit  jump leaves\n" in page
-    assert "   0.40 m  4.123 f   4.050 n?       102.31 m            -\n" in page
-    assert "   0.50 m  5.200 f   5.200 f        102.50 m     101.60 m\n" in page
+    assert "HEADWATER 103.60 m\n" in page
+    assert "  opening   limit  leaves    101.80    102.30\n" in page
+    assert "     0.40  102.31       -  4.123 f   4.050 n?\n" in page
+    assert "     0.50  102.50  101.60  5.200 f   5.200 f\n" in page
 
 
 def test_the_page_explains_the_marks_that_it_uses_and_no_others():

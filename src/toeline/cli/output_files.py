@@ -16,11 +16,12 @@ if TYPE_CHECKING:
 def choose_outputs(scenarios: Sequence["Scenario"], output: Path | None) -> list[Path]:
     """The file of each plan: DAY.nc in the working directory unless given.
 
-    Of a day with several plans each goes to its own file, DAY.PLAN.nc, whether all are run or one was picked.
+    Of a day with several plans each goes to its own file, DAY.PLAN.nc, whether all are run or one was picked; a file named
+    for one picked plan is taken as it is.
     """
     day = scenarios[0]
     wanted = output or Path(f"{day.day_path.stem}.nc")
-    if len(day.day.plans) < 2:
+    if len(day.day.plans) < 2 or (output is not None and len(scenarios) == 1):
         return [wanted]
     plans = (re.sub(r"[^\w.-]+", "_", scenario.plan or "") for scenario in scenarios)
     return [wanted.with_name(f"{wanted.stem}.{plan}{wanted.suffix}") for plan in plans]

@@ -7,14 +7,13 @@ from itertools import groupby
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from toeline.report.layout import heading, paragraph, table
+from toeline.report.layout import fits, heading, paragraph, table
 from toeline.results.variables import FLOW_STATES
 from toeline.units import FILE_UNITS, Dimension, Display, UnitSystem, file_factor
 
 if TYPE_CHECKING:
     from toeline.network.rating import RatingRow
 
-TAILWATERS_ABREAST = 4
 MARKS = dict(zip(FLOW_STATES, "cfndwxor", strict=True))
 """One letter for each state of the flow, explained under the tables that use it."""
 POORLY_KNOWN = "?"
@@ -29,39 +28,53 @@ CSV_COLUMNS: dict[str, Dimension | None] = {
     "protection_limit_level": "length",
 }
 NOTES = (
-    "Above the modular limit the tailwater drowns the flow. Below the last level the end of the jump passes the "
-    "protected floor; '-': no tailwater can do that, or there is no free jump. "
+    "limit: the modular limit, the tailwater above which the flow is drowned. leaves: the tailwater below which the "
+    "end of the jump leaves the protected floor; '-' where none does that, or there is no free jump. "
     "Planning aid: verify the gate scale, the gauges and one discharge in the field."
 )
 
 
 def rating_page(rows: Sequence["RatingRow"], title: str, display: Display, width: int) -> str:
-    """One table a headwater: openings downward, tailwaters across, then the two tailwaters to watch."""
-    unit = FILE_UNITS["discharge"][display.system]
-    blocks = [paragraph(title, width, indent="", hanging=""), paragraph(f"Discharge in {unit}.", width)]
+    """One table a headwater: openings downward, the two tailwaters to watch, then discharges by tailwater."""
+    length, discharge = (FILE_UNITS[dimension][display.system] for dimension in ("length", "discharge"))
+    units = f"Discharge in {discharge} by opening (down) and tailwater level (across), in {length}."
+    blocks = [paragraph(title, width, indent=""), paragraph(units, width)]
     for headwater, group in groupby(rows, key=lambda row: row.headwater_level):
         blocks += ["", f"{heading('Headwater')} {display.level(headwater)}", *_tables(list(group), display, width)]
     return "\n".join([*blocks, "", paragraph(_legend(rows), width), paragraph(NOTES, width)])
 
 
 def _tables(rows: Sequence["RatingRow"], display: Display, width: int) -> Iterator[str]:
-    by_opening = [list(group) for _, group in groupby(rows, key=lambda row: row.opening)]
-    for first in range(0, len(by_opening[0]), TAILWATERS_ABREAST):
-        abreast = slice(first, first + TAILWATERS_ABREAST)
-        tailwaters = [display.level(row.tailwater_level) for row in by_opening[0][abreast]]
-        header = ["opening", *tailwaters, "modular limit", "jump leaves"]
-        yield table(header, [_cells(line, abreast, display) for line in by_opening], width)
+    """All tailwaters abreast, or as many as find room, and the others in further tables."""
+    lines = [list(group) for _, group in groupby(rows, key=lambda row: row.opening)]
+    total = len(lines[0])
+    most = next((count for count in range(total, 1, -1) if fits(*_cells(lines, 0, count, display), width)), 1)
+    for first in range(0, total, most):
+        yield table(*_cells(lines, first, most, display), width)
 
 
-def _cells(line: Sequence["RatingRow"], abreast: slice, display: Display) -> list[str]:
-    row = line[0]
-    limits = (display.level(row.modular_limit_level), display.level(row.protection_limit_level))
-    return [display.opening(row.opening), *(_discharge(cell, display) for cell in line[abreast]), *limits]
+def _cells(
+    lines: Sequence[Sequence["RatingRow"]], first: int, count: int, display: Display
+) -> tuple[list[str], list[list[str]]]:
+    """Header and rows of a table with `count` tailwaters from the `first` on."""
+    abreast = slice(first, first + count)
+    header = ["opening", "limit", "leaves", *(_bare(display.level(row.tailwater_level)) for row in lines[0][abreast])]
+    return header, [_openings(line[0], display) + [_discharge(row, display) for row in line[abreast]] for line in lines]
+
+
+def _openings(row: "RatingRow", display: Display) -> list[str]:
+    levels = (row.modular_limit_level, row.protection_limit_level)
+    return [_bare(display.opening(row.opening)), *(_bare(display.level(level)) for level in levels)]
 
 
 def _discharge(row: "RatingRow", display: Display) -> str:
-    number = display.discharge(row.discharge).split(" ")[0]
-    return f"{number} {MARKS[row.flow_state]}{' ' if row.quality == 'good' else POORLY_KNOWN}"
+    mark = MARKS[row.flow_state] + (" " if row.quality == "good" else POORLY_KNOWN)
+    return f"{_bare(display.discharge(row.discharge))} {mark}"
+
+
+def _bare(quantity: str) -> str:
+    """The number without its unit, which stands above the tables."""
+    return quantity.split(" ")[0]
 
 
 def _legend(rows: Sequence["RatingRow"]) -> str:

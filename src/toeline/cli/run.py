@@ -22,8 +22,8 @@ if TYPE_CHECKING:
     "--output",
     type=click.Path(dir_okay=False, path_type=Path),
     metavar="FILE",
-    help="The file of results; DAY.nc in the working directory unless given. With several plans the name of the "
-    "plan goes before its ending: DAY.PLAN.nc.",
+    help="The file of results; DAY.nc in the working directory unless given. Where several plans run, the "
+    "name of the plan goes before its ending: DAY.PLAN.nc.",
 )
 @click.option("--plan", metavar="NAME", help="Run this plan alone. Of several plans each runs, to its own file.")
 @click.option(

@@ -32,11 +32,21 @@ def table(header: Sequence[str], rows: Sequence[Sequence[str]], width: int) -> s
 
     Where that is wider than the page, every row becomes a block of its own, one line a column.
     """
-    columns = [[row[place] for row in (header, *rows)] for place in range(len(header))]
-    cells = [_aligned(column) for column in columns]
-    if len(INDENT) + sum(len(column[0]) + len(GAP) for column in cells) - len(GAP) > width:
+    lines = _side_by_side(header, rows)
+    if len(lines[0]) > width:
         return "\n".join(_block(header, row, width) for row in rows)
-    return "\n".join((INDENT + GAP.join(line)).rstrip() for line in zip(*cells, strict=True))
+    return "\n".join(line.rstrip() for line in lines)
+
+
+def fits(header: Sequence[str], rows: Sequence[Sequence[str]], width: int) -> bool:
+    """Whether the columns of a table find room side by side."""
+    return len(_side_by_side(header, rows)[0]) <= width
+
+
+def _side_by_side(header: Sequence[str], rows: Sequence[Sequence[str]]) -> list[str]:
+    """Header and rows as lines of one width."""
+    columns = [_aligned([row[place] for row in (header, *rows)]) for place in range(len(header))]
+    return [INDENT + GAP.join(cells) for cells in zip(*columns, strict=True)]
 
 
 def _aligned(column: Sequence[str]) -> list[str]:
