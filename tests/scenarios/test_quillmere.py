@@ -6,6 +6,7 @@ from pathlib import Path
 import numpy as np
 import pytest
 import xarray as xr
+
 from toeline import load_scenario, simulate
 from toeline.findings.incidents import incidents
 from toeline.results.variables import FLOW_STATES, JUMP_STATES
@@ -61,10 +62,8 @@ def test_opening_with_the_water_keeps_every_jump_on_protection():
 
 
 def test_morning_plans_differ_at_the_lower_check_alone():
-    early, later = (
-        {(order.at, order.gate, order.value) for order in load_scenario(DAYS / "morning_increase.toml", plan=plan).orders}
-        for plan in ("early", "with_the_water")
-    )
+    plans = [load_scenario(DAYS / "morning_increase.toml", plan=plan) for plan in ("early", "with_the_water")]
+    early, later = ({(order.at, order.gate, order.value) for order in plan.orders} for plan in plans)
     assert {gate for _, gate, _ in early ^ later} == {"Lower check"}
 
 

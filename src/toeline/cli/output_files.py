@@ -16,8 +16,8 @@ if TYPE_CHECKING:
 def choose_outputs(scenarios: Sequence["Scenario"], output: Path | None) -> list[Path]:
     """The file of each plan: DAY.nc in the working directory unless given.
 
-    Of a day with several plans each goes to its own file, DAY.PLAN.nc, whether all are run or one was picked; a file named
-    for one picked plan is taken as it is.
+    Of a day with several plans each goes to its own file, DAY.PLAN.nc, whether all are run or one was picked. A name
+    given for one picked plan is taken as it is.
     """
     day = scenarios[0]
     wanted = output or Path(f"{day.day_path.stem}.nc")

@@ -22,6 +22,10 @@ DEEPEST = 50.0
 """Height [m] over a gate's sill up to which its headwater is looked for."""
 
 
+class DeliveriesExceedInflowError(UsageError):
+    """No steady state: more is asked than comes in."""
+
+
 HeadwaterOf = Callable[[int, float, float], float]
 """Level above a gate [m] from its index, its discharge and the level below."""
 
@@ -56,12 +60,10 @@ def steady_at_targets(
 
     Raises UsageError where a pool has no target, a gate cannot pass its share, or the flow would not be calm.
     """
-    missing = [name for name, z in zip(network.names.pools, network.names.target_level, strict=True) if np.isnan(z)]
-    held = set(network.tables.gates.upstream_node.tolist())
+    names, tables = network.names, network.tables
+    held = np.isin(tables.pools.last_node, tables.gates.upstream_node)
     missing = [
-        name
-        for name, last in zip(network.names.pools, network.tables.pools.last_node, strict=True)
-        if name in missing and last in held
+        name for name, z, is_held in zip(names.pools, names.target_level, held, strict=True) if is_held and np.isnan(z)
     ]
     if missing:
         raise UsageError(f'openings "to hold targets": no target_level given for {", ".join(missing)}')
@@ -91,14 +93,19 @@ def steady_under_reservoir(
     search = _Search(network, tail_level, demands)
     largest = search.passed(0, head_level, network.tables.gates.sill_level[0] - 1.0, openings[0])
 
-    def lacking(inflow: float) -> float:
-        level, _ = search.settle(inflow, lambda g, q, down: search.headwater(g, q, down, openings[g]))
-        return inflow - search.passed(0, head_level, level[0], openings[0])
+    def is_too_much(inflow: float) -> bool:
+        try:
+            level, _ = search.settle(inflow, lambda g, q, down: search.headwater(g, q, down, openings[g]))
+        except DeliveriesExceedInflowError:
+            return False
+        except UsageError:
+            return True
+        return inflow > search.passed(0, head_level, level[0], openings[0])
 
     low, high = 0.0, largest
     for _ in range(80):
         middle = 0.5 * (low + high)
-        low, high = (low, middle) if lacking(middle) > 0.0 else (middle, high)
+        low, high = (low, middle) if is_too_much(middle) else (middle, high)
     return steady_at_openings(network, 0.5 * (low + high), tail_level, demands, openings)
 
 
@@ -134,7 +141,9 @@ class _Search:
         if short.any():
             pool = int(np.searchsorted(network.tables.pools.last_node, np.argmax(short) - 1))
             name = network.names.pools[min(pool, len(network.names.pools) - 1)]
-            raise UsageError(f"no steady state: the deliveries down to {name} exceed the inflow of {inflow:.3f} m3/s")
+            raise DeliveriesExceedInflowError(
+                f"no steady state: the deliveries down to {name} exceed the inflow of {inflow:.3f} m3/s"
+            )
         return np.maximum(discharge, 0.0)
 
     def _delivery(self, k: int, level: np.ndarray) -> float:

@@ -1,0 +1,181 @@
+"""One implicit stage of a step: the Newton matrix of nodes and links, and its solution for levels and discharges."""
+
+import math
+
+from toeline.engine.gate_link import boundary_balance
+from toeline.engine.reach_link import convective_target, convective_time, inertia_head, node_geometry, reach_balance
+from toeline.engine.tridiagonal import back_substitute
+from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH
+from toeline.hydraulics.kernel import inner_kernel
+from toeline.hydraulics.offtake import offtake_discharge
+from toeline.network.tables import FORCING_GATES, REACH
+
+LEVEL_CONVERGED = 1e-4
+"""Last Newton update [m] of a solved stage; the convergence is quadratic, the error left far smaller."""
+ITERATIONS = 12
+LOWEST_DEPTH = -0.5
+"""Depth [m] below which the image of an empty node is not followed."""
+DEMAND_NUDGE = 1e-5
+"""Step [m] of the finite difference of a delivery."""
+
+
+@inner_kernel
+def set_sources(tables, nodes, forcing, work, delivery):
+    """Deliveries at the present levels, and what they take from each node with its derivative."""
+    for node in range(nodes.size):
+        work.nodes[node].source = 0.0
+        work.nodes[node].source_slope = 0.0
+    count = tables.offtakes.size
+    first_demand = FORCING_GATES + tables.gates.size
+    for k in range(count):
+        take = tables.offtakes[k]
+        demand, opening = forcing[first_demand + k].now, forcing[first_demand + count + k].now
+        level = nodes[take.node].level
+        q = offtake_discharge(take.kind, demand, take.sill_level, take.width, opening, take.coefficient, level)
+        nudged = offtake_discharge(
+            take.kind, demand, take.sill_level, take.width, opening, take.coefficient, level + DEMAND_NUDGE
+        )
+        delivery[k] = q
+        work.nodes[take.node].source -= q
+        work.nodes[take.node].source_slope -= (nudged - q) / DEMAND_NUDGE
+
+
+@inner_kernel
+def geometry_pass(tables, nodes, work):
+    """Areas and conveyances of all nodes at their present levels."""
+    for node in range(nodes.size):
+        site = tables.channel.nodes[node]
+        section = tables.channel.shapes[site.section]
+        node_geometry(site, tables.cells[node], section, nodes[node].level, work.nodes[node])
+
+
+@inner_kernel
+def reach_row(tables, before, after, work, index, seconds, head_factor, inertial):
+    """Residual and derivatives of a reach link in a stage."""
+    link, site_up, site_down = tables.links[index], tables.channel.nodes[index - 1], tables.channel.nodes[index]
+    up, down = work.nodes[index - 1], work.nodes[index]
+    level_up, level_down = after.nodes[index - 1].level, after.nodes[index].level
+    q, earlier = after.links[index].discharge, before.links[index]
+    left, by_up, by_q, by_down = reach_balance(
+        link, site_up.transition_loss, up, down, level_up, level_down, level_up - site_up.bed_level,
+        level_down - site_down.bed_level, q, work.links[index].convective_base, head_factor * earlier.convective_share,
+    )  # fmt: skip
+    if inertial and is_wet(site_up, site_down, level_up, level_down):
+        head, head_q, head_area = stage_inertia(tables, before, work, index, q, seconds)
+        left, by_q = left - head, by_q - head_q
+        by_up, by_down = by_up - 0.5 * head_area * up.width, by_down - 0.5 * head_area * down.width
+    return left, by_up, by_q, by_down
+
+
+@inner_kernel
+def is_wet(site_up, site_down, level_up, level_down):
+    """Whether both ends of a reach link are deeper than the dry depth."""
+    return min(level_up - site_up.bed_level, level_down - site_down.bed_level) >= DRY_DEPTH
+
+
+@inner_kernel
+def stage_inertia(tables, before, work, index, q, seconds):
+    """`inertia_head` of a reach link at the present areas; it fades with the convective head (local partial inertia,
+    Fread et al. 1996) and where a link dries."""
+    earlier = before.links[index]
+    flux = earlier.discharge / (earlier.mean_area * earlier.mean_area)
+    mean = 0.5 * (work.nodes[index - 1].area + work.nodes[index].area)
+    return inertia_head(
+        tables.links[index].length, earlier.convective_share, mean, q, flux, work.links[index].momentum_base, seconds
+    )
+
+
+@inner_kernel
+def assemble(tables, before, after, work, seconds, head_factor, inertial, forcing):
+    """Fill the Newton matrix and right side at the present levels and discharges, and sweep it forward as it is
+    made.
+    """
+    geometry_pass(tables, after.nodes, work)
+    count = after.nodes.size
+    pivot_before = upper_before = x_before = 0.0
+    for index in range(count + 1):
+        q = after.links[index].discharge
+        if tables.links[index].kind == REACH:
+            left, by_up, by_q, by_down = reach_row(tables, before, after, work, index, seconds, head_factor, inertial)
+        else:
+            left, by_up, by_q, by_down = boundary_balance(tables, index, after.nodes, q, forcing, work)
+        row, factor = work.rows[2 * index], by_up * pivot_before
+        row.lower, row.upper = by_up, by_down
+        row.pivot = 1.0 / (by_q - factor * upper_before)
+        row.x = -left - factor * x_before
+        if index == count:
+            break
+        node, below, factor = work.nodes[index], work.rows[2 * index + 1], -seconds * row.pivot
+        cell = tables.cells[index].length
+        excess = cell * node.area - node.volume_base - seconds * (q - after.links[index + 1].discharge + node.source)
+        below.lower, below.upper = -seconds, seconds
+        below.pivot = 1.0 / (cell * node.width - seconds * node.source_slope - factor * by_down)
+        below.x = -excess - factor * row.x
+        pivot_before, upper_before, x_before = below.pivot, seconds, below.x
+
+
+@inner_kernel
+def apply_correction(tables, after, work):
+    """Add the correction, each level within half its depth or 5 cm; returns the largest change of a level [m] that
+    counts.
+    """
+    largest = 0.0
+    after.links[0].discharge += work.rows[0].x
+    for k in range(after.nodes.size):
+        node, row = after.nodes[k], work.rows[2 * k + 1]
+        depth = node.level - tables.channel.nodes[k].bed_level
+        most = max(0.5 * depth, 0.05)
+        change = max(min(max(row.x, -most), most), LOWEST_DEPTH - depth)
+        row.x = change
+        node.level += change
+        after.links[k + 1].discharge += work.rows[2 * k + 2].x
+        felt = abs(change)
+        if depth < DRY_DEPTH:
+            felt *= min(work.nodes[k].width / tables.cells[k].dry_width, 1.0)
+        largest = max(largest, felt)
+    return largest
+
+
+@inner_kernel
+def solve_stage(tables, before, after, work, seconds, head_factor, inertial, forcing):
+    """Newton's method for the levels and discharges in `after`; returns the number of solves, 0 where it failed."""
+    last_change = math.inf
+    for k in range(ITERATIONS):
+        set_sources(tables, after.nodes, forcing, work, after.delivery)
+        assemble(tables, before, after, work, seconds, head_factor, inertial, forcing)
+        back_substitute(work.rows)
+        change = apply_correction(tables, after, work)
+        if not math.isfinite(change) or (k > 5 and change > 0.9 * last_change and change > 0.05):
+            return 0
+        if change < LEVEL_CONVERGED:
+            finish_stage(tables, before, after, work, seconds, head_factor, inertial, forcing)
+            return k + 1
+        last_change = change
+    return 0
+
+
+@inner_kernel
+def finish_stage(tables, before, after, work, seconds, head_factor, inertial, forcing):
+    """Rates and volumes of a solved stage; areas follow the last correction to first order."""
+    set_sources(tables, after.nodes, forcing, work, after.delivery)
+    for k in range(after.nodes.size):
+        node, scratch, change = after.nodes[k], work.nodes[k], work.rows[2 * k + 1].x
+        node.width = scratch.width
+        scratch.area += scratch.width * change
+        scratch.inverse_area += scratch.inverse_area_slope * change
+        node.net_inflow = after.links[k].discharge - after.links[k + 1].discharge + scratch.source
+        node.volume = scratch.volume_base + seconds * node.net_inflow
+    for index in range(1, after.nodes.size):
+        if tables.links[index].kind != REACH:
+            continue
+        link, up, down = after.links[index], work.nodes[index - 1], work.nodes[index]
+        target = convective_target(
+            before.links[index].convective_share, link.discharge, up.inverse_area, down.inverse_area
+        )
+        link.convective_head = work.links[index].convective_base + head_factor * target
+        link.convective_rate = (target - link.convective_head) / convective_time(inertial)
+        link.mean_area = 0.5 * (up.area + down.area)
+        if inertial:
+            site_up, site_down = tables.channel.nodes[index - 1], tables.channel.nodes[index]
+            wet = is_wet(site_up, site_down, after.nodes[index - 1].level, after.nodes[index].level)
+            link.imbalance = stage_inertia(tables, before, work, index, link.discharge, seconds)[0] if wet else 0.0
