@@ -1,6 +1,6 @@
 """Times as planners write them."""
 
-from datetime import datetime, time, timedelta, timezone
+from datetime import UTC, datetime, time, timedelta, timezone
 from zoneinfo import ZoneInfo
 
 import pytest
@@ -153,3 +153,9 @@ def test_a_start_at_a_time_that_comes_twice_is_refused():
 def test_what_is_no_zone_is_refused(name):
     with pytest.raises(ValueError, match="allowed: a name of the tz database"):
         read_zone(name)
+
+
+def test_a_period_shortened_beside_the_file_takes_later_times_as_not_reached():
+    start = datetime(2031, 5, 4, tzinfo=UTC)
+    shortened = Clock(start, 3 * 3_600_000, is_shortened=True)
+    assert shortened.milliseconds("06:30") == 6.5 * 3_600_000

@@ -5,6 +5,9 @@ done.
 import math
 from dataclasses import dataclass
 
+from toeline.scenario import Order
+from toeline.scenario.schema.gates import Gate
+
 ACCEPTED, TRIMMED, REFUSED, REPLACED = range(4)
 KINDS = ("opening", "by", "discharge")
 
@@ -30,7 +33,7 @@ class OrderRecord:
 class GateMotion:
     """One gate's leaf: where it is, where it goes, and the orders it was given."""
 
-    def __init__(self, gate, opening: float):
+    def __init__(self, gate: Gate, opening: float):
         self.gate = gate
         self.opening = opening
         self.target = opening
@@ -85,6 +88,13 @@ class GateMotion:
             self._finish(time)
         return record
 
+    def not_reached(self, order: Order) -> OrderRecord:
+        """The record of an order that comes after the end of the period."""
+        reason = "comes after the end of the period"
+        return OrderRecord(
+            order.at, order.gate, order.kind, order.value, self.opening, self.ordered, math.nan, REFUSED, reason, True
+        )
+
     def end_of_day(self) -> None:
         """Close the record of a move that the day's end interrupts."""
         if self.current is not None:
@@ -109,7 +119,7 @@ class GateMotion:
             self.current = None
 
 
-def allowed_opening(gate, wanted: float, ordered: float) -> tuple[float, int, str]:
+def allowed_opening(gate: Gate, wanted: float, ordered: float) -> tuple[float, int, str]:
     """The opening [m] that a gate may be held at nearest to the wanted one, the status and the reason of any
     difference.
     """

@@ -18,6 +18,7 @@ from toeline.hydraulics.underflow_gate import opening_for_discharge
 from toeline.network.initial_state import Start
 from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, TAIL_LEVEL, Network
 from toeline.network.timetable import Timetable
+from toeline.scenario import Order
 
 BLOCK_ROWS = 720
 """Rows of output after which a block is handed on."""
@@ -67,6 +68,7 @@ class Run:
         self._last_row()
         for motion in self.motions:
             motion.end_of_day()
+        self.records += [self.motions[self._index(order)].not_reached(order) for order in self.orders]
         self.flush()
 
     def flush(self) -> None:
@@ -157,8 +159,8 @@ class Run:
         while self.orders and self.orders[0].at <= self.time:
             self._carry_out(self.orders.pop(0))
 
-    def _carry_out(self, order) -> None:
-        g = self.network.names.gates.index(order.gate)
+    def _carry_out(self, order: Order) -> None:
+        g = self._index(order)
         motion = self.motions[g]
         row = self.tables.gates[g]
         up, down = gate_levels(
@@ -173,7 +175,10 @@ class Run:
             return
         self._note_move(g, up, down, opening, motion)
 
-    def _wanted_opening(self, order, g: int, up: float, down: float) -> tuple[float, str]:
+    def _index(self, order: Order) -> int:
+        return self.network.names.gates.index(order.gate)
+
+    def _wanted_opening(self, order: Order, g: int, up: float, down: float) -> tuple[float, str]:
         motion = self.motions[g]
         if order.kind == "opening":
             return order.value, ""

@@ -173,7 +173,8 @@ def _reading_of_day(source: InputFile, units_of_canal: UnitSystem) -> Reading:
         period = Period.model_validate(source.data.get("period"), context=reading)
     except ValueError:
         return reading  # these faults are found again, with all others, when the whole day is read
-    reading.clock = Clock(period.start, period.length_ms)
+    is_shortened = any(override.lies_in(("period",)) for override in source.overrides)
+    reading.clock = Clock(period.start, period.length_ms, is_shortened)
     return reading
 
 

@@ -83,11 +83,14 @@ class Clock:
 
     start: datetime
     length_ms: int
+    is_shortened: bool = False
+    """The period was set anew beside the file: what the file says of later times is not wrong, only not reached."""
 
     def milliseconds(self, when: Any) -> int:
         """Give a time in milliseconds from the start.
 
-        Raises ValueError for what is no time and for times outside the period, its two ends being inside.
+        Raises ValueError for what is no time and for times outside the period, its two ends being inside; times after
+        the end of a shortened period are taken.
         """
         since_start = self._since_start(when)
         if since_start < 0:
@@ -95,7 +98,7 @@ class Clock:
                 f"found {shown(when)}, which is before the start of the period, {self.start.isoformat()}; "
                 'a time of a later day needs its date, or "+30 h" from the start'
             )
-        if since_start > self.length_ms:
+        if since_start > self.length_ms and not self.is_shortened:
             raise ValueError(f"found {shown(when)}, which is {self._beyond_the_end(since_start)}")
         return since_start
 

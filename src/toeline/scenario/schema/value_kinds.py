@@ -148,7 +148,7 @@ class Moment(ValueKind):
         if clock is None:
             return 0
         milliseconds = clock.milliseconds(value)
-        if self.before_end and milliseconds == clock.length_ms:
+        if self.before_end and milliseconds == clock.length_ms and not clock.is_shortened:
             raise ValueError(f"found {shown(value)}, the end of the period; allowed: a time before it")
         return milliseconds
 
