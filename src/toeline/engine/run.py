@@ -84,6 +84,7 @@ class Run:
         left |= {"end_" + name: self.state.links[name].copy() for name in END_OF_LINKS}
         surge = self.watch.gates
         return left | {
+            "end_delivery": self.state.delivery.copy(),
             "end_opening": np.array([motion.opening for motion in self.motions]),
             "end_target_opening": np.array([motion.target for motion in self.motions]),
             "end_ordered_opening": np.array([motion.ordered for motion in self.motions]),
@@ -110,6 +111,7 @@ class Run:
             self.state.nodes[name] = end["end_" + name]
         for name in END_OF_LINKS:
             self.state.links[name] = end["end_" + name]
+        self.state.delivery[:] = end["end_delivery"]
         self.pace.next_step = end["end_next_step"]
         self.forcing.rate = end["end_rate"]
         for k, motion in enumerate(self.motions):

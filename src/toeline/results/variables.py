@@ -239,6 +239,7 @@ _END_STATE = (
            "1 in calm flow, 0 from critical flow on"),
     _state("end_imbalance", ("state_link",), "m", "head that accelerates the water of a link at the end of the run",
            "zero without local inertia"),
+    _state("end_delivery", ("state_offtake",), "m3 s-1", "delivery at the end of the run"),
     _state("end_opening", ("state_gate",), "m", "opening at the end of the run"),
     _state("end_target_opening", ("state_gate",), "m", "opening the leaf is moving to at the end of the run"),
     _state("end_ordered_opening", ("state_gate",), "m", "opening last ordered", "'by' orders count from it"),
