@@ -56,3 +56,20 @@ def test_what_is_no_length_is_refused_by_the_name_of_its_option(folder, call, va
 def test_lengths_carry_their_own_units_where_given(folder, call):
     result = call("rating", "canal.toml", "Middle check", *LEVELS[:4], "--opening", "20 cm, 0.4")
     assert "\n     0.20  " in result.stdout
+
+
+def test_an_opening_below_the_closed_gate_is_refused(folder, call):
+    result = call("rating", "canal.toml", "Middle check", "--opening=-0.2")
+    assert (result.exit_code, result.stdout) == (2, "")
+    assert "from 0" in result.stderr
+
+
+def test_a_day_file_is_not_taken_for_a_canal(folder, call):
+    result = call("rating", "day.toml", "Middle check")
+    assert (result.exit_code, result.stderr) == (2, "Error: day.toml is a day file: name the file of its canal.\n")
+
+
+def test_the_canal_file_is_never_replaced(folder, call):
+    before = (folder / "canal.toml").read_text()
+    result = call("rating", "canal.toml", "Middle check", "--csv", "canal.toml", "--overwrite")
+    assert (result.exit_code, (folder / "canal.toml").read_text()) == (2, before)

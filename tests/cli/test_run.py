@@ -41,14 +41,21 @@ def test_each_plan_is_told_and_written_to_its_own_file(folder, call):
 
 
 def test_one_plan_can_be_picked(folder, call):
-    result = call("run", "day.toml", "--plan", "raise", "-o", "picked.nc")
-    assert (result.exit_code, files(folder)) == (0, {"picked.raise.nc"})
+    assert call("run", "day.toml", "--plan", "raise").exit_code == 0
+    assert call("run", "day.toml", "--plan", "raise", "-o", "picked.nc").exit_code == 0
+    assert files(folder) == {"day.raise.nc", "picked.nc"}
 
 
 def test_an_unknown_plan_names_the_nearest(folder, call):
     result = call("run", "day.toml", "--plan", "rasie")
     assert (result.exit_code, result.stdout, files(folder)) == (2, "", set())
     assert 'did you mean "raise"?' in result.stderr
+
+
+def test_a_canal_file_is_not_taken_for_a_day(folder, call):
+    result = call("run", "canal.toml")
+    assert (result.exit_code, result.stdout, files(folder)) == (2, "", set())
+    assert "canal.toml is a canal file: name a day file" in result.stderr
 
 
 def test_a_value_can_be_set_for_one_run(one_plan, call):

@@ -25,12 +25,21 @@ def is_run(path: Path) -> bool:
 
 
 def is_canal(path: Path) -> bool:
-    """Whether a TOML file describes a canal; one that cannot be read counts as a day, whose loader says why."""
+    """Whether a TOML file describes a canal."""
+    return not _CANAL_TABLES.isdisjoint(_top_keys(path))
+
+
+def is_day(path: Path) -> bool:
+    """Whether a TOML file describes a day."""
+    return "canal" in _top_keys(path)
+
+
+def _top_keys(path: Path) -> set[str]:
+    """Keys at the top of a TOML file; none where it cannot be read, which its loader explains."""
     try:
-        tables = tomllib.loads(path.read_text(encoding="utf-8"))
+        return set(tomllib.loads(path.read_text(encoding="utf-8")))
     except (tomllib.TOMLDecodeError, UnicodeDecodeError):
-        return False
-    return not _CANAL_TABLES.isdisjoint(tables)
+        return set()
 
 
 def load_plans(day: Path, plan: str | None = None, overrides: Sequence[str] = ()) -> list["Scenario"]:

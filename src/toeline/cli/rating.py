@@ -5,7 +5,7 @@ from typing import TYPE_CHECKING
 
 import click
 
-from toeline.cli.input_files import INPUT_FILE
+from toeline.cli.input_files import INPUT_FILE, is_day
 from toeline.cli.terminal import page_width, show
 from toeline.errors import UsageError
 
@@ -27,7 +27,7 @@ QUANTITIES = "LEVEL[,LEVEL...]"
     "csv_file",
     type=click.Path(dir_okay=False, path_type=Path),
     metavar="FILE",
-    help="Write the table to FILE as well, one row a value, in SI.",
+    help="Write the table to FILE as well, one row a value, in the units of the canal file.",
 )
 @click.option("--overwrite", is_flag=True, help="Replace a CSV file that exists.")
 def command(
@@ -50,14 +50,24 @@ def command(
     from toeline.scenario import load_canal
     from toeline.units import Display
 
-    if csv_file is not None and csv_file.exists() and not overwrite:
-        raise UsageError(f"{csv_file} exists: name another file, or replace it with --overwrite.")
+    check_files(canal, csv_file, overwrite)
     canal_file = load_canal(canal)
     check_gate(canal_file, gate)
-    rows = rating_table(canal_file, gate, *chosen_values(canal_file, gate, headwater, tailwater, opening))
+    chosen = chosen_values(canal_file, gate, headwater, tailwater, opening)
+    rows = rating_table(canal_file, gate, *chosen)
     show(rating_page(rows, f"{gate}, {canal_file.canal.name}", Display(canal_file.units), page_width()))
     if csv_file is not None:
         write_csv(csv_file, rows, canal_file.units)
+
+
+def check_files(canal: Path, csv_file: Path | None, overwrite: bool) -> None:
+    if is_day(canal):
+        raise UsageError(f"{canal} is a day file: name the file of its canal.")
+    if csv_file is not None and csv_file.exists():
+        if csv_file.samefile(canal):
+            raise UsageError(f"{csv_file} is the canal file and would be lost: name another file.")
+        if not overwrite:
+            raise UsageError(f"{csv_file} exists: name another file, or replace it with --overwrite.")
 
 
 def chosen_values(
@@ -67,11 +77,13 @@ def chosen_values(
     from toeline.network.rating import default_rating_levels
 
     given = (("--headwater", headwater), ("--tailwater", tailwater), ("--opening", opening))
-    chosen = default_rating_levels(canal_file, gate)
-    return [
+    chosen = [
         lengths(option, text, canal_file.units) if text else list(default)
-        for (option, text), default in zip(given, chosen, strict=True)
+        for (option, text), default in zip(given, default_rating_levels(canal_file, gate), strict=True)
     ]
+    if min(chosen[2]) < 0.0:
+        raise UsageError("--opening: openings count from the closed gate upward, from 0.")
+    return chosen
 
 
 def lengths(option: str, text: str, system: "UnitSystem") -> list[float]:

@@ -1,6 +1,7 @@
 """The rating of a gate as a page and as a CSV file."""
 
 import csv
+import io
 import math
 from collections.abc import Iterator, Sequence
 from itertools import groupby
@@ -87,11 +88,12 @@ def _legend(rows: Sequence["RatingRow"]) -> str:
 
 def write_csv(file: Path, rows: Sequence["RatingRow"], system: UnitSystem) -> None:
     """One row a value, in the units of the canal file, which the header names; empty where there is no value."""
-    with file.open("w", encoding="utf-8", newline="") as sheet:
-        writer = csv.writer(sheet)
-        writer.writerow(_column(name, dimension, system) for name, dimension in CSV_COLUMNS.items())
-        for row in rows:
-            writer.writerow(_field(getattr(row, name), dimension, system) for name, dimension in CSV_COLUMNS.items())
+    sheet = io.StringIO(newline="")
+    writer = csv.writer(sheet)
+    writer.writerow(_column(name, dimension, system) for name, dimension in CSV_COLUMNS.items())
+    for row in rows:
+        writer.writerow(_field(getattr(row, name), dimension, system) for name, dimension in CSV_COLUMNS.items())
+    file.write_text(sheet.getvalue(), encoding="utf-8", newline="")
 
 
 def _column(name: str, dimension: Dimension | None, system: UnitSystem) -> str:

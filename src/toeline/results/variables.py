@@ -92,15 +92,15 @@ _CLOCKS = (
 )
 
 _GATE_SERIES = (
-    Variable("gate_opening", _GATES, "m", "opening of the gate, lip above sill", "as moved, not as ordered"),
+    Variable("gate_opening", _GATES, "m", "opening of the gate, lip above sill", "as moved, not as ordered", dtype="f8"),
     Variable("gate_discharge", _GATES, "m3 s-1", "discharge of the gate", "downstream positive; all bays together",
-             companions=("gate_flow_state", "discharge_quality")),
+             companions=("gate_flow_state", "discharge_quality"), dtype="f8"),
     _flag("gate_flow_state", _GATES, "state of the flow through the gate", FLOW_STATES, standard_name="status_flag"),
     _flag("discharge_quality", _GATES, "how well the discharge of the gate is known", DISCHARGE_QUALITIES,
           standard_name="quality_flag",
           comment="near the modular limit, with the lip near the surface and when very drowned, gate ratings are poor"),
-    Variable("gate_headwater_level", _GATES, "m", "water level just above the gate", _LEVEL, _SURFACE),
-    Variable("gate_tailwater_level", _GATES, "m", "water level just below the gate", _LEVEL, _SURFACE),
+    Variable("gate_headwater_level", _GATES, "m", "water level just above the gate", _LEVEL, _SURFACE, dtype="f8"),
+    Variable("gate_tailwater_level", _GATES, "m", "water level just below the gate", _LEVEL, _SURFACE, dtype="f8"),
     Variable("jet_depth", _GATES, "m", "depth of the jet at the contracted section",
              "above the floor below the gate; missing where there is no jet"),
     Variable("jet_froude_number", _GATES, "1", "Froude number of the jet at the contracted section"),
@@ -138,11 +138,11 @@ _POOL_SERIES = (
           comment="one wave round trip after a move; until then the quasi-steady levels are least trustworthy"),
     Variable("pool_volume", _POOLS, "m3", "volume of water in the pool", dtype="f8"),
     Variable("pool_head_level", _POOLS, "m", "water level at the upper end of the pool", _LEVEL, _SURFACE,
-             companions=("settling",)),
+             companions=("settling",), dtype="f8"),
     Variable("pool_tail_level", _POOLS, "m", "water level at the lower end of the pool", _LEVEL, _SURFACE,
-             companions=("settling",)),
-    Variable("pool_inflow", _POOLS, "m3 s-1", "discharge into the upper end of the pool"),
-    Variable("pool_outflow", _POOLS, "m3 s-1", "discharge out of the lower end of the pool"),
+             companions=("settling",), dtype="f8"),
+    Variable("pool_inflow", _POOLS, "m3 s-1", "discharge into the upper end of the pool", dtype="f8"),
+    Variable("pool_outflow", _POOLS, "m3 s-1", "discharge out of the lower end of the pool", dtype="f8"),
     Variable("pool_losses", _POOLS, "m3 s-1", "seepage and evaporation less rain", "deliveries are not losses"),
     Variable("pool_bank_margin", _POOLS, "m", "least height of the bank above the water along the pool",
              "negative: over the bank; surges are not in it; missing where no bank is given", companions=("settling",)),
@@ -152,14 +152,14 @@ _POOL_SERIES = (
 )
 
 _OFFTAKE_SERIES = (
-    Variable("demand", _OFFTAKES, "m3 s-1", "discharge asked for at the offtake", "missing where nothing is asked"),
-    Variable("delivery", _OFFTAKES, "m3 s-1", "discharge delivered at the offtake"),
+    Variable("demand", _OFFTAKES, "m3 s-1", "discharge asked for at the offtake", "missing where nothing is asked", dtype="f8"),
+    Variable("delivery", _OFFTAKES, "m3 s-1", "discharge delivered at the offtake", dtype="f8"),
     Variable("delivery_volume", _OFFTAKES, "m3", "volume delivered at the offtake since the start", dtype="f8"),
 )
 
 _CANAL_SERIES = (
-    Variable("canal_inflow", ("time",), "m3 s-1", "discharge into the canal at its head"),
-    Variable("canal_outflow", ("time",), "m3 s-1", "discharge out of the canal at its tail"),
+    Variable("canal_inflow", ("time",), "m3 s-1", "discharge into the canal at its head", dtype="f8"),
+    Variable("canal_outflow", ("time",), "m3 s-1", "discharge out of the canal at its tail", dtype="f8"),
     Variable("canal_inflow_volume", ("time",), "m3", "volume taken in at the head since the start", dtype="f8"),
     Variable("canal_outflow_volume", ("time",), "m3", "volume let out at the tail since the start", dtype="f8"),
     Variable("canal_storage", ("time",), "m3", "volume of water in all pools", dtype="f8"),
@@ -168,9 +168,9 @@ _CANAL_SERIES = (
 )
 
 _PROFILES = (
-    Variable("water_level", _PROFILE, "m", "water level", _LEVEL, _SURFACE),
+    Variable("water_level", _PROFILE, "m", "water level", _LEVEL, _SURFACE, dtype="f8"),
     Variable("discharge", _PROFILE, "m3 s-1", "discharge along the canal", "downstream positive",
-             "water_volume_transport_in_river_channel"),
+             "water_volume_transport_in_river_channel", dtype="f8"),
     Variable("velocity", _PROFILE, "m s-1", "mean velocity of the section", "downstream positive"),
 )
 

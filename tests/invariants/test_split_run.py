@@ -1,0 +1,57 @@
+"""A day split at a full hour, and gone on with from the end state, equals the unbroken day."""
+
+import numpy as np
+import pytest
+from tests.canals import Table, day, order, scenario_of, stepped_canal
+
+from toeline import open_run, simulate
+
+ORDERS = [
+    order("02:30", "G0", by=0.10),
+    order("05:58", "G1", by=0.20),  # still moving at six
+    order("07:15", "G2", opening=0.30),
+]
+INFLOW = [(0, 8.0), (5, 8.0), (7, 11.0)]
+"""Hours and m³/s; six lies in the middle of the ramp."""
+
+AGREES = 1e-9
+
+
+def canal() -> Table:
+    take = {
+        "name": "T0",
+        "pool": "P1",
+        "chainage": 700.0,
+        "kind": "orifice",
+        "sill_level": 1.2,
+        "width": 0.5,
+        "opening": 0.3,
+    }
+    return stepped_canal(3, 1500.0, offtakes=[take])
+
+
+def inflow_between(start: float, end: float) -> Table:
+    hours, values = zip(*INFLOW, strict=True)
+    inner = [start, *(h for h in hours if start < h < end), end]
+    return {"shape": "lines", "values": [[f"+{h - start:g} h", float(np.interp(h, hours, values))] for h in inner]}
+
+
+def part(begin: int, end: int, local_inertia: bool, **tables) -> Table:
+    orders = [dict(one) for one in ORDERS if begin <= int(one["at"][:2]) < end]
+    period = {"start": f"2031-05-04T{begin:02d}:00:00Z", "local_inertia": local_inertia}
+    return day(inflow_between(begin, end), length=f"{end - begin} h", period=period, orders=orders, **tables)
+
+
+@pytest.mark.parametrize("hour", [4, 6], ids=["at rest", "while a gate moves and the inflow rises"])
+@pytest.mark.parametrize("local_inertia", [False, True], ids=["quasi-steady", "local inertia"])
+def test_split_run_equals_the_unbroken_one(tmp_path, hour, local_inertia):
+    files = {name: tmp_path / f"{name}.nc" for name in ("whole", "first", "second")}
+    simulate(scenario_of(tmp_path, canal(), part(0, 12, local_inertia), name="whole"), files["whole"]).close()
+    simulate(scenario_of(tmp_path, canal(), part(0, hour, local_inertia), name="first"), files["first"]).close()
+    follows = part(hour, 12, local_inertia, start={"file": "first.nc"})
+    simulate(scenario_of(tmp_path, canal(), follows, name="second"), files["second"]).close()
+    with open_run(files["whole"]) as whole, open_run(files["second"]) as second:
+        same_times = whole.sel(time=second.time, profile_time=second.profile_time)
+        for name in ("water_level", "pool_tail_level", "gate_opening", "gate_discharge", "delivery"):
+            assert np.abs(same_times[name] - second[name]).max() <= AGREES, name
+        assert np.abs(whole.end_level - second.end_level).max() <= AGREES

@@ -1,0 +1,51 @@
+"""No growing mode: a steady day stays steady with aprons and transitions, at any step, in both forms of momentum."""
+
+from pathlib import Path
+
+import numpy as np
+import pytest
+from tests.canals import day, scenario_of, stepped_canal
+
+from toeline import load_scenario, simulate
+
+STEADY = Path(__file__).parents[2] / "scenarios" / "quillmere" / "steady.toml"
+SUDDEN_WIDENING = [{"length": 18.0, "section": "basin", "surface": "apron"}]
+
+
+def change_of_levels(run) -> float:
+    return float(np.abs(run.water_level - run.water_level[0]).max())
+
+
+@pytest.fixture(params=["1 s", "10 s", "15 min"])
+def longest_step(request):
+    return request.param
+
+
+@pytest.fixture(params=[False, True], ids=["quasi-steady", "local inertia"])
+def local_inertia(request):
+    return request.param
+
+
+def test_example_canal(longest_step, local_inertia):
+    overrides = (
+        'period.length="4 h"',
+        f'period.longest_step="{longest_step}"',
+        f"period.local_inertia={str(local_inertia).lower()}",
+    )
+    assert change_of_levels(simulate(load_scenario(STEADY, overrides=overrides))) <= 1e-6
+
+
+def test_sudden_widening_below_every_gate(tmp_path, longest_step, local_inertia):
+    canal = stepped_canal(3, 1500.0, floor=SUDDEN_WIDENING)
+    period = {"longest_step": longest_step, "local_inertia": local_inertia}
+    assert change_of_levels(simulate(scenario_of(tmp_path, canal, day(10.0, length="4 h", period=period)))) <= 1e-6
+
+
+def test_small_disturbance_dies_out_below_a_widening(tmp_path, longest_step, local_inertia):
+    canal = stepped_canal(3, 1500.0, floor=SUDDEN_WIDENING)
+    pulse = {"shape": "lines", "values": [["00:00", 10.0], ["00:10", 10.0], ["00:15", 10.2], ["00:20", 10.0]]}
+    period = {"longest_step": longest_step, "local_inertia": local_inertia}
+    run = simulate(scenario_of(tmp_path, canal, day(pulse, length="12 h", period=period)))
+    change = np.abs(run.water_level - run.water_level[0]).max("node")
+    assert change.max() > 2e-3
+    assert change[-1] < 0.1 * change.max()
