@@ -58,7 +58,7 @@ def test_values_come_back_as_given_to_the_stored_precision(invented_run, tmp_pat
     run = invented_run()
     opened = written(run, tmp_path / "run.nc")
     np.testing.assert_array_equal(opened["pool_volume"], run.values("pool_volume"))
-    np.testing.assert_array_equal(opened["gate_discharge"], run.values("gate_discharge").astype("f4"))
+    np.testing.assert_array_equal(opened["jet_depth"], run.values("jet_depth").astype("f4"))
     np.testing.assert_array_equal(opened["jump_state"], run.values("jump_state"))
     assert opened["order_reason"].values.tolist() == run.values("order_reason").tolist()
 
