@@ -1,0 +1,101 @@
+"""Orders become openings: travel, hoist, smallest move and avoided bands, by hand calculation."""
+
+import math
+from types import SimpleNamespace
+
+import pytest
+
+from toeline.engine.gate_motion import ACCEPTED, REFUSED, REPLACED, TRIMMED, GateMotion, allowed_opening
+
+MINUTE = 60_000
+
+
+def gate(**keys):
+    plain = {"name": "G", "max_opening": 1.8, "smallest_move": 0.01, "hoist_speed": 0.1 / 60.0, "avoid_openings": []}
+    return SimpleNamespace(**plain | keys)
+
+
+@pytest.mark.parametrize(
+    ("wanted", "held", "status"),
+    [
+        (0.80, 0.80, ACCEPTED),
+        (1.80, 1.80, ACCEPTED),
+        (2.50, 1.80, TRIMMED),
+        (-0.10, 0.00, TRIMMED),
+        (0.505, 0.50, REFUSED),  # 5 mm from the opening last ordered
+        (0.50, 0.50, ACCEPTED),
+    ],
+)
+def test_travel_and_smallest_move(wanted, held, status):
+    opening, became, reason = allowed_opening(gate(), wanted, ordered=0.50)
+    assert (opening, became) == (pytest.approx(held), status)
+    assert bool(reason) == (status != ACCEPTED)
+
+
+@pytest.mark.parametrize(
+    ("wanted", "held", "status"),
+    [
+        (0.00, 0.00, ACCEPTED),  # closing is never avoided
+        (0.03, 0.04, TRIMMED),
+        (0.01, 0.00, TRIMMED),
+        (0.04, 0.04, ACCEPTED),  # an edge may be held
+        (0.95, 0.90, TRIMMED),
+        (1.05, 1.10, TRIMMED),
+    ],
+)
+def test_avoided_bands_are_not_held(wanted, held, status):
+    opening, became, _ = allowed_opening(gate(avoid_openings=[(0.0, 0.04), (0.9, 1.1)]), wanted, ordered=0.5)
+    assert (opening, became) == (pytest.approx(held), status)
+
+
+def test_leaf_moves_linearly_at_hoist_speed_and_stands_on_the_millisecond():
+    motion = GateMotion(gate(), 0.50)
+    record = motion.order(10 * MINUTE, "opening", 0.75, 0.75)
+    assert motion.until == 10 * MINUTE + 150_000  # 0.25 m at 0.10 m/min
+    assert motion.opening_at(11 * MINUTE) == pytest.approx(0.60)
+    assert motion.rate() == pytest.approx(0.1 / 60.0)
+    motion.arrive(motion.until)
+    assert not motion.is_moving
+    assert record.completed == 10 * MINUTE + 150_000
+
+
+def test_without_a_hoist_speed_the_leaf_is_there_at_once():
+    motion = GateMotion(gate(hoist_speed=None), 0.5)
+    record = motion.order(0, "opening", 0.9, 0.9)
+    assert (motion.opening, record.completed) == (0.9, 0)
+
+
+def test_order_given_while_the_leaf_moves_replaces_the_one_before():
+    motion = GateMotion(gate(), 0.50)
+    first = motion.order(0, "opening", 0.80, 0.80)
+    motion.arrive(MINUTE)
+    second = motion.order(MINUTE, "opening", 0.50, 0.50)
+    assert (first.status, first.completed, first.after) == (REPLACED, MINUTE, pytest.approx(0.60))
+    assert (second.before, second.status) == (pytest.approx(0.60), ACCEPTED)
+    assert motion.until == 2 * MINUTE
+
+
+def test_refused_order_leaves_a_moving_leaf_alone():
+    motion = GateMotion(gate(), 0.50)
+    motion.order(0, "opening", 0.80, 0.80)
+    motion.arrive(MINUTE)
+    record = motion.order(MINUTE, "by", 0.002, motion.ordered + 0.002)
+    assert record.status == REFUSED
+    assert math.isnan(record.completed)
+    assert motion.opening_at(3 * MINUTE) == pytest.approx(0.80)
+
+
+def test_move_that_the_end_of_the_day_interrupts_says_so():
+    motion = GateMotion(gate(), 0.50)
+    record = motion.order(0, "opening", 0.80, 0.80)
+    motion.arrive(MINUTE)
+    motion.end_of_day()
+    assert record.is_final
+    assert math.isnan(record.completed)
+    assert "still moving" in record.reason
+
+
+def test_move_goes_on_on_the_next_day():
+    motion = GateMotion(gate(), 0.60)
+    motion.resume(target=0.80, ordered=0.80, remaining=2 * MINUTE)
+    assert motion.opening_at(MINUTE) == pytest.approx(0.70)
