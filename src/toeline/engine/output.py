@@ -42,12 +42,17 @@ class Watch(NamedTuple):
 
 
 @inner_kernel
-def quadratic(at, start, middle, end):
-    """Value at a fraction of the step through its start, its stage at γ and its end."""
+def shares_at(at):
+    """Weights of a step's start, its stage at γ and its end in the quadratic through all three, at a fraction of it."""
     by_start = (at - GAMMA) * (at - 1.0) / GAMMA
     by_middle = at * (at - 1.0) / (GAMMA * (GAMMA - 1.0))
-    by_end = at * (at - GAMMA) / (1.0 - GAMMA)
-    return by_start * start + by_middle * middle + by_end * end
+    return by_start, by_middle, at * (at - GAMMA) / (1.0 - GAMMA)
+
+
+@inner_kernel
+def between(shares, start, middle, end):
+    """Value inside a step by the weights of `shares_at`."""
+    return shares[0] * start + shares[1] * middle + shares[2] * end
 
 
 @inner_kernel
@@ -79,11 +84,12 @@ def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at,
     """Fill the next row of output; `at` is the fraction of the step, `forcing` set to that time."""
     row = rows.filled[0]
     rows.filled[0] += 1
+    shares = shares_at(at)
     head_level, tail_level = forcing[FORCING_HEAD].now, forcing[FORCING_TAIL].now
     levels_at(tables, before, after, h, at, tail_level, watch.level)
     for index in range(before.links.size):
-        watch.discharge[index] = quadratic(
-            at, before.links[index].discharge, middle.links[index].discharge, after.links[index].discharge
+        watch.discharge[index] = between(
+            shares, before.links[index].discharge, middle.links[index].discharge, after.links[index].discharge
         )
         link = tables.links[index]
         if link.kind == GATE:
@@ -95,18 +101,18 @@ def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at,
             out.surge_height_bound_downstream = (
                 guard.surge_downstream if time_ms < guard.surge_downstream_until else 0.0
             )
-    storage = fill_pools(tables, before, middle, after, watch, rows.pools[row], time_ms, at)
-    delivered = fill_offtakes(tables, before, middle, after, totals, rows.offtakes[row], h, at, forcing)
+    storage = fill_pools(tables, before, middle, after, watch, rows.pools[row], time_ms, shares)
+    delivered = fill_offtakes(tables, before, middle, after, totals, rows.offtakes[row], h, shares, forcing)
     canal = rows.canal[row]
     canal.time = time_ms
     canal.canal_storage = storage
-    fill_canal(tables, before, middle, after, totals, watch, canal, h, at)
+    fill_canal(tables, before, middle, after, totals, watch, canal, h, shares)
     change = storage - watch.start_storage[0]
     canal.balance_residual = canal.canal_inflow_volume - canal.canal_outflow_volume - delivered - change
 
 
 @inner_kernel
-def fill_pools(tables, before, middle, after, watch, out, time_ms, at):
+def fill_pools(tables, before, middle, after, watch, out, time_ms, shares):
     """Fill a row of pools; returns the volume in the canal [m³]."""
     storage = 0.0
     for p in range(tables.pools.size):
@@ -121,7 +127,7 @@ def fill_pools(tables, before, middle, after, watch, out, time_ms, at):
             lining = min(lining, watch.banks[k].lining_level - watch.level[k])
         pool = out[p]
         pool.settling = 1 if time_ms < watch.settled_at[p] else 0
-        pool.pool_volume = quadratic(at, start, inner, end)
+        pool.pool_volume = between(shares, start, inner, end)
         pool.pool_head_level = max(watch.level[first], tables.channel.nodes[first].bed_level)
         pool.pool_tail_level = max(watch.level[last], tables.channel.nodes[last].bed_level)
         pool.pool_inflow = watch.discharge[first]
@@ -134,14 +140,14 @@ def fill_pools(tables, before, middle, after, watch, out, time_ms, at):
 
 
 @inner_kernel
-def total_at(at, h, total, start, middle, end):
+def total_at(shares, h, total, start, middle, end):
     """A running total at a fraction of the step, consistent with the stored volumes there."""
     inner = total + DIAGONAL * h * (start + middle)
-    return quadratic(at, total, inner, total + h * weighted(start, middle, end))
+    return between(shares, total, inner, total + h * weighted(start, middle, end))
 
 
 @inner_kernel
-def fill_offtakes(tables, before, middle, after, totals, out, h, at, forcing):
+def fill_offtakes(tables, before, middle, after, totals, out, h, shares, forcing):
     """Fill a row of offtakes; returns the volume delivered by all [m³]."""
     first_demand = FORCING_GATES + tables.gates.size
     delivered = 0.0
@@ -149,23 +155,23 @@ def fill_offtakes(tables, before, middle, after, totals, out, h, at, forcing):
         start, inner, end = before.delivery[k], middle.delivery[k], after.delivery[k]
         take = out[k]
         take.demand = forcing[first_demand + k].now
-        take.delivery = quadratic(at, start, inner, end)
-        take.delivery_volume = total_at(at, h, totals.delivery[k], start, inner, end)
+        take.delivery = between(shares, start, inner, end)
+        take.delivery_volume = total_at(shares, h, totals.delivery[k], start, inner, end)
         delivered += take.delivery_volume
     return delivered
 
 
 @inner_kernel
-def fill_canal(tables, before, middle, after, totals, watch, canal, h, at):
+def fill_canal(tables, before, middle, after, totals, watch, canal, h, shares):
     """Fill what comes into and leaves the canal."""
     out = canal_outflow_link(tables)
     canal.canal_inflow = watch.discharge[0]
     canal.canal_outflow = watch.discharge[out]
     canal.canal_inflow_volume = total_at(
-        at, h, totals.canal[0], before.links[0].discharge, middle.links[0].discharge, after.links[0].discharge
+        shares, h, totals.canal[0], before.links[0].discharge, middle.links[0].discharge, after.links[0].discharge
     )
     canal.canal_outflow_volume = total_at(
-        at, h, totals.canal[1], before.links[out].discharge, middle.links[out].discharge, after.links[out].discharge
+        shares, h, totals.canal[1], before.links[out].discharge, middle.links[out].discharge, after.links[out].discharge
     )
 
 
@@ -174,6 +180,7 @@ def fill_profile(tables, before, middle, after, watch, rows, time_ms, h, at, for
     """Fill the next row of the long profile."""
     row = rows.filled[1]
     rows.filled[1] += 1
+    shares = shares_at(at)
     rows.profile_time[row] = time_ms
     levels_at(tables, before, after, h, at, forcing[FORCING_TAIL].now, watch.level)
     for k in range(rows.profiles.shape[1]):
@@ -184,7 +191,7 @@ def fill_profile(tables, before, middle, after, watch, rows, time_ms, h, at, for
         site, out = tables.channel.nodes[k], rows.profiles[row, k]
         depth = watch.level[k] - site.bed_level
         out.water_level = max(watch.level[k], site.bed_level)
-        out.discharge = quadratic(at, start, inner, end)
+        out.discharge = between(shares, start, inner, end)
         out.velocity = (
             out.discharge / geometry(tables.channel.shapes[site.section], depth)[0] if depth > DRY_DEPTH else 0.0
         )

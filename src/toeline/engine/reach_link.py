@@ -59,8 +59,8 @@ def reach_balance(
     """Head left over in a reach link [m], and its derivatives to the level above, the discharge and the level below.
 
     z_i − z_{i+1} + C − Q|Q|·(Δx/K² + local losses), with C = head_base + head_share·Q²/2g·(α/A_i² − α/A_{i+1}²).
-    The slope to the discharge is never less than at the balance with the present levels: from rest Newton's method
-    would overshoot.
+    Where the discharge is less than half its balance with the present levels the slope to it is that at the balance:
+    from rest Newton's method would overshoot.
     """
     if level_up >= level_down:
         k, dk_up, dk_down = link_conveyance(
@@ -72,8 +72,9 @@ def reach_balance(
         )
     if k < LEAST_CONVEYANCE:
         k, dk_up, dk_down = LEAST_CONVEYANCE, 0.0, 0.0
-    loss = link.length / (k * k)
-    loss_up, loss_down = -2.0 * loss / k * dk_up, -2.0 * loss / k * dk_down
+    inverse = 1.0 / k
+    loss = link.length * inverse * inverse
+    loss_up, loss_down = -2.0 * loss * inverse * dk_up, -2.0 * loss * inverse * dk_down
     if link.point_loss > 0.0 or transition_loss > 0.0:
         local, local_up, local_down = _local_losses(link.point_loss, transition_loss, up, down)
         loss, loss_up, loss_down = loss + local, loss_up + local_up, loss_down + local_down
@@ -82,7 +83,9 @@ def reach_balance(
     flux, half = q * abs(q), head_share * q / (2.0 * GRAVITY)
     difference = up.inverse_area - down.inverse_area
     drive = level_up - level_down + head_base + half * q * difference
-    size = max(abs(q), math.sqrt(abs(drive) / loss))
+    size = abs(q)
+    if abs(drive) > 4.0 * q * q * loss:
+        size = math.sqrt(abs(drive) / loss)
     by_up = 1.0 + half * q * up.inverse_area_slope - flux * loss_up
     by_down = -1.0 - half * q * down.inverse_area_slope - flux * loss_down
     by_discharge = 2.0 * half * difference - 2.0 * size * loss

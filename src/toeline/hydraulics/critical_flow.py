@@ -4,8 +4,8 @@ import math
 
 from toeline.constants import GRAVITY
 from toeline.hydraulics import status
-from toeline.hydraulics.cross_section import ALPHA, BETA, geometry, static_moment
-from toeline.hydraulics.kernel import kernel
+from toeline.hydraulics.cross_section import ALPHA, BETA, OWN, TOP, TRAPEZOID, geometry, static_moment
+from toeline.hydraulics.kernel import inner_kernel, kernel
 
 
 @kernel
@@ -45,6 +45,10 @@ def critical_depth(section, discharge):
     if discharge == 0.0:
         return 0.0, status.OK
     wanted = section[ALPHA] * discharge * discharge / GRAVITY
+    if is_rectangle(section):
+        y = (wanted / (section[OWN] * section[OWN])) ** (1.0 / 3.0)
+        if y <= section[TOP]:
+            return y, status.OK
     y, low, high = 0.5, 0.0, math.inf
     for k in range(200):
         area, width, _, _ = geometry(section, y)
@@ -67,6 +71,11 @@ def supercritical_depth(section, discharge, energy):
     NO_SOLUTION (and the critical depth) where the energy is below its least value. Newton's method from the shallow
     side, where E falls and is convex: it climbs to the root.
     """
+    if is_rectangle(section) and energy <= section[TOP]:
+        q = discharge / section[OWN]
+        y = alternate_depth(section[ALPHA] * q * q / (2.0 * GRAVITY), energy)
+        if y == y:
+            return y, status.OK
     critical, _ = critical_depth(section, discharge)
     if energy <= specific_energy(section, discharge, critical):
         return critical, status.NO_SOLUTION
@@ -81,3 +90,23 @@ def supercritical_depth(section, discharge, energy):
         if abs(step) < 1e-13 * y + 1e-15:
             return y, status.OK
     return y, status.NOT_CONVERGED
+
+
+@inner_kernel
+def is_rectangle(section):
+    """Whether a section has upright sides."""
+    return section[0] == TRAPEZOID and section[OWN + 1] == 0.0
+
+
+@inner_kernel
+def alternate_depth(flux, energy):
+    """Supercritical root [m] of y + flux/y² = energy [m³, m], in closed form and polished; NaN where there is none."""
+    cosine = 1.0 - 13.5 * flux / (energy * energy * energy) if energy > 0.0 else -2.0
+    if cosine <= -1.0:
+        return math.nan
+    y = energy / 3.0 * (1.0 + 2.0 * math.cos((math.acos(min(cosine, 1.0)) + 4.0 * math.pi) / 3.0))
+    for _ in range(2):
+        slope = 1.0 - 2.0 * flux / (y * y * y) if y > 0.0 else 0.0
+        if slope < -1e-3:
+            y -= (y + flux / (y * y) - energy) / slope
+    return y

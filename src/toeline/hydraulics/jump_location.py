@@ -4,8 +4,8 @@ import math
 from typing import NamedTuple
 
 from toeline.constants import GRAVITY
-from toeline.hydraulics.critical_flow import supercritical_depth
-from toeline.hydraulics.cross_section import OWN, TRAPEZOID
+from toeline.hydraulics.critical_flow import alternate_depth, is_rectangle, supercritical_depth
+from toeline.hydraulics.cross_section import BETA, OWN, TRAPEZOID
 from toeline.hydraulics.gradually_varied_flow import (
     link_alpha,
     link_bed,
@@ -54,24 +54,10 @@ def jet_on_floor(section, jet_width, thickness, step, discharge):
     """
     q = discharge / jet_width
     energy = thickness + q * q / (2.0 * GRAVITY * thickness * thickness) + step
-    depth = _alternate_depth(q, energy) if step > 0.0 else thickness
+    depth = alternate_depth(q * q / (2.0 * GRAVITY), energy) if step > 0.0 else thickness
     full, _ = supercritical_depth(section, discharge, energy)
     froude = q / (depth * math.sqrt(GRAVITY * depth))
     return Jet(discharge, jet_width, depth, full, froude, jet_force(section, discharge, jet_width, depth, depth))
-
-
-@inner_kernel
-def _alternate_depth(q, energy):
-    """Supercritical root of y + q²/(2gy²) = E, in closed form."""
-    cosine = 1.0 - 27.0 * q * q / (4.0 * GRAVITY * energy * energy * energy)
-    angle = math.acos(min(max(cosine, -1.0), 1.0))
-    y = energy / 3.0 * (1.0 + 2.0 * math.cos((angle + 4.0 * math.pi) / 3.0))
-    for _ in range(2):
-        head = q * q / (2.0 * GRAVITY * y * y)
-        slope = 1.0 - 2.0 * head / y
-        if slope < -1e-3:
-            y -= (y + head - energy) / slope
-    return y
 
 
 @kernel
@@ -159,10 +145,13 @@ def sequent_in_link(channel, node, weight, discharge, depth):
     """Sequent depth [m] of a supercritical depth in the section between a node and the next; Newton's method from
     above.
     """
-    force = link_force(channel, node, weight, discharge, depth)
     area, width, _, _, _ = link_geometry(channel, node, weight, depth)
     froude_squared = discharge * discharge * width / (GRAVITY * area * area * area)
     y = 0.5 * depth * (math.sqrt(1.0 + 8.0 * froude_squared) - 1.0)
+    here = channel.shapes[channel.nodes[node].section]
+    if is_rectangle(here) and here[BETA] == 1.0 and channel.nodes[node].section == channel.nodes[node + 1].section:
+        return y
+    force = link_force(channel, node, weight, discharge, depth)
     for _ in range(60):
         area, width, _, _, _ = link_geometry(channel, node, weight, y)
         slope = area - discharge * discharge * width / (GRAVITY * area * area)

@@ -92,7 +92,8 @@ _CLOCKS = (
 )
 
 _GATE_SERIES = (
-    Variable("gate_opening", _GATES, "m", "opening of the gate, lip above sill", "as moved, not as ordered", dtype="f8"),
+    Variable("gate_opening", _GATES, "m", "opening of the gate, lip above sill", "as moved, not as ordered",
+             dtype="f8"),
     Variable("gate_discharge", _GATES, "m3 s-1", "discharge of the gate", "downstream positive; all bays together",
              companions=("gate_flow_state", "discharge_quality"), dtype="f8"),
     _flag("gate_flow_state", _GATES, "state of the flow through the gate", FLOW_STATES, standard_name="status_flag"),
@@ -152,7 +153,8 @@ _POOL_SERIES = (
 )
 
 _OFFTAKE_SERIES = (
-    Variable("demand", _OFFTAKES, "m3 s-1", "discharge asked for at the offtake", "missing where nothing is asked", dtype="f8"),
+    Variable("demand", _OFFTAKES, "m3 s-1", "discharge asked for at the offtake", "missing where nothing is asked",
+             dtype="f8"),
     Variable("delivery", _OFFTAKES, "m3 s-1", "discharge delivered at the offtake", dtype="f8"),
     Variable("delivery_volume", _OFFTAKES, "m3", "volume delivered at the offtake since the start", dtype="f8"),
 )
