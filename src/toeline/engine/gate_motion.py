@@ -114,7 +114,7 @@ class GateMotion:
     def _replace(self, time: int) -> None:
         if self.current is not None:
             self.current.status = REPLACED
-            self.current.reason = f"replaced by the next order at an opening of {self.opening:.3f} m"
+            self.current.reason = f"the next order came at an opening of {self.opening:.3f} m"
             self.current.completed, self.current.after, self.current.is_final = time, self.opening, True
             self.current = None
 

@@ -69,8 +69,7 @@ def levels_at(tables, before, after, h, at, tail_level, level):
         dry = tables.channel.nodes[k].bed_level + 2.0 * DRY_DEPTH
         z = old.level + end * (new.level - old.level)
         if old.level > dry and new.level > dry:
-            cell = tables.cells[k].length
-            z += rate_start * old.net_inflow / (cell * old.width) + rate_end * new.net_inflow / (cell * new.width)
+            z += rate_start * old.rate + rate_end * new.rate
         level[k] = z
     beyond = tail_level
     if level.size > count and tables.gates[tables.gates.size - 1].downstream_node < count:

@@ -165,6 +165,7 @@ def finish_stage(tables, before, after, work, seconds, head_factor, inertial, fo
         scratch.inverse_area += scratch.inverse_area_slope * change
         node.net_inflow = after.links[k].discharge - after.links[k + 1].discharge + scratch.source
         node.volume = scratch.volume_base + seconds * node.net_inflow
+        node.rate = node.net_inflow / (tables.cells[k].length * node.width)
     for index in range(1, after.nodes.size):
         if tables.links[index].kind != REACH:
             continue

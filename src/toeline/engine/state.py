@@ -10,6 +10,7 @@ STORED = np.dtype(
         ("volume", float),  # m³, exact sum of what came and went
         ("net_inflow", float),  # m³/s, dV/dt
         ("width", float),  # m, dA/dz of the storage
+        ("rate", float),  # m/s, dz/dt
     ]
 )
 """A node of the state."""

@@ -35,7 +35,7 @@ def predict(tables, before, after, seconds):
     for k in range(before.nodes.size):
         node, change = before.nodes[k], 0.0
         if node.level - tables.channel.nodes[k].bed_level > 2.0 * DRY_DEPTH:
-            change = seconds * node.net_inflow / (tables.cells[k].length * node.width)
+            change = seconds * node.rate
         after.nodes[k].level = node.level + min(max(change, -PREDICTED), PREDICTED)
         after.links[k].discharge = before.links[k].discharge
     last = before.nodes.size
@@ -152,6 +152,7 @@ def begin_leg(tables, state, work, forcing, inertial):
         node = state.nodes[k]
         node.width = work.nodes[k].width
         node.net_inflow = state.links[k].discharge - state.links[k + 1].discharge + work.nodes[k].source
+        node.rate = node.net_inflow / (tables.cells[k].length * node.width)
     return largest
 
 

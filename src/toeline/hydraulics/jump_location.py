@@ -186,12 +186,12 @@ def protection_margin(channel, first, last, levels, discharge, chainages, depths
     low, high = 0, count - 1
     while high > 1 and chainages[high - 1] >= protection_end:
         high -= 1
-    end_low, sequent = _end_of_jump_from(channel, first, last, discharge, chainages[0], depths[0])
-    if end_low > protection_end:
-        return _tail_over(channel, first, last, levels, chainages[0], sequent)
     end_high, sequent_high = _end_of_jump_from(channel, first, last, discharge, chainages[high], depths[high])
     if end_high < protection_end:
         return math.nan
+    end_low, sequent = _end_of_jump_from(channel, first, last, discharge, chainages[0], depths[0])
+    if end_low > protection_end:
+        return _tail_over(channel, first, last, levels, chainages[0], sequent)
     while high - low > 1:
         share = (protection_end - end_low) / (end_high - end_low)
         guess = low + min(max(int(share * (high - low) + 0.5), 1), high - low - 1)

@@ -31,6 +31,8 @@ LEAST_LOSS = 0.3
 """
 LEAST_HEAD = 1e-6
 """Head over the sill [m] below which nothing passes."""
+LEAST_OPENING = 1e-9
+"""Opening [m] below which nothing passes."""
 APPROACH_PASSES = 4
 
 
@@ -89,7 +91,7 @@ def free_jet(gate, upstream_section, headwater_level, opening):
     Q = φ·b·h·√(2g(E − h)), h = min(C_c·a, ⅔E): past ⅔E the gate is clear of water and the flow critical over the sill.
     """
     head = headwater_level - gate.sill_level
-    if head <= LEAST_HEAD or opening <= 0.0:
+    if head <= LEAST_HEAD or opening <= LEAST_OPENING:
         return max(head, 0.0), 0.0, 0.0, 0.0
     width = jet_width(gate)
     share = width / geometry(upstream_section, headwater_level - gate.upstream_bed_level)[0]
