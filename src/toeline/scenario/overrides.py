@@ -33,7 +33,7 @@ class Override:
 
 
 def read_overrides(texts: Iterable[str]) -> tuple[Override, ...]:
-    """Read overrides such as 'period.length="6 h"'. Raises UsageError for one that is no key=value in TOML."""
+    """Read overrides such as 'period.length="6 h"'. Raises UsageError for one that is no key=value."""
     return tuple(_read(text) for text in texts)
 
 
@@ -60,11 +60,11 @@ def _key_path(text: str, key: str) -> tuple[str, ...]:
 
 
 def _value(text: str, value: str) -> Any:
+    """Read a TOML value; what is none, such as 6 h without quotes, is taken as text."""
     try:
         data = tomllib.loads(f"value = {value}")
     except (ValueError, RecursionError):
-        allowed = "a TOML value; text needs quotes that reach the program"
-        raise _not_toml(text, f"found the value {value}", allowed) from None
+        return value.strip()
     if len(data) != 1:
         raise _not_toml(text, f"found the value {value}", "one TOML value")
     return data["value"]
