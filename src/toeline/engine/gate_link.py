@@ -57,9 +57,10 @@ def gate_levels(gate, level, nodes, head_level, tail_level):
 @inner_kernel
 def gate_balance(shapes, gate, up, down, opening, q):
     """Residual q − Q(levels) of a gate [m³/s] and its derivatives to the level above, q and the level below."""
-    passed = gate_discharge_at(shapes, gate, up, down, opening)
-    above = gate_discharge_at(shapes, gate, up + LEVEL_NUDGE, down, opening)
-    below = gate_discharge_at(shapes, gate, up, down + LEVEL_NUDGE, opening)
+    passed = above = below = 0.0
+    for k in range(3):
+        nudge_up, nudge_down = LEVEL_NUDGE if k == 1 else 0.0, LEVEL_NUDGE if k == 2 else 0.0
+        passed, above, below = above, below, gate_discharge_at(shapes, gate, up + nudge_up, down + nudge_down, opening)
     by_up, by_down = max(above - passed, 0.0) / LEVEL_NUDGE, min(below - passed, 0.0) / LEVEL_NUDGE
     return q - passed, -by_up, 1.0, -by_down
 

@@ -212,13 +212,19 @@ def geometry(section, depth):
     At no depth the area is zero and the widths are those of the bed.
     """
     y = max(depth, 0.0)
+    if section[0] == TRAPEZOID and not y > section[TOP]:
+        b, z, wall = section[OWN], section[OWN + 1], section[OWN + 2]
+        return (b + z * y) * y, b + 2.0 * z * y, b + wall * y, wall
+    return _other_geometry(section, y)
+
+
+@inner_kernel
+def _other_geometry(section, y):
+    """`geometry` above the top of a section, in circles and in surveyed lines."""
     above = y - section[TOP]
     if above > 0.0:
         width = section[WIDTH_AT_TOP]
         return section[AREA_AT_TOP] + width * above, width, section[PERIMETER_AT_TOP] + 2.0 * above, 2.0
-    if section[0] == TRAPEZOID:
-        b, z, wall = section[OWN], section[OWN + 1], section[OWN + 2]
-        return (b + z * y) * y, b + 2.0 * z * y, b + wall * y, wall
     if section[0] == CIRCLE:
         return _circle_geometry(section[OWN], y)
     row = _row_below(section, y)
@@ -252,11 +258,17 @@ def static_moment(section, depth):
     depth.
     """
     y = max(depth, 0.0)
+    if section[0] == TRAPEZOID and not y > section[TOP]:
+        return y * y * (section[OWN] / 2.0 + section[OWN + 1] * y / 3.0)
+    return _other_moment(section, y)
+
+
+@inner_kernel
+def _other_moment(section, y):
+    """`static_moment` above the top of a section, in circles and in surveyed lines."""
     above = y - section[TOP]
     if above > 0.0:
         return section[MOMENT_AT_TOP] + above * (section[AREA_AT_TOP] + 0.5 * above * section[WIDTH_AT_TOP])
-    if section[0] == TRAPEZOID:
-        return y * y * (section[OWN] / 2.0 + section[OWN + 1] * y / 3.0)
     if section[0] == CIRCLE:
         return _circle_moment(section[OWN], y)
     row = _row_below(section, y)

@@ -265,30 +265,30 @@ def _underflow_one_way(gate, upstream_section, downstream_section, headwater_lev
         return GateFlow(free, free, free, jet, energy, math.nan, math.nan, state, QUALITY_GOOD)
     below, head_depth = tail_depth / (1.0 + BLEND), headwater_level - gate.floor_level
     approach = (energy - (headwater_level - gate.sill_level)) / (free * free)
-    if _is_subcritical(downstream_section, flux, below) and _tail_force(downstream_section, flux, below) >= force:
-        q, roller = drowned_discharge(gate, downstream_section, head_depth, tail_depth, energy, opening, lip, approach)
-        q = min(q, free)
-        if state == CLEAR_OF_WATER:
-            state, jet = CLEAR_AND_DROWNED, min(lip, roller - step)
-        else:
-            state = DROWNED
-        return GateFlow(q, q, free, jet, energy, roller, math.nan, state, QUALITY_GOOD)
-    limit = _limit_from_above(downstream_section, flux, force, above)
-    top = min((1.0 + BLEND) * limit, energy + step)
-    q_top, _ = drowned_discharge(gate, downstream_section, head_depth, top, energy, opening, lip, approach)
-    share = (tail_depth - (1.0 - BLEND) * limit) / (top - (1.0 - BLEND) * limit)
-    q = free + (min(q_top, free) - free) * min(max(share, 0.0), 1.0)
-    return GateFlow(q, q, free, jet, energy, math.nan, limit, NEAR_MODULAR_LIMIT, QUALITY_NEAR_LIMIT)
+    drowned = _is_subcritical(downstream_section, flux, below) and _tail_force(downstream_section, flux, below) >= force
+    limit, depth = math.nan, tail_depth
+    if not drowned:
+        limit = _limit_from_above(downstream_section, flux, force, above)
+        depth = min((1.0 + BLEND) * limit, energy + step)
+    q, roller = drowned_discharge(gate, downstream_section, head_depth, depth, energy, opening, lip, approach)
+    q = min(q, free)
+    if not drowned:
+        share = (tail_depth - (1.0 - BLEND) * limit) / (depth - (1.0 - BLEND) * limit)
+        q = free + (q - free) * min(max(share, 0.0), 1.0)
+        return GateFlow(q, q, free, jet, energy, math.nan, limit, NEAR_MODULAR_LIMIT, QUALITY_NEAR_LIMIT)
+    if state == CLEAR_OF_WATER:
+        return GateFlow(q, q, free, min(lip, roller - step), energy, roller, math.nan, CLEAR_AND_DROWNED, QUALITY_GOOD)
+    return GateFlow(q, q, free, jet, energy, roller, math.nan, DROWNED, QUALITY_GOOD)
 
 
 @inner_kernel
 def _underflow(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening):
     """`_underflow_one_way`, scaled linearly to zero over the last centimetre of head."""
     head = headwater_level - tailwater_level
-    if head >= LINEAR_HEAD:
-        return _underflow_one_way(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening)
-    lowered = headwater_level - LINEAR_HEAD
+    lowered = min(tailwater_level, headwater_level - LINEAR_HEAD)
     flow = _underflow_one_way(gate, upstream_section, downstream_section, headwater_level, lowered, opening)
+    if head >= LINEAR_HEAD:
+        return flow
     q = flow.discharge * max(head, 0.0) / LINEAR_HEAD
     return GateFlow(
         q, q, flow.free_discharge, flow.jet_thickness, flow.energy_head, flow.roller_depth,
@@ -315,13 +315,11 @@ def gate_flow(gate, upstream_section, downstream_section, headwater_level, tailw
     where the discharge is poorly known: near the limit, lip near the surface (a > E/2), tailwater ≥ 0.95 of headwater,
     reverse.
     """
+    sign, law, above, below = 1.0, gate, upstream_section, downstream_section
     if tailwater_level > headwater_level:
-        turned = reversed_gate(gate)
-        flow = _underflow(turned, downstream_section, upstream_section, tailwater_level, headwater_level, opening)
-        sign = -1.0
-    else:
-        flow = _underflow(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening)
-        sign = 1.0
+        sign, law, above, below = -1.0, reversed_gate(gate), downstream_section, upstream_section
+    high, low = max(headwater_level, tailwater_level), min(headwater_level, tailwater_level)
+    flow = _underflow(law, above, below, high, low, opening)
     crest = gate.sill_level + opening + gate.leaf_height
     over = weir_discharge(gate.leaf_weir_coefficient, gate.width, crest, headwater_level, tailwater_level)
     through = _leakage(gate, headwater_level, tailwater_level)
