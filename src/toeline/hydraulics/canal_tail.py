@@ -24,3 +24,13 @@ def rating_discharge(levels, discharges, level):
         k += 1
     slope = (discharges[k] - discharges[k - 1]) / (levels[k] - levels[k - 1])
     return max(discharges[k - 1] + slope * (level - levels[k - 1]), 0.0)
+
+
+@kernel
+def rating_level(levels, discharges, discharge):
+    """Level [m] at which a rating passes a discharge: the inverse of `rating_discharge`."""
+    k = 1
+    while k < levels.size - 1 and discharge > discharges[k]:
+        k += 1
+    slope = (levels[k] - levels[k - 1]) / (discharges[k] - discharges[k - 1])
+    return levels[k - 1] + slope * (discharge - discharges[k - 1])

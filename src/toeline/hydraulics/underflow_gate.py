@@ -10,7 +10,7 @@ from typing import NamedTuple
 from toeline.constants import GRAVITY
 from toeline.hydraulics.cross_section import BETA, geometry, static_moment
 from toeline.hydraulics.kernel import inner_kernel, kernel
-from toeline.hydraulics.weir import weir_discharge
+from toeline.hydraulics.weir import weir_discharge_one_way
 
 CLOSED, FREE, NEAR_MODULAR_LIMIT, DROWNED, CLEAR_OF_WATER, CLEAR_AND_DROWNED, OVERTOPPED, REVERSE = range(8)
 
@@ -321,7 +321,7 @@ def gate_flow(gate, upstream_section, downstream_section, headwater_level, tailw
     high, low = max(headwater_level, tailwater_level), min(headwater_level, tailwater_level)
     flow = _underflow(law, above, below, high, low, opening)
     crest = gate.sill_level + opening + gate.leaf_height
-    over = weir_discharge(gate.leaf_weir_coefficient, gate.width, crest, headwater_level, tailwater_level)
+    over = sign * _over_leaf(gate, crest, high, low)
     through = _leakage(gate, headwater_level, tailwater_level)
     state = _state(flow.state, opening, sign, over)
     quality = _quality(gate, flow, headwater_level, tailwater_level, opening, sign)
@@ -335,6 +335,14 @@ def gate_flow(gate, upstream_section, downstream_section, headwater_level, tailw
 def gate_discharge(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening):
     """Discharge of a gate [m³/s], signed; see `gate_flow`."""
     return gate_flow(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening).discharge
+
+
+@inner_kernel
+def _over_leaf(gate, crest, high, low):
+    """Flow over the leaf, scaled linearly to zero over the last centimetre of head as below it."""
+    lowered = min(low, high - LINEAR_HEAD)
+    full = weir_discharge_one_way(gate.leaf_weir_coefficient, gate.width, crest, high, lowered)
+    return full * min((high - low) / LINEAR_HEAD, 1.0)
 
 
 @inner_kernel

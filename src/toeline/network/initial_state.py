@@ -7,6 +7,7 @@ import numpy as np
 
 from toeline.errors import UsageError
 from toeline.hydraulics import status
+from toeline.hydraulics.canal_tail import rating_level
 from toeline.hydraulics.critical_flow import critical_depth
 from toeline.hydraulics.gradually_varied_flow import upstream_level
 from toeline.hydraulics.offtake import offtake_discharge
@@ -190,7 +191,7 @@ class _Search:
             k = conveyance(section, n, self.tail_level - bed)
             return self.tail_level + (q / k) ** 2 if k > 0.0 else self.tail_level
         if kind == RATING:
-            return float(np.interp(q, tables.tail_rating[1], tables.tail_rating[0]))
+            return rating_level(tables.tail_rating[0], tables.tail_rating[1], q)
         if kind == FREE_OVERFALL:
             return bed + critical_depth(section, q)[0]
         return bed + normal_depth(section, n, tables.tail_slope[0], q)[0]
