@@ -44,6 +44,19 @@ def test_order_by_discharge_zero_closes_the_gate(tmp_path):
     assert run.gate_flow_state.sel(gate="G1")[-1] == 0
 
 
+def test_discharge_that_no_opening_passes_is_trimmed_and_says_what_passes(tmp_path):
+    run = run_of(tmp_path, orders=[order("00:10", "G0", discharge=60.0)], length="1 h")
+    assert run.order_status.values.tolist() == [1]
+    assert "m3/s at 2.000 m" in str(run.order_reason[0].values)
+    assert run.order_opening_after[0] == 2.0
+
+
+def test_move_that_goes_on_at_the_end_of_the_day_is_not_completed(tmp_path):
+    run = run_of(tmp_path, orders=[order("02:59", "G0", by=0.2)], gate={"hoist_speed": "1 cm/min"})
+    assert run.order_completed.isnull().all()
+    assert "still moving at the end" in str(run.order_reason[0].values)
+
+
 def test_order_by_counts_from_the_opening_last_ordered(tmp_path):
     slow = {"hoist_speed": "1 cm/min"}
     run = run_of(tmp_path, orders=[order("01:00", "G0", by=0.20), order("01:05", "G0", by=-0.05)], gate=slow)

@@ -59,6 +59,48 @@ def test_leaf_moves_linearly_at_hoist_speed_and_stands_on_the_millisecond():
     assert record.completed == 10 * MINUTE + 150_000
 
 
+@pytest.mark.parametrize(
+    ("wanted", "held", "status"),
+    [
+        (0.75, 0.70, TRIMMED),  # the nearer edge
+        (1.75, 1.70, TRIMMED),  # the other edge lies above the travel
+        (0.79, 0.70, TRIMMED),  # shared by two bands
+        (0.505, 0.50, REFUSED),
+        (0.61, 0.60, TRIMMED),
+    ],
+)
+def test_bands_side_by_side_and_at_the_end_of_the_travel(wanted, held, status):
+    bands = [(0.60, 0.70), (0.70, 0.90), (1.70, 1.90)]
+    opening, became, _ = allowed_opening(gate(avoid_openings=bands), wanted, ordered=0.50)
+    assert (opening, became) == (pytest.approx(held), status)
+
+
+def test_edge_too_near_to_the_opening_last_ordered_is_refused_and_both_reasons_are_told():
+    opening, status, reason = allowed_opening(gate(avoid_openings=[(0.505, 0.60)]), 0.52, ordered=0.50)
+    assert (opening, status) == (0.50, REFUSED)
+    assert "0.505" in reason
+    assert "smallest" in reason
+
+
+def test_beyond_the_travel_with_the_leaf_at_its_end_is_refused():
+    assert allowed_opening(gate(), 2.5, ordered=1.8)[:2] == (1.8, REFUSED)
+
+
+@pytest.mark.parametrize(
+    ("distance", "speed", "milliseconds"),
+    [
+        (0.1234567, 0.1 / 60.0, 74_075),  # 74,074.02 ms: stands at the next whole one
+        (0.1, 0.2 / 60.0, 30_000),
+        (0.3, 0.03 / 60.0, 600_000),
+        (0.0123, 0.005, 2_460),
+    ],
+)
+def test_travel_time_is_told_to_the_millisecond(distance, speed, milliseconds):
+    motion = GateMotion(gate(hoist_speed=speed), 0.50)
+    motion.order(0, "by", distance, 0.50 + distance)
+    assert motion.until == milliseconds
+
+
 def test_without_a_hoist_speed_the_leaf_is_there_at_once():
     motion = GateMotion(gate(hoist_speed=None), 0.5)
     record = motion.order(0, "opening", 0.9, 0.9)

@@ -215,7 +215,7 @@ def test_profiles(section, q, depth):
     assert np.isfinite(x[:count]).all()
     assert np.isfinite(y[:count]).all()
     assert np.all(np.diff(x[:count]) > 0.0)
-    assert is_honest(*upstream_level(reach, 1, depth, q, 0.0))
+    assert is_honest(*upstream_level(reach, 1, depth, q, 0.0, False))
     levels = np.zeros(3)
     flag = subcritical_profile(reach, 0, 2, depth, q, np.zeros(3), levels)
     assert is_honest(levels, flag)

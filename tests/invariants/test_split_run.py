@@ -55,3 +55,10 @@ def test_split_run_equals_the_unbroken_one(tmp_path, hour, local_inertia):
         for name in ("water_level", "pool_tail_level", "gate_opening", "gate_discharge", "delivery"):
             assert np.abs(same_times[name] - second[name]).max() <= AGREES, name
         assert np.abs(whole.end_level - second.end_level).max() <= AGREES
+
+
+def test_ledger_of_a_day_that_goes_on_from_an_end_state(tmp_path):
+    simulate(scenario_of(tmp_path, canal(), part(0, 6, False), name="first"), tmp_path / "first.nc").close()
+    run = simulate(scenario_of(tmp_path, canal(), part(6, 12, False, start={"file": "first.nc"}), name="second"))
+    assert run.canal_inflow_volume[0] == run.balance_residual[0] == 0.0
+    assert np.abs(run.balance_residual).max() <= 1e-9 * run.canal_inflow_volume[-1]

@@ -4,7 +4,7 @@ import math
 
 from toeline.constants import GRAVITY
 from toeline.hydraulics.cross_section import ALPHA, geometry
-from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH, LEAST_CONVEYANCE, WET_DEPTH, link_conveyance
+from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH, LEAST_CONVEYANCE, WET_DEPTH, calm_share, link_conveyance
 from toeline.hydraulics.kernel import inner_kernel
 
 CONVECTIVE_TIME = 20.0
@@ -13,8 +13,6 @@ CONVECTIVE_TIME = 20.0
 INERTIAL_CONVECTIVE_TIME = 60.0
 """The same with local inertia, where the water of a short widening link could swing with its pools (choice)."""
 
-CALM_FROUDE, CRITICAL_FROUDE = 0.9, 1.0
-"""Froude numbers between which the convective head fades out (choice)."""
 DRY_HEAD = 1e-4
 """Head [m] below which the discharge of a link with a dry end falls linearly to zero (choice)."""
 
@@ -124,11 +122,7 @@ def convective_share(up, down, q):
     head = q * q / GRAVITY
     froude_up = head * up.inverse_area * up.width / up.area
     froude_down = head * down.inverse_area * down.width / down.area
-    froude_squared = max(froude_up, froude_down)
-    if froude_squared <= CALM_FROUDE * CALM_FROUDE:
-        return 1.0
-    s = max((CRITICAL_FROUDE - math.sqrt(froude_squared)) / (CRITICAL_FROUDE - CALM_FROUDE), 0.0)
-    return s * s * (3.0 - 2.0 * s)
+    return calm_share(max(froude_up, froude_down))
 
 
 @inner_kernel

@@ -23,6 +23,9 @@ DRY_DEPTH, WET_DEPTH = 0.02, 0.10
 (choice).
 """
 
+CALM_FROUDE, CRITICAL_FROUDE = 0.9, 1.0
+"""Froude numbers between which the convective head of the time loop fades out (choice)."""
+
 LEAST_CONVEYANCE = 1e-9
 """Floor of a link's conveyance [m³/s]: a dry link stays solvable and passes nothing."""
 
@@ -257,18 +260,19 @@ def link_conveyance(k_up, k_down, dk_up, dk_down, depth_up, depth_down):
 
 
 @kernel
-def upstream_level(channel, node, level_down, discharge, point_loss):
+def upstream_level(channel, node, level_down, discharge, point_loss, fades):
     """Level [m] at a node from the level at the next in steady subcritical flow, and a status.
 
-    z_i + αQ²/2gA_i² = z_{i+1} + αQ²/2gA_{i+1}² + Δx·Q²/K² + local losses, K the mean of both conveyances. Bisection
-    on the subcritical side; NO_SOLUTION (critical depth) where no subcritical depth balances.
+    z_i + αQ²/2gA_i² = z_{i+1} + αQ²/2gA_{i+1}² + Δx·Q²/K² + local losses, K the mean of both conveyances. With `fades`
+    the velocity heads fade near critical flow, as in the time loop. Bisection on the subcritical side; NO_SOLUTION
+    (critical depth) where no subcritical depth balances.
     """
     section = channel.shapes[channel.nodes[node].section]
     low = channel.nodes[node].bed_level + max(critical_depth(section, discharge)[0], 1e-6)
-    if _energy_gap(channel, node, low, level_down, discharge, point_loss) > 0.0:
+    if _energy_gap(channel, node, low, level_down, discharge, point_loss, fades) > 0.0:
         return low, status.NO_SOLUTION
     high = max(low, level_down) + 1.0
-    while _energy_gap(channel, node, high, level_down, discharge, point_loss) < 0.0:
+    while _energy_gap(channel, node, high, level_down, discharge, point_loss, fades) < 0.0:
         high += 1.0
         if high > low + 1e3:
             return math.nan, status.NO_SOLUTION
@@ -276,7 +280,7 @@ def upstream_level(channel, node, level_down, discharge, point_loss):
         middle = 0.5 * (low + high)
         if middle <= low or middle >= high:
             break
-        if _energy_gap(channel, node, middle, level_down, discharge, point_loss) > 0.0:
+        if _energy_gap(channel, node, middle, level_down, discharge, point_loss, fades) > 0.0:
             high = middle
         else:
             low = middle
@@ -284,11 +288,11 @@ def upstream_level(channel, node, level_down, discharge, point_loss):
 
 
 @inner_kernel
-def _energy_gap(channel, node, level, level_down, discharge, point_loss):
-    """Energy upstream less energy downstream and losses [m]."""
+def _energy_gap(channel, node, level, level_down, discharge, point_loss, fades):
+    """Energy upstream less energy downstream and losses [m]; with `fades` the velocity heads count by `calm_share`."""
     y_up, y_down = level - channel.nodes[node].bed_level, level_down - channel.nodes[node + 1].bed_level
-    a_up, _, p_up, _, n_up = link_geometry(channel, node, 0.0, y_up)
-    a_down, _, p_down, _, n_down = link_geometry(channel, node + 1, 0.0, y_down)
+    a_up, t_up, p_up, _, n_up = link_geometry(channel, node, 0.0, y_up)
+    a_down, t_down, p_down, _, n_down = link_geometry(channel, node + 1, 0.0, y_down)
     k_up = a_up * (a_up / p_up) ** (2.0 / 3.0) / n_up
     k_down = a_down * (a_down / p_down) ** (2.0 / 3.0) / n_down
     k = link_conveyance(k_up, k_down, 0.0, 0.0, y_up, y_down)[0]
@@ -299,7 +303,19 @@ def _energy_gap(channel, node, level, level_down, discharge, point_loss):
     local = half * point_loss / (mean_area * mean_area)
     local += math.copysign(channel.nodes[node].transition_loss * abs(head_up - head_down), discharge)
     friction = (channel.nodes[node + 1].chainage - channel.nodes[node].chainage) * discharge * abs(discharge) / (k * k)
-    return level + head_up - level_down - head_down - friction - local
+    share = 1.0
+    if fades:
+        share = calm_share(max(2.0 * head_up * t_up / a_up, 2.0 * head_down * t_down / a_down))
+    return level - level_down + share * (head_up - head_down) - friction - local
+
+
+@kernel
+def calm_share(froude_squared):
+    """Weight of the difference of velocity heads in the time loop [1]: 1 up to Fr 0.9, 0 from Fr 1 on (choice)."""
+    if froude_squared <= CALM_FROUDE * CALM_FROUDE:
+        return 1.0
+    s = max((CRITICAL_FROUDE - math.sqrt(froude_squared)) / (CRITICAL_FROUDE - CALM_FROUDE), 0.0)
+    return s * s * (3.0 - 2.0 * s)
 
 
 @kernel
@@ -311,7 +327,7 @@ def subcritical_profile(channel, first, last, level, discharge, point_loss, leve
     """
     levels_out[last] = level
     for node in range(last - 1, first - 1, -1):
-        z, flag = upstream_level(channel, node, levels_out[node + 1], discharge, point_loss[node])
+        z, flag = upstream_level(channel, node, levels_out[node + 1], discharge, point_loss[node], False)
         if flag != status.OK:
             return flag
         levels_out[node] = z

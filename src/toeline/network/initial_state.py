@@ -173,7 +173,9 @@ class _Search:
     def _upstream(self, node: int, below: float, q: float) -> float:
         if q == 0.0:
             return max(below, self.network.channel.nodes.bed_level[node])
-        z, flag = upstream_level(self.network.channel, node, below, q, self.network.tables.links.point_loss[node + 1])
+        z, flag = upstream_level(
+            self.network.channel, node, below, q, self.network.tables.links.point_loss[node + 1], True
+        )
         if flag != status.OK:
             pool = int(np.searchsorted(self.network.tables.pools.last_node, node))
             at = self.network.channel.nodes.chainage[node]
