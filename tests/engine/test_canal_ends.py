@@ -2,7 +2,7 @@
 
 import numpy as np
 import pytest
-from tests.canals import day, prismatic_canal, scenario_of, stepped_canal, trapezoid
+from tests.canals import day, prismatic_canal, rectangle, scenario_of, stepped_canal, trapezoid
 
 from toeline import simulate
 
@@ -35,6 +35,12 @@ def area_and_width(depth):
 
 def test_steady_day_of_a_canal_without_a_tail_gate(tmp_path, tail):
     run = one_pool(tmp_path, tail, 8.0, "6 h")
+    assert np.abs(run.water_level - run.water_level[0]).max() <= 1e-6
+
+
+def test_steady_day_of_fast_flow_into_a_low_level_beyond(tmp_path):
+    canal = prismatic_canal(rectangle(5.0), 3000.0, 2e-4, {"kind": "level", "level": 1.2})
+    run = simulate(scenario_of(tmp_path, canal, day(12.0, length="6 h")))
     assert np.abs(run.water_level - run.water_level[0]).max() <= 1e-6
 
 

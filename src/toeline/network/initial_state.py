@@ -19,6 +19,9 @@ PASSES = 200
 DISCHARGE_AGREES = 1e-12
 """Relative change of the deliveries from one pass to the next that ends the search."""
 
+TAIL_PASSES = 20
+"""Passes for the level a metre above the tail, by the mean conveyance that the time loop takes there."""
+
 DEEPEST = 50.0
 """Height [m] over a gate's sill up to which its headwater is looked for."""
 
@@ -190,8 +193,11 @@ class _Search:
         here = channel.nodes[node]
         section, bed, n = channel.shapes[here.section], here.bed_level, here.roughness
         if kind == TAIL_LEVEL:
-            k = conveyance(section, n, self.tail_level - bed)
-            return self.tail_level + (q / k) ** 2 if k > 0.0 else self.tail_level
+            z = self.tail_level
+            for _ in range(TAIL_PASSES):
+                k = 0.5 * (conveyance(section, n, z - bed) + conveyance(section, n, self.tail_level - bed))
+                z = self.tail_level + (q / k) ** 2 if k > 0.0 else self.tail_level
+            return z
         if kind == RATING:
             return rating_level(tables.tail_rating[0], tables.tail_rating[1], q)
         if kind == FREE_OVERFALL:
