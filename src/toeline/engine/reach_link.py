@@ -133,14 +133,15 @@ def wet_share(depth_up, depth_down):
 
 
 @inner_kernel
-def inertia_head(length, share, mean, q, earlier_flux, momentum_base, seconds):
-    """Head that accelerates a link's water, less what earlier stages left, and its derivatives to discharge and mean
-    area.
+def inertia_head(length, share, mean, source, q, earlier_flux, momentum_base, seconds):
+    """Head that accelerates a link's water, less what earlier stages left, and its derivatives to discharge, mean area
+    and source area.
 
-    Δx/g·(d(Q/A)/dt − Q/A²·dA/dt) = Δx/g·A·d(Q/A²)/dt, advanced with the weights of the stage: `earlier_flux` is Q/A²
-    at the start of the step.
+    Δx/g·(1/A·dQ/dt − 2Q/A²·dA/dt), with dA/dt at the end that the water comes from: with the mean of both ends the flux
+    of momentum feeds the swinging of a short link behind a long one, which grows. As A_s²/A·d(Q/A_s²)/dt it is advanced
+    with the weights of the stage; `earlier_flux` is Q/A_s² at the start of the step.
     """
-    mass = share * length / (GRAVITY * seconds)
-    base = share * momentum_base
-    head = mass * (q / mean - earlier_flux * mean) - base * mean
-    return head, mass / mean, -mass * (q / (mean * mean) + earlier_flux) - base
+    mass, base = share * length / (GRAVITY * seconds), share * momentum_base
+    kept, moving = mass * earlier_flux + base, source * source / mean
+    head = mass * q / mean - kept * moving
+    return head, mass / mean, -head / mean, -2.0 * kept * source / mean

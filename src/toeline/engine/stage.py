@@ -61,9 +61,8 @@ def reach_row(tables, before, after, work, index, seconds, head_factor, inertial
         level_down - site_down.bed_level, q, work.links[index].convective_base, head_factor * earlier.convective_share,
     )  # fmt: skip
     if inertial and is_wet(site_up, site_down, level_up, level_down):
-        head, head_q, head_area = stage_inertia(tables, before, work, index, q, seconds)
-        left, by_q = left - head, by_q - head_q
-        by_up, by_down = by_up - 0.5 * head_area * up.width, by_down - 0.5 * head_area * down.width
+        head, head_up, head_q, head_down = stage_inertia(tables, before, work, index, q, seconds)
+        left, by_up, by_q, by_down = left - head, by_up - head_up, by_q - head_q, by_down - head_down
     return left, by_up, by_q, by_down
 
 
@@ -75,14 +74,25 @@ def is_wet(site_up, site_down, level_up, level_down):
 
 @inner_kernel
 def stage_inertia(tables, before, work, index, q, seconds):
-    """`inertia_head` of a reach link at the present areas; it fades with the convective head (local partial inertia,
-    Fread et al. 1996) and where a link dries."""
-    earlier = before.links[index]
-    flux = earlier.discharge / (earlier.mean_area * earlier.mean_area)
-    mean = 0.5 * (work.nodes[index - 1].area + work.nodes[index].area)
-    return inertia_head(
-        tables.links[index].length, earlier.convective_share, mean, q, flux, work.links[index].momentum_base, seconds
-    )
+    """`inertia_head` of a reach link at the present areas, and its derivatives to the level above, the discharge and
+    the level below; it fades with the convective head (local partial inertia, Fread et al. 1996) and where a link
+    dries."""
+    earlier, up, down = before.links[index], work.nodes[index - 1], work.nodes[index]
+    flux = earlier.discharge / (earlier.source_area * earlier.source_area)
+    head, by_q, by_mean, by_source = inertia_head(
+        tables.links[index].length, earlier.convective_share, 0.5 * (up.area + down.area),
+        source_area(earlier.discharge, up, down), q, flux, work.links[index].momentum_base, seconds,
+    )  # fmt: skip
+    by_up, by_down = 0.5 * by_mean * up.width, 0.5 * by_mean * down.width
+    if earlier.discharge >= 0.0:
+        return head, by_up + by_source * up.width, by_q, by_down
+    return head, by_up, by_q, by_down + by_source * down.width
+
+
+@inner_kernel
+def source_area(discharge, up, down):
+    """Area [m²] at the end of a link that its water comes from."""
+    return up.area if discharge >= 0.0 else down.area
 
 
 @inner_kernel
@@ -176,6 +186,7 @@ def finish_stage(tables, before, after, work, seconds, head_factor, inertial, fo
         link.convective_head = work.links[index].convective_base + head_factor * target
         link.convective_rate = (target - link.convective_head) / convective_time(inertial)
         link.mean_area = 0.5 * (up.area + down.area)
+        link.source_area = source_area(before.links[index].discharge, up, down)
         if inertial:
             site_up, site_down = tables.channel.nodes[index - 1], tables.channel.nodes[index]
             wet = is_wet(site_up, site_down, after.nodes[index - 1].level, after.nodes[index].level)

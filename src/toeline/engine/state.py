@@ -23,6 +23,7 @@ CARRIED = np.dtype(
         ("convective_share", float),  # 1 in calm flow, 0 from critical flow on
         ("imbalance", float),  # m of head that accelerates the link's water (local inertia)
         ("mean_area", float),  # m² of a reach link
+        ("source_area", float),  # m² at its end that the water comes from
     ]
 )
 """A link of the state."""
@@ -86,7 +87,7 @@ def zeros(count: int, kind: np.dtype) -> np.recarray:
 def new_state(nodes: int, offtakes: int) -> State:
     """A state of zeros."""
     links = zeros(nodes + 1, CARRIED)
-    links.mean_area = links.convective_share = 1.0
+    links.mean_area = links.source_area = links.convective_share = 1.0
     return State(zeros(nodes, STORED), links, np.zeros(offtakes))
 
 

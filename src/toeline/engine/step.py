@@ -8,11 +8,11 @@ import math
 
 from toeline.engine.gate_link import boundary_balance
 from toeline.engine.reach_link import convective_share, convective_target, convective_time, wet_share
-from toeline.engine.stage import geometry_pass, set_sources, solve_stage
+from toeline.engine.stage import geometry_pass, set_sources, solve_stage, source_area
 from toeline.engine.tridiagonal import solve_with_factors
 from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH
 from toeline.hydraulics.kernel import inner_kernel, kernel
-from toeline.network.tables import REACH, TAIL_LEVEL
+from toeline.network.tables import FREE_OVERFALL, REACH, TAIL_LEVEL
 
 GAMMA = 2.0 - math.sqrt(2.0)
 DIAGONAL = GAMMA / 2.0
@@ -54,6 +54,12 @@ def extrapolate(start, middle, end):
 
 
 @inner_kernel
+def momentum_rate(link):
+    """Imbalance of a reach link over the area that turns the rate of Q/A² into a head [1/m]."""
+    return link.imbalance * link.mean_area / (link.source_area * link.source_area)
+
+
+@inner_kernel
 def base_of_middle(before, work, seconds, scale):
     """What the stage at γh starts from."""
     for k in range(before.nodes.size):
@@ -61,7 +67,7 @@ def base_of_middle(before, work, seconds, scale):
     for k in range(1, before.nodes.size):
         link = before.links[k]
         work.links[k].convective_base = scale * (link.convective_head + seconds * link.convective_rate)
-        work.links[k].momentum_base = link.imbalance / link.mean_area
+        work.links[k].momentum_base = momentum_rate(link)
 
 
 @inner_kernel
@@ -75,8 +81,7 @@ def base_of_end(before, middle, work, weight, scale):
         link, inner = before.links[k], middle.links[k]
         rate = link.convective_rate + inner.convective_rate
         work.links[k].convective_base = scale * (link.convective_head + weight * rate)
-        left = link.imbalance / link.mean_area + inner.imbalance / inner.mean_area
-        work.links[k].momentum_base = WEIGHT / DIAGONAL * left
+        work.links[k].momentum_base = WEIGHT / DIAGONAL * (momentum_rate(link) + momentum_rate(inner))
 
 
 @inner_kernel
@@ -158,17 +163,22 @@ def begin_leg(tables, state, work, forcing, inertial):
 
 @inner_kernel
 def calm_share(tables, state, work, index):
-    """How calm a reach link is: the weight of its convective head and inertia, none where an end is dry."""
+    """How calm a reach link is: the weight of its convective head and inertia, none where an end is dry.
+
+    Above a free fall the critical brink does not count: that it is critical is what closes the canal there.
+    """
     site_up, site_down = tables.channel.nodes[index - 1], tables.channel.nodes[index]
     wet = wet_share(state.nodes[index - 1].level - site_up.bed_level, state.nodes[index].level - site_down.bed_level)
-    return wet * convective_share(work.nodes[index - 1], work.nodes[index], state.links[index].discharge)
+    up, down = work.nodes[index - 1], work.nodes[index]
+    is_brink = index == state.nodes.size - 1 and tables.links[index + 1].kind == FREE_OVERFALL
+    return wet * convective_share(up, up if is_brink else down, state.links[index].discharge)
 
 
 @inner_kernel
 def restart_reach(state, work, index, inertial):
     """What a reach link's state implies at the present areas."""
     link, up, down = state.links[index], work.nodes[index - 1], work.nodes[index]
-    link.mean_area = 0.5 * (up.area + down.area)
+    link.mean_area, link.source_area = 0.5 * (up.area + down.area), source_area(link.discharge, up, down)
     target = convective_target(link.convective_share, link.discharge, up.inverse_area, down.inverse_area)
     link.convective_rate = (target - link.convective_head) / convective_time(inertial)
 
@@ -203,6 +213,7 @@ def accept(tables, state, middle, after, work, totals, h):
         state.links[index] = after.links[index]
         if tables.links[index].kind == REACH:
             link, calm = state.links[index], calm_share(tables, state, work, index)
+            link.source_area = source_area(link.discharge, work.nodes[index - 1], work.nodes[index])
             regained = (calm - link.convective_share) * h / (h + convective_time(False))
             link.convective_share = min(calm, link.convective_share + regained)
 

@@ -176,9 +176,9 @@ class _Search:
     def _upstream(self, node: int, below: float, q: float) -> float:
         if q == 0.0:
             return max(below, self.network.channel.nodes.bed_level[node])
-        z, flag = upstream_level(
-            self.network.channel, node, below, q, self.network.tables.links.point_loss[node + 1], True
-        )
+        links = self.network.tables.links
+        is_brink = node == self.network.node_count - 2 and links.kind[node + 2] == FREE_OVERFALL
+        z, flag = upstream_level(self.network.channel, node, below, q, links.point_loss[node + 1], not is_brink)
         if flag != status.OK:
             pool = int(np.searchsorted(self.network.tables.pools.last_node, node))
             at = self.network.channel.nodes.chainage[node]
