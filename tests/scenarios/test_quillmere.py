@@ -91,3 +91,59 @@ def test_filling_brings_every_pool_near_its_target_and_none_over_its_lining(plan
     assert run.canal_storage[0] < 500.0
     assert np.abs(run.pool_tail_level[-1] - run.pool_target_level).max() < 0.2
     assert not [incident for incident in incidents(run) if "lining" in incident.what]
+
+
+def greatest_stray(run: xr.Dataset) -> float:
+    """Greatest distance of a pool's lower end from its target [m]."""
+    return float(np.abs(run.pool_tail_level - run.pool_target_level).max())
+
+
+def on_riprap_hours(run: xr.Dataset, gate: str) -> float:
+    step = float((run.time[1] - run.time[0]) / np.timedelta64(1, "h"))
+    return step * int((run.jump_state.sel(gate=gate) == JUMP_STATES.index("on_protection")).sum())
+
+
+def above_lining(run: xr.Dataset) -> set[str]:
+    return {incident.where for incident in incidents(run) if incident.what == "water above the lining"}
+
+
+def test_rotation_with_no_check_moved_strands_water_above_and_starves_the_last_pool():
+    run = run_of("rotation", "hands_off")
+    stray = run.pool_tail_level - run.pool_target_level
+    assert stray.sel(pool="Mill pool").max() > 0.30
+    assert -0.30 < stray.sel(pool="Reedbed pool").min() < -0.20
+    assert on_riprap_hours(run, "Lower check") > 4
+    assert run.gate_discharge.sel(gate="Head gate")[-1] < 7.7
+
+
+def test_rotation_with_the_checks_keeps_pools_and_jump_in_place():
+    run = run_of("rotation", "checks_follow")
+    assert greatest_stray(run) < 0.13
+    assert on_riprap_hours(run, "Lower check") == 0
+
+
+def test_pump_trip_overtops_the_last_lining_unless_water_is_let_out():
+    run = run_of("pump_trip", "nobody_acts")
+    (lining,) = (found for found in incidents(run) if found.what == "water above the lining")
+    assert lining.where == "Reedbed pool"
+    assert lining.start - run.time.values[0] < np.timedelta64(9, "h")
+    assert lining.end - lining.start > np.timedelta64(5, "h")
+    assert 0.0 < run.pool_bank_margin.min() < 0.10
+    acted = run_of("pump_trip", "water_let_out")
+    assert above_lining(acted) == set()
+    assert acted.pool_tail_level.sel(pool="Reedbed pool").max() < 98.60 + 0.20
+
+
+def test_isolating_a_pool_with_its_checks_alone_spills_the_pool_above_into_it():
+    run = run_of("isolation", "checks_alone")
+    assert above_lining(run) == {"Mill pool", "Heron pool"}
+    spilling = run.gate_flow_state.sel(gate="Mill check") == FLOW_STATES.index("overtopped")
+    assert spilling[-1]
+    mill = next(found for found in incidents(run) if found.what == "water above the lining")
+    assert np.timedelta64(95, "m") < mill.start - run.time.values[0] < np.timedelta64(105, "m")
+
+
+def test_isolation_with_the_head_gate_keeps_every_pool_below_its_lining():
+    run = run_of("isolation", "head_gate_too")
+    assert above_lining(run) == set()
+    assert {found.where for found in incidents(run) if found.what == "delivery shortfall"} == {"Far lateral"}
