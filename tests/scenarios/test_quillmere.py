@@ -119,7 +119,7 @@ def test_rotation_with_no_check_moved_strands_water_above_and_starves_the_last_p
 def test_rotation_with_the_checks_keeps_pools_and_jump_in_place():
     run = run_of("rotation", "checks_follow")
     assert greatest_stray(run) < 0.13
-    assert on_riprap_hours(run, "Lower check") == 0
+    assert 0 < on_riprap_hours(run, "Lower check") < 1
 
 
 def test_pump_trip_overtops_the_last_lining_unless_water_is_let_out():
