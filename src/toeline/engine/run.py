@@ -45,10 +45,11 @@ class Run:
         self.unrest = Unrest(network, self.state, self.watch, timetable.length)
         self.operations = Operations(network, timetable, self.state, self.forcing, self.unrest, openings)
         self._take_over(start) if isinstance(start, dict) else self._start_at(start)
-        self.watch.start_storage[0] = np.sum(self.state.nodes.volume[: network.canal_node_count])
+        self.operations.begin(start if isinstance(start, dict) else None)
+        self.watch.start_storage[0] = self._storage()
 
     def go(self, progress: Callable[[float], None] | None = None) -> None:
-        """Step to the end of the period; raises RunError where no step can be solved."""
+        """Step to the end of the period; raises RunError where no step can be solved or a rule fails."""
         stops = self.timetable.stops()
         while self.time < self.timetable.length:
             self._act()
@@ -89,8 +90,14 @@ class Run:
         self.state.delivery[:] = end["end_delivery"]
         self.pace.next_step = end["end_next_step"]
         self.forcing.rate = end["end_rate"]
-        self.operations.take_over(end)
         self.unrest.take_over(end)
+
+    def _storage(self) -> float:
+        """Volume in the canal [m³], summed in the order of the output, so that the ledger starts at zero."""
+        storage = 0.0
+        for pool in self.tables.pools:
+            storage += float(np.cumsum(self.state.nodes.volume[pool.first_node : pool.last_node + 1])[-1])
+        return storage
 
     def _new_pace(self) -> np.recarray:
         timetable, pace = self.timetable, zeros(1, PACE)
@@ -129,7 +136,11 @@ class Run:
         self.forcing.value = self.timetable.values_at(self.time)
         if self.time > 0:
             self.unrest.note_changes(self.time, before, self.forcing.value)
-        self.operations.act(self.time)
+        try:
+            self.operations.act(self.time)
+        except RunError as error:
+            self.flush()
+            raise RunError(f"{self.time / 1000.0:.0f} s after the start: {error}") from error
 
     def _leg(self, until: int) -> None:
         """Advance to the next stop."""
