@@ -41,14 +41,15 @@ class Run:
 
     def __init__(self, network: Network, timetable: Timetable, sink, start: Start | dict[str, np.ndarray]):
         self.network, self.timetable, self.sink, self.tables = network, timetable, sink, network.tables
-        nodes, offtakes = network.node_count, network.offtake_count
-        self.state, self.middle, self.after = (new_state(nodes, offtakes) for _ in range(3))
-        self.work, self.totals = new_work(nodes), new_totals(offtakes)
+        self.state, self.middle, self.after = (new_state(network) for _ in range(3))
+        self.work, self.totals = new_work(network.node_count), new_totals(network)
         self.forcing = zeros(timetable.forcing_size, FORCING)
         self.pace = self._new_pace()
         self.rows, self.watch = self._new_rows(), self._new_watch()
         self.time = 0
         self.orders = list(timetable.orders)
+        self.roughness = list(timetable.roughness)
+        self.is_roughened = False
         self.records: list[OrderRecord] = []
         openings = start["end_opening"] if isinstance(start, dict) else start.opening
         self.motions = [GateMotion(g, float(a)) for g, a in zip(timetable.gates, openings, strict=True)]
@@ -94,6 +95,7 @@ class Run:
             "end_surge_upstream_remaining": self._seconds_left(surge.surge_upstream_until),
             "end_surge_downstream_remaining": self._seconds_left(surge.surge_downstream_until),
             "end_settling_remaining": self._seconds_left(self.watch.settled_at),
+            "end_roughness_factor": self.watch.roughness_factor.copy(),
             "end_rate": self.forcing.rate.copy(),
             "end_next_step": np.float64(self.pace.next_step[0]),
             "end_time": np.float64(self.time / 1000.0),
@@ -104,6 +106,7 @@ class Run:
 
     def _start_at(self, start: Start) -> None:
         self.state.nodes.level, self.state.links.discharge = start.level, start.discharge
+        self.watch.roughness_factor[:] = self.timetable.roughness[0].factors
         start_from_levels(self.tables, self.state, self.work)
 
     def _take_over(self, end: dict[str, np.ndarray]) -> None:
@@ -114,6 +117,7 @@ class Run:
         self.state.delivery[:] = end["end_delivery"]
         self.pace.next_step = end["end_next_step"]
         self.forcing.rate = end["end_rate"]
+        self.watch.roughness_factor[:] = end["end_roughness_factor"]
         for k, motion in enumerate(self.motions):
             remaining = round(float(end["end_motion_remaining"][k]) * 1000.0)
             motion.resume(float(end["end_target_opening"][k]), float(end["end_ordered_opening"][k]), remaining)
@@ -134,9 +138,8 @@ class Run:
         spare = timetable.longest_step // timetable.every + 4
         profiles = timetable.longest_step // timetable.profiles_every + 4
         return new_rows(
-            BLOCK_ROWS + spare, BLOCK_ROWS * timetable.every // timetable.profiles_every + 2 * profiles,
-            network.gate_count, len(network.names.pools), network.offtake_count, network.canal_node_count,
-        )  # fmt: skip
+            BLOCK_ROWS + spare, BLOCK_ROWS * timetable.every // timetable.profiles_every + 2 * profiles, network
+        )
 
     def _new_watch(self) -> Watch:
         network, names = self.network, self.network.names
@@ -146,7 +149,8 @@ class Run:
         return Watch(
             banks=banks,
             gates=zeros(network.gate_count, GATE_WATCH),
-            settled_at=np.zeros(len(names.pools), np.int64),
+            settled_at=np.zeros(network.pool_count, np.int64),
+            roughness_factor=np.ones(network.pool_count),
             start_storage=np.zeros(1),
             level=np.zeros(self.tables.channel.nodes.size),
             discharge=np.zeros(network.node_count + 1),
@@ -158,8 +162,18 @@ class Run:
         before = self.forcing.now.copy()
         self.forcing.value = self.timetable.values_at(self.time)
         self._note_changes(before)
+        self._set_roughness()
         while self.orders and self.orders[0].at <= self.time:
             self._carry_out(self.orders.pop(0))
+
+    def _set_roughness(self) -> None:
+        """Change the roughness of the pools where the calendar does."""
+        self.is_roughened = False
+        while self.roughness and self.roughness[0].time <= self.time:
+            factors = self.roughness.pop(0).factors
+            self.is_roughened = not np.array_equal(factors, self.watch.roughness_factor)
+            self.watch.roughness_factor[:] = factors
+            self.network.set_roughness(factors)
 
     def _carry_out(self, order: Order) -> None:
         g = self._index(order)
@@ -249,7 +263,8 @@ class Run:
         before = self.forcing.rate.copy()
         self.forcing.rate = self.timetable.rates_between(self.time, until)
         self.forcing.rate[gates] = [motion.rate() for motion in self.motions]
-        has_kink = bool(np.any(np.abs(self.forcing.rate - before) > SAME_RATE))
+        has_kink = self.is_roughened or bool(np.any(np.abs(self.forcing.rate - before) > SAME_RATE))
+        self.is_roughened = False
         self.pace.leg_start, self.pace.done = self.time, 0.0
         seconds, outcome = (until - self.time) / 1000.0, None
         while outcome != LEG_DONE:

@@ -1,5 +1,6 @@
 """The steady state that a day starts from, found pool by pool from the tail up."""
 
+import math
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
@@ -13,11 +14,13 @@ from toeline.hydraulics.gradually_varied_flow import upstream_level
 from toeline.hydraulics.offtake import offtake_discharge
 from toeline.hydraulics.underflow_gate import UnderflowGate, gate_discharge, opening_for_discharge
 from toeline.hydraulics.uniform_flow import conveyance, normal_depth
+from toeline.hydraulics.water_losses import loss_per_length
+from toeline.hydraulics.weir import side_weir_discharge
 from toeline.network.tables import FREE_OVERFALL, GATE, HEAD, RATING, TAIL_LEVEL, Network
 
 PASSES = 200
 DISCHARGE_AGREES = 1e-12
-"""Relative change of the deliveries from one pass to the next that ends the search."""
+"""Relative error of the inflow that ends the search."""
 
 TAIL_PASSES = 20
 """Passes for the level a metre above the tail, by the mean conveyance that the time loop takes there."""
@@ -45,10 +48,13 @@ class Start:
 
 @dataclass(frozen=True)
 class Demands:
-    """What the offtakes ask and how far their orifices are open at the start, by offtake [m³/s, m]."""
+    """What the offtakes ask and how far their orifices are open at the start, by offtake [m³/s, m], and evaporation less
+    rain [m/s].
+    """
 
     discharge: np.ndarray
     opening: np.ndarray
+    surface_rate: float
 
 
 def dry_state(network: Network, openings: np.ndarray) -> Start:
@@ -113,6 +119,14 @@ def steady_under_reservoir(
     return steady_at_openings(network, 0.5 * (low + high), tail_level, demands, openings)
 
 
+def _between(low: float, high: float, excess_low: float, excess_high: float, guess: float, is_slow: bool) -> float:
+    """A discharge between two bounds: on the chord of their excesses, at the guess, or half-way."""
+    if is_slow or not math.isfinite(excess_high):
+        return 0.5 * (low + high) if math.isfinite(high) else max(guess, 2.0 * low + 1e-6)
+    chord = low - excess_low * (high - low) / (excess_high - excess_low) if math.isfinite(excess_low) else guess
+    return chord if low < chord < high else 0.5 * (low + high)
+
+
 def _pool_above(network: Network, g: int) -> int:
     return int(np.searchsorted(network.tables.pools.last_node, network.tables.gates.upstream_node[g]))
 
@@ -124,54 +138,90 @@ class _Search:
         self.network, self.tail_level, self.demands = network, tail_level, demands
 
     def settle(self, inflow: float, headwater_of: HeadwaterOf) -> tuple[np.ndarray, np.ndarray]:
-        """Levels and discharges that agree with the deliveries that they give."""
-        network = self.network
-        taken = self.demands.discharge.copy()
-        for _ in range(PASSES):
-            discharge = self._discharges(inflow, taken)
-            level = self._levels(discharge, headwater_of)
-            given = np.array([self._delivery(k, level) for k in range(network.offtake_count)])
-            if np.all(np.abs(given - taken) <= DISCHARGE_AGREES * (1.0 + abs(inflow))):
+        """Levels and discharges that agree with what leaves the canal at those levels.
+
+        From a discharge at the tail, levels and what leaves there follow upward node by node; the inflow that this needs
+        rises with the discharge at the tail, which is looked for between bounds (regula falsi, halved where it is slow).
+        """
+        self._refuse_more_than(inflow, headwater_of)
+        agrees = DISCHARGE_AGREES * (1.0 + abs(inflow))
+        low, high, excess_low, excess_high = 0.0, math.inf, -math.inf, math.inf
+        outflow, failure = inflow - float(np.sum(self.demands.discharge)), None
+        for k in range(PASSES):
+            outflow = max(outflow, 0.0)
+            try:
+                level, discharge = self._upward(outflow, headwater_of)
+                excess = discharge[0] - inflow
+            except UsageError as error:
+                failure, excess = error, math.inf
+            if abs(excess) <= agrees:
                 return level, discharge
-            taken = given
-        raise UsageError("no steady state found: the deliveries do not settle; give openings or another start")
+            if excess < 0.0:
+                low, excess_low = outflow, excess
+            else:
+                high, excess_high = outflow, excess
+            if high - low <= agrees:
+                break
+            outflow = _between(low, high, excess_low, excess_high, outflow - excess, is_slow=k % 3 == 2)
+        raise failure or UsageError(
+            "no steady state found: what leaves the canal does not settle; give openings or another start"
+        )
 
-    def _discharges(self, inflow: float, taken: np.ndarray) -> np.ndarray:
-        network = self.network
-        drawn = np.zeros(network.node_count)
-        np.add.at(drawn, network.tables.offtakes.node, taken)
-        discharge = inflow - np.concatenate(([0.0], np.cumsum(drawn)))
-        short = discharge < -1e-9
-        if short.any():
-            pool = int(np.searchsorted(network.tables.pools.last_node, np.argmax(short) - 1))
-            name = network.names.pools[min(pool, len(network.names.pools) - 1)]
-            raise DeliveriesExceedInflowError(
-                f"no steady state: the deliveries down to {name} exceed the inflow of {inflow:.3f} m3/s"
-            )
-        return np.maximum(discharge, 0.0)
+    def _refuse_more_than(self, inflow: float, headwater_of: HeadwaterOf) -> None:
+        """Raise where less flows in than leaves with nothing left at the tail."""
+        try:
+            _, discharge = self._upward(0.0, headwater_of)
+        except UsageError:
+            return
+        if discharge[0] <= inflow + 1e-9:
+            return
+        left = inflow - discharge[0] + discharge
+        pool = int(np.searchsorted(self.network.tables.pools.last_node, np.argmax(left < -1e-9) - 1))
+        name = self.network.names.pools[min(pool, len(self.network.names.pools) - 1)]
+        raise DeliveriesExceedInflowError(
+            f"no steady state: the deliveries down to {name}, with losses and escapes, exceed the inflow of "
+            f"{inflow:.3f} m3/s"
+        )
 
-    def _delivery(self, k: int, level: np.ndarray) -> float:
-        takes = self.network.tables.offtakes
-        return offtake_discharge(
-            takes.kind[k], self.demands.discharge[k], takes.sill_level[k], takes.width[k], self.demands.opening[k],
-            takes.coefficient[k], level[takes.node[k]],
-        )  # fmt: skip
-
-    def _levels(self, discharge: np.ndarray, headwater_of: HeadwaterOf) -> np.ndarray:
-        """Levels from the tail up: a boundary, a gate or a reach at a time."""
+    def _upward(self, outflow: float, headwater_of: HeadwaterOf) -> tuple[np.ndarray, np.ndarray]:
+        """Levels and discharges from a discharge at the tail up: a boundary, a gate or a reach at a time."""
         network, links = self.network, self.network.tables.links
-        level = np.full(network.node_count, np.nan)
-        for node in range(network.node_count - 1, -1, -1):
-            link, q = node + 1, discharge[node + 1]
+        count = network.node_count
+        level, discharge = np.full(count, np.nan), np.full(count + 1, outflow)
+        for node in range(count - 1, -1, -1):
+            link, q = node + 1, max(discharge[node + 1], 0.0)
             kind = links.kind[link]
             if kind == GATE:
-                below = self.tail_level if link == network.node_count else level[link]
+                below = self.tail_level if link == count else level[link]
                 level[node] = headwater_of(links.gate[link], q, below)
-            elif link == network.node_count:
+            elif link == count:
                 level[node] = self._tail(kind, node, q)
             else:
                 level[node] = self._upstream(node, level[link], q)
-        return level
+            discharge[node] = discharge[node + 1] + self._leaving(node, level[node])
+        return level, discharge
+
+    def _leaving(self, node: int, level: float) -> float:
+        """What leaves a node at a level [m³/s]: deliveries, escapes and losses."""
+        tables, here = self.network.tables, self.network.channel.nodes[node]
+        lost = 0.0
+        if node < self.network.canal_node_count:
+            section, cell = self.network.channel.shapes[here.section], tables.cells[node]
+            lost = cell.length * loss_per_length(
+                section, level - here.bed_level, cell.seepage, self.demands.surface_rate
+            )[0]
+        taken = sum(self._delivery(k, level) for k in np.flatnonzero(tables.offtakes.node == node))
+        return lost + taken + sum(
+            side_weir_discharge(weir.coefficient, weir.length, weir.crest_level, level, weir.outside_level)
+            for weir in tables.escapes[tables.escapes.node == node]
+        )
+
+    def _delivery(self, k: int, level: float) -> float:
+        takes = self.network.tables.offtakes
+        return offtake_discharge(
+            takes.kind[k], self.demands.discharge[k], takes.sill_level[k], takes.width[k], self.demands.opening[k],
+            takes.coefficient[k], level,
+        )  # fmt: skip
 
     def _upstream(self, node: int, below: float, q: float) -> float:
         if q == 0.0:

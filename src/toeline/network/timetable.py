@@ -4,7 +4,15 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, Network
+from toeline.network.roughness import RoughnessChange, roughness_changes
+from toeline.network.tables import (
+    FORCING_EVAPORATION,
+    FORCING_GATES,
+    FORCING_HEAD,
+    FORCING_RAIN,
+    FORCING_TAIL,
+    Network,
+)
 from toeline.scenario import Order, Scenario
 from toeline.scenario.schema.canal import Canal
 from toeline.scenario.schema.day import Day
@@ -26,6 +34,7 @@ class Timetable:
     every: int  # ms, rows
     profiles_every: int  # ms
     series: dict[int, Series]  # by forcing index
+    roughness: tuple[RoughnessChange, ...]  # by time, the first at the start
     orders: tuple[Order, ...]  # by time
     gates: tuple[Gate, ...]  # of the scenario, for travel, hoist and bands
     gate_count: int
@@ -37,6 +46,7 @@ class Timetable:
         times = [np.arange(first_hour, self.length, HOUR_MS)]
         times += [np.asarray(series.times) for series in self.series.values()]
         times.append(np.array([order.at for order in self.orders], np.int64))
+        times.append(np.array([change.time for change in self.roughness], np.int64))
         all_times = np.unique(np.concatenate(times).astype(np.int64))
         inside = all_times[(all_times > 0) & (all_times < self.length)]
         return np.append(inside, self.length)
@@ -58,7 +68,7 @@ class Timetable:
 
     @property
     def forcing_size(self) -> int:
-        """Head, tail, an opening a gate, a demand and an opening an offtake."""
+        """Head, tail, evaporation, rain, an opening a gate, a demand and an opening an offtake."""
         return FORCING_GATES + self.gate_count + 2 * self.offtake_count
 
 
@@ -75,6 +85,7 @@ def timetable_of(scenario: Scenario, network: Network) -> Timetable:
         every=day.output.every_ms,
         profiles_every=day.output.profiles_every_ms,
         series=_series(day, canal, network),
+        roughness=roughness_changes(canal, period.start, period.length_ms),
         orders=scenario.orders,
         gates=tuple(canal.gates),
         gate_count=network.gate_count,
@@ -87,6 +98,8 @@ def _series(day: Day, canal: Canal, network: Network) -> dict[int, Series]:
     series = {
         FORCING_HEAD: day.inflow or day.head or constant(canal.head.level or 0.0),
         FORCING_TAIL: day.tail or constant(canal.tail.level or 0.0),
+        FORCING_EVAPORATION: day.losses.evaporation or constant(canal.losses.evaporation),
+        FORCING_RAIN: day.losses.rain or constant(canal.losses.rain),
     }
     first = FORCING_GATES + network.gate_count
     count = network.offtake_count
