@@ -64,6 +64,10 @@ class GateMotion:
         if not self.is_moving:
             self._finish(time)
 
+    def remaining(self, time: int) -> int:
+        """Time [ms] for which the leaf still moves."""
+        return max(self.until - time, 0) if self.is_moving else 0
+
     def resume(self, target: float, ordered: float, remaining: int) -> None:
         """Go on with a move that was under way when the day before ended."""
         self.ordered = ordered
