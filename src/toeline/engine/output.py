@@ -138,6 +138,7 @@ def fill_pools(tables, before, middle, after, totals, watch, out, time_ms, h, sh
         pool.pool_bank_margin = bank if bank < math.inf else math.nan
         pool.pool_lining_margin = lining if lining < math.inf else math.nan
 
+
 @inner_kernel
 def passed_volume(tables, before, middle, after, totals, p, h, shares):
     """Volume [m³] that has passed the upper end of pool p, or of the last pool's lower end behind it."""

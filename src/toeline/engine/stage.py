@@ -23,7 +23,7 @@ DEMAND_NUDGE = 1e-5
 
 @inner_kernel
 def set_sources(tables, state, forcing, work):
-    """What leaves each node at the present levels beside its links, with its derivative: deliveries, escapes, losses."""
+    """Deliveries, escapes and losses at the present levels: what they take from each node, with its derivative."""
     for node in range(state.nodes.size):
         work.nodes[node].source = 0.0
         work.nodes[node].source_slope = 0.0

@@ -33,6 +33,9 @@ class DeliveriesExceedInflowError(UsageError):
     """No steady state: more is asked than comes in."""
 
 
+SupplyOf = Callable[[float], float]
+"""What enters the canal [m³/s] at a level of its first node [m]."""
+
 HeadwaterOf = Callable[[int, float, float], float]
 """Level above a gate [m] from its index, its discharge and the level below."""
 
@@ -48,7 +51,7 @@ class Start:
 
 @dataclass(frozen=True)
 class Demands:
-    """What the offtakes ask and how far their orifices are open at the start, by offtake [m³/s, m], and evaporation less
+    """What the offtakes ask and how far their orifices are open at the start, by offtake [m³/s, m]; evaporation less
     rain [m/s].
     """
 
@@ -78,7 +81,7 @@ def steady_at_targets(
     if missing:
         raise UsageError(f'openings "to hold targets": no target_level given for {", ".join(missing)}')
     search = _Search(network, tail_level, demands)
-    level, discharge = search.settle(inflow, lambda g, q, down: network.names.target_level[_pool_above(network, g)])
+    level, discharge = search.settle(lambda _: inflow, lambda g, q, down: names.target_level[_pool_above(network, g)])
     openings = np.array(
         [search.opening(g, level, discharge, head_level, largest[g]) for g in range(network.gate_count)]
     )
@@ -90,7 +93,7 @@ def steady_at_openings(
 ) -> Start:
     """Steady state for an inflow and given openings; raises UsageError where a gate cannot pass its share."""
     search = _Search(network, tail_level, demands)
-    level, discharge = search.settle(inflow, lambda g, q, down: search.headwater(g, q, down, openings[g]))
+    level, discharge = search.settle(lambda _: inflow, lambda g, q, down: search.headwater(g, q, down, openings[g]))
     return Start(level, discharge, np.asarray(openings, float))
 
 
@@ -101,30 +104,23 @@ def steady_under_reservoir(
     reservoir's.
     """
     search = _Search(network, tail_level, demands)
-    largest = search.passed(0, head_level, network.tables.gates.sill_level[0] - 1.0, openings[0])
-
-    def is_too_much(inflow: float) -> bool:
-        try:
-            level, _ = search.settle(inflow, lambda g, q, down: search.headwater(g, q, down, openings[g]))
-        except DeliveriesExceedInflowError:
-            return False
-        except UsageError:
-            return True
-        return inflow > search.passed(0, head_level, level[0], openings[0])
-
-    low, high = 0.0, largest
-    for _ in range(80):
-        middle = 0.5 * (low + high)
-        low, high = (low, middle) if is_too_much(middle) else (middle, high)
-    return steady_at_openings(network, 0.5 * (low + high), tail_level, demands, openings)
+    level, discharge = search.settle(
+        lambda down: search.passed(0, head_level, down, openings[0]),
+        lambda g, q, down: search.headwater(g, q, down, openings[g]),
+    )
+    return Start(level, discharge, np.asarray(openings, float))
 
 
-def _between(low: float, high: float, excess_low: float, excess_high: float, guess: float, is_slow: bool) -> float:
-    """A discharge between two bounds: on the chord of their excesses, at the guess, or half-way."""
-    if is_slow or not math.isfinite(excess_high):
-        return 0.5 * (low + high) if math.isfinite(high) else max(guess, 2.0 * low + 1e-6)
-    chord = low - excess_low * (high - low) / (excess_high - excess_low) if math.isfinite(excess_low) else guess
-    return chord if low < chord < high else 0.5 * (low + high)
+def _between(below: tuple[float, float], above: tuple[float, float], *, is_halved: bool) -> float:
+    """A discharge between two, each with its excess: where their chord is zero, or half-way; above the one where there
+    is no other.
+    """
+    (low, excess_low), (high, excess_high) = below, above
+    if math.isinf(high):
+        return low - 1.5 * excess_low
+    if is_halved or math.isinf(excess_low) or math.isinf(excess_high):
+        return 0.5 * (low + high)
+    return low - excess_low * (high - low) / (excess_high - excess_low)
 
 
 def _pool_above(network: Network, g: int) -> int:
@@ -136,52 +132,52 @@ class _Search:
 
     def __init__(self, network: Network, tail_level: float, demands: Demands):
         self.network, self.tail_level, self.demands = network, tail_level, demands
+        self.outlets = {*network.tables.offtakes.node.tolist(), *network.tables.escapes.node.tolist()}
+        self.is_losing = demands.surface_rate != 0.0 or bool(network.tables.pools.seeps.any())
 
-    def settle(self, inflow: float, headwater_of: HeadwaterOf) -> tuple[np.ndarray, np.ndarray]:
+    def settle(self, supply_of: SupplyOf, headwater_of: HeadwaterOf) -> tuple[np.ndarray, np.ndarray]:
         """Levels and discharges that agree with what leaves the canal at those levels.
 
-        From a discharge at the tail, levels and what leaves there follow upward node by node; the inflow that this needs
-        rises with the discharge at the tail, which is looked for between bounds (regula falsi, halved where it is slow).
+        From a discharge at the tail, levels and what leaves there follow upward node by node; the inflow that this
+        needs rises with the discharge at the tail, which is looked for between bounds.
         """
-        self._refuse_more_than(inflow, headwater_of)
-        agrees = DISCHARGE_AGREES * (1.0 + abs(inflow))
-        low, high, excess_low, excess_high = 0.0, math.inf, -math.inf, math.inf
-        outflow, failure = inflow - float(np.sum(self.demands.discharge)), None
+        below, above = (0.0, self._excess_of_nothing(supply_of, headwater_of)), (math.inf, math.inf)
+        outflow, failure = max(-below[1], 0.0), None
         for k in range(PASSES):
-            outflow = max(outflow, 0.0)
             try:
                 level, discharge = self._upward(outflow, headwater_of)
-                excess = discharge[0] - inflow
+                supply = supply_of(level[0])
+                excess = discharge[0] - supply
             except UsageError as error:
-                failure, excess = error, math.inf
+                failure, excess = failure or error, math.inf
+            agrees = DISCHARGE_AGREES * (1.0 + outflow)
             if abs(excess) <= agrees:
                 return level, discharge
-            if excess < 0.0:
-                low, excess_low = outflow, excess
-            else:
-                high, excess_high = outflow, excess
-            if high - low <= agrees:
+            below, above = ((outflow, excess), above) if excess < 0.0 else (below, (outflow, excess))
+            if above[0] - below[0] <= agrees:
                 break
-            outflow = _between(low, high, excess_low, excess_high, outflow - excess, is_slow=k % 3 == 2)
+            outflow = _between(below, above, is_halved=k % 3 == 2)
         raise failure or UsageError(
             "no steady state found: what leaves the canal does not settle; give openings or another start"
         )
 
-    def _refuse_more_than(self, inflow: float, headwater_of: HeadwaterOf) -> None:
-        """Raise where less flows in than leaves with nothing left at the tail."""
-        try:
-            _, discharge = self._upward(0.0, headwater_of)
-        except UsageError:
-            return
-        if discharge[0] <= inflow + 1e-9:
-            return
-        left = inflow - discharge[0] + discharge
-        pool = int(np.searchsorted(self.network.tables.pools.last_node, np.argmax(left < -1e-9) - 1))
-        name = self.network.names.pools[min(pool, len(self.network.names.pools) - 1)]
-        raise DeliveriesExceedInflowError(
-            f"no steady state: the deliveries down to {name}, with losses and escapes, exceed the inflow of "
-            f"{inflow:.3f} m3/s"
-        )
+    def _excess_of_nothing(self, supply_of: SupplyOf, headwater_of: HeadwaterOf) -> float:
+        """What leaves the canal less what enters it with nothing left at the tail, negative [m³/s].
+
+        Raises DeliveriesExceedInflowError where it is not.
+        """
+        level, discharge = self._upward(0.0, headwater_of)
+        supply = supply_of(level[0])
+        excess = discharge[0] - supply
+        if excess > 1e-9:
+            left = discharge - excess
+            pool = int(np.searchsorted(self.network.tables.pools.last_node, np.argmax(left < -1e-9) - 1))
+            name = self.network.names.pools[min(pool, len(self.network.names.pools) - 1)]
+            raise DeliveriesExceedInflowError(
+                f"no steady state: the deliveries down to {name}, with losses and escapes, exceed the inflow of "
+                f"{supply:.3f} m3/s"
+            )
+        return min(float(excess), 0.0)
 
     def _upward(self, outflow: float, headwater_of: HeadwaterOf) -> tuple[np.ndarray, np.ndarray]:
         """Levels and discharges from a discharge at the tail up: a boundary, a gate or a reach at a time."""
@@ -202,19 +198,22 @@ class _Search:
         return level, discharge
 
     def _leaving(self, node: int, level: float) -> float:
-        """What leaves a node at a level [m³/s]: deliveries, escapes and losses."""
+        """What leaves a node at a level [m³/s]: losses, deliveries and escapes."""
         tables, here = self.network.tables, self.network.channel.nodes[node]
-        lost = 0.0
-        if node < self.network.canal_node_count:
+        leaving = 0.0
+        if self.is_losing and node < self.network.canal_node_count:
             section, cell = self.network.channel.shapes[here.section], tables.cells[node]
-            lost = cell.length * loss_per_length(
-                section, level - here.bed_level, cell.seepage, self.demands.surface_rate
-            )[0]
-        taken = sum(self._delivery(k, level) for k in np.flatnonzero(tables.offtakes.node == node))
-        return lost + taken + sum(
-            side_weir_discharge(weir.coefficient, weir.length, weir.crest_level, level, weir.outside_level)
-            for weir in tables.escapes[tables.escapes.node == node]
-        )
+            lost, _ = loss_per_length(section, level - here.bed_level, cell.seepage, self.demands.surface_rate)
+            leaving = cell.length * lost
+        if node not in self.outlets:
+            return leaving
+        for k in np.flatnonzero(tables.offtakes.node == node):
+            leaving += self._delivery(k, level)
+        for weir in tables.escapes[tables.escapes.node == node]:
+            leaving += side_weir_discharge(
+                weir.coefficient, weir.length, weir.crest_level, level, weir.outside_level
+            )  # fmt: skip
+        return leaving
 
     def _delivery(self, k: int, level: float) -> float:
         takes = self.network.tables.offtakes

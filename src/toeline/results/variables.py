@@ -244,8 +244,8 @@ _OFFTAKE_FACTS = (
 _ESCAPE_FACTS = (
     _text("escape", ("escape",), "name of the escape"),
     _text("escape_pool", ("escape",), "pool of the escape"),
-    Variable("escape_chainage", ("escape",), "m", "chainage of the escape", "from the head, downstream positive; of the "
-             "node that the water leaves", dtype="f8"),
+    Variable("escape_chainage", ("escape",), "m", "chainage of the escape",
+             "from the head, downstream positive; of the node that the water leaves", dtype="f8"),
     Variable("escape_crest_level", ("escape",), "m", "level of the crest of the escape", _LEVEL, dtype="f8"),
 )
 

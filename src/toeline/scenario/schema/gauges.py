@@ -13,7 +13,7 @@ _AT_GATE, _IN_POOL = ("gate", "side"), ("pool", "chainage")
 
 
 class Gauge(Table):
-    """A staff gauge beside a gate (gate, side) or along a pool (pool, chainage); results are also given as read on it."""
+    """A staff gauge beside a gate (gate, side) or along a pool (pool, chainage); results also give its readings."""
 
     name: Name = Field(description="Name of the gauge.")
     gate: Name | None = Field(None, description="Name of the gate beside which it stands, with side.")
