@@ -207,7 +207,7 @@ class _Search:
             leaving = cell.length * lost
         if node not in self.outlets:
             return leaving
-        for k in np.flatnonzero(tables.offtakes.node == node):
+        for k in np.flatnonzero(tables.offtakes.node == node).tolist():
             leaving += self._delivery(k, level)
         for weir in tables.escapes[tables.escapes.node == node]:
             leaving += side_weir_discharge(

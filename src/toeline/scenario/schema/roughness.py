@@ -8,7 +8,7 @@ from typing import Annotated, Any, Literal
 from pydantic import Field, ValidationInfo
 
 from toeline.scenario.misfits import in_quotes, shown
-from toeline.scenario.schema.table import Name, Table
+from toeline.scenario.schema.table import Table
 from toeline.scenario.schema.value_kinds import Quantity, Text, ValueKind
 
 ALL = "all"
@@ -92,7 +92,7 @@ class RoughnessEntry(Table):
         description="Until the next entry of the pool. steps: the factor holds; lines: it goes straight to the next "
         "factor, day by day.",
     )
-    note: Name | None = Field(None, description="What it stands for, such as a weed cut.")
+    note: Annotated[str, Text("text of one line")] | None = Field(None, description="What it stands for, such as a weed cut.")
 
     @property
     def pools_text(self) -> str:
