@@ -45,7 +45,7 @@ class Run:
         self.unrest = Unrest(network, self.state, self.watch, timetable.length)
         self.operations = Operations(network, timetable, self.state, self.forcing, self.unrest, openings)
         self._take_over(start) if isinstance(start, dict) else self._start_at(start)
-        self.watch.start_storage[0] = np.sum(self.state.nodes.volume[: network.canal_node_count])
+        self.watch.start_storage[0] = self._storage()
 
     def go(self, progress: Callable[[float], None] | None = None) -> None:
         """Step to the end of the period; raises RunError where no step can be solved."""
@@ -94,6 +94,11 @@ class Run:
         self.watch.roughness_factor[:] = end["end_roughness_factor"]
         self.operations.take_over(end)
         self.unrest.take_over(end)
+
+    def _storage(self) -> float:
+        """Volume in the canal [m³], added up in the order of the output so that its change begins at zero."""
+        volume = self.state.nodes.volume
+        return sum(sum(volume[pool.first_node : pool.last_node + 1].tolist()) for pool in self.tables.pools)
 
     def _new_pace(self) -> np.recarray:
         timetable, pace = self.timetable, zeros(1, PACE)
