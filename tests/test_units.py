@@ -60,7 +60,10 @@ EXACT = {
     ("duration", "d"): Fraction(DAY),
     ("rate of loss", "mm/day"): Fraction(1, 1000 * DAY),
     ("rate of loss", "mm/h"): Fraction(1, 1000 * HOUR),
+    ("rate of loss", "m/day"): Fraction(1, DAY),
     ("rate of loss", "in/day"): INCH / DAY,
+    ("rate of loss", "in/h"): INCH / HOUR,
+    ("rate of loss", "ft/day"): FOOT / DAY,
 }
 
 

@@ -25,6 +25,7 @@ from toeline.results.dataset import DatasetSink, open_run
 from toeline.results.end_state import read_end_state
 from toeline.results.netcdf_writer import NetcdfSink
 from toeline.results.provenance import COMPLETE, run_attributes
+from toeline.results.variables import GAUGE_SIDES
 from toeline.scenario import Scenario
 
 
@@ -114,7 +115,7 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
     pools, offtakes = network.tables.pools, network.tables.offtakes
     times = pool_times(network, level, discharge)
     beside = (*names.pools, "tail")
-    node_pool = np.searchsorted(pools.last_node, np.arange(nodes.size)).astype(np.int32)
+    node_pool = network.pool_of(np.arange(nodes.size)).astype(np.int32)
     return {
         "gate": np.array(names.gates, object),
         "gate_chainage": network.channel.nodes["chainage"][gates.downstream_node],
@@ -142,6 +143,8 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
         "offtake": np.array(names.offtakes, object),
         "offtake_pool": np.array([names.pools[node_pool[node]] for node in offtakes.node], object),
         "offtake_chainage": chainage[offtakes.node],
+        **_escape_facts(network),
+        **_gauge_facts(network),
         "node": np.arange(nodes.size),
         "chainage": chainage,
         "bed_level": nodes["bed_level"],
@@ -153,9 +156,32 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
     }
 
 
+def _escape_facts(network: Network) -> dict[str, np.ndarray]:
+    names, escapes = network.names, network.tables.escapes
+    return {
+        "escape": np.array(names.escapes, object),
+        "escape_pool": np.array([names.pools[pool] for pool in network.pool_of(escapes.node)], object),
+        "escape_chainage": network.channel.nodes["chainage"][escapes.node],
+        "escape_crest_level": escapes.crest_level,
+    }
+
+
+def _gauge_facts(network: Network) -> dict[str, np.ndarray]:
+    gauges, chainage = network.names.gauges, network.channel.nodes["chainage"]
+    places = np.maximum(network.tables.gauges.node, 0) + network.tables.gauges.weight
+    return {
+        "gauge": np.array([gauge.name for gauge in gauges], object),
+        "gauge_gate": np.array([gauge.gate for gauge in gauges], object),
+        "gauge_side": np.array([GAUGE_SIDES.index(gauge.side) for gauge in gauges], np.int8),
+        "gauge_pool": np.array([gauge.pool for gauge in gauges], object),
+        "gauge_chainage": np.interp(places, np.arange(chainage.size), chainage),
+        "gauge_zero_level": network.tables.gauges.zero_level,
+    }
+
+
 def _round_trips(network: Network, level: np.ndarray, discharge: np.ndarray) -> np.ndarray:
     """Wave round trip of every pool [s]; NaN where a pool is dry."""
-    state = new_state(network.node_count, network.offtake_count)
+    state = new_state(network)
     state.nodes["level"], state.links["discharge"] = level, discharge
     trips = [round_trip(network.channel, pool.first_node, pool.last_node, state) for pool in network.tables.pools]
     return np.where(np.isfinite(trips), trips, np.nan)

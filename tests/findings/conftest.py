@@ -34,6 +34,11 @@ LABELS = {
     "pool": ["Orchard pool", "Mill pool"],
     "offtake": ["North lateral"],
     "offtake_pool": ["Orchard pool"],
+    "escape": ["Storm escape"],
+    "escape_pool": ["Mill pool"],
+    "gauge": ["Mill gauge"],
+    "gauge_gate": ["Mill check"],
+    "gauge_pool": ["Mill pool"],
 }
 
 
@@ -56,6 +61,8 @@ def run_by_hand(
         "gate": 2,
         "pool": 2,
         "offtake": 1,
+        "escape": 1,
+        "gauge": 1,
         "node": nodes,
     }
     given = {name: np.asarray(value) for name, value in values.items()} | {

@@ -51,9 +51,11 @@ def _water_rows(scenario: "Scenario") -> list[tuple[str, ...]]:
     day, display = scenario.day, scenario.display
     discharges = {"inflow": day.inflow} | {f"asked at {name}": series for name, series in day.deliveries.items()}
     levels = {"level of the reservoir": day.head, "level at the tail": day.tail}
+    weather = {"evaporation": day.losses.evaporation, "rain": day.losses.rain}
     return [
         *(_water_row(name, series, display.discharge) for name, series in discharges.items() if series is not None),
         *(_water_row(name, series, display.level) for name, series in levels.items() if series is not None),
+        *(_water_row(name, series, display.rate_of_loss) for name, series in weather.items() if series is not None),
     ]
 
 

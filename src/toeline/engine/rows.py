@@ -4,6 +4,8 @@ from typing import NamedTuple
 
 import numpy as np
 
+from toeline.network.tables import Network
+
 FLAG = np.int8
 
 GATE_OUTPUT = np.dtype(
@@ -39,7 +41,11 @@ POOL_OUTPUT = np.dtype(
         ("pool_tail_level", float),
         ("pool_inflow", float),
         ("pool_outflow", float),
+        ("pool_inflow_volume", float),
+        ("pool_outflow_volume", float),
         ("pool_losses", float),
+        ("pool_loss_volume", float),
+        ("pool_roughness_factor", float),
         ("pool_bank_margin", float),
         ("pool_lining_margin", float),
         ("settling", FLAG),
@@ -47,6 +53,10 @@ POOL_OUTPUT = np.dtype(
 )
 
 OFFTAKE_OUTPUT = np.dtype([("demand", float), ("delivery", float), ("delivery_volume", float)])
+
+ESCAPE_OUTPUT = np.dtype([("escape_discharge", float), ("escape_volume", float)])
+
+GAUGE_OUTPUT = np.dtype([("gauge_reading", float)])
 
 CANAL_OUTPUT = np.dtype(
     [
@@ -70,12 +80,14 @@ class Rows(NamedTuple):
     gates: np.recarray  # (rows, g) of GATE_OUTPUT
     pools: np.recarray  # (rows, p) of POOL_OUTPUT
     offtakes: np.recarray  # (rows, d) of OFFTAKE_OUTPUT
+    escapes: np.recarray  # (rows, e) of ESCAPE_OUTPUT
+    gauges: np.recarray  # (rows, u) of GAUGE_OUTPUT
     profile_time: np.ndarray  # (profile rows) int64 ms from the start of the period
     profiles: np.recarray  # (profile rows, n) of PROFILE_OUTPUT
     filled: np.ndarray  # (2) int64: rows, profile rows
 
 
-def new_rows(rows: int, profile_rows: int, gates: int, pools: int, offtakes: int, nodes: int) -> Rows:
+def new_rows(rows: int, profile_rows: int, network: Network) -> Rows:
     """An empty block of the given capacity."""
 
     def block(kind: np.dtype, *shape: int) -> np.recarray:
@@ -83,11 +95,13 @@ def new_rows(rows: int, profile_rows: int, gates: int, pools: int, offtakes: int
 
     return Rows(
         block(CANAL_OUTPUT, rows),
-        block(GATE_OUTPUT, rows, gates),
-        block(POOL_OUTPUT, rows, pools),
-        block(OFFTAKE_OUTPUT, rows, offtakes),
+        block(GATE_OUTPUT, rows, network.gate_count),
+        block(POOL_OUTPUT, rows, network.pool_count),
+        block(OFFTAKE_OUTPUT, rows, network.offtake_count),
+        block(ESCAPE_OUTPUT, rows, network.escape_count),
+        block(GAUGE_OUTPUT, rows, network.tables.gauges.size),
         np.zeros(profile_rows, np.int64),
-        block(PROFILE_OUTPUT, profile_rows, nodes),
+        block(PROFILE_OUTPUT, profile_rows, network.canal_node_count),
         np.zeros(2, np.int64),
     )
 
@@ -97,6 +111,6 @@ def filled_block(rows: Rows) -> dict[str, np.ndarray]:
     count, profile_count = rows.filled
     block = {"profile_time": rows.profile_time[:profile_count].copy()}
     for table, size in ((rows.canal, count), (rows.gates, count), (rows.pools, count), (rows.offtakes, count),
-                        (rows.profiles, profile_count)):  # fmt: skip
+                        (rows.escapes, count), (rows.gauges, count), (rows.profiles, profile_count)):  # fmt: skip
         block |= {name: np.ascontiguousarray(table[:size][name]) for name in table.dtype.names or ()}
     return block

@@ -7,7 +7,15 @@ from typing import NamedTuple
 
 import numpy as np
 
-from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, Network
+from toeline.network.roughness import RoughnessChange, roughness_changes
+from toeline.network.tables import (
+    FORCING_EVAPORATION,
+    FORCING_GATES,
+    FORCING_HEAD,
+    FORCING_RAIN,
+    FORCING_TAIL,
+    Network,
+)
 from toeline.rules.base import CanalFacts
 from toeline.scenario import Order, RuleChoice, Scenario, Stuck
 from toeline.scenario.canal_facts import canal_facts
@@ -38,6 +46,7 @@ class Timetable:
     every: int  # ms, rows
     profiles_every: int  # ms
     series: dict[int, Series]  # by forcing index
+    roughness: tuple[RoughnessChange, ...]  # by time, the first at the start
     orders: tuple[Order, ...]  # by time
     rules: tuple[RuleChoice, ...]
     decisions: tuple[np.ndarray, ...]  # ms, by rule
@@ -56,6 +65,7 @@ class Timetable:
         times.append(np.array([order.at for order in self.orders], np.int64))
         times.append(np.array([stuck.begin for stuck in self.stuck], np.int64))
         times += self.decisions
+        times.append(np.array([change.time for change in self.roughness], np.int64))
         all_times = np.unique(np.concatenate(times).astype(np.int64))
         inside = all_times[(all_times > 0) & (all_times < self.length)]
         return np.append(inside, self.length)
@@ -82,7 +92,7 @@ class Timetable:
 
     @property
     def forcing_size(self) -> int:
-        """Head, tail, an opening a gate, a demand and an opening an offtake."""
+        """Head, tail, evaporation, rain, an opening a gate, a demand and an opening an offtake."""
         return FORCING_GATES + self.gate_count + 2 * self.offtake_count
 
 
@@ -99,6 +109,7 @@ def timetable_of(scenario: Scenario, network: Network) -> Timetable:
         every=day.output.every_ms,
         profiles_every=day.output.profiles_every_ms,
         series=_series(day, canal, network),
+        roughness=roughness_changes(canal, period.start, period.length_ms),
         orders=scenario.orders,
         rules=scenario.rules,
         decisions=tuple(
@@ -124,6 +135,8 @@ def _series(day: Day, canal: Canal, network: Network) -> dict[int, Series]:
     series = {
         FORCING_HEAD: day.inflow or day.head or constant(canal.head.level or 0.0),
         FORCING_TAIL: day.tail or constant(canal.tail.level or 0.0),
+        FORCING_EVAPORATION: day.losses.evaporation or constant(canal.losses.evaporation),
+        FORCING_RAIN: day.losses.rain or constant(canal.losses.rain),
     }
     first = FORCING_GATES + network.gate_count
     count = network.offtake_count

@@ -7,8 +7,10 @@ from functools import cached_property
 import numpy as np
 import xarray as xr
 
+from toeline.findings.series import Extreme
 from toeline.report.clock import clock_text, span_text
 from toeline.results.dataset import local_time
+from toeline.units import Display
 
 
 @dataclass(frozen=True)
@@ -30,3 +32,9 @@ class RunClock:
 
     def span(self, begin: np.datetime64, end: np.datetime64) -> str:
         return span_text(local_time(self.run, begin), local_time(self.run, end), self.start)
+
+
+def extreme_text(extreme: Extreme, clock: RunClock, display: Display) -> str:
+    """A least or greatest length and when it came; "-" where there is none."""
+    value = display.length(extreme.value)
+    return value if value == "-" else f"{value} at {clock.at(extreme.time)}"

@@ -4,15 +4,18 @@ from collections.abc import Iterable
 
 import xarray as xr
 
+from toeline.findings.escapes import escape_spills
+from toeline.findings.gauges import gauge_readings
 from toeline.findings.incidents import incidents
 from toeline.findings.jumps import gate_jumps
 from toeline.findings.ledger import ledger
 from toeline.report.gates import hazard_lines, hour_lines, margin_lines
+from toeline.report.gauges import gauge_lines, roughness_lines
 from toeline.report.incidents import incident_lines
 from toeline.report.layout import heading, paragraph
 from toeline.report.orders import order_lines
 from toeline.report.run_clock import RunClock
-from toeline.report.water import ledger_lines
+from toeline.report.water import escape_lines, ledger_lines
 from toeline.units import Display
 
 
@@ -22,16 +25,20 @@ def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
         return paragraph("The run was stopped before anything reached the disk.", width, indent="")
     clock = RunClock(run)
     gates = gate_jumps(run)
-    sections = (
+    sections = [
         ("What goes wrong", incident_lines(incidents(run), clock, display, width)),
         ("Floor and people", hazard_lines(gates, width)),
         ("Least margins", margin_lines(gates, clock, display, width)),
         ("Hours in each state", hour_lines(gates, width)),
         ("Orders", order_lines(run, clock, display, width)),
+        ("Escapes", escape_lines(escape_spills(run), clock, display, width)),
+        ("Staff gauges", gauge_lines(gauge_readings(run), clock, display, width)),
+        ("Roughness", roughness_lines(run, width)),
         ("Water ledger", ledger_lines(ledger(run), width)),
         ("Caution", [paragraph(run.attrs["comment"], width)]),
-    )
-    return "\n\n".join([_title(run, clock, width), *(_section(title, lines) for title, lines in sections)])
+    ]
+    shown = [(title, list(lines)) for title, lines in sections]
+    return "\n\n".join([_title(run, clock, width), *(_section(title, lines) for title, lines in shown if lines)])
 
 
 def _title(run: xr.Dataset, clock: RunClock, width: int) -> str:

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 GROWING_DIMENSIONS = ("time", "profile_time", "order")
+LABELLED_DIMENSIONS = ("gate", "pool", "offtake", "escape", "gauge", "node")
 CLOCK = "seconds since the start of the period"
 """Unit of all times in the registry; the file names the instant itself, in UTC."""
 
@@ -25,6 +26,7 @@ DISCHARGE_QUALITIES = ("good", "near_modular_limit", "lip_near_surface", "very_d
 JUMP_STATES = ("none", "drowned", "on_apron", "on_protection", "beyond_protection", "swept_out_of_pool")
 JUMP_KINDS = ("none", "undular", "weak", "oscillating", "steady", "strong")
 LENGTH_QUALITIES = ("not_defined", "good", "poorly_known")
+GAUGE_SIDES = ("none", "upstream", "downstream")
 ORDER_KINDS = ("opening", "by", "discharge")
 ORDER_STATUSES = ("accepted", "trimmed", "refused", "replaced")
 
@@ -61,6 +63,7 @@ class Variable:
 
 
 _GATES, _POOLS, _OFFTAKES, _PROFILE = ("time", "gate"), ("time", "pool"), ("time", "offtake"), ("profile_time", "node")
+_ESCAPES = ("time", "escape")
 _SURFACE = "water_surface_height_above_reference_datum"
 _LEVEL = "above the datum of the canal file, whose altitude is not known here"
 _JUMP = ("jump_state", "jump_length_quality")
@@ -148,7 +151,15 @@ _POOL_SERIES = (
              companions=("settling",), dtype="f8"),
     Variable("pool_inflow", _POOLS, "m3 s-1", "discharge into the upper end of the pool", dtype="f8"),
     Variable("pool_outflow", _POOLS, "m3 s-1", "discharge out of the lower end of the pool", dtype="f8"),
-    Variable("pool_losses", _POOLS, "m3 s-1", "seepage and evaporation less rain", "deliveries are not losses"),
+    Variable("pool_inflow_volume", _POOLS, "m3", "volume taken in at the upper end of the pool since the start",
+             dtype="f8"),
+    Variable("pool_outflow_volume", _POOLS, "m3", "volume let out at the lower end of the pool since the start",
+             dtype="f8"),
+    Variable("pool_losses", _POOLS, "m3 s-1", "seepage and evaporation less rain",
+             "deliveries and escapes are not losses; negative where rain exceeds the rest"),
+    Variable("pool_loss_volume", _POOLS, "m3", "volume lost by seepage and evaporation less rain since the start",
+             dtype="f8"),
+    Variable("pool_roughness_factor", _POOLS, "1", "factor of the roughness calendar on Manning's n in the pool"),
     Variable("pool_bank_margin", _POOLS, "m", "least height of the bank above the water along the pool",
              "negative: over the bank; surges are not in it; missing where no bank is given", companions=("settling",)),
     Variable("pool_lining_margin", _POOLS, "m", "least height of the lining above the water along the pool",
@@ -163,6 +174,17 @@ _OFFTAKE_SERIES = (
     Variable("delivery_volume", _OFFTAKES, "m3", "volume delivered at the offtake since the start", dtype="f8"),
 )
 
+_ESCAPE_SERIES = (
+    Variable("escape_discharge", _ESCAPES, "m3 s-1", "discharge over the escape", "out of the canal; never back",
+             dtype="f8"),
+    Variable("escape_volume", _ESCAPES, "m3", "volume let out over the escape since the start", dtype="f8"),
+)
+
+_GAUGE_SERIES = (
+    Variable("gauge_reading", ("time", "gauge"), "m", "water level as read on the staff gauge",
+             "above its zero; negative below the zero; missing where the bed beside it is dry", dtype="f8"),
+)
+
 _CANAL_SERIES = (
     Variable("canal_inflow", ("time",), "m3 s-1", "discharge into the canal at its head", dtype="f8"),
     Variable("canal_outflow", ("time",), "m3 s-1", "discharge out of the canal at its tail", dtype="f8"),
@@ -170,7 +192,7 @@ _CANAL_SERIES = (
     Variable("canal_outflow_volume", ("time",), "m3", "volume let out at the tail since the start", dtype="f8"),
     Variable("canal_storage", ("time",), "m3", "volume of water in all pools", dtype="f8"),
     Variable("balance_residual", ("time",), "m3", "residual of the water ledger since the start",
-             "inflow less deliveries, losses, outflow and growth of storage", dtype="f8"),
+             "inflow less deliveries, escapes, losses, outflow and growth of storage", dtype="f8"),
 )
 
 _PROFILES = (
@@ -234,6 +256,24 @@ _OFFTAKE_FACTS = (
              dtype="f8"),
 )
 
+_ESCAPE_FACTS = (
+    _text("escape", ("escape",), "name of the escape"),
+    _text("escape_pool", ("escape",), "pool of the escape"),
+    Variable("escape_chainage", ("escape",), "m", "chainage of the escape",
+             "from the head, downstream positive; of the node that the water leaves", dtype="f8"),
+    Variable("escape_crest_level", ("escape",), "m", "level of the crest of the escape", _LEVEL, dtype="f8"),
+)
+
+_GAUGE_FACTS = (
+    _text("gauge", ("gauge",), "name of the staff gauge"),
+    _text("gauge_gate", ("gauge",), "gate beside which the gauge stands", "empty where it stands along a pool"),
+    _flag("gauge_side", ("gauge",), "side of the gate on which the gauge stands", GAUGE_SIDES),
+    _text("gauge_pool", ("gauge",), "pool of the gauge", "head, tail: beyond the ends of the canal"),
+    Variable("gauge_chainage", ("gauge",), "m", "chainage of the gauge", "from the head, downstream positive",
+             dtype="f8"),
+    Variable("gauge_zero_level", ("gauge",), "m", "level of the zero of the staff", _LEVEL, dtype="f8"),
+)
+
 _NODE_FACTS = (
     Variable("node", ("node",), "1", "number of the node, from the head", dtype="i4"),
     Variable("chainage", ("node",), "m", "chainage", "from the head, downstream positive", dtype="f8"),
@@ -272,8 +312,9 @@ _END_STATE = (
     _state_text("end_rule", ("state_memory",), "rule that keeps the value", "kind and gate"),
     _state_text("end_rule_memory", ("state_memory",), "name of the value that the rule keeps"),
     _state("end_rule_value", ("state_memory",), None, "value that the rule keeps", "in SI units"),
+    _state("end_roughness_factor", ("state_pool",), "1", "factor on Manning's n at the end of the run"),
     _state("end_rate", ("state_forcing",), None, "rates of change at the end of the run",
-           "a second; of head, tail, gate openings, demands and offtake openings in their units"),
+           "a second; of head, tail, evaporation, rain, gate openings, demands and offtake openings in their units"),
     _state("end_next_step", (), "s", "length of the step that would have come next"),
     _state("end_time", (), CLOCK, "time of the end state"),
 )
@@ -286,12 +327,16 @@ VARIABLES = {
         _GATE_SERIES,
         _POOL_SERIES,
         _OFFTAKE_SERIES,
+        _ESCAPE_SERIES,
+        _GAUGE_SERIES,
         _CANAL_SERIES,
         _PROFILES,
         _ORDERS,
         _GATE_FACTS,
         _POOL_FACTS,
         _OFFTAKE_FACTS,
+        _ESCAPE_FACTS,
+        _GAUGE_FACTS,
         _NODE_FACTS,
         _END_STATE,
     )

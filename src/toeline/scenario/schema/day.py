@@ -10,6 +10,7 @@ from pydantic import Field, ValidationInfo
 from toeline.scenario.misfits import Misfit, MisfitsError, shown
 from toeline.scenario.reading import reading_of
 from toeline.scenario.schema.day_series import Delivery, Inflow, LevelSeries, OpeningSeries
+from toeline.scenario.schema.losses import LossesOfDay
 from toeline.scenario.schema.plans import Plan
 from toeline.scenario.schema.table import OPENING, DischargeOrZero, FileName, Name, Table
 from toeline.scenario.schema.value_kinds import Duration, Quantity, Text, ValueKind
@@ -159,6 +160,7 @@ class Day(Table):
     offtake_openings: dict[str, OpeningSeries] = Field({}, description="Opening of orifice offtakes that are moved.")
     head: LevelSeries | None = Field(None, description="Level of the reservoir, where it changes during the day.")
     tail: LevelSeries | None = Field(None, description="Level beyond the end, where it changes during the day.")
+    losses: LossesOfDay = Field(default_factory=LossesOfDay, description="Evaporation and rain of the day.")
     start: Start = Field(description="The state of the canal at the start.")
     round_openings: Literal["turns", "scale marks"] | None = Field(
         None,
