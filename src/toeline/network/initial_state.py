@@ -22,6 +22,11 @@ PASSES = 200
 DISCHARGE_AGREES = 1e-12
 """Relative error of the inflow that ends the search."""
 
+DISCHARGE_IS_ROUNDED = 1e-9
+"""Relative error of the inflow that may be left where the bounds of the search have closed: gates in a row magnify the
+rounding of levels.
+"""
+
 TAIL_PASSES = 20
 """Passes for the level a metre above the tail, by the mean conveyance that the time loop takes there."""
 
@@ -155,6 +160,8 @@ class _Search:
                 return level, discharge
             below, above = ((outflow, excess), above) if excess < 0.0 else (below, (outflow, excess))
             if above[0] - below[0] <= agrees:
+                if abs(excess) <= DISCHARGE_IS_ROUNDED * (1.0 + outflow):
+                    return level, discharge
                 break
             outflow = _between(below, above, is_halved=k % 3 == 2)
         raise failure or UsageError(

@@ -8,7 +8,7 @@ from toeline.rules.base import Answer
 DETUNING = 4.0
 """Reset time over the sum of closed-loop time and delay (Skogestad 2003, for integrating processes; from memory)."""
 
-ROUND_TRIPS, INTERVALS = 2.0, 4.0
+ROUND_TRIPS, INTERVALS = 1.0, 4.0
 """Least closed-loop time of a pool in its wave round trips, and in decision intervals (choice)."""
 
 
@@ -25,8 +25,8 @@ def gains_of_pool(area: float, delay: float, round_trip: float, every: float) ->
     """Discharge per level error [m²/s] and reset time [s] for a pool that stores on an area [m²] what comes after a
     delay [s].
 
-    A/(T + τ) and 4(T + τ) with the closed-loop time T (Skogestad 2003, from memory): at least the delay, two wave round
-    trips of the pool and four decision intervals (choice), so that a rule does not hunt.
+    A/(T + τ) and 4(T + τ) with the closed-loop time T (Skogestad 2003, from memory): at least the delay, one wave round
+    trip of the pool and four decision intervals (choice), so that a rule does not hunt.
     """
     closed_loop = max(delay, ROUND_TRIPS * round_trip, INTERVALS * every)
     return Gains(area / (closed_loop + delay), DETUNING * (closed_loop + delay))

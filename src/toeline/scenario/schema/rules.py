@@ -144,7 +144,8 @@ def table_of(found: FoundRule) -> type[Table]:
         if default is None:
             annotation = annotation | None
         fields[key] = (annotation, Field(default, description=setting.description))
-    table: type[Table] = create_model(found.rule.__name__, __base__=Table, __doc__=found.rule.__doc__, **fields)
+    summary = " ".join((found.rule.__doc__ or "").split())
+    table: type[Table] = create_model(found.rule.__name__, __base__=Table, __doc__=summary, **fields)
     return table
 
 
