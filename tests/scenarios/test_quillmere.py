@@ -147,3 +147,91 @@ def test_isolation_with_the_head_gate_keeps_every_pool_below_its_lining():
     run = run_of("isolation", "head_gate_too")
     assert above_lining(run) == set()
     assert {found.where for found in incidents(run) if found.what == "delivery shortfall"} == {"Far lateral"}
+
+
+def spilled(run: xr.Dataset) -> dict[str, float]:
+    """Volume that went over each escape [m³]."""
+    return dict(zip(run.escape.values.tolist(), run.escape_volume[-1].values.tolist(), strict=True))
+
+
+def test_storm_with_no_gate_moved_spills_over_both_escapes_and_overtops_a_lining():
+    run = run_of("storm", "hands_off")
+    assert above_lining(run) == {"Heron pool"}
+    assert 65e3 < sum(spilled(run).values()) < 75e3
+    assert (run.escape_discharge.sel(time=run.time.values[0] + np.timedelta64(13, "h")) > 0).all()
+
+
+def test_storm_with_the_inflow_cut_spills_nothing():
+    run = run_of("storm", "inflow_cut")
+    assert above_lining(run) == set()
+    assert set(spilled(run).values()) == {0.0}
+
+
+def test_stuck_gate_refuses_its_orders_and_fills_the_pool_above():
+    run = run_of("stuck_gate", "nobody_notices")
+    refused = run.order_status == 2
+    assert set(run.order_gate.values[refused]) == {"Heron check"}
+    assert refused.sum() == 2
+    assert all("stuck" in reason for reason in run.order_reason.values[refused])
+    assert 0.30 < (run.pool_tail_level - run.pool_target_level).sel(pool="Heron pool").max() < 0.40
+    assert 4000 < spilled(run)["Heron escape"] < 5000
+
+
+def test_stuck_gate_noticed_in_time_spills_a_sixth():
+    run = run_of("stuck_gate", "held_back")
+    assert spilled(run)["Heron escape"] < spilled(run_of("stuck_gate", "nobody_notices"))["Heron escape"] / 5
+    assert above_lining(run) == set()
+
+
+def test_weeds_raise_the_heads_of_pools_and_drown_every_jump():
+    weeds, clean = run_of("weed_season"), run_of("weed_cut")
+    assert (weeds.pool_roughness_factor == 1.35).all()
+    assert (clean.pool_roughness_factor == 1.0).all()
+    higher = (weeds.pool_head_level[0] - clean.pool_head_level[0]).drop_sel(pool="Lower pool")
+    assert 0.12 < higher.min() < higher.max() < 0.17
+    drowned = (weeds.jump_state == JUMP_STATES.index("drowned")).mean("time")
+    assert (drowned > 0.99).all()
+    assert all(minutes_beyond(weeds, gate) == 0 for gate in weeds.gate.values)
+
+
+def test_the_same_orders_sweep_a_jump_out_after_the_weed_cut():
+    assert 2 <= minutes_beyond(run_of("weed_cut"), "Lower check") <= 10
+
+
+def moves(run: xr.Dataset) -> dict[str, int]:
+    done = run.order_gate.values[run.order_status.values != 2]
+    return {gate: int((done == gate).sum()) for gate in run.gate.values}
+
+
+def test_upstream_levels_hold_the_pools_and_pass_the_mismatch_to_the_tail():
+    run = run_of("four_rules", "upstream_levels")
+    assert greatest_stray(run) < 0.07
+    assert run.canal_outflow.min() < 5.3
+    assert run.canal_outflow.max() > 7.4
+
+
+def test_downstream_levels_hold_the_tail_and_swing_the_head():
+    run = run_of("four_rules", "downstream_levels")
+    assert (np.abs(run.canal_outflow - 6.0) < 0.4).all()
+    assert run.canal_inflow.min() < 8.0
+    assert run.canal_inflow.max() > 11.2
+    stray = np.abs(run.pool_tail_level - run.pool_target_level).max("time")
+    assert stray.sel(pool="Orchard pool") > 2 * stray.sel(pool="Lower pool")
+
+
+def test_volumes_let_the_surface_turn_about_a_point_in_the_pool():
+    run = run_of("four_rules", "volumes")
+    assert (np.abs(run.pool_volume / run.pool_volume[0] - 1).max("time") < 0.04).all()
+    mill = run.sel(pool="Mill pool")
+    afternoon = mill.sel(time=run.time.values[0] + np.timedelta64(12, "h"))
+    assert -0.04 < afternoon.pool_tail_level - mill.pool_tail_level[0] < -0.02
+    assert 0.03 < afternoon.pool_head_level - mill.pool_head_level[0] < 0.05
+
+
+def test_gatekeeper_rounds_move_least_and_stray_most():
+    plans = ["upstream_levels", "downstream_levels", "volumes", "gatekeeper_rounds"]
+    checks = {plan: sum(count for gate, count in moves(run_of("four_rules", plan)).items() if gate != "Head gate")
+              for plan in plans}  # fmt: skip
+    assert checks["gatekeeper_rounds"] <= 16
+    assert min(checks, key=checks.get) == "gatekeeper_rounds"
+    assert max(plans, key=lambda plan: greatest_stray(run_of("four_rules", plan))) == "gatekeeper_rounds"
