@@ -124,6 +124,10 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
         "gate_downstream_pool": np.array(
             [beside[np.searchsorted(pools.last_node, down)] for down in gates.downstream_node], object
         ),
+        "bay": np.array(names.bays, object),
+        "bay_gate": np.array(
+            [names.gates[g] for g in network.tables.leaves.gate[network.tables.leaves.bay >= 0]], object
+        ),
         "pool": np.array(names.pools, object),
         "pool_length": chainage[pools.last_node] - chainage[pools.first_node],
         "pool_target_level": names.target_level,

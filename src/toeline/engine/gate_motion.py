@@ -27,14 +27,15 @@ class OrderRecord:
     completed: float
     status: int
     reason: str
+    bay: int = 0
     is_final: bool = False
 
 
 class GateMotion:
-    """One gate's leaf: where it is, where it goes, and the orders it was given."""
+    """One leaf: where it is, where it goes, and the orders it was given; `bay` from 1, 0 for all bays of the gate."""
 
-    def __init__(self, gate: Gate, opening: float):
-        self.gate = gate
+    def __init__(self, gate: Gate, opening: float, bay: int = 0):
+        self.gate, self.bay = gate, bay
         self.opening = opening
         self.target = opening
         self.ordered = opening
@@ -79,7 +80,9 @@ class GateMotion:
         target, status, reason = allowed_opening(self.gate, wanted, self.ordered)
         if note and status != REFUSED:
             status, reason = TRIMMED, "; ".join(part for part in (note, reason) if part)
-        record = OrderRecord(time, self.gate.name, kind, value, self.opening, target, math.nan, status, reason)
+        record = OrderRecord(
+            time, self.gate.name, kind, value, self.opening, target, math.nan, status, reason, self.bay
+        )  # fmt: skip
         if status == REFUSED:
             record.after, record.is_final = self.ordered, True
             return record
@@ -96,7 +99,17 @@ class GateMotion:
         """The record of an order that comes after the end of the period."""
         reason = "comes after the end of the period"
         return OrderRecord(
-            order.at, order.gate, order.kind, order.value, self.opening, self.ordered, math.nan, REFUSED, reason, True
+            order.at,
+            order.gate,
+            order.kind,
+            order.value,
+            self.opening,
+            self.ordered,
+            math.nan,
+            REFUSED,
+            reason,
+            self.bay,
+            True,
         )
 
     def end_of_day(self) -> None:

@@ -21,9 +21,12 @@ class Operations:
         self, network: Network, timetable: Timetable, state: State, forcing: np.recarray, unrest: Unrest,
         openings: np.ndarray,
     ):  # fmt: skip
-        """`openings` [m] are those at the start, by gate."""
+        """`openings` [m] are those at the start, by leaf."""
         self.network, self.state, self.forcing, self.unrest = network, state, forcing, unrest
-        self.motions = [GateMotion(g, float(a)) for g, a in zip(timetable.gates, openings, strict=True)]
+        self.motions = [
+            GateMotion(timetable.gates[g], float(opening), bay)
+            for (g, bay), opening in zip(_places(network), openings, strict=True)
+        ]
         self.orders = list(timetable.orders)
         self.records: list[OrderRecord] = []
 
@@ -45,7 +48,7 @@ class Operations:
         """Close the records of moves under way and of orders that were not reached."""
         for motion in self.motions:
             motion.end_of_day()
-        self.records += [self.motions[self._index(order)].not_reached(order) for order in self.orders]
+        self.records += [motion.not_reached(order) for order in self.orders for motion in self._moved_by(order)]
 
     def take_records(self) -> dict[str, np.ndarray]:
         """Hand over, once, the records that will not change any more, by variable name."""
@@ -70,15 +73,19 @@ class Operations:
 
     def _carry_out(self, order: Order, time: int) -> None:
         g = self._index(order)
-        motion = self.motions[g]
         up, down = self._levels(g)
-        wanted, note = self._wanted_opening(order, g, up, down)
-        opening = motion.opening
-        record = motion.order(time, order.kind, order.value, wanted, note)
-        self.records.append(record)
-        if record.is_final and math.isnan(record.completed):
-            return
-        self.unrest.note_move(time, g, up, down, opening, motion)
+        for motion in self._moved_by(order):
+            wanted, note = self._wanted_opening(order, motion, up, down)
+            opening = motion.opening
+            record = motion.order(time, order.kind, order.value, wanted, note)
+            self.records.append(record)
+            if not (record.is_final and math.isnan(record.completed)):
+                self.unrest.note_move(time, g, up, down, opening, motion)
+
+    def _moved_by(self, order: Order) -> list[GateMotion]:
+        """The leaf that an order names, or all of its gate."""
+        motions = [self.motions[leaf] for leaf in self.network.leaves_of(self._index(order))]
+        return [motion for motion in motions if order.bay in (0, motion.bay)]
 
     def _levels(self, g: int) -> tuple[float, float]:
         """Headwater and tailwater level of a gate [m]."""
@@ -90,26 +97,39 @@ class Operations:
     def _index(self, order: Order) -> int:
         return self.network.names.gates.index(order.gate)
 
-    def _wanted_opening(self, order: Order, g: int, up: float, down: float) -> tuple[float, str]:
-        motion = self.motions[g]
+    def _wanted_opening(self, order: Order, motion: GateMotion, up: float, down: float) -> tuple[float, str]:
+        """The opening that an order asks of a leaf; a discharge is that of the bay it names, or of the whole gate."""
         if order.kind == "opening":
             return order.value, ""
         if order.kind == "by":
             return motion.ordered + order.value, ""
-        row, shapes = self.network.tables.gates[g], self.network.channel.shapes
-        opening, passed = opening_for_discharge(
+        row, shapes = self.network.tables.gates[self._index(order)], self.network.channel.shapes
+        shares = motion.gate.bays if order.bay else 1
+        opening, of_gate = opening_for_discharge(
             law_of(row), shapes[row.upstream_section], shapes[row.downstream_section], up, down,
-            order.value, motion.gate.max_opening,
+            order.value * shares, motion.gate.max_opening,
         )  # fmt: skip
+        passed = of_gate / shares
         if abs(passed - order.value) > 1e-3 + 1e-6 * abs(order.value):
-            return opening, f"the gate passes {passed:.3f} m3/s at {opening:.3f} m with the present levels"
+            return (
+                opening,
+                f"the {'bay' if order.bay else 'gate'} passes {passed:.3f} m3/s at {opening:.3f} m with the present levels",
+            )
         return opening, ""
+
+
+def _places(network: Network) -> list[tuple[int, int]]:
+    """Gate and number of the bay of every leaf; 0 where it moves all bays."""
+    tables = network.tables
+    numbers = np.arange(tables.leaves.size) - tables.gates.first_leaf[tables.leaves.gate] + 1
+    return list(zip(tables.leaves.gate.tolist(), np.where(tables.leaves.bay < 0, 0, numbers).tolist(), strict=True))
 
 
 def _order_arrays(records: list[OrderRecord]) -> dict[str, np.ndarray]:
     return {
         "order_time": np.array([record.time / 1000.0 for record in records], float),
         "order_gate": np.array([record.gate for record in records], object),
+        "order_bay": np.array([record.bay for record in records], np.int32),
         "order_kind": np.array([KINDS.index(record.kind) for record in records], np.int8),
         "order_value": np.array([record.value for record in records], float),
         "order_opening_before": np.array([record.before for record in records], float),

@@ -37,7 +37,7 @@ class Timetable:
     roughness: tuple[RoughnessChange, ...]  # by time, the first at the start
     orders: tuple[Order, ...]  # by time
     gates: tuple[Gate, ...]  # of the scenario, for travel, hoist and bands
-    gate_count: int
+    leaf_count: int
     offtake_count: int
 
     def stops(self) -> np.ndarray:
@@ -68,8 +68,8 @@ class Timetable:
 
     @property
     def forcing_size(self) -> int:
-        """Head, tail, evaporation, rain, an opening a gate, a demand and an opening an offtake."""
-        return FORCING_GATES + self.gate_count + 2 * self.offtake_count
+        """Head, tail, evaporation, rain, an opening a leaf, a demand and an opening an offtake."""
+        return FORCING_GATES + self.leaf_count + 2 * self.offtake_count
 
 
 def timetable_of(scenario: Scenario, network: Network) -> Timetable:
@@ -88,7 +88,7 @@ def timetable_of(scenario: Scenario, network: Network) -> Timetable:
         roughness=roughness_changes(canal, period.start, period.length_ms),
         orders=scenario.orders,
         gates=tuple(canal.gates),
-        gate_count=network.gate_count,
+        leaf_count=network.leaf_count,
         offtake_count=network.offtake_count,
     )
 
@@ -101,7 +101,7 @@ def _series(day: Day, canal: Canal, network: Network) -> dict[int, Series]:
         FORCING_EVAPORATION: day.losses.evaporation or constant(canal.losses.evaporation),
         FORCING_RAIN: day.losses.rain or constant(canal.losses.rain),
     }
-    first = FORCING_GATES + network.gate_count
+    first = FORCING_GATES + network.leaf_count
     count = network.offtake_count
     for k, take in enumerate(canal.offtakes):
         series[first + k] = day.deliveries.get(take.name, constant(0.0 if take.kind == "demand" else np.nan))

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 GROWING_DIMENSIONS = ("time", "profile_time", "order")
-LABELLED_DIMENSIONS = ("gate", "pool", "offtake", "escape", "gauge", "node")
+LABELLED_DIMENSIONS = ("gate", "bay", "pool", "offtake", "escape", "gauge", "node")
 CLOCK = "seconds since the start of the period"
 """Unit of all times in the registry; the file names the instant itself, in UTC."""
 
@@ -95,11 +95,13 @@ _CLOCKS = (
 )
 
 _GATE_SERIES = (
-    Variable("gate_opening", _GATES, "m", "opening of the gate, lip above sill", "as moved, not as ordered",
-             dtype="f8"),
+    Variable("gate_opening", _GATES, "m", "opening of the gate, lip above sill",
+             "as moved, not as ordered; the mean over bays that move apart", dtype="f8"),
     Variable("gate_discharge", _GATES, "m3 s-1", "discharge of the gate", "downstream positive; all bays together",
              companions=("gate_flow_state", "discharge_quality"), dtype="f8"),
-    _flag("gate_flow_state", _GATES, "state of the flow through the gate", FLOW_STATES, standard_name="status_flag"),
+    _flag("gate_flow_state", _GATES, "state of the flow through the gate", FLOW_STATES, standard_name="status_flag",
+          comment="this and all that is said of jet and jump: where bays move apart, of the bay with the largest unit "
+          "discharge, as if the whole width ran like it"),
     _flag("discharge_quality", _GATES, "how well the discharge of the gate is known", DISCHARGE_QUALITIES,
           standard_name="quality_flag",
           comment="near the modular limit, with the lip near the surface and when very drowned, gate ratings are poor"),
@@ -134,6 +136,13 @@ _GATE_SERIES = (
              "of an instantaneous change as large as the last move of the gate; 0 when settled"),
     Variable("surge_height_bound_downstream", _GATES, "m", "greatest height of the surge sent down the pool",
              "of an instantaneous change as large as the last move of the gate; 0 when settled"),
+)
+
+_BAY_SERIES = (
+    Variable("bay_opening", ("time", "bay"), "m", "opening of the bay, lip above sill", "as moved, not as ordered",
+             dtype="f8"),
+    Variable("bay_discharge", ("time", "bay"), "m3 s-1", "discharge of the bay",
+             "its share of what the gate would pass with all bays at this opening", dtype="f8"),
 )
 
 _POOL_SERIES = (
@@ -201,6 +210,8 @@ _PROFILES = (
 _ORDERS = (
     Variable("order_time", ("order",), CLOCK, "time of the order", dtype="f8"),
     _text("order_gate", ("order",), "gate of the order"),
+    Variable("order_bay", ("order",), "1", "number of the bay of the order", "from 1; 0: all bays, moved together",
+             dtype="i4"),
     _flag("order_kind", ("order",), "what the order gives", ORDER_KINDS,
           comment="opening: the opening to reach; by: the change of the opening; discharge: what it is to pass then"),
     Variable("order_value", ("order",), None, "value given by the order",
@@ -224,6 +235,11 @@ _GATE_FACTS = (
              "where the last protected surface without a gap ends", dtype="f8"),
     _text("gate_upstream_pool", ("gate",), "pool above the gate", "head: the source"),
     _text("gate_downstream_pool", ("gate",), "pool below the gate", "tail: beyond the last pool"),
+)
+
+_BAY_FACTS = (
+    _text("bay", ("bay",), "name of the bay", "of gates whose bays move apart; numbered from the left bank"),
+    _text("bay_gate", ("bay",), "gate of the bay"),
 )
 
 _POOL_FACTS = (
@@ -282,10 +298,10 @@ _END_STATE = (
     _state("end_imbalance", ("state_link",), "m", "head that accelerates the water of a link at the end of the run",
            "zero without local inertia"),
     _state("end_delivery", ("state_offtake",), "m3 s-1", "delivery at the end of the run"),
-    _state("end_opening", ("state_gate",), "m", "opening at the end of the run"),
-    _state("end_target_opening", ("state_gate",), "m", "opening the leaf is moving to at the end of the run"),
-    _state("end_ordered_opening", ("state_gate",), "m", "opening last ordered", "'by' orders count from it"),
-    _state("end_motion_remaining", ("state_gate",), "s", "time for which the leaf still moves"),
+    _state("end_opening", ("state_leaf",), "m", "opening at the end of the run"),
+    _state("end_target_opening", ("state_leaf",), "m", "opening the leaf is moving to at the end of the run"),
+    _state("end_ordered_opening", ("state_leaf",), "m", "opening last ordered", "'by' orders count from it"),
+    _state("end_motion_remaining", ("state_leaf",), "s", "time for which the leaf still moves"),
     _state("end_surge_upstream", ("state_gate",), "m", "bound of the surge up the pool of the last moves"),
     _state("end_surge_downstream", ("state_gate",), "m", "bound of the surge down the pool of the last moves"),
     _state("end_surge_upstream_remaining", ("state_gate",), "s", "time until the pool above has settled"),
@@ -304,6 +320,7 @@ VARIABLES = {
     for group in (
         _CLOCKS,
         _GATE_SERIES,
+        _BAY_SERIES,
         _POOL_SERIES,
         _OFFTAKE_SERIES,
         _ESCAPE_SERIES,
@@ -312,6 +329,7 @@ VARIABLES = {
         _PROFILES,
         _ORDERS,
         _GATE_FACTS,
+        _BAY_FACTS,
         _POOL_FACTS,
         _OFFTAKE_FACTS,
         _ESCAPE_FACTS,

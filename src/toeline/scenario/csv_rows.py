@@ -94,7 +94,9 @@ def _rows(
 
 def number_or_text(cell: str) -> float | str:
     """Give the number in a cell that holds one alone, else its text, which may be a number with a unit."""
-    try:
-        return float(cell)
-    except ValueError:
-        return cell
+    for number in (int, float):
+        try:
+            return number(cell)
+        except ValueError:
+            continue
+    return cell
