@@ -1,15 +1,15 @@
-"""What people do at the stops of a day: orders to gates, and the record of what became of them."""
+"""What people and rules do at the stops of a day: orders to gates, and the record of what became of them."""
 
 import math
 
 import numpy as np
 
-from toeline.engine.gate_link import gate_levels, law_of
+from toeline.engine.decisions import Decisions
 from toeline.engine.gate_motion import KINDS, GateMotion, OrderRecord
+from toeline.engine.present import PresentCanal
 from toeline.engine.state import State
 from toeline.engine.unrest import Unrest
-from toeline.hydraulics.underflow_gate import opening_for_discharge
-from toeline.network.tables import FORCING_HEAD, FORCING_TAIL, Network
+from toeline.network.tables import Network
 from toeline.network.timetable import Timetable
 from toeline.scenario import Order
 
@@ -21,19 +21,40 @@ class Operations:
         self, network: Network, timetable: Timetable, state: State, forcing: np.recarray, unrest: Unrest,
         openings: np.ndarray,
     ):  # fmt: skip
-        """`openings` [m] are those at the start, by leaf."""
-        self.network, self.state, self.forcing, self.unrest = network, state, forcing, unrest
+        """`openings` [m] are those at the start, by leaf; `begin` must follow once `state` is that of the start."""
+        self.network, self.timetable, self.unrest = network, timetable, unrest
         self.motions = [
-            GateMotion(timetable.gates[g], float(opening), bay)
-            for (g, bay), opening in zip(_places(network), openings, strict=True)
+            self._motion(g, bay, float(opening))
+            for (g, bay), opening in zip(network.places_of_leaves(), openings, strict=True)
         ]
+        self.present = PresentCanal(network, timetable, state, forcing, self.motions)
         self.orders = list(timetable.orders)
         self.records: list[OrderRecord] = []
 
+    def _motion(self, g: int, bay: int, opening: float) -> GateMotion:
+        gate, marks = self.timetable.gates[g], self.timetable.marks[g]
+        return GateMotion(gate, opening, marks, [one for one in self.timetable.stuck if one.gate == gate.name], bay)
+
+    def begin(self, end: dict[str, np.ndarray] | None = None) -> None:
+        """Make the rules for the state at the start; go on from the end state of the run before, if there was one."""
+        self.decisions = Decisions(self.network, self.timetable, self.present)
+        if end is None:
+            return
+        for leaf, motion in enumerate(self.motions):
+            remaining = round(float(end["end_motion_remaining"][leaf]) * 1000.0)
+            moves = [-round(float(age) * 1000.0) for age in end["end_move_age"][end["end_move_leaf"] == leaf]]
+            motion.resume(
+                float(end["end_target_opening"][leaf]), float(end["end_ordered_opening"][leaf]), remaining, moves
+            )
+        self.decisions.take_over(end)
+
     def act(self, time: int) -> None:
-        """Carry out what is due at a stop [ms of the period], the forcing being set to it."""
+        """Do what is due at a stop [ms of the period], the forcing being set to it: orders first, then rules."""
+        for motion in self.motions:
+            motion.halt_if_stuck(time)
         while self.orders and self.orders[0].at <= time:
             self._carry_out(self.orders.pop(0), time)
+        self.decisions.act(time, self._move)
 
     def arrive(self, time: int) -> None:
         """Bring the leaves to where they are at a stop."""
@@ -57,72 +78,64 @@ class Operations:
         return _order_arrays(done)
 
     def end_state(self, time: int) -> dict[str, np.ndarray]:
-        """Where the leaves stand and go, by variable name."""
+        """Where the leaves stand and go, the moves of the last hour, and what the rules keep, by variable name."""
+        moves = [
+            (leaf, time - at) for leaf, motion in enumerate(self.motions) for at in motion.moves_within_an_hour(time)
+        ]
         return {
+            **self.decisions.end_state(),
+            "end_move_leaf": np.array([leaf for leaf, _ in moves], np.int32),
+            "end_move_age": np.array([age / 1000.0 for _, age in moves], float),
             "end_opening": np.array([motion.opening for motion in self.motions]),
             "end_target_opening": np.array([motion.target for motion in self.motions]),
             "end_ordered_opening": np.array([motion.ordered for motion in self.motions]),
             "end_motion_remaining": np.array([motion.remaining(time) / 1000.0 for motion in self.motions]),
         }
 
-    def take_over(self, end: dict[str, np.ndarray]) -> None:
-        """Go on from the end state of the run before."""
-        for k, motion in enumerate(self.motions):
-            remaining = round(float(end["end_motion_remaining"][k]) * 1000.0)
-            motion.resume(float(end["end_target_opening"][k]), float(end["end_ordered_opening"][k]), remaining)
-
     def _carry_out(self, order: Order, time: int) -> None:
-        g = self._index(order)
-        up, down = self._levels(g)
         for motion in self._moved_by(order):
-            wanted, note = self._wanted_opening(order, motion, up, down)
+            wanted, note = self._wanted_opening(order, motion)
             opening = motion.opening
-            record = motion.order(time, order.kind, order.value, wanted, note)
-            self.records.append(record)
-            if not (record.is_final and math.isnan(record.completed)):
-                self.unrest.note_move(time, g, up, down, opening, motion)
+            self._note(motion.order(time, order.kind, order.value, wanted, note), opening, motion)
+
+    def _move(self, gate: str, kind: str, wanted: float) -> tuple[OrderRecord | None, bool]:
+        """Have all leaves of a gate carry out what a rule wants."""
+        done, is_limited = None, False
+        for motion in self._leaves(gate):
+            opening = motion.opening
+            record, is_held_back = motion.propose(self.present.time_ms, kind, wanted)
+            if record is not None:
+                self._note(record, opening, motion)
+            done, is_limited = done or record, is_limited or is_held_back
+        return done, is_limited
+
+    def _note(self, record: OrderRecord, opening: float, motion: GateMotion) -> None:
+        """Keep a record, and what the move of a leaf that it is of leaves unsettled; `opening` [m] is that before."""
+        self.records.append(record)
+        if record.is_final and math.isnan(record.completed):
+            return
+        g = self.network.names.gates.index(record.gate)
+        up, down = self.present.headwater_level(record.gate), self.present.tailwater_level(record.gate)
+        self.unrest.note_move(record.time, g, up, down, opening, motion)
+
+    def _leaves(self, gate: str) -> list[GateMotion]:
+        return [self.motions[leaf] for leaf in self.network.leaves_of(self.network.names.gates.index(gate))]
 
     def _moved_by(self, order: Order) -> list[GateMotion]:
-        """The leaf that an order names, or all of its gate."""
-        motions = [self.motions[leaf] for leaf in self.network.leaves_of(self._index(order))]
-        return [motion for motion in motions if order.bay in (0, motion.bay)]
+        return [motion for motion in self._leaves(order.gate) if order.bay in (0, motion.bay)]
 
-    def _levels(self, g: int) -> tuple[float, float]:
-        """Headwater and tailwater level of a gate [m]."""
-        return gate_levels(
-            self.network.tables.gates[g], self.state.nodes.level, self.network.node_count,
-            self.forcing.value[FORCING_HEAD], self.forcing.value[FORCING_TAIL],
-        )  # fmt: skip
-
-    def _index(self, order: Order) -> int:
-        return self.network.names.gates.index(order.gate)
-
-    def _wanted_opening(self, order: Order, motion: GateMotion, up: float, down: float) -> tuple[float, str]:
-        """The opening that an order asks of a leaf; a discharge is that of the bay it names, or of the whole gate."""
+    def _wanted_opening(self, order: Order, motion: GateMotion) -> tuple[float, str]:
+        """The opening [m] that an order asks of a leaf, and how it falls short of the discharge of its bay or gate."""
         if order.kind == "opening":
             return order.value, ""
         if order.kind == "by":
             return motion.ordered + order.value, ""
-        row, shapes = self.network.tables.gates[self._index(order)], self.network.channel.shapes
-        shares = motion.gate.bays if order.bay else 1
-        opening, of_gate = opening_for_discharge(
-            law_of(row), shapes[row.upstream_section], shapes[row.downstream_section], up, down,
-            order.value * shares, motion.gate.max_opening,
-        )  # fmt: skip
-        passed = of_gate / shares
+        what, shares = ("bay", motion.gate.bays) if order.bay else ("gate", 1)
+        opening = self.present.opening_for(order.gate, order.value * shares)
+        passed = self.present.discharge_at(order.gate, opening) / shares
         if abs(passed - order.value) > 1e-3 + 1e-6 * abs(order.value):
-            return (
-                opening,
-                f"the {'bay' if order.bay else 'gate'} passes {passed:.3f} m3/s at {opening:.3f} m with the present levels",
-            )
+            return opening, f"the {what} passes {passed:.3f} m3/s at {opening:.3f} m with the present levels"
         return opening, ""
-
-
-def _places(network: Network) -> list[tuple[int, int]]:
-    """Gate and number of the bay of every leaf; 0 where it moves all bays."""
-    tables = network.tables
-    numbers = np.arange(tables.leaves.size) - tables.gates.first_leaf[tables.leaves.gate] + 1
-    return list(zip(tables.leaves.gate.tolist(), np.where(tables.leaves.bay < 0, 0, numbers).tolist(), strict=True))
 
 
 def _order_arrays(records: list[OrderRecord]) -> dict[str, np.ndarray]:
@@ -135,6 +148,7 @@ def _order_arrays(records: list[OrderRecord]) -> dict[str, np.ndarray]:
         "order_opening_before": np.array([record.before for record in records], float),
         "order_opening_after": np.array([record.after for record in records], float),
         "order_completed": np.array([record.completed / 1000.0 for record in records], float),
+        "order_source": np.array([record.source for record in records], object),
         "order_status": np.array([record.status for record in records], np.int8),
         "order_reason": np.array([record.reason for record in records], object),
     }

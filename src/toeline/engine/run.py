@@ -45,10 +45,11 @@ class Run:
         self.unrest = Unrest(network, self.state, self.watch, timetable.length)
         self.operations = Operations(network, timetable, self.state, self.forcing, self.unrest, openings)
         self._take_over(start) if isinstance(start, dict) else self._start_at(start)
+        self.operations.begin(start if isinstance(start, dict) else None)
         self.watch.start_storage[0] = self._storage()
 
     def go(self, progress: Callable[[float], None] | None = None) -> None:
-        """Step to the end of the period; raises RunError where no step can be solved."""
+        """Step to the end of the period; raises RunError where no step can be solved or a rule fails."""
         stops = self.timetable.stops()
         while self.time < self.timetable.length:
             self._act()
@@ -92,13 +93,14 @@ class Run:
         self.pace.next_step = end["end_next_step"]
         self.forcing.rate = end["end_rate"]
         self.watch.roughness_factor[:] = end["end_roughness_factor"]
-        self.operations.take_over(end)
         self.unrest.take_over(end)
 
     def _storage(self) -> float:
-        """Volume in the canal [m³], added up in the order of the output so that its change begins at zero."""
-        volume = self.state.nodes.volume
-        return sum(sum(volume[pool.first_node : pool.last_node + 1].tolist()) for pool in self.tables.pools)
+        """Volume in the canal [m³], summed in the order of the output, so that the ledger starts at zero."""
+        storage = 0.0
+        for pool in self.tables.pools:
+            storage += float(np.cumsum(self.state.nodes.volume[pool.first_node : pool.last_node + 1])[-1])
+        return storage
 
     def _new_pace(self) -> np.recarray:
         timetable, pace = self.timetable, zeros(1, PACE)
@@ -137,7 +139,11 @@ class Run:
         self.forcing.value = self.timetable.values_at(self.time)
         if self.time > 0:
             self.unrest.note_changes(self.time, before, self.forcing.value)
-        self.operations.act(self.time)
+        try:
+            self.operations.act(self.time)
+        except RunError as error:
+            self.flush()
+            raise RunError(f"{self.time / 1000.0:.0f} s after the start: {error}") from error
 
     def _leg(self, until: int) -> None:
         """Advance to the next stop."""

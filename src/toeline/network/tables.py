@@ -170,6 +170,12 @@ class Network:
         first = int(self.tables.gates.first_leaf[g])
         return range(first, first + int(self.tables.gates.leaf_count[g]))
 
+    def places_of_leaves(self) -> list[tuple[int, int]]:
+        """Gate and number of the bay of every leaf; 0 where it stands for all bays."""
+        gates, leaves = self.tables.gates, self.tables.leaves
+        numbers = np.arange(leaves.size) - gates.first_leaf[leaves.gate] + 1
+        return list(zip(leaves.gate.tolist(), np.where(leaves.bay < 0, 0, numbers).tolist(), strict=True))
+
     @property
     def offtake_count(self) -> int:
         return self.tables.offtakes.size
@@ -210,6 +216,9 @@ class Names:
     bank_level: np.ndarray  # (canal nodes) m, NaN where none
     target_level: np.ndarray  # (p) m, NaN where none
     max_opening: np.ndarray  # (g) m
+    smallest_move: np.ndarray  # (g) m
+    turn: np.ndarray  # (g) m, NaN where none
+    scale_mark: np.ndarray  # (g) m, NaN where none
 
 
 class GaugeName(NamedTuple):

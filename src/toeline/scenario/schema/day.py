@@ -22,6 +22,9 @@ TO_HOLD_TARGETS = "to hold targets"
 OpeningOfGate = float | tuple[float, ...]
 """The opening of a gate [m], or those of its separate bays."""
 
+MARKS_OF_ROUNDING = {"turns": "turn", "scale marks": "scale_mark"}
+"""The key of a gate that gives the spacing for each way of rounding openings."""
+
 
 @dataclass(frozen=True)
 class Zone(ValueKind):
@@ -171,4 +174,9 @@ class Day(Table):
     tail: LevelSeries | None = Field(None, description="Level beyond the end, where it changes during the day.")
     losses: LossesOfDay = Field(default_factory=LossesOfDay, description="Evaporation and rain of the day.")
     start: Start = Field(description="The state of the canal at the start.")
+    round_openings: Literal["turns", "scale marks"] | None = Field(
+        None,
+        description="What openings are rounded to before they are simulated: whole turns of the handwheel (turn) or "
+        "marks of the scale (scale_mark) of each gate that has them. Left out: not rounded.",
+    )
     plans: dict[Name, Plan] = Field({}, description="Ways of operating the day, by name.")
