@@ -67,7 +67,7 @@ def _start(scenario: Scenario, network: Network, timetable: Timetable) -> Start 
     nodes = network.channel.nodes[: network.canal_node_count]
     return read_end_state(
         scenario.start_file, start=scenario.day.period.start, chainage=nodes["chainage"], bed_level=nodes["bed_level"],
-        gates=network.names.gates,
+        labels={"gate": network.names.gates, "bay": network.names.bays, "offtake": network.names.offtakes},
     )  # fmt: skip
 
 

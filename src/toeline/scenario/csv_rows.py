@@ -94,9 +94,7 @@ def _rows(
 
 def number_or_text(cell: str) -> float | str:
     """Give the number in a cell that holds one alone, else its text, which may be a number with a unit."""
-    for number in (int, float):
-        try:
-            return number(cell)
-        except ValueError:
-            continue
-    return cell
+    try:
+        return float(cell)
+    except ValueError:
+        return cell

@@ -19,8 +19,7 @@ from toeline.scenario.schema.value_kinds import Moment, Quantity, ValueKind, Who
 from toeline.units import UnitSystem
 
 _ACTIONS = ("opening", "by", "discharge")
-_NUMBERS = ("bay", *_ACTIONS)
-_COLUMNS = Columns(("at", "gate"), _NUMBERS)
+_COLUMNS = Columns(("at", "gate"), ("bay", *_ACTIONS))
 
 
 class OrderEntry(Table):
@@ -81,7 +80,7 @@ class OrdersKind(ValueKind):
         file = reading_of(info).read_csv(name, _COLUMNS)
         orders = []
         for line, row in file.rows:
-            entry = {key: number_or_text(cell) if key in _NUMBERS else cell for key, cell in row.items()}
+            entry = {key: _cell(key, cell) for key, cell in row.items()}
             try:
                 orders.append(OrderEntry.model_validate(entry, context=info.context).order(str(file.path), line))
             except ValidationError as error:
@@ -113,6 +112,13 @@ class StuckEntry(Table):
     def stuck(self) -> Stuck:
         """Give the spell."""
         return Stuck(self.gate, self.begin, self.until)
+
+
+def _cell(key: str, cell: str) -> Any:
+    """The value in a cell of a row: a number where its column takes one."""
+    if key == "bay" and cell.isdecimal():
+        return int(cell)
+    return number_or_text(cell) if key in _ACTIONS else cell
 
 
 class Plan(Table):
