@@ -45,7 +45,7 @@ def test_gate_passes_the_sum_of_its_bays_each_by_the_law_at_its_opening(tmp_path
 
 
 def test_jet_and_jump_are_those_of_the_bay_with_the_largest_unit_discharge(tmp_path):
-    """Contraction 0.61 of the wider opening; the power is that of all that the gate passes, with the head lost there."""
+    """Contraction 0.61 of the wider opening; the power is that of all that the gate passes and the head lost there."""
     run = run_of(tmp_path, openings={"G0": [0.15, 0.75], "G1": 0.5}, length="30 min").isel(time=0, gate=0)
     unit_discharge = float(run.bay_discharge[1]) / 2.5
     assert run.jet_depth == pytest.approx(0.61 * 0.75, rel=1e-6)

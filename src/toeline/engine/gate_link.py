@@ -59,9 +59,10 @@ def leaves_discharge_at(shapes, gate, level_up, level_down, forcing):
     """Discharge of a gate row [m³/s] with every leaf at its own opening: each passes its share of what the gate would
     pass with all leaves there.
     """
-    total = 0.0
-    for k in range(gate.leaf_count):
-        total += gate_discharge_at(shapes, gate, level_up, level_down, leaf_opening(forcing, gate, k))
+    law, above, beside = law_of(gate), shapes[gate.upstream_section], shapes[gate.downstream_section]
+    total = gate_discharge(law, above, beside, level_up, level_down, leaf_opening(forcing, gate, 0))
+    for k in range(1, gate.leaf_count):
+        total += gate_discharge(law, above, beside, level_up, level_down, leaf_opening(forcing, gate, k))
     return total / gate.leaf_count
 
 
