@@ -66,7 +66,7 @@ def start_of(scenario: Scenario, network: Network, timetable: Timetable) -> Star
     nodes = network.channel.nodes[: network.canal_node_count]
     return read_end_state(
         scenario.start_file, start=scenario.day.period.start, chainage=nodes["chainage"], bed_level=nodes["bed_level"],
-        gates=network.names.gates,
+        labels={"gate": network.names.gates, "bay": network.names.bays, "offtake": network.names.offtakes},
     )  # fmt: skip
 
 
@@ -137,6 +137,10 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
         ),
         "gate_downstream_pool": np.array(
             [beside[np.searchsorted(pools.last_node, down)] for down in gates.downstream_node], object
+        ),
+        "bay": np.array(names.bays, object),
+        "bay_gate": np.array(
+            [names.gates[g] for g in network.tables.leaves.gate[network.tables.leaves.bay >= 0]], object
         ),
         "pool": np.array(names.pools, object),
         "pool_length": chainage[pools.last_node] - chainage[pools.first_node],

@@ -23,7 +23,7 @@ CASES = [
         'units = "metric"\nlimits = []',
         [
             'canal.toml:3: limits: unknown key; known: "name", "units", "sections", "surfaces", "pools", '
-            '"gates", "offtakes", "head", "tail"',
+            '"gates", "offtakes", "escapes", "gauges", "losses", "roughness_calendar", "head", "tail"',
         ],
     ),
     (

@@ -140,7 +140,7 @@ CASES = [
         "orders = 7",
         [
             "day.toml:35: plans from_file orders: found 7; allowed: an array of orders, or the name of a CSV "
-            "file with the columns at,gate,opening,by,discharge",
+            "file with the columns at,gate,bay,opening,by,discharge",
         ],
     ),
     (

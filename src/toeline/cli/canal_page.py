@@ -69,7 +69,8 @@ def _protected_length(pool: "Pool", canal: "Canal") -> float:
 
 
 def _gate_row(gate: "Gate", display: Display) -> tuple[str, ...]:
-    bays = f"{gate.bays} of {display.length(gate.bay_width)}"
+    apart = ", separate" if gate.separate_bays else ""
+    bays = f"{gate.bays} of {display.length(gate.bay_width)}{apart}"
     hoist = "at once" if gate.hoist_speed is None else display.speed(gate.hoist_speed)
     levels = (display.level(gate.sill_level), display.opening(gate.max_opening))
     return (gate.name, gate.kind, bays, *levels, hoist)

@@ -85,4 +85,5 @@ def _stuck_words(stuck: "Stuck", start: datetime) -> str:
 def _order_row(order: "Order", scenario: "Scenario") -> tuple[str, ...]:
     start = scenario.day.period.start
     words = order_words(order.kind, order.value, scenario.display)
-    return (clock_text(later(start, order.at / 1000), start), order.gate, words)
+    place = f"{order.gate}, bay {order.bay}" if order.bay else order.gate
+    return (clock_text(later(start, order.at / 1000), start), place, words)

@@ -5,7 +5,7 @@ from typing import NamedTuple
 
 import numpy as np
 
-from toeline.engine.gate_link import gate_levels
+from toeline.engine.gate_link import gate_discharge_at, gate_levels, leaf_opening
 from toeline.engine.near_gate import judge_gate
 from toeline.engine.step import DIAGONAL, GAMMA, pool_end_link, weighted
 from toeline.hydraulics.cross_section import geometry
@@ -95,8 +95,10 @@ def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at,
         if link.kind == GATE:
             gate, out, guard = tables.gates[link.gate], rows.gates[row, link.gate], watch.gates[link.gate]
             up, down = gate_levels(gate, watch.level, before.nodes.size, head_level, tail_level)
-            opening = forcing[FORCING_GATES + link.gate].now
+            opening = ruling_opening(tables.channel.shapes, gate, up, down, forcing)
             watch.discharge[index] = judge_gate(tables.channel, gate, up, down, opening, watch.level, watch.jet, out)
+            if gate.leaf_count > 1:
+                watch.discharge[index] = fill_bays(tables, gate, up, down, forcing, rows.bays[row], out)
             out.surge_height_bound_upstream = guard.surge_upstream if time_ms < guard.surge_upstream_until else 0.0
             out.surge_height_bound_downstream = (
                 guard.surge_downstream if time_ms < guard.surge_downstream_until else 0.0
@@ -108,6 +110,41 @@ def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at,
     canal = rows.canal[row]
     canal.time = time_ms
     fill_canal(watch, rows.pools[row], canal, left)
+
+
+@inner_kernel
+def ruling_opening(shapes, gate, up, down, forcing):
+    """Opening [m] of the bay with the largest unit discharge, by which the jump of the gate is judged."""
+    ruling, most = leaf_opening(forcing, gate, 0), -1.0
+    if gate.leaf_count == 1:
+        return ruling
+    for k in range(gate.leaf_count):
+        opening = leaf_opening(forcing, gate, k)
+        passed = abs(gate_discharge_at(shapes, gate, up, down, opening))
+        if passed > most:
+            ruling, most = opening, passed
+    return ruling
+
+
+@inner_kernel
+def fill_bays(tables, gate, up, down, forcing, bays, out):
+    """Fill the bays of a gate that move apart, and what the gate's record says of all of them: mean opening, discharge
+    and the power of that discharge. Returns the discharge [m³/s].
+    """
+    opened = passed = 0.0
+    ruling = out.gate_discharge
+    for k in range(gate.leaf_count):
+        bay = bays[tables.leaves[gate.first_leaf + k].bay]
+        bay.bay_opening = leaf_opening(forcing, gate, k)
+        discharge = gate_discharge_at(tables.channel.shapes, gate, up, down, bay.bay_opening)
+        bay.bay_discharge = discharge / gate.leaf_count
+        opened += bay.bay_opening / gate.leaf_count
+        passed += discharge
+    passed /= gate.leaf_count
+    out.gate_opening, out.gate_discharge = opened, passed
+    if ruling != 0.0:
+        out.jump_power *= passed / ruling
+    return passed
 
 
 @inner_kernel
@@ -159,7 +196,7 @@ def total_at(shares, h, total, start, middle, end):
 @inner_kernel
 def fill_offtakes(tables, before, middle, after, totals, out, h, shares, forcing):
     """Fill a row of offtakes; returns the volume delivered by all [m³]."""
-    first_demand = FORCING_GATES + tables.gates.size
+    first_demand = FORCING_GATES + tables.leaves.size
     delivered = 0.0
     for k in range(before.delivery.size):
         start, inner, end = before.delivery[k], middle.delivery[k], after.delivery[k]

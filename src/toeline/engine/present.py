@@ -58,10 +58,10 @@ class PresentCanal:
         return float(self.forcing.value[FORCING_TAIL] if is_beyond else self.state.nodes.level[node])
 
     def opening(self, gate: str) -> float:
-        return self.motions[self._gates[gate]].opening
+        return float(np.mean([self.motions[leaf].opening for leaf in self.network.leaves_of(self._gates[gate])]))
 
     def ordered_opening(self, gate: str) -> float:
-        return self.motions[self._gates[gate]].ordered
+        return float(np.mean([self.motions[leaf].ordered for leaf in self.network.leaves_of(self._gates[gate])]))
 
     def discharge(self, gate: str) -> float:
         return float(self.state.links.discharge[self._links[self._gates[gate]]])
@@ -72,7 +72,7 @@ class PresentCanal:
 
     def opening_for(self, gate: str, discharge: float) -> float:
         g = self._gates[gate]
-        largest = self.motions[g].gate.max_opening
+        largest = self.timetable.gates[g].max_opening
         levels = self.headwater_level(gate), self.tailwater_level(gate)
         return float(opening_for_discharge(*self._laws[g], *levels, discharge, largest)[0])
 

@@ -52,6 +52,8 @@ POOL_OUTPUT = np.dtype(
     ]
 )
 
+BAY_OUTPUT = np.dtype([("bay_opening", float), ("bay_discharge", float)])
+
 OFFTAKE_OUTPUT = np.dtype([("demand", float), ("delivery", float), ("delivery_volume", float)])
 
 ESCAPE_OUTPUT = np.dtype([("escape_discharge", float), ("escape_volume", float)])
@@ -78,6 +80,7 @@ class Rows(NamedTuple):
 
     canal: np.recarray  # (rows) of CANAL_OUTPUT
     gates: np.recarray  # (rows, g) of GATE_OUTPUT
+    bays: np.recarray  # (rows, bays that move apart) of BAY_OUTPUT
     pools: np.recarray  # (rows, p) of POOL_OUTPUT
     offtakes: np.recarray  # (rows, d) of OFFTAKE_OUTPUT
     escapes: np.recarray  # (rows, e) of ESCAPE_OUTPUT
@@ -96,6 +99,7 @@ def new_rows(rows: int, profile_rows: int, network: Network) -> Rows:
     return Rows(
         block(CANAL_OUTPUT, rows),
         block(GATE_OUTPUT, rows, network.gate_count),
+        block(BAY_OUTPUT, rows, network.bay_count),
         block(POOL_OUTPUT, rows, network.pool_count),
         block(OFFTAKE_OUTPUT, rows, network.offtake_count),
         block(ESCAPE_OUTPUT, rows, network.escape_count),
@@ -110,7 +114,7 @@ def filled_block(rows: Rows) -> dict[str, np.ndarray]:
     """The filled part of a block as copies by variable name."""
     count, profile_count = rows.filled
     block = {"profile_time": rows.profile_time[:profile_count].copy()}
-    for table, size in ((rows.canal, count), (rows.gates, count), (rows.pools, count), (rows.offtakes, count),
-                        (rows.escapes, count), (rows.gauges, count), (rows.profiles, profile_count)):  # fmt: skip
+    by_row = (rows.canal, rows.gates, rows.bays, rows.pools, rows.offtakes, rows.escapes, rows.gauges)
+    for table, size in (*((table, count) for table in by_row), (rows.profiles, profile_count)):
         block |= {name: np.ascontiguousarray(table[:size][name]) for name in table.dtype.names or ()}
     return block

@@ -147,11 +147,11 @@ class Run:
 
     def _leg(self, until: int) -> None:
         """Advance to the next stop."""
-        gates = slice(FORCING_GATES, FORCING_GATES + self.network.gate_count)
-        self.forcing.value[gates] = [motion.opening for motion in self.operations.motions]
+        leaves = slice(FORCING_GATES, FORCING_GATES + self.network.leaf_count)
+        self.forcing.value[leaves] = [motion.opening for motion in self.operations.motions]
         before = self.forcing.rate.copy()
         self.forcing.rate = self.timetable.rates_between(self.time, until)
-        self.forcing.rate[gates] = [motion.rate() for motion in self.operations.motions]
+        self.forcing.rate[leaves] = [motion.rate() for motion in self.operations.motions]
         has_kink = self._change_roughness() or bool(np.any(np.abs(self.forcing.rate - before) > SAME_RATE))
         self.pace.leg_start, self.pace.done = self.time, 0.0
         seconds, outcome = (until - self.time) / 1000.0, None

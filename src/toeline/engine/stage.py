@@ -36,7 +36,7 @@ def set_sources(tables, state, forcing, work):
 def set_deliveries(tables, nodes, forcing, work, delivery):
     """Deliveries at the present levels, and what they take from each node."""
     count = tables.offtakes.size
-    first_demand = FORCING_GATES + tables.gates.size
+    first_demand = FORCING_GATES + tables.leaves.size
     for k in range(count):
         take = tables.offtakes[k]
         demand, opening = forcing[first_demand + k].now, forcing[first_demand + count + k].now

@@ -23,12 +23,13 @@ class Unrest:
         self.network, self.state, self.watch, self.length = network, state, watch, length
 
     def note_move(self, time: int, g: int, up: float, down: float, opening: float, motion: GateMotion) -> None:
-        """Surge bounds of a move of gate `g` from `opening` [m] at the levels beside it, and until when both pools
-        settle.
+        """Surge bounds of a move of a leaf of gate `g` from `opening` [m] at the levels beside it, and until when both
+        pools settle.
         """
         tables = self.network.tables
+        before = self.state.links.discharge[np.flatnonzero(tables.links.gate == g)[0]]
         up_height, down_height, change = surge_bounds(
-            tables.channel.shapes, tables.gates[g], up, down, opening, motion.target
+            tables.channel.shapes, tables.gates[g], up, down, before, opening, motion.target
         )
         if abs(change) < LEAST_CHANGE:
             return
@@ -46,7 +47,7 @@ class Unrest:
         """Pools that a change of inflow, of the tail level or of a delivery leaves settling."""
         changed = np.abs(now - before) > LEAST_CHANGE
         network, tables = self.network, self.network.tables
-        first = FORCING_GATES + network.gate_count
+        first = FORCING_GATES + network.leaf_count
         pools = set()
         if changed[FORCING_HEAD] and tables.links.gate[0] < 0:
             pools.add(0)

@@ -19,6 +19,7 @@ from toeline.network.tables import (
     GAUGE,
     HEAD,
     INFLOW,
+    LEAF,
     LINK,
     NORMAL_DEPTH,
     OFFTAKE,
@@ -60,6 +61,7 @@ def network_of(canal: Canal, spacing: float) -> Network:
         cells=_cells(canal, lines, channel, canal_nodes, has_basin),
         links=_links(canal, lines, canal_nodes, has_basin),
         gates=_gates(canal, lines, channel, shapes),
+        leaves=_leaves(canal),
         offtakes=_offtakes(canal, lines, channel),
         escapes=_escapes(canal, lines),
         gauges=_gauges(canal, lines, channel),
@@ -176,7 +178,7 @@ def _gate_links(canal: Canal, lines: list[Line]) -> list[int]:
 
 def _gates(canal: Canal, lines: list[Line], channel: Channel, shapes: _Shapes) -> np.recarray:
     names = [pool.name for pool in canal.pools] + ["tail"]
-    rows = []
+    rows, first_leaf = [], 0
     for gate in canal.gates:
         line = lines[names.index(gate.downstream)]
         up = HEAD if gate.upstream == "head" else lines[names.index(gate.upstream)].last_index
@@ -188,8 +190,17 @@ def _gates(canal: Canal, lines: list[Line], channel: Channel, shapes: _Shapes) -
         )
         apron, protection = protected_ends(canal, line)
         protected = line.first_index + max(1, sum(node.distance <= protection for node in line.nodes) - 1)
-        rows.append((*law, up, line.first_index, *sections, line.last_index, protected, apron, protection))
+        leaves = (first_leaf, gate.leaf_count)
+        rows.append((*law, up, line.first_index, *sections, line.last_index, protected, apron, protection, *leaves))
+        first_leaf += gate.leaf_count
     return np.array(rows, GATE_ROW).view(np.recarray)
+
+
+def _leaves(canal: Canal) -> np.recarray:
+    """The leaves of all gates, those of bays that move apart numbered through."""
+    gates = [g for g, gate in enumerate(canal.gates) for _ in range(gate.leaf_count)]
+    is_apart = np.array([canal.gates[g].separate_bays for g in gates], bool)
+    return records(LEAF, gate=gates, bay=np.where(is_apart, np.cumsum(is_apart) - 1, -1))
 
 
 def gate_law(gate: Gate, floor_level: float, upstream_bed_level: float) -> UnderflowGate:
@@ -299,6 +310,7 @@ def _names(canal: Canal, lines: list[Line], canal_nodes: int) -> Names:
     return Names(
         pools=tuple(pool.name for pool in canal.pools),
         gates=tuple(gate.name for gate in canal.gates),
+        bays=tuple(f"{g.name}, bay {k + 1}" for g in canal.gates if g.separate_bays for k in range(g.bays)),
         offtakes=tuple(take.name for take in canal.offtakes),
         escapes=tuple(escape.name for escape in canal.escapes),
         gauges=tuple(_gauge_name(canal, gauge) for gauge in canal.gauges),

@@ -47,7 +47,7 @@ HeadwaterOf = Callable[[int, float, float], float]
 
 @dataclass(frozen=True)
 class Start:
-    """Levels by node [m], discharges by link [m³/s] and gate openings [m] of the steady state."""
+    """Levels by node [m], discharges by link [m³/s] and openings of the leaves [m] of the steady state."""
 
     level: np.ndarray
     discharge: np.ndarray
@@ -88,7 +88,7 @@ def steady_at_targets(
     search = _Search(network, tail_level, demands)
     level, discharge = search.settle(lambda _: inflow, lambda g, q, down: names.target_level[_pool_above(network, g)])
     openings = np.array(
-        [search.opening(g, level, discharge, head_level, largest[g]) for g in range(network.gate_count)]
+        [search.opening(g, level, discharge, head_level, largest[g]) for g in tables.leaves.gate.tolist()]
     )
     return Start(level, discharge, openings)
 
@@ -96,9 +96,11 @@ def steady_at_targets(
 def steady_at_openings(
     network: Network, inflow: float, tail_level: float, demands: Demands, openings: np.ndarray
 ) -> Start:
-    """Steady state for an inflow and given openings; raises UsageError where a gate cannot pass its share."""
+    """Steady state for an inflow and given openings of the leaves [m]; raises UsageError where a gate cannot pass its
+    share.
+    """
     search = _Search(network, tail_level, demands)
-    level, discharge = search.settle(lambda _: inflow, lambda g, q, down: search.headwater(g, q, down, openings[g]))
+    level, discharge = search.settle(lambda _: inflow, lambda g, q, down: search.headwater(g, q, down, openings))
     return Start(level, discharge, np.asarray(openings, float))
 
 
@@ -110,8 +112,8 @@ def steady_under_reservoir(
     """
     search = _Search(network, tail_level, demands)
     level, discharge = search.settle(
-        lambda down: search.passed(0, head_level, down, openings[0]),
-        lambda g, q, down: search.headwater(g, q, down, openings[g]),
+        lambda down: search.passed(0, head_level, down, openings),
+        lambda g, q, down: search.headwater(g, q, down, openings),
     )
     return Start(level, discharge, np.asarray(openings, float))
 
@@ -265,25 +267,27 @@ class _Search:
         law = UnderflowGate(*(float(row[name]) for name in UnderflowGate._fields))
         return law, shapes[row.upstream_section], shapes[row.downstream_section]
 
-    def passed(self, g: int, up: float, down: float, opening: float) -> float:
-        """Discharge of a gate [m³/s]."""
+    def passed(self, g: int, up: float, down: float, openings: np.ndarray) -> float:
+        """Discharge of a gate [m³/s] with the openings of all leaves [m]."""
         law, above, beside = self._law(g)
-        return gate_discharge(law, above, beside, up, down, opening)
+        leaves = self.network.leaves_of(g)
+        return sum(gate_discharge(law, above, beside, up, down, openings[leaf]) for leaf in leaves) / len(leaves)
 
-    def headwater(self, g: int, q: float, below: float, opening: float) -> float:
+    def headwater(self, g: int, q: float, below: float, openings: np.ndarray) -> float:
         """Level above a gate [m] at which it passes a discharge; its sill or the level below where nothing flows."""
         low = max(below, self.network.tables.gates.sill_level[g])
         if q <= 1e-12:
             return low
         high = low + DEEPEST
-        if self.passed(g, high, below, opening) < q:
+        if self.passed(g, high, below, openings) < q:
+            mean = np.mean(openings[self.network.leaves_of(g)])
             raise UsageError(
-                f"no steady state: {self.network.names.gates[g]} at an opening of {opening:.3f} m "
+                f"no steady state: {self.network.names.gates[g]} at an opening of {mean:.3f} m "
                 f"would have to pass {q:.3f} m3/s; open it further or start otherwise"
             )
         for _ in range(80):
             middle = 0.5 * (low + high)
-            low, high = (low, middle) if self.passed(g, middle, below, opening) > q else (middle, high)
+            low, high = (low, middle) if self.passed(g, middle, below, openings) > q else (middle, high)
         return 0.5 * (low + high)
 
     def opening(self, g: int, level: np.ndarray, discharge: np.ndarray, head_level: float, largest: float) -> float:

@@ -22,6 +22,8 @@ from toeline.network.tables import (
 )
 from toeline.network.timetable import Timetable
 from toeline.scenario import Scenario
+from toeline.scenario.schema.canal import Canal
+from toeline.scenario.schema.day import OpeningOfGate
 
 
 def starting_state(scenario: Scenario, network: Network, timetable: Timetable) -> Start:
@@ -32,7 +34,7 @@ def starting_state(scenario: Scenario, network: Network, timetable: Timetable) -
     """
     start, canal = scenario.day.start, scenario.canal
     forcing = timetable.values_at(0)
-    first, count = FORCING_GATES + network.gate_count, network.offtake_count
+    first, count = FORCING_GATES + network.leaf_count, network.offtake_count
     demands = Demands(
         np.nan_to_num(forcing[first : first + count]),
         forcing[first + count :],
@@ -46,7 +48,7 @@ def starting_state(scenario: Scenario, network: Network, timetable: Timetable) -
         if not isinstance(start.openings, dict):
             largest = [gate.max_opening for gate in canal.gates]
             return steady_at_targets(network, inflow, tail_level, head_level, demands, largest)
-        openings = np.array([start.openings.get(gate.name, 0.0) for gate in canal.gates])
+        openings = leaf_openings(start.openings, canal)
         if start.state == "dry":
             return dry_state(network, openings)
         if canal.head.kind == "inflow":
@@ -54,6 +56,12 @@ def starting_state(scenario: Scenario, network: Network, timetable: Timetable) -
         return steady_under_reservoir(network, head_level, tail_level, demands, openings)
     except UsageError as error:
         raise ScenarioError([scenario.fault(str(error), "start", file="day")]) from None
+
+
+def leaf_openings(openings: dict[str, OpeningOfGate], canal: Canal) -> np.ndarray:
+    """Openings of all leaves [m] from those by gate: one of a gate is that of all its leaves."""
+    by_gate = [np.broadcast_to(openings.get(gate.name, 0.0), gate.leaf_count) for gate in canal.gates]
+    return np.concatenate([np.empty(0), *by_gate])
 
 
 def check_mild(scenario: Scenario, timetable: Timetable) -> None:

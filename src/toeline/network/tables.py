@@ -20,7 +20,7 @@ HEAD, TAIL = -1, -2
 
 FORCING_HEAD, FORCING_TAIL, FORCING_EVAPORATION, FORCING_RAIN, FORCING_GATES = range(5)
 """Where the forcing array holds the inflow or head level, the tail level, evaporation and rain [m/s] and, from there
-on, gate openings.
+on, openings of leaves.
 """
 
 
@@ -55,9 +55,18 @@ GATE_ROW = np.dtype(
         ("protection_last", np.int64),  # last node of its protected floor, at least one below the first
         ("apron_end", float),  # m from the gate
         ("protection_end", float),  # m from the gate
+        ("first_leaf", np.int64),  # one leaf for all bays, or one a bay
+        ("leaf_count", np.int64),
     ]
 )
-"""A gate: the fields of its law, and where it stands."""
+"""A gate: the fields of its law, where it stands, and what moves it."""
+
+LEAF = np.dtype(
+    [
+        ("gate", np.int64),
+        ("bay", np.int64),  # row of bays that move apart, -1 where the leaf stands for all bays of its gate
+    ]
+)
 
 OFFTAKE = np.dtype(
     [
@@ -99,6 +108,7 @@ class Tables(NamedTuple):
     cells: np.recarray  # (n) of CELL
     links: np.recarray  # (n + 1) of LINK
     gates: np.recarray  # (g) of GATE_ROW
+    leaves: np.recarray  # (l) of LEAF
     offtakes: np.recarray  # (d) of OFFTAKE
     escapes: np.recarray  # (e) of ESCAPE
     gauges: np.recarray  # (u) of GAUGE
@@ -147,6 +157,26 @@ class Network:
         return self.tables.gates.size
 
     @property
+    def leaf_count(self) -> int:
+        return self.tables.leaves.size
+
+    @property
+    def bay_count(self) -> int:
+        """Bays of gates whose bays move apart."""
+        return len(self.names.bays)
+
+    def leaves_of(self, g: int) -> range:
+        """Rows of the leaves of a gate."""
+        first = int(self.tables.gates.first_leaf[g])
+        return range(first, first + int(self.tables.gates.leaf_count[g]))
+
+    def places_of_leaves(self) -> list[tuple[int, int]]:
+        """Gate and number of the bay of every leaf; 0 where it stands for all bays."""
+        gates, leaves = self.tables.gates, self.tables.leaves
+        numbers = np.arange(leaves.size) - gates.first_leaf[leaves.gate] + 1
+        return list(zip(leaves.gate.tolist(), np.where(leaves.bay < 0, 0, numbers).tolist(), strict=True))
+
+    @property
     def offtake_count(self) -> int:
         return self.tables.offtakes.size
 
@@ -175,6 +205,7 @@ class Names:
 
     pools: tuple[str, ...]
     gates: tuple[str, ...]
+    bays: tuple[str, ...]  # of gates whose bays move apart
     offtakes: tuple[str, ...]
     escapes: tuple[str, ...]
     gauges: tuple["GaugeName", ...]

@@ -54,7 +54,7 @@ class Timetable:
     gates: tuple[Gate, ...]  # of the scenario, for travel, hoist and bands
     marks: tuple[Marks | None, ...]  # by gate, what its openings are rounded to
     canal: CanalFacts  # for rules
-    gate_count: int
+    leaf_count: int
     offtake_count: int
 
     def stops(self) -> np.ndarray:
@@ -63,9 +63,9 @@ class Timetable:
         times = [np.arange(first_hour, self.length, HOUR_MS)]
         times += [np.asarray(series.times) for series in self.series.values()]
         times.append(np.array([order.at for order in self.orders], np.int64))
+        times.append(np.array([change.time for change in self.roughness], np.int64))
         times.append(np.array([stuck.begin for stuck in self.stuck], np.int64))
         times += self.decisions
-        times.append(np.array([change.time for change in self.roughness], np.int64))
         all_times = np.unique(np.concatenate(times).astype(np.int64))
         inside = all_times[(all_times > 0) & (all_times < self.length)]
         return np.append(inside, self.length)
@@ -87,13 +87,13 @@ class Timetable:
 
     def demand_of(self, offtake: int) -> Series:
         """Demand at an offtake [m³/s], zero where nothing is asked."""
-        series = self.series[FORCING_GATES + self.gate_count + offtake]
+        series = self.series[FORCING_GATES + self.leaf_count + offtake]
         return constant(0.0) if np.isnan(series.values).any() else series
 
     @property
     def forcing_size(self) -> int:
-        """Head, tail, evaporation, rain, an opening a gate, a demand and an opening an offtake."""
-        return FORCING_GATES + self.gate_count + 2 * self.offtake_count
+        """Head, tail, evaporation, rain, an opening a leaf, a demand and an opening an offtake."""
+        return FORCING_GATES + self.leaf_count + 2 * self.offtake_count
 
 
 def timetable_of(scenario: Scenario, network: Network) -> Timetable:
@@ -119,7 +119,7 @@ def timetable_of(scenario: Scenario, network: Network) -> Timetable:
         gates=tuple(canal.gates),
         marks=tuple(_marks(day, gate) for gate in canal.gates),
         canal=canal_facts(canal),
-        gate_count=network.gate_count,
+        leaf_count=network.leaf_count,
         offtake_count=network.offtake_count,
     )
 
@@ -138,7 +138,7 @@ def _series(day: Day, canal: Canal, network: Network) -> dict[int, Series]:
         FORCING_EVAPORATION: day.losses.evaporation or constant(canal.losses.evaporation),
         FORCING_RAIN: day.losses.rain or constant(canal.losses.rain),
     }
-    first = FORCING_GATES + network.gate_count
+    first = FORCING_GATES + network.leaf_count
     count = network.offtake_count
     for k, take in enumerate(canal.offtakes):
         series[first + k] = day.deliveries.get(take.name, constant(0.0 if take.kind == "demand" else np.nan))

@@ -4,12 +4,14 @@ from collections.abc import Iterable
 
 import xarray as xr
 
+from toeline.findings.bays import uneven_bays
 from toeline.findings.escapes import escape_spills
 from toeline.findings.gauges import gauge_readings
 from toeline.findings.incidents import incidents
 from toeline.findings.jumps import gate_jumps
 from toeline.findings.ledger import ledger
 from toeline.findings.moves import gate_moves
+from toeline.report.bays import bay_lines
 from toeline.report.gates import hazard_lines, hour_lines, margin_lines
 from toeline.report.gauges import gauge_lines, roughness_lines
 from toeline.report.incidents import incident_lines
@@ -32,6 +34,7 @@ def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
         ("Floor and people", hazard_lines(gates, width)),
         ("Least margins", margin_lines(gates, clock, display, width)),
         ("Hours in each state", hour_lines(gates, width)),
+        ("Bays that move apart", bay_lines(uneven_bays(run), clock, display, width)),
         ("Orders", order_lines(run, clock, display, width)),
         ("Moves", move_lines(run, moves, clock, display, width) if any(gate.moves for gate in moves) else ()),
         ("Escapes", escape_lines(escape_spills(run), clock, display, width)),

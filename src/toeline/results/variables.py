@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 GROWING_DIMENSIONS = ("time", "profile_time", "order")
-LABELLED_DIMENSIONS = ("gate", "pool", "offtake", "escape", "gauge", "node")
+LABELLED_DIMENSIONS = ("gate", "bay", "pool", "offtake", "escape", "gauge", "node")
 CLOCK = "seconds since the start of the period"
 """Unit of all times in the registry; the file names the instant itself, in UTC."""
 
@@ -99,11 +99,13 @@ _CLOCKS = (
 )
 
 _GATE_SERIES = (
-    Variable("gate_opening", _GATES, "m", "opening of the gate, lip above sill", "as moved, not as ordered",
-             dtype="f8"),
+    Variable("gate_opening", _GATES, "m", "opening of the gate, lip above sill",
+             "as moved, not as ordered; the mean over bays that move apart", dtype="f8"),
     Variable("gate_discharge", _GATES, "m3 s-1", "discharge of the gate", "downstream positive; all bays together",
              companions=("gate_flow_state", "discharge_quality"), dtype="f8"),
-    _flag("gate_flow_state", _GATES, "state of the flow through the gate", FLOW_STATES, standard_name="status_flag"),
+    _flag("gate_flow_state", _GATES, "state of the flow through the gate", FLOW_STATES, standard_name="status_flag",
+          comment="this and all that is said of jet and jump: where bays move apart, of the bay with the largest unit "
+          "discharge, as if the whole width ran like it"),
     _flag("discharge_quality", _GATES, "how well the discharge of the gate is known", DISCHARGE_QUALITIES,
           standard_name="quality_flag",
           comment="near the modular limit, with the lip near the surface and when very drowned, gate ratings are poor"),
@@ -138,6 +140,13 @@ _GATE_SERIES = (
              "of an instantaneous change as large as the last move of the gate; 0 when settled"),
     Variable("surge_height_bound_downstream", _GATES, "m", "greatest height of the surge sent down the pool",
              "of an instantaneous change as large as the last move of the gate; 0 when settled"),
+)
+
+_BAY_SERIES = (
+    Variable("bay_opening", ("time", "bay"), "m", "opening of the bay, lip above sill", "as moved, not as ordered",
+             dtype="f8"),
+    Variable("bay_discharge", ("time", "bay"), "m3 s-1", "discharge of the bay",
+             "its share of what the gate would pass with all bays at this opening", dtype="f8"),
 )
 
 _POOL_SERIES = (
@@ -206,6 +215,8 @@ _ORDERS = (
     Variable("order_time", ("order",), CLOCK, "time of the order", dtype="f8"),
     _text("order_source", ("order",), "who gave the order", "schedule: the plan; else the kind of the rule"),
     _text("order_gate", ("order",), "gate of the order"),
+    Variable("order_bay", ("order",), "1", "number of the bay of the order", "from 1; 0: all bays, moved together",
+             dtype="i4"),
     _flag("order_kind", ("order",), "what the order gives", ORDER_KINDS,
           comment="opening: the opening to reach; by: the change of the opening; discharge: what it is to pass then"),
     Variable("order_value", ("order",), None, "value given by the order",
@@ -234,6 +245,11 @@ _GATE_FACTS = (
              "where the last protected surface without a gap ends", dtype="f8"),
     _text("gate_upstream_pool", ("gate",), "pool above the gate", "head: the source"),
     _text("gate_downstream_pool", ("gate",), "pool below the gate", "tail: beyond the last pool"),
+)
+
+_BAY_FACTS = (
+    _text("bay", ("bay",), "name of the bay", "of gates whose bays move apart; numbered from the left bank"),
+    _text("bay_gate", ("bay",), "gate of the bay"),
 )
 
 _POOL_FACTS = (
@@ -297,22 +313,22 @@ _END_STATE = (
     _state("end_imbalance", ("state_link",), "m", "head that accelerates the water of a link at the end of the run",
            "zero without local inertia"),
     _state("end_delivery", ("state_offtake",), "m3 s-1", "delivery at the end of the run"),
-    _state("end_opening", ("state_gate",), "m", "opening at the end of the run"),
-    _state("end_target_opening", ("state_gate",), "m", "opening the leaf is moving to at the end of the run"),
-    _state("end_ordered_opening", ("state_gate",), "m", "opening last ordered", "'by' orders count from it"),
-    _state("end_motion_remaining", ("state_gate",), "s", "time for which the leaf still moves"),
+    _state("end_opening", ("state_leaf",), "m", "opening at the end of the run"),
+    _state("end_target_opening", ("state_leaf",), "m", "opening the leaf is moving to at the end of the run"),
+    _state("end_ordered_opening", ("state_leaf",), "m", "opening last ordered", "'by' orders count from it"),
+    _state("end_motion_remaining", ("state_leaf",), "s", "time for which the leaf still moves"),
     _state("end_surge_upstream", ("state_gate",), "m", "bound of the surge up the pool of the last moves"),
     _state("end_surge_downstream", ("state_gate",), "m", "bound of the surge down the pool of the last moves"),
     _state("end_surge_upstream_remaining", ("state_gate",), "s", "time until the pool above has settled"),
     _state("end_surge_downstream_remaining", ("state_gate",), "s", "time until the pool below has settled"),
     _state("end_settling_remaining", ("state_pool",), "s", "time until the pool has settled"),
+    _state("end_roughness_factor", ("state_pool",), "1", "factor on Manning's n at the end of the run"),
     _state("end_move_age", ("state_move",), "s", "time since a move of the last hour began"),
-    Variable("end_move_gate", ("state_move",), "1", "position of the gate of that move in the list of gates", "from 0",
+    Variable("end_move_leaf", ("state_move",), "1", "position of the leaf of that move in the list of leaves", "from 0",
              dtype="i4", is_state=True),
     _state_text("end_rule", ("state_memory",), "rule that keeps the value", "kind and gate"),
     _state_text("end_rule_memory", ("state_memory",), "name of the value that the rule keeps"),
     _state("end_rule_value", ("state_memory",), None, "value that the rule keeps", "in SI units"),
-    _state("end_roughness_factor", ("state_pool",), "1", "factor on Manning's n at the end of the run"),
     _state("end_rate", ("state_forcing",), None, "rates of change at the end of the run",
            "a second; of head, tail, evaporation, rain, gate openings, demands and offtake openings in their units"),
     _state("end_next_step", (), "s", "length of the step that would have come next"),
@@ -325,6 +341,7 @@ VARIABLES = {
     for group in (
         _CLOCKS,
         _GATE_SERIES,
+        _BAY_SERIES,
         _POOL_SERIES,
         _OFFTAKE_SERIES,
         _ESCAPE_SERIES,
@@ -333,6 +350,7 @@ VARIABLES = {
         _PROFILES,
         _ORDERS,
         _GATE_FACTS,
+        _BAY_FACTS,
         _POOL_FACTS,
         _OFFTAKE_FACTS,
         _ESCAPE_FACTS,

@@ -92,7 +92,9 @@ class RoughnessEntry(Table):
         description="Until the next entry of the pool. steps: the factor holds; lines: it goes straight to the next "
         "factor, day by day.",
     )
-    note: Annotated[str, Text("text of one line")] | None = Field(None, description="What it stands for, such as a weed cut.")
+    note: Annotated[str, Text("text of one line")] | None = Field(
+        None, description="What it stands for, such as a weed cut."
+    )
 
     @property
     def pools_text(self) -> str:
