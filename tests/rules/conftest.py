@@ -22,8 +22,8 @@ CANAL = CanalFacts(
         "Tail gate": GateFacts("Lower pool", "tail", 1.5),
     },
     pools={
-        "Upper pool": PoolFacts(4000.0, 103.60, {"wave": 1500.0, "volume": 1800.0}, 36_000.0, 2000.0),
-        "Lower pool": PoolFacts(2000.0, 100.90, {"wave": 1000.0, "volume": 2400.0}, 36_000.0, 2000.0),
+        "Upper pool": PoolFacts(4000.0, 103.60, {"wave": 1500.0, "volume": 1800.0}, 36_000.0, 36.0),
+        "Lower pool": PoolFacts(2000.0, 100.90, {"wave": 1000.0, "volume": 2400.0}, 36_000.0, 36.0),
     },
     offtakes={"North lateral": OfftakeFacts("Upper pool", 0.9), "Far lateral": OfftakeFacts("Lower pool", 0.5)},
 )
