@@ -81,14 +81,14 @@ def gate_indicators(run: xr.Dataset) -> Iterator[Indicator]:
     is_free, is_drowned = is_any(run["gate_flow_state"], "free"), is_any(run["gate_flow_state"], "drowned")
     jumps = gate_jumps(run)
     for gate, name in enumerate(names(run["gate"])):
-        yield Indicator("gate moves", name, moves(run, name).size, "1", "lower")
+        yield Indicator("gate moves", name, moves(run, name).size, "count", "lower")
         yield Indicator("gate travel", name, travel(openings[:, gate]), "m", "lower")
         yield Indicator("integrated gate travel", name, integrated_change(openings[:, gate]), "m", "lower",
                         "travel beyond that from first to last opening")  # fmt: skip
         yield Indicator("integrated discharge change", name, integrated_change(discharges[:, gate]), "m3 s-1", "lower",
                         "changes beyond that from first to last discharge")  # fmt: skip
         crossings = limit_crossings(is_free[:, gate], is_drowned[:, gate])
-        yield Indicator("modular-limit crossings", name, crossings, "1", "lower")
+        yield Indicator("modular-limit crossings", name, crossings, "count", "lower")
         near = jumps[gate].flow_state_hours["near_modular_limit"]
         yield Indicator("hours near the modular limit", name, near, "h", "lower", "its discharge is poorly known there")
         if name in bands:

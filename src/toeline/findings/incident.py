@@ -25,7 +25,8 @@ class Incident:
     """One incident. `worst` and `limit` are in `unit`; NaN and NaT where there is no number to give.
 
     `settling` says that waves of a gate move were still travelling in a pool beside it at some time of the incident, so
-    that its levels are least trustworthy; `runs_to_end` that it still went on when the run ended.
+    that its levels are least trustworthy; `runs_to_end` that it still went on when the run ended. Where
+    a limit holds in a rolling window, `window` is its length [s], and all three times are those at which windows end.
     """
 
     what: str
@@ -41,6 +42,7 @@ class Incident:
     runs_to_end: bool = False
     chainage: float | None = None
     also: tuple[Measure, ...] = ()
+    window: float = 0.0
 
 
 class Settling:

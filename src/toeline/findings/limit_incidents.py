@@ -38,6 +38,7 @@ def _incident(watch: Watch, spell: Spell, settling: Settling) -> Incident:
         runs_to_end=spell.runs_to_end,
         chainage=None if watch.chainages is None else float(watch.chainages[row]),
         also=tuple(Measure(name, float(series[row]), "m") for name, series in watch.also),
+        window=limit.window,
     )
 
 

@@ -35,6 +35,11 @@ class Limit:
         return subject.format(window=window, edge=self.measured_from)
 
     @property
+    def dimension(self) -> str:
+        """What `places` are: pool, gate or offtake."""
+        return _DIMENSIONS.get(self.kind, "pool")
+
+    @property
     def is_least(self) -> bool:
         """Whether the limit is the least value allowed; else it is the greatest."""
         return self.kind in ("freeboard", "head on offtake") or (self.kind == "below" and not self.is_from_target)
@@ -60,6 +65,12 @@ _SUBJECTS = {
     "avoided opening": "time at avoided openings in {window}",
     "near modular limit": "time near the modular limit in {window}",
 }
+_DIMENSIONS = {
+    "moves": "gate",
+    "avoided opening": "gate",
+    "near modular limit": "gate",
+    "head on offtake": "offtake",
+}
 _LEVELS = {
     ("above", "datum"): "level",
     ("above", "target"): "height above target",
@@ -72,10 +83,11 @@ _LEVELS = {
 
 def limits_of_run(run: xr.Dataset) -> list[Limit]:
     """The limits in the order of the canal file; none for a file that carries none."""
-    return [_limit(entry) for entry in json.loads(run.attrs.get("limits", "[]"))]
+    return [limit_of(entry) for entry in json.loads(run.attrs.get("limits", "[]"))]
 
 
-def _limit(entry: dict[str, Any]) -> Limit:
+def limit_of(entry: dict[str, Any]) -> Limit:
+    """A limit from its entry in the list that a file carries."""
     values: dict[str, Any] = {key: tuple(v) if isinstance(v, list) else v for key, v in entry.items()}
     return Limit(**values)
 

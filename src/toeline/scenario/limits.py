@@ -8,7 +8,7 @@ from toeline.scenario.schema.pools import Pool
 
 UNITS = {
     "velocity": "m s-1",
-    "moves": "1",
+    "moves": "count",
     "avoided opening": "s",
     "near modular limit": "s",
 }
