@@ -185,6 +185,17 @@ def test_limits_of_one_name_are_told_apart(run_by_hand):
     assert names == [f"part of the limit used: fall in 10 min (limit {number} of the canal file)" for number in (1, 2)]
 
 
+def test_volumes_spilled_and_lost_are_told_where_the_run_has_them(run_by_hand):
+    run = run_by_hand(MINUTES, values={})
+    assert found(run, "volume spilled") is None
+    with_escapes = run.assign(
+        escape_volume=(("time", "escape"), [[0.0, 1.0], [2.0, 1.0], [3.0, 1.0], [5.0, 2.0]]),
+        pool_loss_volume=(("time", "pool"), [[0.0, 0.0], [1.0, 0.0], [2.0, 0.0], [3.0, 4.0]]),
+    )
+    assert found(with_escapes, "volume spilled").value == pytest.approx(6.0)
+    assert found(with_escapes, "volume lost").value == pytest.approx(7.0)
+
+
 def test_every_indicator_is_a_finite_number_and_stands_once(run_by_hand):
     run = run_by_hand(MINUTES, values={"pool_target_level": np.nan, "demand": np.nan})
     found_all = indicators(run)
