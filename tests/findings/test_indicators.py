@@ -96,16 +96,16 @@ def test_level_errors_are_parts_of_the_target_depth(run_by_hand):
             "bed_level": [100.5, 100.0, 90.0, 89.0],
         },
     )
-    assert found(run, "greatest level error", "Orchard pool").value == pytest.approx(0.1)
-    assert found(run, "integrated level error", "Orchard pool").value == pytest.approx(0.4 / 2.0 / 3.0)
+    assert found(run, "maximum absolute level error", "Orchard pool").value == pytest.approx(0.1)
+    assert found(run, "integrated absolute level error", "Orchard pool").value == pytest.approx(0.4 / 2.0 / 3.0)
     assert found(run, "steady-state level error", "Orchard pool").value == pytest.approx(0.4 / 3.0 / 2.0)
-    assert found(run, "greatest level error", "Mill pool") is None
+    assert found(run, "maximum absolute level error", "Mill pool") is None
 
 
 def test_a_run_shorter_than_two_hours_has_no_steady_state_error(run_by_hand):
     values = {"pool_target_level": [1.0, 1.0], "node_pool": [0, 0, 1, 1], "bed_level": 0.0}
     run = run_by_hand([0, 60, 119], values=values)
-    assert found(run, "greatest level error", "Orchard pool").value == pytest.approx(1.0)
+    assert found(run, "maximum absolute level error", "Orchard pool").value == pytest.approx(1.0)
     assert found(run, "steady-state level error", "Orchard pool") is None
 
 

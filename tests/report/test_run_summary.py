@@ -193,7 +193,7 @@ def test_indicators_stand_by_place(invented_run, metric):
     text = section(run_summary(run, metric), "Indicators")
     assert "deliveries adequacy efficiency dependability whole canal 0.900 1.000 0.000" in text
     assert "East lateral 0.900 720 m3 0.000" in text
-    assert "levels greatest error integrated error steady-state error Upper pool 1.000 1.021 1.000" in text
+    assert "levels maximum error integrated error steady-state error Upper pool 1.000 1.021 1.000" in text
     assert "gates moves travel" in text
 
 

@@ -14,6 +14,10 @@ SMALLEST_MOVE = 1e-9
 """Change of opening [m] below which an order moved nothing."""
 
 
+_COUNTED_APART = {("flow", "near_modular_limit"), ("jump", "drowned")}
+"""States whose hours have an indicator of their own."""
+
+
 def integrated_change(values: np.ndarray) -> float:
     """Σ|Δ| − |last − first|: what a series changed beyond what it had to.
 
@@ -83,9 +87,9 @@ def gate_indicators(run: xr.Dataset) -> Iterator[Indicator]:
     for gate, name in enumerate(names(run["gate"])):
         yield Indicator("gate moves", name, moves(run, name).size, "count", "lower")
         yield Indicator("gate travel", name, travel(openings[:, gate]), "m", "lower")
-        yield Indicator("integrated gate travel", name, integrated_change(openings[:, gate]), "m", "lower",
+        yield Indicator("integrated absolute gate movement", name, integrated_change(openings[:, gate]), "m", "lower",
                         "travel beyond that from first to last opening")  # fmt: skip
-        yield Indicator("integrated discharge change", name, integrated_change(discharges[:, gate]), "m3 s-1", "lower",
+        yield Indicator("integrated absolute discharge change", name, integrated_change(discharges[:, gate]), "m3 s-1", "lower",
                         "changes beyond that from first to last discharge")  # fmt: skip
         crossings = limit_crossings(is_free[:, gate], is_drowned[:, gate])
         yield Indicator("modular-limit crossings", name, crossings, "count", "lower")
@@ -106,5 +110,5 @@ def _hour_indicators(jumps: GateJumps) -> Iterator[Indicator]:
         yield Indicator("least protection margin", name, jumps.protection_margin.value, "m", "higher")
     for kind, hours in (("flow", jumps.flow_state_hours), ("jump", jumps.jump_state_hours)):
         for state, value in hours.items():
-            if value:
+            if value and (kind, state) not in _COUNTED_APART:
                 yield Indicator(f"hours of {kind}: {state.replace('_', ' ')}", name, value, "h", "none")

@@ -43,8 +43,8 @@ def level_indicators(run: xr.Dataset) -> Iterator[Indicator]:
         if not target > 0.0:
             continue
         note = f"part of the target depth at the lower end; samples: {times.size}"
-        yield Indicator("greatest level error", name, greatest_error(depths, target), "1", "lower", note)
-        yield Indicator("integrated level error", name, integrated_error(depths, target), "1", "lower", note)
+        yield Indicator("maximum absolute level error", name, greatest_error(depths, target), "1", "lower", note)
+        yield Indicator("integrated absolute level error", name, integrated_error(depths, target), "1", "lower", note)
         if is_whole:
             yield Indicator(
                 "steady-state level error", name, steady_state_error(depths[is_last], target), "1", "lower",

@@ -19,15 +19,15 @@ _OFFTAKES = {
     "tail-end supply ratio": "in full at the tail end",
 }
 _POOLS = {
-    "greatest level error": "greatest error",
-    "integrated level error": "integrated error",
+    "maximum absolute level error": "maximum error",
+    "integrated absolute level error": "integrated error",
     "steady-state level error": "steady-state error",
 }
 _GATES = {
     "gate moves": "moves",
     "gate travel": "travel",
-    "integrated gate travel": "integrated travel",
-    "integrated discharge change": "integrated flow change",
+    "integrated absolute gate movement": "integrated movement",
+    "integrated absolute discharge change": "integrated flow change",
 }
 _STATES = {
     "modular-limit crossings": "modular limit crossed",
