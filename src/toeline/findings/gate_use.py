@@ -87,10 +87,10 @@ def gate_indicators(run: xr.Dataset) -> Iterator[Indicator]:
     for gate, name in enumerate(names(run["gate"])):
         yield Indicator("gate moves", name, moves(run, name).size, "count", "lower")
         yield Indicator("gate travel", name, travel(openings[:, gate]), "m", "lower")
-        yield Indicator("integrated absolute gate movement", name, integrated_change(openings[:, gate]), "m", "lower",
-                        "travel beyond that from first to last opening")  # fmt: skip
-        yield Indicator("integrated absolute discharge change", name, integrated_change(discharges[:, gate]), "m3 s-1", "lower",
-                        "changes beyond that from first to last discharge")  # fmt: skip
+        movement, restlessness = integrated_change(openings[:, gate]), integrated_change(discharges[:, gate])
+        beyond = "beyond the way from first to last value"
+        yield Indicator("integrated absolute gate movement", name, movement, "m", "lower", beyond)
+        yield Indicator("integrated absolute discharge change", name, restlessness, "m3 s-1", "lower", beyond)
         crossings = limit_crossings(is_free[:, gate], is_drowned[:, gate])
         yield Indicator("modular-limit crossings", name, crossings, "count", "lower")
         near = jumps[gate].flow_state_hours["near_modular_limit"]
