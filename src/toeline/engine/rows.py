@@ -54,7 +54,9 @@ POOL_OUTPUT = np.dtype(
 
 BAY_OUTPUT = np.dtype([("bay_opening", float), ("bay_discharge", float)])
 
-OFFTAKE_OUTPUT = np.dtype([("demand", float), ("delivery", float), ("delivery_volume", float)])
+OFFTAKE_OUTPUT = np.dtype(
+    [("demand", float), ("delivery", float), ("delivery_volume", float), ("offtake_level", float)]
+)
 
 ESCAPE_OUTPUT = np.dtype([("escape_discharge", float), ("escape_volume", float)])
 

@@ -24,6 +24,9 @@ ATTRIBUTES = {
     "resolved_settings": "all settings of the run with defaults filled in, in SI units (JSON)",
     "input_hash": "digest of all inputs: equal digests, equal inputs",
     "surface_names": "names of the surfaces in the canal file, in the order of the values of `surface` (JSON)",
+    "limits": "the owner's limits in the order of the canal file: kind, limit, unit, places, source and, by kind, "
+    "window in s, measured_from, at, surfaces (JSON)",
+    "avoided_openings": "bands of openings in m that are not to be held, by gate (JSON)",
     "units_for_display": "units in which people are shown results; the file itself is in SI units",
     "zone": "name of the time zone for people; empty where the day gives none",
     "utc_offset": "offset from UTC at the start of the period",
@@ -43,6 +46,8 @@ def run_attributes(
     settings: Mapping[str, object],
     input_hash: str,
     surface_names: Sequence[str],
+    limits: Sequence[Mapping[str, object]] = (),
+    avoided_openings: Mapping[str, Sequence[tuple[float, float]]] | None = None,
     units_for_display: str,
     zone: str | None,
     start: datetime,
@@ -51,8 +56,8 @@ def run_attributes(
 ) -> dict[str, str]:
     """Global attributes of a run, but for its outcome, which the sink writes.
 
-    `settings` must be fit for JSON. `start` carries the offset of the day file. `created` is the one value taken from
-    the clock: equal inputs give equal files but for `history`.
+    `settings` and `limits` must be fit for JSON. `start` carries the offset of the day file. `created` is the one value
+    taken from the clock: equal inputs give equal files but for `history`.
     """
     made = created.astimezone(UTC).isoformat(timespec="seconds").replace("+00:00", "Z")
     return {
@@ -64,14 +69,20 @@ def run_attributes(
         "plan": plan or "",
         "canal_file": canal_text,
         "day_file": day_text,
-        "resolved_settings": json.dumps(settings, ensure_ascii=False, allow_nan=False, sort_keys=True),
+        "resolved_settings": _json(settings, sort_keys=True),
         "input_hash": input_hash,
-        "surface_names": json.dumps(list(surface_names), ensure_ascii=False),
+        "surface_names": _json(list(surface_names)),
+        "limits": _json(limits),
+        "avoided_openings": _json(avoided_openings or {}),
         "units_for_display": units_for_display,
         "zone": zone or "",
         "utc_offset": _offset(start),
         "comment": CAUTION,
     }
+
+
+def _json(value: object, *, sort_keys: bool = False) -> str:
+    return json.dumps(value, ensure_ascii=False, allow_nan=False, sort_keys=sort_keys)
 
 
 def _offset(instant: datetime) -> str:

@@ -8,6 +8,7 @@ from toeline.scenario.schema.ends import Head, Tail
 from toeline.scenario.schema.escapes import Escape
 from toeline.scenario.schema.gates import Gate
 from toeline.scenario.schema.gauges import Gauge
+from toeline.scenario.schema.limits import Limit
 from toeline.scenario.schema.losses import Losses
 from toeline.scenario.schema.offtakes import Offtake
 from toeline.scenario.schema.pools import Pool
@@ -35,3 +36,4 @@ class Canal(Table):
     )
     head: Head = Field(description="The upper end of the canal.")
     tail: Tail = Field(description="The lower end of the canal.")
+    limits: list[Limit] = Field([], description="What is not to be passed; none is built in.")
