@@ -5,6 +5,7 @@ import os
 from collections.abc import Callable
 from dataclasses import fields, is_dataclass
 from datetime import UTC, datetime
+from hashlib import sha256
 from typing import Any
 
 import numpy as np
@@ -23,8 +24,9 @@ from toeline.network.timetable import Timetable, timetable_of
 from toeline.results.dataset import DatasetSink, open_run
 from toeline.results.end_state import read_end_state
 from toeline.results.netcdf_writer import NetcdfSink
-from toeline.results.provenance import COMPLETE, run_attributes
+from toeline.results.provenance import COMPLETE, DIMENSIONS, run_attributes
 from toeline.scenario import Scenario
+from toeline.scenario.setting_dimensions import setting_dimensions
 
 
 def simulate(
@@ -86,8 +88,13 @@ def attributes(scenario: Scenario) -> dict[str, str]:
 
 
 def _settings(scenario: Scenario) -> dict[str, Any]:
-    """Canal and day with defaults filled in, fit for JSON."""
-    plain = {"canal": scenario.canal.model_dump(), "day": scenario.day.model_dump(exclude={"plans"})}
+    """Canal and day with defaults filled in, what their numbers measure, and the state gone on from; fit for JSON."""
+    plain = {
+        "canal": scenario.canal.model_dump(),
+        "day": scenario.day.model_dump(exclude={"plans"}),
+        "start_file_digest": sha256(scenario.start_file.read_bytes()).hexdigest() if scenario.start_file else None,
+        DIMENSIONS: setting_dimensions(),
+    }
     return json.loads(json.dumps(plain, default=_plain))
 
 

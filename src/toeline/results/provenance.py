@@ -1,8 +1,11 @@
 """What a run file says about itself: title, inputs, settings, versions and the caution, as global attributes."""
 
+import copy
+import hashlib
 import json
 from collections.abc import Mapping, Sequence
 from datetime import UTC, datetime
+from typing import Any
 
 from toeline.constants import CAUTION
 
@@ -23,6 +26,7 @@ ATTRIBUTES = {
     "day_file": "text of the day file, unchanged",
     "resolved_settings": "all settings of the run with defaults filled in, in SI units (JSON)",
     "input_hash": "digest of all inputs: equal digests, equal inputs",
+    "shared_input_hash": "digest of all that the numbers depend on but the plan: equal for all plans of one day",
     "surface_names": "names of the surfaces in the canal file, in the order of the values of `surface` (JSON)",
     "units_for_display": "units in which people are shown results; the file itself is in SI units",
     "zone": "name of the time zone for people; empty where the day gives none",
@@ -32,6 +36,12 @@ ATTRIBUTES = {
 }
 """Every global attribute and its meaning."""
 
+DIMENSIONS = "dimensions"
+"""Where the resolved settings say what each of them measures, by key path, * for any name."""
+
+_NAMES_AND_DISPLAY = (("canal", "units"), ("day", "canal"), ("day", "title"), ("day", "units"), ("day", "start", "file"))
+"""Settings that no number of a run depends on: titles, where a file lies, units for people."""
+
 
 def run_attributes(
     *,
@@ -40,7 +50,7 @@ def run_attributes(
     plan: str | None,
     canal_text: str,
     day_text: str,
-    settings: Mapping[str, object],
+    settings: Mapping[str, Any],
     input_hash: str,
     surface_names: Sequence[str],
     units_for_display: str,
@@ -66,12 +76,30 @@ def run_attributes(
         "day_file": day_text,
         "resolved_settings": json.dumps(settings, ensure_ascii=False, allow_nan=False, sort_keys=True),
         "input_hash": input_hash,
+        "shared_input_hash": shared_input_hash(settings),
         "surface_names": json.dumps(list(surface_names), ensure_ascii=False),
         "units_for_display": units_for_display,
         "zone": zone or "",
         "utc_offset": _offset(start),
         "comment": CAUTION,
     }
+
+
+def shared_settings(settings: Mapping[str, Any]) -> dict[str, Any]:
+    """The resolved settings that the numbers of a run depend on, beside its plan."""
+    shared = {key: value for key, value in copy.deepcopy(dict(settings)).items() if key != DIMENSIONS}
+    for *tables, key in _NAMES_AND_DISPLAY:
+        inner = shared
+        for table in tables:
+            inner = inner.get(table, {})
+        inner.pop(key, None)
+    return shared
+
+
+def shared_input_hash(settings: Mapping[str, Any]) -> str:
+    """Digest of the resolved settings that the numbers of a run depend on, beside its plan."""
+    text = json.dumps(shared_settings(settings), ensure_ascii=False, allow_nan=False, sort_keys=True)
+    return hashlib.sha256(text.encode()).hexdigest()
 
 
 def _offset(instant: datetime) -> str:
