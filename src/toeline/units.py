@@ -163,6 +163,16 @@ class Display:
         """Write a length or a distance [m]."""
         return self._text(value, "length", 2)
 
+    def move(self, value: float) -> str:
+        """Write by how much an opening is changed [m], without its sign: metric in cm, to the mm where need be."""
+        if self.system is UnitSystem.us_customary or math.isnan(value):
+            return self.length(abs(value))
+        return f"{round(abs(value) * 100, 1):g} cm"
+
+    def level_change(self, value: float) -> str:
+        """Write by how much two levels differ [m], without the sign: metric to the cm."""
+        return self.move(value if math.isnan(value) else round(value, 2))
+
     def discharge(self, value: float) -> str:
         """Write a discharge [m³/s]."""
         return self._text(value, "discharge", 3 if self.system is UnitSystem.metric else 1)

@@ -5,6 +5,7 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from typing import Any
 
+import numpy as np
 import xarray as xr
 
 from toeline.results.provenance import DIMENSIONS, shared_settings
@@ -42,9 +43,29 @@ def input_differences(first: xr.Dataset, other: xr.Dataset) -> list[InputDiffere
     return list(_differences((), shared_settings(before), shared_settings(after), dimensions))
 
 
-def _differences(
-    path: KeyPath, first: Any, other: Any, dimensions: Mapping[str, str]
-) -> Iterator[InputDifference]:
+def largest_of_series(first: Any, other: Any) -> tuple[int, float, float] | None:
+    """Where two settings are series of the day: when they differ most [ms from the start], and the values of both."""
+    if not (_is_series(first) and _is_series(other)):
+        return None
+    times = sorted({*first["times"], *other["times"]})
+    before, after = (_values_at(series, times) for series in (first, other))
+    row = int(np.argmax(abs(after - before)))
+    return times[row], float(before[row]), float(after[row])
+
+
+def _is_series(value: Any) -> bool:
+    return isinstance(value, dict) and value.keys() == _SERIES_KEYS
+
+
+def _values_at(series: Mapping[str, Any], times: list[int]) -> np.ndarray:
+    """The values of a series; at a step the new one."""
+    if series["shape"] == "lines":
+        return np.interp(times, series["times"], series["values"])
+    rows = np.searchsorted(series["times"], times, side="right") - 1
+    return np.asarray(series["values"])[np.maximum(rows, 0)]
+
+
+def _differences(path: KeyPath, first: Any, other: Any, dimensions: Mapping[str, str]) -> Iterator[InputDifference]:
     if first == other:
         return
     inner = _parts(first), _parts(other)
@@ -59,7 +80,7 @@ def _differences(
 def _parts(value: Any) -> dict[str, Any] | None:
     """The inner settings of a table or an array of tables, by name or number; None for what has none."""
     if isinstance(value, dict):
-        return None if value.keys() == _SERIES_KEYS else value
+        return None if _is_series(value) else value
     if isinstance(value, list) and value and all(isinstance(item, dict) for item in value):
         return {str(item.get("name", number)): item for number, item in enumerate(value, start=1)}
     return None

@@ -20,16 +20,15 @@ class Watched:
 
 
 WATCHED = (
-    Watched("pool_tail_level", "level at the lower end", "pool", 0.005),
-    Watched("pool_head_level", "level at the upper end", "pool", 0.005),
     Watched("gate_opening", "opening", "gate", 0.0005),
     Watched("gate_discharge", "discharge", "gate", 0.005),
-    Watched("jump_end_distance", "end of the jump, from the gate", "gate", 0.05),
-    Watched("protection_margin", "protection margin", "gate", 0.005),
+    Watched("pool_tail_level", "level at the lower end", "pool", 0.005),
+    Watched("pool_head_level", "level at the upper end", "pool", 0.005),
+    Watched("jump_end_distance", "distance of the jump's end", "gate", 0.05),
     Watched("delivery", "delivery", "offtake", 0.001),
 )
-"""Least differences (choice): half of the centimetre to which levels are shown, half a millimetre of a leaf, 5 L/s and
-5 cm of jump, above what the error of the time step alone can make, and the litre per second of a delivery."""
+"""Causes before effects. Least differences (choice): half a millimetre of a leaf, half of the centimetre to which
+levels are shown, the litre per second of a delivery; 5 L/s and 5 cm of jump, for the time step alone can make less."""
 
 
 @dataclass(frozen=True)

@@ -113,8 +113,10 @@ def _pairs_of_least_cost(first: Sequence[GateOrder], other: Sequence[GateOrder],
     pairs: list[Pair] = []
     row, column = len(first), len(other)
     while row or column:
-        if row and column and cost[row, column] == cost[row - 1, column - 1] + _hours_between(
-            first[row - 1], other[column - 1]
+        if (
+            row
+            and column
+            and cost[row, column] == cost[row - 1, column - 1] + _hours_between(first[row - 1], other[column - 1])
         ):
             row, column = row - 1, column - 1
             pairs.append((first[row], other[column]))

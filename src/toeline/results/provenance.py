@@ -39,7 +39,13 @@ ATTRIBUTES = {
 DIMENSIONS = "dimensions"
 """Where the resolved settings say what each of them measures, by key path, * for any name."""
 
-_NAMES_AND_DISPLAY = (("canal", "units"), ("day", "canal"), ("day", "title"), ("day", "units"), ("day", "start", "file"))
+_NAMES_AND_DISPLAY = (
+    ("canal", "units"),
+    ("day", "canal"),
+    ("day", "title"),
+    ("day", "units"),
+    ("day", "start", "file"),
+)
 """Settings that no number of a run depends on: titles, where a file lies, units for people."""
 
 
