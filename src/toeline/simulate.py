@@ -24,7 +24,7 @@ from toeline.network.timetable import Timetable, timetable_of
 from toeline.results.dataset import DatasetSink, open_run
 from toeline.results.end_state import read_end_state
 from toeline.results.netcdf_writer import NetcdfSink
-from toeline.results.provenance import COMPLETE, DIMENSIONS, run_attributes
+from toeline.results.provenance import COMPLETE, DIMENSIONS, START_DIGEST, run_attributes
 from toeline.scenario import Scenario
 from toeline.scenario.setting_dimensions import setting_dimensions
 
@@ -92,7 +92,7 @@ def _settings(scenario: Scenario) -> dict[str, Any]:
     plain = {
         "canal": scenario.canal.model_dump(),
         "day": scenario.day.model_dump(exclude={"plans"}),
-        "start_file_digest": sha256(scenario.start_file.read_bytes()).hexdigest() if scenario.start_file else None,
+        START_DIGEST: sha256(scenario.start_file.read_bytes()).hexdigest() if scenario.start_file else None,
         DIMENSIONS: setting_dimensions(),
     }
     return json.loads(json.dumps(plain, default=_plain))

@@ -53,11 +53,6 @@ class OrderDifference:
     first: GateOrder | None
     other: GateOrder | None
 
-    @property
-    def time(self) -> np.datetime64:
-        """When the schedules begin to differ by it."""
-        return min(order.time for order in (self.first, self.other) if order is not None)
-
 
 @dataclass(frozen=True)
 class RuleMoves:
@@ -97,7 +92,7 @@ Pair = tuple[GateOrder | None, GateOrder | None]
 def paired_orders(first: Sequence[GateOrder], other: Sequence[GateOrder]) -> list[Pair]:
     """Pair the orders of one gate, both in time order, so that together the pairs lie nearest.
 
-    An order without a partner stands beside None. Pairs do not cross in time.
+    An order without a partner stands beside None. Pairs do not cross, and come in time order.
     """
     cost = np.zeros((len(first) + 1, len(other) + 1))
     cost[:, 0], cost[0, :] = _UNPAIRED_HOURS * np.arange(len(first) + 1), _UNPAIRED_HOURS * np.arange(len(other) + 1)
@@ -126,7 +121,12 @@ def _pairs_of_least_cost(first: Sequence[GateOrder], other: Sequence[GateOrder],
         else:
             column -= 1
             pairs.append((None, other[column]))
-    return pairs[::-1]
+    pairs.reverse()
+    return sorted(pairs, key=_time_of)
+
+
+def _time_of(pair: Pair) -> np.datetime64:
+    return min(order.time for order in pair if order is not None)
 
 
 def _hours_between(first: GateOrder, other: GateOrder) -> float:

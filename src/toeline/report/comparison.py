@@ -18,7 +18,8 @@ from toeline.units import Display
 MOST_PLACES = 3
 """So many places of a quantity are listed, those that differ most."""
 
-BEST, NOT_BEST = " *", "  "
+BEST, NOT_BEST = "*", " "
+WHOLE_CANAL = "the canal"
 
 
 def comparison_page(comparison: Comparison, clock: RunClock, display: Display, *, width: int = 80) -> str:
@@ -83,7 +84,7 @@ def _input_lines(comparison: Comparison, clock: RunClock, display: Display, widt
 def _short_lines(comparison: Comparison, clock: RunClock, display: Display, width: int) -> Iterator[str]:
     for place, contrast in enumerate(comparison.contrasts, start=1):
         yield paragraph(_against(contrast, comparison), width)
-        told = [words for row in comparison.incidents if (words := _incident_words(row, place, display))]
+        told = [words for row in comparison.incidents if (words := _incident_words(row, place, comparison, display))]
         yield from _listed(told or ["the same incidents" if comparison.incidents else "no incident in either"], width)
         yield from _listed([_start_words(contrast, comparison, clock)], width)
 
@@ -95,30 +96,31 @@ def _start_words(contrast: Contrast, comparison: Comparison, clock: RunClock) ->
     return f"different from {clock.at(first.begins)} on; seen first in the {first.quantity} of {first.where}"
 
 
-def _incident_words(row: IncidentRow, place: int, display: Display) -> str:
+def _incident_words(row: IncidentRow, place: int, comparison: Comparison, display: Display) -> str:
     """How an incident of one run differs from that of the first; empty where it does not."""
     first, other = row.sums[0], row.sums[place]
     subject = f"{row.what} at {row.where}"
-    if other is None or first is None:
-        return (
-            ""
-            if first is other
-            else f"{_lasting(other)}{subject} instead of {_lasting(first).removesuffix(' of ') or 'none'}"
-        )
+    if first is None or other is None:
+        return "" if first is other else _one_sided_words(subject, first, other, comparison.runs[0].letter)
     if not (other.is_graver_than(first) or first.is_graver_than(other)):
         return ""
-    words = f"{_lasting(other)}{subject}"
-    if _lasting(first) != _lasting(other):
-        words += f" instead of {_lasting(first).removesuffix(' of ')}"
+    lasting = [duration_text(one.seconds) for one in (other, first)]
+    words = f"{lasting[0]} of {subject}"
+    if lasting[0] != lasting[1]:
+        words += f" instead of {lasting[1]}"
     worst = [quantity_words(one.worst.worst, one.worst.unit, display) for one in (other, first)]
     return words if worst[0] == worst[1] else f"{words}, worst {worst[0]} instead of {worst[1]}"
 
 
-def _lasting(incident: IncidentSum | None) -> str:
-    """For how long, to stand before what happened."""
-    if incident is None:
-        return "no "
-    return f"{duration_text(incident.seconds)} of " if incident.seconds else ""
+def _one_sided_words(subject: str, first: IncidentSum | None, other: IncidentSum | None, letter: str) -> str:
+    """An incident that only one of the two runs has."""
+    if other is not None:
+        lasting = f"{duration_text(other.seconds)} of " if other.seconds else ""
+        return f"{lasting}{subject} instead of none" if lasting else f"{subject}, unlike {letter}"
+    lasting = (
+        f" instead of {duration_text(first.seconds)}" if first is not None and first.seconds else f", unlike {letter}"
+    )
+    return f"no {subject}{lasting}"
 
 
 def _schedule_lines(comparison: Comparison, clock: RunClock, display: Display, width: int) -> Iterator[str]:
@@ -136,7 +138,7 @@ def _result_lines(comparison: Comparison, clock: RunClock, display: Display, wid
         yield paragraph("None: levels, discharges, deliveries and jumps are the same at all common times.", width)
         return
     letter = comparison.runs[0].letter
-    yield paragraph(f"How much more (+) or less (-) than in {letter}, and when most.", width)
+    yield paragraph(f"How much more (+) or less (-) than in {letter}, at the time when it is most.", width)
     places = {letter: {(one.quantity, one.where): one for one in found} for letter, found in differences.items()}
     keys = dict.fromkeys(key for found in places.values() for key in found)
     groups, left_out = [], 0
@@ -168,7 +170,7 @@ def _difference_cell(difference: ResultDifference | None, clock: RunClock, displ
     is_level = "level" in difference.quantity or difference.quantity == "opening"
     size = abs(difference.difference)
     words = display.level_change(size) if is_level else quantity_words(size, difference.unit, display)
-    return f"{sign}{words} at {clock.at(difference.time)}"
+    return f"{sign}{words} {clock.at(difference.time)}"
 
 
 def _incident_lines(comparison: Comparison, display: Display, width: int) -> Iterator[str]:
@@ -198,11 +200,11 @@ def _indicator_lines(comparison: Comparison, display: Display, width: int) -> It
     alike = [row for row, cells in told if not (row.differs and len(set(cells)) > 1)]
     if differing:
         groups = [
-            Group(name, tuple((row.where, _marked(row, cells)) for row, cells in group))
+            Group(name, tuple((row.where or WHOLE_CANAL, _marked(row, cells)) for row, cells in group))
             for name, group in groupby(differing, key=lambda pair: pair[0].name)
         ]
         yield from side_by_side(groups, _letters(comparison), width, keep=1)
-        yield paragraph(f"{BEST.strip()} the best value of its row. Best is not safe.", width)
+        yield paragraph(f"{BEST} the best value of its row. Best is not safe.", width)
         yield from _note_lines([row for row, _ in differing], width)
     if alike:
         split = {row.name for row, _ in differing}

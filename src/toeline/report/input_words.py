@@ -7,6 +7,7 @@ from toeline.findings.comparison import Comparison, Contrast
 from toeline.findings.input_differences import InputDifference, largest_of_series
 from toeline.report.clock import clock_text, later
 from toeline.report.run_clock import RunClock
+from toeline.results.provenance import START_DIGEST
 from toeline.units import Dimension, Display, quantity_text
 
 MOST_TOLD = 20
@@ -25,7 +26,7 @@ def input_words(contrast: Contrast, clock: RunClock, display: Display) -> Iterat
 def difference_words(difference: InputDifference, clock: RunClock, display: Display) -> str:
     """The key as it stands in its file, the value of the run, and that of the first."""
     file, *path = difference.path
-    if not path:
+    if file == START_DIGEST:
         return "the state that the run starts from: another file, or the same file with other contents"
     key = f"{file} file, {'.'.join(path).removesuffix('_ms')}"
     if (largest := largest_of_series(difference.first, difference.other)) is None:

@@ -94,13 +94,11 @@ def _summaries(differences: Sequence[OrderDifference]) -> Iterator[str]:
 
 def _counts(differences: Sequence[OrderDifference]) -> Iterator[str]:
     pairs = [(one.first, one.other) for one in differences if one.first is not None and one.other is not None]
-    changed = [pair for pair in pairs if not pair[0].asks_as(pair[1])]
-    moved = [abs(float((other.time - first.time) / np.timedelta64(1, "s"))) for first, other in pairs]
-    if any(moved):
-        count = sum(1 for seconds in moved if seconds)
-        yield f"{counted(count, 'order')} moved in time, by up to {duration_text(max(moved))}"
-    if changed:
-        yield f"{counted(len(changed), 'order')} changed in what is asked"
+    later = [float((other.time - first.time) / np.timedelta64(1, "s")) for first, other in pairs]
+    if moved := [seconds for seconds in later if seconds]:
+        yield f"{counted(len(moved), 'order')} {_shift_words(moved)}"
+    if changed := sum(1 for first, other in pairs if not first.asks_as(other)):
+        yield f"{counted(changed, 'order')} changed in what is asked"
     added, dropped = (sum(1 for one in differences if getattr(one, side) is None) for side in ("first", "other"))
     if added:
         yield f"{added} added"
@@ -108,10 +106,20 @@ def _counts(differences: Sequence[OrderDifference]) -> Iterator[str]:
         yield f"{dropped} dropped"
 
 
+def _shift_words(seconds: Sequence[float]) -> str:
+    """By how much orders come later (positive) or earlier."""
+    least, most = min(map(abs, seconds)), max(map(abs, seconds))
+    sense = "later" if min(seconds) > 0.0 else "earlier" if max(seconds) < 0.0 else "earlier or later"
+    return f"{sense}, by {'' if least == most else 'up to '}{duration_text(most)}"
+
+
 def _rule_words(letter: str, moves: RuleMoves) -> str:
-    told = f"{letter}: under the rule {moves.rule} the {moves.gate} moves {_times(moves.other)}"
-    return f"{told} instead of {_times(moves.first)}" if moves.first and moves.other else told
+    told = f"{letter}: under the rule {moves.rule} the {moves.gate}"
+    if not moves.other:
+        return f"{told} does not move, which it does {_times(moves.first)} in the first"
+    instead = f" instead of {_times(moves.first)}" if moves.first else ""
+    return f"{told} moves {_times(moves.other)}{instead}"
 
 
 def _times(count: int) -> str:
-    return "never" if not count else "once" if count == 1 else f"{count} times"
+    return "once" if count == 1 else f"{count} times"

@@ -39,6 +39,9 @@ ATTRIBUTES = {
 DIMENSIONS = "dimensions"
 """Where the resolved settings say what each of them measures, by key path, * for any name."""
 
+START_DIGEST = "start_file_digest"
+"""Where the resolved settings tell by a digest which run a run goes on from; null where it begins afresh."""
+
 _NAMES_AND_DISPLAY = (
     ("canal", "units"),
     ("day", "canal"),
