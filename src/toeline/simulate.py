@@ -26,6 +26,7 @@ from toeline.results.end_state import read_end_state
 from toeline.results.netcdf_writer import NetcdfSink
 from toeline.results.provenance import COMPLETE, DIMENSIONS, START_DIGEST, run_attributes
 from toeline.scenario import Scenario
+from toeline.scenario.limits import limits_of
 from toeline.scenario.setting_dimensions import setting_dimensions
 
 
@@ -83,8 +84,13 @@ def attributes(scenario: Scenario) -> dict[str, str]:
         title=day.title, canal=scenario.canal.name, plan=scenario.plan, canal_text=scenario.canal_text,
         day_text=scenario.day_text, settings=_settings(scenario), input_hash=scenario.input_hash,
         surface_names=tuple(scenario.canal.surfaces), units_for_display=scenario.display.system.value, zone=day.zone,
+        limits=limits_of(scenario.canal), avoided_openings=_avoided_openings(scenario),
         start=day.period.start, version=toeline.__version__, created=datetime.now(UTC),
     )  # fmt: skip
+
+
+def _avoided_openings(scenario: Scenario) -> dict[str, list[tuple[float, float]]]:
+    return {gate.name: gate.avoid_openings for gate in scenario.canal.gates if gate.avoid_openings}
 
 
 def _settings(scenario: Scenario) -> dict[str, Any]:
@@ -137,6 +143,7 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
         "offtake": np.array(names.offtakes, object),
         "offtake_pool": np.array([names.pools[node_pool[node]] for node in offtakes.node], object),
         "offtake_chainage": chainage[offtakes.node],
+        "offtake_sill_level": offtakes.sill_level,
         "node": np.arange(nodes.size),
         "chainage": chainage,
         "bed_level": nodes["bed_level"],

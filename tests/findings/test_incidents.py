@@ -3,7 +3,9 @@
 import numpy as np
 import pytest
 
-from toeline.findings.incidents import JUMP_END, VOLUME_LACKING, incidents
+from toeline.findings.delivery_incidents import VOLUME_LACKING
+from toeline.findings.incidents import incidents
+from toeline.findings.jump_incidents import JUMP_END
 from toeline.results.variables import JUMP_STATES
 
 MINUTES = [0, 1, 2, 3, 4, 5]

@@ -9,17 +9,17 @@ from toeline.findings.result_differences import ResultDifference
 from toeline.report.clock import duration_text
 from toeline.report.input_words import input_words
 from toeline.report.layout import INDENT, counted, heading, paragraph
-from toeline.report.quantities import quantity_words
 from toeline.report.run_clock import RunClock
 from toeline.report.schedule_words import schedule_words
 from toeline.report.side_by_side import Group, side_by_side
+from toeline.report.values import value_text
 from toeline.units import Display
 
 MOST_PLACES = 3
 """So many places of a quantity are listed, those that differ most."""
 
 BEST, NOT_BEST = "*", " "
-WHOLE_CANAL = "the canal"
+WHOLE_CANAL = "whole canal"
 
 
 def comparison_page(comparison: Comparison, clock: RunClock, display: Display, *, width: int = 80) -> str:
@@ -108,7 +108,7 @@ def _incident_words(row: IncidentRow, place: int, comparison: Comparison, displa
     words = f"{lasting[0]} of {subject}"
     if lasting[0] != lasting[1]:
         words += f" instead of {lasting[1]}"
-    worst = [quantity_words(one.worst.worst, one.worst.unit, display) for one in (other, first)]
+    worst = [value_text(one.worst.worst, one.worst.unit, display) for one in (other, first)]
     return words if worst[0] == worst[1] else f"{words}, worst {worst[0]} instead of {worst[1]}"
 
 
@@ -169,7 +169,7 @@ def _difference_cell(difference: ResultDifference | None, clock: RunClock, displ
     sign = "+" if difference.difference > 0.0 else "-"
     is_level = "level" in difference.quantity or difference.quantity == "opening"
     size = abs(difference.difference)
-    words = display.level_change(size) if is_level else quantity_words(size, difference.unit, display)
+    words = display.level_change(size) if is_level else value_text(size, difference.unit, display)
     return f"{sign}{words} {clock.at(difference.time)}"
 
 
@@ -189,13 +189,13 @@ def _incident_lines(comparison: Comparison, display: Display, width: int) -> Ite
 def _incident_cell(incident: IncidentSum | None, display: Display) -> str:
     if incident is None:
         return "none"
-    worst = quantity_words(incident.worst.worst, incident.worst.unit, display)
+    worst = value_text(incident.worst.worst, incident.worst.unit, display)
     parts = [duration_text(incident.seconds) if incident.seconds else "", "" if worst == "-" else worst]
     return ", ".join(part for part in parts if part) or "yes"
 
 
 def _indicator_lines(comparison: Comparison, display: Display, width: int) -> Iterator[str]:
-    told = [(row, [quantity_words(value, row.unit, display) for value in row.values]) for row in comparison.indicators]
+    told = [(row, [_indicator_text(value, row.unit, display) for value in row.values]) for row in comparison.indicators]
     differing = [(row, cells) for row, cells in told if row.differs and len(set(cells)) > 1]
     alike = [row for row, cells in told if not (row.differs and len(set(cells)) > 1)]
     if differing:
@@ -209,6 +209,11 @@ def _indicator_lines(comparison: Comparison, display: Display, width: int) -> It
     if alike:
         split = {row.name for row, _ in differing}
         yield paragraph(f"The same in all runs: {_places(alike, split)}.", width)
+
+
+def _indicator_text(value: float, unit: str, display: Display) -> str:
+    """A value, and no time as such, for "-" stands for a run that has no value."""
+    return "0 min" if unit == "h" and value == 0.0 else value_text(value, unit, display)
 
 
 def _marked(row: IndicatorRow, cells: Sequence[str]) -> tuple[str, ...]:

@@ -28,6 +28,9 @@ ATTRIBUTES = {
     "input_hash": "digest of all inputs: equal digests, equal inputs",
     "shared_input_hash": "digest of all that the numbers depend on but the plan: equal for all plans of one day",
     "surface_names": "names of the surfaces in the canal file, in the order of the values of `surface` (JSON)",
+    "limits": "the owner's limits in the order of the canal file: kind, limit, unit, places, source and, by kind, "
+    "window in s, measured_from, at, surfaces (JSON)",
+    "avoided_openings": "bands of openings in m that are not to be held, by gate (JSON)",
     "units_for_display": "units in which people are shown results; the file itself is in SI units",
     "zone": "name of the time zone for people; empty where the day gives none",
     "utc_offset": "offset from UTC at the start of the period",
@@ -62,6 +65,8 @@ def run_attributes(
     settings: Mapping[str, Any],
     input_hash: str,
     surface_names: Sequence[str],
+    limits: Sequence[Mapping[str, object]] = (),
+    avoided_openings: Mapping[str, Sequence[tuple[float, float]]] | None = None,
     units_for_display: str,
     zone: str | None,
     start: datetime,
@@ -70,8 +75,8 @@ def run_attributes(
 ) -> dict[str, str]:
     """Global attributes of a run, but for its outcome, which the sink writes.
 
-    `settings` must be fit for JSON. `start` carries the offset of the day file. `created` is the one value taken from
-    the clock: equal inputs give equal files but for `history`.
+    `settings` and `limits` must be fit for JSON. `start` carries the offset of the day file. `created` is the one value
+    taken from the clock: equal inputs give equal files but for `history`.
     """
     made = created.astimezone(UTC).isoformat(timespec="seconds").replace("+00:00", "Z")
     return {
@@ -83,10 +88,12 @@ def run_attributes(
         "plan": plan or "",
         "canal_file": canal_text,
         "day_file": day_text,
-        "resolved_settings": json.dumps(settings, ensure_ascii=False, allow_nan=False, sort_keys=True),
+        "resolved_settings": _json(settings, sort_keys=True),
         "input_hash": input_hash,
         "shared_input_hash": shared_input_hash(settings),
-        "surface_names": json.dumps(list(surface_names), ensure_ascii=False),
+        "surface_names": _json(list(surface_names)),
+        "limits": _json(limits),
+        "avoided_openings": _json(avoided_openings or {}),
         "units_for_display": units_for_display,
         "zone": zone or "",
         "utc_offset": _offset(start),
@@ -107,8 +114,11 @@ def shared_settings(settings: Mapping[str, Any]) -> dict[str, Any]:
 
 def shared_input_hash(settings: Mapping[str, Any]) -> str:
     """Digest of the resolved settings that the numbers of a run depend on, beside its plan."""
-    text = json.dumps(shared_settings(settings), ensure_ascii=False, allow_nan=False, sort_keys=True)
-    return hashlib.sha256(text.encode()).hexdigest()
+    return hashlib.sha256(_json(shared_settings(settings), sort_keys=True).encode()).hexdigest()
+
+
+def _json(value: object, *, sort_keys: bool = False) -> str:
+    return json.dumps(value, ensure_ascii=False, allow_nan=False, sort_keys=sort_keys)
 
 
 def _offset(instant: datetime) -> str:

@@ -157,6 +157,7 @@ _OFFTAKE_SERIES = (
              dtype="f8"),
     Variable("delivery", _OFFTAKES, "m3 s-1", "discharge delivered at the offtake", dtype="f8"),
     Variable("delivery_volume", _OFFTAKES, "m3", "volume delivered at the offtake since the start", dtype="f8"),
+    Variable("offtake_level", _OFFTAKES, "m", "water level at the offtake", _LEVEL, _SURFACE, dtype="f8"),
 )
 
 _CANAL_SERIES = (
@@ -217,6 +218,8 @@ _OFFTAKE_FACTS = (
     _text("offtake_pool", ("offtake",), "pool of the offtake"),
     Variable("offtake_chainage", ("offtake",), "m", "chainage of the offtake", "from the head, downstream positive",
              dtype="f8"),
+    Variable("offtake_sill_level", ("offtake",), "m", "level of the sill of the offtake",
+             "of the bed where the canal file gives no sill", dtype="f8"),
 )
 
 _NODE_FACTS = (
