@@ -94,7 +94,7 @@ def test_schedules_differ_in_words(runs):
 
 def test_in_short_tells_incidents_and_since_when_the_runs_differ(runs):
     assert section(page_of(runs), "In short") == (
-        "B against A 28 min of jump beyond protection at Middle check instead of 58 min "
+        "B against A Middle check: jump beyond protection, 28 min instead of 58 min "
         "different from 07:40 on; seen first in the level at the lower end of Lower pool"
     )
 
@@ -168,7 +168,7 @@ def test_a_cut_period_and_an_early_stop_are_told(runs, invented_run):
     page = " ".join(page_of({"early": runs["early"], "stopped": stopped}).split())
     assert "B stopped; stopped at 08:00: no step" in page
     assert "06:00 to 08:00 (2 h), the time that all of them cover" in page
-    assert "run stopped early at Alder branch, unlike A" in page
+    assert "Alder branch: run stopped early, not so in A" in page
 
 
 @pytest.mark.parametrize(

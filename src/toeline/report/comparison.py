@@ -18,6 +18,9 @@ from toeline.units import Display
 MOST_PLACES = 3
 """So many places of a quantity are listed, those that differ most."""
 
+MOST_INCIDENTS = 8
+"""So many differences of incidents are told in short."""
+
 BEST, NOT_BEST = "*", " "
 WHOLE_CANAL = "whole canal"
 
@@ -84,9 +87,25 @@ def _input_lines(comparison: Comparison, clock: RunClock, display: Display, widt
 def _short_lines(comparison: Comparison, clock: RunClock, display: Display, width: int) -> Iterator[str]:
     for place, contrast in enumerate(comparison.contrasts, start=1):
         yield paragraph(_against(contrast, comparison), width)
-        told = [words for row in comparison.incidents if (words := _incident_words(row, place, comparison, display))]
-        yield from _listed(told or ["the same incidents" if comparison.incidents else "no incident in either"], width)
+        yield from _listed(_incidents_in_short(comparison, place, display), width)
         yield from _listed([_start_words(contrast, comparison, clock)], width)
+
+
+def _incidents_in_short(comparison: Comparison, place: int, display: Display) -> list[str]:
+    """How the incidents of one run differ from those of the first: what is new or graver before what is less."""
+    if not any(row.sums[0] or row.sums[place] for row in comparison.incidents):
+        return ["no incident in either"]
+    graver = [row for row in comparison.incidents if _is_graver(row, place, 0)]
+    less = [row for row in comparison.incidents if row not in graver and _is_graver(row, 0, place)]
+    told = [_incident_words(row, place, comparison, display) for row in (*graver, *less)]
+    if len(told) > MOST_INCIDENTS:
+        told[MOST_INCIDENTS:] = [f"and {counted(len(told) - MOST_INCIDENTS, 'more difference')} of incidents, see below"]
+    return told or ["the same incidents"]
+
+
+def _is_graver(row: IncidentRow, one: int, other: int) -> bool:
+    incident = row.sums[one]
+    return incident is not None and incident.is_graver_than(row.sums[other])
 
 
 def _start_words(contrast: Contrast, comparison: Comparison, clock: RunClock) -> str:
@@ -97,30 +116,24 @@ def _start_words(contrast: Contrast, comparison: Comparison, clock: RunClock) ->
 
 
 def _incident_words(row: IncidentRow, place: int, comparison: Comparison, display: Display) -> str:
-    """How an incident of one run differs from that of the first; empty where it does not."""
+    """How an incident of one run differs from that of the first."""
     first, other = row.sums[0], row.sums[place]
-    subject = f"{row.what} at {row.where}"
-    if first is None or other is None:
-        return "" if first is other else _one_sided_words(subject, first, other, comparison.runs[0].letter)
-    if not (other.is_graver_than(first) or first.is_graver_than(other)):
-        return ""
-    lasting = [duration_text(one.seconds) for one in (other, first)]
-    words = f"{lasting[0]} of {subject}"
+    subject = f"{row.where}: {row.what}"
+    lasting = [_lasting(one) for one in (other, first)]
+    if not any(one is not None and one.seconds for one in (first, other)):
+        letter = comparison.runs[0].letter
+        return f"{subject}, not so in {letter}" if first is None else f"{subject} in {letter}, not so here"
+    words = f"{subject}, {lasting[0]}"
     if lasting[0] != lasting[1]:
         words += f" instead of {lasting[1]}"
+    if first is None or other is None:
+        return words
     worst = [value_text(one.worst.worst, one.worst.unit, display) for one in (other, first)]
-    return words if worst[0] == worst[1] else f"{words}, worst {worst[0]} instead of {worst[1]}"
+    return words if worst[0] == worst[1] else f"{words}; worst {worst[0]} instead of {worst[1]}"
 
 
-def _one_sided_words(subject: str, first: IncidentSum | None, other: IncidentSum | None, letter: str) -> str:
-    """An incident that only one of the two runs has."""
-    if other is not None:
-        lasting = f"{duration_text(other.seconds)} of " if other.seconds else ""
-        return f"{lasting}{subject} instead of none" if lasting else f"{subject}, unlike {letter}"
-    lasting = (
-        f" instead of {duration_text(first.seconds)}" if first is not None and first.seconds else f", unlike {letter}"
-    )
-    return f"no {subject}{lasting}"
+def _lasting(incident: IncidentSum | None) -> str:
+    return "none" if incident is None else duration_text(incident.seconds)
 
 
 def _schedule_lines(comparison: Comparison, clock: RunClock, display: Display, width: int) -> Iterator[str]:

@@ -31,9 +31,12 @@ def side_by_side(groups: Sequence[Group], columns: Sequence[str], width: int, *,
 
 
 def _cells(rows: Sequence[Row], columns: Sequence[str], places: Sequence[int]) -> tuple[list[str], list[list[str]]]:
-    """Header and rows of a table of some of the columns; rows are indented below the title of their group."""
-    header = ["", *(columns[place] for place in places)]
-    return header, [[f"{INDENT}{label}", *(cells[place] for place in places)] for label, cells in rows]
+    """Header and rows of a table of some of the columns, cells to the right; rows are indented below their title."""
+    sizes = {place: max(len(line[place]) for line in (columns, *(cells for _, cells in rows))) for place in places}
+    header = ["", *(columns[place].rjust(size) for place, size in sizes.items())]
+    return header, [
+        [f"{INDENT}{label}", *(cells[place].rjust(size) for place, size in sizes.items())] for label, cells in rows
+    ]
 
 
 def _titled(groups: Sequence[Group], lines: Sequence[str], width: int) -> Iterator[str]:
