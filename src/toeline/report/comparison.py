@@ -99,7 +99,8 @@ def _incidents_in_short(comparison: Comparison, place: int, display: Display) ->
     less = [row for row in comparison.incidents if row not in graver and _is_graver(row, 0, place)]
     told = [_incident_words(row, place, comparison, display) for row in (*graver, *less)]
     if len(told) > MOST_INCIDENTS:
-        told[MOST_INCIDENTS:] = [f"and {counted(len(told) - MOST_INCIDENTS, 'more difference')} of incidents, see below"]
+        more = counted(len(told) - MOST_INCIDENTS, "more difference")
+        told[MOST_INCIDENTS:] = [f"and {more} of incidents, see below"]
     return told or ["the same incidents"]
 
 
