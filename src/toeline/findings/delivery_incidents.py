@@ -14,11 +14,14 @@ VOLUME_LACKING = "volume not delivered"
 
 
 def delivery_shortfalls(run: xr.Dataset, settling: Settling) -> Iterator[Incident]:
+    """Nothing is interpolated over a change of the demand, which may come at once."""
     times, demands, deliveries = (run[name].values for name in ("time", "demand", "delivery"))
     lacking = demands - deliveries
     seconds = hours_of_rows(times) * 3600.0
     for offtake, (name, pool) in enumerate(zip(names(run["offtake"]), names(run["offtake_pool"]), strict=True)):
-        for spell in spells(lacking[:, offtake] > SHORTFALL_FROM, times):
+        margin = SHORTFALL_FROM - lacking[:, offtake]
+        changes = np.diff(demands[:, offtake], prepend=demands[:1, offtake]) != 0.0
+        for spell in spells(margin < 0.0, times, np.where(changes, np.nan, margin)):
             row = spell.first + int(np.argmax(lacking[spell.rows, offtake]))
             volume = float(lacking[spell.rows, offtake] @ seconds[spell.rows])
             yield Incident(

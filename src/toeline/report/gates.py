@@ -14,11 +14,19 @@ def hazard_lines(gates: Sequence[GateJumps], clock: RunClock, width: int) -> Ite
     """Floor and people side by side: little of one says nothing about the other; then when the rollers stood."""
     rows = [(gate.gate, _hours(gate.beyond_protection_hours), _hours(gate.roller_hours)) for gate in gates]
     yield table(("", "floor: jump beyond protection", "people: drowned roller"), rows, width)
+    for times, named in _gates_by_roller_times(gates, clock).items():
+        yield paragraph(f"Roller below {', '.join(named)}: {times}", width, hanging=INDENT * 2)
+    yield paragraph("At no hour is any place below a gate safe to enter, with a roller or without.", width)
+
+
+def _gates_by_roller_times(gates: Sequence[GateJumps], clock: RunClock) -> dict[str, list[str]]:
+    """Names of the gates that had rollers at the same times, by these."""
+    found: dict[str, list[str]] = {}
     for gate in gates:
         if gate.rollers:
             times = clock.spans([(roller.start, roller.end) for roller in gate.rollers])
-            yield paragraph(f"Roller below {gate.gate}: {times}", width, hanging=INDENT * 2)
-    yield paragraph("At no hour is any place below a gate safe to enter, with a roller or without.", width)
+            found.setdefault(times, []).append(gate.gate)
+    return found
 
 
 def margin_lines(gates: Sequence[GateJumps], clock: RunClock, display: Display, width: int) -> Iterator[str]:

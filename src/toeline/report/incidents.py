@@ -10,6 +10,9 @@ from toeline.report.run_clock import RunClock
 from toeline.report.values import value_text
 from toeline.units import Display
 
+SETTLING = (
+    "Settling: waves of a gate move still travel through a pool beside the place; levels are least trustworthy then."
+)
 NOTHING_FOUND = (
     "No incident. Looked for: jumps beyond the protected floor, water above bank or lining, velocities over the limit "
     "of a surface and the limits of the canal file, where it gives them, deliveries that fall short. That nothing was "
@@ -27,6 +30,8 @@ def incident_lines(found: Sequence[Incident], clock: RunClock, display: Display,
         yield paragraph(f"{worst.where}: {worst.what}{f', {times}' if times else ''}", width, hanging=INDENT * 2)
         for detail in _details(worst, together, clock, display):
             yield paragraph(detail, width, indent=INDENT * 2, hanging=INDENT * 3)
+    if any(incident.settling for incident in found):
+        yield paragraph(SETTLING, width)
 
 
 def _together(found: Sequence[Incident]) -> list[list[Incident]]:
@@ -52,7 +57,7 @@ def _details(worst: Incident, together: Sequence[Incident], clock: RunClock, dis
     for measures in zip(*(incident.also for incident in together), strict=True):
         yield _measure_words(_combined(measures, together.index(worst)), display)
     if any(incident.settling for incident in together):
-        yield "in part while waves of a gate move still travelled: levels are least trustworthy then"
+        yield "in part while settling"
     if together[-1].runs_to_end and value != "-":
         yield "still going on when the run ended"
 

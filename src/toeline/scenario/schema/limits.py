@@ -56,7 +56,12 @@ class Limit(Table):
     kind: Literal[
         "fall", "rise", "above", "below", "freeboard", "velocity", "moves", "head on offtake", "avoided opening",
         "near modular limit",
-    ] = Field(description="What is limited; see below.")  # fmt: skip
+    ] = Field(
+        description="What is limited. fall, rise: of the level at both ends of a pool, in any window. above, below: a "
+        "level at one end of a pool. freeboard: the least along a pool, with the surge bound of the moves taken off. "
+        "velocity: the greatest over the surfaces of a pool. moves: of a gate, in any window. head on offtake: water "
+        "over its sill. avoided opening, near modular limit: time of a gate there, in any window."
+    )  # fmt: skip
     window: Annotated[int, _TIME] | None = Field(
         None,
         description="Length of the rolling window: the limit holds in every window of this length, whenever it begins.",
