@@ -163,6 +163,12 @@ class Display:
         """Write a length or a distance [m]."""
         return self._text(value, "length", 2)
 
+    def level_difference(self, value: float) -> str:
+        """Write a difference of two levels [m], finer than a gauge is read: to 0.1 cm or 0.01 ft."""
+        if self.system is UnitSystem.metric:
+            return "-" if math.isnan(value) else f"{round(value * 100.0, 1) + 0.0:.1f} cm"
+        return self._text(value, "length", 2)
+
     def discharge(self, value: float) -> str:
         """Write a discharge [m³/s]."""
         return self._text(value, "discharge", 3 if self.system is UnitSystem.metric else 1)

@@ -10,4 +10,5 @@ class ExitStatus(IntEnum):
     RUN_FAILED = 1
     WRONG_USE = 2
     INCIDENT_FOUND = 3
+    TEST_NOT_PASSED = 3
     INTERRUPTED = 130
