@@ -24,9 +24,9 @@ from toeline.units import Display
 _LEFT_OUT = (
     "All runs share the canal file, the gate laws and one-dimensional flow: a wrong roughness, gate scale or gauge "
     "zero moves them all alike and does not show here. Fronts of surges are smeared, and waves across the canal, air, "
-    "debris and the doubt of gate ratings (some per cent at best, more near the modular limit) are in none of them. Small "
-    "differences say that this day was computed well as it is described; they make no place safe. Verify gauges, gate "
-    "scales and one jump in the field."
+    "debris and the doubt of gate ratings (some per cent at best, more near the modular limit) are in none of them. "
+    "Small differences say that this day was computed well as it is described; they make no place safe. Verify gauges, "
+    "gate scales and one jump in the field."
 )
 
 
@@ -57,7 +57,8 @@ def _title(found: Verification, clock: RunClock, width: int) -> str:
         "How far the answer moves when the same day is computed in other ways. Compared every "
         f"{every}: levels at both ends of every pool, discharges and jumps at every gate. A pool is settling while "
         "waves of a change travel in it, once down and back; a gate is while a pool beside it is. Typical: 95 of 100 "
-        "differences are not larger."
+        "differences are not larger. Where water arrives some minutes earlier or later, levels differ for those "
+        "minutes by the height of its front."
     )
     return "\n".join([first, paragraph(day, width), paragraph(how, width)])
 

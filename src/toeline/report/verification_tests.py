@@ -56,8 +56,8 @@ def ramp_lines(found: Verification, display: Display, width: int) -> Iterator[st
     yield paragraph(
         f"The pools take up {display.volume(ramp.stored)}, as much as the rise brings in "
         f"{duration_text(ramp.volume_lag)}. Half of the rise leaves the tail {_time(ramp.half_passed)} after half of "
-        f"it came in. From head to tail a small fast wave needs {_time(ramp.fast_wave)}, a slow wave as on uniform flow "
-        f"{_time(ramp.slow_wave)}. Pools between gates that are not moved fill like basins: there the volume that "
+        f"it came in. From head to tail a small fast wave needs {_time(ramp.fast_wave)}, a slow wave as on uniform "
+        f"flow {_time(ramp.slow_wave)}. Pools between gates that are not moved fill like basins: there the volume that "
         "they take up sets the time.",
         width,
     )
