@@ -7,7 +7,7 @@ import click
 
 from toeline.cli.exit_status import ExitStatus
 from toeline.cli.input_files import INPUT_FILE, load_plans
-from toeline.cli.terminal import note, page_width, progress_bar, show
+from toeline.cli.terminal import WIDEST_PAGE, note, page_width, progress_bar, show
 from toeline.errors import RunError
 
 if TYPE_CHECKING:
@@ -50,27 +50,24 @@ def command(
     A mass test and a ramp test tell whether the computing loses water. This is how to see whether the quasi-steady
     answer is good enough for this canal; it makes no place safe. No file of results is written.
     """
-    from toeline.cli.output_files import refuse_page, write_page
+    from toeline.cli.output_files import refuse_page
     from toeline.cli.run import tell_of_compiling
 
     scenarios = load_plans(day, plan, overrides)
     if output is not None:
         refuse_page(output, scenarios, overwrite)
     tell_of_compiling()
-    found = [verification_of(scenario) for scenario in scenarios]
-    text = told(found, scenarios, form, page_width() if output is None else 80)
-    if output is None:
-        show(text)
-    else:
-        write_page(output, text)
-        note(f"Written: {output}")
-    if any(verification.has_failed for verification in found):
+    found = [(scenario, verification) for scenario in scenarios if (verification := verification_of(scenario))]
+    if found:
+        tell(told(found, form, WIDEST_PAGE if output else page_width()), output)
+    if len(found) < len(scenarios) or any(verification.has_failed for _, verification in found):
         ctx.exit(ExitStatus.RUN_FAILED)
-    if strict and not all(verification.is_within_tolerance for verification in found):
+    if strict and not all(verification.is_within_tolerance for _, verification in found):
         ctx.exit(ExitStatus.TEST_NOT_PASSED)
 
 
-def verification_of(scenario: "Scenario") -> "Verification":
+def verification_of(scenario: "Scenario") -> "Verification | None":
+    """Verify one plan; nothing but a note where the day as it is cannot be run to its end."""
     from toeline.studies.verify import verify
 
     name = scenario.plan or scenario.day_path.stem
@@ -78,15 +75,26 @@ def verification_of(scenario: "Scenario") -> "Verification":
         with progress_bar(name) as progress:
             return verify(scenario, progress)
     except RunError as error:
-        raise RunError(f"{name}: {error}") from error
+        note(f"Error: {name}: {error}")
+        return None
 
 
-def told(found: list["Verification"], scenarios: list["Scenario"], form: str, width: int) -> str:
+def told(found: "list[tuple[Scenario, Verification]]", form: str, width: int) -> str:
     """All pages, one after another, or a JSON list."""
     from toeline.report.verification import verification_page
     from toeline.report.verification_json import verification_json
 
     if form == "json":
-        return verification_json(found)
-    pages = (verification_page(v, s.display, width=width) for v, s in zip(found, scenarios, strict=True))
+        return verification_json([verification for _, verification in found])
+    pages = (verification_page(verification, scenario.display, width=width) for scenario, verification in found)
     return "\n\n\n".join(pages)
+
+
+def tell(text: str, output: Path | None) -> None:
+    from toeline.cli.output_files import write_page
+
+    if output is None:
+        show(text)
+        return
+    write_page(output, text)
+    note(f"Written: {output}")

@@ -12,7 +12,7 @@ import xarray as xr
 from toeline.findings.closure import TAKEN_FROM_POOLS, volume_passed
 
 DRIFT_TOLERANCE = 0.01
-VOLUME_TOLERANCE = 0.002
+VOLUME_TOLERANCE = 0.005
 PASSED_TOLERANCE = 0.01
 RETURN_TOLERANCE = 0.01
 """All four (choices) as shares: of the ramp, of the volume taken up, of the ramp, of the rise at the tail."""
