@@ -101,6 +101,12 @@ def test_feet_for_those_who_read_feet(run_of):
     assert "spacing 164 ft instead of 328.1 ft" in section(page, "With half the spacing")
 
 
+def test_only_what_both_runs_have_is_compared(run_of):
+    lines = section(page_of(found_in(run_of(), half_the_spacing=run_of())), "With half the spacing")
+    assert "jump ends, settled" in lines
+    assert "settling" not in lines.replace("No pool was settling at any time.", "")
+
+
 def test_discharges_are_told_with_their_share(run_of):
     run, other = run_of(gate_discharge=np.full((49, 2), 4.0)), run_of(gate_discharge=np.where(HALF_WAY, 4.1, 4.0))
     page = page_of(found_in(run, local_inertia=other))

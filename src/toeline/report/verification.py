@@ -115,9 +115,7 @@ def _incident_sentence(found: Verification) -> str:
             changes += [f"{place} is gone {member_title(member)}" for place in sorted(as_it_is - others)]
     if changes:
         return f"Incidents: {'; '.join(changes)}."
-    return (
-        "Incidents: the same in all runs, though not of the same length." if as_it_is else "Incidents: none in any run."
-    )
+    return "Incidents: the same in all runs; their lengths stand below." if as_it_is else "Incidents: none in any run."
 
 
 def _bound_sentence(checks: Sequence[BoundCheck], display: Display) -> str:

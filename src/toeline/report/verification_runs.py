@@ -37,8 +37,11 @@ def member_lines(member: Member, clock: RunClock, display: Display, width: int) 
     if member.reason:
         yield paragraph(f"Not run: {member.reason}.", width)
         return
-    rows = [_movement_row(movement, clock, display) for movement in member.movements]
+    compared = [movement for movement in member.movements if np.isfinite(movement.typical)]
+    rows = [_movement_row(movement, clock, display) for movement in compared]
     yield table(("", "typical", "at most", "where and when"), rows, width)
+    if not any(movement.settling for movement in compared):
+        yield paragraph("No pool was settling at any time.", width)
     for change in member.jump_changes:
         yield paragraph(_jump_words(change), width, hanging=INDENT * 2)
 
@@ -55,8 +58,6 @@ def _setting_words(setting: Setting, display: Display) -> str:
 
 def _movement_row(movement: Movement, clock: RunClock, display: Display) -> tuple[str, ...]:
     name = f"{_NAMES[movement.quantity]}, {'settling' if movement.settling else 'settled'}"
-    if np.isnan(movement.typical):
-        return (name, "-", "-", "nothing to compare")
     largest = movement.largest
     place = f"{movement.where}, {clock.at(largest.time)}" if largest.value > 0.0 else "-"
     if movement.quantity == "discharge" and largest.value > 0.0 and movement.original != 0.0:
