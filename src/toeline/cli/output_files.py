@@ -1,5 +1,6 @@
 """Where a run is written, and what must not be lost by it."""
 
+import os
 import re
 from collections.abc import Sequence
 from pathlib import Path
@@ -55,7 +56,7 @@ def refuse_page(output: Path, scenarios: Sequence["Scenario"], overwrite: bool) 
 
 def write_page(output: Path, text: str) -> None:
     """Write a page whole or not at all."""
-    half = output.with_name(f"{output.name}.partial")
+    half = output.with_name(f".{output.name}.{os.getpid()}.partial")
     try:
         half.write_text(f"{text}\n", encoding="utf-8")
         half.replace(output)
