@@ -151,6 +151,12 @@ class Display:
         """Write a level above the datum [m]."""
         return self._text(value, "length", 2)
 
+    def level_difference(self, value: float) -> str:
+        """Write a difference of two levels [m], finer than a gauge is read: to 0.1 cm or 0.01 ft."""
+        if self.system is UnitSystem.metric:
+            return "-" if math.isnan(value) else f"{round(value * 100.0, 1) + 0.0:.1f} cm"
+        return self._text(value, "length", 2)
+
     def depth(self, value: float) -> str:
         """Write a depth above the bed [m]."""
         return self._text(value, "length", 2)

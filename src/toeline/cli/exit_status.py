@@ -10,5 +10,6 @@ class ExitStatus(IntEnum):
     RUN_FAILED = 1
     WRONG_USE = 2
     INCIDENT_FOUND = 3
+    TEST_NOT_PASSED = 3
     RUNS_DIFFER = 4
     INTERRUPTED = 130

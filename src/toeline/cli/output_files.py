@@ -1,5 +1,6 @@
 """Where a run is written, and what must not be lost by it."""
 
+import os
 import re
 from collections.abc import Sequence
 from pathlib import Path
@@ -31,7 +32,7 @@ def refuse_outputs(outputs: Sequence[Path], scenarios: Sequence["Scenario"], ove
     """Raise UsageError, before any work is done, where writing an output would fail or lose something."""
     if len(set(outputs)) < len(outputs):
         raise UsageError("two plans would go to one file: rename a plan, or run one at a time with --plan.")
-    inputs = {path.resolve() for s in scenarios for path in (s.day_path, s.canal_path, s.start_file) if path}
+    inputs = _inputs(scenarios)
     for output in outputs:
         file = RunFile(output, overwrite)
         if file.path in inputs:
@@ -41,3 +42,27 @@ def refuse_outputs(outputs: Sequence[Path], scenarios: Sequence["Scenario"], ove
         for standing in (output, shown_path(file.partial_path)):
             if standing.exists() and not overwrite:
                 raise UsageError(f"{standing} exists: name another file with -o, or replace it with --overwrite.")
+
+
+def refuse_page(output: Path, scenarios: Sequence["Scenario"], overwrite: bool) -> None:
+    """Raise UsageError, before any work is done, where writing a page would fail or lose something."""
+    if output.resolve() in _inputs(scenarios):
+        raise UsageError(f"{output} is an input and would be lost: name another file with -o.")
+    if not output.parent.is_dir():
+        raise UsageError(f"there is no directory {output.parent} to write {output.name} in.")
+    if output.exists() and not overwrite:
+        raise UsageError(f"{output} exists: name another file with -o, or replace it with --overwrite.")
+
+
+def write_page(output: Path, text: str) -> None:
+    """Write a page whole or not at all."""
+    half = output.with_name(f".{output.name}.{os.getpid()}.partial")
+    try:
+        half.write_text(f"{text}\n", encoding="utf-8")
+        half.replace(output)
+    finally:
+        half.unlink(missing_ok=True)
+
+
+def _inputs(scenarios: Sequence["Scenario"]) -> set[Path]:
+    return {path.resolve() for s in scenarios for path in (s.day_path, s.canal_path, s.start_file) if path}
