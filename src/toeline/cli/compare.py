@@ -11,7 +11,7 @@ import click
 from toeline.cli.exit_status import ExitStatus
 from toeline.cli.input_files import INPUT_FILE, is_run, load_plans
 from toeline.cli.run import tell_of_compiling
-from toeline.cli.terminal import page_width, progress_bar, show
+from toeline.cli.terminal import WIDEST_PAGE, page_width, progress_bar
 from toeline.errors import RunError, UsageError
 
 if TYPE_CHECKING:
@@ -79,32 +79,25 @@ def command(
     place and time. Then the incidents and the indicators of each stand side by side. Runs that differ in more than
     their plans are refused unless told otherwise.
     """
+    from toeline.cli.output_files import input_files, refuse_page, show_or_write
     from toeline.findings.comparison import compare
     from toeline.report.input_words import refusal_words
     from toeline.report.run_clock import RunClock
     from toeline.units import Display, UnitSystem
 
-    refuse_output(output, files, overwrite)
-    with opened_runs(sources_of(files, plans, overrides)) as runs:
+    sources = sources_of(files, plans, overrides)
+    if output is not None:
+        read = input_files([source.scenario for source in sources if source.scenario])
+        refuse_page(output, {*files, *read}, overwrite)
+    with opened_runs(sources) as runs:
         comparison = compare(runs)
         first = next(iter(runs.values()))
         clock, display = RunClock(first), Display(UnitSystem(first.attrs["units_for_display"]))
         if not (comparison.have_same_inputs or different_inputs):
             raise UsageError(refusal_words(comparison, clock, display))
-        tell(told_as(form, comparison, clock, display), output)
+        width = WIDEST_PAGE if output else page_width()
+        show_or_write(told_as(form, comparison, clock, display, width), output)
     ctx.exit(exit_status(comparison, strict, alike))
-
-
-def refuse_output(output: Path | None, files: Sequence[Path], overwrite: bool) -> None:
-    """Raise UsageError, before any work is done, where writing the output would fail or lose something."""
-    if output is None:
-        return
-    if output.resolve() in {file.resolve() for file in files}:
-        raise UsageError(f"{output} is one of the files to compare and would be lost: name another file with -o.")
-    if not output.parent.is_dir():
-        raise UsageError(f"there is no directory {output.parent} to write {output.name} in.")
-    if output.exists() and not overwrite:
-        raise UsageError(f"{output} exists: name another file with -o, or replace it with --overwrite.")
 
 
 @dataclass(frozen=True)
@@ -171,23 +164,13 @@ def run_names(places: Sequence[tuple[Path, str]]) -> list[str]:
     raise UsageError("a run or plan is named twice: name every one once.")
 
 
-def told_as(form: str, comparison: "Comparison", clock: "RunClock", display: "Display") -> str:
+def told_as(form: str, comparison: "Comparison", clock: "RunClock", display: "Display", width: int) -> str:
     from toeline.report.comparison import comparison_page
     from toeline.report.comparison_rows import comparison_csv, comparison_json
 
     if form == "text":
-        return comparison_page(comparison, clock, display, width=page_width()) + "\n"
+        return comparison_page(comparison, clock, display, width=width)
     return (comparison_csv if form == "csv" else comparison_json)(comparison, clock, display)
-
-
-def tell(text: str, output: Path | None) -> None:
-    """Show it, or write it to a file that appears complete or not at all."""
-    if output is None:
-        show(text.removesuffix("\n"))
-        return
-    partial = output.with_name(f"{output.name}.partial")
-    partial.write_text(text, encoding="utf-8", newline="")
-    partial.replace(output)
 
 
 def exit_status(comparison: "Comparison", strict: bool, alike: bool) -> ExitStatus:

@@ -7,7 +7,7 @@ import click
 
 from toeline.cli.exit_status import ExitStatus
 from toeline.cli.input_files import INPUT_FILE, load_plans
-from toeline.cli.terminal import WIDEST_PAGE, note, page_width, progress_bar, show
+from toeline.cli.terminal import WIDEST_PAGE, note, page_width, progress_bar
 from toeline.errors import RunError
 
 if TYPE_CHECKING:
@@ -50,16 +50,16 @@ def command(
     A mass test and a ramp test tell whether the computing loses water. This is how to see whether the quasi-steady
     answer is good enough for this canal; it makes no place safe. No file of results is written.
     """
-    from toeline.cli.output_files import refuse_page
+    from toeline.cli.output_files import input_files, refuse_page, show_or_write
     from toeline.cli.run import tell_of_compiling
 
     scenarios = load_plans(day, plan, overrides)
     if output is not None:
-        refuse_page(output, scenarios, overwrite)
+        refuse_page(output, input_files(scenarios), overwrite)
     tell_of_compiling()
     found = [(scenario, verification) for scenario in scenarios if (verification := verification_of(scenario))]
     if found:
-        tell(told(found, form, WIDEST_PAGE if output else page_width()), output)
+        show_or_write(told(found, form, WIDEST_PAGE if output else page_width()), output)
     if len(found) < len(scenarios) or any(verification.has_failed for _, verification in found):
         ctx.exit(ExitStatus.RUN_FAILED)
     if strict and not all(verification.is_within_tolerance for _, verification in found):
@@ -88,13 +88,3 @@ def told(found: "list[tuple[Scenario, Verification]]", form: str, width: int) ->
         return verification_json([verification for _, verification in found])
     pages = (verification_page(verification, scenario.display, width=width) for scenario, verification in found)
     return "\n\n\n".join(pages)
-
-
-def tell(text: str, output: Path | None) -> None:
-    from toeline.cli.output_files import write_page
-
-    if output is None:
-        show(text)
-        return
-    write_page(output, text)
-    note(f"Written: {output}")

@@ -60,11 +60,11 @@ COLUMNS = tuple(field.name for field in fields(ComparisonRow))
 def comparison_csv(comparison: Comparison, clock: RunClock, display: Display) -> str:
     """All rows below a header line, empty where there is no value."""
     sheet = io.StringIO(newline="")
-    writer = csv.DictWriter(sheet, COLUMNS)
+    writer = csv.DictWriter(sheet, COLUMNS, lineterminator="\n")
     writer.writeheader()
     for row in comparison_rows(comparison, clock, display):
         writer.writerow({name: _cell(value) for name, value in asdict(row).items()})
-    return sheet.getvalue()
+    return sheet.getvalue().removesuffix("\n")
 
 
 def comparison_json(comparison: Comparison, clock: RunClock, display: Display) -> str:
@@ -83,7 +83,7 @@ def comparison_json(comparison: Comparison, clock: RunClock, display: Display) -
         "rows": [asdict(row) for row in comparison_rows(comparison, clock, display)],
         "caution": clock.run.attrs["comment"],
     }
-    return json.dumps(about, ensure_ascii=False, allow_nan=False, indent=1) + "\n"
+    return json.dumps(about, ensure_ascii=False, allow_nan=False, indent=1)
 
 
 def comparison_rows(comparison: Comparison, clock: RunClock, display: Display) -> Iterator[ComparisonRow]:

@@ -45,6 +45,9 @@ DIMENSIONS = "dimensions"
 START_DIGEST = "start_file_digest"
 """Where the resolved settings tell by a digest which run a run goes on from; null where it begins afresh."""
 
+_SHARED = ("canal", "day", START_DIGEST)
+"""Settings beside those of the plan."""
+
 _NAMES_AND_DISPLAY = (
     ("canal", "units"),
     ("day", "canal"),
@@ -103,7 +106,7 @@ def run_attributes(
 
 def shared_settings(settings: Mapping[str, Any]) -> dict[str, Any]:
     """The resolved settings that the numbers of a run depend on, beside its plan."""
-    shared = {key: value for key, value in copy.deepcopy(dict(settings)).items() if key != DIMENSIONS}
+    shared = {key: copy.deepcopy(settings[key]) for key in _SHARED if key in settings}
     for *tables, key in _NAMES_AND_DISPLAY:
         inner = shared
         for table in tables:
