@@ -102,7 +102,7 @@ def test_equal_runs_are_alike(folder, call):
         (["day.toml", "--plan", "hold", "--plan", "rasie"], 'did you mean "raise"?'),
         (["day.toml", "--plan", "hold", "--plan", "hold"], "a run or plan is named twice"),
         (["canal.toml"], "canal.toml is a canal file: name a day file"),
-        (["day.toml", "-o", "day.toml"], "day.toml is one of the files to compare and would be lost"),
+        (["day.toml", "-o", "day.toml"], "day.toml is an input and would be lost"),
         (["day.toml", "-o", "nowhere/page.txt"], "there is no directory nowhere"),
     ],
 )

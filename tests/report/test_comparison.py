@@ -26,6 +26,7 @@ def orders(*entries: tuple[float, str, float]) -> dict[str, np.ndarray]:
     return {
         "order_time": np.array(hours) * 3600.0,
         "order_gate": np.array(gates, dtype=object),
+        "order_source": np.full(count, "schedule", dtype=object),
         "order_kind": np.ones(count, dtype=np.int8),
         "order_value": np.array(moves),
         "order_opening_before": np.full(count, 0.40),
