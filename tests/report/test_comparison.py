@@ -3,6 +3,7 @@
 import csv
 import io
 import json
+from pathlib import Path
 
 import numpy as np
 import pytest
@@ -253,3 +254,8 @@ def test_json_carries_the_same_rows_and_what_was_compared(runs):
     )  # fmt: skip
     assert about["caution"] == CAUTION
     assert [row["part"] for row in about["rows"]] == [row["part"] for row in read_csv(runs)]
+
+
+def test_the_page_of_the_documentation_names_every_column():
+    page = (Path(__file__).parents[2] / "docs" / "comparing.md").read_text(encoding="utf-8")
+    assert [column for column in COLUMNS if f"| `{column}` |" not in page] == []
