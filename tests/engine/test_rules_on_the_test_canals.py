@@ -60,3 +60,35 @@ def test_gates_above_the_step_stay_and_those_below_come_to_rest(stepped):
     numbers = np.array([int(gate.removeprefix("Check ")) for gate in run["order_gate"]])
     assert numbers.min() == STEPPED
     assert np.count_nonzero(run["order_time"] > 20 * 3600.0) <= 2
+
+
+FOURTH, MORE, MINUTES_AT = 4, 0.3, 6 * 60
+
+
+def fed_forward(folder, **keys):
+    """Canal 2 under hold downstream level, whose fourth offtake takes more from six o'clock on."""
+    taken = deliveries_at_low_flow(CANAL_2)
+    deliveries = {f"Offtake {k + 1}": [["00:00", taking]] for k, taking in enumerate(taken)}
+    deliveries[f"Offtake {FOURTH}"].append(["06:00", taken[FOURTH - 1] + MORE])
+    rules = [
+        {"kind": "hold downstream level", "gate": f"Check {k + 1}", "every": "1 min", **keys}
+        for k in range(len(CANAL_2.gate_widths))
+    ]
+    tables = {"length": "12 h", "deliveries": deliveries, "plans": {"held": {"rules": rules}}}
+    return RecordedRun(scenario_of(folder, canal_file(CANAL_2), day(CANAL_2.low[0][0], **tables)))
+
+
+def test_feedforward_comes_the_published_delays_ahead(tmp_path):
+    run = fed_forward(tmp_path, feedforward="wave")
+    for check in range(1, FOURTH):
+        ahead = sum(delay for _, delay, _ in CANAL_2.low[check:FOURTH]) / 60.0
+        first = run["order_time"][run["order_gate"] == f"Check {check}"][0] / 60.0
+        assert MINUTES_AT - first == pytest.approx(ahead, rel=0.10)
+
+
+def test_feedforward_spares_the_pools_most_of_the_disturbance(tmp_path):
+    plain, ahead = fed_forward(tmp_path), fed_forward(tmp_path, feedforward="wave")
+    pools = slice(1, FOURTH)  # the first is fed by the inflow, which no gate changes
+    errors = [np.abs(run["pool_tail_level"] - run.network.names.target_level)[:, pools].max() for run in (plain, ahead)]
+    assert errors[1] < 0.8 * errors[0]
+    assert ahead["order_time"].size < 0.5 * plain["order_time"].size
