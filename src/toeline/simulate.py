@@ -5,6 +5,7 @@ import os
 from collections.abc import Callable
 from dataclasses import fields, is_dataclass
 from datetime import UTC, datetime
+from hashlib import sha256
 from typing import Any
 
 import numpy as np
@@ -24,10 +25,19 @@ from toeline.network.timetable import Timetable, timetable_of
 from toeline.results.dataset import DatasetSink, open_run
 from toeline.results.end_state import read_end_state
 from toeline.results.netcdf_writer import NetcdfSink
-from toeline.results.provenance import COMPLETE, run_attributes
+from toeline.results.provenance import (
+    COMPLETE,
+    DIMENSIONS,
+    RULE_DIMENSIONS,
+    RULES,
+    START_DIGEST,
+    STUCK,
+    run_attributes,
+)
 from toeline.results.variables import GAUGE_SIDES
-from toeline.scenario import Scenario
+from toeline.scenario import RuleChoice, Scenario
 from toeline.scenario.limits import limits_of
+from toeline.scenario.setting_dimensions import setting_dimensions
 
 
 def simulate(
@@ -98,14 +108,23 @@ def _avoided_openings(scenario: Scenario) -> dict[str, list[tuple[float, float]]
 
 
 def _settings(scenario: Scenario) -> dict[str, Any]:
-    """Canal and day with defaults filled in, fit for JSON."""
+    """Canal and day with defaults filled in, what their numbers measure, and the state gone on from; fit for JSON."""
     plain = {
         "canal": scenario.canal.model_dump(),
         "day": scenario.day.model_dump(exclude={"plans"}),
-        "rules": [{"kind": rule.kind, **vars(rule.given)} for rule in scenario.rules],
-        "stuck": list(scenario.stuck),
+        START_DIGEST: sha256(scenario.start_file.read_bytes()).hexdigest() if scenario.start_file else None,
+        RULES: [{"kind": rule.kind, **vars(rule.given)} for rule in scenario.rules],
+        STUCK: list(scenario.stuck),
+        RULE_DIMENSIONS: {rule.kind: _rule_dimensions(rule) for rule in scenario.rules},
+        DIMENSIONS: setting_dimensions(),
     }
     return json.loads(json.dumps(plain, default=_plain))
+
+
+def _rule_dimensions(rule: RuleChoice) -> dict[str, str]:
+    settings = rule.found.rule.settings.items()
+    measured = {key: "duration" if setting.takes == "duration" else setting.dimension for key, setting in settings}
+    return {key: dimension for key, dimension in measured.items() if dimension}
 
 
 def _plain(value: Any) -> Any:

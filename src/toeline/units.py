@@ -169,6 +169,12 @@ class Display:
         """Write a level above the datum [m]."""
         return self._text(value, "length", 2)
 
+    def level_difference(self, value: float) -> str:
+        """Write a difference of two levels [m], finer than a gauge is read: to 0.1 cm or 0.01 ft."""
+        if self.system is UnitSystem.metric:
+            return "-" if math.isnan(value) else f"{round(value * 100.0, 1) + 0.0:.1f} cm"
+        return self._text(value, "length", 2)
+
     def depth(self, value: float) -> str:
         """Write a depth above the bed [m]."""
         return self._text(value, "length", 2)
@@ -180,6 +186,16 @@ class Display:
     def length(self, value: float) -> str:
         """Write a length or a distance [m]."""
         return self._text(value, "length", 2)
+
+    def move(self, value: float) -> str:
+        """Write by how much an opening is changed [m], without its sign: metric in cm, to the mm where need be."""
+        if self.system is UnitSystem.us_customary or math.isnan(value):
+            return self.length(abs(value))
+        return f"{round(abs(value) * 100, 1):g} cm"
+
+    def level_change(self, value: float) -> str:
+        """Write by how much two levels differ [m], without the sign: metric to the cm."""
+        return self.move(value if math.isnan(value) else round(value, 2))
 
     def discharge(self, value: float) -> str:
         """Write a discharge [m³/s]."""
