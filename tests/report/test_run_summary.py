@@ -159,7 +159,7 @@ def test_a_gauge_shows_its_readings_as_on_the_staff(invented_run, metric):
 def test_roughness_is_told_only_where_the_calendar_changes_it(invented_run, metric):
     quiet, weedy = invented_run(), invented_run(pool_roughness_factor=np.full((49, 2), 1.15))
     assert "ROUGHNESS" not in run_summary(quiet, metric)
-    assert "Upper pool 1.150 1.150" in " ".join(section(run_summary(weedy, metric), "ROUGHNESS").split())
+    assert "Upper pool 1.150 1.150 1.150" in " ".join(section(run_summary(weedy, metric), "ROUGHNESS").split())
 
 
 def test_the_ledger_is_told_pool_by_pool_with_losses(invented_run, metric):
