@@ -40,7 +40,7 @@ def test_flags_are_bytes_in_both():
         (
             variables.DISCHARGE_QUALITIES,
             "QUALITY_GOOD QUALITY_NEAR_LIMIT QUALITY_LIP_NEAR_SURFACE QUALITY_VERY_DROWNED QUALITY_REVERSE "
-                "QUALITY_UNEVEN_BAYS",
+            "QUALITY_UNEVEN_BAYS",
         ),
         (
             variables.JUMP_STATES,

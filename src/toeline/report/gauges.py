@@ -39,3 +39,9 @@ def roughness_lines(run: xr.Dataset, width: int) -> Iterator[str]:
         for pool, first, last, most in zip(names(run["pool"]), factors[0], factors[-1], factors.max(0), strict=True)
     ]
     yield table(("factor on Manning's n", "at the start", "at the end", "greatest"), rows, width)
+    if (factors != factors[0]).any():
+        yield paragraph(
+            "The factor changes at midnight, all at once. The wave that a large change sends through the pools is not "
+            "real: cutting weeds takes days.",
+            width,
+        )
