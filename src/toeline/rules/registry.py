@@ -154,7 +154,7 @@ def _of_module(kind: str, module: ModuleType, name: str, path: str = "") -> Foun
         raise UnknownRuleError(f"{name} has no {' and no '.join(sorted(rule.__abstractmethods__))} in {file}")
     if not all(isinstance(setting, Setting) for setting in rule.settings.values()):
         raise UnknownRuleError(f"{name} in {file} has settings that are none; each is a toeline.rules.Setting")
-    source = Path(file).read_text(encoding="utf-8") if module.__file__ else ""
+    source = Path(file).read_text(encoding="utf-8", errors="replace") if module.__file__ else ""
     return FoundRule(kind, rule, file, source)
 
 
