@@ -45,10 +45,8 @@ def simulate(
     network = network_of(scenario.canal, scenario.day.period.spacing)
     timetable = timetable_of(scenario, network)
     check_mild(scenario, timetable)
-    start = _start(scenario, network, timetable)
-    level, discharge = (
-        (start["end_level"], start["end_discharge"]) if isinstance(start, dict) else (start.level, start.discharge)
-    )
+    start = start_of(scenario, network, timetable)
+    level, discharge = levels_and_discharges(start)
     description = static_values(network, level, discharge), attributes(scenario), scenario.day.period.start
     sink = DatasetSink(*description) if output is None else NetcdfSink(output, *description, overwrite=overwrite)
     run = Run(network, timetable, sink, start)
@@ -61,7 +59,8 @@ def simulate(
     return sink.dataset if isinstance(sink, DatasetSink) else open_run(sink.written_path)
 
 
-def _start(scenario: Scenario, network: Network, timetable: Timetable) -> Start | dict[str, np.ndarray]:
+def start_of(scenario: Scenario, network: Network, timetable: Timetable) -> Start | dict[str, np.ndarray]:
+    """The state at the start: computed, or the end state of the run that the day goes on from."""
     if scenario.start_file is None:
         return starting_state(scenario, network, timetable)
     nodes = network.channel.nodes[: network.canal_node_count]
@@ -69,6 +68,11 @@ def _start(scenario: Scenario, network: Network, timetable: Timetable) -> Start 
         scenario.start_file, start=scenario.day.period.start, chainage=nodes["chainage"], bed_level=nodes["bed_level"],
         labels={"gate": network.names.gates, "bay": network.names.bays, "offtake": network.names.offtakes},
     )  # fmt: skip
+
+
+def levels_and_discharges(start: Start | dict[str, np.ndarray]) -> tuple[np.ndarray, np.ndarray]:
+    """Levels by node [m] and discharges by link [m³/s] of a state at the start."""
+    return (start["end_level"], start["end_discharge"]) if isinstance(start, dict) else (start.level, start.discharge)
 
 
 def _stopped(run: Run, reason: BaseException) -> str:

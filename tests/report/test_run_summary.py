@@ -98,6 +98,7 @@ def test_the_ledger_is_in_both_units_with_its_residual(invented_run, metric):
 def order(invented_run, status: int, reason: str):
     return invented_run(
         order_time=np.array([1200.0]), order_gate=np.array(["Middle check"], dtype=object), order_kind=np.array([0]),
+        order_source=np.array(["schedule"], dtype=object),
         order_value=np.array([2.5]), order_opening_before=np.array([0.4]), order_opening_after=np.array([1.2]),
         order_completed=np.array([1500.0]), order_status=np.array([status]),
         order_reason=np.array([reason], dtype=object),

@@ -10,11 +10,13 @@ from toeline.findings.gauges import gauge_readings
 from toeline.findings.incidents import incidents
 from toeline.findings.jumps import gate_jumps
 from toeline.findings.ledger import ledger
+from toeline.findings.moves import gate_moves
 from toeline.report.bays import bay_lines
 from toeline.report.gates import hazard_lines, hour_lines, margin_lines
 from toeline.report.gauges import gauge_lines, roughness_lines
 from toeline.report.incidents import incident_lines
 from toeline.report.layout import heading, paragraph
+from toeline.report.moves import move_lines
 from toeline.report.orders import order_lines
 from toeline.report.run_clock import RunClock
 from toeline.report.water import escape_lines, ledger_lines
@@ -26,7 +28,7 @@ def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
     if not run.sizes["time"]:
         return paragraph("The run was stopped before anything reached the disk.", width, indent="")
     clock = RunClock(run)
-    gates = gate_jumps(run)
+    gates, moves = gate_jumps(run), gate_moves(run)
     sections = [
         ("What goes wrong", incident_lines(incidents(run), clock, display, width)),
         ("Floor and people", hazard_lines(gates, width)),
@@ -34,6 +36,7 @@ def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
         ("Hours in each state", hour_lines(gates, width)),
         ("Bays that move apart", bay_lines(uneven_bays(run), clock, display, width)),
         ("Orders", order_lines(run, clock, display, width)),
+        *([("Moves", move_lines(run, moves, clock, display, width))] if any(gate.moves for gate in moves) else []),
         ("Escapes", escape_lines(escape_spills(run), clock, display, width)),
         ("Staff gauges", gauge_lines(gauge_readings(run), clock, display, width)),
         ("Roughness", roughness_lines(run, width)),

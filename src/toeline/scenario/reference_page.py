@@ -12,7 +12,7 @@ from toeline.scenario.schema.canal import Canal
 from toeline.scenario.schema.day import Day
 from toeline.scenario.schema.day_series import SeriesTable
 from toeline.scenario.schema.plans import OrderEntry
-from toeline.scenario.schema.rules import table_of
+from toeline.scenario.schema.rules import Seconds, table_of
 from toeline.scenario.schema.table import Table, table_inside
 from toeline.scenario.schema.value_kinds import Duration, Quantity, ValueKind
 from toeline.units import FILE_UNITS, SPELLINGS, UnitSystem, quantity_text
@@ -62,7 +62,7 @@ rules whose `hours` do not overlap. Besides those below, a kind may be a rule of
 |---|---|
 | `"night_watch.py:NightWatch"` | the class `NightWatch` in the file `night_watch.py`, beside the day file |
 | `"canal_rules.night:NightWatch"` | the class in an installed package |
-| `"night watch"` | a rule that an installed package announces by an entry point of that name in the group `toeline.rules` |
+| `"night watch"` | a rule of an installed package, its entry point of that name in the group `toeline.rules` |
 
 Its code is run by every command that reads the day file, `toeline check` too: use files that you trust. Its text enters
 the digest of the inputs; what it imports itself does not.
@@ -166,6 +166,8 @@ def _default(field: FieldInfo) -> str:
             return quantity_text(field.default, kind.dimension, UnitSystem.metric)
         if isinstance(kind, Duration):
             return quantity_text(field.default / 1000, "duration", UnitSystem.metric)
+        if isinstance(kind, Seconds):
+            return quantity_text(field.default, "duration", UnitSystem.metric)
     return str(field.default).lower()
 
 

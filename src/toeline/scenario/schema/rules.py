@@ -105,7 +105,7 @@ class LeadTimesKind(ValueKind):
         return leads
 
     def describe(self) -> str:
-        return '`"wave"`, `"volume"`, or a table of these or durations by pool'
+        return '"wave", "volume", or a table of these or durations by pool'
 
     def json_schema(self) -> dict[str, Any]:
         by_pool = {"type": "object", "additionalProperties": {"type": "string"}}
@@ -144,7 +144,8 @@ def table_of(found: FoundRule) -> type[Table]:
         if default is None:
             annotation = annotation | None
         fields[key] = (annotation, Field(default, description=setting.description))
-    table: type[Table] = create_model(found.rule.__name__, __base__=Table, __doc__=found.rule.__doc__, **fields)
+    summary = " ".join((found.rule.__doc__ or "").split())
+    table: type[Table] = create_model(found.rule.__name__, __base__=Table, __doc__=summary, **fields)
     return table
 
 
