@@ -40,4 +40,6 @@ def test_weed_cut_at_midnight_lowers_the_water_and_loses_none(tmp_path):
     assert set(factor[hours >= 24.0]) == {1.0}
     assert np.abs(level[hours <= 24.0] - level[0]).max() <= 1e-6
     assert level[-1] == pytest.approx(float(run_of(tmp_path).pool_head_level[0, 0]), abs=1e-4)
+    assert run.settling[:, 0].values[hours == 24.0] == [1]
+    assert not run.settling[:, 0].values[hours < 24.0].any()
     assert np.abs(run.balance_residual).max() <= 1e-9 * run.canal_inflow_volume[-1]

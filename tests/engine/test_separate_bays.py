@@ -53,6 +53,16 @@ def test_jet_and_jump_are_those_of_the_bay_with_the_largest_unit_discharge(tmp_p
     assert run.jump_power == pytest.approx(9806.65 * float(run.gate_discharge * run.jump_energy_loss), rel=1e-5)
 
 
+def test_uneven_bays_that_the_tailwater_reaches_are_flagged(tmp_path):
+    qualities = {}
+    for name, openings, level in (("even", 0.5, 1.5), ("drowned", [0.3, 0.7], 1.5), ("free", [0.3, 0.7], 0.1)):
+        canal = stepped_canal(1, 1000.0, gate=SEPARATE, tail={"kind": "level", "level": level, "floor_level": 0.0})
+        start = {"state": "steady", "openings": {"G0": openings}}
+        run = simulate(scenario_of(tmp_path, canal, day(8.0, length="30 min", start=start)))
+        qualities[name] = run.discharge_quality.attrs["flag_meanings"].split()[int(run.discharge_quality[0, 0])]
+    assert qualities == {"even": "good", "drowned": "uneven_bays", "free": "good"}
+
+
 def test_order_moves_the_bay_that_it_names_and_is_listed_with_it(tmp_path):
     run = run_of(tmp_path, order("01:00", "G0", bay=2, by=0.1), order("01:30", "G1", by=-0.1))
     moved = (run.bay_opening[-1] - run.bay_opening[0]).values

@@ -32,13 +32,13 @@ def test_evaporation_from_eleven_metres_of_surface():
 
 def test_moritz_example_as_a_rate_through_the_wetted_perimeter():
     """Moritz (Bureau of Reclamation), S = 0.2·C·√(Q/V) ft³/s a mile with C = 0.66 ft/day, Q = 100 ft³/s, V = 2 ft/s:
-    0.9334 ft³/s a mile (formula from memory, recomputed). His 0.2·√A stands for a wetted perimeter of 3.27·√A: of a
-    section with that perimeter, the rate C gives the same.
+    0.9334 ft³/s a mile (formula from memory, recomputed). His 0.2·√A stands for a wetted perimeter: of the deeper
+    rectangle with that area and perimeter the rate C gives the same.
     """
     area = 50.0
     perimeter = 0.2 * area**0.5 * 86_400.0 / 5280.0
-    depth = 0.25 * (perimeter - (perimeter**2 - 8.0 * area) ** 0.5)  # the deeper of two rectangles has its depth wider
-    section = rectangle((perimeter - 2.0 * depth) * FOOT)
-    lost = loss_per_length(section, depth * FOOT, rate("0.66 ft/day"), 0.0)[0]
-    assert (perimeter - 2.0 * depth) * depth == pytest.approx(area, rel=1e-9)
+    depth = 0.25 * (perimeter + (perimeter**2 - 8.0 * area) ** 0.5)
+    width = perimeter - 2.0 * depth
+    lost = loss_per_length(rectangle(width * FOOT), depth * FOOT, rate("0.66 ft/day"), 0.0)[0]
+    assert width * depth == pytest.approx(area, rel=1e-9)
     assert lost * MILE / CUBIC_FOOT == pytest.approx(0.9334, abs=5e-5)

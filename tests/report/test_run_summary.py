@@ -100,6 +100,7 @@ def test_the_ledger_is_in_both_units_with_its_residual(invented_run, metric):
 def order(invented_run, status: int, reason: str):
     return invented_run(
         order_time=np.array([1200.0]), order_gate=np.array(["Middle check"], dtype=object), order_kind=np.array([0]),
+        order_source=np.array(["schedule"], dtype=object),
         order_value=np.array([2.5]), order_opening_before=np.array([0.4]), order_opening_after=np.array([1.2]),
         order_completed=np.array([1500.0]), order_status=np.array([status]),
         order_reason=np.array([reason], dtype=object),
@@ -161,7 +162,7 @@ def test_a_gauge_shows_its_readings_as_on_the_staff(invented_run, metric):
 def test_roughness_is_told_only_where_the_calendar_changes_it(invented_run, metric):
     quiet, weedy = invented_run(), invented_run(pool_roughness_factor=np.full((49, 2), 1.15))
     assert "ROUGHNESS" not in run_summary(quiet, metric)
-    assert "Upper pool 1.150 1.150" in " ".join(section(run_summary(weedy, metric), "ROUGHNESS").split())
+    assert "Upper pool 1.150 1.150 1.150" in " ".join(section(run_summary(weedy, metric), "ROUGHNESS").split())
 
 
 def test_the_ledger_is_told_pool_by_pool_with_losses(invented_run, metric):
@@ -183,6 +184,7 @@ def test_order_to_one_bay_names_it(invented_run, metric):
     order = {
         "order_time": np.array([600.0]), "order_gate": np.array(["Last check"], object), "order_bay": np.array([2]),
         "order_reason": np.array(["too small"], object), "order_status": np.array([2]),
+        "order_source": np.array(["schedule"], object),
     }  # fmt: skip
     assert "Last check, bay 2, " in section(run_summary(invented_run(**order), metric), "ORDERS")
 

@@ -145,9 +145,9 @@ CASES = [
     ),
     (
         'orders = "orders.csv"',
-        "rules = []",
+        "rule = []",
         [
-            'day.toml:35: plans from_file rules: unknown key; known: "orders"',
+            'day.toml:35: plans from_file rule: unknown key; did you mean "rules"?',
         ],
     ),
 ]

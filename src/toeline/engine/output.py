@@ -11,10 +11,14 @@ from toeline.engine.step import DIAGONAL, GAMMA, pool_end_link, weighted
 from toeline.hydraulics.cross_section import geometry
 from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH
 from toeline.hydraulics.kernel import inner_kernel
+from toeline.hydraulics.underflow_gate import CLEAR_OF_WATER, FREE, QUALITY_UNEVEN_BAYS
 from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, GATE, HEAD
 
 JET_POINTS = 400
 """Most points of a jet's profile."""
+
+EVEN = 0.01
+"""Difference of opening [m] up to which bays count as equal (choice)."""
 
 GATE_WATCH = np.dtype(
     [
@@ -131,17 +135,20 @@ def fill_bays(tables, gate, up, down, forcing, bays, out):
     """Fill the bays of a gate that move apart, and what the gate's record says of all of them: mean opening, discharge
     and the power of that discharge. Returns the discharge [m³/s].
     """
-    opened = passed = 0.0
-    ruling = out.gate_discharge
+    opened = passed = highest = 0.0
+    lowest, ruling = math.inf, out.gate_discharge
     for k in range(gate.leaf_count):
         bay = bays[tables.leaves[gate.first_leaf + k].bay]
         bay.bay_opening = leaf_opening(forcing, gate, k)
         discharge = gate_discharge_at(tables.channel.shapes, gate, up, down, bay.bay_opening)
         bay.bay_discharge = discharge / gate.leaf_count
         opened += bay.bay_opening / gate.leaf_count
+        highest, lowest = max(highest, bay.bay_opening), min(lowest, bay.bay_opening)
         passed += discharge
     passed /= gate.leaf_count
     out.gate_opening, out.gate_discharge = opened, passed
+    if highest - lowest > EVEN and out.gate_flow_state != FREE and out.gate_flow_state != CLEAR_OF_WATER:
+        out.discharge_quality = QUALITY_UNEVEN_BAYS
     if ruling != 0.0:
         out.jump_power *= passed / ruling
     return passed

@@ -13,6 +13,9 @@ from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, TA
 LEAST_CHANGE = 1e-9
 """Change of a discharge [m³/s] below which nothing is said to settle."""
 
+LEAST_ROUGHENING = 0.01
+"""Relative change of Manning's n at once from which a pool is said to settle (choice)."""
+
 SIDES = ("upstream", "downstream")
 
 
@@ -57,6 +60,11 @@ class Unrest:
             if changed[first + k] or changed[first + network.offtake_count + k]:
                 pools.add(int(np.searchsorted(tables.pools.last_node, node)))
         for pool in pools:
+            self._unsettle(pool, self._settled_after(pool, time))
+
+    def note_roughness(self, time: int, ratio: np.ndarray) -> None:
+        """Pools that a change of the roughness, new over old by pool, leaves settling."""
+        for pool in np.flatnonzero(np.abs(ratio - 1.0) > LEAST_ROUGHENING).tolist():
             self._unsettle(pool, self._settled_after(pool, time))
 
     def end_state(self, time: int) -> dict[str, np.ndarray]:

@@ -30,12 +30,18 @@ def gauge_lines(gauges: Sequence[GaugeReadings], clock: RunClock, display: Displ
 
 
 def roughness_lines(run: xr.Dataset, width: int) -> Iterator[str]:
-    """Factors on Manning's n that the calendar gave, at the start and at the end; nothing where it gave none."""
+    """Factors on Manning's n that the calendar gave: first, last and greatest; nothing where it gave none."""
     factors = run["pool_roughness_factor"].values
     if (factors == 1.0).all():
         return
     rows = [
-        (pool, f"{first:.3f}", f"{last:.3f}")
-        for pool, first, last in zip(names(run["pool"]), factors[0], factors[-1], strict=True)
+        (pool, f"{first:.3f}", f"{last:.3f}", f"{most:.3f}")
+        for pool, first, last, most in zip(names(run["pool"]), factors[0], factors[-1], factors.max(0), strict=True)
     ]
-    yield table(("factor on Manning's n", "at the start", "at the end"), rows, width)
+    yield table(("factor on Manning's n", "at the start", "at the end", "greatest"), rows, width)
+    if (factors != factors[0]).any():
+        yield paragraph(
+            "The factor changes at midnight, all at once. The wave that a large change sends through the pools is not "
+            "real: cutting weeds takes days.",
+            width,
+        )

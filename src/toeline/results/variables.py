@@ -22,7 +22,7 @@ FLOW_STATES = (
     "overtopped",
     "reverse",
 )
-DISCHARGE_QUALITIES = ("good", "near_modular_limit", "lip_near_surface", "very_drowned", "reverse")
+DISCHARGE_QUALITIES = ("good", "near_modular_limit", "lip_near_surface", "very_drowned", "reverse", "uneven_bays")
 JUMP_STATES = ("none", "drowned", "on_apron", "on_protection", "beyond_protection", "swept_out_of_pool")
 JUMP_KINDS = ("none", "undular", "weak", "oscillating", "steady", "strong")
 LENGTH_QUALITIES = ("not_defined", "good", "poorly_known")
@@ -108,7 +108,8 @@ _GATE_SERIES = (
           "discharge, as if the whole width ran like it"),
     _flag("discharge_quality", _GATES, "how well the discharge of the gate is known", DISCHARGE_QUALITIES,
           standard_name="quality_flag",
-          comment="near the modular limit, with the lip near the surface and when very drowned, gate ratings are poor"),
+          comment="near the modular limit, with the lip near the surface, when very drowned, and with uneven bays that "
+          "the tailwater reaches, gate ratings are poor"),
     Variable("gate_headwater_level", _GATES, "m", "water level just above the gate", _LEVEL, _SURFACE, dtype="f8"),
     Variable("gate_tailwater_level", _GATES, "m", "water level just below the gate", _LEVEL, _SURFACE, dtype="f8"),
     Variable("jet_depth", _GATES, "m", "depth of the jet at the contracted section",
