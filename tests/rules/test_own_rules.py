@@ -2,6 +2,7 @@
 
 import json
 from importlib.metadata import EntryPoint
+from pathlib import Path
 
 import pytest
 from tests.canals import day, scenario_of, stepped_canal
@@ -34,6 +35,9 @@ class Watch(Rule):
         return now.ordered_opening(self.gate) + self.given.step
 '''
 RULE = {"kind": "watch.py:Watch", "gate": "G0", "step": "2 cm"}
+
+
+DEVELOPERS = Path(__file__).parents[2] / "DEVELOPERS.md"
 
 
 def scenario(folder, *rules):
@@ -133,3 +137,12 @@ def test_settings_of_the_run_are_kept_with_it(tmp_path):
     (tmp_path / "watch.py").write_text(WATCH, encoding="utf-8")
     rules = json.loads(simulate(scenario(tmp_path, RULE)).attrs["resolved_settings"])["rules"]
     assert rules == [{"kind": "watch.py:Watch", "gate": "G0", "every": 3600.0, "step": 0.02, "times": 2}]
+
+
+def test_the_example_of_the_developers_page_runs(tmp_path):
+    source = DEVELOPERS.read_text(encoding="utf-8").split("```python\n")[1].split("```")[0]
+    (tmp_path / "night_watch.py").write_text(source, encoding="utf-8")
+    rule = {"kind": "night_watch.py:NightWatch", "gate": "G0", "lowest": 9.0}
+    run = simulate(scenario(tmp_path, rule))
+    changes = run.order_opening_after - run.order_opening_before
+    assert changes.values == pytest.approx([-0.02] * 4, abs=1e-6)
