@@ -105,6 +105,14 @@ def test_a_file_that_is_no_rule_is_told_on_the_line_that_names_it(tmp_path, sour
     assert message in fault.message
 
 
+def test_a_rule_that_cannot_be_made_leaves_a_file_that_says_so(tmp_path):
+    source = f"{WATCH}\n    def __init__(self, given, canal):\n        raise KeyError('pool')\n"
+    (tmp_path / "watch.py").write_text(source, encoding="utf-8")
+    with pytest.raises(RunError, match="line 24: KeyError: 'pool'"):
+        simulate(scenario(tmp_path, RULE), tmp_path / "run.nc")
+    assert [file.name for file in tmp_path.glob("run.nc*")] == ["run.nc.partial"]
+
+
 def test_an_opening_that_is_no_number_ends_the_run(tmp_path):
     source = WATCH.replace("return now.ordered_opening(self.gate) + self.given.step", 'return "wide"')
     (tmp_path / "watch.py").write_text(source, encoding="utf-8")

@@ -1,7 +1,7 @@
 """The example canal under each kind of rule with the settings that it has when only the gate is named.
 
-Morning deliveries rise as in the day "morning increase". No rule may hunt: few moves in its busiest hour, few reversals,
-and rest at the end of the day.
+Morning deliveries rise as in the day "morning increase". No rule may hunt: few moves in its busiest hour, few
+reversals, and rest at the end of the day.
 """
 
 import shutil
