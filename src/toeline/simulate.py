@@ -50,8 +50,8 @@ def simulate(
     """Step a day and return the run as a dataset; with `output` it is written there while it goes on.
 
     `progress` is called with the fraction done. Raises ScenarioError where the day cannot start as asked, UsageError
-    where `output` exists and may not be overwritten, RunError where no step can be solved; what was done until then, as
-    after a KeyboardInterrupt, stays in `output`.partial.
+    where `output` exists and may not be overwritten, RunError where no step can be solved or a rule fails; what was
+    done until then, as after a KeyboardInterrupt, stays in `output`.partial.
     """
     network = network_of(scenario.canal, scenario.day.period.spacing)
     timetable = timetable_of(scenario, network)
@@ -60,11 +60,12 @@ def simulate(
     level, discharge = levels_and_discharges(start)
     description = static_values(network, level, discharge), attributes(scenario), scenario.day.period.start
     sink = DatasetSink(*description) if output is None else NetcdfSink(output, *description, overwrite=overwrite)
-    run = Run(network, timetable, sink, start)
+    run = None
     try:
+        run = Run(network, timetable, sink, start)
         run.go(progress)
     except (KeyboardInterrupt, RunError) as reason:
-        sink.close(_stopped(run, reason), {})
+        sink.close(_stopped(timetable, run.time if run else 0, reason), {})
         raise
     sink.close(COMPLETE, run.end_state())
     return sink.dataset if isinstance(sink, DatasetSink) else open_run(sink.written_path)
@@ -86,8 +87,8 @@ def levels_and_discharges(start: Start | dict[str, np.ndarray]) -> tuple[np.ndar
     return (start["end_level"], start["end_discharge"]) if isinstance(start, dict) else (start.level, start.discharge)
 
 
-def _stopped(run: Run, reason: BaseException) -> str:
-    at = datetime.fromtimestamp((run.timetable.start_epoch_ms + run.time) / 1000.0, UTC).isoformat()
+def _stopped(timetable: Timetable, time: int, reason: BaseException) -> str:
+    at = datetime.fromtimestamp((timetable.start_epoch_ms + time) / 1000.0, UTC).isoformat()
     return f"stopped at {at}: {reason if isinstance(reason, RunError) else 'interrupted'}"
 
 

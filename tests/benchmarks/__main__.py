@@ -1,6 +1,4 @@
-"""Standard day against a stripped kernel, the same under rules, and the command from the shell: medians and spread of
-one run.
-"""
+"""Standard day against a stripped kernel and under rules, and the command from the shell; medians and spreads."""
 
 import os
 import subprocess

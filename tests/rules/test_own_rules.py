@@ -2,6 +2,7 @@
 
 import json
 from importlib.metadata import EntryPoint
+from pathlib import Path
 
 import pytest
 from tests.canals import day, scenario_of, stepped_canal
@@ -34,6 +35,9 @@ class Watch(Rule):
         return now.ordered_opening(self.gate) + self.given.step
 '''
 RULE = {"kind": "watch.py:Watch", "gate": "G0", "step": "2 cm"}
+
+
+DEVELOPERS = Path(__file__).parents[2] / "DEVELOPERS.md"
 
 
 def scenario(folder, *rules):
@@ -101,6 +105,14 @@ def test_a_file_that_is_no_rule_is_told_on_the_line_that_names_it(tmp_path, sour
     assert message in fault.message
 
 
+def test_a_rule_that_cannot_be_made_leaves_a_file_that_says_so(tmp_path):
+    source = f"{WATCH}\n    def __init__(self, given, canal):\n        raise KeyError('pool')\n"
+    (tmp_path / "watch.py").write_text(source, encoding="utf-8")
+    with pytest.raises(RunError, match="line 24: KeyError: 'pool'"):
+        simulate(scenario(tmp_path, RULE), tmp_path / "run.nc")
+    assert [file.name for file in tmp_path.glob("run.nc*")] == ["run.nc.partial"]
+
+
 def test_an_opening_that_is_no_number_ends_the_run(tmp_path):
     source = WATCH.replace("return now.ordered_opening(self.gate) + self.given.step", 'return "wide"')
     (tmp_path / "watch.py").write_text(source, encoding="utf-8")
@@ -133,3 +145,12 @@ def test_settings_of_the_run_are_kept_with_it(tmp_path):
     (tmp_path / "watch.py").write_text(WATCH, encoding="utf-8")
     rules = json.loads(simulate(scenario(tmp_path, RULE)).attrs["resolved_settings"])["rules"]
     assert rules == [{"kind": "watch.py:Watch", "gate": "G0", "every": 3600.0, "step": 0.02, "times": 2}]
+
+
+def test_the_example_of_the_developers_page_runs(tmp_path):
+    source = DEVELOPERS.read_text(encoding="utf-8").split("```python\n")[1].split("```")[0]
+    (tmp_path / "night_watch.py").write_text(source, encoding="utf-8")
+    rule = {"kind": "night_watch.py:NightWatch", "gate": "G0", "lowest": 9.0}
+    run = simulate(scenario(tmp_path, rule))
+    changes = run.order_opening_after - run.order_opening_before
+    assert changes.values == pytest.approx([-0.02] * 4, abs=1e-6)
