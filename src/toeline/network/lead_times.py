@@ -75,7 +75,8 @@ def response(
     )
     lower, raised = _end_areas(section, slope, backed_up, middle, rise, discharge)
     upper = _end_areas(section, slope, uniform, normal, 0.0, discharge)[0] if uniform else 0.0
-    return Response(delay, lower * (1.0 + upper / raised), width * wave_speeds(section, discharge, depth)[1])
+    joined = lower + upper * (lower / raised if raised > 0.0 else 1.0)
+    return Response(delay, joined, width * wave_speeds(section, discharge, depth)[1])
 
 
 def _uniform_length(length: float, excess: float, rise: float) -> float:
