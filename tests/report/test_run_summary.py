@@ -174,7 +174,7 @@ def test_the_ledger_is_told_pool_by_pool_with_losses(invented_run, metric):
 def test_uneven_bays_are_told_with_what_is_not_modelled(invented_run, metric):
     page = run_summary(invented_run(bay_opening=one_bad_hour((0.3, 0.8))), metric)
     text = section(page, "BAYS THAT MOVE APART")
-    assert "Last check: greatest difference of neighbours 0.50 m at 07:10, bays 1 and 2" in text
+    assert "Last check: bays 1 and 2, side by side, differ most: by 0.50 m at 07:10." in text
     assert "side rollers" in text
 
 
@@ -182,5 +182,6 @@ def test_order_to_one_bay_names_it(invented_run, metric):
     order = {
         "order_time": np.array([600.0]), "order_gate": np.array(["Last check"], object), "order_bay": np.array([2]),
         "order_reason": np.array(["too small"], object), "order_status": np.array([2]),
+        "order_source": np.array(["schedule"], object),
     }  # fmt: skip
     assert "Last check, bay 2, " in section(run_summary(invented_run(**order), metric), "ORDERS")
