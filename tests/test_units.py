@@ -206,6 +206,8 @@ def test_durations_are_written_in_a_unit_that_fits(seconds, text):
         (US, "velocity", 0.3048, "1.00 ft/s"),
         (METRIC, "speed", 0.0025, "0.150 m/min"),
         (US, "speed", 0.00254, "0.500 ft/min"),
+        (METRIC, "rate_of_loss", 0.025 / 86_400.0, "25.0 mm/day"),
+        (US, "rate_of_loss", 0.0254 / 86_400.0, "1.00 in/day"),
         (METRIC, "level", math.nan, "-"),
     ],
 )

@@ -13,12 +13,18 @@ def bay_lines(gates: Sequence[UnevenBays], clock: RunClock, display: Display, wi
     if not gates:
         return
     for gate in gates:
-        difference = extreme_text(gate.difference, clock, display)
-        words = f"{difference}, bays {gate.bays[0]} and {gate.bays[1]}" if gate.difference.value else "none"
-        yield paragraph(f"{gate.gate}: greatest difference of neighbours {words}", width)
+        yield paragraph(f"{gate.gate}: {_words(gate, clock, display)}", width)
     yield paragraph(
         "Jet and jump of such a gate are those of the bay with the largest unit discharge, as if the whole width ran "
         "like it against the common tailwater. Unequal bays make eddies and side rollers, which carry stones and turn "
         "the jet aside; they are not modelled: what is said of the jump is then least trustworthy.",
         width,
     )
+
+
+def _words(gate: UnevenBays, clock: RunClock, display: Display) -> str:
+    if not gate.difference.value:
+        return "all bays alike."
+    left, right = gate.bays
+    most = extreme_text(gate.difference, clock, display)
+    return f"bays {left} and {right}, side by side, differ most: by {most}."
