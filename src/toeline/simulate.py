@@ -82,6 +82,7 @@ def attributes(scenario: Scenario) -> dict[str, str]:
         day_text=scenario.day_text, settings=_settings(scenario), input_hash=scenario.input_hash,
         surface_names=tuple(scenario.canal.surfaces), units_for_display=scenario.display.system.value, zone=day.zone,
         start=day.period.start, version=toeline.__version__, created=datetime.now(UTC),
+        call=scenario.canal.call,
     )  # fmt: skip
 
 
@@ -115,6 +116,7 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
         "gate_floor_level": gates.floor_level,
         "gate_width": gates.width,
         "gate_max_opening": names.max_opening,
+        "gate_gatekeeper": np.array(names.gatekeepers, object),
         "gate_apron_end": gates.apron_end,
         "gate_protection_end": gates.protection_end,
         "gate_upstream_pool": np.array(

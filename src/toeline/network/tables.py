@@ -139,3 +139,4 @@ class Names:
     bank_level: np.ndarray  # (canal nodes) m, NaN where none
     target_level: np.ndarray  # (p) m, NaN where none
     max_opening: np.ndarray  # (g) m
+    gatekeepers: tuple[str, ...]  # by gate, "" where none is named
