@@ -17,6 +17,7 @@ from toeline.engine.state import new_state
 from toeline.errors import RunError
 from toeline.network.build import network_of
 from toeline.network.initial_state import Start
+from toeline.network.lead_times import pool_times
 from toeline.network.start import check_mild, starting_state
 from toeline.network.tables import HEAD, Network
 from toeline.network.timetable import Timetable, timetable_of
@@ -88,7 +89,12 @@ def attributes(scenario: Scenario) -> dict[str, str]:
 
 def _settings(scenario: Scenario) -> dict[str, Any]:
     """Canal and day with defaults filled in, fit for JSON."""
-    plain = {"canal": scenario.canal.model_dump(), "day": scenario.day.model_dump(exclude={"plans"})}
+    plain = {
+        "canal": scenario.canal.model_dump(),
+        "day": scenario.day.model_dump(exclude={"plans"}),
+        "rules": [{"kind": rule.kind, **vars(rule.given)} for rule in scenario.rules],
+        "stuck": list(scenario.stuck),
+    }
     return json.loads(json.dumps(plain, default=_plain))
 
 
@@ -107,6 +113,7 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
     names, gates, nodes = network.names, network.tables.gates, network.channel.nodes[: network.canal_node_count]
     chainage = nodes["chainage"]
     pools, offtakes = network.tables.pools, network.tables.offtakes
+    times = pool_times(network, level, discharge)
     beside = (*names.pools, "tail")
     node_pool = np.searchsorted(pools.last_node, np.arange(nodes.size)).astype(np.int32)
     return {
@@ -116,6 +123,9 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
         "gate_floor_level": gates.floor_level,
         "gate_width": gates.width,
         "gate_max_opening": names.max_opening,
+        "gate_smallest_move": names.smallest_move,
+        "gate_turn": names.turn,
+        "gate_scale_mark": names.scale_mark,
         "gate_gatekeeper": np.array(names.gatekeepers, object),
         "gate_apron_end": gates.apron_end,
         "gate_protection_end": gates.protection_end,
@@ -129,6 +139,8 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
         "pool_length": chainage[pools.last_node] - chainage[pools.first_node],
         "pool_target_level": names.target_level,
         "pool_wave_round_trip": _round_trips(network, level, discharge),
+        "pool_lead_time_wave": times.wave,
+        "pool_lead_time_volume": times.volume,
         "offtake": np.array(names.offtakes, object),
         "offtake_pool": np.array([names.pools[node_pool[node]] for node in offtakes.node], object),
         "offtake_chainage": chainage[offtakes.node],

@@ -19,7 +19,16 @@ class UnitSystem(StrEnum):
 
 
 Dimension = Literal[
-    "length", "area", "volume", "discharge", "velocity", "speed", "duration", "rate of loss", "weir coefficient"
+    "length",
+    "area",
+    "volume",
+    "discharge",
+    "discharge per length",
+    "velocity",
+    "speed",
+    "duration",
+    "rate of loss",
+    "weir coefficient",
 ]
 
 _VELOCITIES = {
@@ -48,6 +57,7 @@ SPELLINGS: dict[Dimension, dict[str, float]] = {
         "cfs": 0.028316846592,
         "acre-ft/day": 1233.48183754752 / 86_400.0,
     },
+    "discharge per length": {"m2/s": 1.0, "ft2/s": 0.09290304},
     "velocity": _VELOCITIES,
     "speed": _VELOCITIES,
     "duration": {"s": 1.0, "min": 60.0, "h": 3600.0, "d": 86_400.0},
@@ -61,6 +71,7 @@ FILE_UNITS: dict[Dimension, dict[UnitSystem, str]] = {
     "area": {UnitSystem.metric: "m2", UnitSystem.us_customary: "ft2"},
     "volume": {UnitSystem.metric: "m3", UnitSystem.us_customary: "acre-ft"},
     "discharge": {UnitSystem.metric: "m3/s", UnitSystem.us_customary: "ft3/s"},
+    "discharge per length": {UnitSystem.metric: "m2/s", UnitSystem.us_customary: "ft2/s"},
     "velocity": {UnitSystem.metric: "m/s", UnitSystem.us_customary: "ft/s"},
     "speed": {UnitSystem.metric: "m/min", UnitSystem.us_customary: "ft/min"},
     "rate of loss": {UnitSystem.metric: "mm/day", UnitSystem.us_customary: "in/day"},
