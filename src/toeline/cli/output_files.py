@@ -1,7 +1,7 @@
-"""Where a run is written, and what must not be lost by it."""
+"""Where a run or its sheets are written, and what must not be lost by it."""
 
 import re
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -23,8 +23,13 @@ def choose_outputs(scenarios: Sequence["Scenario"], output: Path | None) -> list
     wanted = output or Path(f"{day.day_path.stem}.nc")
     if len(day.day.plans) < 2 or (output is not None and len(scenarios) == 1):
         return [wanted]
-    plans = (re.sub(r"[^\w.-]+", "_", scenario.plan or "") for scenario in scenarios)
+    plans = (file_name(scenario.plan or "") for scenario in scenarios)
     return [wanted.with_name(f"{wanted.stem}.{plan}{wanted.suffix}") for plan in plans]
+
+
+def file_name(name: str) -> str:
+    """A name as part of the name of a file: what is no letter, digit, point or hyphen becomes one underscore."""
+    return re.sub(r"[^\w.-]+", "_", name)
 
 
 def refuse_outputs(outputs: Sequence[Path], scenarios: Sequence["Scenario"], overwrite: bool) -> None:
@@ -41,3 +46,19 @@ def refuse_outputs(outputs: Sequence[Path], scenarios: Sequence["Scenario"], ove
         for standing in (output, shown_path(file.partial_path)):
             if standing.exists() and not overwrite:
                 raise UsageError(f"{standing} exists: name another file with -o, or replace it with --overwrite.")
+
+
+def write_together(files: Mapping[Path, bytes]) -> None:
+    """Write several files so that a failure leaves each as it was before: none is under its name until all are on disk.
+
+    OSError where one cannot be written.
+    """
+    working = {path: path.with_name(path.name + ".writing") for path in files}
+    try:
+        for path, content in files.items():
+            working[path].write_bytes(content)
+        for path in files:
+            working[path].replace(path)
+    finally:
+        for left in working.values():
+            left.unlink(missing_ok=True)

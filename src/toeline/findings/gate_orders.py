@@ -91,13 +91,13 @@ class RuleMoves:
     count: int
 
 
-def gate_orders(run: xr.Dataset, smallest_band: float) -> list[GateOrder]:
-    """The orders of the plan in time order; `smallest_band` [m] is how finely a gauge is read.
+def gate_orders(run: xr.Dataset, allowance: float) -> list[GateOrder]:
+    """The orders of the plan in time order; `allowance` [m] is what a reading may be off.
 
     The band of a reading is the greatest change of the level within a quarter of an hour before it, and after it where
-    the gate has not moved again, and the fineness of the gauge on top. It holds no error of the canal file.
+    the gate has not moved again, and the allowance on top, which is all that it holds for errors of the canal file.
     """
-    around = _Gates(run, smallest_band)
+    around = _Gates(run, allowance)
     return [around.order(row) for row in around.rows if around.sources[row] == FROM_SCHEDULE]
 
 
@@ -114,6 +114,17 @@ def rule_moves(run: xr.Dataset) -> list[RuleMoves]:
 def gatekeepers(run: xr.Dataset) -> dict[str, str]:
     """Who works each gate, gates from the head down; "" where the canal file names nobody."""
     return dict(zip(names(run["gate"]), _texts(run, "gate_gatekeeper", "gate"), strict=True))
+
+
+def gauge_beside(run: xr.Dataset, gate: str, side: str) -> tuple[str, float]:
+    """Name and zero level [m] of the first staff gauge on a side of a gate; "" and 0, the datum, where there is none."""
+    if "gauge" in run.sizes:
+        sides = meanings(run["gauge_side"])
+        for place, name in enumerate(names(run["gauge"])):
+            stands_at = run["gauge_gate"].values[place], sides[int(run["gauge_side"].values[place])]
+            if stands_at == (gate, side):
+                return name, float(run["gauge_zero_level"].values[place])
+    return "", 0.0
 
 
 def _sources(run: xr.Dataset) -> list[str]:
@@ -135,9 +146,9 @@ def _lengths(run: xr.Dataset, name: str) -> np.ndarray:
 class _Gates:
     """The run as the orders need it: by gate, with its moves in time order."""
 
-    def __init__(self, run: xr.Dataset, smallest_band: float):
+    def __init__(self, run: xr.Dataset, allowance: float):
         self._run = run
-        self._smallest_band = smallest_band
+        self._allowance = allowance
         self._keepers = gatekeepers(run)
         self._turns, self._marks = _lengths(run, "gate_turn"), _lengths(run, "gate_scale_mark")
         self._ends = run["gate_protection_end"].values
@@ -241,15 +252,11 @@ class _Gates:
 
     def _levels(self, gate: int, side: str) -> tuple[str, np.ndarray]:
         """Name and readings of the staff gauge on a side of a gate; without one "" and the level there."""
-        run = self._run
-        if "gauge_reading" in run:
-            sides = meanings(run["gauge_side"])
-            for place, name in enumerate(names(run["gauge"])):
-                stands_at = run["gauge_gate"].values[place], sides[int(run["gauge_side"].values[place])]
-                if stands_at == (run["gate"].values[gate], side):
-                    return name, run["gauge_reading"].values[:, place]
+        gauge, _ = gauge_beside(self._run, names(self._run["gate"])[gate], side)
+        if gauge:
+            return gauge, self._run["gauge_reading"].values[:, names(self._run["gauge"]).index(gauge)]
         level = "gate_headwater_level" if side == "upstream" else "gate_tailwater_level"
-        return "", run[level].values[:, gate]
+        return "", self._run[level].values[:, gate]
 
     def _rows_after(self, begin: np.datetime64, end: np.datetime64) -> np.ndarray:
         times = self._run["time"].values
@@ -265,7 +272,7 @@ class _Gates:
         inside = (self._seconds >= begin) & (self._seconds <= end)
         value, *ends = np.interp((now, begin, end), self._seconds, levels)
         reach = np.nan_to_num(np.abs(np.concatenate((levels[inside], ends)) - value))
-        return Reading(float(value), float(reach.max()) + self._smallest_band, self._is_settling(pool, at))
+        return Reading(float(value), float(reach.max()) + self._allowance, self._is_settling(pool, at))
 
     def _is_settling(self, pool: str, at: np.datetime64) -> bool:
         pools: Sequence[str] = names(self._run["pool"])

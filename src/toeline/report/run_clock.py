@@ -7,7 +7,7 @@ from functools import cached_property
 import numpy as np
 import xarray as xr
 
-from toeline.report.clock import clock_text, span_text
+from toeline.report.clock import clock_text, later, span_text
 from toeline.results.dataset import local_time
 
 
@@ -24,6 +24,10 @@ class RunClock:
     @cached_property
     def end(self) -> datetime:
         return local_time(self.run, self.run["time"].values[-1])
+
+    def after(self, seconds: float) -> str:
+        """The local time so many seconds after the start."""
+        return clock_text(later(self.start, seconds), self.start)
 
     def at(self, instant: np.datetime64) -> str:
         return clock_text(local_time(self.run, instant), self.start)
