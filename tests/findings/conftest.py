@@ -52,7 +52,7 @@ def run_by_hand(
     sizes = {
         "time": len(minutes),
         "profile_time": len(profile_minutes),
-        "order": 0,
+        "order": np.size(values.get("order_time", ())),
         "gate": 2,
         "pool": 2,
         "offtake": 1,

@@ -12,6 +12,7 @@ from toeline.errors import UsageError
 from toeline.findings.gate_orders import GateOrder, Reading, Side, gate_orders, gatekeepers, rule_moves
 from toeline.findings.incidents import incidents
 from toeline.findings.rounds import rounds
+from toeline.findings.series import names
 from toeline.report.layout import counted
 from toeline.report.order_words import move_words, order_words, reason_words
 from toeline.report.rounds import rounds_words
@@ -24,8 +25,12 @@ By = Literal["gatekeeper", "gate"]
 READ_TO = 0.01
 """How finely a staff gauge is read: 1 cm or 0.01 ft, in the units of the sheet (common practice, no source)."""
 
+SLACK = 1e-3
+"""Part of the fineness of a gauge by which an end of a band may be passed before it is rounded outward."""
+
 NOBODY = "Gates without a gatekeeper"
 HASH_SHOWN = 8
+SYSTEMS = {UnitSystem.metric: "metric", UnitSystem.us_customary: "US customary"}
 INCIDENTS_TOLD = 6
 PLACES = {"upstream": "above the gate", "downstream": "below the gate"}
 BLANK_CALL = "________________________________"
@@ -39,8 +44,10 @@ HOW_TO_READ = (
     "the sheet does not hold.",
     "Wave: a bound for the height of the surge that the move sends along the pool, if the leaf moved at once.",
 )
+PEOPLE = (
+    "anybody is in the water, in a boat, or on the apron or the banks beside it: do not move the gate"
+)
 ALWAYS = (
-    "anybody is in the water, in a boat, or on the apron or the banks beside it: do not move the gate",
     "the leaf does not move freely, trembles, or does not reach the opening written here",
     "anything that you see differs from this sheet",
 )
@@ -75,6 +82,11 @@ class SheetOrder:
     notes: tuple[str, ...]
     stop: tuple[str, ...]
 
+    @property
+    def blanks(self) -> tuple[str, ...]:
+        """What the gatekeeper fills in when it is done, or seen where there is nothing to do."""
+        return ("done at", "opening", "signed") if self.readings else ("seen at", "signed")
+
 
 @dataclass(frozen=True)
 class Sheet:
@@ -101,6 +113,11 @@ class Sheet:
     def about(self) -> str:
         """Plan, revision and run: what tells two sheets of one day apart."""
         return f"{self.plan}; revision {self.revision}; run {self.run}"
+
+    @property
+    def blanks(self) -> tuple[str, ...]:
+        """What is filled in once for the whole sheet."""
+        return "issued by", "reviewed by", "received by"
 
     @property
     def orders_line(self) -> str:
@@ -165,12 +182,12 @@ class _Maker:
             f"times of {zone}",
             plan=f"plan {run.attrs['plan']}" if run.attrs["plan"] else "no plan",
             run=run.attrs["input_hash"][:HASH_SHOWN],
-            units=f"{self._display.system} units: {self._unit}, {discharge}",
+            units=f"{SYSTEMS[self._display.system]} units: {self._unit}, {discharge}",
             version=run.attrs["source"],
             call=run.attrs.get("call", "") or BLANK_CALL,
             gates=tuple(gates),
             orders=tuple(self._order(number, order) for number, order in enumerate(orders, start=1)),
-            always=ALWAYS,
+            always=tuple(self._always(gates)),
             not_here=tuple(self._not_here(gates)),
             trouble=tuple(self._trouble(gates)),
             how_to_read=tuple(self._how_to_read()),
@@ -198,7 +215,7 @@ class _Maker:
             read_before=self._clock.at(order.time),
             read_after=self._clock.at(order.read_after),
             readings=tuple(self._reading_words(side) for side in order.sides),
-            notes=tuple(self._notes(order)),
+            notes=() if order.is_refused else tuple(self._notes(order)),
             stop=() if order.is_refused else tuple(self._stop(order)),
         )
 
@@ -212,7 +229,7 @@ class _Maker:
     def _openings(self, order: GateOrder) -> str:
         if not order.moves:
             return f"The opening stays at {self._display.setting(order.after)}."
-        stands = "" if np.isnat(order.completed) else f" The leaf stands by {self._clock.at(order.completed)}."
+        stands = "" if np.isnat(order.completed) else f" The leaf stands by {self._clock.by(order.completed)}."
         openings = f"From {self._display.setting(order.before)} to {self._display.setting(order.after)}."
         return openings + ("" if order.status == "replaced" else stands)
 
@@ -223,7 +240,10 @@ class _Maker:
         if order.is_refused:
             return f"Asked: {asked}. Not to be done: {reason}."
         if order.status == "replaced":
-            return f"The next order, at {self._clock.at(order.next_move)}, comes while the leaf still moves: {reason}."
+            return (
+                f"The next order, at {self._clock.at(order.next_move)}, comes while the leaf still moves, at about "
+                f"{self._display.setting(order.after)}: go on with that one from there."
+            )
         if order.status == "trimmed":
             return f"Asked: {asked}. Changed: {reason}. Do what stands here."
         return f"Note: {reason}." if reason else ""
@@ -239,14 +259,21 @@ class _Maker:
         )
 
     def _band(self, reading: Reading) -> str:
-        low, high = (self._display.level(reading.value + sign * reading.band) for sign in (-1, 1))
-        return low if low == "-" else f"{low.split(' ')[0]} to {high.split(' ')[0]}"
+        """Lowest and highest reading, to the fineness of the gauge, outward: nothing that is expected is outside."""
+        low, high = (reading.value + sign * reading.band for sign in (-1, 1))
+        if np.isnan(low):
+            return "-"
+        ends = (np.floor(low / self._read_to + SLACK), np.ceil(high / self._read_to - SLACK))
+        return " to ".join(self._display.level(end * self._read_to).partition(" ")[0] for end in ends)
 
     def _notes(self, order: GateOrder) -> Iterator[str]:
+        after = []
         if order.waits_for_next_move:
-            yield f"Read again just before the gate moves next, at {self._clock.at(order.next_move)}."
+            after.append("just before the gate moves again")
         if any(side.after.is_settling for side in order.sides):
-            yield "Waves of a move still travel then, and the levels are least certain."
+            after.append("while waves of a move still travel, and levels are least certain")
+        if after:
+            yield f"After: {', '.join(after)}."
         waves = [
             f"{self._display.length(side.surge)} {PLACES[side.side]}"
             for side in order.sides
@@ -264,9 +291,17 @@ class _Maker:
         if bands:
             yield f"before you start, {' or '.join(bands)}"
         yield "afterwards, a reading is outside its band"
-        if order.protection_end > 0.0:
-            end = self._display.length(order.protection_end)
-            yield f"white water of the jump, or fast water, goes past the end of the protected floor, {end} from the gate"
+
+    def _always(self, gates: Sequence[str]) -> Iterator[str]:
+        yield PEOPLE
+        ends = dict(zip(names(self._run["gate"]), self._run["gate_protection_end"].values, strict=True))
+        protected = [f"{gate} {self._display.length(float(ends[gate]))}" for gate in gates if ends[gate] > 0.0]
+        if protected:
+            yield (
+                "white water of the jump, or fast water, goes past the end of the protected floor below the gate "
+                f"({', '.join(protected)} from it)"
+            )
+        yield from ALWAYS
 
     def _not_here(self, gates: Sequence[str]) -> Iterator[str]:
         """What moves the gates beside the orders."""

@@ -55,7 +55,7 @@ class _Writer:
             *(cell for name in ("upstream", "downstream") for cell in self._side(sides.get(name))),
             self._length(order.protection_end),
             line.warning,
-            "; ".join(line.stop),
+            "; ".join((*line.stop, *sheet.always)),
             sheet.canal,
             sheet.title,
             sheet.about,

@@ -27,24 +27,29 @@ LINE = 1.25
 """Height of a line over the size of its letters."""
 POINT = 25.4 / 72.0
 GAP = 2.0
-BLANK = 11.0
+BLANK = 10.5
 """Height of a box to write in [mm]."""
 THIN, THICK = 0.2, 0.6
 """Widths of rules [mm]."""
 FOOT = 3 * SMALL * POINT * LINE + 3.0
 """Height of the foot of a page: a rule and the caution [mm]."""
 
-Part = Callable[[], None]
+Part = Callable[["_Page"], None]
+"""Draws itself on a page, from where the page is."""
 
 
 def sheet_pdf(sheet: Sheet, paper: Paper, created: datetime) -> bytes:
     """The sheet as a PDF file. UsageError where a name has letters that the font lacks."""
-    page = _Page(sheet, paper, created)
-    page.write()
-    if unknown := {chr(code) for font in page.fonts.values() for code in font.missing_glyphs}:
-        letters = " ".join(sorted(unknown))
-        raise UsageError(f"the font of the printed sheets lacks {letters}; choose other formats, such as --format text")
-    return bytes(page.output())
+    page, rehearsal = _Page(sheet, paper, created), _Page(sheet, paper, created)
+    try:
+        page.write(rehearsal)
+        if unknown := {chr(code) for font in page.fonts.values() for code in font.missing_glyphs}:
+            letters = " ".join(sorted(unknown))
+            raise UsageError(f"the font of printed sheets lacks {letters}; choose other formats, such as --format text")
+        return bytes(page.output())
+    finally:
+        for font in (*page.fonts.values(), *rehearsal.fonts.values()):
+            font.close()
 
 
 class _Page(FPDF):
@@ -65,14 +70,31 @@ class _Page(FPDF):
         for style, file in (("", "DejaVuSans.ttf"), ("B", "DejaVuSans-Bold.ttf")):
             self.add_font(FONT, style, folder / file)
 
-    def write(self) -> None:
+    def write(self, rehearsal: "_Page") -> None:
+        """Write all pages; `rehearsal` is a page of the same kind on which parts are tried for their height."""
+        rehearsal.set_auto_page_break(False)
+        rehearsal.add_page()
         self.add_page()
         self._first()
+        for part in self._parts():
+            height = rehearsal.height_of(part)
+            if self._top < self.get_y() and self.get_y() + height > self.page_break_trigger:
+                self.add_page()
+            part(self)
+
+    def height_of(self, part: Part) -> float:
+        """Height [mm] of a part, drawn here from the top of the page."""
+        self.set_y(self._top + GAP)
+        part(self)
+        return self.get_y() - self._top - GAP
+
+    def _parts(self) -> Iterator[Part]:
+        """What is not to be torn, one after another."""
         for order in self._sheet.orders:
-            self._together(lambda order=order: self._order(order))
+            yield lambda page, order=order: page._order(order)
         for title, lines in self._last():
-            self._together(lambda title=title, lines=lines: self._list(title, lines))
-        self._together(lambda: self._blanks("issued by", "reviewed by", "received by"))
+            yield lambda page, title=title, lines=lines: page._list(title, lines)
+        yield lambda page: page._blanks(*self._sheet.blanks)
 
     def header(self) -> None:
         """What every page says: whose sheet, which day, plan and revision, units, and which page it is."""
@@ -109,14 +131,6 @@ class _Page(FPDF):
             yield "How to read this sheet", self._sheet.how_to_read
         yield "Caution", (CAUTION,)
 
-    def _together(self, part: Part) -> None:
-        """Draw a part that is not to be torn; on a new page where it does not fit on this one."""
-        with self.offset_rendering() as tried:
-            part()
-        if tried.page_break_triggered:
-            self.add_page()
-        part()
-
     def _order(self, order: SheetOrder) -> None:
         if self.get_y() > self._top:
             self._rule(THICK)
@@ -126,11 +140,11 @@ class _Page(FPDF):
             self._boxed(order.warning)
         if order.readings:
             self._readings(order)
-        for note in order.notes:
-            self._text(note, SMALL)
+        if order.notes:
+            self._text(" ".join(order.notes), SMALL)
         if order.stop:
             self._labelled("Stop and call if", "; ".join(order.stop) + ".")
-        self._blanks("done at", "opening", "signed")
+        self._blanks(*order.blanks)
 
     def _title(self, order: SheetOrder) -> None:
         top = self.get_y() + 1.0
@@ -194,7 +208,7 @@ class _Page(FPDF):
             self.rect(MARGIN + place * width, top, width, BLANK)
             self.set_xy(MARGIN + place * width, top)
             self._text(name, SMALL, width=width)
-        self.set_xy(MARGIN, top + BLANK + 3.0)
+        self.set_xy(MARGIN, top + BLANK + 2.0)
 
     def _list(self, title: str, lines: Sequence[str]) -> None:
         self._text(title, MIDDLE, bold=True)

@@ -18,7 +18,7 @@ def sheet_text(sheet: Sheet) -> str:
     parts += ["\n".join(_order(order)) for order in sheet.orders]
     if sheet.orders:
         parts.append(_list("How to read this sheet", sheet.how_to_read))
-    parts += [_list("Caution", [CAUTION]), "\n".join(_blanks("issued by", "reviewed by", "received by"))]
+    parts += [_list("Caution", [CAUTION]), "\n".join(_blanks(*sheet.blanks))]
     return "\n\n".join(parts) + "\n"
 
 
@@ -50,11 +50,11 @@ def _order(order: SheetOrder) -> Iterator[str]:
     if order.readings:
         yield table(("", "before", "read", "after", "read"), list(_readings(order)), WIDTH)
         yield paragraph(_instruments(order), WIDTH)
-    for note in order.notes:
-        yield paragraph(note, WIDTH)
+    if order.notes:
+        yield paragraph(" ".join(order.notes), WIDTH)
     if order.stop:
         yield paragraph(f"Stop and call if {'; '.join(order.stop)}.", WIDTH, hanging=INDENT * 2)
-    yield from _blanks("done at", "opening", "signed")
+    yield from _blanks(*order.blanks)
 
 
 def _readings(order: SheetOrder) -> Iterator[tuple[str, ...]]:

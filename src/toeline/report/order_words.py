@@ -29,7 +29,7 @@ def move_words(before: float, after: float, turn: float, scale_mark: float, disp
     if not amounts:
         amounts = [f"by {display.setting(abs(after - before))}"]
     verb = "close fully," if after == 0.0 else "open" if after > before else "close"
-    to_mark = "" if math.isnan(scale_mark) or after == 0.0 else f", to mark {_number(after / scale_mark)}"
+    to_mark = "" if math.isnan(scale_mark) or after == 0.0 else f" to mark {_number(after / scale_mark)}"
     return f"{verb} {' = '.join(amounts)}{to_mark}"
 
 

@@ -32,5 +32,9 @@ class RunClock:
     def at(self, instant: np.datetime64) -> str:
         return clock_text(local_time(self.run, instant), self.start)
 
+    def by(self, instant: np.datetime64) -> str:
+        """The first full minute that is not before the instant."""
+        return self.at(instant - np.timedelta64(1, "ms") + np.timedelta64(30, "s"))
+
     def span(self, begin: np.datetime64, end: np.datetime64) -> str:
         return span_text(local_time(self.run, begin), local_time(self.run, end), self.start)
