@@ -116,9 +116,8 @@ def test_readings_just_before_the_next_move_are_told_as_such(ordered_run):
 
 
 def one_order(ordered_run, status: int, reason: str, **given: object):
-    return ordered_run(
-        1, order_status=np.array([status]), order_reason=np.array([reason], object), order_value=np.array([2.5]), **given
-    )
+    values = {"order_status": np.array([status]), "order_reason": np.array([reason], object)}
+    return ordered_run(1, **values, order_value=np.array([2.5]), **given)
 
 
 def test_a_trimmed_order_says_what_was_asked_and_what_to_do(ordered_run):
@@ -128,11 +127,8 @@ def test_a_trimmed_order_says_what_was_asked_and_what_to_do(ordered_run):
 
 
 def test_a_refused_order_says_not_to_move(ordered_run):
-    text = text_of(
-        one_order(
-            ordered_run, REFUSED, "the leaf is stuck", order_opening_after=np.array([0.30]), order_completed=np.array([np.nan])
-        )
-    )
+    never = {"order_opening_after": np.array([0.30]), "order_completed": np.array([np.nan])}
+    text = text_of(one_order(ordered_run, REFUSED, "the leaf is stuck", **never))
     assert "1. 06:30 Middle check: DO NOT MOVE The opening stays at 0.300 m." in text
     assert "! Asked: open to 2.50 m. Not to be done: the leaf is stuck." in text
     assert "seen at ________ signed ________" in text
@@ -179,8 +175,8 @@ def test_moves_of_rules_are_said_not_to_be_on_the_sheet(ordered_run):
 def test_rounds_are_told_in_words(ordered_run):
     rule = {
         "kind": "gatekeeper rounds", "gate": "Middle check", "band": 0.02, "step": 0.05, "where": "below the gate",
-        "target": {"times": [0, 7_200_000], "values": [50.5, 50.6], "shape": "steps"}, "visits": None, "every": 10_800.0,
-        "hours": ["06:00:00", "18:00:00"],
+        "target": {"times": [0, 7_200_000], "values": [50.5, 50.6], "shape": "steps"},
+        "visits": None, "every": 10_800.0, "hours": ["06:00:00", "18:00:00"],
     }  # fmt: skip
     run = ordered_run(attributes={"resolved_settings": json.dumps({"rules": [rule]})})
     assert (

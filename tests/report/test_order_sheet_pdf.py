@@ -114,7 +114,8 @@ def test_nothing_is_printed_outside_the_margins(ordered_run, paper):
 
 
 def test_blanks_are_high_enough_to_write_in(ordered_run):
-    heights = [abs(float(operands[3])) for operands, operator in operations(printed(ordered_run(3))) if operator == b"re"]
+    boxes = [operands for operands, operator in operations(printed(ordered_run(3))) if operator == b"re"]
+    heights = [abs(float(height)) for _, _, _, height in boxes]
     readings, signatures, once = 2 * 2, 3, 3
     assert sum(height >= SMALLEST_BLANK for height in heights) >= 3 * (readings + signatures) + once
 
@@ -143,7 +144,7 @@ def test_names_in_other_letters_are_printed(ordered_run):
 
 def test_letters_that_the_font_lacks_are_named(ordered_run):
     run = ordered_run(gate_gatekeeper=np.array(["水門", ""], object))
-    with pytest.raises(UsageError, match="lacks 水 門.*--format text"):
+    with pytest.raises(UsageError, match=r"lacks 水 門.*--format text"):
         printed(run)
 
 

@@ -44,14 +44,15 @@ CALENDAR = ".ics"
     "formats",
     multiple=True,
     type=click.Choice(list(FORMATS)),
-    help="Write this format; all unless given. May be repeated. The calendar, which keeps the revision, is always written.",
+    help="Write this format; all unless given. May be repeated. A calendar, which keeps the revision, is always "
+    "written.",
 )
 @click.option("--paper", type=click.Choice(["A4", "Letter"], case_sensitive=False), default="A4", show_default=True)
 @click.option(
     "--allow",
     metavar="LENGTH",
-    help="What a reading may be off for reading the gauge and for what the simulation does not know, such as '3 cm': it "
-    "widens every band. 1 cm or 0.01 ft unless given.",
+    help="What a reading may be off for reading the gauge and for what the simulation does not know, such as "
+    "'3 cm': it widens every band. 1 cm or 0.01 ft unless given.",
 )
 @click.option(
     "--alarm",

@@ -12,7 +12,6 @@ from toeline.errors import UsageError
 
 if TYPE_CHECKING:
     from toeline.scenario import CanalFile
-    from toeline.units import UnitSystem
 
 QUANTITIES = "LEVEL[,LEVEL...]"
 

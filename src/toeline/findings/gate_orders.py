@@ -117,7 +117,7 @@ def gatekeepers(run: xr.Dataset) -> dict[str, str]:
 
 
 def gauge_beside(run: xr.Dataset, gate: str, side: str) -> tuple[str, float]:
-    """Name and zero level [m] of the first staff gauge on a side of a gate; "" and 0, the datum, where there is none."""
+    """Name and zero level [m] of the first staff gauge on a side of a gate; "" and 0, the datum, without one."""
     if "gauge" in run.sizes:
         sides = meanings(run["gauge_side"])
         for place, name in enumerate(names(run["gauge"])):
@@ -168,9 +168,8 @@ class _Gates:
     def order(self, row: int) -> GateOrder:
         order, name = self._run.isel(order=row), str(self._run["order_gate"].values[row])
         gate = names(self._run["gate"]).index(name)
-        begins, next_move = order["order_time"].values, self._next_move(row)
-        status = self._statuses[row]
-        stands = order["order_completed"].values
+        begins, stands = (self._run[name].values[row] for name in ("order_time", "order_completed"))
+        status, next_move = self._statuses[row], self._next_move(row)
         read_after = self._read_after(gate, stands if not np.isnat(stands) else next_move, next_move)
         return GateOrder(
             number=self._number(row),
@@ -234,9 +233,7 @@ class _Gates:
         one_trip = [stands + np.timedelta64(round(float(trip)), "s")] if np.isfinite(trip) else []
         return min([*settled[:1], *one_trip, next_move])
 
-    def _sides(
-        self, gate: int, row: int, read_after: np.datetime64, next_move: np.datetime64
-    ) -> Iterator[Side]:
+    def _sides(self, gate: int, row: int, read_after: np.datetime64, next_move: np.datetime64) -> Iterator[Side]:
         begins, stands = (self._run[name].values[row] for name in ("order_time", "order_completed"))
         stood = read_after if np.isnat(stands) else stands
         for side, pool in zip(("upstream", "downstream"), self._pools(gate), strict=True):

@@ -2,6 +2,7 @@
 
 import json
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 import xarray as xr
@@ -39,7 +40,7 @@ def rounds(run: xr.Dataset) -> list[Rounds]:
     return [_rounds(run, rule) for rule in rules if rule["kind"] == KIND]
 
 
-def _rounds(run: xr.Dataset, rule: dict) -> Rounds:
+def _rounds(run: xr.Dataset, rule: dict[str, Any]) -> Rounds:
     side = "upstream" if rule["where"] == "above the gate" else "downstream"
     gauge, zero = gauge_beside(run, rule["gate"], side)
     targets = rule["target"] or {"times": [0], "values": [_target_above(run, rule["gate"])], "shape": "steps"}
@@ -47,7 +48,9 @@ def _rounds(run: xr.Dataset, rule: dict) -> Rounds:
         gate=rule["gate"],
         side=side,
         gauge=gauge,
-        targets=tuple((at / 1000.0, level - zero) for at, level in zip(targets["times"], targets["values"], strict=True)),
+        targets=tuple(
+            (at / 1000.0, level - zero) for at, level in zip(targets["times"], targets["values"], strict=True)
+        ),
         is_sloped=targets["shape"] == "lines" and len(set(targets["values"])) > 1,
         band=rule["band"],
         step=rule["step"],

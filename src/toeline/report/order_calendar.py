@@ -34,11 +34,10 @@ class Issue:
     calendars: Mapping[str, Calendar]
 
 
-def issue(
-    run: xr.Dataset, sheets: Sequence[Sheet], earlier: Mapping[str, Calendar], alarm: timedelta | None
-) -> Issue:
-    """A calendar for each sheet. `earlier` are calendars of an earlier issue, by the name of the sheet: those of another
-    plan or day are not looked at.
+def issue(run: xr.Dataset, sheets: Sequence[Sheet], earlier: Mapping[str, Calendar], alarm: timedelta | None) -> Issue:
+    """A calendar for each sheet. `earlier` are calendars of an earlier issue, by the name of the sheet.
+
+    Those of another plan or day are not looked at.
 
     The revision is 0 for a first issue, and rises by one where another run or any other event is issued.
     """
@@ -49,7 +48,7 @@ def issue(
         sheet.whose: _revised(_events(run, sheet, alarm), before, _events_of(known.get(sheet.whose)))
         for sheet in sheets
     }
-    revision = max((int(calendar[REVISION]) for calendar in known.values()), default=-1)
+    revision = max((int(str(calendar[REVISION])) for calendar in known.values()), default=-1)
     if not known or any(_differs(events, known.get(whose), digest) for whose, events in issued.items()):
         revision += 1
     return Issue(revision, {whose: _calendar(plan, digest, revision, events) for whose, events in issued.items()})
@@ -83,13 +82,13 @@ def _next(event: Event, before: Event | None) -> Event:
         return _numbered(event, 0)
     if _content(event) == _content(before):
         return before
-    return _numbered(event, int(before["SEQUENCE"]) + 1)
+    return _numbered(event, int(str(before["SEQUENCE"])) + 1)
 
 
 def _cancelled(event: Event) -> Event:
     if str(event["STATUS"]) == CANCELLED:
         return event
-    cancelled = _numbered(event, int(event["SEQUENCE"]) + 1)
+    cancelled = _numbered(event, int(str(event["SEQUENCE"])) + 1)
     del cancelled["STATUS"], cancelled["SUMMARY"]
     cancelled.add("status", CANCELLED)
     cancelled.add("summary", f"Cancelled: {event['SUMMARY']}")
@@ -114,7 +113,8 @@ def _content(event: Event) -> bytes:
 
 def _calendar(plan: str, digest: str, revision: int, events: Sequence[Event]) -> Calendar:
     calendar = Calendar()
-    for name, value in (("prodid", PRODUCT), ("version", "2.0"), (PLAN, plan), (REVISION, str(revision)), (RUN, digest)):
+    properties = {"prodid": PRODUCT, "version": "2.0", PLAN: plan, REVISION: str(revision), RUN: digest}
+    for name, value in properties.items():
         calendar.add(name, value)
     for event in events:
         calendar.add_component(event)

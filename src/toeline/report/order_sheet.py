@@ -8,6 +8,7 @@ from typing import Literal
 import numpy as np
 import xarray as xr
 
+from toeline.constants import CAUTION
 from toeline.errors import UsageError
 from toeline.findings.gate_orders import GateOrder, Reading, Side, gate_orders, gatekeepers, rule_moves
 from toeline.findings.incidents import incidents
@@ -44,9 +45,7 @@ HOW_TO_READ = (
     "the sheet does not hold.",
     "Wave: a bound for the height of the surge that the move sends along the pool, if the leaf moved at once.",
 )
-PEOPLE = (
-    "anybody is in the water, in a boat, or on the apron or the banks beside it: do not move the gate"
-)
+PEOPLE = "anybody is in the water, in a boat, or on the apron or the banks beside it: do not move the gate"
 ALWAYS = (
     "the leaf does not move freely, trembles, or does not reach the opening written here",
     "anything that you see differs from this sheet",
@@ -120,20 +119,34 @@ class Sheet:
         return "issued by", "reviewed by", "received by"
 
     @property
+    def lists_before(self) -> list[tuple[str, tuple[str, ...]]]:
+        """Titles and lines of what stands before the orders."""
+        lists = (
+            ("Stop and call if", self.always),
+            ("What goes wrong in the simulation", self.trouble),
+            ("Beside the orders", self.not_here),
+        )
+        return [(title, lines) for title, lines in lists if lines]
+
+    @property
+    def lists_after(self) -> list[tuple[str, tuple[str, ...]]]:
+        """Titles and lines of what stands after them; the caution is always there."""
+        how_to_read = [("How to read this sheet", self.how_to_read)] if self.orders else []
+        return [*how_to_read, ("Caution", (CAUTION,))]
+
+    @property
     def orders_line(self) -> str:
         """How many orders, and for which gates."""
         gates = ", ".join(self.gates)
         return f"{counted(len(self.orders), 'order')} for {gates}" if self.orders else f"No orders for {gates}."
 
 
-def order_sheets(
-    run: xr.Dataset, by: By | None = None, *, allowance: float | None = None
-) -> list[Sheet]:
+def order_sheets(run: xr.Dataset, by: By | None = None, *, allowance: float | None = None) -> list[Sheet]:
     """A sheet for each gatekeeper or each gate, also for those without orders; gates from the head down.
 
     Unless it is said, by gatekeeper where the canal file names any. `allowance` [m] is what a reading may be off for
-    what the simulation does not know; the fineness of the gauge unless given. UsageError for a run that is not complete: what it
-    leaves out would not be on the sheets.
+    what the simulation does not know; the fineness of the gauge unless given. UsageError for a run that is not
+    complete: what it leaves out would not be on the sheets.
     """
     if run.attrs["outcome"] != COMPLETE:
         raise UsageError(

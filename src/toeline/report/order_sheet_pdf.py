@@ -5,14 +5,16 @@ The letters are those of DejaVu Sans, which comes with matplotlib under its own 
 
 from collections.abc import Callable, Iterator, Sequence
 from datetime import datetime
+from functools import partial
 from pathlib import Path
-from typing import Literal
+from typing import Literal, cast
 
 import matplotlib
 from fpdf import FPDF
 from fpdf.enums import Align, MethodReturnValue, XPos, YPos
+from fpdf.fonts import TTFFont
 
-from toeline.constants import CAUTION, FIELD_CAUTION
+from toeline.constants import FIELD_CAUTION
 from toeline.errors import UsageError
 from toeline.report.order_sheet import ReadingWords, Sheet, SheetOrder
 
@@ -42,13 +44,13 @@ def sheet_pdf(sheet: Sheet, paper: Paper, created: datetime) -> bytes:
     """The sheet as a PDF file. UsageError where a name has letters that the font lacks."""
     page, rehearsal = _Page(sheet, paper, created), _Page(sheet, paper, created)
     try:
-        page.write(rehearsal)
-        if unknown := {chr(code) for font in page.fonts.values() for code in font.missing_glyphs}:
+        page.write_all(rehearsal)
+        if unknown := {chr(code) for font in page.faces for code in font.missing_glyphs}:
             letters = " ".join(sorted(unknown))
             raise UsageError(f"the font of printed sheets lacks {letters}; choose other formats, such as --format text")
         return bytes(page.output())
     finally:
-        for font in (*page.fonts.values(), *rehearsal.fonts.values()):
+        for font in (*page.faces, *rehearsal.faces):
             font.close()
 
 
@@ -57,7 +59,7 @@ class _Page(FPDF):
         super().__init__(format=paper.lower())
         self._sheet = sheet
         self._top = MARGIN
-        self._faces()
+        self._add_faces()
         self.set_margin(MARGIN)
         self.set_auto_page_break(True, MARGIN - 3.0 + FOOT)
         self.set_title(f"Order sheet: {sheet.whose}, {sheet.canal}, {sheet.day}")
@@ -65,17 +67,21 @@ class _Page(FPDF):
         self.set_creation_date(created)
         self.set_lang("en")
 
-    def _faces(self) -> None:
+    def _add_faces(self) -> None:
         folder = Path(matplotlib.get_data_path()) / "fonts" / "ttf"
         for style, file in (("", "DejaVuSans.ttf"), ("B", "DejaVuSans-Bold.ttf")):
             self.add_font(FONT, style, folder / file)
 
-    def write(self, rehearsal: "_Page") -> None:
+    @property
+    def faces(self) -> list[TTFFont]:
+        """The fonts of the page; their files are open until they are closed."""
+        return [font for font in self.fonts.values() if isinstance(font, TTFFont)]
+
+    def write_all(self, rehearsal: "_Page") -> None:
         """Write all pages; `rehearsal` is a page of the same kind on which parts are tried for their height."""
         rehearsal.set_auto_page_break(False)
         rehearsal.add_page()
         self.add_page()
-        self._first()
         for part in self._parts():
             height = rehearsal.height_of(part)
             if self._top < self.get_y() and self.get_y() + height > self.page_break_trigger:
@@ -90,11 +96,17 @@ class _Page(FPDF):
 
     def _parts(self) -> Iterator[Part]:
         """What is not to be torn, one after another."""
-        for order in self._sheet.orders:
-            yield lambda page, order=order: page._order(order)
-        for title, lines in self._last():
-            yield lambda page, title=title, lines=lines: page._list(title, lines)
-        yield lambda page: page._blanks(*self._sheet.blanks)
+        sheet = self._sheet
+        yield lambda page: page._boxed(f"Call: {sheet.call}", LARGE)
+        for title, lines in sheet.lists_before:
+            yield partial(_Page._list, title=title, lines=lines)
+        if not sheet.orders:
+            yield lambda page: page._text(sheet.orders_line, MIDDLE, bold=True)
+        for order in sheet.orders:
+            yield partial(_Page._order, order=order)
+        for title, lines in sheet.lists_after:
+            yield partial(_Page._list, title=title, lines=lines)
+        yield lambda page: page._blanks(*sheet.blanks)
 
     def header(self) -> None:
         """What every page says: whose sheet, which day, plan and revision, units, and which page it is."""
@@ -116,22 +128,9 @@ class _Page(FPDF):
         self._rule(THIN)
         self._text(FIELD_CAUTION, SMALL)
 
-    def _first(self) -> None:
-        sheet = self._sheet
-        self._boxed(f"Call: {sheet.call}", LARGE)
-        self._list("Stop and call if", sheet.always)
-        if sheet.trouble:
-            self._list("What goes wrong in the simulation", sheet.trouble)
-        if sheet.not_here:
-            self._list("Beside the orders", sheet.not_here)
-        self._text(sheet.orders_line, MIDDLE, bold=True)
-
-    def _last(self) -> Iterator[tuple[str, Sequence[str]]]:
-        if self._sheet.orders:
-            yield "How to read this sheet", self._sheet.how_to_read
-        yield "Caution", (CAUTION,)
-
     def _order(self, order: SheetOrder) -> None:
+        if order.number == 1:
+            self._text(self._sheet.orders_line, MIDDLE, bold=True)
         if self.get_y() > self._top:
             self._rule(THICK)
         self._title(order)
@@ -169,8 +168,8 @@ class _Page(FPDF):
         """At least that of a blank; more where the name of a gauge needs it."""
         self._font(SMALL)
         text = f"{line.place}\n{line.instrument}"
-        needed = self.multi_cell(width, SMALL * POINT * LINE, text, dry_run=True, output=MethodReturnValue.HEIGHT)
-        return max(BLANK, needed + 1.0)
+        lines = cast(list[str], self.multi_cell(width, text=text, dry_run=True, output=MethodReturnValue.LINES))
+        return max(BLANK, len(lines) * SMALL * POINT * LINE + 1.0)
 
     def _row(self, widths: Sequence[float], cells: Sequence[tuple[str, str]], height: float) -> None:
         """Boxes side by side, each with a line of text and one below it."""
@@ -218,9 +217,7 @@ class _Page(FPDF):
             self._text(line, SMALL, width=self.epw - 5.0)
         self.set_y(self.get_y() + GAP)
 
-    def _text(
-        self, text: str, size: float, *, bold: bool = False, width: float = 0.0, stay: bool = False
-    ) -> None:
+    def _text(self, text: str, size: float, *, bold: bool = False, width: float = 0.0, stay: bool = False) -> None:
         """Text wrapped to a width from here on (the rest of the line unless given); then to the line below, or not."""
         self._font(size, bold)
         below = YPos.TOP if stay else YPos.NEXT

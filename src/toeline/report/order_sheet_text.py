@@ -2,7 +2,6 @@
 
 from collections.abc import Iterator, Sequence
 
-from toeline.constants import CAUTION
 from toeline.report.layout import INDENT, heading, paragraph, table
 from toeline.report.order_sheet import Sheet, SheetOrder
 
@@ -12,13 +11,15 @@ BLANK = "________"
 
 def sheet_text(sheet: Sheet) -> str:
     """The whole sheet: heading, what always holds, orders with blanks to fill in, how to read it, the caution."""
-    parts = ["\n".join(_heading(sheet)), _list("Stop and call if", sheet.always)]
-    parts += [_list(title, lines) for title, lines in _lists(sheet) if lines]
-    parts.append(heading("Orders") + "\n" + paragraph(sheet.orders_line, WIDTH))
-    parts += ["\n".join(_order(order)) for order in sheet.orders]
-    if sheet.orders:
-        parts.append(_list("How to read this sheet", sheet.how_to_read))
-    parts += [_list("Caution", [CAUTION]), "\n".join(_blanks(*sheet.blanks))]
+    orders = heading("Orders") + "\n" + paragraph(sheet.orders_line, WIDTH)
+    parts = [
+        "\n".join(_heading(sheet)),
+        *(_list(title, lines) for title, lines in sheet.lists_before),
+        orders,
+        *("\n".join(_order(order)) for order in sheet.orders),
+        *(_list(title, lines) for title, lines in sheet.lists_after),
+        "\n".join(_blanks(*sheet.blanks)),
+    ]
     return "\n\n".join(parts) + "\n"
 
 
@@ -32,10 +33,6 @@ def _heading(sheet: Sheet) -> Iterator[str]:
         f"Call: {sheet.call}",
     ):
         yield paragraph(line, WIDTH)
-
-
-def _lists(sheet: Sheet) -> tuple[tuple[str, Sequence[str]], ...]:
-    return ("What goes wrong in the simulation", sheet.trouble), ("Beside the orders", sheet.not_here)
 
 
 def _list(title: str, lines: Sequence[str]) -> str:

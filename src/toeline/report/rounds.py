@@ -8,9 +8,7 @@ from toeline.units import Display
 
 def rounds_words(rounds: Rounds, clock: RunClock, display: Display) -> str:
     """When to visit the gate, what to read there, and what to do then."""
-    place, too_high, too_low = (
-        ("above", "open", "close") if rounds.side == "upstream" else ("below", "close", "open")
-    )
+    place, too_high, too_low = ("above", "open", "close") if rounds.side == "upstream" else ("below", "close", "open")
     instrument = f"gauge {rounds.gauge}" if rounds.gauge else "level above datum"
     step = display.setting(rounds.step)
     return (
@@ -30,5 +28,6 @@ def _visits(rounds: Rounds) -> str:
 def _targets(rounds: Rounds, clock: RunClock, display: Display) -> str:
     if len({level for _, level in rounds.targets}) == 1:
         return display.level(rounds.targets[0][1])
-    words = [f"{display.level(level)} {'at' if rounds.is_sloped else 'from'} {clock.after(at)}" for at, level in rounds.targets]
+    since = "at" if rounds.is_sloped else "from"
+    words = [f"{display.level(level)} {since} {clock.after(at)}" for at, level in rounds.targets]
     return ", ".join(words) + (", evenly in between" if rounds.is_sloped else "")
