@@ -24,7 +24,7 @@ STILL = np.full(EVERY.size, 9.0)
 def orders(run_by_hand):
     """Build a run with orders to the Orchard check at the given minutes, and give its orders."""
 
-    def build(*minutes: float, allowance: float = ALLOWANCE, **given: object):
+    def build(*minutes: float, allowance: float = ALLOWANCE, bays: tuple[int, ...] = (), **given: object):
         count = len(minutes)
         values = {
             "order_time": 60.0 * np.array(minutes),
@@ -38,7 +38,8 @@ def orders(run_by_hand):
             "pool_wave_round_trip": ROUND_TRIP,
             "settling": 1,
         }
-        return gate_orders(run_by_hand(EVERY, values=values | given), allowance)
+        run = run_by_hand(EVERY, values=values | given)
+        return gate_orders(run.assign(order_bay=("order", list(bays) or [0] * count)), allowance)
 
     return build
 
@@ -109,6 +110,16 @@ def test_the_surge_is_the_greatest_bound_after_the_order(orders):
     bound = levels(np.select([EVERY == 60, EVERY == 65], [0.5, 0.2], 0.1), STILL)
     (order,) = orders(60.0, surge_height_bound_downstream=bound)
     assert order.sides[1].surge == pytest.approx(0.2)
+
+
+def test_bays_that_move_together_are_one_move(orders, at):
+    together = orders(60.0, 60.0, 62.0, 120.0, bays=(1, 2, 3, 1))
+    assert [(order.leaf, order.read_after) for order in together[:3]] == [
+        ("Orchard check, bay 1", at(85)),
+        ("Orchard check, bay 2", at(85)),
+        ("Orchard check, bay 3", at(87)),
+    ]
+    assert [order.sides[0].before.band for order in together[:2]] == pytest.approx([0.015 + ALLOWANCE] * 2)
 
 
 def test_orders_come_in_time_order_and_are_numbered_by_gate(orders):

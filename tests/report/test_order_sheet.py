@@ -98,6 +98,22 @@ def test_the_end_of_the_protected_floor_is_a_reason_to_stop(ordered_run):
     assert "protected floor" not in text_of(ordered_run(), 1)
 
 
+FALL = {"kind": "fall", "limit": 0.15, "window": 3600.0, "unit": "m", "places": ["Upper pool"], "source": "the owner"}
+ABOVE = {
+    "kind": "above", "limit": 51.5, "unit": "m", "places": ["Upper pool", "Lower pool"], "measured_from": "datum",
+    "at": "lower end", "source": "lining",
+}  # fmt: skip
+
+
+def test_limits_of_the_owner_beside_the_gates_are_reasons_to_stop(ordered_run):
+    run = ordered_run(attributes={"limits": json.dumps([FALL, ABOVE, ABOVE | {"kind": "freeboard"}])})
+    text = text_of(run)
+    assert "the water above Middle check falls by more than 0.15 m in 1 h; the owner" in text
+    assert "the water above Middle check is above 51.50 m (level above datum); lining" in text
+    assert "below Middle check is" not in text
+    assert "falls by more" not in text_of(run, 1)
+
+
 def test_people_in_the_water_come_first_among_the_reasons_to_stop(ordered_run):
     assert "STOP AND CALL IF - anybody is in the water" in text_of(ordered_run())
 

@@ -16,6 +16,7 @@ EARLY_OR_LATE = 900.0
 """Seconds by which a reading may be taken early or late and still lie in its band (choice)."""
 
 FROM_SCHEDULE = "schedule"
+SIDES = ("upstream", "downstream")
 SAME_OPENING = 1e-4
 """Change of an opening [m] that is none: a tenth of what a sheet shows."""
 
@@ -45,7 +46,8 @@ class Side:
 
 @dataclass(frozen=True)
 class GateOrder:
-    """One order; openings and lengths in m. `number` counts the orders of the plan to this gate, from 1.
+    """One order; openings and lengths in m. `number` counts the orders of the plan to this gate, from 1; `bay` is 0
+    where all bays move together.
 
     `completed` is when the leaf stands, NaT where it does not; `read_after` when the readings after it are taken, and
     `waits_for_next_move` says that this is so early because the gate moves again. `turn` and `scale_mark` are NaN where
@@ -54,7 +56,7 @@ class GateOrder:
 
     number: int
     gate: str
-    gatekeeper: str
+    bay: int
     time: np.datetime64
     kind: str
     value: float
@@ -71,6 +73,11 @@ class GateOrder:
     read_after: np.datetime64
     waits_for_next_move: bool
     sides: tuple[Side, ...]
+
+    @property
+    def leaf(self) -> str:
+        """What is moved: the gate, or one bay of it."""
+        return f"{self.gate}, bay {self.bay}" if self.bay else self.gate
 
     @property
     def is_refused(self) -> bool:
@@ -149,7 +156,7 @@ class _Gates:
     def __init__(self, run: xr.Dataset, allowance: float):
         self._run = run
         self._allowance = allowance
-        self._keepers = gatekeepers(run)
+        self._bays = run["order_bay"].values if "order_bay" in run else np.zeros(run.sizes["order"])
         self._turns, self._marks = _lengths(run, "gate_turn"), _lengths(run, "gate_scale_mark")
         self._ends = run["gate_protection_end"].values
         self.sources = _sources(run)
@@ -174,7 +181,7 @@ class _Gates:
         return GateOrder(
             number=self._number(row),
             gate=name,
-            gatekeeper=self._keepers[name],
+            bay=int(self._bays[row]),
             time=begins,
             kind=meanings(order["order_kind"])[int(order["order_kind"])],
             value=float(order["order_value"]),
@@ -201,23 +208,26 @@ class _Gates:
         earlier = self.rows[: self.rows.index(row) + 1]
         return sum(gates[k] == gates[row] and self.sources[k] == FROM_SCHEDULE for k in earlier)
 
-    def _moves_beside(self, row: int) -> tuple[list[int], list[int]]:
-        """Rows of the moves of the same gate before and after this one; refused orders move nothing."""
-        gates, place = self._run["order_gate"].values, self.rows.index(row)
-        moves = [k for k in self.rows if gates[k] == gates[row] and self._statuses[k] != "refused"]
-        before = set(self.rows[:place])
-        return [k for k in moves if k in before], [k for k in moves if k not in before and k != row]
+    def _other_moves(self, row: int) -> list[int]:
+        """Rows of the other moves of the same gate in time order; refused orders move nothing."""
+        gates = self._run["order_gate"].values
+        return [k for k in self.rows if k != row and gates[k] == gates[row] and self._statuses[k] != "refused"]
 
     def _next_move(self, row: int) -> np.datetime64:
-        """When the gate moves again; the end of the run where it does not."""
-        _, later = self._moves_beside(row)
-        ends = self._run["time"].values[-1]
-        return min(self._run["order_time"].values[later[0]], ends) if later else ends
+        """When the gate moves again after the leaf stands; the end of the run where it does not.
+
+        Bays that move meanwhile belong to the same move.
+        """
+        times, ends = self._run["order_time"].values, self._run["time"].values[-1]
+        stands = self._run["order_completed"].values[row]
+        from_when = times[row] if np.isnat(stands) else stands
+        later = [times[k] for k in self._other_moves(row) if times[k] > times[row] and times[k] >= from_when]
+        return min([*later[:1], ends])
 
     def _moved_last(self, row: int) -> np.datetime64:
         """When the leaf came to stand after the move before; the start of the run where there was none."""
-        earlier, _ = self._moves_beside(row)
-        starts = self._run["time"].values[0]
+        times, starts = self._run["order_time"].values, self._run["time"].values[0]
+        earlier = [k for k in self._other_moves(row) if times[k] < times[row]]
         stood = self._run["order_completed"].values[earlier[-1]] if earlier else starts
         return starts if np.isnat(stood) else stood
 
@@ -236,7 +246,7 @@ class _Gates:
     def _sides(self, gate: int, row: int, read_after: np.datetime64, next_move: np.datetime64) -> Iterator[Side]:
         begins, stands = (self._run[name].values[row] for name in ("order_time", "order_completed"))
         stood = read_after if np.isnat(stands) else stands
-        for side, pool in zip(("upstream", "downstream"), self._pools(gate), strict=True):
+        for side, pool in zip(SIDES, self._pools(gate), strict=True):
             gauge, levels = self._levels(gate, side)
             bound = self._run[f"surge_height_bound_{side}"].values[:, gate]
             yield Side(

@@ -127,7 +127,7 @@ def _events(run: xr.Dataset, sheet: Sheet, alarm: timedelta | None) -> dict[str,
         uid: _event(uid, run, sheet, line, alarm)
         for line in sheet.orders
         if line.order.moves
-        for uid in [str(uuid5(NAMESPACE_URL, f"{plan_key(run)}; {line.gate}; {line.order.number}"))]
+        for uid in [str(uuid5(NAMESPACE_URL, f"{plan_key(run)}; {line.order.gate}; {line.order.number}"))]
     }
 
 
@@ -139,8 +139,8 @@ def _event(uid: str, run: xr.Dataset, sheet: Sheet, line: SheetOrder, alarm: tim
     event.add("dtstart", _whole_seconds(begins))
     if not np.isnat(stands) and _whole_seconds(stands) > _whole_seconds(begins):
         event.add("dtend", _whole_seconds(stands))
-    event.add("summary", f"{line.gate}: {line.move}")
-    event.add("location", f"{line.gate}, {sheet.canal}")
+    event.add("summary", f"{line.leaf}: {line.move}")
+    event.add("location", f"{line.leaf}, {sheet.canal}")
     event.add("description", "\n".join(_description(sheet, line)))
     event.add("status", CONFIRMED)
     if alarm is not None:
@@ -153,7 +153,7 @@ def _whole_seconds(instant: np.datetime64) -> datetime:
 
 
 def _description(sheet: Sheet, line: SheetOrder) -> Iterator[str]:
-    yield f"{line.at} ({sheet.day.rpartition(', ')[2]}), {line.gate}: {line.move}. {line.openings}"
+    yield f"{line.at} ({sheet.day.rpartition(', ')[2]}), {line.leaf}: {line.move}. {line.openings}"
     if line.warning:
         yield line.warning
     for reading in line.readings:
@@ -170,7 +170,7 @@ def _description(sheet: Sheet, line: SheetOrder) -> Iterator[str]:
 def _alarm(line: SheetOrder, before: timedelta) -> Alarm:
     alarm = Alarm()
     alarm.add("action", "DISPLAY")
-    alarm.add("description", f"{line.at} {line.gate}: {line.move}")
+    alarm.add("description", f"{line.at} {line.leaf}: {line.move}")
     alarm.add("trigger", -before)
     return alarm
 

@@ -12,8 +12,10 @@ from toeline.constants import CAUTION
 from toeline.errors import UsageError
 from toeline.findings.gate_orders import GateOrder, Reading, Side, gate_orders, gatekeepers, rule_moves
 from toeline.findings.incidents import incidents
+from toeline.findings.limits_beside import LimitBeside, limits_beside
 from toeline.findings.rounds import rounds
 from toeline.findings.series import names
+from toeline.report.clock import duration_text
 from toeline.report.layout import counted
 from toeline.report.order_words import move_words, order_words, reason_words
 from toeline.report.rounds import rounds_words
@@ -71,7 +73,7 @@ class SheetOrder:
     order: GateOrder
     number: int
     at: str
-    gate: str
+    leaf: str
     move: str
     openings: str
     warning: str
@@ -221,7 +223,7 @@ class _Maker:
             order=order,
             number=number,
             at=self._clock.at(order.time),
-            gate=order.gate,
+            leaf=order.leaf,
             move=self._move(order),
             openings=self._openings(order),
             warning=self._warning(order),
@@ -254,7 +256,7 @@ class _Maker:
             return f"Asked: {asked}. Not to be done: {reason}."
         if order.status == "replaced":
             return (
-                f"The next order, at {self._clock.at(order.next_move)}, comes while the leaf still moves, at about "
+                f"The next order, at {self._clock.at(order.completed)}, comes while the leaf still moves, at about "
                 f"{self._display.setting(order.after)}: go on with that one from there."
             )
         if order.status == "trimmed":
@@ -314,7 +316,17 @@ class _Maker:
                 "white water of the jump, or fast water, goes past the end of the protected floor below the gate "
                 f"({', '.join(protected)} from it)"
             )
+        yield from (self._limit_words(limit) for limit in limits_beside(self._run, gates))
         yield from ALWAYS
+
+    def _limit_words(self, limit: LimitBeside) -> str:
+        """What the water must not do beside the gates, and whose limit it is."""
+        places = ", ".join(f"{PLACES[side].removesuffix('the gate')}{gate}" for gate, side in limit.places)
+        if limit.window:
+            change = f"{limit.kind}s by more than {self._display.length(limit.limit)} in {duration_text(limit.window)}"
+            return f"the water {places} {change}; {limit.source}"
+        instrument = f"gauge {limit.gauge}" if limit.gauge else "level above datum"
+        return f"the water {places} is {limit.kind} {self._display.level(limit.limit)} ({instrument}); {limit.source}"
 
     def _not_here(self, gates: Sequence[str]) -> Iterator[str]:
         """What moves the gates beside the orders."""

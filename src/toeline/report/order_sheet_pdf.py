@@ -149,7 +149,7 @@ class _Page(FPDF):
         top = self.get_y() + 1.0
         half = self.epw / 2
         self.set_xy(MARGIN, top)
-        self._text(f"{order.number}.  {order.at}  {order.gate}", LARGE, bold=True, width=half + 10.0)
+        self._text(f"{order.number}.  {order.at}  {order.leaf}", LARGE, bold=True, width=half + 10.0)
         left = self.get_y()
         self.set_xy(MARGIN + half + 12.0, top)
         self._text(order.move.upper(), LARGE, bold=True, width=half - 12.0)

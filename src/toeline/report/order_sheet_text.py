@@ -40,7 +40,7 @@ def _list(title: str, lines: Sequence[str]) -> str:
 
 
 def _order(order: SheetOrder) -> Iterator[str]:
-    yield paragraph(f"{order.number}. {order.at}  {order.gate}: {order.move.upper()}", WIDTH, indent="", hanging=INDENT)
+    yield paragraph(f"{order.number}. {order.at}  {order.leaf}: {order.move.upper()}", WIDTH, indent="", hanging=INDENT)
     yield paragraph(order.openings, WIDTH)
     if order.warning:
         yield paragraph(f"! {order.warning}", WIDTH, hanging=INDENT * 2)
