@@ -150,7 +150,7 @@ def test_settings_of_the_run_are_kept_with_it(tmp_path):
 def test_the_example_of_the_developers_page_runs(tmp_path):
     source = DEVELOPERS.read_text(encoding="utf-8").split("```python\n")[1].split("```")[0]
     (tmp_path / "night_watch.py").write_text(source, encoding="utf-8")
-    rule = {"kind": "night_watch.py:NightWatch", "gate": "G0", "lowest": 9.0}
+    rule = {"kind": "night_watch.py:NightWatch", "gate": "G0", "every": "1 h", "lowest": 9.0}
     run = simulate(scenario(tmp_path, rule))
     changes = run.order_opening_after - run.order_opening_before
     assert changes.values == pytest.approx([-0.02] * 4, abs=1e-6)
