@@ -76,7 +76,7 @@ def test_an_error_names_rule_file_and_line_and_keeps_what_was_done(tmp_path):
         simulate(scenario(tmp_path, RULE), tmp_path / "run.nc")
     file = tmp_path / "watch.py"
     assert str(raised.value) == (
-        f'3600 s after the start: rule "watch.py:Watch" failed in {file}, line 18: ZeroDivisionError: division by zero'
+        f'1 h after the start: rule "watch.py:Watch" failed in {file}, line 18: ZeroDivisionError: division by zero'
     )
     with open_run(tmp_path / "run.nc.partial") as run:
         assert run.sizes["order"] == 1
