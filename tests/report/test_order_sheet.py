@@ -106,7 +106,8 @@ ABOVE = {
 
 
 def test_limits_of_the_owner_beside_the_gates_are_reasons_to_stop(ordered_run):
-    run = ordered_run(attributes={"limits": json.dumps([FALL, ABOVE, ABOVE | {"kind": "freeboard"}])})
+    freeboard = ABOVE | {"kind": "freeboard", "measured_from": "bank"}
+    run = ordered_run(attributes={"limits": json.dumps([FALL, ABOVE, freeboard])})
     text = text_of(run)
     assert "the water above Middle check falls by more than 0.15 m in 1 h; the owner" in text
     assert "the water above Middle check is above 51.50 m (level above datum); lining" in text
