@@ -185,7 +185,7 @@ def test_what_goes_wrong_at_the_gates_is_on_their_sheet_alone(ordered_run):
 def test_moves_of_rules_are_said_not_to_be_on_the_sheet(ordered_run):
     run = ordered_run(order_source=np.array(["schedule", "hold discharge"], object))
     text = text_of(run)
-    assert 'Middle check: 1 move by the rule "hold discharge" in the simulation, not on this sheet.' in text
+    assert 'Middle check: 1 move by the rule "hold discharge" in the simulation. They are no orders.' in text
     assert "2. 06:45" not in text
 
 
