@@ -8,7 +8,7 @@ from matplotlib.axes import Axes
 
 from toeline.findings.incidents import SHORTFALL_FROM
 from toeline.findings.series import names
-from toeline.report.figures.draw import area_look, draw_line, empty_note, key, panel_title, words_of
+from toeline.report.figures.draw import Drawn, area_look, draw_line, empty_note, key, panel_title, words_of
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.sheet import Sheet, in_house_style
 from toeline.report.figures.time_axis import TimeAxis
@@ -32,8 +32,10 @@ def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
 @in_house_style
 def _page(run: xr.Dataset, display: Display, name: str) -> Picture:
     offtakes = names(run["offtake"])
-    shown = [DELIVERY, DEMAND, SHORTFALL]
-    sheet = Sheet("Deliveries asked for and given", run_identity(run), PITCH * max(len(offtakes), 1) + 0.1, words_of(shown))
+    shown: list[Drawn] = [DELIVERY, DEMAND, SHORTFALL]
+    sheet = Sheet(
+        "Deliveries asked for and given", run_identity(run), PITCH * max(len(offtakes), 1) + 0.1, words_of(shown)
+    )
     time = TimeAxis(run)
     for row, axes in enumerate(time.rows(sheet, max(len(offtakes), 1), PITCH, HEIGHT)):
         if offtakes:
@@ -61,7 +63,7 @@ def _told(run: xr.Dataset, display: Display) -> str:
     volumes, lacks = run["delivery_volume"].values, run["demand"].values - run["delivery"].values
     given = f"{display.volume(volumes[-1] - volumes[0])} given"
     if np.isnan(run["demand"].values).all():
-        return f"{given}; nothing is asked: it gives what its levels make it give"
+        return f"{given}; nothing is asked, it follows the level of its pool"
     worst = float(np.nanmax(lacks))
     return given if worst <= SHORTFALL_FROM else f"{given}; at worst {display.discharge(worst)} short"
 
@@ -69,7 +71,7 @@ def _told(run: xr.Dataset, display: Display) -> str:
 def words(run: xr.Dataset, display: Display) -> str:
     """What the deliveries show, offtake by offtake."""
     told = (f"{offtake}: {_told(run.isel(offtake=row), display)}" for row, offtake in enumerate(names(run["offtake"])))
-    return f"Discharge asked for and delivered at each offtake against time. {'; '.join(told) or 'There are no offtakes'}."
+    return f"Discharge asked for and delivered at each offtake against time. {'; '.join(told) or 'No offtakes'}."
 
 
 def table(run: xr.Dataset, display: Display) -> NumberTable:

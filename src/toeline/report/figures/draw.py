@@ -12,6 +12,8 @@ from matplotlib.patches import Patch
 from toeline.report.figures.sheet import SMALL_SIZE, TEXT_SIZE
 from toeline.report.style import FAINT_INK, INK, Area, Line, Mark
 
+Drawn = Line | Area | Mark
+"""Anything of the style that can stand in a legend."""
 HATCH_DENSITY = 3
 _SHAPES = {"circle": "o", "square": "s", "triangle": "^", "diamond": "D", "cross": "X", "plus": "P"}
 
@@ -67,14 +69,14 @@ def mark_key(mark: Mark) -> Artist:
     return Line2D([], [], label=mark.word, **mark_look(mark))
 
 
-def key(thing: Line | Area | Mark) -> Artist:
+def key(thing: Drawn) -> Artist:
     """The key of a legend for anything of the style."""
     if isinstance(thing, Line):
         return line_key(thing)
     return area_key(thing) if isinstance(thing, Area) else mark_key(thing)
 
 
-def words_of(things: Sequence[Line | Area | Mark]) -> list[str]:
+def words_of(things: Sequence[Drawn]) -> list[str]:
     return [thing.word for thing in things]
 
 

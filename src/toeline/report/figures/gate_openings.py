@@ -1,13 +1,15 @@
 """Gate openings through the run, with the orders that moved them, and below each how the water went through."""
 
 from collections.abc import Iterator
+from typing import Any
 
 import numpy as np
 import xarray as xr
 from matplotlib.axes import Axes
+from matplotlib.patches import Rectangle
 
-from toeline.findings.series import is_any, meanings, names
-from toeline.report.figures.draw import draw_line, key, margin_note, mark_look, panel_title, words_of
+from toeline.findings.series import is_any, meanings_seen, names
+from toeline.report.figures.draw import Drawn, draw_line, key, margin_note, mark_look, panel_title, words_of
 from toeline.report.figures.gate_moves import orders_of
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.sheet import Sheet, in_house_style
@@ -15,15 +17,26 @@ from toeline.report.figures.time_axis import TimeAxis, positions
 from toeline.report.layout import counted
 from toeline.report.number_table import NumberTable, flag_column, quantity_column, text_column, time_column
 from toeline.report.run_identity import run_identity
-from toeline.report.style import FLOW_STATES, JUMP_STATES, OPENING, ORDER_STATUSES, Area, Mark, axis_text, shown_factor
+from toeline.report.style import (
+    FAINT_INK,
+    FLOW_STATES,
+    JUMP_STATES,
+    OPENING,
+    ORDER_STATUSES,
+    Area,
+    Mark,
+    axis_text,
+    shown_factor,
+)
 from toeline.units import Display
 
 NAME = "gate_openings"
 GATES_ON_A_PAGE = 6
 PITCH, HEIGHT = 1.5, 0.85
 STRIP = 0.13
-FLOW_BOTTOM, JUMP_BOTTOM = -0.20, -0.36
+STRIPS = ((-0.20, "flow", "gate_flow_state", FLOW_STATES), (-0.36, "jump", "jump_state", JUMP_STATES))
 """Strips below each panel, in shares of its height."""
+FRAME: dict[str, Any] = {"edgecolor": FAINT_INK, "linewidth": 0.5}
 
 
 def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
@@ -37,15 +50,19 @@ def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
 def _page(run: xr.Dataset, display: Display, name: str) -> Picture:
     gates = names(run["gate"])
     marks, areas = _marks_seen(run), _areas_seen(run)
-    shown = [OPENING, *marks, *areas]
-    sheet = Sheet("Gate openings, orders and flow", run_identity(run), PITCH * max(len(gates), 1) + 0.2, words_of(shown))
+    shown: list[Drawn] = [OPENING, *marks, *areas]
+    sheet = Sheet(
+        "Gate openings, orders and flow", run_identity(run), PITCH * max(len(gates), 1) + 0.1, words_of(shown)
+    )
     time = TimeAxis(run)
     for row, axes in enumerate(time.rows(sheet, len(gates), PITCH, HEIGHT, first=-0.25)):
         _panel(axes, run.isel(gate=row), time, display)
-        axes.tick_params(axis="x", pad=18 if row == len(gates) - 1 else 3, length=0)
+        axes.tick_params(axis="x", pad=34 if row == len(gates) - 1 else 3, length=0)
     sheet.side_title(axis_text("opening, lip above sill", "length", display))
     sheet.legend([key(thing) for thing in shown])
-    return Picture(name, sheet.figure, {"": table(run, display), "orders": orders_table(run, display)}, words(run, display))
+    return Picture(
+        name, sheet.figure, {"": table(run, display), "orders": orders_table(run, display)}, words(run, display)
+    )
 
 
 def _panel(axes: Axes, run: xr.Dataset, time: TimeAxis, display: Display) -> None:
@@ -56,12 +73,11 @@ def _panel(axes: Axes, run: xr.Dataset, time: TimeAxis, display: Display) -> Non
     for status, mark in ORDER_STATUSES.items():
         _order_marks(axes, orders.isel(order=np.flatnonzero(is_any(orders["order_status"], status))), mark, factor)
     axes.set_ylim(*_range(opening, float(run["gate_max_opening"]), factor))
-    for bottom, variable, areas in (
-        (FLOW_BOTTOM, "gate_flow_state", FLOW_STATES), (JUMP_BOTTOM, "jump_state", JUMP_STATES),
-    ):  # fmt: skip
-        for state in _seen(run[variable]):
+    for bottom, name, variable, areas in STRIPS:
+        for state in meanings_seen(run[variable]):
             time.strip(axes, is_any(run[variable], state), areas[state], bottom, STRIP, above=True)
-        margin_note(axes, bottom + STRIP / 2, variable.split("_")[-2], in_axes=True)
+        axes.add_patch(Rectangle((0, bottom), 1, STRIP, transform=axes.transAxes, clip_on=False, fill=False, **FRAME))
+        margin_note(axes, bottom + STRIP / 2, name, in_axes=True)
     panel_title(axes, gate, _told(opening, orders.sizes["order"], display))
 
 
@@ -74,7 +90,7 @@ def _order_marks(axes: Axes, orders: xr.Dataset, mark: Mark, factor: float) -> N
 
 
 def _range(opening: np.ndarray, most: float, factor: float) -> tuple[float, float]:
-    """Limits of the vertical axis: what the gate did, with some room, inside its travel; never less than a tenth of it."""
+    """Limits of the vertical axis: what the gate did and some room, never less than a tenth of its travel."""
     if not np.isfinite(opening).any():
         return 0.0, max(most, 0.1) / factor
     low, high = float(np.nanmin(opening)), float(np.nanmax(opening))
@@ -83,22 +99,19 @@ def _range(opening: np.ndarray, most: float, factor: float) -> tuple[float, floa
 
 
 def _told(opening: np.ndarray, orders: int, display: Display) -> str:
-    return f"{display.opening(opening[0])} at the start, {display.opening(opening[-1])} at the end; {counted(orders, 'order')}"
-
-
-def _seen(flags: xr.DataArray) -> list[str]:
-    return [meaning for value, meaning in enumerate(meanings(flags)) if (flags.values == value).any()]
+    first, last = display.opening(opening[0]), display.opening(opening[-1])
+    return f"{first} at the start, {last} at the end; {counted(orders, 'order')}"
 
 
 def _areas_seen(run: xr.Dataset) -> list[Area]:
     """Flow states, then jump states that look different from them."""
-    flow = [FLOW_STATES[state] for state in _seen(run["gate_flow_state"])]
-    return flow + [JUMP_STATES[state] for state in _seen(run["jump_state"])]
+    flow = [FLOW_STATES[state] for state in meanings_seen(run["gate_flow_state"])]
+    return flow + [JUMP_STATES[state] for state in meanings_seen(run["jump_state"])]
 
 
 def _marks_seen(run: xr.Dataset) -> list[Mark]:
     on_page = run.isel(order=np.flatnonzero(np.isin(run["order_gate"].values, names(run["gate"]))))
-    return [ORDER_STATUSES[status] for status in _seen(on_page["order_status"])]
+    return [ORDER_STATUSES[status] for status in meanings_seen(on_page["order_status"])]
 
 
 def words(run: xr.Dataset, display: Display) -> str:

@@ -7,9 +7,9 @@ import xarray as xr
 from matplotlib.axes import Axes
 
 from toeline.findings.jumps import GateJumps, gate_jumps
-from toeline.findings.series import is_any, meanings, names
+from toeline.findings.series import is_any, meanings_seen, names
 from toeline.report.clock import duration_text
-from toeline.report.figures.draw import area_look, draw_level, draw_line, key, margin_note, panel_title, words_of
+from toeline.report.figures.draw import Drawn, area_look, draw_level, draw_line, key, margin_note, panel_title, words_of
 from toeline.report.figures.gate_moves import MOVE, move_marks
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.sheet import SMALL_SIZE, Sheet, in_house_style
@@ -53,7 +53,7 @@ def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
 @in_house_style
 def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) -> Picture:
     states = [JUMP_STATES[state] for state in _states_seen(run) if state != "none"]
-    shown = [*states, *FLOORS, APRON_END, PROTECTION_END, SETTLING, MOVE]
+    shown: list[Drawn] = [*states, *FLOORS, APRON_END, PROTECTION_END, SETTLING, MOVE]
     sheet = Sheet("Where the jump stood", run_identity(run), PITCH * max(len(jumps), 1) + 0.1, words_of(shown))
     time = TimeAxis(run)
     for row, axes in enumerate(time.rows(sheet, len(jumps), PITCH, HEIGHT)):
@@ -132,19 +132,17 @@ def settling_beside(run: xr.Dataset) -> np.ndarray:
     settling, pools = is_any(run["settling"], "settling"), names(run["pool"])
     beside = (str(run[f"gate_{side}_pool"].values) for side in ("upstream", "downstream"))
     columns = [pools.index(pool) for pool in beside if pool in pools]
-    holds: np.ndarray = settling[:, columns].any(axis=1)
-    return holds
+    return np.asarray(settling[:, columns].any(axis=1))
 
 
 def _states_seen(run: xr.Dataset) -> list[str]:
-    return [state for value, state in enumerate(meanings(run["jump_state"])) if (run["jump_state"].values == value).any()]
+    return meanings_seen(run["jump_state"])
 
 
 def hazard_words(jumps: GateJumps) -> str:
     """Both hazards side by side."""
-    floor, people = (
-        duration_text(hours * 3600) if hours else "0 min" for hours in (jumps.beyond_protection_hours, jumps.roller_hours)
-    )
+    hazards = jumps.beyond_protection_hours, jumps.roller_hours
+    floor, people = (duration_text(hours * 3600) if hours else "0 min" for hours in hazards)
     return f"floor: jump beyond protection {floor}   |   people: drowned roller {people}"
 
 

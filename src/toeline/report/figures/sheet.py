@@ -10,6 +10,7 @@ import matplotlib
 from matplotlib.artist import Artist
 from matplotlib.axes import Axes
 from matplotlib.figure import Figure
+from matplotlib.ticker import MaxNLocator
 
 from toeline.report.run_identity import RunIdentity
 from toeline.report.style import FAINT_INK, INK, PAPER, RULE
@@ -73,13 +74,13 @@ class Sheet:
         self._room, self._right = room, right
         self.height = HEAD + room + self._legend_height + FOOT
         self.figure = Figure(figsize=(WIDTH, self.height))
-        self._heading(title, about)
+        self._title(title, about)
 
     @property
     def _legend_height(self) -> float:
-        return 0.34 + LEGEND_ROW * len(self._rows)
+        return 0.42 + LEGEND_ROW * len(self._rows)
 
-    def _heading(self, title: str, about: RunIdentity) -> None:
+    def _title(self, title: str, about: RunIdentity) -> None:
         write, left = self.figure.text, 0.3 / WIDTH
         write(left, self._up(0.32), title, fontsize=TITLE_SIZE, weight="bold", va="center")
         write(left, self._up(0.55), f"{about.canal}: {about.day}; {about.plan}", fontsize=TEXT_SIZE, va="center")
@@ -100,18 +101,24 @@ class Sheet:
         box = (left / WIDTH, bottom / self.height, width / WIDTH, panel.height / self.height)
         axes = self.figure.add_axes(box, sharex=share_x)
         axes.spines[["top", "right"]].set_visible(False)
+        axes.yaxis.set_major_locator(MaxNLocator(nbins=max(2, int(panel.height / 0.28)), steps=[1, 2, 2.5, 5, 10]))
         return axes
 
     def side_title(self, text: str) -> None:
         """What all vertical axes of the sheet measure, at its left edge."""
         middle = self.height - HEAD - self._room / 2
-        self.figure.text(0.3 / WIDTH, middle / self.height, text, fontsize=TEXT_SIZE, rotation=90, ha="center", va="center")
+        place = {"rotation": 90, "ha": "center", "va": "center"}
+        self.figure.text(0.3 / WIDTH, middle / self.height, text, fontsize=TEXT_SIZE, **place)
+
+    def heading(self, top: float, text: str) -> None:
+        """A line above a group of panels, so far below the top of the room for panels [inch]."""
+        self.figure.text(LEFT / WIDTH, self._up(HEAD + top), text, fontsize=TEXT_SIZE, weight="bold", va="bottom")
 
     def legend(self, handles: Sequence[Artist]) -> None:
         """The legend of the whole sheet, below its panels, in the rows for which room was kept."""
         waiting = list(handles)
         for row, size in enumerate(self._rows):
-            top = self.height - HEAD - self._room - 0.3 - LEGEND_ROW * row
+            top = self.height - HEAD - self._room - 0.42 - LEGEND_ROW * row
             self._legend_row(waiting[:size], top)
             del waiting[:size]
 

@@ -5,6 +5,7 @@ from dataclasses import dataclass
 from datetime import UTC, datetime, timedelta
 from functools import cached_property
 from itertools import pairwise
+from typing import Any
 
 import numpy as np
 import xarray as xr
@@ -25,7 +26,7 @@ LONE_STEP = np.timedelta64(10, "m")
 
 @dataclass(frozen=True)
 class TimeAxis:
-    """The time axis of a run: positions of its output steps, the borders between them, and ticks at full local hours."""
+    """The time axis of a run: positions of its output steps, the borders between them, ticks at round local times."""
 
     run: xr.Dataset
 
@@ -58,14 +59,16 @@ class TimeAxis:
             self.apply(axes, labelled=row == count - 1)
             yield axes
 
-    def strip(self, axes: Axes, holds: np.ndarray, area: Area, bottom: float, height: float, *, above: bool = False) -> None:
+    def strip(
+        self, axes: Axes, holds: np.ndarray, area: Area, bottom: float, height: float, *, above: bool = False
+    ) -> None:
         """Fill a strip of a panel while something holds (by output step).
 
         `bottom` and `height` are values of the vertical axis, or shares of the panel's height with `above`.
         """
         where = [(self.borders[first], self.borders[after] - self.borders[first]) for first, after in _runs(holds)]
         if where:
-            place = {"transform": axes.get_xaxis_transform(), "clip_on": False} if above else {}
+            place: dict[str, Any] = {"transform": axes.get_xaxis_transform(), "clip_on": False} if above else {}
             axes.broken_barh(where, (bottom, height), label=area.word, **area_look(area), **place)
 
     @cached_property
@@ -76,13 +79,17 @@ class TimeAxis:
         texts = [moments[0].strftime("%H:%M\n%Y-%m-%d")]
         for before, moment in pairwise(moments):
             texts.append(moment.strftime("%H:%M" if moment.date() == before.date() else "%H:%M\n%Y-%m-%d"))
-        return [(float(date2num(moment.astimezone(UTC))), text) for moment, text in zip(moments, texts, strict=True)]
+        return [(_position(moment), text) for moment, text in zip(moments, texts, strict=True)]
 
 
-def positions(times: np.ndarray) -> np.ndarray:
+def positions(times: np.ndarray | np.datetime64) -> np.ndarray:
     """Positions of instants (datetime64, UTC) along a time axis."""
-    found: np.ndarray = date2num(times)
+    found: np.ndarray = date2num(times)  # type: ignore[no-untyped-call]
     return found
+
+
+def _position(moment: datetime) -> float:
+    return float(positions(np.datetime64(moment.astimezone(UTC).replace(tzinfo=None), "ns")))
 
 
 def _runs(holds: np.ndarray) -> list[tuple[int, int]]:
@@ -102,7 +109,7 @@ def _round_moments(first: datetime, last: datetime) -> list[datetime]:
 
 
 def _every(first: datetime, last: datetime, step: timedelta) -> list[datetime]:
-    """Clock times a step apart from midnight on; steps are taken on the clock, so that a change of it leaves them round."""
+    """Clock times a step apart from midnight on, taken on the clock, so that a change of it leaves them round."""
     zone = first.tzinfo
     clock = first.replace(tzinfo=None, hour=0, minute=0, second=0, microsecond=0)
     found = []
