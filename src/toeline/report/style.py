@@ -91,6 +91,10 @@ SHORTFALL = Area("not delivered", VERMILION, "\\", 0.8)
 OVER_EDGE = Area("water above the edge", VERMILION, "\\")
 SETTLING = Area("settling: waves of a move still travel, levels uncertain", FAINT_INK, "/", 0.25)
 
+CAME_IN = Area("taken in", BLUISH_GREEN)
+WENT_OUT = Area("delivered, let out or lost", SKY_BLUE, "/")
+KEPT = Area("kept in a pool, or drawn from it (a step to the right)", ORANGE, "-")
+
 HAZARD_FLOOR = Area("floor: jump beyond protection", VERMILION, "\\")
 HAZARD_PEOPLE = Area("people: drowned roller", REDDISH_PURPLE, "x")
 

@@ -24,11 +24,11 @@ def line_look(line: Line) -> dict[str, Any]:
     return {"color": line.colour, "linewidth": line.width, "linestyle": dash}
 
 
-def area_look(area: Area) -> dict[str, Any]:
+def area_look(area: Area, density: int = HATCH_DENSITY) -> dict[str, Any]:
     """An area of the style as matplotlib takes it; the hatch is drawn in ink and keeps its strength."""
     return {
         "facecolor": (area.colour, area.opacity), "edgecolor": INK, "linewidth": 0.0,
-        "hatch": area.hatch * HATCH_DENSITY or None,
+        "hatch": area.hatch * density or None,
     }  # fmt: skip
 
 
@@ -80,10 +80,10 @@ def words_of(things: Sequence[Drawn]) -> list[str]:
     return [thing.word for thing in things]
 
 
-def panel_title(axes: Axes, name: str, told: str = "", *, lift: float = 4.0) -> None:
+def panel_title(axes: Axes, name: str, told: str = "", *, lift: float = 4.0, size: float = TEXT_SIZE) -> None:
     """The name of a panel above its left corner, and what is to be told of it at the right."""
     axes.annotate(name, (0, 1), xytext=(0, lift), xycoords="axes fraction", textcoords="offset points",
-                  fontsize=TEXT_SIZE, weight="bold", va="bottom")  # fmt: skip
+                  fontsize=size, weight="bold", va="bottom")  # fmt: skip
     if told:
         axes.annotate(told, (1, 1), xytext=(0, lift), xycoords="axes fraction", textcoords="offset points",
                       fontsize=SMALL_SIZE, va="bottom", ha="right")  # fmt: skip

@@ -12,7 +12,7 @@ from toeline.findings.series import is_any, meanings_seen, names
 from toeline.report.figures.draw import Drawn, draw_line, key, margin_note, mark_look, panel_title, words_of
 from toeline.report.figures.gate_moves import orders_of
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import Sheet, in_house_style
+from toeline.report.figures.sheet import Sheet, about_run, in_house_style
 from toeline.report.figures.time_axis import TimeAxis, positions
 from toeline.report.layout import counted
 from toeline.report.number_table import NumberTable, flag_column, quantity_column, text_column, time_column
@@ -52,7 +52,10 @@ def _page(run: xr.Dataset, display: Display, name: str) -> Picture:
     marks, areas = _marks_seen(run), _areas_seen(run)
     shown: list[Drawn] = [OPENING, *marks, *areas]
     sheet = Sheet(
-        "Gate openings, orders and flow", run_identity(run), PITCH * max(len(gates), 1) + 0.1, words_of(shown)
+        "Gate openings, orders and flow",
+        about_run(run_identity(run)),
+        PITCH * max(len(gates), 1) + 0.1,
+        words_of(shown),
     )
     time = TimeAxis(run)
     for row, axes in enumerate(time.rows(sheet, len(gates), PITCH, HEIGHT, first=-0.25)):

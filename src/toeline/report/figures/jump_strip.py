@@ -12,7 +12,7 @@ from toeline.report.clock import duration_text
 from toeline.report.figures.draw import Drawn, area_look, draw_level, draw_line, key, margin_note, panel_title, words_of
 from toeline.report.figures.gate_moves import MOVE, move_marks
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import SMALL_SIZE, Sheet, in_house_style
+from toeline.report.figures.sheet import SMALL_SIZE, Sheet, about_run, in_house_style
 from toeline.report.figures.time_axis import TimeAxis, positions
 from toeline.report.number_table import Column, NumberTable, flag_column, quantity_column, time_column
 from toeline.report.run_clock import RunClock
@@ -54,7 +54,9 @@ def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
 def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) -> Picture:
     states = [JUMP_STATES[state] for state in _states_seen(run) if state != "none"]
     shown: list[Drawn] = [*states, *FLOORS, APRON_END, PROTECTION_END, SETTLING, MOVE]
-    sheet = Sheet("Where the jump stood", run_identity(run), PITCH * max(len(jumps), 1) + 0.1, words_of(shown))
+    sheet = Sheet(
+        "Where the jump stood", about_run(run_identity(run)), PITCH * max(len(jumps), 1) + 0.1, words_of(shown)
+    )
     time = TimeAxis(run)
     for row, axes in enumerate(time.rows(sheet, len(jumps), PITCH, HEIGHT)):
         _panel(axes, run.isel(gate=row), jumps[row], time, display)

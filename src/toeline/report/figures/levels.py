@@ -9,7 +9,7 @@ from matplotlib.axes import Axes
 from toeline.findings.series import greatest, is_any, least, names
 from toeline.report.figures.draw import Drawn, draw_level, draw_line, key, margin_note, panel_title, words_of
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import Sheet, in_house_style
+from toeline.report.figures.sheet import Sheet, about_run, in_house_style
 from toeline.report.figures.time_axis import TimeAxis
 from toeline.report.number_table import Column, NumberTable, quantity_column, time_column
 from toeline.report.run_clock import RunClock
@@ -46,7 +46,10 @@ EDGES = {"lining": LINING, "bank": BANK, "bed": BED}
 def _page(run: xr.Dataset, edges: list[dict[str, float]], display: Display, name: str) -> Picture:
     shown: list[Drawn] = [WATER, TARGET, LINING, BANK, OVER_EDGE, SETTLING]
     sheet = Sheet(
-        "Water levels at the lower ends of the pools", run_identity(run), PITCH * len(edges) + 0.1, words_of(shown)
+        "Water levels at the lower ends of the pools",
+        about_run(run_identity(run)),
+        PITCH * len(edges) + 0.1,
+        words_of(shown),
     )
     time = TimeAxis(run)
     for row, axes in enumerate(time.rows(sheet, len(edges), PITCH, HEIGHT)):

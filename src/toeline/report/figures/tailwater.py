@@ -17,7 +17,7 @@ from toeline.findings.series import Extreme, is_any, names
 from toeline.report.figures.draw import Drawn, area_look, draw_line, empty_note, key, mark_look, panel_title, words_of
 from toeline.report.figures.jump_strip import hazard_words, settling_beside
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import Panel, Sheet, in_house_style
+from toeline.report.figures.sheet import Panel, Sheet, about_run, in_house_style
 from toeline.report.figures.time_axis import TimeAxis
 from toeline.report.number_table import Column, NumberTable, flag_column, quantity_column, time_column
 from toeline.report.run_clock import RunClock
@@ -70,7 +70,10 @@ def limit_levels(run: xr.Dataset) -> dict[str, np.ndarray]:
 def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) -> Picture:
     shown: list[Drawn] = [TAILWATER, *LIMITS, HAZARD_FLOOR, SETTLING, START, END]
     sheet = Sheet(
-        "Tailwater and its limits", run_identity(run), PITCH * max(len(jumps), 1) + RISE + 0.25, words_of(shown)
+        "Tailwater and its limits",
+        about_run(run_identity(run)),
+        PITCH * max(len(jumps), 1) + RISE + 0.25,
+        words_of(shown),
     )
     time = TimeAxis(run)
     for row, gate in enumerate(jumps):
