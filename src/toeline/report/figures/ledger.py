@@ -61,16 +61,15 @@ def _page(run: xr.Dataset, listed: list[Entry], before: list[float], display: Di
     axes = sheet.axes(Panel(0.25, PITCH * (len(listed) + 1), LABELS, 1.0 - LABELS))
     _steps(axes, listed, before, display)
     axes.set_xlabel(axis_text("volume", "volume", display))
-    residual = float(f"{ledger(run).residual / shown_factor('volume', display):.1g}") + 0.0
-    panel_title(axes, "", f"residual {residual:g} {unit_text('volume', display)}: whether the computing lost water")
+    residual = ledger(run).residual / shown_factor("volume", display)
+    panel_title(axes, "", f"residual {residual:.1g} {unit_text('volume', display)}: whether the computing lost water")
     sheet.legend([key(area) for area in AREAS])
     return Picture(name, sheet.figure, {"": table(run, display)}, words(run, display))
 
 
 def _steps(axes: Axes, listed: list[Entry], before: list[float], display: Display) -> None:
     factor = shown_factor("volume", display)
-    start = np.array(before) / factor
-    step = np.array([entry.volume for entry in listed]) / factor
+    start, step = (np.nan_to_num(volumes) / factor for volumes in (before, [entry.volume for entry in listed]))
     for row, entry in enumerate(listed):
         axes.barh(row, step[row], BAR, start[row], label=entry.area.word, **area_look(entry.area))
         if row:
@@ -91,6 +90,8 @@ def _steps(axes: Axes, listed: list[Entry], before: list[float], display: Displa
 
 def _signed(volume: float, display: Display) -> str:
     decimals = 0 if display.system is UnitSystem.metric else 2
+    if np.isnan(volume):
+        return "not known"
     number = round(volume / shown_factor("volume", display), decimals) + 0.0  # + 0.0 turns -0.0 into 0.0
     return f"{number:+,.{decimals}f} {unit_text('volume', display)}"
 

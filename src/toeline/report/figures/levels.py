@@ -7,7 +7,16 @@ import xarray as xr
 from matplotlib.axes import Axes
 
 from toeline.findings.series import greatest, is_any, least, names
-from toeline.report.figures.draw import Drawn, draw_level, draw_line, key, margin_note, panel_title, words_of
+from toeline.report.figures.draw import (
+    Drawn,
+    draw_level,
+    draw_line,
+    key,
+    margin_note,
+    panel_title,
+    value_range,
+    words_of,
+)
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.sheet import Sheet, about_run, in_house_style
 from toeline.report.figures.time_axis import TimeAxis
@@ -87,10 +96,7 @@ def over_edge(run: xr.Dataset) -> np.ndarray:
 
 
 def _range(level: np.ndarray, target: float) -> tuple[float, float]:
-    values = np.append(level, target)
-    if not np.isfinite(values).any():
-        return 0.0, 1.0
-    return float(np.nanmin(values)), float(np.nanmax(values))
+    return value_range(np.append(level, target))
 
 
 def _told(run: xr.Dataset, clock: RunClock, display: Display) -> str:

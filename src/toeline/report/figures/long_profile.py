@@ -126,7 +126,9 @@ def _nodes_of_page(run: xr.Dataset, gates: list[int]) -> np.ndarray:
         return np.arange(chainage.size)
     start = -np.inf if gates[0] == 0 else places[gates[0] - 1]
     end = np.inf if gates[-1] == places.size - 1 else places[gates[-1] + 1]
-    return np.flatnonzero((chainage >= start) & (chainage <= end))
+    inside = (chainage >= start) & (chainage <= end)
+    pools, counts = np.unique(run["node_pool"].values[inside], return_counts=True)
+    return np.flatnonzero(inside & np.isin(run["node_pool"].values, pools[counts > 1]))
 
 
 def _highest(run: xr.Dataset, nodes: np.ndarray) -> float:

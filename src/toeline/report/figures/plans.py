@@ -13,7 +13,7 @@ from toeline.findings.jumps import GateJumps, gate_jumps
 from toeline.findings.series import names
 from toeline.report.clock import duration_text
 from toeline.report.figures.draw import draw_line, line_look, mark_look, panel_title
-from toeline.report.figures.picture import Picture, page_name, pages
+from toeline.report.figures.picture import Picture, page_count, page_name, spread
 from toeline.report.figures.sheet import SMALL_SIZE, Panel, Sheet, about_run, in_house_style
 from toeline.report.figures.time_axis import TimeAxis
 from toeline.report.number_table import Column, NumberTable, number_column, quantity_column, text_column, time_column
@@ -22,7 +22,7 @@ from toeline.report.style import HAZARD_FLOOR, HAZARD_PEOPLE, INK, axis_text, pl
 from toeline.units import Display
 
 NAME = "plans"
-GATES_ON_A_PAGE = 16
+ROWS_ON_A_PAGE = 16
 PITCH, LABELS = 0.3, 0.13
 COLUMNS = ((0.0, 0.28), (0.36, 0.28), (0.72, 0.28))
 """Left edge and width of the columns beside one another, in shares of the room right of the names."""
@@ -35,11 +35,13 @@ def pictures(runs: Sequence[xr.Dataset], display: Display) -> Iterator[Picture]:
     """The comparing figure, sixteen gates or pools to a page. UsageError unless canal and period are the same."""
     check_alike(runs)
     jumps = [gate_jumps(run) for run in runs]
-    groups = pages(range(runs[0].sizes["gate"]), GATES_ON_A_PAGE)
-    for page, gates in enumerate(groups):
-        here = [run.isel(gate=gates) for run in runs]
+    gate_count, pool_count = runs[0].sizes["gate"], runs[0].sizes["pool"]
+    count = page_count(max(gate_count, pool_count), ROWS_ON_A_PAGE)
+    both = zip(spread(range(gate_count), count), spread(range(pool_count), count), strict=True)
+    for page, (gates, pools) in enumerate(both):
+        here = [run.isel(gate=gates, pool=pools) for run in runs]
         of_page = [[jumps_of_run[gate] for gate in gates] for jumps_of_run in jumps]
-        yield _page(here, of_page, display, page_name(NAME, page, len(groups)))
+        yield _page(here, of_page, display, page_name(NAME, page, count))
 
 
 def check_alike(runs: Sequence[xr.Dataset]) -> None:

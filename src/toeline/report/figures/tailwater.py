@@ -14,7 +14,17 @@ from matplotlib.axes import Axes
 
 from toeline.findings.jumps import GateJumps, gate_jumps
 from toeline.findings.series import Extreme, is_any, names
-from toeline.report.figures.draw import Drawn, area_look, draw_line, empty_note, key, mark_look, panel_title, words_of
+from toeline.report.figures.draw import (
+    Drawn,
+    area_look,
+    draw_line,
+    empty_note,
+    key,
+    mark_look,
+    panel_title,
+    value_range,
+    words_of,
+)
 from toeline.report.figures.jump_strip import hazard_words, settling_beside
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.sheet import Panel, Sheet, about_run, in_house_style
@@ -43,6 +53,8 @@ THROUGH_TIME, IN_PLANE = (0.0, 0.62), (0.72, 0.28)
 """Left edge and width of the two panels of a gate, in shares of the room."""
 THIN = 0.8
 """Width of limits in the plane, where they fold [points]."""
+LEAST_DISCHARGE = 0.05
+"""Room beside the path in the plane, at least [m³/s]: a gate whose discharge stands has no range of its own."""
 START = Mark("start of the run", INK, "circle", filled=False)
 END = Mark("end of the run", INK, "square")
 LIMITS = (MODULAR_LIMIT, DROWNING_LIMIT, PROTECTION_LIMIT)
@@ -122,7 +134,9 @@ def _in_plane(axes: Axes, run: xr.Dataset, display: Display) -> None:
               color=HAZARD_FLOOR.colour, markeredgecolor=INK, markeredgewidth=0.4)  # fmt: skip
     for mark, place in ((START, 0), (END, -1)):
         axes.plot(discharge[[place]], tailwater[[place]], label=mark.word, zorder=5, **mark_look(mark))
-    axes.margins(x=0.08)
+    low, high = value_range(discharge)
+    room = max(0.08 * (high - low), LEAST_DISCHARGE / shown_factor("discharge", display))
+    axes.set_xlim(low - room, high + room)
 
 
 def words(run: xr.Dataset, jumps: list[GateJumps], display: Display) -> str:
