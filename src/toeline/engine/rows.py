@@ -47,7 +47,9 @@ POOL_OUTPUT = np.dtype(
     ]
 )
 
-OFFTAKE_OUTPUT = np.dtype([("demand", float), ("delivery", float), ("delivery_volume", float)])
+OFFTAKE_OUTPUT = np.dtype(
+    [("demand", float), ("delivery", float), ("delivery_volume", float), ("offtake_level", float)]
+)
 
 CANAL_OUTPUT = np.dtype(
     [
