@@ -6,7 +6,7 @@ import numpy as np
 import xarray as xr
 from matplotlib.axes import Axes
 
-from toeline.findings.incidents import SHORTFALL_FROM
+from toeline.findings.deliveries import SHORTFALL_FROM
 from toeline.findings.series import names
 from toeline.report.figures.draw import Drawn, area_look, draw_line, empty_note, key, panel_title, words_of
 from toeline.report.figures.picture import Picture, page_name, pages

@@ -216,10 +216,14 @@ def gate_table(runs: Sequence[xr.Dataset], jumps: list[list[GateJumps]], display
         text_column("gate", [gate.gate for _, _, gate in rows]),
         number_column("jump beyond protection", "h", column(lambda gate: gate.beyond_protection_hours)),
         number_column("drowned roller", "h", column(lambda gate: gate.roller_hours)),
-        quantity_column("least protection margin", column(lambda gate: gate.protection_margin.value), "length", display),
+        quantity_column("least protection margin", column(_least_protection_margin), "length", display),
         Column("time of the least protection margin", "", times),
         quantity_column("least tailwater margin", column(lambda gate: gate.tailwater_margin.value), "length", display),
     ))  # fmt: skip
+
+
+def _least_protection_margin(gate: GateJumps) -> float:
+    return gate.protection_margin.value
 
 
 def pool_table(runs: Sequence[xr.Dataset], display: Display) -> NumberTable:

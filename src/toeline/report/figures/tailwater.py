@@ -14,6 +14,7 @@ from matplotlib.axes import Axes
 
 from toeline.findings.jumps import GateJumps, gate_jumps
 from toeline.findings.series import Extreme, is_any, names
+from toeline.findings.settling import gates_settling
 from toeline.report.figures.draw import (
     Drawn,
     area_look,
@@ -25,7 +26,7 @@ from toeline.report.figures.draw import (
     value_range,
     words_of,
 )
-from toeline.report.figures.jump_strip import hazard_words, settling_beside
+from toeline.report.figures.jump_strip import hazard_words
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.sheet import Panel, Sheet, about_run, in_house_style
 from toeline.report.figures.time_axis import TimeAxis
@@ -87,13 +88,13 @@ def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) 
         PITCH * max(len(jumps), 1) + RISE + 0.25,
         words_of(shown),
     )
-    time = TimeAxis(run)
+    time, settling = TimeAxis(run), gates_settling(run)
     for row, gate in enumerate(jumps):
         top, here = RISE + (row + 1) * PITCH - HEIGHT, run.isel(gate=row)
         left = sheet.axes(Panel(top, HEIGHT, *THROUGH_TIME))
         right = sheet.axes(Panel(top, HEIGHT, *IN_PLANE))
         right.sharey(left)
-        _through_time(left, here, time, display)
+        _through_time(left, here, settling[:, row], time, display)
         time.apply(left, labelled=row == len(jumps) - 1)
         _in_plane(right, here, display)
         panel_title(left, gate.gate, lift=11.0)
@@ -105,7 +106,7 @@ def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) 
     return Picture(name, sheet.figure, {"": table(run, display)}, words(run, jumps, display))
 
 
-def _through_time(axes: Axes, run: xr.Dataset, time: TimeAxis, display: Display) -> None:
+def _through_time(axes: Axes, run: xr.Dataset, settling: np.ndarray, time: TimeAxis, display: Display) -> None:
     factor = shown_factor("length", display)
     tailwater, limits = run["gate_tailwater_level"].values / factor, limit_levels(run)
     for line in LIMITS:
@@ -115,7 +116,7 @@ def _through_time(axes: Axes, run: xr.Dataset, time: TimeAxis, display: Display)
     look = area_look(HAZARD_FLOOR)
     limit = limits[PROTECTION_LIMIT.word] / factor
     axes.fill_between(time.steps, tailwater, limit, where=lacks, label=HAZARD_FLOOR.word, **look)
-    time.strip(axes, settling_beside(run), SETTLING, 1.02, 0.06, above=True)
+    time.strip(axes, settling, SETTLING, 1.02, 0.06, above=True)
 
 
 def _in_plane(axes: Axes, run: xr.Dataset, display: Display) -> None:
