@@ -2,8 +2,8 @@
 
 import numpy as np
 import pytest
-
 from tests.report.figures.drawn import areas, line, minutes, panel, texts
+
 from toeline.report.figures.jump_strip import pictures
 from toeline.report.style import JUMP_STATES, SETTLING
 from toeline.units import Display, UnitSystem
