@@ -31,9 +31,16 @@ LABELS = {
     "gate": ["Orchard check", "Mill check"],
     "gate_upstream_pool": ["Orchard pool", "Mill pool"],
     "gate_downstream_pool": ["Mill pool", "tail"],
+    "bay": ["Mill check, bay 1", "Mill check, bay 2", "Mill check, bay 3"],
+    "bay_gate": ["Mill check"] * 3,
     "pool": ["Orchard pool", "Mill pool"],
     "offtake": ["North lateral"],
     "offtake_pool": ["Orchard pool"],
+    "escape": ["Storm escape"],
+    "escape_pool": ["Mill pool"],
+    "gauge": ["Mill gauge"],
+    "gauge_gate": ["Mill check"],
+    "gauge_pool": ["Mill pool"],
 }
 
 
@@ -48,7 +55,6 @@ def run_by_hand(
     *,
     values: Mapping[str, object],
     nodes: int = 4,
-    orders: int = 0,
     outcome: str = COMPLETE,
 ) -> xr.Dataset:
     """A run with output at the given minutes. `values` are by variable name and are spread over its dimensions.
@@ -58,10 +64,13 @@ def run_by_hand(
     sizes = {
         "time": len(minutes),
         "profile_time": len(profile_minutes),
-        "order": orders,
+        "order": np.size(values.get("order_time", ())),
         "gate": 2,
+        "bay": 3,
         "pool": 2,
         "offtake": 1,
+        "escape": 1,
+        "gauge": 1,
         "node": nodes,
     }
     given = {name: np.asarray(value) for name, value in values.items()} | {

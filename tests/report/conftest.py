@@ -14,14 +14,23 @@ from toeline.units import Display, UnitSystem
 
 START = datetime(2031, 5, 4, 6, tzinfo=timezone(timedelta(hours=2)))
 STEP_MS = 300_000
-SIZES = {"gate": 2, "pool": 2, "offtake": 1, "node": 4, "time": 49, "profile_time": 5, "order": 0}
+SIZES = {
+    "gate": 2, "bay": 2, "pool": 2, "offtake": 1, "escape": 1, "gauge": 1, "node": 4, "time": 49, "profile_time": 5,
+    "order": 0,
+}  # fmt: skip
 LABELS = {
     "gate": ["Middle check", "Last check"],
+    "bay": ["Last check, bay 1", "Last check, bay 2"],
+    "bay_gate": ["Last check", "Last check"],
     "pool": ["Upper pool", "Lower pool"],
     "offtake": ["East lateral"],
     "gate_upstream_pool": ["Upper pool", "Lower pool"],
     "gate_downstream_pool": ["Lower pool", "tail"],
     "offtake_pool": ["Lower pool"],
+    "escape": ["Storm escape"],
+    "escape_pool": ["Upper pool"],
+    "gauge": ["Staff 3"],
+    "gauge_pool": ["Lower pool"],
 }
 DROWNED_FLOW, DROWNED_JUMP = 3, 1
 QUIET = {
@@ -30,6 +39,8 @@ QUIET = {
     "jump_end_distance": 9.0,
     "jump_state": DROWNED_JUMP,
     "gate_flow_state": DROWNED_FLOW,
+    "pool_roughness_factor": 1.0,
+    "gauge_reading": 1.25,
 }
 
 
@@ -68,3 +79,39 @@ def invented_run() -> Callable[..., xr.Dataset]:
 @pytest.fixture
 def metric() -> Display:
     return Display(UnitSystem.metric)
+
+
+@pytest.fixture
+def ordered_run(invented_run) -> Callable[..., xr.Dataset]:
+    """Build the run with orders to the Middle check, one every quarter of an hour from 06:30 on, each of 0.06 m.
+
+    The level above it rises by 1 mm a minute from 51.40 m; that below stands at 50.60 m. A turn is 5 mm.
+    """
+
+    def build(count: int = 2, **given: object) -> xr.Dataset:
+        minutes = 30.0 + 15.0 * np.arange(count)
+        openings = 0.30 + 0.06 * np.arange(count + 1)
+        level = 51.40 + 0.005 * np.arange(SIZES["time"])
+        values = {
+            "order_time": 60.0 * minutes,
+            "order_completed": 60.0 * minutes + 90.0,
+            "order_gate": np.full(count, "Middle check", object),
+            "order_source": np.full(count, "schedule", object),
+            "order_kind": np.zeros(count),
+            "order_value": openings[1:],
+            "order_opening_before": openings[:-1],
+            "order_opening_after": openings[1:],
+            "order_status": np.zeros(count),
+            "order_reason": np.full(count, "", object),
+            "gate_headwater_level": np.stack([level, level], axis=1),
+            "gate_tailwater_level": np.full((SIZES["time"], 2), 50.60),
+            "settling": np.ones((SIZES["time"], 2)),
+            "pool_wave_round_trip": np.array([600.0, 300.0]),
+            "gate_protection_end": np.array([23.0, 0.0]),
+            "gate_turn": np.array([0.005, np.nan]),
+            "gate_scale_mark": np.full(2, np.nan),
+            "gate_gatekeeper": np.array(["Upper beat", "Lower beat"], object),
+        }
+        return invented_run(**values | given)
+
+    return build

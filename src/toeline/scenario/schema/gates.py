@@ -26,7 +26,11 @@ class Gate(Table):
     kind: Literal["vertical", "radial"] = Field(description="Leaf that slides in a plane, or turns about a pinion.")
     radius: Size | None = Field(None, description="Radius of the leaf (radial).")
     pinion_height: Size | None = Field(None, description="Height of the pinion above the sill (radial).")
-    bays: Annotated[int, WholeNumber(1, 50)] = Field(1, description="Number of equal bays, moved together.")
+    bays: Annotated[int, WholeNumber(1, 50)] = Field(1, description="Number of equal bays.")
+    separate_bays: bool = Field(
+        False,
+        description="Whether every bay is ordered by itself, numbered from the left bank; else all move together.",
+    )
     bay_width: Size = Field(description="Clear width of one bay.")
     sill_level: Level = Field(
         description="Level of the sill; not below the bed at the end of the pool above, nor at the head of that below."
@@ -57,6 +61,9 @@ class Gate(Table):
     )
     turn: Size | None = Field(None, description="Change of opening for one turn of the handwheel.")
     scale_mark: Size | None = Field(None, description="Spacing of the marks on the scale of the opening.")
+    gatekeeper: Name | None = Field(
+        None, description="Who works the gate: a person, a post or a beat. Order sheets are made for each."
+    )
     leaf_weir_coefficient: Annotated[float, Quantity("weir coefficient", above=0.0, most=3.0)] = Field(
         1.7, description="Coefficient C of the flow C·b·h^1.5 over the leaf."
     )
@@ -65,6 +72,11 @@ class Gate(Table):
     def width(self) -> float:
         """Clear width of all bays [m]."""
         return self.bays * self.bay_width
+
+    @property
+    def leaf_count(self) -> int:
+        """Leaves that move by themselves."""
+        return self.bays if self.separate_bays else 1
 
     def is_avoided(self, opening: float) -> bool:
         """Say whether an opening [m] may not be held; closed may always be."""
