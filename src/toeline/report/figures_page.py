@@ -51,11 +51,11 @@ _GROUPS: dict[str, tuple[Line | Area | Mark, ...]] = {
         style.SETTLING,
     ),
     "Canal and gates": (
-        style.BED, style.LINING, style.BANK, style.GROUND, style.APRON, style.PROTECTION, style.LEAF, style.OPENING,
-        style.AVOIDED, *style.ORDER_STATUSES.values(), style.RULE_MOVE,
+        style.BED, style.LINING, style.BANK, style.GROUND, style.APRON, style.PROTECTION, style.LEAF,
+        style.OPENING, style.BAY_OPENING, style.AVOIDED, *style.ORDER_STATUSES.values(), style.RULE_MOVE,
     ),
     "Deliveries and ledger": (
-        style.DEMAND, style.DELIVERY, style.SHORTFALL, style.CAME_IN, style.WENT_OUT, style.KEPT,
+        style.DEMAND, style.DELIVERY, style.SPILL, style.SHORTFALL, style.CAME_IN, style.WENT_OUT, style.KEPT,
     ),
 }  # fmt: skip
 

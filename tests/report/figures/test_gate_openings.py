@@ -7,7 +7,7 @@ import pytest
 from tests.report.figures.drawn import areas, line, minutes, panel, texts
 
 from toeline.report.figures.gate_openings import pictures
-from toeline.report.style import AVOIDED, FLOW_STATES, JUMP_STATES, ORDER_STATUSES, RULE_MOVE
+from toeline.report.style import AVOIDED, BAY_OPENING, FLOW_STATES, JUMP_STATES, ORDER_STATUSES, RULE_MOVE
 
 
 def orders(*, status: list[int], source: list[str]) -> dict[str, np.ndarray]:
@@ -71,6 +71,15 @@ def test_openings_not_to_be_held_are_marked_at_their_gate_alone(picture):
         for name in ("Middle check", "Last check")
     }  # fmt: skip
     assert marked == {"Middle check": [0.05], "Last check": []}
+
+
+def test_bays_that_move_apart_have_lines_of_their_own(invented_run, metric):
+    bays = np.array([0.3, 0.5]) * np.ones((49, 1))
+    (picture,) = pictures(invented_run(bay_opening=bays, gate_opening=np.full((49, 2), 0.4)), metric)
+    gate = invented_run()["bay_gate"].values[0]
+    drawn = [one.get_ydata()[0] for one in panel(picture.figure, gate).lines if one.get_label() == BAY_OPENING.word]
+    assert drawn == pytest.approx([0.3, 0.5])
+    assert f"{gate}, bay 1: opening [m]" in picture.tables[""].csv_text()
 
 
 def test_only_what_occurs_stands_in_the_legend(picture):
