@@ -1,20 +1,19 @@
 """Gate openings through the run, with the orders that moved them, and below each how the water went through."""
 
 from collections.abc import Iterator
-from typing import Any
 
 import numpy as np
 import xarray as xr
 from matplotlib.axes import Axes
-from matplotlib.patches import Rectangle
 
 from toeline.findings.limits import avoided_openings
 from toeline.findings.moves import SCHEDULE
 from toeline.findings.series import is_any, meanings_seen, names
-from toeline.report.figures.draw import Drawn, area_look, draw_line, key, margin_note, mark_look, panel_title, words_of
+from toeline.report.figures.draw import Drawn, area_look, draw_line, key, mark_look, panel_title, words_of
 from toeline.report.figures.gate_moves import orders_of
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.sheet import Sheet, about_run, in_house_style
+from toeline.report.figures.state_strip import state_strip
 from toeline.report.figures.time_axis import TimeAxis, positions
 from toeline.report.layout import counted
 from toeline.report.number_table import NumberTable, flag_column, quantity_column, text_column, time_column
@@ -22,7 +21,6 @@ from toeline.report.run_identity import run_identity
 from toeline.report.style import (
     AVOIDED,
     BAY_OPENING,
-    FAINT_INK,
     FLOW_STATES,
     JUMP_STATES,
     OPENING,
@@ -44,7 +42,6 @@ PITCH, HEIGHT = 1.5, 0.85
 STRIP = 0.13
 STRIPS = ((-0.20, "flow", "gate_flow_state", FLOW_STATES), (-0.36, "jump", "jump_state", JUMP_STATES))
 """Strips below each panel, in shares of its height."""
-FRAME: dict[str, Any] = {"edgecolor": FAINT_INK, "linewidth": 0.5}
 
 
 def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
@@ -92,10 +89,7 @@ def _panel(axes: Axes, run: xr.Dataset, avoided: Bands, time: TimeAxis, display:
         axes.axhspan(low / factor, high / factor, label=AVOIDED.word, **area_look(AVOIDED))
     axes.set_ylim(*_range(np.column_stack((opening, bays)), float(run["gate_max_opening"]), factor))
     for bottom, name, variable, areas in STRIPS:
-        for state in meanings_seen(run[variable]):
-            time.strip(axes, is_any(run[variable], state), areas[state], bottom, STRIP, above=True)
-        axes.add_patch(Rectangle((0, bottom), 1, STRIP, transform=axes.transAxes, clip_on=False, fill=False, **FRAME))
-        margin_note(axes, bottom + STRIP / 2, name, in_axes=True)
+        state_strip(axes, time, run[variable], areas, name, bottom, STRIP)
     panel_title(axes, gate, _told(opening, orders.sizes["order"], display))
 
 
