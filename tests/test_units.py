@@ -194,6 +194,8 @@ def test_durations_are_written_in_a_unit_that_fits(seconds, text):
         (US, "level", 103.6249, "339.98 ft"),
         (METRIC, "depth", 2.005001, "2.01 m"),
         (METRIC, "opening", -0.001, "0.00 m"),
+        (METRIC, "setting", 0.4374, "0.437 m"),
+        (US, "setting", 0.4374, "1.44 ft"),
         (METRIC, "length", 1234.5, "1234.50 m"),
         (METRIC, "level_difference", 0.0234, "2.3 cm"),
         (US, "level_difference", 0.0234, "0.08 ft"),

@@ -59,6 +59,14 @@ def test_the_gatekeepers_of_the_canal_file_get_the_sheets(folder, call):
     assert "Mill_beat.txt" in names(folder / "day.raise.orders")
 
 
+def test_what_the_planner_should_look_at_first_is_told(folder, call):
+    day = folder / "day.toml"
+    day.write_text(day.read_text().replace("by = 0.05", "by = 5.0"))
+    call("run", "day.toml", "--plan", "raise")
+    told = call("orders", "day.raise.nc").stderr
+    assert "1 order not carried out as given. Look before the sheets go out: toeline describe day.raise.nc" in told
+
+
 def test_sheets_that_exist_are_kept(run, folder, call):
     call("orders", run)
     (folder / "day.raise.orders" / "Last_check.txt").write_text("mine")

@@ -106,7 +106,8 @@ ABOVE = {
 
 
 def test_limits_of_the_owner_beside_the_gates_are_reasons_to_stop(ordered_run):
-    run = ordered_run(attributes={"limits": json.dumps([FALL, ABOVE, ABOVE | {"kind": "freeboard"}])})
+    freeboard = ABOVE | {"kind": "freeboard", "measured_from": "bank"}
+    run = ordered_run(attributes={"limits": json.dumps([FALL, ABOVE, freeboard])})
     text = text_of(run)
     assert "the water above Middle check falls by more than 0.15 m in 1 h; the owner" in text
     assert "the water above Middle check is above 51.50 m (level above datum); lining" in text
@@ -184,7 +185,7 @@ def test_what_goes_wrong_at_the_gates_is_on_their_sheet_alone(ordered_run):
 def test_moves_of_rules_are_said_not_to_be_on_the_sheet(ordered_run):
     run = ordered_run(order_source=np.array(["schedule", "hold discharge"], object))
     text = text_of(run)
-    assert 'Middle check: 1 move by the rule "hold discharge" in the simulation, not on this sheet.' in text
+    assert 'Middle check: 1 move by the rule "hold discharge" in the simulation. They are no orders.' in text
     assert "2. 06:45" not in text
 
 

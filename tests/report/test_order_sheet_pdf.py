@@ -37,15 +37,15 @@ def operations(reader: PdfReader):
         yield from ContentStream(page.get_contents(), reader).operations
 
 
-def texts(reader: PdfReader) -> list[tuple[str, float, float, float]]:
-    """Every piece of text with its size, and where it begins [pt from the left and from the bottom]."""
+def texts(pages) -> list[tuple[str, float, float, float]]:
+    """Every piece of text of some pages with its size, and where it begins [pt from the left and from the bottom]."""
     found: list[tuple[str, float, float, float]] = []
 
     def note(text, matrix, text_matrix, font, size):
         if text.strip():
             found.append((text, size, text_matrix[4] + matrix[4], text_matrix[5] + matrix[5]))
 
-    for page in reader.pages:
+    for page in pages:
         page.extract_text(visitor_text=note)
     return found
 
@@ -58,7 +58,7 @@ def test_every_page_has_the_size_of_the_paper(ordered_run, paper):
 
 @pytest.mark.parametrize("paper", PAPERS)
 def test_no_letter_is_smaller_than_11_pt(ordered_run, paper):
-    assert min(size for _, size, _, _ in texts(printed(ordered_run(5), paper))) >= SMALLEST_LETTERS
+    assert min(size for _, size, _, _ in texts(printed(ordered_run(5), paper).pages)) >= SMALLEST_LETTERS
 
 
 @pytest.mark.parametrize("paper", PAPERS)
@@ -107,7 +107,7 @@ def test_nothing_is_printed_outside_the_margins(ordered_run, paper):
     reader = printed(ordered_run(6, gate_gatekeeper=np.array([name, name], object)), paper)
     width, height = PAPERS[paper]
     margin = 10.0 / 25.4 * 72.0
-    places = [(x, y) for _, _, x, y in texts(reader)]
+    places = [(x, y) for _, _, x, y in texts(reader.pages)]
     assert all(margin <= x <= width - margin and margin <= y <= height - margin for x, y in places)
     boxes = [[float(value) for value in operands] for operands, operator in operations(reader) if operator == b"re"]
     assert all(margin <= x and x + box <= width - margin for x, _, box, _ in boxes)
@@ -151,3 +151,13 @@ def test_letters_that_the_font_lacks_are_named(ordered_run):
 def test_equal_sheets_are_equal_files(ordered_run):
     sheet = order_sheets(ordered_run())[0]
     assert sheet_pdf(sheet, "A4", CREATED) == sheet_pdf(sheet, "A4", CREATED)
+
+
+def test_long_times_and_names_of_gauges_do_not_run_into_each_other(ordered_run):
+    zone = {"zone": "America/Los_Angeles"}  # where this order comes after midnight, and is told with its date
+    run = ordered_run(1, order_time=np.array([12_600.0]), order_completed=np.array([12_690.0]), attributes=zone)
+    page = printed(run).pages[0]
+    lines = [(round(x), y) for _, _, x, y in texts([page])]
+    together = [sorted(y for x, y in lines if x == left) for left in {x for x, _ in lines}]
+    assert "before, 2031-05-04" in words(page)
+    assert min(np.diff(column).min(initial=np.inf) for column in together) >= SMALLEST_LETTERS

@@ -193,9 +193,11 @@ def tell_what_to_look_at(run: Path, dataset: "xr.Dataset") -> None:
     from toeline.report.layout import counted
 
     changed = sum(bool(reason) for reason in dataset["order_reason"].values)
-    for count, what in ((len(incidents(dataset)), "incident"), (changed, "order not carried out as given")):
-        if count:
-            note(f"In the run: {counted(count, what)}. Look before the sheets go out: toeline describe {run}")
+    found = {"incident": len(incidents(dataset)), "order": changed}
+    words = [counted(count, noun) for noun, count in found.items() if count]
+    if words:
+        given = " not carried out as given" if changed else ""
+        note(f"In the run: {', '.join(words)}{given}. Look before the sheets go out: toeline describe {run}")
 
 
 def tell_of_left_overs(folder: Path, stems: Collection[str]) -> None:

@@ -126,7 +126,7 @@ class Sheet:
         lists = (
             ("Stop and call if", self.always),
             ("What goes wrong in the simulation", self.trouble),
-            ("Beside the orders", self.not_here),
+            ("Rounds and rules beside the orders", self.not_here),
         )
         return [(title, lines) for title, lines in lists if lines]
 
@@ -336,7 +336,7 @@ class _Maker:
         for moves in rule_moves(self._run):
             if moves.gate in gates:
                 count = counted(moves.count, "move")
-                yield f'{moves.gate}: {count} by the rule "{moves.rule}" in the simulation, not on this sheet.'
+                yield f'{moves.gate}: {count} by the rule "{moves.rule}" in the simulation. They are no orders.'
 
     def _trouble(self, gates: Sequence[str]) -> Iterator[str]:
         """What goes wrong in the simulation at the gates and in the pools beside them."""

@@ -159,20 +159,15 @@ class _Page(FPDF):
         widths = [share * self.epw for share in (0.23, 0.235, 0.15, 0.235, 0.15)]
         heads = ("Reading", f"before, {order.read_before}", "read", f"after, {order.read_after}", "read")
         self.set_y(self.get_y() + 1.0)
-        self._row(widths, [(head, "") for head in heads], SMALL * POINT * LINE + 1.0)
+        self._row(widths, [(head, "") for head in heads], 0.0)
         for line in order.readings:
-            self._row(widths, _cells(line), self._height_of(line, widths[0]))
+            self._row(widths, _cells(line), BLANK)
         self.set_y(self.get_y() + 1.0)
 
-    def _height_of(self, line: ReadingWords, width: float) -> float:
-        """At least that of a blank; more where the name of a gauge needs it."""
-        self._font(SMALL)
-        text = f"{line.place}\n{line.instrument}"
-        lines = cast(list[str], self.multi_cell(width, text=text, dry_run=True, output=MethodReturnValue.LINES))
-        return max(BLANK, len(lines) * SMALL * POINT * LINE + 1.0)
-
-    def _row(self, widths: Sequence[float], cells: Sequence[tuple[str, str]], height: float) -> None:
-        """Boxes side by side, each with a line of text and one below it."""
+    def _row(self, widths: Sequence[float], cells: Sequence[tuple[str, str]], least: float) -> None:
+        """Boxes side by side, each with a text and one below it, as high as the highest or the least [mm]."""
+        lines = max(self._lines(texts, width) for width, texts in zip(widths, cells, strict=True))
+        height = max(least, lines * SMALL * POINT * LINE + 1.0)
         top, left = self.get_y(), MARGIN
         self.set_line_width(THIN)
         for width, (first, second) in zip(widths, cells, strict=True):
@@ -185,6 +180,16 @@ class _Page(FPDF):
                 self._text(second, SMALL, width=width)
             left += width
         self.set_xy(MARGIN, top + height)
+
+    def _lines(self, texts: Sequence[str], width: float) -> int:
+        """Lines that texts below one another take in a box."""
+        self._font(SMALL)
+        wrapped = [
+            cast(list[str], self.multi_cell(width, text=text, dry_run=True, output=MethodReturnValue.LINES))
+            for text in texts
+            if text
+        ]
+        return sum(len(lines) for lines in wrapped)
 
     def _boxed(self, text: str, size: float = MIDDLE) -> None:
         top = self.get_y() + 1.0
