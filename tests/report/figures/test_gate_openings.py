@@ -93,5 +93,5 @@ def test_the_orders_are_a_table_of_their_own(picture):
     lines = picture.tables["orders"].csv_text().splitlines()
     assert len(lines) == 5
     assert lines[1].startswith(
-        "2031-05-04T06:10:00+02:00,Middle check,0.4000,0.4500,2031-05-04T06:11:00+02:00,accepted"
+        "2031-05-04T06:10:00+02:00,Middle check,all,0.4000,0.4500,2031-05-04T06:11:00+02:00,accepted"
     )

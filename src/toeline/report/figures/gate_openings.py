@@ -178,6 +178,7 @@ def orders_table(run: xr.Dataset, display: Display) -> NumberTable:
     return NumberTable((
         time_column(run, orders["order_time"].values),
         text_column("gate", orders["order_gate"].values.tolist()),
+        text_column("bay", [str(bay) if bay else "all" for bay in orders["order_bay"].values.tolist()]),
         quantity_column("opening before", orders["order_opening_before"].values, "length", display),
         quantity_column("opening after", orders["order_opening_after"].values, "length", display),
         time_column(run, orders["order_completed"].values, "leaf stands"),
