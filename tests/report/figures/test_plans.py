@@ -89,5 +89,10 @@ def test_a_run_that_stopped_earlier_is_drawn_as_far_as_it_goes(runs, metric):
     assert (line(axes, "0")[0].size, line(axes, "1")[0].size) == (10, 49)
 
 
+def test_a_canal_without_gates_says_so(runs, metric):
+    (picture,) = pictures([run.isel(gate=slice(0, 0)) for run in runs], metric)
+    assert "The canal has no gates." in texts(picture.figure)
+
+
 def test_no_plan_is_called_safe(picture):
     assert picture.words.endswith("No plan makes the water safe to enter.")

@@ -12,7 +12,7 @@ from toeline.findings.series import is_any, meanings_seen, names
 from toeline.report.figures.draw import Drawn, area_look, draw_line, key, mark_look, panel_title, words_of
 from toeline.report.figures.gate_moves import orders_of
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import Sheet, about_run, in_house_style
+from toeline.report.figures.sheet import NO_GATES, Sheet, about_run, in_house_style
 from toeline.report.figures.state_strip import state_strip
 from toeline.report.figures.time_axis import TimeAxis, positions
 from toeline.report.layout import counted
@@ -68,6 +68,8 @@ def _page(run: xr.Dataset, display: Display, name: str) -> Picture:
     for row, axes in enumerate(time.rows(sheet, len(gates), PITCH, HEIGHT, first=-0.25)):
         _panel(axes, run.isel(gate=row), avoided.get(gates[row], []), time, display)
         axes.tick_params(axis="x", pad=34 if row == len(gates) - 1 else 3, length=0)
+    if not gates:
+        sheet.say(NO_GATES)
     sheet.side_title(axis_text("opening, lip above sill", "length", display))
     sheet.legend([key(thing) for thing in shown])
     return Picture(

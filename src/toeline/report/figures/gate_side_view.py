@@ -9,7 +9,7 @@ from matplotlib.axes import Axes
 
 from toeline.findings.series import meanings
 from toeline.report.figures.draw import area_look, draw_line, empty_note
-from toeline.report.figures.sheet import SMALL_SIZE
+from toeline.report.figures.sheet import SMALL_SIZE, shortened
 from toeline.report.style import (
     APRON,
     GROUND,
@@ -25,6 +25,8 @@ from toeline.report.style import (
 from toeline.units import Display
 
 AREAS = (WATER_BODY, APRON, PROTECTION, GROUND)
+LONGEST_NAME = 18
+"""Of gates side by side, in characters."""
 UPSTREAM = 0.35
 """Room upstream of the gate, in lengths of the view downstream of it."""
 BEYOND = 1.25
@@ -46,7 +48,9 @@ def draw_side_view(axes: Axes, gate: xr.Dataset, display: Display) -> None:
         empty_note(axes, "no levels")
     _leaf(axes, here, reach)
     axes.set_ylim(*_heights(here))
-    axes.set_title(str(gate["gate"].values), fontsize=SMALL_SIZE, weight="bold", loc="left", pad=3)
+    axes.set_title(
+        shortened(str(gate["gate"].values), LONGEST_NAME), fontsize=SMALL_SIZE, weight="bold", loc="left", pad=3
+    )
     axes.set_xlabel(f"from the gate, {unit_text('length', display)}", fontsize=SMALL_SIZE)
     axes.set_xlim(-UPSTREAM * reach, reach)
     axes.grid(visible=False)

@@ -13,7 +13,7 @@ from toeline.report.clock import duration_text
 from toeline.report.figures.draw import Drawn, area_look, draw_level, draw_line, key, margin_note, panel_title, words_of
 from toeline.report.figures.gate_moves import MOVE, move_marks
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import SMALL_SIZE, Sheet, about_run, in_house_style
+from toeline.report.figures.sheet import NO_GATES, SMALL_SIZE, Sheet, about_run, in_house_style
 from toeline.report.figures.state_strip import state_strip
 from toeline.report.figures.time_axis import TimeAxis, positions
 from toeline.report.number_table import Column, NumberTable, flag_column, quantity_column, text_column, time_column
@@ -65,6 +65,8 @@ def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) 
     for row, axes in enumerate(time.rows(sheet, len(jumps), PITCH, HEIGHT, first=RISE)):
         axes.tick_params(axis="x", pad=18 if row == len(jumps) - 1 else 3, length=0)
         _panel(axes, run.isel(gate=row), jumps[row], settling[:, row], time, display)
+    if not jumps:
+        sheet.say(NO_GATES)
     sheet.side_title(axis_text("distance below the gate", "length", display))
     sheet.legend([key(thing) for thing in shown])
     return Picture(name, sheet.figure, {"": table(run, display)}, words(jumps))

@@ -11,7 +11,7 @@ from matplotlib.ticker import StrMethodFormatter
 from toeline.findings.ledger import ledger
 from toeline.report.figures.draw import area_look, key, panel_title, words_of
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import SMALL_SIZE, Panel, Sheet, about_run, in_house_style
+from toeline.report.figures.sheet import SMALL_SIZE, Panel, Sheet, about_run, in_house_style, shortened
 from toeline.report.number_table import NumberTable, quantity_column, text_column
 from toeline.report.run_identity import run_identity
 from toeline.report.style import CAME_IN, INK, KEPT, WENT_OUT, Area, axis_text, shown_factor, unit_text
@@ -23,6 +23,7 @@ ENTRIES_ON_A_PAGE = 32
 PITCH, BAR = 0.27, 0.62
 LABELS = 0.17
 """Room for the names of the entries, as a share of the width."""
+LONGEST_NAME = 36
 AREAS = (CAME_IN, WENT_OUT, KEPT)
 
 
@@ -87,7 +88,7 @@ def _steps(axes: Axes, listed: list[Entry], before: list[float], display: Displa
                       fontsize=SMALL_SIZE, va="center")  # fmt: skip
     axes.set_xlim(min(float(reach.min()), 0.0) - 0.02 * room, float(reach.max()) + room)
     axes.xaxis.set_major_formatter(StrMethodFormatter("{x:,.0f}"))
-    axes.set_yticks(range(len(listed)), [entry.name for entry in listed])
+    axes.set_yticks(range(len(listed)), [shortened(entry.name, LONGEST_NAME) for entry in listed])
     axes.set_ylim(len(listed) - 0.4, -0.6)
     axes.tick_params(axis="y", length=0)
     axes.grid(visible=False, axis="y")

@@ -10,9 +10,9 @@ from matplotlib.axes import Axes
 from toeline.findings.jumps import gate_jumps
 from toeline.findings.series import meanings, meanings_seen, names
 from toeline.report.figures.draw import Drawn, area_look, draw_line, empty_note, key, margin_note, words_of
-from toeline.report.figures.gate_side_view import AREAS, draw_side_view
+from toeline.report.figures.gate_side_view import AREAS, LONGEST_NAME, draw_side_view
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import SMALL_SIZE, Panel, Sheet, about_run, in_house_style
+from toeline.report.figures.sheet import SMALL_SIZE, Panel, Sheet, about_run, in_house_style, shortened
 from toeline.report.number_table import NumberTable, flag_column, quantity_column, text_column
 from toeline.report.run_clock import RunClock
 from toeline.report.run_identity import run_identity
@@ -178,7 +178,8 @@ def _gates(axes: Axes, run: xr.Dataset, gates: list[int], moment: Moment, displa
 
 def _gate_label(axes: Axes, gate: xr.Dataset, x: float) -> None:
     state = meanings(gate["jump_state"])[int(gate["jump_state"])]
-    axes.text(x, 1.03, str(gate["gate"].values), transform=axes.get_xaxis_transform(), fontsize=SMALL_SIZE, rotation=24,
+    name = shortened(str(gate["gate"].values), LONGEST_NAME)
+    axes.text(x, 1.03, name, transform=axes.get_xaxis_transform(), fontsize=SMALL_SIZE, rotation=24,
               ha="left", va="bottom", rotation_mode="anchor")  # fmt: skip
     area = JUMP_STATES[state]
     axes.scatter([x], [0.0], s=70, marker="s", transform=axes.get_xaxis_transform(), clip_on=False, zorder=6,

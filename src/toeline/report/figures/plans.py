@@ -14,7 +14,7 @@ from toeline.findings.series import names
 from toeline.report.clock import duration_text
 from toeline.report.figures.draw import draw_line, line_look, mark_look, panel_title
 from toeline.report.figures.picture import Picture, page_count, page_name, spread
-from toeline.report.figures.sheet import SMALL_SIZE, Panel, Sheet, about_run, in_house_style
+from toeline.report.figures.sheet import NO_GATES, SMALL_SIZE, Panel, Sheet, about_run, in_house_style, shortened
 from toeline.report.figures.time_axis import TimeAxis
 from toeline.report.number_table import Column, NumberTable, number_column, quantity_column, text_column, time_column
 from toeline.report.run_identity import RunIdentity, run_identity
@@ -26,6 +26,7 @@ ROWS_ON_A_PAGE = 16
 PITCH, LABELS = 0.3, 0.13
 COLUMNS = ((0.0, 0.28), (0.36, 0.28), (0.72, 0.28))
 """Left edge and width of the columns beside one another, in shares of the room right of the names."""
+LONGEST_NAME = 28
 SPREAD = 0.5
 """Over which share of its row the marks of several plans are spread."""
 TOP, TIME_HEIGHT, GAP = 0.25, 1.5, 0.85
@@ -139,8 +140,8 @@ def _rows(count: int, place: int, plans: int) -> np.ndarray:
 
 
 def _name_rows(axes: Axes, labels: list[str]) -> None:
-    axes.set_yticks(range(len(labels)), labels)
-    axes.set_ylim(len(labels) - 0.5, -0.5)
+    axes.set_yticks(range(len(labels)), [shortened(label, LONGEST_NAME) for label in labels])
+    axes.set_ylim(max(len(labels), 1) - 0.5, -0.5)
     axes.tick_params(axis="y", length=0)
 
 
@@ -173,6 +174,9 @@ def worst_gate(runs: Sequence[xr.Dataset]) -> int:
 
 
 def _margin_through_time(sheet: Sheet, runs: Sequence[xr.Dataset], gate: int, panel: Panel, display: Display) -> None:
+    if not runs[0].sizes["gate"]:
+        sheet.say(NO_GATES)
+        return
     axes = sheet.axes(panel)
     for place, run in enumerate(runs):
         margins = run["protection_margin"].values[:, gate] / shown_factor("length", display)

@@ -26,6 +26,7 @@ CHARACTER = 0.062
 LEGEND_KEY = 0.52
 TITLE_SIZE, TEXT_SIZE, SMALL_SIZE = 13.0, 9.0, 7.5
 
+NO_GATES = "The canal has no gates."
 CAUTION = "Planning aid. No state shown here is safe to enter; water below gates drowns people."
 
 in_house_style = matplotlib.rc_context(
@@ -100,10 +101,8 @@ class Sheet:
     def _title(self, title: str, about: About) -> None:
         write, left = self.figure.text, 0.3 / WIDTH
         write(left, self._up(0.32), title, fontsize=TITLE_SIZE, weight="bold", va="center")
-        write(left, self._up(0.55), _shortened(about.line, 115), fontsize=TEXT_SIZE, va="center")
-        write(
-            left, self._up(0.73), _shortened(about.small_line, 150), fontsize=SMALL_SIZE, color=FAINT_INK, va="center"
-        )
+        write(left, self._up(0.55), shortened(about.line, 115), fontsize=TEXT_SIZE, va="center")
+        write(left, self._up(0.73), shortened(about.small_line, 150), fontsize=SMALL_SIZE, color=FAINT_INK, va="center")
         bottom = 0.2 / self.height
         write(left, bottom, CAUTION, fontsize=SMALL_SIZE, color=INK, va="center")
         write(1 - left, bottom, about.version, fontsize=SMALL_SIZE, color=FAINT_INK, va="center", ha="right")
@@ -127,6 +126,11 @@ class Sheet:
         middle = self.height - HEAD - self._room / 2
         place: dict[str, Any] = {"rotation": 90, "ha": "center", "va": "center"}
         self.figure.text(0.3 / WIDTH, middle / self.height, text, fontsize=TEXT_SIZE, **place)
+
+    def say(self, text: str) -> None:
+        """Words in the middle of the room for panels, where there is nothing to draw."""
+        middle = self.height - HEAD - self._room / 2
+        self.figure.text(0.5, middle / self.height, text, color=FAINT_INK, ha="center", va="center")
 
     def heading(self, top: float, text: str) -> None:
         """A line above a group of panels, so far below the top of the room for panels [inch]."""
@@ -161,5 +165,6 @@ def legend_rows(keys: Sequence[str]) -> list[int]:
     return rows if rows[-1] else []
 
 
-def _shortened(text: str, most: int) -> str:
+def shortened(text: str, most: int) -> str:
+    """A text of at most so many characters, its end left out where it is longer."""
     return text if len(text) <= most else text[: most - 1].rstrip() + "…"

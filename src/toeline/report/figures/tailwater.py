@@ -28,7 +28,7 @@ from toeline.report.figures.draw import (
 )
 from toeline.report.figures.jump_strip import hazard_words
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import Panel, Sheet, about_run, in_house_style
+from toeline.report.figures.sheet import NO_GATES, Panel, Sheet, about_run, in_house_style
 from toeline.report.figures.time_axis import TimeAxis
 from toeline.report.number_table import Column, NumberTable, flag_column, quantity_column, time_column
 from toeline.report.run_clock import RunClock
@@ -101,6 +101,8 @@ def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) 
         panel_title(right, "", hazard_words(gate), lift=11.0)
         if row == len(jumps) - 1:
             right.set_xlabel(axis_text("discharge", "discharge", display))
+    if not jumps:
+        sheet.say(NO_GATES)
     sheet.side_title(axis_text("tailwater above datum", "length", display))
     sheet.legend([key(thing) for thing in shown])
     return Picture(name, sheet.figure, {"": table(run, display)}, words(run, jumps, display))
