@@ -10,12 +10,10 @@ from dataclasses import dataclass
 import numpy as np
 import xarray as xr
 
+from toeline.findings.deliveries import SHORTFALL_FROM
 from toeline.findings.series import greatest, hours_of_rows, is_any, least, meanings, names
 from toeline.findings.spells import Spell, spells
 from toeline.results.provenance import COMPLETE
-
-SHORTFALL_FROM = 0.001
-"""m³/s that a delivery may lack unnoticed: the litre per second to which discharges are shown (choice)."""
 
 JUMP_END = "end of the jump from the gate"
 VOLUME_LACKING = "volume not delivered"

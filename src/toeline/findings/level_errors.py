@@ -1,0 +1,61 @@
+"""How well levels were held: the indicators of the published canal-control test cases.
+
+Clemmens, Kacerek, Grawitz & Schuurmans, J. Irrig. Drain. Eng. 124(1), 1998 (from memory), for the depth y over the bed
+at the lower end of a pool, where the target y* is held.
+"""
+
+from collections.abc import Iterator
+
+import numpy as np
+import xarray as xr
+
+from toeline.findings.indicator import Indicator
+from toeline.findings.series import names
+
+STEADY_HOURS = 2.0
+"""The last hours of a run over which the steady-state error is taken."""
+
+
+def greatest_error(depths: np.ndarray, target: float) -> float:
+    """MAE, max|y − y*|/y*."""
+    return float(np.abs(depths - target).max() / target)
+
+
+def integrated_error(depths: np.ndarray, target: float) -> float:
+    """IAE, (Δt/T) Σ|y − y*|/y* over all samples of a period T that begins and ends with one."""
+    return float(np.abs(depths - target).sum() / target / (depths.size - 1))
+
+
+def steady_state_error(last_depths: np.ndarray, target: float) -> float:
+    """StE, |mean of y − y*|/y* over the samples of the last hours."""
+    return float(abs(last_depths.mean() - target) / target)
+
+
+def level_indicators(run: xr.Dataset) -> Iterator[Indicator]:
+    """The errors of every pool with a target, as parts of its target depth; each output step is one sample."""
+    times, levels = run["time"].values, run["pool_tail_level"].values
+    if times.size < 2:
+        return
+    is_last = times >= times[-1] - np.timedelta64(round(STEADY_HOURS * 3600), "s")
+    is_whole = times[-1] - times[0] >= np.timedelta64(round(STEADY_HOURS * 3600), "s")
+    for pool, (name, bed) in enumerate(zip(names(run["pool"]), end_beds(run), strict=True)):
+        depths, target = levels[:, pool] - bed, float(run["pool_target_level"].values[pool]) - bed
+        if not target > 0.0:
+            continue
+        note = f"part of the target depth of {target:.2f} m at the lower end; {times.size} samples"
+        yield Indicator("greatest level error", name, greatest_error(depths, target), "1", "lower", note)
+        yield Indicator("integrated level error", name, integrated_error(depths, target), "1", "lower", note)
+        if is_whole:
+            yield Indicator(
+                "steady-state level error", name, steady_state_error(depths[is_last], target), "1", "lower",
+                f"part of the target depth; mean of the last {STEADY_HOURS:g} h, {int(is_last.sum())} samples",
+            )  # fmt: skip
+
+
+def end_beds(run: xr.Dataset) -> np.ndarray:
+    """Level of the bed [m] at the lower end of every pool; NaN for a pool without nodes."""
+    return np.array([_last(run["bed_level"].values[run["node_pool"].values == p]) for p in range(run.sizes["pool"])])
+
+
+def _last(values: np.ndarray) -> float:
+    return float(values[-1]) if values.size else np.nan
