@@ -1,6 +1,7 @@
 """Incidents in words: what goes wrong, where, when, and by how much."""
 
 from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
 
 import numpy as np
 
@@ -21,12 +22,27 @@ def incident_lines(found: Sequence[Incident], clock: RunClock, display: Display,
     """All incidents of one kind at one place together, in the order in which they begin."""
     if not found:
         yield paragraph(NOTHING_FOUND, width)
+    for story in incident_stories(found, clock, display):
+        times = f", {story.times}" if story.times else ""
+        yield paragraph(f"{story.worst.where}: {story.worst.what}{times}", width, hanging=INDENT * 2)
+        for detail in story.details:
+            yield paragraph(detail, width, indent=INDENT * 2, hanging=INDENT * 3)
+
+
+@dataclass(frozen=True)
+class IncidentStory:
+    """All incidents of one kind at one place: the worst of them, when they were, and how far they went."""
+
+    worst: Incident
+    times: str
+    details: tuple[str, ...]
+
+
+def incident_stories(found: Sequence[Incident], clock: RunClock, display: Display) -> Iterator[IncidentStory]:
+    """What goes wrong, each kind at each place once, in the order in which they begin."""
     for together in _together(found):
         worst = max(together, key=_excess)
-        times = _times(together, clock)
-        yield paragraph(f"{worst.where}: {worst.what}{f', {times}' if times else ''}", width, hanging=INDENT * 2)
-        for detail in _details(worst, together, clock, display):
-            yield paragraph(detail, width, indent=INDENT * 2, hanging=INDENT * 3)
+        yield IncidentStory(worst, _times(together, clock), tuple(_details(worst, together, clock, display)))
 
 
 def _together(found: Sequence[Incident]) -> list[list[Incident]]:
@@ -54,10 +70,10 @@ def _times(together: Sequence[Incident], clock: RunClock) -> str:
 
 
 def _details(worst: Incident, together: Sequence[Incident], clock: RunClock, display: Display) -> Iterator[str]:
-    value = _number(worst.worst, worst.unit, display)
+    value = incident_number(worst.worst, worst.unit, display)
     if value != "-":
         place = "" if worst.chainage is None else f", chainage {display.length(worst.chainage)}"
-        limit = _number(worst.limit, worst.unit, display)
+        limit = incident_number(worst.limit, worst.unit, display)
         yield f"worst {value} at {clock.at(worst.worst_time)}{place}; limit {limit}, {worst.source}"
     else:
         yield worst.source
@@ -77,11 +93,11 @@ def _combined(measures: Sequence[Measure]) -> Measure:
 
 
 def _measure_words(measure: Measure, display: Display) -> str:
-    limit = "" if measure.limit is None else f"; limit {_number(measure.limit, measure.unit, display)}"
-    return f"{measure.name} {_number(measure.value, measure.unit, display)}{limit}"
+    limit = "" if measure.limit is None else f"; limit {incident_number(measure.limit, measure.unit, display)}"
+    return f"{measure.name} {incident_number(measure.value, measure.unit, display)}{limit}"
 
 
-def _number(value: float, unit: str, display: Display) -> str:
+def incident_number(value: float, unit: str, display: Display) -> str:
     if np.isnan(value):
         return "-"
     write = {"m": display.length, "m s-1": display.velocity, "m3 s-1": display.discharge, "m3": display.volume}[unit]

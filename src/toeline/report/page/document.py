@@ -1,0 +1,235 @@
+"""The whole page: the parts in their order, the figures with their numbers, and the template that holds them."""
+
+import json
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from functools import cached_property
+from importlib.resources import files
+from typing import Any
+
+import jinja2
+import numpy as np
+import xarray as xr
+from bokeh.document import Document
+from bokeh.embed import components
+from bokeh.events import DocumentReady
+from bokeh.models import CustomJS
+from bokeh.resources import Resources
+from markupsafe import Markup
+
+from toeline.errors import UsageError
+from toeline.findings.incidents import Incident, incidents
+from toeline.findings.series import meanings, names
+from toeline.report import style
+from toeline.report.page.arrays import places, run_arrays, start_milliseconds
+from toeline.report.page.gate_figures import close_up, gate_axes, traces
+from toeline.report.page.hazard_strips import hazard_strips, hours_of_strips
+from toeline.report.page.legend import hatch_patterns, legend
+from toeline.report.page.long_profile import long_profile
+from toeline.report.page.looks import JUMP_MARKERS
+from toeline.report.page.moments import Moments, moments_of
+from toeline.report.page.rows import (
+    Table,
+    hour_tables,
+    indicator_tables,
+    ledger_table,
+    limit_table,
+    margin_table,
+    order_table,
+)
+from toeline.report.page.verdict import floor_hazard, headline, incident_rows, people_hazard, wrongs
+from toeline.report.run_clock import RunClock
+from toeline.report.run_identity import run_identity
+from toeline.units import Display, UnitSystem
+
+MOST_RUNS = 4
+"""How many runs find room beside one another."""
+
+TRACE_FIGURES = (
+    ("strip", "Jump: from its toe to its end", "Distance of the jump from the gate against time"),
+    ("tailwater", "Tailwater against its two limits", "Tailwater level against time, with modular limit and protection limit"),
+    ("headwater", "Headwater against the target of the pool above", "Headwater level against time, with the target level"),
+    ("opening", "Opening as moved", "Opening of the gate against time"),
+)  # fmt: skip
+
+
+@dataclass(frozen=True)
+class ShownRun:
+    """One of the runs of a page: its letter among several, its name, and what was found in it."""
+
+    place: int
+    key: str
+    name: str
+    run: xr.Dataset
+    found: Sequence[Incident]
+
+    @cached_property
+    def clock(self) -> RunClock:
+        return RunClock(self.run)
+
+
+def report_page(runs: Mapping[str, xr.Dataset]) -> str:
+    """The page of one run, or of several of one canal side by side, as HTML that needs nothing beside itself.
+
+    `runs` are by the name under which each is told, such as its file. Values are in the units in which the first run
+    is to be shown. UsageError where a run is empty, or the runs do not have the same gates, or are too many.
+    """
+    _refuse(runs)
+    display = Display(UnitSystem(next(iter(runs.values())).attrs["units_for_display"]))
+    shown = _shown_runs(runs)
+    moments = moments_of([each.run for each in shown], [each.found for each in shown])
+    return _environment().get_template("page.html").render(
+        **_words(shown, moments, display), **_figures(shown, moments, display), **_fixed_parts()
+    )
+
+
+def _refuse(runs: Mapping[str, xr.Dataset]) -> None:
+    if len(runs) > MOST_RUNS:
+        raise UsageError(f"found {len(runs)} runs; at most {MOST_RUNS} find room beside one another on a page.")
+    for name, run in runs.items():
+        if not run.sizes["time"]:
+            raise UsageError(f"{name} was stopped before anything reached the disk: there is nothing to show.")
+    gates = {name: names(run["gate"]) for name, run in runs.items()}
+    first, *others = gates
+    for other in others:
+        if gates[other] != gates[first]:
+            raise UsageError(f"{first} and {other} do not have the same gates: only runs of one canal can be shown together.")
+
+
+def _shown_runs(runs: Mapping[str, xr.Dataset]) -> list[ShownRun]:
+    loaded = [run.load() for run in runs.values()]
+    plans = [run_identity(run).plan for run in loaded]
+    told = plans if len(set(plans)) == len(plans) else list(runs)
+    keys = [f"{letter}: " for letter in "ABCD"] if len(loaded) > 1 else [""]
+    return [ShownRun(place, keys[place], told[place], run, incidents(run)) for place, run in enumerate(loaded)]
+
+
+def _words(shown: Sequence[ShownRun], moments: Moments, display: Display) -> dict[str, Any]:
+    first = shown[0]
+    identity = run_identity(first.run)
+    return {
+        "title": f"{identity.day}, {', '.join(each.name for each in shown)}: {identity.canal}",
+        "identity": identity,
+        "runs": [_run_words(each, moments, display) for each in shown],
+        "gates": names(first.run["gate"]),
+        "last_moment": len(moments.labels) - 1,
+        "number_parts": _number_parts(shown, display),
+        "caution": first.run.attrs["comment"],
+        "drawn_from": _drawn_from(shown, moments),
+        "trace_figures": TRACE_FIGURES,
+        "differences": "",
+    }
+
+
+def _run_words(each: ShownRun, moments: Moments, display: Display) -> dict[str, Any]:
+    wrong = wrongs(each.run, each.found, moments, display)
+    about = each.run.attrs
+    return {
+        "place": each.place,
+        "key": each.key,
+        "name": each.name,
+        "outcome": about["outcome"],
+        "headline": headline(wrong),
+        "wrongs": wrong,
+        "floor": floor_hazard(each.run, display),
+        "people": people_hazard(each.run),
+        "strips": hazard_strips(each.run),
+        "hours": hours_of_strips(each.run),
+        "incidents": incident_rows(each.run, each.found, moments, display),
+        "facts": f"{about['title']}; {about['outcome']}; made by {about['history']}; input hash {about['input_hash']}",
+        "day_file": about["day_file"],
+        "canal_file": about["canal_file"],
+        "settings": json.dumps(json.loads(about["resolved_settings"]), indent=1, ensure_ascii=False),
+    }
+
+
+def _number_parts(shown: Sequence[ShownRun], display: Display) -> list[tuple[str, list[list[Table]]]]:
+    """Every part with its tables, run by run."""
+    parts = {
+        "Margins and hours": lambda each: [margin_table(each.run, each.clock, display), *hour_tables(each.run)],
+        "Water ledger": lambda each: [ledger_table(each.run)],
+        "Orders": lambda each: [order_table(each.run, each.clock, display)],
+        "Indicators": lambda each: indicator_tables(each.run, display),
+        "Limits": lambda each: [limit_table(each.run, display)],
+    }
+    return [(heading, [tables(each) for each in shown]) for heading, tables in parts.items()]
+
+
+def _drawn_from(shown: Sequence[ShownRun], moments: Moments) -> str:
+    """From what the figures are drawn, and what they leave out."""
+    steps = ", ".join(f"{each.run.sizes['time']:,} output steps and {each.run.sizes['profile_time']:,} long profiles" for each in shown)
+    return (
+        f"The figures are drawn from {steps}, shown at {len(moments.labels):,} moments: those of the long profiles and "
+        "the worst times of incidents. Every value is one of the file, none is made up between two."
+    )
+
+
+def _figures(shown: Sequence[ShownRun], moments: Moments, display: Display) -> dict[str, Any]:
+    """The figures as script and places, under the names by which the template calls them."""
+    runs = [each.run for each in shown]
+    lines = [style.WATER] if len(shown) == 1 else [style.plan_line(each.place, f"{each.key}{each.name}") for each in shown]
+    profile = long_profile(runs, lines, display)
+    arrays = [run_arrays(run, moments, display) for run in runs]
+    start = start_milliseconds(runs[0])
+    axes = gate_axes(start, start + max(max(float(array["elapsed"][-1]) for array in arrays), 60_000.0))
+    views = [(close_up(axes, display, f"close_up_{place}"), traces(axes, display, str(place))) for place in range(len(runs))]
+    figures = {"long_profile": profile.figure}
+    for close, trace in views:
+        figures |= {drawn.name: drawn for drawn in (close.figure, trace.strip, trace.tailwater, trace.headwater, trace.opening)}
+    models = {
+        "profile": {"figure": profile.figure, "water": profile.water, "gates": profile.gates, "surfaces": profile.surfaces, "rollers": profile.rollers},
+        "axes": vars(axes),
+        "gate_figures": [{"shapes": close.shapes, "series": trace.series, "bands": trace.bands, "settling": trace.settling, "apron": trace.apron, "protection": trace.protection, "target": trace.target, "cursors": trace.cursors} for close, trace in views],
+        "time_figures": [figure for _, trace in views for figure in (trace.strip, trace.tailwater, trace.headwater, trace.opening)],
+        "runs": arrays,
+        "canal": places(runs[0], display),
+        "moments": {"labels": list(moments.labels), "elapsed": (moments.elapsed / np.timedelta64(1, "ms"))},
+        "words": _browser_words(runs[0], lines, display) | {"start": start},
+    }  # fmt: skip
+    document = Document()
+    for drawn in figures.values():
+        document.add_root(drawn)
+    document.js_on_event(DocumentReady, CustomJS(args={"page": models}, code="toeline(page)"))
+    script, divs = components(figures)
+    return {
+        "script": Markup(script),
+        "divs": {name: Markup(div) for name, div in divs.items()},
+        "state_legend": legend(style.JUMP_STATES.values()),
+        "profile_legend": legend([*lines, style.BED, style.LINING, style.BANK, style.TARGET, style.LEAF, style.GROUND]),
+        "close_up_legend": legend([style.WATER_BODY, *list(style.JUMP_STATES.values())[1:], style.LEAF, style.APRON, style.PROTECTION, style.MODULAR_LIMIT, style.PROTECTION_LIMIT]),
+        "trace_legend": legend([*list(style.JUMP_STATES.values())[1:], style.APRON, style.PROTECTION, style.SETTLING, style.TAILWATER, style.MODULAR_LIMIT, style.PROTECTION_LIMIT, style.HEADWATER, style.TARGET, style.OPENING]),
+    }  # fmt: skip
+
+
+def _browser_words(run: xr.Dataset, lines: Sequence[style.Line], display: Display) -> dict[str, Any]:
+    """Names, looks and units that the browser writes and draws with."""
+    states = meanings(run["jump_state"])
+    return {
+        "jump_states": [state.replace("_", " ") for state in states],
+        "jump_words": [style.JUMP_STATES[state].word for state in states],
+        "flow_states": [state.replace("_", " ") for state in meanings(run["gate_flow_state"])],
+        "colours": [style.JUMP_STATES[state].colour for state in states],
+        "hatches": [style.JUMP_STATES[state].hatch or " " for state in states],
+        "markers": [JUMP_MARKERS[state] for state in states],
+        "plans": [line.colour for line in lines],
+        "length": style.unit_text("length", display),
+        "discharge": style.unit_text("discharge", display),
+        "discharge_decimals": 3 if display.system is UnitSystem.metric else 1,
+    }
+
+
+def _fixed_parts() -> dict[str, Markup]:
+    templates = files("toeline.report") / "templates"
+    return {
+        "css": Markup((templates / "page.css").read_text(encoding="utf-8")),
+        "page_js": Markup((templates / "page.js").read_text(encoding="utf-8")),
+        "bokeh_js": Markup(Resources(mode="inline", components=["bokeh"]).render_js()),
+        "patterns": hatch_patterns(),
+    }
+
+
+def _environment() -> jinja2.Environment:
+    return jinja2.Environment(
+        loader=jinja2.PackageLoader("toeline.report"), autoescape=True, trim_blocks=True, lstrip_blocks=True,
+        undefined=jinja2.StrictUndefined,
+    )  # fmt: skip
