@@ -5,6 +5,7 @@ import os
 from collections.abc import Callable
 from dataclasses import fields, is_dataclass
 from datetime import UTC, datetime
+from hashlib import sha256
 from typing import Any
 
 import numpy as np
@@ -17,14 +18,17 @@ from toeline.engine.state import new_state
 from toeline.errors import RunError
 from toeline.network.build import network_of
 from toeline.network.initial_state import Start
+from toeline.network.lead_times import pool_times
 from toeline.network.start import check_mild, starting_state
 from toeline.network.tables import HEAD, Network
 from toeline.network.timetable import Timetable, timetable_of
 from toeline.results.dataset import DatasetSink, open_run
 from toeline.results.end_state import read_end_state
 from toeline.results.netcdf_writer import NetcdfSink
-from toeline.results.provenance import COMPLETE, run_attributes
+from toeline.results.provenance import COMPLETE, DIMENSIONS, START_DIGEST, run_attributes
 from toeline.scenario import Scenario
+from toeline.scenario.limits import limits_of
+from toeline.scenario.setting_dimensions import setting_dimensions
 
 
 def simulate(
@@ -43,10 +47,8 @@ def simulate(
     network = network_of(scenario.canal, scenario.day.period.spacing)
     timetable = timetable_of(scenario, network)
     check_mild(scenario, timetable)
-    start = _start(scenario, network, timetable)
-    level, discharge = (
-        (start["end_level"], start["end_discharge"]) if isinstance(start, dict) else (start.level, start.discharge)
-    )
+    start = start_of(scenario, network, timetable)
+    level, discharge = levels_and_discharges(start)
     description = static_values(network, level, discharge), attributes(scenario), scenario.day.period.start
     sink = DatasetSink(*description) if output is None else NetcdfSink(output, *description, overwrite=overwrite)
     run = Run(network, timetable, sink, start)
@@ -59,7 +61,8 @@ def simulate(
     return sink.dataset if isinstance(sink, DatasetSink) else open_run(sink.written_path)
 
 
-def _start(scenario: Scenario, network: Network, timetable: Timetable) -> Start | dict[str, np.ndarray]:
+def start_of(scenario: Scenario, network: Network, timetable: Timetable) -> Start | dict[str, np.ndarray]:
+    """The state at the start: computed, or the end state of the run that the day goes on from."""
     if scenario.start_file is None:
         return starting_state(scenario, network, timetable)
     nodes = network.channel.nodes[: network.canal_node_count]
@@ -67,6 +70,11 @@ def _start(scenario: Scenario, network: Network, timetable: Timetable) -> Start 
         scenario.start_file, start=scenario.day.period.start, chainage=nodes["chainage"], bed_level=nodes["bed_level"],
         gates=network.names.gates,
     )  # fmt: skip
+
+
+def levels_and_discharges(start: Start | dict[str, np.ndarray]) -> tuple[np.ndarray, np.ndarray]:
+    """Levels by node [m] and discharges by link [m³/s] of a state at the start."""
+    return (start["end_level"], start["end_discharge"]) if isinstance(start, dict) else (start.level, start.discharge)
 
 
 def _stopped(run: Run, reason: BaseException) -> str:
@@ -81,13 +89,25 @@ def attributes(scenario: Scenario) -> dict[str, str]:
         title=day.title, canal=scenario.canal.name, plan=scenario.plan, canal_text=scenario.canal_text,
         day_text=scenario.day_text, settings=_settings(scenario), input_hash=scenario.input_hash,
         surface_names=tuple(scenario.canal.surfaces), units_for_display=scenario.display.system.value, zone=day.zone,
+        limits=limits_of(scenario.canal), avoided_openings=_avoided_openings(scenario),
         start=day.period.start, version=toeline.__version__, created=datetime.now(UTC),
     )  # fmt: skip
 
 
+def _avoided_openings(scenario: Scenario) -> dict[str, list[tuple[float, float]]]:
+    return {gate.name: gate.avoid_openings for gate in scenario.canal.gates if gate.avoid_openings}
+
+
 def _settings(scenario: Scenario) -> dict[str, Any]:
-    """Canal and day with defaults filled in, fit for JSON."""
-    plain = {"canal": scenario.canal.model_dump(), "day": scenario.day.model_dump(exclude={"plans"})}
+    """Canal and day with defaults filled in, what their numbers measure, and the state gone on from; fit for JSON."""
+    plain = {
+        "canal": scenario.canal.model_dump(),
+        "day": scenario.day.model_dump(exclude={"plans"}),
+        START_DIGEST: sha256(scenario.start_file.read_bytes()).hexdigest() if scenario.start_file else None,
+        "rules": [{"kind": rule.kind, **vars(rule.given)} for rule in scenario.rules],
+        "stuck": list(scenario.stuck),
+        DIMENSIONS: setting_dimensions(),
+    }
     return json.loads(json.dumps(plain, default=_plain))
 
 
@@ -106,6 +126,7 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
     names, gates, nodes = network.names, network.tables.gates, network.channel.nodes[: network.canal_node_count]
     chainage = nodes["chainage"]
     pools, offtakes = network.tables.pools, network.tables.offtakes
+    times = pool_times(network, level, discharge)
     beside = (*names.pools, "tail")
     node_pool = np.searchsorted(pools.last_node, np.arange(nodes.size)).astype(np.int32)
     return {
@@ -115,6 +136,9 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
         "gate_floor_level": gates.floor_level,
         "gate_width": gates.width,
         "gate_max_opening": names.max_opening,
+        "gate_smallest_move": names.smallest_move,
+        "gate_turn": names.turn,
+        "gate_scale_mark": names.scale_mark,
         "gate_apron_end": gates.apron_end,
         "gate_protection_end": gates.protection_end,
         "gate_upstream_pool": np.array(
@@ -127,9 +151,12 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
         "pool_length": chainage[pools.last_node] - chainage[pools.first_node],
         "pool_target_level": names.target_level,
         "pool_wave_round_trip": _round_trips(network, level, discharge),
+        "pool_lead_time_wave": times.wave,
+        "pool_lead_time_volume": times.volume,
         "offtake": np.array(names.offtakes, object),
         "offtake_pool": np.array([names.pools[node_pool[node]] for node in offtakes.node], object),
         "offtake_chainage": chainage[offtakes.node],
+        "offtake_sill_level": offtakes.sill_level,
         "node": np.arange(nodes.size),
         "chainage": chainage,
         "bed_level": nodes["bed_level"],

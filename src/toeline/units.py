@@ -19,7 +19,16 @@ class UnitSystem(StrEnum):
 
 
 Dimension = Literal[
-    "length", "area", "volume", "discharge", "velocity", "speed", "duration", "rate of loss", "weir coefficient"
+    "length",
+    "area",
+    "volume",
+    "discharge",
+    "discharge per length",
+    "velocity",
+    "speed",
+    "duration",
+    "rate of loss",
+    "weir coefficient",
 ]
 
 _VELOCITIES = {
@@ -48,6 +57,7 @@ SPELLINGS: dict[Dimension, dict[str, float]] = {
         "cfs": 0.028316846592,
         "acre-ft/day": 1233.48183754752 / 86_400.0,
     },
+    "discharge per length": {"m2/s": 1.0, "ft2/s": 0.09290304},
     "velocity": _VELOCITIES,
     "speed": _VELOCITIES,
     "duration": {"s": 1.0, "min": 60.0, "h": 3600.0, "d": 86_400.0},
@@ -61,6 +71,7 @@ FILE_UNITS: dict[Dimension, dict[UnitSystem, str]] = {
     "area": {UnitSystem.metric: "m2", UnitSystem.us_customary: "ft2"},
     "volume": {UnitSystem.metric: "m3", UnitSystem.us_customary: "acre-ft"},
     "discharge": {UnitSystem.metric: "m3/s", UnitSystem.us_customary: "ft3/s"},
+    "discharge per length": {UnitSystem.metric: "m2/s", UnitSystem.us_customary: "ft2/s"},
     "velocity": {UnitSystem.metric: "m/s", UnitSystem.us_customary: "ft/s"},
     "speed": {UnitSystem.metric: "m/min", UnitSystem.us_customary: "ft/min"},
     "rate of loss": {UnitSystem.metric: "mm/day", UnitSystem.us_customary: "in/day"},
@@ -151,6 +162,12 @@ class Display:
         """Write a level above the datum [m]."""
         return self._text(value, "length", 2)
 
+    def level_difference(self, value: float) -> str:
+        """Write a difference of two levels [m], finer than a gauge is read: to 0.1 cm or 0.01 ft."""
+        if self.system is UnitSystem.metric:
+            return "-" if math.isnan(value) else f"{round(value * 100.0, 1) + 0.0:.1f} cm"
+        return self._text(value, "length", 2)
+
     def depth(self, value: float) -> str:
         """Write a depth above the bed [m]."""
         return self._text(value, "length", 2)
@@ -162,6 +179,16 @@ class Display:
     def length(self, value: float) -> str:
         """Write a length or a distance [m]."""
         return self._text(value, "length", 2)
+
+    def move(self, value: float) -> str:
+        """Write by how much an opening is changed [m], without its sign: metric in cm, to the mm where need be."""
+        if self.system is UnitSystem.us_customary or math.isnan(value):
+            return self.length(abs(value))
+        return f"{round(abs(value) * 100, 1):g} cm"
+
+    def level_change(self, value: float) -> str:
+        """Write by how much two levels differ [m], without the sign: metric to the cm."""
+        return self.move(value if math.isnan(value) else round(value, 2))
 
     def discharge(self, value: float) -> str:
         """Write a discharge [m³/s]."""

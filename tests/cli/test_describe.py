@@ -7,6 +7,15 @@ def test_a_canal_is_described_from_the_head_down(folder, call):
     assert "  Lower pool  635.00 m      49.20 m     49.08 m  50.60 m          15.00 m\n" in page
 
 
+def test_limits_of_a_canal_are_described_with_their_source(folder, call):
+    canal = folder / "canal.toml"
+    assert "LIMITS\n  none given; none is built in\n" in call("describe", "canal.toml").stdout
+    limit = '[[limits]]\nkind = "fall"\nwindow = "1 h"\nlimit = 0.15\nsource = "standing order 7"\n'
+    canal.write_text(f"{canal.read_text()}\n{limit}")
+    page = call("describe", "canal.toml").stdout
+    assert "  fall in 1 h, all pools, at most 0.15 m\n    standing order 7\n" in page
+
+
 def test_a_day_is_described_with_the_orders_of_every_plan(folder, call):
     page = call("describe", "day.toml").stdout
     assert "ORDERS of plan hold: 0\n" in page

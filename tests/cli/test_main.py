@@ -21,7 +21,7 @@ def imported_by(*arguments: str) -> set[str]:
     return {line.rpartition("|")[2].strip() for line in result.stderr.splitlines() if line.startswith("import time:")}
 
 
-@pytest.mark.parametrize("arguments", [("--help",), ("--version",), ("run", "--help")])
+@pytest.mark.parametrize("arguments", [("--help",), ("--version",), ("run", "--help"), ("verify", "--help")])
 def test_help_opens_without_heavy_imports(arguments):
     packages = {module.partition(".")[0] for module in imported_by(*arguments)}
     assert "click" in packages

@@ -11,7 +11,10 @@ MINUTE = 60_000
 
 
 def gate(**keys):
-    plain = {"name": "G", "max_opening": 1.8, "smallest_move": 0.01, "hoist_speed": 0.1 / 60.0, "avoid_openings": []}
+    plain = {
+        "name": "G", "max_opening": 1.8, "smallest_move": 0.01, "largest_move": None, "moves_per_hour": None,
+        "hoist_speed": 0.1 / 60.0, "avoid_openings": [],
+    }  # fmt: skip
     return SimpleNamespace(**plain | keys)
 
 
@@ -27,7 +30,7 @@ def gate(**keys):
     ],
 )
 def test_travel_and_smallest_move(wanted, held, status):
-    opening, became, reason = allowed_opening(gate(), wanted, ordered=0.50)
+    opening, became, reason, *_ = allowed_opening(gate(), wanted, ordered=0.50)
     assert (opening, became) == (pytest.approx(held), status)
     assert bool(reason) == (status != ACCEPTED)
 
@@ -44,7 +47,7 @@ def test_travel_and_smallest_move(wanted, held, status):
     ],
 )
 def test_avoided_bands_are_not_held(wanted, held, status):
-    opening, became, _ = allowed_opening(gate(avoid_openings=[(0.0, 0.04), (0.9, 1.1)]), wanted, ordered=0.5)
+    opening, became, *_ = allowed_opening(gate(avoid_openings=[(0.0, 0.04), (0.9, 1.1)]), wanted, ordered=0.5)
     assert (opening, became) == (pytest.approx(held), status)
 
 
@@ -71,12 +74,12 @@ def test_leaf_moves_linearly_at_hoist_speed_and_stands_on_the_millisecond():
 )
 def test_bands_side_by_side_and_at_the_end_of_the_travel(wanted, held, status):
     bands = [(0.60, 0.70), (0.70, 0.90), (1.70, 1.90)]
-    opening, became, _ = allowed_opening(gate(avoid_openings=bands), wanted, ordered=0.50)
+    opening, became, *_ = allowed_opening(gate(avoid_openings=bands), wanted, ordered=0.50)
     assert (opening, became) == (pytest.approx(held), status)
 
 
 def test_edge_too_near_to_the_opening_last_ordered_is_refused_and_both_reasons_are_told():
-    opening, status, reason = allowed_opening(gate(avoid_openings=[(0.505, 0.60)]), 0.52, ordered=0.50)
+    opening, status, reason, *_ = allowed_opening(gate(avoid_openings=[(0.505, 0.60)]), 0.52, ordered=0.50)
     assert (opening, status) == (0.50, REFUSED)
     assert "0.505" in reason
     assert "smallest" in reason

@@ -43,7 +43,13 @@ def at(minutes: float) -> np.datetime64:
 
 
 def run_by_hand(
-    minutes, profile_minutes=(), *, values: Mapping[str, object], nodes: int = 4, outcome: str = COMPLETE
+    minutes,
+    profile_minutes=(),
+    *,
+    values: Mapping[str, object],
+    nodes: int = 4,
+    orders: int = 0,
+    outcome: str = COMPLETE,
 ) -> xr.Dataset:
     """A run with output at the given minutes. `values` are by variable name and are spread over its dimensions.
 
@@ -52,7 +58,7 @@ def run_by_hand(
     sizes = {
         "time": len(minutes),
         "profile_time": len(profile_minutes),
-        "order": 0,
+        "order": orders,
         "gate": 2,
         "pool": 2,
         "offtake": 1,

@@ -3,7 +3,9 @@
 import numpy as np
 import pytest
 
-from toeline.findings.incidents import JUMP_END, VOLUME_LACKING, incidents
+from toeline.findings.delivery_incidents import VOLUME_LACKING
+from toeline.findings.incidents import incidents
+from toeline.findings.jump_incidents import JUMP_END
 from toeline.results.variables import JUMP_STATES
 
 MINUTES = [0, 1, 2, 3, 4, 5]
@@ -116,7 +118,8 @@ def test_delivery_shortfall(run_by_hand, at):
     delivery = np.array([[0.4, 0.3995, 0.7, 0.6, 0.9, 0.4]]).T
     (incident,) = incidents(run_by_hand(MINUTES, values={"demand": demand, "delivery": delivery}))
     assert (incident.what, incident.where) == ("delivery shortfall", "North lateral")
-    assert (incident.start, incident.end, incident.worst_time) == (at(2), at(4), at(3))
+    assert (incident.start, incident.worst_time) == (at(2), at(3))  # where the demand jumps
+    assert incident.end == at(3 + 0.299 / 0.3)  # where all but a litre per second is delivered
     assert (incident.worst, incident.limit) == (pytest.approx(0.6), pytest.approx(0.9))
     (lacking,) = incident.also
     assert lacking.name == VOLUME_LACKING

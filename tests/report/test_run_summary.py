@@ -1,5 +1,7 @@
 """A run on one page."""
 
+import json
+
 import numpy as np
 import pytest
 
@@ -137,3 +139,63 @@ def test_the_page_keeps_to_its_width_and_ends_with_the_caution(swept_hour, metri
     page = run_summary(swept_hour, metric, width=width)
     assert max(len(line) for line in page.splitlines()) <= width
     assert section(page, "Caution") == CAUTION
+
+
+FALL = {
+    "kind": "fall", "limit": 0.15, "unit": "m", "places": ["Upper pool", "Lower pool"], "window": 3600.0,
+    "source": "standing order 7",
+}  # fmt: skip
+MOVES = {"kind": "moves", "limit": 4, "unit": "count", "places": ["Last check"], "window": 86_400.0, "source": "hoist"}
+
+
+@pytest.fixture
+def falling(invented_run):
+    """From 08:00 the Upper pool falls by 24 cm in two hours: 12 cm an hour."""
+
+    def run(**limit):
+        levels = np.zeros((49, 2))
+        levels[:, 0] = np.interp(np.arange(49), [24, 48], [2.0, 1.76])
+        limits = json.dumps([FALL | limit, MOVES])
+        return invented_run(pool_tail_level=levels, attributes={"limits": limits})
+
+    return run
+
+
+def test_a_limit_that_is_not_passed_is_told_with_its_use_and_source(falling, metric):
+    limits = section(run_summary(falling(), metric), "Limits")
+    assert "fall in 1 h, all pools, at most 0.15 m: 0.12 m (80 %), Upper pool, lower end" in limits
+    assert "standing order 7" in limits
+    assert "moves in 24 h, Last check, at most 4: 0 (0 %)" in limits
+    assert "The run is shorter than a window" in limits
+
+
+def test_a_limit_that_is_passed_is_an_incident_with_its_window(falling, metric):
+    page = run_summary(falling(limit=0.06), metric)
+    assert "Upper pool, lower end: fall in 1 h over the limit, 08:30 to 10:00" in section(page, "What goes wrong")
+    assert "worst 0.12 m in the 1 h to 09:00; limit 0.06 m, standing order 7" in section(page, "What goes wrong")
+    assert "passed: 0.12 m (200 %)" in section(page, "Limits")
+
+
+def test_without_limits_the_page_says_what_was_not_checked(invented_run, metric):
+    assert "not held against any" in section(run_summary(invented_run(), metric), "Limits")
+
+
+def test_times_with_a_roller_are_told_for_every_gate(swept_hour, metric):
+    hazards = section(run_summary(swept_hour, metric), "Floor and people")
+    assert "Roller below Middle check: 06:00 to 07:10 (1 h 10 min); 08:10 to 10:00" in hazards
+    assert "Roller below Last check: 06:00 to 10:00 (4 h)" in hazards
+
+
+def test_indicators_stand_by_place(invented_run, metric):
+    demand = np.full((49, 1), 0.5)
+    run = invented_run(demand=demand, delivery=demand * 0.9, pool_target_level=np.array([1.0, np.nan]))
+    text = section(run_summary(run, metric), "Indicators")
+    assert "deliveries adequacy efficiency dependability whole canal 0.900 1.000 0.000" in text
+    assert "East lateral 0.900 720 m3 0.000" in text
+    assert "level error greatest integrated steady state Upper pool 1.000 1.021 1.000" in text
+    assert "gates moves travel" in text
+
+
+def test_without_demand_the_page_says_that_deliveries_have_no_indicators(invented_run, metric):
+    text = section(run_summary(invented_run(demand=np.full((49, 1), np.nan)), metric), "Indicators")
+    assert "no indicators of deliveries" in text

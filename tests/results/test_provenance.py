@@ -6,7 +6,7 @@ from datetime import UTC, datetime
 import pytest
 
 from toeline.constants import CAUTION
-from toeline.results.provenance import ATTRIBUTES, run_attributes
+from toeline.results.provenance import ATTRIBUTES, run_attributes, shared_input_hash, shared_settings
 
 INPUTS = {
     "title": "A dry day",
@@ -53,3 +53,32 @@ def test_offset_and_settings_can_be_read_back():
 def test_settings_that_are_not_numbers_are_refused():
     with pytest.raises(ValueError, match="not JSON compliant"):
         run_attributes(**INPUTS | {"settings": {"spacing": float("nan")}})
+
+
+SETTINGS = {
+    "canal": {"name": "Alder branch", "units": "metric"},
+    "day": {"canal": "a.toml", "title": "a day", "units": None, "start": {"file": "a.nc", "state": None}},
+    "start_file_digest": "0",
+    "dimensions": {"day.period.spacing": "length"},
+}
+
+
+def test_names_of_files_titles_and_units_for_people_are_no_shared_settings():
+    assert shared_settings(SETTINGS) == {
+        "canal": {"name": "Alder branch"},
+        "day": {"start": {"state": None}},
+        "start_file_digest": "0",
+    }
+
+
+def test_the_settings_are_left_as_they_are():
+    shared_settings(SETTINGS)
+    assert SETTINGS["day"]["start"]["file"] == "a.nc"
+
+
+def test_the_shared_digest_tells_one_start_from_another():
+    assert shared_input_hash(SETTINGS) != shared_input_hash(SETTINGS | {"start_file_digest": "1"})
+
+
+def test_the_shared_digest_does_not_depend_on_the_order_of_keys():
+    assert shared_input_hash(SETTINGS) == shared_input_hash(dict(reversed(SETTINGS.items())))

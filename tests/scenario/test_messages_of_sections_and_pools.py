@@ -20,10 +20,10 @@ CASES = [
     ),
     (
         'units = "metric"',
-        'units = "metric"\nlimits = []',
+        'units = "metric"\nforecast = []',
         [
-            'canal.toml:3: limits: unknown key; known: "name", "units", "sections", "surfaces", "pools", '
-            '"gates", "offtakes", "head", "tail"',
+            'canal.toml:3: forecast: unknown key; known: "name", "units", "sections", "surfaces", "pools", '
+            '"gates", "offtakes", "head", "tail", "limits"',
         ],
     ),
     (

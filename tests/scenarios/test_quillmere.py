@@ -9,6 +9,7 @@ import xarray as xr
 
 from toeline import load_scenario, simulate
 from toeline.findings.incidents import incidents
+from toeline.findings.limit_incidents import limit_uses
 from toeline.results.variables import FLOW_STATES, JUMP_STATES
 from toeline.scenario import plan_names
 
@@ -20,6 +21,11 @@ BEYOND = JUMP_STATES.index("beyond_protection")
 @cache
 def run_of(day: str, plan: str | None = None) -> xr.Dataset:
     return simulate(load_scenario(DAYS / f"{day}.toml", plan=plan))
+
+
+def used(run: xr.Dataset) -> dict[str, float]:
+    """The used part of every limit that has parts."""
+    return {use.limit.subject: use.share for use in limit_uses(run) if use.share is not None}
 
 
 def minutes_beyond(run: xr.Dataset, gate: str) -> float:
@@ -61,6 +67,14 @@ def test_opening_with_the_water_keeps_every_jump_on_protection():
     assert run.protection_margin.min() > 0.0
 
 
+def test_early_opening_draws_the_lower_pool_down_over_the_limit_and_the_other_plan_passes_none():
+    early, later = (run_of("morning_increase", plan) for plan in ("early", "with_the_water"))
+    falls = {incident.where for incident in incidents(early) if incident.what == "fall in 1 h over the limit"}
+    assert "Lower pool, lower end" in falls
+    assert used(early)["fall in 1 h"] > 3.0
+    assert incidents(later) == []
+
+
 def test_morning_plans_differ_at_the_lower_check_alone():
     plans = [load_scenario(DAYS / "morning_increase.toml", plan=plan) for plan in ("early", "with_the_water")]
     early, later = ({(order.at, order.gate, order.value) for order in plan.orders} for plan in plans)
@@ -76,12 +90,25 @@ def test_evening_cut_draws_the_jump_back_onto_the_apron_and_no_pool_falls_far():
     assert 0.15 < fall.max() < 0.35
 
 
+def test_evening_cut_comes_near_both_limits_of_falls_and_passes_none():
+    run = run_of("evening_cut")
+    assert 0.85 < used(run)["fall in 1 h"] < 0.95
+    assert 0.85 < used(run)["fall in 24 h"] < 0.98
+    assert incidents(run) == []
+
+
 def test_filling_in_one_step_sends_a_jump_down_the_dry_floor():
     assert 2 <= minutes_beyond(run_of("filling_from_dry", "in_one_step"), "Head gate") <= 15
 
 
-def test_filling_in_small_steps_keeps_every_jump_on_protection():
+def test_filling_in_one_step_lets_the_reedbed_pool_fall_back_too_far():
+    falls = [i for i in incidents(run_of("filling_from_dry", "in_one_step")) if i.what == "fall in 24 h over the limit"]
+    assert {fall.where for fall in falls} == {"Reedbed pool, lower end", "Reedbed pool, upper end"}
+
+
+def test_filling_in_small_steps_keeps_every_jump_on_protection_and_passes_no_limit():
     run = run_of("filling_from_dry", "in_small_steps")
+    assert incidents(run) == []
     assert all(minutes_beyond(run, gate) == 0 for gate in run.gate.values)
 
 

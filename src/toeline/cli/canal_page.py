@@ -3,7 +3,7 @@
 from collections.abc import Iterator
 from typing import TYPE_CHECKING
 
-from toeline.report.layout import counted, heading, paragraph, table
+from toeline.report.layout import INDENT, counted, heading, paragraph, table
 from toeline.units import Display
 
 if TYPE_CHECKING:
@@ -28,7 +28,7 @@ def canal_line(file: "CanalFile") -> str:
 
 
 def canal_page(file: "CanalFile", width: int) -> str:
-    """Pools, gates, offtakes and ends, from the head down."""
+    """Pools, gates, offtakes and ends, from the head down, and the limits."""
     canal, display = file.canal, Display(file.units)
     tables = (
         ("Pools", POOL_COLUMNS, [_pool_row(pool, canal, display) for pool in canal.pools]),
@@ -39,7 +39,8 @@ def canal_page(file: "CanalFile", width: int) -> str:
     for title, columns, rows in tables:
         if rows:
             lines += ["", heading(title), table(columns, rows, width)]
-    return "\n".join([*lines, "", heading("Ends"), *_ends(canal, display, width)])
+    lines += ["", heading("Ends"), *_ends(canal, display, width)]
+    return "\n".join([*lines, "", heading("Limits"), *_limits(canal, display, width)])
 
 
 def _pool_row(pool: "Pool", canal: "Canal", display: Display) -> tuple[str, ...]:
@@ -73,3 +74,22 @@ def _ends(canal: "Canal", display: Display, width: int) -> Iterator[str]:
     for name, end in (("head", canal.head), ("tail", canal.tail)):
         level = "" if end.level is None else f" {display.level(end.level)}"
         yield paragraph(f"{name}: {end.kind}{level}", width)
+
+
+def _limits(canal: "Canal", display: Display, width: int) -> Iterator[str]:
+    from toeline.findings.limits import limit_of
+    from toeline.report.limits import limit_words
+    from toeline.scenario.limits import limits_of
+
+    everything = {
+        "pool": [pool.name for pool in canal.pools],
+        "gate": [gate.name for gate in canal.gates],
+        "offtake": [offtake.name for offtake in canal.offtakes],
+        "surface": list(canal.surfaces),
+    }
+    if not canal.limits:
+        yield paragraph("none given; none is built in", width)
+    for entry in limits_of(canal):
+        limit = limit_of(entry)
+        yield paragraph(limit_words(limit, everything, display), width, hanging=INDENT * 2)
+        yield paragraph(limit.source, width, indent=INDENT * 2)

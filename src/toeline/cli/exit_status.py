@@ -4,10 +4,12 @@ from enum import IntEnum
 
 
 class ExitStatus(IntEnum):
-    """0 and 3 leave a complete file of results, 1 and 130 what was done so far, 2 nothing."""
+    """0, 3 and 4 leave complete results, 1 and 130 what was done so far, 2 nothing."""
 
     DONE = 0
     RUN_FAILED = 1
     WRONG_USE = 2
     INCIDENT_FOUND = 3
+    TEST_NOT_PASSED = 3
+    RUNS_DIFFER = 4
     INTERRUPTED = 130

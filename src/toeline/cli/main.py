@@ -13,7 +13,7 @@ from toeline.cli.exit_status import ExitStatus
 from toeline.cli.terminal import note
 from toeline.errors import ScenarioError, ToelineError, UsageError
 
-COMMANDS = ("new", "check", "run", "describe", "report", "rating")
+COMMANDS = ("new", "check", "run", "describe", "report", "compare", "rating", "verify")
 
 
 class LazyGroup(click.Group):
@@ -69,7 +69,8 @@ def error_words(error: ToelineError) -> str:
     cls=LazyGroup,
     context_settings={"help_option_names": ["-h", "--help"]},
     epilog="Exit status: 0 done; 1 the run failed; 2 wrong use or a fault in the input; "
-    "3 there was an incident (with --strict); 130 stopped by Ctrl-C.",
+    "3 there was an incident, or a test was not passed (with --strict); 4 runs differ (compare --alike); "
+    "130 stopped by Ctrl-C.",
 )
 @click.version_option(__version__, prog_name="toeline")
 def main() -> None:

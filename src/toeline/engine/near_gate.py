@@ -3,7 +3,7 @@
 import math
 
 from toeline.constants import GRAVITY, WATER_DENSITY
-from toeline.engine.gate_link import gate_flow_at
+from toeline.engine.gate_link import gate_flow_at, law_of
 from toeline.hydraulics.cross_section import ALPHA, geometry
 from toeline.hydraulics.gradually_varied_flow import link_force, supercritical_profile
 from toeline.hydraulics.hydraulic_jump import (
@@ -25,7 +25,7 @@ from toeline.hydraulics.jump_location import (
 )
 from toeline.hydraulics.kernel import inner_kernel
 from toeline.hydraulics.submerged_jump import roller_depth, roller_length, submergence
-from toeline.hydraulics.underflow_gate import CLEAR_AND_DROWNED, CLOSED, DROWNED, REVERSE
+from toeline.hydraulics.underflow_gate import CLEAR_AND_DROWNED, CLOSED, DROWNED, REVERSE, modular_limit_depth
 
 JET_START = 1.0
 """Distance of the contracted section from the lip, in openings (choice; common practice is 1 to 2)."""
@@ -51,6 +51,9 @@ def judge_gate(channel, gate, up, down, opening, level, jet, out):
         return flow.discharge
     section, step = channel.shapes[gate.downstream_section], gate.sill_level - gate.floor_level
     width = gate.discharge_factor * gate.width
+    if flow.state != CLEAR_AND_DROWNED:  # whose jet is not the free one
+        limit = modular_limit_depth(law_of(gate), section, flow.jet_thickness, flow.free_discharge)
+        out.gate_modular_limit_level = gate.floor_level + limit
     free = jet_on_floor(section, width, flow.jet_thickness, step, flow.free_discharge)
     drowned = flow.state == DROWNED or flow.state == CLEAR_AND_DROWNED
     if free.froude > LEAST_JET_FROUDE:
@@ -66,6 +69,7 @@ def no_jump(out):
     out.jump_state = JUMP_NONE
     out.jump_kind = NO_JUMP
     out.jump_length_quality = LENGTH_NOT_DEFINED
+    out.gate_modular_limit_level = math.nan
     out.jet_depth = math.nan
     out.jet_froude_number = math.nan
     out.sequent_depth = math.nan

@@ -101,7 +101,7 @@ def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at,
                 guard.surge_downstream if time_ms < guard.surge_downstream_until else 0.0
             )
     storage = fill_pools(tables, before, middle, after, watch, rows.pools[row], time_ms, shares)
-    delivered = fill_offtakes(tables, before, middle, after, totals, rows.offtakes[row], h, shares, forcing)
+    delivered = fill_offtakes(tables, before, middle, after, totals, watch, rows.offtakes[row], h, shares, forcing)
     canal = rows.canal[row]
     canal.time = time_ms
     canal.canal_storage = storage
@@ -146,13 +146,14 @@ def total_at(shares, h, total, start, middle, end):
 
 
 @inner_kernel
-def fill_offtakes(tables, before, middle, after, totals, out, h, shares, forcing):
+def fill_offtakes(tables, before, middle, after, totals, watch, out, h, shares, forcing):
     """Fill a row of offtakes; returns the volume delivered by all [m³]."""
     first_demand = FORCING_GATES + tables.gates.size
     delivered = 0.0
     for k in range(before.delivery.size):
         start, inner, end = before.delivery[k], middle.delivery[k], after.delivery[k]
-        take = out[k]
+        take, node = out[k], tables.offtakes[k].node
+        take.offtake_level = max(watch.level[node], tables.channel.nodes[node].bed_level)
         take.demand = forcing[first_demand + k].now
         take.delivery = between(shares, start, inner, end)
         take.delivery_volume = total_at(shares, h, totals.delivery[k], start, inner, end)

@@ -12,6 +12,7 @@ GATE_OUTPUT = np.dtype(
         ("gate_discharge", float),
         ("gate_headwater_level", float),
         ("gate_tailwater_level", float),
+        ("gate_modular_limit_level", float),
         ("jet_depth", float),
         ("jet_froude_number", float),
         ("sequent_depth", float),
@@ -46,7 +47,9 @@ POOL_OUTPUT = np.dtype(
     ]
 )
 
-OFFTAKE_OUTPUT = np.dtype([("demand", float), ("delivery", float), ("delivery_volume", float)])
+OFFTAKE_OUTPUT = np.dtype(
+    [("demand", float), ("delivery", float), ("delivery_volume", float), ("offtake_level", float)]
+)
 
 CANAL_OUTPUT = np.dtype(
     [

@@ -19,7 +19,7 @@ FULL_SUPPLY_FROM = 0.95
 SHORTFALL_FROM = 0.001
 """m³/s that a delivery may lack unnoticed: the litre per second to which discharges are shown (choice)."""
 
-SAMPLE_DEVIATION = "the standard deviation is that of the population, not of a sample"
+DEVIATION = "the standard deviation is that of the population, not of a sample"
 
 
 def adequacy(delivered: np.ndarray, required: np.ndarray) -> float | None:
@@ -66,8 +66,8 @@ def delivery_indicators(run: xr.Dataset) -> Iterator[Indicator]:
     measures: tuple[tuple[str, Callable[[np.ndarray, np.ndarray], float | None], Better, str], ...] = (
         ("adequacy", adequacy, "higher", note),
         ("efficiency", efficiency, "higher", note),
-        ("dependability", dependability, "lower", f"{note}; {SAMPLE_DEVIATION}"),
-        ("equity", equity, "lower", f"{note}; {SAMPLE_DEVIATION}"),
+        ("dependability", dependability, "lower", f"{note}; {DEVIATION}"),
+        ("equity", equity, "lower", f"{note}; {DEVIATION}"),
     )
     for name, measure, better, words in measures:
         if (value := measure(delivery, demand)) is not None:
@@ -90,12 +90,12 @@ def _mean(values: np.ndarray) -> float | None:
 def _sampling(is_asked: np.ndarray) -> str:
     steps, offtakes = is_asked.shape
     asking = int(is_asked.any(axis=0).sum())
-    note = f"{int(is_asked.sum())} samples: {steps} output steps at {asking} offtakes, each counts once"
-    left_out = steps * asking - int(is_asked.sum())
-    if left_out:
-        note += f"; {left_out} without demand left out"
+    samples = int(is_asked.sum())
+    note = f"samples: {samples}, output steps: {steps}, offtakes with a demand: {asking}; every sample counts once"
+    if samples < steps * asking:
+        note += f"; left out, being without demand then: {steps * asking - samples}"
     if asking < offtakes:
-        note += f"; left out: {offtakes - asking} of {offtakes} offtakes, which have no demand"
+        note += f"; offtakes left out, having no demand: {offtakes - asking}"
     return note
 
 

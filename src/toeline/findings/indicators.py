@@ -6,6 +6,7 @@ from toeline.findings.deliveries import delivery_indicators
 from toeline.findings.gate_use import gate_indicators
 from toeline.findings.indicator import Indicator
 from toeline.findings.level_errors import level_indicators
+from toeline.findings.limit_indicators import limit_indicators
 from toeline.findings.volumes import volume_indicators
 
 __all__ = ["Indicator", "indicators"]
@@ -15,5 +16,5 @@ def indicators(run: xr.Dataset) -> list[Indicator]:
     """All indicators of a run; those for which it has nothing to count are left out, none is missing or infinite."""
     if not run.sizes["time"]:
         return []
-    families = (delivery_indicators, level_indicators, gate_indicators, volume_indicators)
+    families = (delivery_indicators, level_indicators, gate_indicators, limit_indicators, volume_indicators)
     return [indicator for family in families for indicator in family(run)]

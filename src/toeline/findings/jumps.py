@@ -8,7 +8,8 @@ from dataclasses import dataclass
 
 import xarray as xr
 
-from toeline.findings.series import Extreme, greatest, hours_in_each, hours_of_rows, least
+from toeline.findings.series import Extreme, greatest, hours_in_each, hours_of_rows, is_any, least
+from toeline.findings.spells import Spell, spells
 
 _NEEDED = (
     "gate_flow_state",
@@ -25,7 +26,7 @@ class GateJumps:
     """One gate over the whole run: hours by state, and the worst values with their times.
 
     `protection_margin` and `tailwater_margin` are the least, `jump_end_distance` the greatest [m]; NaN where there was
-    no value at all.
+    no value at all. `rollers` are the times with a drowned jump.
     """
 
     gate: str
@@ -35,6 +36,7 @@ class GateJumps:
     protection_margin: Extreme
     tailwater_margin: Extreme
     jump_end_distance: Extreme
+    rollers: tuple[Spell, ...]
 
     @property
     def beyond_protection_hours(self) -> float:
@@ -64,4 +66,5 @@ def _of_gate(run: xr.Dataset) -> GateJumps:
         protection_margin=least(run["protection_margin"].values, times),
         tailwater_margin=least(run["tailwater_margin"].values, times),
         jump_end_distance=greatest(run["jump_end_distance"].values, times),
+        rollers=tuple(spells(is_any(run["jump_state"], "drowned"), times, -run["tailwater_margin"].values)),
     )

@@ -52,10 +52,7 @@ def level_indicators(run: xr.Dataset) -> Iterator[Indicator]:
             )  # fmt: skip
 
 
-def end_beds(run: xr.Dataset) -> np.ndarray:
-    """Level of the bed [m] at the lower end of every pool; NaN for a pool without nodes."""
-    return np.array([_last(run["bed_level"].values[run["node_pool"].values == p]) for p in range(run.sizes["pool"])])
-
-
-def _last(values: np.ndarray) -> float:
-    return float(values[-1]) if values.size else np.nan
+def end_beds(run: xr.Dataset, *, first: bool = False) -> np.ndarray:
+    """Level of the bed [m] at the lower end of every pool, or at the upper (first); NaN for a pool without nodes."""
+    beds = [run["bed_level"].values[run["node_pool"].values == pool] for pool in range(run.sizes["pool"])]
+    return np.array([bed[0 if first else -1] if bed.size else np.nan for bed in beds])

@@ -66,6 +66,10 @@ class GateFlow(NamedTuple):
     quality: int
 
 
+DISCHARGE_AGREES, OPENING_AGREES = 1e-14, 1e-15
+"""Relative difference of discharge, and width of the bracket [m], at which the search for an opening ends."""
+
+
 @kernel
 def contraction_coefficient(gate, opening, energy_head):
     """Jet thickness over opening [1].
@@ -385,18 +389,37 @@ def opening_for_discharge(
 ):
     """Opening [m] that passes a discharge [m³/s] at given levels, and the discharge at that opening.
 
-    Bisection on [0, `largest`]; the end of the range nearest to the wanted discharge where none passes it.
+    False position with the retained end's value halved (Dowell & Jarratt 1971, from memory) on [0, `largest`]; the end
+    of the range nearest to the wanted discharge where none passes it.
     """
     if discharge <= 0.0:
         return 0.0, 0.0
     low, high = 0.0, largest
-    for _ in range(60):
-        middle = 0.5 * (low + high)
-        q = gate_discharge(gate, upstream_section, downstream_section, headwater_level, tailwater_level, middle)
-        if q < discharge:
-            low = middle
+    low_gap = (
+        gate_discharge(gate, upstream_section, downstream_section, headwater_level, tailwater_level, low) - discharge
+    )
+    high_gap = (
+        gate_discharge(gate, upstream_section, downstream_section, headwater_level, tailwater_level, high) - discharge
+    )
+    if low_gap >= 0.0 or high_gap <= 0.0:
+        return (low, discharge + low_gap) if low_gap >= 0.0 else (high, discharge + high_gap)
+    best, gap, side = high, high_gap, 0
+    for _ in range(100):
+        best = (low * high_gap - high * low_gap) / (high_gap - low_gap)
+        if not low < best < high:
+            best = 0.5 * (low + high)
+        gap = (
+            gate_discharge(gate, upstream_section, downstream_section, headwater_level, tailwater_level, best)
+            - discharge
+        )
+        if abs(gap) <= DISCHARGE_AGREES * discharge or high - low <= OPENING_AGREES:
+            break
+        if gap < 0.0:
+            low, low_gap = best, gap
+            high_gap *= 0.5 if side < 0 else 1.0
+            side = -1
         else:
-            high = middle
-    best = 0.5 * (low + high)
-    passed = gate_discharge(gate, upstream_section, downstream_section, headwater_level, tailwater_level, best)
-    return best, passed
+            high, high_gap = best, gap
+            low_gap *= 0.5 if side > 0 else 1.0
+            side = 1
+    return best, discharge + gap

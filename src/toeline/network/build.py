@@ -234,6 +234,9 @@ def _names(canal: Canal, lines: list[Line], canal_nodes: int) -> Names:
         bank_level=np.array([_line_level(canal, node, "bank_height") for node in nodes]),
         target_level=np.array([_or_nan(pool.target_level) for pool in canal.pools]),
         max_opening=np.array([gate.max_opening for gate in canal.gates], float),
+        smallest_move=np.array([gate.smallest_move for gate in canal.gates], float),
+        turn=np.array([_or_nan(gate.turn) for gate in canal.gates], float),
+        scale_mark=np.array([_or_nan(gate.scale_mark) for gate in canal.gates], float),
     )
 
 

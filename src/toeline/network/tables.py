@@ -139,3 +139,6 @@ class Names:
     bank_level: np.ndarray  # (canal nodes) m, NaN where none
     target_level: np.ndarray  # (p) m, NaN where none
     max_opening: np.ndarray  # (g) m
+    smallest_move: np.ndarray  # (g) m
+    turn: np.ndarray  # (g) m, NaN where none
+    scale_mark: np.ndarray  # (g) m, NaN where none

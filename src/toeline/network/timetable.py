@@ -1,17 +1,29 @@
-"""Everything that is known in advance of the day: series, orders, and when the time loop has to stop for them."""
+"""Everything that is known in advance of the day: series, orders, when rules decide, and when the time loop has to stop
+for them.
+"""
 
 from dataclasses import dataclass
+from typing import NamedTuple
 
 import numpy as np
 
 from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, Network
-from toeline.scenario import Order, Scenario
+from toeline.rules.base import CanalFacts
+from toeline.scenario import Order, RuleChoice, Scenario, Stuck
+from toeline.scenario.canal_facts import canal_facts
 from toeline.scenario.schema.canal import Canal
-from toeline.scenario.schema.day import Day
+from toeline.scenario.schema.day import MARKS_OF_ROUNDING, Day
 from toeline.scenario.schema.gates import Gate
 from toeline.scenario.series import Series, constant
 
 HOUR_MS = 3_600_000
+
+
+class Marks(NamedTuple):
+    """Openings that a leaf can be set to: multiples of a spacing [m], and what they are called."""
+
+    spacing: float
+    name: str
 
 
 @dataclass(frozen=True)
@@ -27,16 +39,23 @@ class Timetable:
     profiles_every: int  # ms
     series: dict[int, Series]  # by forcing index
     orders: tuple[Order, ...]  # by time
+    rules: tuple[RuleChoice, ...]
+    decisions: tuple[np.ndarray, ...]  # ms, by rule
+    stuck: tuple[Stuck, ...]
     gates: tuple[Gate, ...]  # of the scenario, for travel, hoist and bands
+    marks: tuple[Marks | None, ...]  # by gate, what its openings are rounded to
+    canal: CanalFacts  # for rules
     gate_count: int
     offtake_count: int
 
     def stops(self) -> np.ndarray:
-        """Times [ms] at which the loop has to stop: changes, orders, whole hours of the clock, the end."""
+        """Times [ms] at which the loop has to stop: changes, orders, decisions, whole hours of the clock, the end."""
         first_hour = -self.start_epoch_ms % HOUR_MS
         times = [np.arange(first_hour, self.length, HOUR_MS)]
         times += [np.asarray(series.times) for series in self.series.values()]
         times.append(np.array([order.at for order in self.orders], np.int64))
+        times.append(np.array([stuck.begin for stuck in self.stuck], np.int64))
+        times += self.decisions
         all_times = np.unique(np.concatenate(times).astype(np.int64))
         inside = all_times[(all_times > 0) & (all_times < self.length)]
         return np.append(inside, self.length)
@@ -55,6 +74,11 @@ class Timetable:
             if series.shape == "lines":
                 rate[index] = (series.at(until) - series.at(time)) * 1000.0 / (until - time)
         return rate
+
+    def demand_of(self, offtake: int) -> Series:
+        """Demand at an offtake [m³/s], zero where nothing is asked."""
+        series = self.series[FORCING_GATES + self.gate_count + offtake]
+        return constant(0.0) if np.isnan(series.values).any() else series
 
     @property
     def forcing_size(self) -> int:
@@ -76,10 +100,23 @@ def timetable_of(scenario: Scenario, network: Network) -> Timetable:
         profiles_every=day.output.profiles_every_ms,
         series=_series(day, canal, network),
         orders=scenario.orders,
+        rules=scenario.rules,
+        decisions=tuple(
+            rule.found.decision_times(rule.given, period.start, period.length_ms) for rule in scenario.rules
+        ),
+        stuck=scenario.stuck,
         gates=tuple(canal.gates),
+        marks=tuple(_marks(day, gate) for gate in canal.gates),
+        canal=canal_facts(canal),
         gate_count=network.gate_count,
         offtake_count=network.offtake_count,
     )
+
+
+def _marks(day: Day, gate: Gate) -> Marks | None:
+    key = MARKS_OF_ROUNDING.get(day.round_openings or "")
+    spacing = getattr(gate, key) if key is not None else None
+    return Marks(spacing, f"whole {day.round_openings}") if spacing is not None else None
 
 
 def _series(day: Day, canal: Canal, network: Network) -> dict[int, Series]:

@@ -5,16 +5,28 @@ from collections.abc import Iterator, Sequence
 from toeline.findings.jumps import GateJumps
 from toeline.findings.series import Extreme
 from toeline.report.clock import duration_text
-from toeline.report.layout import paragraph, table
+from toeline.report.layout import INDENT, paragraph, table
 from toeline.report.run_clock import RunClock
 from toeline.units import Display
 
 
-def hazard_lines(gates: Sequence[GateJumps], width: int) -> Iterator[str]:
-    """Floor and people side by side: little of one says nothing about the other."""
+def hazard_lines(gates: Sequence[GateJumps], clock: RunClock, width: int) -> Iterator[str]:
+    """Floor and people side by side: little of one says nothing about the other; then when the rollers stood."""
     rows = [(gate.gate, _hours(gate.beyond_protection_hours), _hours(gate.roller_hours)) for gate in gates]
     yield table(("", "floor: jump beyond protection", "people: drowned roller"), rows, width)
+    for times, named in _gates_by_roller_times(gates, clock).items():
+        yield paragraph(f"Roller below {', '.join(named)}: {times}", width, hanging=INDENT * 2)
     yield paragraph("At no hour is any place below a gate safe to enter, with a roller or without.", width)
+
+
+def _gates_by_roller_times(gates: Sequence[GateJumps], clock: RunClock) -> dict[str, list[str]]:
+    """Names of the gates that had rollers at the same times, by these."""
+    found: dict[str, list[str]] = {}
+    for gate in gates:
+        if gate.rollers:
+            times = clock.spans([(roller.start, roller.end) for roller in gate.rollers])
+            found.setdefault(times, []).append(gate.gate)
+    return found
 
 
 def margin_lines(gates: Sequence[GateJumps], clock: RunClock, display: Display, width: int) -> Iterator[str]:

@@ -6,15 +6,18 @@ from dataclasses import dataclass
 import numpy as np
 
 from toeline.findings.incidents import Incident, Measure
-from toeline.report.clock import duration_text
 from toeline.report.layout import INDENT, paragraph
 from toeline.report.run_clock import RunClock
+from toeline.report.values import value_text
 from toeline.units import Display
 
-SPANS_LISTED = 3
+SETTLING = (
+    "Settling: waves of a gate move still travel through a pool beside the place; levels are least trustworthy then."
+)
 NOTHING_FOUND = (
-    "No incident. Looked for: jumps beyond the protected floor, water above bank or lining and velocities over a limit "
-    "where the canal file gives them, deliveries that fall short. That nothing was found makes no place safe."
+    "No incident. Looked for: jumps beyond the protected floor, water above bank or lining, velocities over the limit "
+    "of a surface and the limits of the canal file, where it gives them, deliveries that fall short. That nothing was "
+    "found makes no place safe."
 )
 
 
@@ -27,6 +30,8 @@ def incident_lines(found: Sequence[Incident], clock: RunClock, display: Display,
         yield paragraph(f"{story.worst.where}: {story.worst.what}{times}", width, hanging=INDENT * 2)
         for detail in story.details:
             yield paragraph(detail, width, indent=INDENT * 2, hanging=INDENT * 3)
+    if any(incident.settling for incident in found):
+        yield paragraph(SETTLING, width)
 
 
 @dataclass(frozen=True)
@@ -42,7 +47,8 @@ def incident_stories(found: Sequence[Incident], clock: RunClock, display: Displa
     """What goes wrong, each kind at each place once, in the order in which they begin."""
     for together in _together(found):
         worst = max(together, key=_excess)
-        yield IncidentStory(worst, _times(together, clock), tuple(_details(worst, together, clock, display)))
+        times = clock.spans([(incident.start, incident.end) for incident in together])
+        yield IncidentStory(worst, times, tuple(_details(worst, together, clock, display)))
 
 
 def _together(found: Sequence[Incident]) -> list[list[Incident]]:
@@ -57,48 +63,33 @@ def _excess(incident: Incident) -> float:
     return float(np.nan_to_num(abs(incident.worst - incident.limit)))
 
 
-def _times(together: Sequence[Incident], clock: RunClock) -> str:
-    spans = [clock.span(incident.start, incident.end) for incident in together if incident.end > incident.start]
-    if len(spans) <= SPANS_LISTED:
-        return "; ".join(spans)
-    seconds = sum((incident.end - incident.start) / np.timedelta64(1, "s") for incident in together)
-    ends = max(incident.end for incident in together)
-    return (
-        f"{len(spans)} times between {clock.at(together[0].start)} and {clock.at(ends)}, "
-        f"{duration_text(seconds)} in all"
-    )
-
-
 def _details(worst: Incident, together: Sequence[Incident], clock: RunClock, display: Display) -> Iterator[str]:
-    value = incident_number(worst.worst, worst.unit, display)
+    value = value_text(worst.worst, worst.unit, display)
     if value != "-":
         place = "" if worst.chainage is None else f", chainage {display.length(worst.chainage)}"
-        limit = incident_number(worst.limit, worst.unit, display)
-        yield f"worst {value} at {clock.at(worst.worst_time)}{place}; limit {limit}, {worst.source}"
+        limit = value_text(worst.limit, worst.unit, display)
+        yield f"worst {value} {clock.window(worst.worst_time, worst.window)}{place}; limit {limit}, {worst.source}"
     else:
         yield worst.source
     for measures in zip(*(incident.also for incident in together), strict=True):
-        yield _measure_words(_combined(measures), display)
+        yield _measure_words(_combined(measures, together.index(worst)), display)
     if any(incident.settling for incident in together):
-        yield "in part while waves of a gate move still travelled: levels are least trustworthy then"
+        yield "in part while settling"
     if together[-1].runs_to_end and value != "-":
         yield "still going on when the run ended"
 
 
-def _combined(measures: Sequence[Measure]) -> Measure:
-    """One measure for several incidents: volumes add up, of others the greatest stands."""
+def _combined(measures: Sequence[Measure], worst: int) -> Measure:
+    """One measure for several incidents: volumes add up; of those with a limit the greatest stands, of others that of
+    the worst incident.
+    """
     if measures[0].unit == "m3":
         return Measure(measures[0].name, sum(measure.value for measure in measures), "m3")
+    if measures[0].limit is None:
+        return measures[worst]
     return max(measures, key=lambda measure: float(np.nan_to_num(measure.value, nan=-np.inf)))
 
 
 def _measure_words(measure: Measure, display: Display) -> str:
-    limit = "" if measure.limit is None else f"; limit {incident_number(measure.limit, measure.unit, display)}"
-    return f"{measure.name} {incident_number(measure.value, measure.unit, display)}{limit}"
-
-
-def incident_number(value: float, unit: str, display: Display) -> str:
-    if np.isnan(value):
-        return "-"
-    write = {"m": display.length, "m s-1": display.velocity, "m3 s-1": display.discharge, "m3": display.volume}[unit]
-    return write(value)
+    limit = "" if measure.limit is None else f"; limit {value_text(measure.limit, measure.unit, display)}"
+    return f"{measure.name} {value_text(measure.value, measure.unit, display)}{limit}"

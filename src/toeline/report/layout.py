@@ -52,7 +52,7 @@ def _side_by_side(header: Sequence[str], rows: Sequence[Sequence[str]]) -> list[
 def _aligned(column: Sequence[str]) -> list[str]:
     """The cells of a column under its header, all of one width."""
     size = max(len(cell) for cell in column)
-    is_number = all(cell[:1] in "+-0123456789" for cell in column[1:])
+    is_number = all(cell[:1] in "+-<0123456789" for cell in column[1:])
     return [cell.rjust(size) if is_number else cell.ljust(size) for cell in column]
 
 

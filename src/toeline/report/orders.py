@@ -1,9 +1,11 @@
-"""Orders in words: what was asked, and what was not done as asked."""
+"""Orders of the plan in words: what was asked, and what was not done as asked."""
 
 from collections.abc import Iterator
 
+import numpy as np
 import xarray as xr
 
+from toeline.findings.moves import SCHEDULE
 from toeline.findings.series import meanings
 from toeline.report.layout import INDENT, counted, paragraph
 from toeline.report.order_words import order_words
@@ -13,11 +15,12 @@ from toeline.units import Display
 
 def order_lines(run: xr.Dataset, clock: RunClock, display: Display, width: int) -> Iterator[str]:
     """How many orders were carried out as given, then each of the others with its reason."""
-    total = run.sizes["order"]
+    scheduled = np.flatnonzero(run["order_source"].values == SCHEDULE)
+    total = scheduled.size
     if not total:
         yield paragraph("No orders were given.", width)
         return
-    departures = [place for place, reason in enumerate(run["order_reason"].values) if reason]
+    departures = [place for place in scheduled if run["order_reason"].values[place]]
     yield paragraph(f"{counted(total, 'order')}, {total - len(departures)} carried out as given.", width)
     for place in departures:
         when = clock.at(run["order_time"].values[place])

@@ -1,5 +1,6 @@
 """The instants of a run as people at the canal say them."""
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from datetime import datetime
 from functools import cached_property
@@ -7,8 +8,11 @@ from functools import cached_property
 import numpy as np
 import xarray as xr
 
-from toeline.report.clock import clock_text, span_text
+from toeline.report.clock import clock_text, duration_text, span_text
 from toeline.results.dataset import local_time
+from toeline.units import UnitSystem, quantity_text
+
+SPANS_LISTED = 3
 
 
 @dataclass(frozen=True)
@@ -30,3 +34,18 @@ class RunClock:
 
     def span(self, begin: np.datetime64, end: np.datetime64) -> str:
         return span_text(local_time(self.run, begin), local_time(self.run, end), self.start)
+
+    def spans(self, spans: Sequence[tuple[np.datetime64, np.datetime64]]) -> str:
+        """Several spans in time order: each of a few, of more how often, between when, and how long in all."""
+        lasting = [(begin, end) for begin, end in spans if end > begin]
+        if len(lasting) <= SPANS_LISTED:
+            return "; ".join(self.span(begin, end) for begin, end in lasting)
+        in_all = duration_text(sum((end - begin) / np.timedelta64(1, "s") for begin, end in lasting))
+        last = max(end for _, end in lasting)
+        return f"{len(lasting)} times between {self.at(lasting[0][0])} and {self.at(last)}, {in_all} in all"
+
+    def window(self, end: np.datetime64, seconds: float) -> str:
+        """When a value was found: at an instant, or in the window of some seconds that ends there."""
+        if not seconds:
+            return f"at {self.at(end)}"
+        return f"in the {quantity_text(seconds, 'duration', UnitSystem.metric)} to {self.at(end)}"

@@ -5,11 +5,17 @@ from collections.abc import Iterable
 import xarray as xr
 
 from toeline.findings.incidents import incidents
+from toeline.findings.indicators import indicators
 from toeline.findings.jumps import gate_jumps
 from toeline.findings.ledger import ledger
+from toeline.findings.limit_incidents import limit_uses
+from toeline.findings.moves import gate_moves
 from toeline.report.gates import hazard_lines, hour_lines, margin_lines
 from toeline.report.incidents import incident_lines
+from toeline.report.indicators import indicator_lines
 from toeline.report.layout import heading, paragraph
+from toeline.report.limits import limit_lines
+from toeline.report.moves import move_lines
 from toeline.report.orders import order_lines
 from toeline.report.run_clock import RunClock
 from toeline.report.run_identity import run_identity
@@ -22,13 +28,16 @@ def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
     if not run.sizes["time"]:
         return paragraph("The run was stopped before anything reached the disk.", width, indent="")
     clock = RunClock(run)
-    gates = gate_jumps(run)
+    gates, moves = gate_jumps(run), gate_moves(run)
     sections = (
         ("What goes wrong", incident_lines(incidents(run), clock, display, width)),
-        ("Floor and people", hazard_lines(gates, width)),
+        ("Floor and people", hazard_lines(gates, clock, width)),
+        ("Limits", limit_lines(limit_uses(run), run, clock, display, width)),
         ("Least margins", margin_lines(gates, clock, display, width)),
         ("Hours in each state", hour_lines(gates, width)),
         ("Orders", order_lines(run, clock, display, width)),
+        *([("Moves", move_lines(run, moves, clock, display, width))] if any(gate.moves for gate in moves) else []),
+        ("Indicators", indicator_lines(indicators(run), display, width)),
         ("Water ledger", ledger_lines(ledger(run), width)),
         ("Caution", [paragraph(run.attrs["comment"], width)]),
     )

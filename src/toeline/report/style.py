@@ -68,9 +68,10 @@ TAILWATER = Line("tailwater", BLUISH_GREEN, 1.6)
 HEADWATER = Line("headwater", BLUISH_GREEN, 1.2, (1.0, 1.5))
 TARGET = Line("target level", REDDISH_PURPLE, 1.3, (6.0, 2.5))
 LIMIT = Line("limit", BLACK, 1.2, (8.0, 2.0, 1.5, 2.0))
-MODULAR_LIMIT = Line("modular limit: drowned above", REDDISH_PURPLE, 1.4, (5.0, 2.0))
-PROTECTION_LIMIT = Line("protection limit: jump leaves the protected floor below", BLACK, 1.4, (7.0, 2.0, 1.5, 2.0))
-APRON_LIMIT = Line("apron limit: jump leaves the apron below", ORANGE, 1.2, (2.0, 1.5))
+MODULAR_LIMIT = Line("modular limit: flow drowned above it", BLUE, 1.4, (5.0, 2.0))
+DROWNING_LIMIT = Line("jump drowned above it", REDDISH_PURPLE, 1.6, (1.5, 1.5))
+PROTECTION_LIMIT = Line("protection limit: jump beyond protection below it", BLACK, 1.4, (7.0, 2.0, 1.5, 2.0))
+APRON_LIMIT = Line("apron limit: jump ends beyond the apron below it", ORANGE, 1.4, (3.0, 1.5))
 BED = Line("bed", INK, 1.2)
 LINING = Line("top of the lining", FAINT_INK, 1.0, (4.0, 2.0))
 BANK = Line("top of the bank", FAINT_INK, 1.0, (1.0, 2.0))
@@ -103,13 +104,13 @@ JUMP_STATES = {
 }
 FLOW_STATES = {
     "closed": Area("closed", FAINT_INK),
-    "free": Area("free", PAPER),
+    "free": Area("free flow", PAPER),
     "near_modular_limit": Area("near the modular limit", YELLOW, "."),
-    "drowned": Area("drowned", HAZARD_PEOPLE.colour, HAZARD_PEOPLE.hatch),
+    "drowned": Area("drowned flow", REDDISH_PURPLE, "+"),
     "clear_of_water": Area("clear of water", SKY_BLUE, "|"),
-    "clear_and_drowned": Area("clear and drowned", HAZARD_PEOPLE.colour, "|"),
-    "overtopped": Area("overtopped", ORANGE, "+"),
-    "reverse": Area("reverse", BLUE, "o"),
+    "clear_and_drowned": Area("clear and drowned", REDDISH_PURPLE, "|"),
+    "overtopped": Area("overtopped", ORANGE, "-"),
+    "reverse": Area("reverse flow", BLUE, "o"),
 }
 """By the flag meanings of the results. No state is drawn as the good one."""
 

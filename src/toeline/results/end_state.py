@@ -33,7 +33,8 @@ def read_end_state(
         _check_finished(run, path)
         _check_time(run, path, start)
         _check_canal(run, path, chainage, bed_level, gates)
-        return {v.name: run[v.name].values.astype(v.dtype) for v in end_state() if v.unit != CLOCK}
+        kept = [variable for variable in end_state() if variable.unit != CLOCK]
+        return {v.name: run[v.name].values.astype(str if v.dtype == "text" else v.dtype) for v in kept}
 
 
 def _check_finished(run: xr.Dataset, path: str | os.PathLike[str]) -> None:

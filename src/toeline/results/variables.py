@@ -85,6 +85,10 @@ def _state(name: str, dimensions: tuple[str, ...], unit: str | None, meaning: st
     return Variable(name, dimensions, unit, meaning, comment, dtype="f8", is_state=True)
 
 
+def _state_text(name: str, dimensions: tuple[str, ...], meaning: str, comment: str = "") -> Variable:
+    return Variable(name, dimensions, None, meaning, comment, dtype="text", is_state=True)
+
+
 # fmt: off
 _CLOCKS = (
     Variable("time", ("time",), CLOCK, "time of the output step", standard_name="time", dtype="f8"),
@@ -102,6 +106,9 @@ _GATE_SERIES = (
           comment="near the modular limit, with the lip near the surface and when very drowned, gate ratings are poor"),
     Variable("gate_headwater_level", _GATES, "m", "water level just above the gate", _LEVEL, _SURFACE, dtype="f8"),
     Variable("gate_tailwater_level", _GATES, "m", "water level just below the gate", _LEVEL, _SURFACE, dtype="f8"),
+    Variable("gate_modular_limit_level", _GATES, "m", "tailwater level above which the flow begins to drown",
+             "at this headwater and opening; missing where nothing flows below the leaf, or it is clear and drowned",
+             dtype="f8"),
     Variable("jet_depth", _GATES, "m", "depth of the jet at the contracted section",
              "above the floor below the gate; missing where there is no jet"),
     Variable("jet_froude_number", _GATES, "1", "Froude number of the jet at the contracted section"),
@@ -157,6 +164,7 @@ _OFFTAKE_SERIES = (
              dtype="f8"),
     Variable("delivery", _OFFTAKES, "m3 s-1", "discharge delivered at the offtake", dtype="f8"),
     Variable("delivery_volume", _OFFTAKES, "m3", "volume delivered at the offtake since the start", dtype="f8"),
+    Variable("offtake_level", _OFFTAKES, "m", "water level at the offtake", _LEVEL, _SURFACE, dtype="f8"),
 )
 
 _CANAL_SERIES = (
@@ -178,6 +186,7 @@ _PROFILES = (
 
 _ORDERS = (
     Variable("order_time", ("order",), CLOCK, "time of the order", dtype="f8"),
+    _text("order_source", ("order",), "who gave the order", "schedule: the plan; else the kind of the rule"),
     _text("order_gate", ("order",), "gate of the order"),
     _flag("order_kind", ("order",), "what the order gives", ORDER_KINDS,
           comment="opening: the opening to reach; by: the change of the opening; discharge: what it is to pass then"),
@@ -197,6 +206,11 @@ _GATE_FACTS = (
     Variable("gate_floor_level", ("gate",), "m", "level of the floor just below the gate", _LEVEL, dtype="f8"),
     Variable("gate_width", ("gate",), "m", "open width of all bays", dtype="f8"),
     Variable("gate_max_opening", ("gate",), "m", "greatest opening", dtype="f8"),
+    Variable("gate_smallest_move", ("gate",), "m", "smallest change of opening that can be carried out", dtype="f8"),
+    Variable("gate_turn", ("gate",), "m", "change of opening for one turn of the handwheel",
+             "missing where the canal file gives none", dtype="f8"),
+    Variable("gate_scale_mark", ("gate",), "m", "spacing of the marks on the scale of the opening",
+             "missing where the canal file gives none", dtype="f8"),
     Variable("gate_apron_end", ("gate",), "m", "distance of the end of the apron from the gate", dtype="f8"),
     Variable("gate_protection_end", ("gate",), "m", "distance of the end of the protected floor from the gate",
              "where the last protected surface without a gap ends", dtype="f8"),
@@ -210,6 +224,11 @@ _POOL_FACTS = (
     Variable("pool_target_level", ("pool",), "m", "target level at the lower end of the pool", _LEVEL, dtype="f8"),
     Variable("pool_wave_round_trip", ("pool",), "s", "time of a small wave down the pool and back", "at the start",
              dtype="f8"),
+    Variable("pool_lead_time_wave", ("pool",), "s", "time that a change of flow needs down the pool, as a wave",
+             "at the target level and the discharge of the start; missing where the water stands", dtype="f8"),
+    Variable("pool_lead_time_volume", ("pool",), "s", "change of the pool's volume for a change of its flow",
+             "dV/dQ of steady flow at the target level and the discharge of the start; missing where the water stands",
+             dtype="f8"),
 )
 
 _OFFTAKE_FACTS = (
@@ -217,6 +236,8 @@ _OFFTAKE_FACTS = (
     _text("offtake_pool", ("offtake",), "pool of the offtake"),
     Variable("offtake_chainage", ("offtake",), "m", "chainage of the offtake", "from the head, downstream positive",
              dtype="f8"),
+    Variable("offtake_sill_level", ("offtake",), "m", "level of the sill of the offtake",
+             "of the bed where the canal file gives no sill", dtype="f8"),
 )
 
 _NODE_FACTS = (
@@ -251,6 +272,12 @@ _END_STATE = (
     _state("end_surge_upstream_remaining", ("state_gate",), "s", "time until the pool above has settled"),
     _state("end_surge_downstream_remaining", ("state_gate",), "s", "time until the pool below has settled"),
     _state("end_settling_remaining", ("state_pool",), "s", "time until the pool has settled"),
+    _state("end_move_age", ("state_move",), "s", "time since a move of the last hour began"),
+    Variable("end_move_gate", ("state_move",), "1", "position of the gate of that move in the list of gates", "from 0",
+             dtype="i4", is_state=True),
+    _state_text("end_rule", ("state_memory",), "rule that keeps the value", "kind and gate"),
+    _state_text("end_rule_memory", ("state_memory",), "name of the value that the rule keeps"),
+    _state("end_rule_value", ("state_memory",), None, "value that the rule keeps", "in SI units"),
     _state("end_rate", ("state_forcing",), None, "rates of change at the end of the run",
            "a second; of head, tail, gate openings, demands and offtake openings in their units"),
     _state("end_next_step", (), "s", "length of the step that would have come next"),

@@ -11,20 +11,24 @@ from pydantic import ValidationError
 from toeline.errors import Fault, ScenarioError, UsageError
 from toeline.scenario.checks.canal_checks import misfits_of_canal
 from toeline.scenario.checks.day_checks import misfits_of_day, misfits_of_orders
+from toeline.scenario.checks.rule_checks import misfits_of_rules, misfits_of_stuck
 from toeline.scenario.input_file import InputFile, read_input_file
 from toeline.scenario.messages import csv_faults_of, misfits_of
 from toeline.scenario.misfits import Misfit, in_quotes, nearest, shown
 from toeline.scenario.orders import Order
 from toeline.scenario.overrides import read_overrides
 from toeline.scenario.reading import Reading
+from toeline.scenario.rules import RuleChoice, Stuck
 from toeline.scenario.schema.canal import Canal
 from toeline.scenario.schema.day import Day, Period
+from toeline.scenario.schema.plans import Plan
 from toeline.scenario.schema.table import Table
 from toeline.scenario.text_file import is_there
 from toeline.scenario.times import Clock, read_zone
 from toeline.units import Display, UnitSystem
 
 AnyTable = TypeVar("AnyTable", bound=Table)
+Placed = TypeVar("Placed", Order, RuleChoice)
 
 
 @dataclass(frozen=True)
@@ -66,6 +70,8 @@ class Scenario:
     day: Day
     plan: str | None
     orders: tuple[Order, ...]
+    rules: tuple[RuleChoice, ...]
+    stuck: tuple[Stuck, ...]
     start_file: Path | None
     input_hash: str
     display: Display
@@ -125,7 +131,7 @@ def load_scenario(path: Path | str, *, plan: str | None = None, overrides: Itera
         raise ScenarioError([*canal.faults, *error.faults]) from None
     if canal.file is None:
         raise ScenarioError(canal.faults)
-    plans = {name: _placed(orders.orders, name, source) for name, orders in day.plans.items()}
+    plans = {name: _placed(plan, name, source) for name, plan in day.plans.items()}
     _raise_if_any(_faults_between(day, plans, canal.file, source, reading))
     return _scenario(canal.file, source, day, plans, _chosen(plan, plans, source), reading)
 
@@ -193,23 +199,34 @@ def _validated(table: type[AnyTable], source: InputFile, reading: Reading) -> An
         raise ScenarioError([*faults, *csv_faults_of(error)]) from None
 
 
-def _placed(orders: list[Order], plan: str, source: InputFile) -> list[Order]:
-    """Give the orders with the place where they are written; those of a CSV file have it already."""
-    places = [source.fault("", "plans", plan, "orders", index) for index in range(len(orders))]
-    return [
-        order if order.file else replace(order, file=place.file, line=place.line)
-        for order, place in zip(orders, places, strict=True)
+def _placed(plan: Plan, name: str, source: InputFile) -> Plan:
+    """Give the plan with the place where each order and rule is written; orders of a CSV file have it already."""
+    orders = [
+        order if order.file else _at(source, order, "plans", name, "orders", index)
+        for index, order in enumerate(plan.orders)
     ]
+    rules = [_at(source, rule, "plans", name, "rules", index) for index, rule in enumerate(plan.rules)]
+    return plan.model_copy(update={"orders": orders, "rules": rules})
+
+
+def _at(source: InputFile, item: Placed, *key_path: str | int) -> Placed:
+    place = source.fault("", *key_path)
+    return replace(item, file=place.file, line=place.line)
 
 
 def _faults_between(
-    day: Day, plans: dict[str, list[Order]], canal_file: CanalFile, source: InputFile, reading: Reading
+    day: Day, plans: dict[str, Plan], canal_file: CanalFile, source: InputFile, reading: Reading
 ) -> Iterator[Fault]:
-    for misfit in misfits_of_day(day, canal_file.canal, reading.folder, reading.system):
+    canal = canal_file.canal
+    for misfit in misfits_of_day(day, canal, reading.folder, reading.system):
         yield source.fault(misfit.message, *misfit.path)
-    for name, orders in plans.items():
-        for misfit in misfits_of_orders(orders, canal_file.canal):
-            yield _fault_of_order(misfit, name, orders, source)
+    for name, plan in plans.items():
+        for misfit in misfits_of_orders(plan.orders, canal):
+            yield _fault_of_order(misfit, name, plan.orders, source)
+        for misfit in misfits_of_rules(plan.rules, canal):
+            yield source.fault(misfit.message, "plans", name, "rules", *misfit.path)
+        for misfit in misfits_of_stuck(plan.stuck, canal):
+            yield source.fault(misfit.message, "plans", name, "stuck", *misfit.path)
 
 
 def _fault_of_order(misfit: Misfit, plan: str, orders: list[Order], source: InputFile) -> Fault:
@@ -238,17 +255,19 @@ def _scenario(
     canal_file: CanalFile,
     source: InputFile,
     day: Day,
-    plans: dict[str, list[Order]],
+    plans: dict[str, Plan],
     plan: str | None,
     reading: Reading,
 ) -> Scenario:
-    orders = sorted(plans[plan], key=lambda order: order.at) if plan else []
+    chosen = plans[plan] if plan else Plan()
     start_file = reading.folder / day.start.file if day.start.file else None
     return Scenario(
         canal=canal_file.canal,
         day=day,
         plan=plan,
-        orders=tuple(orders),
+        orders=tuple(sorted(chosen.orders, key=lambda order: order.at)),
+        rules=tuple(chosen.rules),
+        stuck=tuple(entry.stuck() for entry in chosen.stuck),
         start_file=start_file,
         input_hash=_input_hash(canal_file.source, source, plan, reading, start_file),
         display=Display(reading.system),
@@ -261,6 +280,7 @@ def _input_hash(canal: InputFile, day: InputFile, plan: str | None, reading: Rea
     """Digest everything that the numbers of a run depend on; each part is led by its length."""
     parts = [canal.text, day.text, plan or "", *(override.text for override in day.overrides)]
     parts += [part for item in sorted(reading.csv_texts.items()) for part in item]
+    parts += [reading.rule_sources[file] for file in sorted(reading.rule_sources)]
     digest = hashlib.sha256()
     for part in [text.encode() for text in parts] + ([start_file.read_bytes()] if start_file else []):
         digest.update(len(part).to_bytes(8, "big"))

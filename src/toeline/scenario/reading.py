@@ -14,7 +14,8 @@ from toeline.units import UnitSystem
 
 @dataclass
 class Reading:
-    """Units of plain numbers, the folder of files named, the zone and period of a day, and the CSV files read so far.
+    """Units of plain numbers, the folder of files named, the zone and period of a day, and the CSV files read and the
+    sources of rules run so far, by name.
 
     Without a clock, as where the period itself is at fault, times have no meaning and are not read.
     """
@@ -24,6 +25,7 @@ class Reading:
     zone: ZoneInfo | None = None
     clock: Clock | None = None
     csv_texts: dict[str, str] = field(default_factory=dict)
+    rule_sources: dict[str, str] = field(default_factory=dict)
 
     def read_csv(self, name: str, columns: Columns) -> CsvFile:
         """Read a CSV file and keep its text. Raises ValueError where it is not there."""

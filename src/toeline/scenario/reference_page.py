@@ -7,10 +7,12 @@ from typing import Annotated, Any, Literal, Union, get_args, get_origin
 from pydantic.fields import FieldInfo
 from pydantic_core import PydanticUndefined
 
+from toeline.rules.registry import BUILT_IN, FoundRule
 from toeline.scenario.schema.canal import Canal
 from toeline.scenario.schema.day import Day
 from toeline.scenario.schema.day_series import SeriesTable
 from toeline.scenario.schema.plans import OrderEntry
+from toeline.scenario.schema.rules import Seconds, table_of
 from toeline.scenario.schema.table import Table, table_inside
 from toeline.scenario.schema.value_kinds import Duration, Quantity, ValueKind
 from toeline.units import FILE_UNITS, SPELLINGS, UnitSystem, quantity_text
@@ -47,6 +49,23 @@ With a `zone`, the clock is that of the zone: on the days when the clocks change
 Wherever the value is a *series*, write one number that holds all day, an array of pairs `[time, value]` with rising
 times, or a table (see below), whose values may stand in a CSV file: a header line `time,value`, one row a time; lines
 that start with `#` are comments. Before the first time the first value holds, after the last the last.
+"""
+
+
+_RULES = """
+### Rules
+
+Each entry of `rules` names its kind, and then has the keys of that kind. A rule moves one gate; a gate may have several
+rules whose `hours` do not overlap. Besides those below, a kind may be a rule of your own:
+
+| `kind` | is |
+|---|---|
+| `"night_watch.py:NightWatch"` | the class `NightWatch` in the file `night_watch.py`, beside the day file |
+| `"canal_rules.night:NightWatch"` | the class in an installed package |
+| `"night watch"` | a rule of an installed package, its entry point of that name in the group `toeline.rules` |
+
+Its code is run by every command that reads the day file, `toeline check` too: use files that you trust. Its text enters
+the digest of the inputs; what it imports itself does not.
 """
 
 
@@ -94,6 +113,9 @@ def _header(key: str, field: FieldInfo) -> str:
 def _inside_values() -> Iterator[str]:
     yield f"\n### A series as a table\n\n{_table(SeriesTable)}"
     yield f"\n### An order\n\n{_table(OrderEntry)}"
+    yield _RULES
+    for kind, rule in BUILT_IN.items():
+        yield f"\n#### `{kind}`\n\n{_table(table_of(FoundRule(kind, rule)))}"
 
 
 def _table(table: type[Table]) -> str:
@@ -144,6 +166,8 @@ def _default(field: FieldInfo) -> str:
             return quantity_text(field.default, kind.dimension, UnitSystem.metric)
         if isinstance(kind, Duration):
             return quantity_text(field.default / 1000, "duration", UnitSystem.metric)
+        if isinstance(kind, Seconds):
+            return quantity_text(field.default, "duration", UnitSystem.metric)
     return str(field.default).lower()
 
 

@@ -4,6 +4,7 @@ from collections.abc import Iterable, Iterator
 
 from toeline.scenario.checks.gate_chain import misfits_of_gate_chain
 from toeline.scenario.checks.gate_levels import ROUNDING, misfits_of_gate_levels
+from toeline.scenario.checks.limit_checks import misfits_of_limits
 from toeline.scenario.misfits import Misfit, length_outside, nearest, shown
 from toeline.scenario.schema.canal import Canal
 from toeline.scenario.schema.offtakes import Offtake
@@ -18,6 +19,7 @@ def misfits_of_canal(canal: Canal) -> Iterator[Misfit]:
     yield from _unknown_sections_and_surfaces(canal)
     yield from _unreachable_targets(canal)
     yield from _misfits_of_offtakes(canal)
+    yield from misfits_of_limits(canal)
     if repeated:
         return  # a pool cannot be told from its namesake
     broken_chain = list(misfits_of_gate_chain(canal))

@@ -6,7 +6,7 @@ from pathlib import Path
 from toeline.scenario.misfits import Misfit, length_outside, nearest, shown
 from toeline.scenario.orders import Order
 from toeline.scenario.schema.canal import Canal
-from toeline.scenario.schema.day import TO_HOLD_TARGETS, Day
+from toeline.scenario.schema.day import MARKS_OF_ROUNDING, TO_HOLD_TARGETS, Day
 from toeline.scenario.schema.gates import Gate
 from toeline.scenario.text_file import is_there
 from toeline.units import UnitSystem, quantity_text
@@ -19,6 +19,7 @@ def misfits_of_day(day: Day, canal: Canal, folder: Path, system: UnitSystem) -> 
     yield from _misfits_of_offtakes(day.offtake_openings, "offtake_openings", "orifice", canal)
     yield from _misfits_of_output(day)
     yield from _misfits_of_start(day, canal, folder, system)
+    yield from _misfits_of_rounding(day, canal)
 
 
 def _misfits_of_ends(day: Day, canal: Canal) -> Iterator[Misfit]:
@@ -94,6 +95,12 @@ def _misfits_of_opening(path: tuple[str, ...], gate: Gate, opening: float, syste
     if gate.is_avoided(opening):
         found = quantity_text(opening, "length", system)
         yield Misfit(path, f"found {found}, which lies in a band of the gate's avoid_openings")
+
+
+def _misfits_of_rounding(day: Day, canal: Canal) -> Iterator[Misfit]:
+    key = MARKS_OF_ROUNDING.get(day.round_openings or "")
+    if key is not None and all(getattr(gate, key) is None for gate in canal.gates):
+        yield Misfit(("round_openings",), f'found {shown(day.round_openings)}, but no gate of the canal has "{key}"')
 
 
 def misfits_of_orders(orders: list[Order], canal: Canal) -> Iterator[Misfit]:

@@ -6,6 +6,7 @@ from pydantic import Field
 
 from toeline.scenario.schema.ends import Head, Tail
 from toeline.scenario.schema.gates import Gate
+from toeline.scenario.schema.limits import Limit
 from toeline.scenario.schema.offtakes import Offtake
 from toeline.scenario.schema.pools import Pool
 from toeline.scenario.schema.sections import Section, Surface
@@ -25,3 +26,4 @@ class Canal(Table):
     offtakes: list[Offtake] = Field([], description="Offtakes, in any order.")
     head: Head = Field(description="The upper end of the canal.")
     tail: Tail = Field(description="The lower end of the canal.")
+    limits: list[Limit] = Field([], description="What is not to be passed; none is built in.")

@@ -18,6 +18,9 @@ from toeline.units import UnitSystem
 
 TO_HOLD_TARGETS = "to hold targets"
 
+MARKS_OF_ROUNDING = {"turns": "turn", "scale marks": "scale_mark"}
+"""The key of a gate that gives the spacing for each way of rounding openings."""
+
 
 @dataclass(frozen=True)
 class Zone(ValueKind):
@@ -157,4 +160,9 @@ class Day(Table):
     head: LevelSeries | None = Field(None, description="Level of the reservoir, where it changes during the day.")
     tail: LevelSeries | None = Field(None, description="Level beyond the end, where it changes during the day.")
     start: Start = Field(description="The state of the canal at the start.")
+    round_openings: Literal["turns", "scale marks"] | None = Field(
+        None,
+        description="What openings are rounded to before they are simulated: whole turns of the handwheel (turn) or "
+        "marks of the scale (scale_mark) of each gate that has them. Left out: not rounded.",
+    )
     plans: dict[Name, Plan] = Field({}, description="Ways of operating the day, by name.")

@@ -36,6 +36,10 @@ class Gate(Table):
     )
     max_opening: Size = Field(description="Largest opening of the lip above the sill.")
     smallest_move: SizeOrZero = Field(0.0, description="Smallest change of opening that can be carried out.")
+    largest_move: Size | None = Field(None, description="Largest change of opening in one move. Left out: no limit.")
+    moves_per_hour: Annotated[int, WholeNumber(1, 1000)] | None = Field(
+        None, description="Most moves that may begin within an hour. Left out: no limit."
+    )
     hoist_speed: Annotated[float, Quantity("speed", above=0.0, most=10.0)] | None = Field(
         None, description="Speed at which the opening changes. Left out: moves are done at once."
     )
@@ -51,7 +55,8 @@ class Gate(Table):
     leakage: DischargeOrZero = Field(
         0.0, description="Discharge past the closed gate under 1 m (3.2808 ft) of head, in either unit system."
     )
-    turn: Size | None = Field(None, description="Change of opening for one turn of the handwheel, for order sheets.")
+    turn: Size | None = Field(None, description="Change of opening for one turn of the handwheel.")
+    scale_mark: Size | None = Field(None, description="Spacing of the marks on the scale of the opening.")
     leaf_weir_coefficient: Annotated[float, Quantity("weir coefficient", above=0.0, most=3.0)] = Field(
         1.7, description="Coefficient C of the flow C·b·h^1.5 over the leaf."
     )
@@ -75,6 +80,9 @@ class Gate(Table):
         if self.smallest_move >= self.max_opening:
             allowed = "below the max_opening"
             yield length_outside(("smallest_move",), self.smallest_move, allowed, self.max_opening, system)
+        if self.largest_move is not None and self.largest_move < self.smallest_move:
+            allowed = "not below the smallest_move"
+            yield length_outside(("largest_move",), self.largest_move, allowed, self.smallest_move, system)
 
     def _misfits_of_bands(self, system: UnitSystem) -> Iterator[Misfit]:
         for index, (lower, upper) in enumerate(self.avoid_openings):

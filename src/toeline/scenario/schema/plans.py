@@ -11,6 +11,8 @@ from toeline.scenario.messages import misfits_of
 from toeline.scenario.misfits import CsvFaultsError, Misfit, MisfitsError, in_quotes, shown
 from toeline.scenario.orders import Order, OrderKind
 from toeline.scenario.reading import reading_of
+from toeline.scenario.rules import RuleChoice, Stuck
+from toeline.scenario.schema.rules import RulesKind
 from toeline.scenario.schema.table import DischargeOrZero, Name, SizeOrZero, Table
 from toeline.scenario.schema.toml_json_schema import TomlJsonSchema
 from toeline.scenario.schema.value_kinds import Moment, Quantity, ValueKind
@@ -93,7 +95,27 @@ class OrdersKind(ValueKind):
         return {"anyOf": [{"type": "string"}, {"type": "array", "items": order}]}
 
 
+class StuckEntry(Table):
+    """A leaf that cannot be moved for a time: orders to it are refused."""
+
+    gate: Name = Field(description="Name of the gate.")
+    begin: Annotated[int, Moment()] = Field(alias="from", description="When it sticks; a move under way ends there.")
+    until: Annotated[int, Moment()] = Field(description="When it can be moved again.")
+
+    def misfits(self, system: UnitSystem) -> Iterator[Misfit]:
+        if 0 < self.until <= self.begin:
+            yield Misfit(("until",), "found a time that is not after from; allowed: a later one")
+
+    def stuck(self) -> Stuck:
+        """Give the spell."""
+        return Stuck(self.gate, self.begin, self.until)
+
+
 class Plan(Table):
     """One way of operating the day."""
 
     orders: Annotated[list[Order], OrdersKind()] = Field([], description="What the gates are ordered to do.")
+    rules: Annotated[list[RuleChoice], RulesKind()] = Field(
+        [], description="Rules that move gates during the day, each with the settings of its kind, see below."
+    )
+    stuck: list[StuckEntry] = Field([], description="Leaves that cannot be moved for a time.")

@@ -183,3 +183,25 @@ class Text(ValueKind):
 
     def json_schema(self) -> dict[str, Any]:
         return {"type": "string", "minLength": 1, "maxLength": self.longest}
+
+
+@dataclass(frozen=True)
+class Names(ValueKind):
+    """Several names in an array, or "all"."""
+
+    def read(self, value: Any, info: ValidationInfo) -> str | tuple[str, ...]:
+        if value == "all":
+            return "all"
+        if not isinstance(value, list) or not value:
+            raise ValueError(f"found {shown(value)}; allowed: \"all\", or an array of one or more names")
+        names = tuple(Text().read(name, info) for name in value)
+        if repeated := next((name for place, name in enumerate(names) if name in names[:place]), None):
+            raise ValueError(f"found {shown(repeated)} twice; allowed: each name once")
+        return names
+
+    def describe(self) -> str:
+        return '`"all"`, or array: name'
+
+    def json_schema(self) -> dict[str, Any]:
+        names = {"type": "array", "items": Text().json_schema(), "minItems": 1, "uniqueItems": True}
+        return {"anyOf": [{"const": "all"}, names]}

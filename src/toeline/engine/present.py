@@ -1,0 +1,94 @@
+"""The canal as a rule sees it: what is known of it before the day, and its state at a stop."""
+
+from dataclasses import replace
+
+import numpy as np
+
+from toeline.engine.gate_link import law_of
+from toeline.engine.gate_motion import GateMotion
+from toeline.engine.settling import round_trip
+from toeline.engine.state import State
+from toeline.hydraulics.underflow_gate import gate_discharge, opening_for_discharge
+from toeline.network.lead_times import pool_times
+from toeline.network.tables import FORCING_HEAD, FORCING_TAIL, HEAD, Network
+from toeline.network.timetable import Timetable
+from toeline.rules.base import CanalFacts
+
+
+def facts_at_start(network: Network, canal: CanalFacts, state: State) -> CanalFacts:
+    """What a state makes of the pools of a canal: their lead times, areas and round trips."""
+    times = pool_times(network, state.nodes.level, state.links.discharge)
+    pools = {
+        name: replace(
+            pool,
+            lead_times={"wave": float(times.wave[p]), "volume": float(times.volume[p])},
+            backed_up_area=float(times.area[p]),
+            round_trip=float(round_trip(network.channel, ends.first_node, ends.last_node, state)),
+        )
+        for p, ((name, pool), ends) in enumerate(zip(canal.pools.items(), network.tables.pools, strict=True))
+    }
+    return replace(canal, pools=pools)
+
+
+class PresentCanal:
+    """The state of the canal at the last stop; see `rules.base.Present`."""
+
+    def __init__(
+        self, network: Network, timetable: Timetable, state: State, forcing: np.recarray, motions: list[GateMotion]
+    ):
+        self.network, self.timetable, self.state, self.forcing, self.motions = (
+            network, timetable, state, forcing, motions,
+        )  # fmt: skip
+        names, gates, shapes = network.names, network.tables.gates, network.channel.shapes
+        self._gates = {name: g for g, name in enumerate(names.gates)}
+        self._pools = {name: p for p, name in enumerate(names.pools)}
+        self._demands = {name: timetable.demand_of(k) for k, name in enumerate(names.offtakes)}
+        self._laws = [(law_of(row), shapes[row.upstream_section], shapes[row.downstream_section]) for row in gates]
+        self._links = [int(np.flatnonzero(network.tables.links.gate == g)[0]) for g in range(gates.size)]
+        self._above, self._below = gates.upstream_node.tolist(), gates.downstream_node.tolist()
+        self.time_ms = 0
+
+    def headwater_level(self, gate: str) -> float:
+        node = self._above[self._gates[gate]]
+        return float(self.forcing.value[FORCING_HEAD] if node == HEAD else self.state.nodes.level[node])
+
+    def tailwater_level(self, gate: str) -> float:
+        node = self._below[self._gates[gate]]
+        is_beyond = node >= self.network.node_count
+        return float(self.forcing.value[FORCING_TAIL] if is_beyond else self.state.nodes.level[node])
+
+    def opening(self, gate: str) -> float:
+        return self.motions[self._gates[gate]].opening
+
+    def ordered_opening(self, gate: str) -> float:
+        return self.motions[self._gates[gate]].ordered
+
+    def discharge(self, gate: str) -> float:
+        return float(self.state.links.discharge[self._links[self._gates[gate]]])
+
+    def discharge_at(self, gate: str, opening: float) -> float:
+        law = self._laws[self._gates[gate]]
+        return float(gate_discharge(*law, self.headwater_level(gate), self.tailwater_level(gate), opening))
+
+    def opening_for(self, gate: str, discharge: float) -> float:
+        g = self._gates[gate]
+        largest = self.motions[g].gate.max_opening
+        levels = self.headwater_level(gate), self.tailwater_level(gate)
+        return float(opening_for_discharge(*self._laws[g], *levels, discharge, largest)[0])
+
+    def head_level(self, pool: str) -> float:
+        return float(self.state.nodes.level[self._ends(pool)[0]])
+
+    def tail_level(self, pool: str) -> float:
+        return float(self.state.nodes.level[self._ends(pool)[1]])
+
+    def volume(self, pool: str) -> float:
+        first, last = self._ends(pool)
+        return float(np.sum(self.state.nodes.volume[first : last + 1]))
+
+    def demand(self, offtake: str, time_ms: int) -> float:
+        return self._demands[offtake].at(time_ms)
+
+    def _ends(self, pool: str) -> tuple[int, int]:
+        ends = self.network.tables.pools[self._pools[pool]]
+        return int(ends.first_node), int(ends.last_node)

@@ -1,0 +1,94 @@
+"""What a change leaves behind for a while: surge bounds beside the gates, and pools that settle."""
+
+import math
+
+import numpy as np
+
+from toeline.engine.gate_motion import GateMotion
+from toeline.engine.output import Watch
+from toeline.engine.settling import round_trip, surge_bounds
+from toeline.engine.state import State
+from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, TAIL_LEVEL, Network
+
+LEAST_CHANGE = 1e-9
+"""Change of a discharge [m³/s] below which nothing is said to settle."""
+
+SIDES = ("upstream", "downstream")
+
+
+class Unrest:
+    """Keeps the surge bounds and settling times in `watch`, which the output reads; times in ms of the period."""
+
+    def __init__(self, network: Network, state: State, watch: Watch, length: int):
+        self.network, self.state, self.watch, self.length = network, state, watch, length
+
+    def note_move(self, time: int, g: int, up: float, down: float, opening: float, motion: GateMotion) -> None:
+        """Surge bounds of a move of gate `g` from `opening` [m] at the levels beside it, and until when both pools
+        settle.
+        """
+        tables = self.network.tables
+        up_height, down_height, change = surge_bounds(
+            tables.channel.shapes, tables.gates[g], up, down, opening, motion.target
+        )
+        if abs(change) < LEAST_CHANGE:
+            return
+        for side, height in zip(SIDES, (up_height, down_height), strict=True):
+            pool, gates = self._pool_beside(g, side), self.watch.gates
+            if pool is None:
+                continue
+            running = gates[f"surge_{side}"][g] if gates[f"surge_{side}_until"][g] > time else 0.0
+            settled = self._settled_after(pool, max(motion.until, time))
+            gates[f"surge_{side}"][g] = running + height if running * height >= 0.0 else max(running, height, key=abs)
+            gates[f"surge_{side}_until"][g] = settled
+            self._unsettle(pool, settled)
+
+    def note_changes(self, time: int, before: np.ndarray, now: np.ndarray) -> None:
+        """Pools that a change of inflow, of the tail level or of a delivery leaves settling."""
+        changed = np.abs(now - before) > LEAST_CHANGE
+        network, tables = self.network, self.network.tables
+        first = FORCING_GATES + network.gate_count
+        pools = set()
+        if changed[FORCING_HEAD] and tables.links.gate[0] < 0:
+            pools.add(0)
+        if changed[FORCING_TAIL] and tables.links.kind[-1] == TAIL_LEVEL:
+            pools.add(len(network.names.pools) - 1)
+        for k, node in enumerate(tables.offtakes.node):
+            if changed[first + k] or changed[first + network.offtake_count + k]:
+                pools.add(int(np.searchsorted(tables.pools.last_node, node)))
+        for pool in pools:
+            self._unsettle(pool, self._settled_after(pool, time))
+
+    def end_state(self, time: int) -> dict[str, np.ndarray]:
+        """What still runs at a time, by variable name."""
+        gates = self.watch.gates
+        return {
+            **{f"end_surge_{side}": gates[f"surge_{side}"].copy() for side in SIDES},
+            **{f"end_surge_{side}_remaining": _seconds_left(gates[f"surge_{side}_until"], time) for side in SIDES},
+            "end_settling_remaining": _seconds_left(self.watch.settled_at, time),
+        }
+
+    def take_over(self, end: dict[str, np.ndarray]) -> None:
+        """Go on from the end state of the run before."""
+        for side in SIDES:
+            self.watch.gates[f"surge_{side}"] = end[f"end_surge_{side}"]
+            self.watch.gates[f"surge_{side}_until"] = np.round(end[f"end_surge_{side}_remaining"] * 1000.0)
+        self.watch.settled_at[:] = np.round(end["end_settling_remaining"] * 1000.0)
+
+    def _unsettle(self, pool: int, until: int) -> None:
+        self.watch.settled_at[pool] = max(self.watch.settled_at[pool], until)
+
+    def _pool_beside(self, g: int, side: str) -> int | None:
+        """Index of the pool above ("upstream") or below a gate; None beyond the canal's ends."""
+        node = self.network.tables.gates[f"{side}_node"][g]
+        if node < 0 or node >= self.network.canal_node_count:
+            return None
+        return int(np.searchsorted(self.network.tables.pools.last_node, node))
+
+    def _settled_after(self, pool: int, time: int) -> int:
+        ends = self.network.tables.pools[pool]
+        seconds = round_trip(self.network.channel, ends.first_node, ends.last_node, self.state)
+        return time + round(1000.0 * seconds) if math.isfinite(seconds) else self.length + 1
+
+
+def _seconds_left(until: np.ndarray, time: int) -> np.ndarray:
+    return np.maximum(until - time, 0) / 1000.0

@@ -1,0 +1,174 @@
+"""How the gate schedules of two runs differ: orders moved in time, changed in size, added and dropped, gate by gate.
+
+Moves that an operating rule made are no orders of a schedule; they are counted.
+"""
+
+from collections import Counter
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+import xarray as xr
+
+from toeline.findings.series import meanings, names
+
+SCHEDULE = "schedule"
+"""Source of an order that stands in the plan."""
+
+_UNPAIRED_HOURS = 1.5
+_OTHER_VALUE_HOURS = 0.5
+_OTHER_SENSE_HOURS = 2.0
+"""What pairing two orders costs, in hours between them (choice): orders of one kind are told as one that was changed
+where less than three hours, twice the cost of an order alone, lie between them; a pair of other kind or sense must lie
+nearer."""
+
+
+@dataclass(frozen=True)
+class GateOrder:
+    """One order: `value` is in m, or m³/s where `kind` is discharge; `opening_before` [m] is that when it came."""
+
+    time: np.datetime64
+    gate: str
+    kind: str
+    value: float
+    opening_before: float
+
+    @property
+    def change(self) -> float:
+        """By how much the opening was to change [m]: positive opens; NaN where a discharge is ordered."""
+        if self.kind == "by":
+            return self.value
+        return self.value - self.opening_before if self.kind == "opening" else float("nan")
+
+    def asks_as(self, other: "GateOrder") -> bool:
+        """Whether another order asks for the same, at whatever time."""
+        return (self.kind, self.value) == (other.kind, other.value)
+
+
+@dataclass(frozen=True)
+class OrderDifference:
+    """An order of the first run and what stands in its place in the other; None where there is none."""
+
+    gate: str
+    first: GateOrder | None
+    other: GateOrder | None
+
+
+@dataclass(frozen=True)
+class RuleMoves:
+    """How often a rule moved a gate in the first run and in the other."""
+
+    rule: str
+    gate: str
+    first: int
+    other: int
+
+
+@dataclass(frozen=True)
+class ScheduleDifference:
+    """All differences between the orders of two runs, by gate from the head down, and how many orders are alike."""
+
+    orders: tuple[OrderDifference, ...]
+    alike: int
+    rule_moves: tuple[RuleMoves, ...]
+
+
+def schedule_difference(first: xr.Dataset, other: xr.Dataset) -> ScheduleDifference:
+    """Lay the orders of two runs side by side. Both must be of one canal, and by one clock."""
+    before, after = _orders(first), _orders(other)
+    differences: list[OrderDifference] = []
+    alike = 0
+    for gate in _gates(first, other):
+        paired = paired_orders(*([order for order in orders if order.gate == gate] for orders in (before, after)))
+        changed = [pair for pair in paired if not _is_alike(*pair)]
+        alike += len(paired) - len(changed)
+        differences += [OrderDifference(gate, *pair) for pair in changed]
+    return ScheduleDifference(tuple(differences), alike, tuple(_rule_moves(first, other)))
+
+
+Pair = tuple[GateOrder | None, GateOrder | None]
+
+
+def paired_orders(first: Sequence[GateOrder], other: Sequence[GateOrder]) -> list[Pair]:
+    """Pair the orders of one gate, both in time order, so that together the pairs lie nearest.
+
+    An order without a partner stands beside None. Pairs do not cross, and come in time order.
+    """
+    cost = np.zeros((len(first) + 1, len(other) + 1))
+    cost[:, 0], cost[0, :] = _UNPAIRED_HOURS * np.arange(len(first) + 1), _UNPAIRED_HOURS * np.arange(len(other) + 1)
+    for row, before in enumerate(first):
+        for column, after in enumerate(other):
+            alone = _UNPAIRED_HOURS + min(cost[row, column + 1], cost[row + 1, column])
+            cost[row + 1, column + 1] = min(alone, cost[row, column] + _hours_between(before, after))
+    return _pairs_of_least_cost(first, other, cost)
+
+
+def _pairs_of_least_cost(first: Sequence[GateOrder], other: Sequence[GateOrder], cost: np.ndarray) -> list[Pair]:
+    """Go back from the end along the pairs that made up the least cost."""
+    pairs: list[Pair] = []
+    row, column = len(first), len(other)
+    while row or column:
+        if (
+            row
+            and column
+            and cost[row, column] == cost[row - 1, column - 1] + _hours_between(first[row - 1], other[column - 1])
+        ):
+            row, column = row - 1, column - 1
+            pairs.append((first[row], other[column]))
+        elif row and cost[row, column] == _UNPAIRED_HOURS + cost[row - 1, column]:
+            row -= 1
+            pairs.append((first[row], None))
+        else:
+            column -= 1
+            pairs.append((None, other[column]))
+    pairs.reverse()
+    return sorted(pairs, key=_time_of)
+
+
+def _time_of(pair: Pair) -> np.datetime64:
+    return min(order.time for order in pair if order is not None)
+
+
+def _hours_between(first: GateOrder, other: GateOrder) -> float:
+    """How far two orders are apart, in hours, with what they ask for counted in."""
+    hours = abs(float((other.time - first.time) / np.timedelta64(1, "h")))
+    if first.asks_as(other):
+        return hours
+    is_of_other_sense = first.kind != other.kind or (first.kind == "by" and first.value * other.value < 0.0)
+    return hours + (_OTHER_SENSE_HOURS if is_of_other_sense else _OTHER_VALUE_HOURS)
+
+
+def _is_alike(first: GateOrder | None, other: GateOrder | None) -> bool:
+    return first is not None and other is not None and first.time == other.time and first.asks_as(other)
+
+
+def _orders(run: xr.Dataset) -> list[GateOrder]:
+    """Orders of the schedule, without the moves that rules made."""
+    kinds = meanings(run["order_kind"])
+    return [
+        GateOrder(time, gate, kinds[int(kind)], float(value), float(before))
+        for time, gate, kind, value, before, source in zip(
+            run["order_time"].values, names(run["order_gate"]), run["order_kind"].values, run["order_value"].values,
+            run["order_opening_before"].values, _sources(run), strict=True,
+        )
+        if source == SCHEDULE
+    ]  # fmt: skip
+
+
+def _sources(run: xr.Dataset) -> list[str]:
+    return names(run["order_source"]) if "order_source" in run else [SCHEDULE] * run.sizes["order"]
+
+
+def _rule_moves(first: xr.Dataset, other: xr.Dataset) -> list[RuleMoves]:
+    before, after = (
+        Counter(move for move in zip(_sources(run), names(run["order_gate"]), strict=True) if move[0] != SCHEDULE)
+        for run in (first, other)
+    )
+    places = {gate: place for place, gate in enumerate(_gates(first, other))}
+    moved = sorted(before.keys() | after.keys(), key=lambda move: (move[0], places[move[1]]))
+    return [RuleMoves(*move, before[move], after[move]) for move in moved]
+
+
+def _gates(first: xr.Dataset, other: xr.Dataset) -> list[str]:
+    """Gates of either run, from the head down."""
+    return list(dict.fromkeys([*names(first["gate"]), *names(other["gate"])]))

@@ -1,0 +1,58 @@
+"""Water above an edge of the canal, or faster than a surface bears."""
+
+from collections.abc import Iterator
+
+import numpy as np
+import xarray as xr
+
+from toeline.findings.incident import Incident, Settling
+from toeline.findings.series import least, meanings, names
+from toeline.findings.spells import spells
+
+
+def water_above(edge: str, run: xr.Dataset, settling: Settling) -> Iterator[Incident]:
+    """Water above the bank, or above the lining."""
+    times, margins = run["time"].values, run[f"pool_{edge}_margin"].values
+    for pool, name in enumerate(names(run["pool"])):
+        for spell in spells(margins[:, pool] < 0, times, margins[:, pool]):
+            worst = least(margins[spell.rows, pool], times[spell.rows])
+            yield Incident(
+                f"water above the {edge}",
+                name,
+                spell.start,
+                spell.end,
+                worst.value,
+                worst.time,
+                limit=0.0,
+                unit="m",
+                source=f"{edge} over the water, by {edge}_height of the canal file",
+                settling=settling.during(spell, name),
+                runs_to_end=spell.runs_to_end,
+            )
+
+
+def velocities_over_limit(run: xr.Dataset, settling: Settling) -> Iterator[Incident]:
+    """At the times of the profiles, pool by pool, by the node furthest over the limit of its surface."""
+    times, limits, velocities = (run[name].values for name in ("profile_time", "velocity_limit", "velocity"))
+    margins = np.nan_to_num(limits - np.abs(velocities), nan=np.inf)
+    for pool, name in enumerate(names(run["pool"])):
+        nodes = np.flatnonzero((run["node_pool"].values == pool) & np.isfinite(limits))
+        in_pool = margins[:, nodes].min(axis=1, initial=np.inf)
+        for spell in spells(in_pool < 0, times, in_pool):
+            row = spell.first + int(np.argmin(in_pool[spell.rows]))
+            node = int(nodes[np.argmin(margins[row, nodes])])
+            surface = meanings(run["surface"])[int(run["surface"].values[node])]
+            yield Incident(
+                "velocity over the limit of the surface",
+                name,
+                spell.start,
+                spell.end,
+                abs(float(velocities[row, node])),
+                times[row],
+                limit=float(limits[node]),
+                unit="m s-1",
+                source=f"velocity_limit of surface {surface} in the canal file",
+                settling=settling.during(spell, name),
+                runs_to_end=spell.runs_to_end,
+                chainage=float(run["chainage"].values[node]),
+            )

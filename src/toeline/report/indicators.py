@@ -1,0 +1,81 @@
+"""The indicators of a run as tables, place by place."""
+
+from collections.abc import Iterator, Mapping, Sequence
+
+from toeline.findings.indicator import Indicator
+from toeline.report.layout import paragraph, table
+from toeline.report.values import value_text
+from toeline.units import Display
+
+_CANAL = {
+    "adequacy": "adequacy",
+    "efficiency": "efficiency",
+    "dependability": "dependability",
+    "equity": "equity",
+}
+_OFFTAKES = {
+    "delivery performance ratio": "given of asked",
+    "volume not delivered": "not delivered",
+    "tail-end supply ratio": "in full at the tail end",
+}
+_POOLS = {
+    "greatest level error": "greatest",
+    "integrated level error": "integrated",
+    "steady-state level error": "steady state",
+}
+_GATES = {
+    "gate moves": "moves",
+    "gate travel": "travel",
+    "integrated gate travel": "integrated travel",
+    "integrated discharge change": "integrated flow change",
+}
+_STATES = {
+    "modular-limit crossings": "modular limit crossed",
+    "hours near the modular limit": "near it",
+    "hours at avoided openings": "at avoided openings",
+}
+"""Names of indicators and the headings of their columns."""
+
+_DELIVERY_NOTE = (
+    "Adequacy, efficiency: 1 where all was given and nothing too much. Dependability, equity: variation over time and "
+    "over offtakes, 0 where there is none; standard deviation of the population (Molden & Gates 1990)."
+)
+_LEVEL_NOTE = (
+    "Level errors are parts of the target depth at the lower end of the pool; steady state: of the last 2 hours."
+)
+_GATE_NOTE = (
+    "Integrated: what openings and discharges changed beyond the way from their first to their last value. Near the "
+    "modular limit the discharge of a gate is poorly known."
+)
+
+
+def indicator_lines(found: Sequence[Indicator], display: Display, width: int) -> Iterator[str]:
+    """Deliveries, levels and gates; what there is nothing to count for is left out."""
+    for subject, columns, note in (
+        ("deliveries", _CANAL, ""),
+        ("deliveries", _OFFTAKES, _DELIVERY_NOTE),
+        ("level error", _POOLS, _LEVEL_NOTE),
+        ("gates", _GATES, ""),
+        ("gates", _STATES, _GATE_NOTE),
+    ):
+        if text := _pivoted(found, subject, columns, display, width):
+            yield text
+            if note:
+                yield paragraph(note, width)
+    if not any(indicator.name in _CANAL for indicator in found):
+        yield paragraph("Nothing was asked of an offtake: there are no indicators of deliveries.", width)
+
+
+def _pivoted(
+    found: Sequence[Indicator], subject: str, columns: Mapping[str, str], display: Display, width: int
+) -> str:
+    """One row a place, one column an indicator; empty where there is none."""
+    cells = {
+        (indicator.where, indicator.name): value_text(indicator.value, indicator.unit, display)
+        for indicator in found
+        if indicator.name in columns
+    }
+    used = [name for name in columns if any(name == named for _, named in cells)]
+    places = dict.fromkeys(place for place, _ in cells)
+    rows = [(place or "whole canal", *(cells.get((place, name), "-") for name in used)) for place in places]
+    return table((subject, *(columns[name] for name in used)), rows, width) if rows else ""

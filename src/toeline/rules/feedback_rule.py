@@ -1,0 +1,68 @@
+"""What the rules that hold a level or a volume by feedback have in common."""
+
+from abc import abstractmethod
+from types import SimpleNamespace
+
+from toeline.rules.base import Answer, CanalFacts, Present, Rule
+from toeline.rules.feedback import Feedback, Gains
+from toeline.rules.feedforward import Feedforward
+
+
+class FeedbackRule(Rule):
+    """Sets an opening, or the discharge that the gate should pass, by proportional-integral feedback, and adds known
+    changes of deliveries ahead of time: they stay in `memory` as "ahead", in the quantity that is set, until a move has
+    made them.
+    """
+
+    def __init__(self, given: SimpleNamespace, canal: CanalFacts):
+        super().__init__(given, canal)
+        self.feedback = Feedback(self.memory, given.band, given.every)
+        self.ahead = given.feedforward and Feedforward(self.memory, self.gate, given.feedforward, canal)
+        self.is_saturated = False
+
+    @abstractmethod
+    def error(self, now: Present) -> float:
+        """What is held, against its target, signed so that a positive error calls for more discharge."""
+
+    @abstractmethod
+    def gains(self, now: Present) -> Gains:
+        """Gains per error of the quantity that is set."""
+
+    @property
+    @abstractmethod
+    def sets_opening(self) -> bool:
+        """Whether the quantity set is the opening, not the discharge."""
+
+    def decide(self, now: Present) -> float | None:
+        gains, error, ordered = self.gains(now), self.error(now), now.ordered_opening(self.gate)
+        if self.feedback.is_new(ordered):
+            self.feedback.start(self._quantity(now, ordered), error, gains)
+            self.memory["ordered"] = ordered
+        change = self.ahead.change(now) if self.ahead else 0.0
+        if change != 0.0:
+            self.memory["ahead"] = self.memory.get("ahead", 0.0) + self._in_quantity(now, ordered, change)
+        ahead = self.memory.get("ahead", 0.0)
+        wanted = self.feedback.wanted(error, gains, is_pressed=ahead != 0.0)
+        return None if wanted is None else self._opening(now, wanted + ahead)
+
+    def learn(self, answer: Answer, ordered: float) -> None:
+        self.feedback.learn(Answer.limited if self.is_saturated else answer, ordered)
+        if answer is Answer.moved:
+            self.feedback.shift(self.memory.pop("ahead", 0.0))
+
+    def _quantity(self, now: Present, ordered: float) -> float:
+        return ordered if self.sets_opening else now.discharge_at(self.gate, ordered)
+
+    def _in_quantity(self, now: Present, ordered: float, change: float) -> float:
+        """A change of discharge [m³/s] in the quantity that is set."""
+        if not self.sets_opening:
+            return change
+        return now.opening_for(self.gate, now.discharge_at(self.gate, ordered) + change) - ordered
+
+    def _opening(self, now: Present, quantity: float) -> float:
+        """The opening [m] of a quantity; one that cannot be had counts as limited, so that nothing winds up."""
+        if self.sets_opening:
+            return quantity
+        opening = now.opening_for(self.gate, quantity)
+        self.is_saturated = quantity < 0.0 or opening >= self.canal.gates[self.gate].max_opening
+        return opening

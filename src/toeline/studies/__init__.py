@@ -1,0 +1,1 @@
+"""Studies: many runs of one day, and what they say together."""

@@ -1,0 +1,135 @@
+"""How the schedules of two runs differ, order by order."""
+
+import numpy as np
+import pytest
+import xarray as xr
+
+from toeline.findings.schedule_differences import (
+    GateOrder,
+    OrderDifference,
+    RuleMoves,
+    paired_orders,
+    schedule_difference,
+)
+from toeline.results.variables import ORDER_KINDS
+
+GATES = ["Orchard check", "Mill check"]
+
+
+def time(clock: str) -> np.datetime64:
+    return np.datetime64(f"2031-05-04T{clock}", "ns")
+
+
+def order(clock: str, kind: str = "opening", value: float = 0.5, gate: str = "Mill check") -> GateOrder:
+    return GateOrder(time(clock), gate, kind, value, 0.4)
+
+
+def run_of(*orders: GateOrder, sources: list[str] | None = None) -> xr.Dataset:
+    """As much of a run as its orders need."""
+    kinds = np.array([ORDER_KINDS.index(order.kind) for order in orders], dtype="i1")
+    columns = {
+        "order_time": np.array([order.time for order in orders], dtype="datetime64[ns]"),
+        "order_gate": np.array([order.gate for order in orders], dtype=object),
+        "order_value": np.array([order.value for order in orders], dtype=float),
+        "order_opening_before": np.array([order.opening_before for order in orders], dtype=float),
+    }
+    run = xr.Dataset({name: ("order", values) for name, values in columns.items()}, {"gate": GATES})
+    run["order_kind"] = ("order", kinds, {"flag_meanings": " ".join(ORDER_KINDS)})
+    return run if sources is None else run.assign(order_source=("order", np.array(sources, dtype=object)))
+
+
+def test_equal_schedules_have_no_difference():
+    run = run_of(order("06:00"), order("07:00", "by", 0.1))
+    difference = schedule_difference(run, run)
+    assert (difference.orders, difference.alike, difference.rule_moves) == ((), 2, ())
+
+
+@pytest.mark.parametrize(
+    ("first", "other"),
+    [
+        ([order("07:00", "by", 0.10)], [order("07:20", "by", 0.06)]),
+        ([order("07:00")], [order("09:55")]),
+        ([order("07:00", value=0.4)], [order("07:00", value=0.9)]),
+        ([order("07:00", "by", 0.1)], [order("07:00", "discharge", 8.0)]),
+    ],
+    ids=["moved in time and size", "moved by hours", "another size", "another kind"],
+)
+def test_near_orders_are_told_as_one_that_was_changed(first, other):
+    assert paired_orders(first, other) == [(first[0], other[0])]
+
+
+@pytest.mark.parametrize(
+    ("first", "other"),
+    [
+        ([order("06:00", value=0.4)], [order("09:00", value=0.5)]),
+        ([order("06:00", "by", 0.1)], [order("07:30", "by", -0.1)]),
+    ],
+    ids=["far in time", "in the other sense"],
+)
+def test_orders_far_apart_are_one_dropped_and_one_added(first, other):
+    assert paired_orders(first, other) == [(first[0], None), (None, other[0])]
+
+
+def test_an_added_order_leaves_the_others_their_partners():
+    steps = [order("06:00", value=0.4), order("07:00", value=0.5), order("08:00", value=0.6)]
+    added = order("06:30", value=0.45)
+    assert paired_orders(steps, [steps[0], added, *steps[1:]]) == [
+        (steps[0], steps[0]),
+        (None, added),
+        (steps[1], steps[1]),
+        (steps[2], steps[2]),
+    ]
+
+
+def test_a_dropped_order_at_the_start_is_seen():
+    steps = [order("06:00", value=0.4), order("06:10", value=0.5)]
+    assert paired_orders(steps, steps[1:]) == [(steps[0], None), (steps[1], steps[1])]
+
+
+def test_pairs_cost_no_more_than_any_other_pairing_that_does_not_cross():
+    """Against all pairings of short schedules, by brute force."""
+    rng = np.random.default_rng(5)
+    for _ in range(60):
+        first, other = ([random_order(rng) for _ in range(rng.integers(0, 5))] for _ in range(2))
+        first, other = (sorted(orders, key=lambda one: one.time) for orders in (first, other))
+        assert cost_of(paired_orders(first, other)) == pytest.approx(least_cost(first, other))
+
+
+def random_order(rng: np.random.Generator) -> GateOrder:
+    return order(f"{rng.integers(5, 9):02d}:{rng.integers(0, 60):02d}", "by", float(rng.choice([-0.1, 0.1, 0.2])))
+
+
+def cost_of(pairs: list) -> float:
+    return sum(1.5 if None in pair else apart(*pair) for pair in pairs)
+
+
+def apart(first: GateOrder, other: GateOrder) -> float:
+    hours = abs(float((other.time - first.time) / np.timedelta64(1, "h")))
+    return hours + (0.0 if first.value == other.value else 2.0 if first.value * other.value < 0 else 0.5)
+
+
+def least_cost(first: list[GateOrder], other: list[GateOrder]) -> float:
+    if not first or not other:
+        return 1.5 * (len(first) + len(other))
+    return min(
+        1.5 + least_cost(first[1:], other),
+        1.5 + least_cost(first, other[1:]),
+        apart(first[0], other[0]) + least_cost(first[1:], other[1:]),
+    )
+
+
+def test_each_gate_is_compared_by_itself_from_the_head_down():
+    first = run_of(order("06:00", gate="Mill check"), order("06:00", gate="Orchard check"))
+    assert [one.gate for one in schedule_difference(first, run_of()).orders] == GATES
+    assert schedule_difference(first, run_of()).orders[0] == OrderDifference(
+        "Orchard check", order("06:00", gate="Orchard check"), None
+    )
+
+
+def test_moves_by_rules_are_counted_and_are_no_orders():
+    rule = "hold upstream level"
+    first = run_of(order("06:00"), order("06:05"), sources=["schedule", rule])
+    other = run_of(order("06:00"), *[order("06:05")] * 3, sources=["schedule", rule, rule, rule])
+    difference = schedule_difference(first, other)
+    assert (difference.orders, difference.alike) == ((), 1)
+    assert difference.rule_moves == (RuleMoves(rule, "Mill check", 1, 3),)
