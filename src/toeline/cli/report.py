@@ -6,7 +6,7 @@ from pathlib import Path
 import click
 
 from toeline.cli.input_files import INPUT_FILE, is_run
-from toeline.cli.terminal import show
+from toeline.cli.terminal import note
 from toeline.errors import UsageError
 
 
@@ -26,38 +26,19 @@ def command(runs: tuple[Path, ...], output: Path | None, overwrite: bool) -> Non
     Of several runs of one canal, such as two plans of a day, the page lays them side by side. It holds all it needs:
     any browser opens it, without a network.
     """
-    page = output or Path(f"{runs[0].name.removesuffix('.partial').removesuffix('.nc')}.html")
-    refuse(runs, page, overwrite)
+    from toeline.cli.compare import run_names
+    from toeline.cli.output_files import refuse_page, write_page
     from toeline.report.page.document import report_page
     from toeline.results.dataset import open_run
 
-    with ExitStack() as stack:
-        opened = {str(run): stack.enter_context(open_run(run)) for run in runs}
-        text = report_page(opened)
-    write_page(page, text)
-    show(f"Page: {page}")
-
-
-def refuse(runs: tuple[Path, ...], page: Path, overwrite: bool) -> None:
-    """Raise UsageError where a file is no run, or writing the page would fail or lose something."""
     for run in runs:
         if not is_run(run):
             raise UsageError(f"{run} is no file of results: name what `toeline run` wrote, such as DAY.nc.")
-    if len({run.resolve() for run in runs}) < len(runs):
-        raise UsageError("a run is named twice: name each run once.")
-    if not page.parent.is_dir():
-        raise UsageError(f"there is no directory {page.parent} to write {page.name} in.")
-    if page.resolve() in {run.resolve() for run in runs}:
-        raise UsageError(f"{page} is a run to be shown and would be lost: name another file with -o.")
-    if page.exists() and not overwrite:
-        raise UsageError(f"{page} exists: name another file with -o, or replace it with --overwrite.")
-
-
-def write_page(page: Path, text: str) -> None:
-    """Write the page whole: nothing half-written stands under its name."""
-    unfinished = page.with_name(page.name + ".writing")
-    try:
-        unfinished.write_text(text, encoding="utf-8")
-        unfinished.replace(page)
-    finally:
-        unfinished.unlink(missing_ok=True)
+    page = output or Path(f"{runs[0].name.removesuffix('.partial').removesuffix('.nc')}.html")
+    refuse_page(page, runs, overwrite)
+    with ExitStack() as stack:
+        opened = [stack.enter_context(open_run(run)) for run in runs]
+        names = run_names([(file, run.attrs["plan"]) for file, run in zip(runs, opened, strict=True)])
+        text = report_page(dict(zip(names, opened, strict=True)))
+    write_page(page, text)
+    note(f"Written: {page}")

@@ -18,6 +18,7 @@ GATE_SERIES: dict[str, tuple[str, Dimension]] = {
     "discharge": ("gate_discharge", "discharge"),
     "headwater": ("gate_headwater_level", "length"),
     "tailwater": ("gate_tailwater_level", "length"),
+    "modular_limit": ("gate_modular_limit_level", "length"),
     "jet_depth": ("jet_depth", "length"),
     "roller_depth": ("roller_depth", "length"),
     "toe": ("jump_toe_distance", "length"),

@@ -5,6 +5,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from importlib.resources import files
+from string import ascii_uppercase
 from typing import Any
 
 import jinja2
@@ -18,9 +19,11 @@ from bokeh.resources import Resources
 from markupsafe import Markup
 
 from toeline.errors import UsageError
+from toeline.findings.comparison import compare
 from toeline.findings.incidents import Incident, incidents
 from toeline.findings.series import meanings, names
 from toeline.report import style
+from toeline.report.incidents import NOTHING_FOUND, SETTLING
 from toeline.report.page.arrays import places, run_arrays, start_milliseconds
 from toeline.report.page.gate_figures import close_up, gate_axes, traces
 from toeline.report.page.hazard_strips import hazard_strips, hours_of_strips
@@ -33,10 +36,11 @@ from toeline.report.page.rows import (
     hour_tables,
     indicator_tables,
     ledger_table,
-    limit_table,
+    limit_tables,
     margin_table,
     order_table,
 )
+from toeline.report.comparison import contrast_words
 from toeline.report.page.verdict import floor_hazard, headline, incident_rows, people_hazard, wrongs
 from toeline.report.run_clock import RunClock
 from toeline.report.run_identity import run_identity
@@ -47,7 +51,7 @@ MOST_RUNS = 4
 
 TRACE_FIGURES = (
     ("strip", "Jump: from its toe to its end", "Distance of the jump from the gate against time"),
-    ("tailwater", "Tailwater against its two limits", "Tailwater level against time, with modular limit and protection limit"),
+    ("tailwater", "Tailwater against its limits", "Tailwater level against time, with the levels that drown the flow and the jump, and the protection limit"),
     ("headwater", "Headwater against the target of the pool above", "Headwater level against time, with the target level"),
     ("opening", "Opening as moved", "Opening of the gate against time"),
 )  # fmt: skip
@@ -97,27 +101,32 @@ def _refuse(runs: Mapping[str, xr.Dataset]) -> None:
 
 
 def _shown_runs(runs: Mapping[str, xr.Dataset]) -> list[ShownRun]:
-    loaded = [run.load() for run in runs.values()]
-    plans = [run_identity(run).plan for run in loaded]
-    told = plans if len(set(plans)) == len(plans) else list(runs)
-    keys = [f"{letter}: " for letter in "ABCD"] if len(loaded) > 1 else [""]
-    return [ShownRun(place, keys[place], told[place], run, incidents(run)) for place, run in enumerate(loaded)]
+    keys = [f"{letter}: " for letter in ascii_uppercase] if len(runs) > 1 else [""]
+    return [
+        ShownRun(place, keys[place], name if len(runs) > 1 else run_identity(run).plan, run.load(), incidents(run))
+        for place, (name, run) in enumerate(runs.items())
+    ]
 
 
 def _words(shown: Sequence[ShownRun], moments: Moments, display: Display) -> dict[str, Any]:
     first = shown[0]
     identity = run_identity(first.run)
+    length = max(each.run["time"].values[-1] - each.run["time"].values[0] for each in shown)
     return {
         "title": f"{identity.day}, {', '.join(each.name for each in shown)}: {identity.canal}",
         "identity": identity,
         "runs": [_run_words(each, moments, display) for each in shown],
         "gates": names(first.run["gate"]),
+        "strips": list(zip(*(hazard_strips(each.run, length) for each in shown), strict=True)),
+        "hours": hours_of_strips(first.run, length),
+        "nothing_found": NOTHING_FOUND,
+        "settling": SETTLING,
         "last_moment": len(moments.labels) - 1,
         "number_parts": _number_parts(shown, display),
         "caution": first.run.attrs["comment"],
         "drawn_from": _drawn_from(shown, moments),
         "trace_figures": TRACE_FIGURES,
-        "differences": "",
+        "differences": _differences(shown, display),
     }
 
 
@@ -133,8 +142,6 @@ def _run_words(each: ShownRun, moments: Moments, display: Display) -> dict[str, 
         "wrongs": wrong,
         "floor": floor_hazard(each.run, display),
         "people": people_hazard(each.run),
-        "strips": hazard_strips(each.run),
-        "hours": hours_of_strips(each.run),
         "incidents": incident_rows(each.run, each.found, moments, display),
         "facts": f"{about['title']}; {about['outcome']}; made by {about['history']}; input hash {about['input_hash']}",
         "day_file": about["day_file"],
@@ -150,9 +157,18 @@ def _number_parts(shown: Sequence[ShownRun], display: Display) -> list[tuple[str
         "Water ledger": lambda each: [ledger_table(each.run)],
         "Orders": lambda each: [order_table(each.run, each.clock, display)],
         "Indicators": lambda each: indicator_tables(each.run, display),
-        "Limits": lambda each: [limit_table(each.run, display)],
+        "Limits": lambda each: limit_tables(each.run, each.clock, display),
     }
     return [(heading, [tables(each) for each in shown]) for heading, tables in parts.items()]
+
+
+def _differences(shown: Sequence[ShownRun], display: Display) -> list[tuple[str, list[str]]]:
+    """In sentences how every other run differs from the first; empty for a single run."""
+    if len(shown) == 1:
+        return []
+    comparison = compare({each.name: each.run for each in shown})
+    told = [contrast_words(comparison, place, shown[0].clock, display) for place in range(1, len(shown))]
+    return [(f"{each.key}{each.name} against {shown[0].key}{shown[0].name}", sentences) for each, sentences in zip(shown[1:], told, strict=True)]
 
 
 def _drawn_from(shown: Sequence[ShownRun], moments: Moments) -> str:
@@ -196,8 +212,8 @@ def _figures(shown: Sequence[ShownRun], moments: Moments, display: Display) -> d
         "divs": {name: Markup(div) for name, div in divs.items()},
         "state_legend": legend(style.JUMP_STATES.values()),
         "profile_legend": legend([*lines, style.BED, style.LINING, style.BANK, style.TARGET, style.LEAF, style.GROUND]),
-        "close_up_legend": legend([style.WATER_BODY, *list(style.JUMP_STATES.values())[1:], style.LEAF, style.APRON, style.PROTECTION, style.MODULAR_LIMIT, style.PROTECTION_LIMIT]),
-        "trace_legend": legend([*list(style.JUMP_STATES.values())[1:], style.APRON, style.PROTECTION, style.SETTLING, style.TAILWATER, style.MODULAR_LIMIT, style.PROTECTION_LIMIT, style.HEADWATER, style.TARGET, style.OPENING]),
+        "close_up_legend": legend([style.WATER_BODY, *list(style.JUMP_STATES.values())[1:], style.LEAF, style.APRON, style.PROTECTION, style.MODULAR_LIMIT, style.DROWNING_LIMIT, style.PROTECTION_LIMIT]),
+        "trace_legend": legend([*list(style.JUMP_STATES.values())[1:], style.APRON, style.PROTECTION, style.SETTLING, style.TAILWATER, style.MODULAR_LIMIT, style.DROWNING_LIMIT, style.PROTECTION_LIMIT, style.HEADWATER, style.TARGET, style.OPENING]),
     }  # fmt: skip
 
 
@@ -212,6 +228,7 @@ def _browser_words(run: xr.Dataset, lines: Sequence[style.Line], display: Displa
         "hatches": [style.JUMP_STATES[state].hatch or " " for state in states],
         "markers": [JUMP_MARKERS[state] for state in states],
         "plans": [line.colour for line in lines],
+        "names": [line.word for line in lines],
         "length": style.unit_text("length", display),
         "discharge": style.unit_text("discharge", display),
         "discharge_decimals": 3 if display.system is UnitSystem.metric else 1,

@@ -26,6 +26,7 @@ from toeline.report.style import (
     HEADWATER,
     INK,
     LEAF,
+    DROWNING_LIMIT,
     MODULAR_LIMIT,
     OPENING,
     PROTECTION,
@@ -41,9 +42,6 @@ from toeline.report.style import (
 from toeline.units import Display
 
 CLOSE_UP_HEIGHT, STRIP_HEIGHT, TAILWATER_HEIGHT, SMALL_HEIGHT = 330, 240, 230, 170
-CLOCK = DatetimeTickFormatter(
-    minutes="%H:%M", hourmin="%H:%M", hours="%H:%M", days="%a %d %b", months="%b %Y", strip_leading_zeros=False,
-)  # fmt: skip
 
 
 @dataclass(frozen=True)
@@ -113,7 +111,7 @@ def close_up(axes: GateAxes, display: Display, name: str) -> CloseUp:
     shapes = {name: source_of(xs=[], ys=[], colour=[], hatch=[]) for name in looks}
     for name, look in looks.items():
         drawn.patches("xs", "ys", source=shapes[name], line_color=None, **look)
-    limits = {"surface": WATER, "floor": BED, "modular": MODULAR_LIMIT, "protection_limit": PROTECTION_LIMIT}
+    limits = {"surface": WATER, "floor": BED, "modular": MODULAR_LIMIT, "drowning": DROWNING_LIMIT, "protection_limit": PROTECTION_LIMIT}
     for name, line in limits.items():
         shapes[name] = source_of(x=[], y=[])
         drawn.line("x", "y", source=shapes[name], **line_look(line))
@@ -122,8 +120,8 @@ def close_up(axes: GateAxes, display: Display, name: str) -> CloseUp:
 
 def traces(axes: GateAxes, display: Display, name: str) -> Traces:
     """The gate through the run, times below one another."""
-    columns = ("time", "clock", "toe", "end", "tailwater", "modular", "protection", "headwater", "opening", "discharge")
-    series = source_of(**{column: [] for column in columns}, jump=[], flow=[])
+    columns = ("time", "clock", "toe", "end", "tailwater", "modular", "drowning", "protection", "headwater", "opening", "discharge")
+    series = source_of(f"series_{name}", **{column: [] for column in columns}, jump=[], flow=[])
     bands = source_of(xs=[], ys=[], colour=[], hatch=[])
     settling = source_of(left=[], right=[], top=[])
     strip = _over_time(STRIP_HEIGHT, axes, axes.jump_distances, axis_text("distance from the gate", "length", display), f"strip_{name}")
@@ -134,7 +132,7 @@ def traces(axes: GateAxes, display: Display, name: str) -> Traces:
     strip.add_layout(protection)
     strip.add_layout(apron)
     _draw_jump(strip, series, bands, settling, display)
-    _draw_levels(tailwater, series, {"tailwater": TAILWATER, "modular": MODULAR_LIMIT, "protection": PROTECTION_LIMIT}, display)
+    _draw_levels(tailwater, series, {"tailwater": TAILWATER, "modular": MODULAR_LIMIT, "drowning": DROWNING_LIMIT, "protection": PROTECTION_LIMIT}, display)
     _draw_levels(headwater, series, {"headwater": HEADWATER}, display)
     target = Span(location=0.0, dimension="width", **line_look(TARGET))
     headwater.add_layout(target)
@@ -167,7 +165,9 @@ def _draw_levels(drawn: figure, series: ColumnDataSource, lines: dict[str, objec
 
 def _over_time(height: int, axes: GateAxes, values: Range1d, label: str, name: str) -> figure:
     drawn = empty_figure(height, x_range=axes.times, y_range=values, x_axis_type="datetime", y_axis_label=label, name=name)
-    drawn.xaxis.formatter = CLOCK
+    drawn.xaxis.formatter = DatetimeTickFormatter(
+        minutes="%H:%M", hourmin="%H:%M", hours="%H:%M", days="%a %d %b", months="%b %Y", strip_leading_zeros=False
+    )
     pan, zoom = PanTool(dimensions="width"), WheelZoomTool(dimensions="width", modifiers="ctrl")
     drawn.add_tools(pan, zoom)
     drawn.toolbar.update(active_drag=pan, active_scroll=zoom)

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 
 import numpy as np
 import xarray as xr
-from markupsafe import Markup
+from markupsafe import Markup, escape
 
 from toeline.findings.jumps import GateJumps, gate_jumps
 from toeline.findings.series import meanings
@@ -29,46 +29,45 @@ class HazardStrip:
     drawing: Markup
 
 
-def hazard_strips(run: xr.Dataset) -> list[HazardStrip]:
-    """All gates from the head down."""
+def hazard_strips(run: xr.Dataset, length: np.timedelta64) -> list[HazardStrip]:
+    """All gates from the head down; `length` is the time for which a whole strip stands."""
     return [
         HazardStrip(
             jumps.gate,
-            _hours(jumps.beyond_protection_hours),
-            _hours(jumps.roller_hours),
-            _drawing(run["jump_state"].isel(gate=place), _words(jumps)),
+            _hours(jumps, "beyond_protection", "swept_out_of_pool"),
+            _hours(jumps, "drowned"),
+            _drawing(run["jump_state"].isel(gate=place), length, _words(jumps)),
         )
         for place, jumps in enumerate(gate_jumps(run))
     ]
 
 
-def hours_of_strips(run: xr.Dataset) -> list[tuple[float, str]]:
-    """Where clock times stand under a strip, as parts of its width."""
-    clock, times = RunClock(run), run["time"].values
-    if times.size < 2:
-        return [(0.0, clock.at(times[0]))]
-    return [(part, clock.at(times[0] + (times[-1] - times[0]) * round(part * 24) // 24)) for part in (0.0, 0.25, 0.5, 0.75, 1.0)]
+def hours_of_strips(run: xr.Dataset, length: np.timedelta64) -> list[tuple[float, str]]:
+    """Where clock times of a run stand under strips of this length, as parts of their width."""
+    clock, start = RunClock(run), run["time"].values[0]
+    parts = (0.0, 0.25, 0.5, 0.75, 1.0) if length else (0.0,)
+    return [(part, clock.at(start + length * round(part * 4) // 4)) for part in parts]
 
 
-def _drawing(states: xr.DataArray, words: str) -> Markup:
+def _drawing(states: xr.DataArray, length: np.timedelta64, words: str) -> Markup:
     known = [JUMP_STATES[meaning] for meaning in meanings(states)]
-    pieces = sorted(_pieces(states), key=lambda piece: _is_floor_hazard(known[piece[0]], known))
+    pieces = sorted(_pieces(states, length), key=lambda piece: _is_floor_hazard(known[piece[0]], known))
     shapes = "".join(shape for state, begin, end in pieces for shape in _piece(known[state], begin, end, known))
     return Markup(
-        f'<svg class="strip" viewBox="0 0 {WIDTH} {HEIGHT}" preserveAspectRatio="none" role="img" aria-label="{words}">'
+        f'<svg class="strip" viewBox="0 0 {WIDTH} {HEIGHT}" preserveAspectRatio="none" role="img" aria-label="{escape(words)}">'
         f'<rect width="{WIDTH}" height="{HEIGHT}" fill="none" stroke="{RULE}"/>{shapes}</svg>'
     )
 
 
-def _pieces(states: xr.DataArray) -> Iterator[tuple[int, float, float]]:
+def _pieces(states: xr.DataArray, length: np.timedelta64) -> Iterator[tuple[int, float, float]]:
     """Spells of one state: the state, and where it begins and ends on the strip; a step stands for half of its neighbours."""
     values, times = states.values, states["time"].values
     if values.size == 1:
         yield int(values[0]), 0.0, float(WIDTH)
         return
-    along = (times - times[0]) / (times[-1] - times[0]) * WIDTH
+    along = (times - times[0]) / length * WIDTH
     changes = np.flatnonzero(np.diff(values)) + 1
-    borders = [0.0, *((along[changes - 1] + along[changes]) / 2).tolist(), float(WIDTH)]
+    borders = [0.0, *((along[changes - 1] + along[changes]) / 2).tolist(), float(along[-1])]
     for row, begin, end in zip([0, *changes.tolist()], borders, borders[1:], strict=False):
         yield int(values[row]), begin, end
 
@@ -88,9 +87,10 @@ def _is_floor_hazard(area: Area, known: list[Area]) -> bool:
 
 
 def _words(jumps: GateJumps) -> str:
-    held = (f"{JUMP_STATES[state].word} {_hours(hours)}" for state, hours in jumps.jump_state_hours.items() if hours)
-    return "; ".join(held) or "one instant"
+    held = (f"{JUMP_STATES[state].word} {duration_text(hours * 3600)}" for state, hours in jumps.jump_state_hours.items() if hours)
+    return f"{jumps.gate}: {'; '.join(held) or 'one instant'}"
 
 
-def _hours(hours: float) -> str:
+def _hours(jumps: GateJumps, *states: str) -> str:
+    hours = sum(jumps.jump_state_hours[state] for state in states)
     return duration_text(hours * 3600) if hours else "-"

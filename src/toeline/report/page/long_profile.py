@@ -57,12 +57,11 @@ def long_profile(runs: Sequence[xr.Dataset], lines: Sequence[Line], display: Dis
     pan, zoom = PanTool(dimensions="width"), WheelZoomTool(dimensions="width", modifiers="ctrl")
     drawn.add_tools(pan, zoom)
     drawn.toolbar.update(active_drag=pan, active_scroll=zoom)
-    water = [source_of(**_nodes(run, factor)) for run in runs]
+    water = [source_of(f"water_{place}", **_nodes(run, factor)) for place, run in enumerate(runs)]
     gates = [source_of(**_gates(run, drawn.y_range.end, place, factor)) for place, run in enumerate(runs)]
     surfaces = [source_of(x=np.empty(0), y=np.empty(0)) for _ in runs]
     rollers = [source_of(xs=[], ys=[], colour=[], hatch=[]) for _ in runs]
-    if len(runs) == 1:
-        drawn.varea("chainage", "bed", "water_level", source=water[0], fill_color=WATER_BODY.colour, fill_alpha=WATER_BODY.opacity)
+    drawn.varea("chainage", "bed", "water_level", source=water[0], fill_color=WATER_BODY.colour, fill_alpha=WATER_BODY.opacity)
     for sources in zip(lines, water, surfaces, rollers, strict=True):
         _draw_water(drawn, *sources, display)
     _draw_canal(drawn, runs[0], water[0], factor)
@@ -132,7 +131,7 @@ def _gates(run: xr.Dataset, highest: float, place: int, factor: float) -> dict[s
         "sill": run["gate_sill_level"].values / factor,
         "lip": np.full(count, np.nan),
         "top": np.full(count, np.nan),
-        "lane": np.full(count, highest - (0.24 - 0.05 * place) * height),
+        "lane": np.full(count, highest - (0.24 + 0.05 * place) * height),
         "names_at": np.full(count, highest - 0.20 * height),
         "marker": ["dash"] * count,
         "colour": [PAPER] * count,
@@ -152,4 +151,4 @@ def _levels(runs: Sequence[xr.Dataset], factor: float) -> Range1d:
     floors = np.concatenate([run[name].values for run in runs for name in ("bed_level", "gate_floor_level")])
     lowest, highest = float(np.nanmin(floors)) / factor, float(np.nanmax([*tops, *floors])) / factor
     height = max(highest - lowest, 1.0)
-    return Range1d(lowest - 0.06 * height, highest + ROOM_FOR_NAMES * height)
+    return Range1d(lowest - 0.06 * height, highest + (ROOM_FOR_NAMES + 0.07 * (len(runs) - 1)) * height)

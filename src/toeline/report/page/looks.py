@@ -43,7 +43,7 @@ def empty_figure(height: int, **options: Any) -> figure:
     """A figure without a line on it: as wide as its place, quiet axes, no tool bar; drag pans, ctrl and wheel zoom."""
     drawn = figure(
         height=height, sizing_mode="stretch_width", toolbar_location=None, tools="", background_fill_color=PAPER,
-        border_fill_color=PAPER, outline_line_color=None, min_border_left=74, min_border_right=24, **options,
+        border_fill_color=PAPER, outline_line_color=None, min_border_left=84, min_border_right=24, **options,
     )  # fmt: skip
     drawn.yaxis.axis_label_standoff = 8
     drawn.stylesheets = [".bk-events { touch-action: pan-y !important; }"]
@@ -59,5 +59,6 @@ def empty_figure(height: int, **options: Any) -> figure:
     return drawn
 
 
-def source_of(**columns: Any) -> ColumnDataSource:
-    return ColumnDataSource(columns)
+def source_of(label: str | None = None, /, **columns: Any) -> ColumnDataSource:
+    """Columns to be drawn; by its label a reader of the page finds them again."""
+    return ColumnDataSource(columns, name=label)

@@ -1,6 +1,5 @@
 """The tables of the page: a run's numbers in words, as rows under a heading."""
 
-import json
 from collections.abc import Sequence
 from dataclasses import dataclass
 
@@ -11,11 +10,14 @@ from toeline.findings.indicator import Indicator
 from toeline.findings.indicators import indicators
 from toeline.findings.jumps import gate_jumps
 from toeline.findings.ledger import acre_feet, ledger
+from toeline.findings.limit_incidents import limit_uses
 from toeline.findings.series import Extreme, meanings, names
 from toeline.report.clock import duration_text
-from toeline.report.incidents import incident_number
+from toeline.report.limits import limit_words
 from toeline.report.order_words import order_words
 from toeline.report.run_clock import RunClock
+from toeline.report.values import value_text
+from toeline.results.encoding import surface_names_of
 from toeline.units import Display
 
 NO_SAFER = "A value that is better is no safer."
@@ -110,7 +112,7 @@ def indicator_tables(run: xr.Dataset, display: Display) -> list[Table]:
 
 
 def _indicator_table(heading: str, found: Sequence[Indicator], display: Display) -> Table:
-    values = {(one.name, one.where): indicator_words(one.value, one.unit, display) for one in found}
+    values = {(one.name, one.where): value_text(one.value, one.unit, display) for one in found}
     listed, places = list(dict.fromkeys(one.name for one in found)), list(dict.fromkeys(one.where for one in found))
     wishes = {one.name: f"{one.name} ({one.better} is better)" if one.better != "none" else one.name for one in found}
     if places == [""]:
@@ -120,8 +122,27 @@ def _indicator_table(heading: str, found: Sequence[Indicator], display: Display)
     return Table(f"Indicators, {heading}", ("place", *(wishes[name] for name in listed)), rows)
 
 
-def limit_table(run: xr.Dataset, display: Display) -> Table:
-    """What every value was held against, and who says so."""
+def limit_tables(run: xr.Dataset, clock: RunClock, display: Display) -> list[Table]:
+    """What every value was held against, and who says so: the owner's limits, then those of the canal itself."""
+    return [table for table in (_owner_limits(run, clock, display), _canal_limits(run, display)) if table.rows]
+
+
+def _owner_limits(run: xr.Dataset, clock: RunClock, display: Display) -> Table:
+    everything = {kind: names(run[kind]) for kind in ("pool", "gate", "offtake")} | {"surface": surface_names_of(run.attrs)}
+    rows = tuple(
+        (
+            limit_words(use.limit, everything, display),
+            use.limit.source,
+            "-" if np.isnan(use.worst.value) else f"{use.where} {clock.window(use.worst.time, use.limit.window)}",
+            value_text(use.worst.value, use.limit.unit, display),
+            "yes" if use.room < 0.0 else "no",
+        )
+        for use in limit_uses(run)
+    )
+    return Table("The owner's limits, and how near the run came", ("limit", "source", "nearest", "value", "passed"), rows, words=3)
+
+
+def _canal_limits(run: xr.Dataset, display: Display) -> Table:
     rows = [
         ("end of the protected floor", gate, "surfaces of the canal file", display.length(float(end)))
         for gate, end in zip(names(run["gate"]), run["gate_protection_end"].values, strict=True)
@@ -132,24 +153,7 @@ def limit_table(run: xr.Dataset, display: Display) -> Table:
         for edge in ("bank", "lining")
         if np.isfinite(run[f"{edge}_level"].values).any()
     ]
-    rows += [_owner_limit(limit, display) for limit in json.loads(run.attrs.get("limits", "[]"))]
-    return Table("Limits and their sources", ("limit", "place", "source", "value"), tuple(rows), words=3)
-
-
-def indicator_words(value: float, unit: str, display: Display) -> str:
-    """A value with the unit in which people are shown it."""
-    if unit == "h":
-        return duration_text(value * 3600)
-    if unit in ("m", "m s-1", "m3 s-1", "m3"):
-        return incident_number(value, unit, display)
-    number = f"{value:.0f}" if float(value).is_integer() else f"{value:.3g}"
-    return number if unit == "1" else f"{number} {unit}"
-
-
-def _owner_limit(limit: dict[str, object], display: Display) -> tuple[str, str, str, str]:
-    places = ", ".join(map(str, limit.get("places", ()))) or "whole canal"
-    value = indicator_words(float(str(limit["limit"])), str(limit["unit"]), display)
-    return str(limit["kind"]), places, str(limit["source"]), value
+    return Table("Limits of the canal file", ("limit", "place", "source", "value"), tuple(rows), words=3)
 
 
 def _velocity_limits(run: xr.Dataset, display: Display) -> list[tuple[str, str, str, str]]:

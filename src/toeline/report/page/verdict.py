@@ -8,15 +8,16 @@ import xarray as xr
 
 from toeline.findings.incidents import Incident
 from toeline.findings.jumps import GateJumps, gate_jumps
-from toeline.findings.series import names
+from toeline.findings.series import is_any, names
 from toeline.report.clock import duration_text
-from toeline.report.incidents import NOTHING_FOUND, incident_number, incident_stories
+from toeline.report.incidents import incident_stories
 from toeline.report.layout import counted
 from toeline.report.page.moments import Moments
 from toeline.report.run_clock import RunClock
+from toeline.report.values import value_text
 from toeline.units import Display
 
-PLACES_NAMED = 4
+GATES_NAMED = 4
 
 
 @dataclass(frozen=True)
@@ -70,31 +71,43 @@ def wrongs(run: xr.Dataset, found: Sequence[Incident], moments: Moments, display
 def headline(found: Sequence[Wrong]) -> str:
     """The sum of the verdict, in one sentence."""
     if not found:
-        return NOTHING_FOUND
-    places = list(dict.fromkeys(wrong.where for wrong in found))
-    *others, last = places if len(places) <= PLACES_NAMED else [counted(len(places), "place")]
-    listed = f"{', '.join(others)} and {last}" if others else last
-    return f"{counted(len(found), 'thing')} {'goes' if len(found) == 1 else 'go'} wrong, at {listed}."
+        return "No incident was found."
+    first = found[0]
+    told = f"{first.where}: {first.what}{f', {first.times}' if first.times else ''}."
+    if len(found) == 1:
+        return told
+    places = len({wrong.where for wrong in found})
+    return f"{counted(len(found), 'thing')} go wrong at {counted(places, 'place')}. First {told}"
 
 
 def floor_hazard(run: xr.Dataset, display: Display) -> Hazard:
     """For how long jumps left the protected floor, and by how much the worst one did."""
     gates = gate_jumps(run)
-    hit = [gate for gate in gates if gate.beyond_protection_hours]
+    hit = _in_states(run, gates, "beyond_protection", "swept_out_of_pool")
+    nearest = _nearest(gates, display)
     if not hit:
-        return Hazard("no time", f"At none of {counted(len(gates), 'gate')} did a jump end beyond the protected floor. {_nearest(gates, display)}")
-    worst = max(hit, key=lambda gate: gate.beyond_protection_hours)
-    return Hazard(_hours(worst.beyond_protection_hours), f"At {_of(hit, gates)} the jump ended beyond the protected floor; longest below {worst.gate}. {_nearest(gates, display)}")
+        return Hazard("no time", f"At none of {counted(len(gates), 'gate')} did a jump end beyond the protected floor. {nearest}")
+    longest = max(hit, key=lambda gate: gate.beyond_protection_hours)
+    amount = _hours(longest.beyond_protection_hours)
+    where = f"; longest below {longest.gate}" if len(hit) > 1 else ""
+    return Hazard(amount, f"At {_of(hit, gates)} the jump ended beyond the protected floor{where}. {nearest}")
 
 
 def people_hazard(run: xr.Dataset) -> Hazard:
     """For how long a roller stood at the gates."""
     gates = gate_jumps(run)
-    hit = [gate for gate in gates if gate.roller_hours]
+    hit = _in_states(run, gates, "drowned")
     if not hit:
         return Hazard("no time", f"At none of {counted(len(gates), 'gate')} was the jump drowned. Fast water and free jumps drown people too.")
-    longest = max(gate.roller_hours for gate in hit)
-    return Hazard(_hours(longest), f"At {_of(hit, gates)} the jump was drowned for some time: a roller at the gate that holds people under.")
+    longest = max(hit, key=lambda gate: gate.roller_hours)
+    where = f"; longest below {longest.gate}" if len(hit) > 1 else ""
+    return Hazard(_hours(longest.roller_hours), f"At {_of(hit, gates)} a drowned jump stood as a roller at the gate, which holds people under{where}.")
+
+
+def _in_states(run: xr.Dataset, gates: Sequence[GateJumps], *states: str) -> list[GateJumps]:
+    """The gates whose jump was in one of the states at any step: an instant counts, though it lasts no time."""
+    ever = is_any(run["jump_state"], *states).any(axis=0)
+    return [gate for gate, is_hit in zip(gates, ever, strict=True) if is_hit]
 
 
 def incident_rows(run: xr.Dataset, found: Sequence[Incident], moments: Moments, display: Display) -> list[IncidentRow]:
@@ -106,7 +119,7 @@ def incident_rows(run: xr.Dataset, found: Sequence[Incident], moments: Moments, 
             one.where,
             clock.span(one.start, one.end) if one.end > one.start else (clock.at(one.start) if not np.isnat(one.start) else "-"),
             _worst(one, clock, display),
-            _number(one.limit, one.unit, display),
+            value_text(one.limit, one.unit, display),
             one.source,
             link_to(one, run, moments),
         )
@@ -122,16 +135,18 @@ def link_to(incident: Incident, run: xr.Dataset, moments: Moments) -> Jump | Non
 
 
 def _gate_of(where: str, run: xr.Dataset) -> int:
-    gates, above = names(run["gate"]), names(run["gate_upstream_pool"])
-    pools = dict(zip(names(run["offtake"]), names(run["offtake_pool"]), strict=True))
-    pool = pools.get(where, where)
-    if where in gates:
-        return gates.index(where)
-    return above.index(pool) if pool in above else 0
+    """The gate at a place; of a pool or an offtake the one that closes the pool, of a pool's upper end the one above."""
+    offtakes = dict(zip(names(run["offtake"]), names(run["offtake_pool"]), strict=True))
+    place, _, end = where.partition(", ")
+    neighbours = names(run["gate_downstream_pool" if end == "upper end" else "gate_upstream_pool"])
+    for listed, wanted in ((names(run["gate"]), where), (neighbours, offtakes.get(where, place))):
+        if wanted in listed:
+            return listed.index(wanted)
+    return 0
 
 
 def _of(hit: Sequence[GateJumps], gates: Sequence[GateJumps]) -> str:
-    listed = f" ({', '.join(gate.gate for gate in hit)})" if len(hit) <= PLACES_NAMED else ""
+    listed = f" ({', '.join(gate.gate for gate in hit)})" if len(hit) <= GATES_NAMED else ""
     return f"{len(hit)} of {counted(len(gates), 'gate')}{listed}"
 
 
@@ -147,13 +162,9 @@ def _nearest(gates: Sequence[GateJumps], display: Display) -> str:
 
 
 def _worst(incident: Incident, clock: RunClock, display: Display) -> str:
-    value = _number(incident.worst, incident.unit, display)
-    return value if value == "-" else f"{value} at {clock.at(incident.worst_time)}"
-
-
-def _number(value: float, unit: str, display: Display) -> str:
-    return incident_number(value, unit, display)
+    value = value_text(incident.worst, incident.unit, display)
+    return value if value == "-" else f"{value} {clock.window(incident.worst_time, incident.window)}"
 
 
 def _hours(hours: float) -> str:
-    return duration_text(hours * 3600)
+    return duration_text(hours * 3600) if hours else "an instant"

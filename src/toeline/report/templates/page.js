@@ -24,7 +24,7 @@ function toeline(page) {
     return {
       opening: read("opening"), discharge: read("discharge"), headwater: read("headwater"), tailwater: read("tailwater"),
       jet: read("jet_depth"), roller: read("roller_depth"), toe: read("toe"), end: read("end"),
-      drownedFrom: read("tailwater") - read("tailwater_margin"), leavesBelow: read("tailwater") - read("protection_margin"),
+      modularLimit: read("modular_limit"), drownedFrom: read("tailwater") - read("tailwater_margin"), leavesBelow: read("tailwater") - read("protection_margin"),
       protectionMargin: read("protection_margin"), jump: read("jump_state"), flow: read("gate_flow_state"),
     };
   }
@@ -121,7 +121,8 @@ function toeline(page) {
     shapes.surface.data = { x: line.xs, y: line.ys };
     shapes.floor.data = { x: [left, 0, 0, 2 * wide, 2 * wide, right], y: [above, above, sill, sill, floor, floor] };
     const mark = (level) => ({ x: [axes.distances.end * 0.55, axes.distances.end], y: [level, level] });
-    shapes.modular.data = mark(now.drownedFrom);
+    shapes.modular.data = mark(now.modularLimit);
+    shapes.drowning.data = mark(now.drownedFrom);
     shapes.protection_limit.data = mark(now.leavesBelow);
     document.querySelectorAll(".telling")[place].textContent = telling(now, gate);
   }
@@ -129,7 +130,9 @@ function toeline(page) {
   /* The close-up in a sentence. */
   function telling(now, gate) {
     const flow = `Opening ${withUnit(now.opening)}, ${discharge(now.discharge)} ${words.discharge}, flow ${words.flow_states[now.flow]}.`;
-    const ends = Number.isFinite(now.end) ? ` It ends ${withUnit(now.end)} from the gate; the floor is protected to ${withUnit(canal.protection_end[gate])}.` : "";
+    const floor = `; the floor is protected to ${withUnit(canal.protection_end[gate])}.`;
+    const ends = Number.isFinite(now.end) ? ` It ends ${withUnit(now.end)} from the gate${floor}`
+      : Number.isFinite(now.toe) ? ` Its toe stands ${withUnit(now.toe)} from the gate${floor} Its length is not defined.` : "";
     const margin = !Number.isFinite(now.protectionMargin) ? "" : now.protectionMargin < 0
       ? ` ${withUnit(-now.protectionMargin)} of tailwater is missing.`
       : ` The tailwater could fall ${withUnit(now.protectionMargin)} before it left the protected floor.`;
@@ -141,32 +144,50 @@ function toeline(page) {
   const nowCells = (now) => [words.jump_states[now.jump], words.flow_states[now.flow], length(now.opening), discharge(now.discharge), length(now.headwater), length(now.tailwater), length(now.toe), length(now.end), length(now.protectionMargin)];
 
   /* Writes a table: the heads once, then only the cells that change. */
-  function write(table, heads, rows) {
+  function write(table, heads, rows, wordColumns) {
     if (!table.tHead.rows.length) {
       const head = table.tHead.insertRow();
-      for (const text of heads) { const cell = document.createElement("th"); cell.scope = "col"; cell.textContent = text; head.append(cell); }
+      for (const text of heads) { const cell = document.createElement("th"); cell.scope = "col"; cell.textContent = text; cell.className = head.cells.length < wordColumns ? "" : "number"; head.append(cell); }
     }
     const body = table.tBodies[0];
     while (body.rows.length > rows.length) body.deleteRow(-1);
     rows.forEach((cells, index) => {
       const row = body.rows[index] || body.insertRow();
       cells.forEach((text, column) => {
-        if (!row.cells[column]) row.append(document.createElement(column ? "td" : "th"));
-        if (!column) row.cells[0].scope = "row";
+        if (!row.cells[column]) {
+          const cell = document.createElement(column ? "td" : "th");
+          if (!column) cell.scope = "row";
+          if (column >= wordColumns) cell.className = "number";
+          row.append(cell);
+        }
         if (row.cells[column].textContent !== text) row.cells[column].textContent = text;
       });
     });
   }
 
+  /* All gates, the runs of each below one another; what differs from the first run stands out. */
+  function showNow() {
+    const table = document.querySelector("table.now"), several = runs.length > 1;
+    const cells = canal.name.flatMap((name, gate) => runs.map((run, place) => {
+      const shown = nowCells(readings(run, run.rows[state.moment], gate));
+      return several ? [name, words.names[place], ...shown] : [name, ...shown];
+    }));
+    write(table, several ? ["gate", "run", ...NOW.slice(1)] : NOW, cells, several ? 4 : 3);
+    if (!several) return;
+    cells.forEach((row, index) => row.forEach((text, column) => {
+      const first = cells[index - (index % runs.length)];
+      table.tBodies[0].rows[index].cells[column].classList.toggle("differs", column > 1 && text !== first[column]);
+    }));
+  }
+
   function showTables() {
-    const tables = document.querySelectorAll("table.now"), lines = document.querySelectorAll("table.profile");
+    const lines = document.querySelectorAll("table.profile");
+    showNow();
     runs.forEach((run, place) => {
-      const row = run.rows[state.moment];
-      write(tables[place], NOW, canal.name.map((name, gate) => [name, ...nowCells(readings(run, row, gate))]));
       if (lines[place].closest("details").open) {
         const { chainage, bed, water_level: level, depth } = profile.water[place].data;
         write(lines[place], [`chainage, ${words.length}`, `bed, ${words.length}`, `water level, ${words.length}`, `depth, ${words.length}`],
-          Array.from(chainage, (along, node) => [length(along), length(bed[node]), length(level[node]), length(depth[node])]));
+          Array.from(chainage, (along, node) => [length(along), length(bed[node]), length(level[node]), length(depth[node])]), 0);
       }
     });
   }
@@ -222,8 +243,9 @@ function toeline(page) {
     const levels = all.flatMap((each) => [each.headwater, each.tailwater]);
     spread(axes.close_up_levels, [...levels, [floor - 0.2, canal.sill_level[gate] + canal.max_opening[gate]]], 1);
     const drowns = all.map((each) => minus(each.tailwater, each.tailwater_margin));
+    const modular = all.map((each) => each.modular_limit);
     const leaves = all.map((each) => minus(each.tailwater, each.protection_margin));
-    spread(axes.tailwaters, [...all.map((each) => each.tailwater), ...drowns, ...leaves], 0.1);
+    spread(axes.tailwaters, [...all.map((each) => each.tailwater), ...drowns, ...leaves, ...modular], 0.1);
     spread(axes.headwaters, [...all.map((each) => each.headwater), [canal.target[gate]]], 0.1);
     spread(axes.openings, [...all.map((each) => each.opening), [0]], 0.1);
     runs.forEach((run, place) => showTraces(run, place, all[place], drowns[place], leaves[place], reach));
@@ -237,7 +259,7 @@ function toeline(page) {
     const time = Float64Array.from(run.elapsed, (elapsed) => words.start + elapsed);
     const clocks = Array.from(time, (each) => new Date(each).toISOString().slice(time.length && time[time.length - 1] - time[0] > 86400000 ? 5 : 11, 16).replace("T", " "));
     figure.series.data = {
-      time, clock: clocks, toe: of.toe, end: of.end, tailwater: of.tailwater, modular: drowns, protection: leaves,
+      time, clock: clocks, toe: of.toe, end: of.end, tailwater: of.tailwater, modular: of.modular_limit, drowning: drowns, protection: leaves,
       headwater: of.headwater, opening: of.opening, discharge: of.discharge,
       jump: Array.from(of.jump_state, (each) => words.jump_words[each]), flow: Array.from(of.gate_flow_state, (each) => words.flow_states[each]),
     };
@@ -279,7 +301,7 @@ function toeline(page) {
   function writeThrough(run, place) {
     const table = document.querySelectorAll("table.through")[place];
     if (!table.closest("details").open) return;
-    write(table, ["time", ...NOW.slice(1)], moments.labels.map((label, moment) => [label, ...nowCells(readings(run, run.rows[moment], state.gate))]));
+    write(table, ["time", ...NOW.slice(1)], moments.labels.map((label, moment) => [label, ...nowCells(readings(run, run.rows[moment], state.gate))]), 3);
   }
 
   /* Names that find room beside one another; that of the chosen gate always. */
