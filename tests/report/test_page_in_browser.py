@@ -20,7 +20,9 @@ OPTIONS = (
 DAY = Path(__file__).parents[2] / "scenarios" / "quillmere" / "morning_increase.toml"
 GATE = "Lower check"
 
-pytestmark = pytest.mark.skipif(CHROMIUM is None, reason="no Chromium on this machine; DEVELOPERS.md says how to get one")
+pytestmark = pytest.mark.skipif(
+    CHROMIUM is None, reason="no Chromium on this machine; DEVELOPERS.md says how to get one"
+)
 
 
 @pytest.fixture(scope="module")
@@ -143,7 +145,11 @@ def test_the_numbers_of_the_gates_are_those_of_the_file_at_that_time(page, early
 def test_the_traces_hold_every_output_step_of_the_file(page, early):
     gate = early.sel(gate=GATE)
     page.select_option("#gate", label=GATE)
-    for name, variable in (("end", "jump_end_distance"), ("tailwater", "gate_tailwater_level"), ("opening", "gate_opening")):
+    for name, variable in (
+        ("end", "jump_end_distance"),
+        ("tailwater", "gate_tailwater_level"),
+        ("opening", "gate_opening"),
+    ):
         assert np.array_equal(column(page, "series_0", name), gate[variable].values.astype(np.float32), equal_nan=True)
 
 
@@ -209,7 +215,9 @@ def test_an_accessibility_checker_finds_no_serious_fault(narrow, name):
     from axe_playwright_python.sync_playwright import Axe
 
     faults = Axe().run(narrow[name]).response["violations"]
-    assert [(fault["id"], fault["nodes"][0]["html"]) for fault in faults if fault["impact"] in ("serious", "critical")] == []
+    assert [
+        (fault["id"], fault["nodes"][0]["html"]) for fault in faults if fault["impact"] in ("serious", "critical")
+    ] == []
 
 
 def test_plans_side_by_side_move_together(both, plans):

@@ -2,6 +2,7 @@
 
 import json
 from collections.abc import Sequence
+from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
@@ -32,25 +33,43 @@ MOST_SERIES_VALUES = 80_000
 """How many values one series of all gates may hold (choice); of more output steps some are left out, evenly."""
 
 
-def run_arrays(run: xr.Dataset, moments: Moments, display: Display) -> dict[str, Any]:
-    """All that moves in one run; series along (time, gate) and (profile, node) are flattened, gates and nodes inner.
+@dataclass(frozen=True)
+class RunArrays:
+    """All that moves in one run, at the output steps and long profiles that are kept, in the units shown.
 
-    Where a run is longer than a page can bear, rows between the moments are left out evenly.
+    elapsed          since the start of the run, of every step [ms]
+    series           by name, along (step, gate), flattened
+    rows             the step that is shown at every moment
+    profile_elapsed  since the start of the run, of every profile [ms]
+    water_level      along (profile, node), flattened
+    profiles         the profile that is shown at every moment, the nearest; -1 where there is none
     """
+
+    elapsed: np.ndarray
+    series: dict[str, np.ndarray]
+    rows: np.ndarray
+    profile_elapsed: np.ndarray
+    water_level: np.ndarray
+    profiles: np.ndarray
+    steps_left_out: int
+
+
+def run_arrays(run: xr.Dataset, moments: Moments, display: Display) -> RunArrays:
+    """What a page draws a run from; of a run longer than it can bear, steps between moments are left out evenly."""
     times, profile_times = run["time"].values, run["profile_time"].values
     at_moments = nearest_rows(times, moments.elapsed)
     rows = _kept(times.size, at_moments, MOST_SERIES_VALUES // max(1, run.sizes["gate"]))
     of_profile = _nearest_profiles(times, profile_times, moments.elapsed)
     profiles = np.unique(of_profile[of_profile >= 0])
-    return {
-        "elapsed": _milliseconds(times[rows] - times[0]),
-        "rows": np.searchsorted(rows, at_moments).astype(np.int32),
-        "profiles": np.where(of_profile < 0, -1, np.searchsorted(profiles, of_profile)).astype(np.int32),
-        "profile_elapsed": _milliseconds(profile_times[profiles] - times[0]),
-        "water_level": _shown(run["water_level"].values[profiles], "length", display),
-        "series": _gate_series(run, rows, display),
-        "steps_left_out": int(times.size - rows.size),
-    }
+    return RunArrays(
+        elapsed=_milliseconds(times[rows] - times[0]),
+        series=_gate_series(run, rows, display),
+        rows=np.searchsorted(rows, at_moments).astype(np.int32),
+        profile_elapsed=_milliseconds(profile_times[profiles] - times[0]),
+        water_level=_shown(run["water_level"].values[profiles], "length", display),
+        profiles=np.where(of_profile < 0, -1, np.searchsorted(profiles, of_profile)).astype(np.int32),
+        steps_left_out=int(times.size - rows.size),
+    )
 
 
 def places(run: xr.Dataset, display: Display) -> dict[str, Any]:
@@ -131,5 +150,7 @@ def _target_above(run: xr.Dataset, pool: str) -> float:
 def _level_above(run: xr.Dataset, gate: int) -> float:
     """Level of the bed just above a gate; of its sill where nothing above it is computed."""
     listed, pool = names(run["pool"]), _pools_above(run)[gate]
-    nodes = np.flatnonzero(run["node_pool"].values == listed.index(pool)) if pool in listed else []
-    return float(run["bed_level"].values[nodes[-1]] if len(nodes) else run["gate_sill_level"].values[gate])
+    if pool not in listed:
+        return float(run["gate_sill_level"].values[gate])
+    nodes = np.flatnonzero(run["node_pool"].values == listed.index(pool))
+    return float(run["bed_level"].values[nodes[-1]])

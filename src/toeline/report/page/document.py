@@ -1,7 +1,7 @@
 """The whole page: the parts in their order, the figures with their numbers, and the template that holds them."""
 
 import json
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from importlib.resources import files
@@ -9,28 +9,21 @@ from string import ascii_uppercase
 from typing import Any
 
 import jinja2
-import numpy as np
 import xarray as xr
-from bokeh.document import Document
-from bokeh.embed import components
-from bokeh.events import DocumentReady
-from bokeh.models import CustomJS
 from bokeh.resources import Resources
 from markupsafe import Markup
 
 from toeline.errors import UsageError
 from toeline.findings.comparison import compare
 from toeline.findings.incidents import Incident, incidents
-from toeline.findings.series import meanings, names
+from toeline.findings.series import names
 from toeline.report import style
+from toeline.report.comparison import contrast_words
 from toeline.report.incidents import NOTHING_FOUND, SETTLING
-from toeline.report.page.arrays import places, run_arrays, start_milliseconds
-from toeline.report.page.gate_figures import close_up, gate_axes, traces
 from toeline.report.page.hazard_strips import hazard_strips, hours_of_strips
 from toeline.report.page.legend import hatch_patterns, legend
-from toeline.report.page.long_profile import long_profile
-from toeline.report.page.looks import JUMP_MARKERS
 from toeline.report.page.moments import Moments, moments_of
+from toeline.report.page.moving_figures import moving_figures
 from toeline.report.page.rows import (
     Table,
     hour_tables,
@@ -40,7 +33,6 @@ from toeline.report.page.rows import (
     margin_table,
     order_table,
 )
-from toeline.report.comparison import contrast_words
 from toeline.report.page.verdict import floor_hazard, headline, incident_rows, people_hazard, wrongs
 from toeline.report.run_clock import RunClock
 from toeline.report.run_identity import run_identity
@@ -51,10 +43,19 @@ MOST_RUNS = 4
 
 TRACE_FIGURES = (
     ("strip", "Jump: from its toe to its end", "Distance of the jump from the gate against time"),
-    ("tailwater", "Tailwater against its limits", "Tailwater level against time, with the levels that drown the flow and the jump, and the protection limit"),
-    ("headwater", "Headwater against the target of the pool above", "Headwater level against time, with the target level"),
+    (
+        "tailwater",
+        "Tailwater against its limits",
+        "Tailwater level against time, with the levels that drown the flow and the jump, and the protection limit",
+    ),
+    (
+        "headwater",
+        "Headwater against the target of the pool above",
+        "Headwater level against time, with the target level",
+    ),
     ("opening", "Opening as moved", "Opening of the gate against time"),
-)  # fmt: skip
+)
+"""Figures over time: their names, headings, and what they show in words."""
 
 
 @dataclass(frozen=True)
@@ -82,8 +83,21 @@ def report_page(runs: Mapping[str, xr.Dataset]) -> str:
     display = Display(UnitSystem(next(iter(runs.values())).attrs["units_for_display"]))
     shown = _shown_runs(runs)
     moments = moments_of([each.run for each in shown], [each.found for each in shown])
-    return _environment().get_template("page.html").render(
-        **_words(shown, moments, display), **_figures(shown, moments, display), **_fixed_parts()
+    lines = (
+        [style.plan_line(each.place, f"{each.key}{each.name}") for each in shown] if len(shown) > 1 else [style.WATER]
+    )
+    figures = moving_figures([each.run for each in shown], lines, moments, display)
+    return (
+        _environment()
+        .get_template("page.html")
+        .render(
+            script=figures.script,
+            divs=figures.places,
+            drawn_from=_drawn_from(shown, moments, figures.steps_left_out),
+            **_words(shown, moments, display),
+            **_legends(lines),
+            **_fixed_parts(),
+        )
     )
 
 
@@ -97,7 +111,9 @@ def _refuse(runs: Mapping[str, xr.Dataset]) -> None:
     first, *others = gates
     for other in others:
         if gates[other] != gates[first]:
-            raise UsageError(f"{first} and {other} do not have the same gates: only runs of one canal can be shown together.")
+            raise UsageError(
+                f"{first} and {other} do not have the same gates: only runs of one canal can be shown together."
+            )
 
 
 def _shown_runs(runs: Mapping[str, xr.Dataset]) -> list[ShownRun]:
@@ -124,7 +140,6 @@ def _words(shown: Sequence[ShownRun], moments: Moments, display: Display) -> dic
         "last_moment": len(moments.labels) - 1,
         "number_parts": _number_parts(shown, display),
         "caution": first.run.attrs["comment"],
-        "drawn_from": _drawn_from(shown, moments),
         "trace_figures": TRACE_FIGURES,
         "differences": _differences(shown, display),
     }
@@ -152,7 +167,7 @@ def _run_words(each: ShownRun, moments: Moments, display: Display) -> dict[str, 
 
 def _number_parts(shown: Sequence[ShownRun], display: Display) -> list[tuple[str, list[list[Table]]]]:
     """Every part with its tables, run by run."""
-    parts = {
+    parts: dict[str, Callable[[ShownRun], list[Table]]] = {
         "Margins and hours": lambda each: [margin_table(each.run, each.clock, display), *hour_tables(each.run)],
         "Water ledger": lambda each: [ledger_table(each.run)],
         "Orders": lambda each: [order_table(each.run, each.clock, display)],
@@ -168,70 +183,33 @@ def _differences(shown: Sequence[ShownRun], display: Display) -> list[tuple[str,
         return []
     comparison = compare({each.name: each.run for each in shown})
     told = [contrast_words(comparison, place, shown[0].clock, display) for place in range(1, len(shown))]
-    return [(f"{each.key}{each.name} against {shown[0].key}{shown[0].name}", sentences) for each, sentences in zip(shown[1:], told, strict=True)]
+    return [
+        (f"{each.key}{each.name} against {shown[0].key}{shown[0].name}", sentences)
+        for each, sentences in zip(shown[1:], told, strict=True)
+    ]
 
 
-def _drawn_from(shown: Sequence[ShownRun], moments: Moments) -> str:
+def _drawn_from(shown: Sequence[ShownRun], moments: Moments, steps_left_out: int) -> str:
     """From what the figures are drawn, and what they leave out."""
-    steps = ", ".join(f"{each.run.sizes['time']:,} output steps and {each.run.sizes['profile_time']:,} long profiles" for each in shown)
+    sizes = [each.run.sizes for each in shown]
+    steps = " and ".join(f"{size['time']:,} output steps and {size['profile_time']:,} long profiles" for size in sizes)
+    thinned = f" {steps_left_out:,} output steps between them are left out, evenly." if steps_left_out else ""
     return (
         f"The figures are drawn from {steps}, shown at {len(moments.labels):,} moments: those of the long profiles and "
-        "the worst times of incidents. Every value is one of the file, none is made up between two."
+        f"the worst times of incidents.{thinned} Every value is one of the file, none is made up between two."
     )
 
 
-def _figures(shown: Sequence[ShownRun], moments: Moments, display: Display) -> dict[str, Any]:
-    """The figures as script and places, under the names by which the template calls them."""
-    runs = [each.run for each in shown]
-    lines = [style.WATER] if len(shown) == 1 else [style.plan_line(each.place, f"{each.key}{each.name}") for each in shown]
-    profile = long_profile(runs, lines, display)
-    arrays = [run_arrays(run, moments, display) for run in runs]
-    start = start_milliseconds(runs[0])
-    axes = gate_axes(start, start + max(max(float(array["elapsed"][-1]) for array in arrays), 60_000.0))
-    views = [(close_up(axes, display, f"close_up_{place}"), traces(axes, display, str(place))) for place in range(len(runs))]
-    figures = {"long_profile": profile.figure}
-    for close, trace in views:
-        figures |= {drawn.name: drawn for drawn in (close.figure, trace.strip, trace.tailwater, trace.headwater, trace.opening)}
-    models = {
-        "profile": {"figure": profile.figure, "water": profile.water, "gates": profile.gates, "surfaces": profile.surfaces, "rollers": profile.rollers},
-        "axes": vars(axes),
-        "gate_figures": [{"shapes": close.shapes, "series": trace.series, "bands": trace.bands, "settling": trace.settling, "apron": trace.apron, "protection": trace.protection, "target": trace.target, "cursors": trace.cursors} for close, trace in views],
-        "time_figures": [figure for _, trace in views for figure in (trace.strip, trace.tailwater, trace.headwater, trace.opening)],
-        "runs": arrays,
-        "canal": places(runs[0], display),
-        "moments": {"labels": list(moments.labels), "elapsed": (moments.elapsed / np.timedelta64(1, "ms"))},
-        "words": _browser_words(runs[0], lines, display) | {"start": start},
-    }  # fmt: skip
-    document = Document()
-    for drawn in figures.values():
-        document.add_root(drawn)
-    document.js_on_event(DocumentReady, CustomJS(args={"page": models}, code="toeline(page)"))
-    script, divs = components(figures)
+def _legends(lines: Sequence[style.Line]) -> dict[str, list[tuple[Markup, str]]]:
+    jumps = list(style.JUMP_STATES.values())[1:]
+    floor, limits = (style.APRON, style.PROTECTION), (style.MODULAR_LIMIT, style.DROWNING_LIMIT, style.PROTECTION_LIMIT)
+    levels = (style.TAILWATER, *limits, style.HEADWATER, style.TARGET, style.OPENING)
+    canal = (style.BED, style.LINING, style.BANK, style.TARGET, style.LEAF, style.GROUND)
     return {
-        "script": Markup(script),
-        "divs": {name: Markup(div) for name, div in divs.items()},
         "state_legend": legend(style.JUMP_STATES.values()),
-        "profile_legend": legend([*lines, style.BED, style.LINING, style.BANK, style.TARGET, style.LEAF, style.GROUND]),
-        "close_up_legend": legend([style.WATER_BODY, *list(style.JUMP_STATES.values())[1:], style.LEAF, style.APRON, style.PROTECTION, style.MODULAR_LIMIT, style.DROWNING_LIMIT, style.PROTECTION_LIMIT]),
-        "trace_legend": legend([*list(style.JUMP_STATES.values())[1:], style.APRON, style.PROTECTION, style.SETTLING, style.TAILWATER, style.MODULAR_LIMIT, style.DROWNING_LIMIT, style.PROTECTION_LIMIT, style.HEADWATER, style.TARGET, style.OPENING]),
-    }  # fmt: skip
-
-
-def _browser_words(run: xr.Dataset, lines: Sequence[style.Line], display: Display) -> dict[str, Any]:
-    """Names, looks and units that the browser writes and draws with."""
-    states = meanings(run["jump_state"])
-    return {
-        "jump_states": [state.replace("_", " ") for state in states],
-        "jump_words": [style.JUMP_STATES[state].word for state in states],
-        "flow_states": [state.replace("_", " ") for state in meanings(run["gate_flow_state"])],
-        "colours": [style.JUMP_STATES[state].colour for state in states],
-        "hatches": [style.JUMP_STATES[state].hatch or " " for state in states],
-        "markers": [JUMP_MARKERS[state] for state in states],
-        "plans": [line.colour for line in lines],
-        "names": [line.word for line in lines],
-        "length": style.unit_text("length", display),
-        "discharge": style.unit_text("discharge", display),
-        "discharge_decimals": 3 if display.system is UnitSystem.metric else 1,
+        "profile_legend": legend([*lines, *canal]),
+        "close_up_legend": legend([style.WATER_BODY, *jumps, style.LEAF, *floor, *limits]),
+        "trace_legend": legend([*jumps, *floor, style.SETTLING, *levels]),
     }
 
 

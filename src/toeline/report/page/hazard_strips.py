@@ -54,13 +54,14 @@ def _drawing(states: xr.DataArray, length: np.timedelta64, words: str) -> Markup
     pieces = sorted(_pieces(states, length), key=lambda piece: _is_floor_hazard(known[piece[0]], known))
     shapes = "".join(shape for state, begin, end in pieces for shape in _piece(known[state], begin, end, known))
     return Markup(
-        f'<svg class="strip" viewBox="0 0 {WIDTH} {HEIGHT}" preserveAspectRatio="none" role="img" aria-label="{escape(words)}">'
+        f'<svg class="strip" viewBox="0 0 {WIDTH} {HEIGHT}" preserveAspectRatio="none" role="img" '
+        f'aria-label="{escape(words)}">'
         f'<rect width="{WIDTH}" height="{HEIGHT}" fill="none" stroke="{RULE}"/>{shapes}</svg>'
     )
 
 
 def _pieces(states: xr.DataArray, length: np.timedelta64) -> Iterator[tuple[int, float, float]]:
-    """Spells of one state: the state, and where it begins and ends on the strip; a step stands for half of its neighbours."""
+    """Spells of one state, and where they begin and end on the strip; a step stands for half of its neighbours."""
     values, times = states.values, states["time"].values
     if values.size == 1:
         yield int(values[0]), 0.0, float(WIDTH)
@@ -87,7 +88,11 @@ def _is_floor_hazard(area: Area, known: list[Area]) -> bool:
 
 
 def _words(jumps: GateJumps) -> str:
-    held = (f"{JUMP_STATES[state].word} {duration_text(hours * 3600)}" for state, hours in jumps.jump_state_hours.items() if hours)
+    held = (
+        f"{JUMP_STATES[state].word} {duration_text(hours * 3600)}"
+        for state, hours in jumps.jump_state_hours.items()
+        if hours
+    )
     return f"{jumps.gate}: {'; '.join(held) or 'one instant'}"
 
 

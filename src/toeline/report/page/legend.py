@@ -55,4 +55,7 @@ def _line(line: Line) -> Iterator[str]:
 
 def _area(area: Area) -> Iterator[str]:
     for fill, opacity in ((area.colour, area.opacity), (hatch_fill(area), 1.0)):
-        yield f'<rect x=".5" y=".5" width="29" height="13" fill="{fill}" fill-opacity="{opacity}" stroke="{INK}" stroke-width=".5"/>'
+        yield (
+            f'<rect x=".5" y=".5" width="29" height="13" fill="{fill}" fill-opacity="{opacity}" stroke="{INK}" '
+            'stroke-width=".5"/>'
+        )

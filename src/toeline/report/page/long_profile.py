@@ -6,11 +6,11 @@ from dataclasses import dataclass
 import numpy as np
 import xarray as xr
 from bokeh.core.properties import value
-from bokeh.models import ColumnDataSource, HoverTool, NumeralTickFormatter, PanTool, Range1d, WheelZoomTool
+from bokeh.models import ColumnDataSource, HoverTool, NumeralTickFormatter, Range1d
 from bokeh.plotting import figure
 
 from toeline.findings.series import names
-from toeline.report.page.looks import FONT, area_look, empty_figure, line_look, source_of
+from toeline.report.page.looks import FONT, empty_figure, line_look, source_of, state_look
 from toeline.report.style import (
     BANK,
     BED,
@@ -50,18 +50,22 @@ def long_profile(runs: Sequence[xr.Dataset], lines: Sequence[Line], display: Dis
     """The canal of the first run, with the water of every run in its line; the browser sets what moves."""
     factor = shown_factor("length", display)
     drawn = empty_figure(
-        HEIGHT, x_range=_chainages(runs, factor), y_range=_levels(runs, factor), x_axis_label=axis_text("chainage", "length", display),
-        y_axis_label=axis_text("level", "length", display), name="long_profile",
-    )  # fmt: skip
+        HEIGHT,
+        "width",
+        x_range=_chainages(runs, factor),
+        y_range=_levels(runs, factor),
+        x_axis_label=axis_text("chainage", "length", display),
+        y_axis_label=axis_text("level", "length", display),
+        name="long_profile",
+    )
     drawn.xaxis.formatter = NumeralTickFormatter(format="0,0")
-    pan, zoom = PanTool(dimensions="width"), WheelZoomTool(dimensions="width", modifiers="ctrl")
-    drawn.add_tools(pan, zoom)
-    drawn.toolbar.update(active_drag=pan, active_scroll=zoom)
     water = [source_of(f"water_{place}", **_nodes(run, factor)) for place, run in enumerate(runs)]
     gates = [source_of(**_gates(run, drawn.y_range.end, place, factor)) for place, run in enumerate(runs)]
     surfaces = [source_of(x=np.empty(0), y=np.empty(0)) for _ in runs]
     rollers = [source_of(xs=[], ys=[], colour=[], hatch=[]) for _ in runs]
-    drawn.varea("chainage", "bed", "water_level", source=water[0], fill_color=WATER_BODY.colour, fill_alpha=WATER_BODY.opacity)
+    drawn.varea(
+        "chainage", "bed", "water_level", source=water[0], fill_color=WATER_BODY.colour, fill_alpha=WATER_BODY.opacity
+    )
     for sources in zip(lines, water, surfaces, rollers, strict=True):
         _draw_water(drawn, *sources, display)
     _draw_canal(drawn, runs[0], water[0], factor)
@@ -70,9 +74,14 @@ def long_profile(runs: Sequence[xr.Dataset], lines: Sequence[Line], display: Dis
 
 
 def _draw_water(
-    drawn: figure, line: Line, water: ColumnDataSource, surface: ColumnDataSource, roller: ColumnDataSource, display: Display
+    drawn: figure,
+    line: Line,
+    water: ColumnDataSource,
+    surface: ColumnDataSource,
+    roller: ColumnDataSource,
+    display: Display,
 ) -> None:
-    drawn.patches("xs", "ys", source=roller, fill_color="colour", fill_alpha=0.9, line_color=None, hatch_pattern="hatch", hatch_color=INK, hatch_scale=8)
+    drawn.patches("xs", "ys", source=roller, line_color=None, **state_look())
     traced = drawn.line("chainage", "water_line", source=water, **line_look(line))
     drawn.line("x", "y", source=surface, **line_look(line))
     unit = unit_text("length", display)
@@ -109,10 +118,19 @@ def _draw_gates(drawn: figure, gates: Sequence[ColumnDataSource]) -> None:
             line_width=1.2,
         )  # fmt: skip
     drawn.text(
-        "chainage", "names_at", "name", source=first, angle=0.9, x_offset=4, text_font=value(FONT), text_font_size="12px",
+        "chainage",
+        "names_at",
+        "name",
+        source=first,
+        angle=0.9,
+        x_offset=4,
+        text_font=value(FONT),
+        text_font_size="12px",
         text_color=INK,
-    )  # fmt: skip
-    drawn.segment("chainage", "top", "chainage", "lane", source=first, line_color=FAINT_INK, line_width=0.6, line_dash="dotted")
+    )
+    drawn.segment(
+        "chainage", "top", "chainage", "lane", source=first, line_color=FAINT_INK, line_width=0.6, line_dash="dotted"
+    )
 
 
 def _nodes(run: xr.Dataset, factor: float) -> dict[str, np.ndarray]:

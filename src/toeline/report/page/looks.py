@@ -1,8 +1,8 @@
 """The style of results as bokeh wants it."""
 
-from typing import Any
+from typing import Any, Literal
 
-from bokeh.models import ColumnDataSource
+from bokeh.models import ColumnDataSource, PanTool, WheelZoomTool
 from bokeh.plotting import figure
 
 from toeline.report.style import FAINT_INK, INK, PAPER, RULE, Area, Line
@@ -39,14 +39,26 @@ def area_look(area: Area) -> dict[str, Any]:
     }
 
 
-def empty_figure(height: int, **options: Any) -> figure:
-    """A figure without a line on it: as wide as its place, quiet axes, no tool bar; drag pans, ctrl and wheel zoom."""
+def state_look() -> dict[str, Any]:
+    """How areas are drawn that each have the look of a state, in columns `colour` and `hatch`."""
+    return {"fill_color": "colour", "hatch_pattern": "hatch", "hatch_color": INK, "hatch_alpha": 0.45, "hatch_scale": 8}
+
+
+def empty_figure(height: int, pans: Literal["width", "both"], **options: Any) -> figure:
+    """A figure as wide as its place, with quiet axes and no tool bar; drag pans, Ctrl and the wheel zoom.
+
+    On a touch screen a stroke up or down still moves the page.
+    """
     drawn = figure(
         height=height, sizing_mode="stretch_width", toolbar_location=None, tools="", background_fill_color=PAPER,
         border_fill_color=PAPER, outline_line_color=None, min_border_left=84, min_border_right=24, **options,
     )  # fmt: skip
-    drawn.yaxis.axis_label_standoff = 8
+    pan, zoom = PanTool(dimensions=pans), WheelZoomTool(dimensions=pans, modifiers="ctrl")
+    drawn.add_tools(pan, zoom)
+    drawn.toolbar.update(active_drag=pan, active_scroll=zoom)
     drawn.stylesheets = [".bk-events { touch-action: pan-y !important; }"]
+    drawn.yaxis.axis_label_standoff = 8
+    drawn.grid.grid_line_color = RULE
     for axis in drawn.axis:
         axis.update(
             axis_label_text_font=FONT, axis_label_text_font_style="normal", axis_label_text_font_size="13px",
@@ -54,8 +66,6 @@ def empty_figure(height: int, **options: Any) -> figure:
             major_label_text_color=INK, axis_line_color=FAINT_INK, major_tick_line_color=FAINT_INK,
             minor_tick_line_color=None,
         )  # fmt: skip
-    for grid in drawn.grid:
-        grid.grid_line_color = RULE
     return drawn
 
 

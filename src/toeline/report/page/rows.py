@@ -39,7 +39,10 @@ def margin_table(run: xr.Dataset, clock: RunClock, display: Display) -> Table:
     rows = tuple(
         (
             jumps.gate,
-            *(_extreme(extreme, clock, display) for extreme in (jumps.protection_margin, jumps.tailwater_margin, jumps.jump_end_distance)),
+            *(
+                _extreme(extreme, clock, display)
+                for extreme in (jumps.protection_margin, jumps.tailwater_margin, jumps.jump_end_distance)
+            ),
         )
         for jumps in gate_jumps(run)
     )
@@ -48,7 +51,8 @@ def margin_table(run: xr.Dataset, clock: RunClock, display: Display) -> Table:
         ("gate", "protection margin", "tailwater margin", "jump ends at most"),
         rows,
         note="Protection margin: how far the tailwater could still fall before the jump's end passes the protected "
-        "floor; negative: how much is missing. Tailwater margin: how far it stands above the level that drowns the jump.",
+        "floor; negative: how much is missing. Tailwater margin: how far it stands above the level that drowns the "
+        "jump.",
     )
 
 
@@ -88,16 +92,18 @@ def order_table(run: xr.Dataset, clock: RunClock, display: Display) -> Table:
         status, reason = statuses[int(order["order_status"])], str(order["order_reason"].item())
         rows.append(
             (
-                clock.at(order["order_time"].values),
+                clock.at(run["order_time"].values[place]),
                 str(order["order_gate"].item()),
                 order_words(kinds[int(order["order_kind"])], float(order["order_value"]), display),
                 f"{status}: {reason}" if reason else status,
                 display.opening(before),
                 display.opening(after),
-                _instant(order["order_completed"].values, clock),
+                _instant(run["order_completed"].values[place], clock),
             )
         )
-    return Table("Orders", ("time", "gate", "order", "done", "opening before", "after", "leaf stood"), tuple(rows), words=4)
+    return Table(
+        "Orders", ("time", "gate", "order", "done", "opening before", "after", "leaf stood"), tuple(rows), words=4
+    )
 
 
 def indicator_tables(run: xr.Dataset, display: Display) -> list[Table]:
@@ -107,7 +113,10 @@ def indicator_tables(run: xr.Dataset, display: Display) -> list[Table]:
     """
     found = [one for one in indicators(run) if one.better != "none" or one.unit != "h"]
     groups = {"whole canal": [""], **{f"by {place}": names(run[place]) for place in ("offtake", "pool", "gate")}}
-    tables = [_indicator_table(heading, [one for one in found if one.where in places], display) for heading, places in groups.items()]
+    tables = [
+        _indicator_table(heading, [one for one in found if one.where in places], display)
+        for heading, places in groups.items()
+    ]
     return [table for table in tables if table.rows]
 
 
@@ -116,10 +125,10 @@ def _indicator_table(heading: str, found: Sequence[Indicator], display: Display)
     listed, places = list(dict.fromkeys(one.name for one in found)), list(dict.fromkeys(one.where for one in found))
     wishes = {one.name: f"{one.name} ({one.better} is better)" if one.better != "none" else one.name for one in found}
     if places == [""]:
-        rows = tuple((wishes[name], values[name, ""]) for name in listed)
-        return Table(f"Indicators, {heading}", ("indicator", "value"), rows, note=NO_SAFER)
-    rows = tuple((place, *(values.get((name, place), "-") for name in listed)) for place in places)
-    return Table(f"Indicators, {heading}", ("place", *(wishes[name] for name in listed)), rows)
+        rows: list[tuple[str, ...]] = [(wishes[name], values[name, ""]) for name in listed]
+        return Table(f"Indicators, {heading}", ("indicator", "value"), tuple(rows), note=NO_SAFER)
+    rows = [(place, *(values.get((name, place), "-") for name in listed)) for place in places]
+    return Table(f"Indicators, {heading}", ("place", *(wishes[name] for name in listed)), tuple(rows))
 
 
 def limit_tables(run: xr.Dataset, clock: RunClock, display: Display) -> list[Table]:
@@ -128,7 +137,9 @@ def limit_tables(run: xr.Dataset, clock: RunClock, display: Display) -> list[Tab
 
 
 def _owner_limits(run: xr.Dataset, clock: RunClock, display: Display) -> Table:
-    everything = {kind: names(run[kind]) for kind in ("pool", "gate", "offtake")} | {"surface": surface_names_of(run.attrs)}
+    everything = {kind: names(run[kind]) for kind in ("pool", "gate", "offtake")} | {
+        "surface": surface_names_of(run.attrs)
+    }
     rows = tuple(
         (
             limit_words(use.limit, everything, display),
@@ -139,7 +150,12 @@ def _owner_limits(run: xr.Dataset, clock: RunClock, display: Display) -> Table:
         )
         for use in limit_uses(run)
     )
-    return Table("The owner's limits, and how near the run came", ("limit", "source", "nearest", "value", "passed"), rows, words=3)
+    return Table(
+        "The owner's limits, and how near the run came",
+        ("limit", "source", "nearest", "value", "passed"),
+        rows,
+        words=3,
+    )
 
 
 def _canal_limits(run: xr.Dataset, display: Display) -> Table:
@@ -159,14 +175,24 @@ def _canal_limits(run: xr.Dataset, display: Display) -> Table:
 def _velocity_limits(run: xr.Dataset, display: Display) -> list[tuple[str, str, str, str]]:
     surfaces, limits = run["surface"].values, run["velocity_limit"].values
     known = meanings(run["surface"])
-    given = sorted({(int(surface), float(limit)) for surface, limit in zip(surfaces, limits, strict=True) if np.isfinite(limit)})
-    return [("velocity", f"over {known[surface]}", "velocity_limit of the canal file", display.velocity(limit)) for surface, limit in given]
+    given = sorted(
+        {(int(surface), float(limit)) for surface, limit in zip(surfaces, limits, strict=True) if np.isfinite(limit)}
+    )
+    return [
+        ("velocity", f"over {known[surface]}", "velocity_limit of the canal file", display.velocity(limit))
+        for surface, limit in given
+    ]
 
 
 def _hour_table(subject: str, rows: Sequence[tuple[str, dict[str, float]]]) -> Table:
     states = [state for state in rows[0][1] if any(hours[state] for _, hours in rows)]
-    cells = tuple((gate, *(duration_text(hours[state] * 3600) if hours[state] else "-" for state in states)) for gate, hours in rows)
-    return Table(f"Hours in each state of the {subject}", ("gate", *(state.replace("_", " ") for state in states)), cells)
+    cells = tuple(
+        (gate, *(duration_text(hours[state] * 3600) if hours[state] else "-" for state in states))
+        for gate, hours in rows
+    )
+    return Table(
+        f"Hours in each state of the {subject}", ("gate", *(state.replace("_", " ") for state in states)), cells
+    )
 
 
 def _extreme(extreme: Extreme, clock: RunClock, display: Display) -> str:

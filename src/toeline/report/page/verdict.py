@@ -86,7 +86,9 @@ def floor_hazard(run: xr.Dataset, display: Display) -> Hazard:
     hit = _in_states(run, gates, "beyond_protection", "swept_out_of_pool")
     nearest = _nearest(gates, display)
     if not hit:
-        return Hazard("no time", f"At none of {counted(len(gates), 'gate')} did a jump end beyond the protected floor. {nearest}")
+        return Hazard(
+            "no time", f"At none of {counted(len(gates), 'gate')} did a jump end beyond the protected floor. {nearest}"
+        )
     longest = max(hit, key=lambda gate: gate.beyond_protection_hours)
     amount = _hours(longest.beyond_protection_hours)
     where = f"; longest below {longest.gate}" if len(hit) > 1 else ""
@@ -98,16 +100,23 @@ def people_hazard(run: xr.Dataset) -> Hazard:
     gates = gate_jumps(run)
     hit = _in_states(run, gates, "drowned")
     if not hit:
-        return Hazard("no time", f"At none of {counted(len(gates), 'gate')} was the jump drowned. Fast water and free jumps drown people too.")
+        return Hazard(
+            "no time",
+            f"At none of {counted(len(gates), 'gate')} was the jump drowned. Fast water and free jumps drown people "
+            "too.",
+        )
     longest = max(hit, key=lambda gate: gate.roller_hours)
     where = f"; longest below {longest.gate}" if len(hit) > 1 else ""
-    return Hazard(_hours(longest.roller_hours), f"At {_of(hit, gates)} a drowned jump stood as a roller at the gate, which holds people under{where}.")
+    return Hazard(
+        _hours(longest.roller_hours),
+        f"At {_of(hit, gates)} a drowned jump stood as a roller at the gate, which holds people under{where}.",
+    )
 
 
 def _in_states(run: xr.Dataset, gates: Sequence[GateJumps], *states: str) -> list[GateJumps]:
     """The gates whose jump was in one of the states at any step: an instant counts, though it lasts no time."""
-    ever = is_any(run["jump_state"], *states).any(axis=0)
-    return [gate for gate, is_hit in zip(gates, ever, strict=True) if is_hit]
+    held = is_any(run["jump_state"], *states)
+    return [gate for place, gate in enumerate(gates) if held[:, place].any()]
 
 
 def incident_rows(run: xr.Dataset, found: Sequence[Incident], moments: Moments, display: Display) -> list[IncidentRow]:
@@ -117,7 +126,9 @@ def incident_rows(run: xr.Dataset, found: Sequence[Incident], moments: Moments, 
         IncidentRow(
             one.what,
             one.where,
-            clock.span(one.start, one.end) if one.end > one.start else (clock.at(one.start) if not np.isnat(one.start) else "-"),
+            clock.span(one.start, one.end)
+            if one.end > one.start
+            else (clock.at(one.start) if not np.isnat(one.start) else "-"),
             _worst(one, clock, display),
             value_text(one.limit, one.unit, display),
             one.source,
@@ -135,7 +146,7 @@ def link_to(incident: Incident, run: xr.Dataset, moments: Moments) -> Jump | Non
 
 
 def _gate_of(where: str, run: xr.Dataset) -> int:
-    """The gate at a place; of a pool or an offtake the one that closes the pool, of a pool's upper end the one above."""
+    """The gate at a place; of a pool or an offtake the one that closes the pool, of its upper end the one above."""
     offtakes = dict(zip(names(run["offtake"]), names(run["offtake_pool"]), strict=True))
     place, _, end = where.partition(", ")
     neighbours = names(run["gate_downstream_pool" if end == "upper end" else "gate_upstream_pool"])
