@@ -11,7 +11,10 @@ from pathlib import Path
 import pytest
 
 import toeline
+from toeline import open_run
 from toeline.errors import RunError
+from toeline.findings.incidents import incidents
+from toeline.findings.limits import limits_of_run
 
 
 @pytest.fixture
@@ -89,6 +92,20 @@ def test_an_incident_changes_the_exit_status_only_where_strict(one_plan, folder,
     result = call("run", "day.toml", *arguments)
     assert result.exit_code == status
     assert "East lateral: delivery shortfall" in result.stdout
+
+
+def test_a_limit_that_is_passed_is_an_incident_and_the_file_carries_it(one_plan, folder, call):
+    canal = folder / "canal.toml"
+    limit = 'kind = "moves"\nwindow = "1 h"\nlimit = 1\n'
+    level = 'kind = "below"\nlimit = 60.0\npools = ["Upper pool"]\n'
+    for number, keys in enumerate((limit, level), start=1):
+        canal.write_text(f'{canal.read_text()}\n[[limits]]\n{keys}source = "standing order {number}"\n')
+    result = call("run", "day.toml", "--strict")
+    assert result.exit_code == 3
+    assert "Upper pool, lower end: level below the limit" in result.stdout
+    with open_run(folder / "day.nc") as run:
+        assert [limit.source for limit in limits_of_run(run)] == ["standing order 1", "standing order 2"]
+        assert "level below the limit" in [incident.what for incident in incidents(run)]
 
 
 def failing(error: BaseException, partial: str | None = None):

@@ -96,16 +96,16 @@ def test_level_errors_are_parts_of_the_target_depth(run_by_hand):
             "bed_level": [100.5, 100.0, 90.0, 89.0],
         },
     )
-    assert found(run, "greatest level error", "Orchard pool").value == pytest.approx(0.1)
-    assert found(run, "integrated level error", "Orchard pool").value == pytest.approx(0.4 / 2.0 / 3.0)
+    assert found(run, "maximum absolute level error", "Orchard pool").value == pytest.approx(0.1)
+    assert found(run, "integrated absolute level error", "Orchard pool").value == pytest.approx(0.4 / 2.0 / 3.0)
     assert found(run, "steady-state level error", "Orchard pool").value == pytest.approx(0.4 / 3.0 / 2.0)
-    assert found(run, "greatest level error", "Mill pool") is None
+    assert found(run, "maximum absolute level error", "Mill pool") is None
 
 
 def test_a_run_shorter_than_two_hours_has_no_steady_state_error(run_by_hand):
     values = {"pool_target_level": [1.0, 1.0], "node_pool": [0, 0, 1, 1], "bed_level": 0.0}
     run = run_by_hand([0, 60, 119], values=values)
-    assert found(run, "greatest level error", "Orchard pool").value == pytest.approx(1.0)
+    assert found(run, "maximum absolute level error", "Orchard pool").value == pytest.approx(1.0)
     assert found(run, "steady-state level error", "Orchard pool") is None
 
 
@@ -183,6 +183,17 @@ def test_limits_of_one_name_are_told_apart(run_by_hand):
     run.attrs["limits"] = json.dumps(falls)
     names = [indicator.name for indicator in indicators(run) if "limit used" in indicator.name]
     assert names == [f"part of the limit used: fall in 10 min (limit {number} of the canal file)" for number in (1, 2)]
+
+
+def test_volumes_spilled_and_lost_are_told_where_the_run_has_them(run_by_hand):
+    run = run_by_hand(MINUTES, values={})
+    assert found(run, "volume spilled") is None
+    with_escapes = run.assign(
+        escape_volume=(("time", "escape"), [[0.0, 1.0], [2.0, 1.0], [3.0, 1.0], [5.0, 2.0]]),
+        pool_loss_volume=(("time", "pool"), [[0.0, 0.0], [1.0, 0.0], [2.0, 0.0], [3.0, 4.0]]),
+    )
+    assert found(with_escapes, "volume spilled").value == pytest.approx(6.0)
+    assert found(with_escapes, "volume lost").value == pytest.approx(7.0)
 
 
 def test_every_indicator_is_a_finite_number_and_stands_once(run_by_hand):

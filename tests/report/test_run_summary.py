@@ -166,7 +166,8 @@ def test_a_limit_that_is_not_passed_is_told_with_its_use_and_source(falling, met
     assert "fall in 1 h, all pools, at most 0.15 m: 0.12 m (80 %), Upper pool, lower end" in limits
     assert "standing order 7" in limits
     assert "moves in 24 h, Last check, at most 4: 0 (0 %)" in limits
-    assert "The run is shorter than a window" in limits
+    assert "Held against values every 5 min" in limits
+    assert "what came before the run is not in it" in limits
 
 
 def test_a_limit_that_is_passed_is_an_incident_with_its_window(falling, metric):
@@ -192,7 +193,7 @@ def test_indicators_stand_by_place(invented_run, metric):
     text = section(run_summary(run, metric), "Indicators")
     assert "deliveries adequacy efficiency dependability whole canal 0.900 1.000 0.000" in text
     assert "East lateral 0.900 720 m3 0.000" in text
-    assert "level error greatest integrated steady state Upper pool 1.000 1.021 1.000" in text
+    assert "levels maximum error integrated error steady-state error Upper pool 1.000 1.021 1.000" in text
     assert "gates moves travel" in text
 
 

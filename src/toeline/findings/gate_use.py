@@ -14,6 +14,10 @@ SMALLEST_MOVE = 1e-9
 """Change of opening [m] below which an order moved nothing."""
 
 
+_COUNTED_APART = {("flow", "near_modular_limit"), ("jump", "drowned")}
+"""States whose hours have an indicator of their own."""
+
+
 def integrated_change(values: np.ndarray) -> float:
     """Σ|Δ| − |last − first|: what a series changed beyond what it had to.
 
@@ -75,26 +79,32 @@ def limit_crossings(is_free: np.ndarray, is_drowned: np.ndarray) -> int:
 
 
 def gate_indicators(run: xr.Dataset) -> Iterator[Indicator]:
-    """Moves, travel, crossings and the hours of both hazards, gate by gate."""
-    openings, discharges = run["gate_opening"].values, run["gate_discharge"].values
-    times, bands = run["time"].values, avoided_openings(run)
-    is_free, is_drowned = is_any(run["gate_flow_state"], "free"), is_any(run["gate_flow_state"], "drowned")
-    jumps = gate_jumps(run)
-    for gate, name in enumerate(names(run["gate"])):
-        yield Indicator("gate moves", name, moves(run, name).size, "count", "lower")
-        yield Indicator("gate travel", name, travel(openings[:, gate]), "m", "lower")
-        yield Indicator("integrated gate travel", name, integrated_change(openings[:, gate]), "m", "lower",
-                        "travel beyond that from first to last opening")  # fmt: skip
-        yield Indicator("integrated discharge change", name, integrated_change(discharges[:, gate]), "m3 s-1", "lower",
-                        "changes beyond that from first to last discharge")  # fmt: skip
-        crossings = limit_crossings(is_free[:, gate], is_drowned[:, gate])
-        yield Indicator("modular-limit crossings", name, crossings, "count", "lower")
-        near = jumps[gate].flow_state_hours["near_modular_limit"]
-        yield Indicator("hours near the modular limit", name, near, "h", "lower", "its discharge is poorly known there")
-        if name in bands:
-            avoided = seconds_avoided(openings[:, gate], times, bands[name]).sum() / 3600.0
-            yield Indicator("hours at avoided openings", name, float(avoided), "h", "lower", "passing counts too")
-        yield from _hour_indicators(jumps[gate])
+    """Moves and travel, crossings of the modular limit, and the hours of both hazards, gate by gate."""
+    for column, jumps in enumerate(gate_jumps(run)):
+        yield from _movement_indicators(run, jumps.gate, column)
+        yield from _doubt_indicators(run, jumps, column)
+        yield from _hour_indicators(jumps)
+
+
+def _movement_indicators(run: xr.Dataset, gate: str, column: int) -> Iterator[Indicator]:
+    openings, discharges = run["gate_opening"].values[:, column], run["gate_discharge"].values[:, column]
+    beyond = "beyond the way from first to last value"
+    yield Indicator("gate moves", gate, moves(run, gate).size, "count", "lower")
+    yield Indicator("gate travel", gate, travel(openings), "m", "lower")
+    yield Indicator("integrated absolute gate movement", gate, integrated_change(openings), "m", "lower", beyond)
+    change = integrated_change(discharges)
+    yield Indicator("integrated absolute discharge change", gate, change, "m3 s-1", "lower", beyond)
+    if bands := avoided_openings(run).get(gate):
+        hours = float(seconds_avoided(openings, run["time"].values, bands).sum()) / 3600.0
+        yield Indicator("hours at avoided openings", gate, hours, "h", "lower", "passing counts too")
+
+
+def _doubt_indicators(run: xr.Dataset, jumps: GateJumps, column: int) -> Iterator[Indicator]:
+    states = run["gate_flow_state"].isel(gate=column)
+    crossings = limit_crossings(is_any(states, "free"), is_any(states, "drowned"))
+    hours, note = jumps.flow_state_hours["near_modular_limit"], "the discharge of the gate is poorly known there"
+    yield Indicator("modular-limit crossings", jumps.gate, crossings, "count", "lower")
+    yield Indicator("hours near the modular limit", jumps.gate, hours, "h", "lower", note)
 
 
 def _hour_indicators(jumps: GateJumps) -> Iterator[Indicator]:
@@ -106,5 +116,5 @@ def _hour_indicators(jumps: GateJumps) -> Iterator[Indicator]:
         yield Indicator("least protection margin", name, jumps.protection_margin.value, "m", "higher")
     for kind, hours in (("flow", jumps.flow_state_hours), ("jump", jumps.jump_state_hours)):
         for state, value in hours.items():
-            if value:
+            if value and (kind, state) not in _COUNTED_APART:
                 yield Indicator(f"hours of {kind}: {state.replace('_', ' ')}", name, value, "h", "none")

@@ -42,13 +42,13 @@ def level_indicators(run: xr.Dataset) -> Iterator[Indicator]:
         depths, target = levels[:, pool] - bed, float(run["pool_target_level"].values[pool]) - bed
         if not target > 0.0:
             continue
-        note = f"part of the target depth of {target:.2f} m at the lower end; {times.size} samples"
-        yield Indicator("greatest level error", name, greatest_error(depths, target), "1", "lower", note)
-        yield Indicator("integrated level error", name, integrated_error(depths, target), "1", "lower", note)
+        note = f"part of the target depth at the lower end; samples: {times.size}"
+        yield Indicator("maximum absolute level error", name, greatest_error(depths, target), "1", "lower", note)
+        yield Indicator("integrated absolute level error", name, integrated_error(depths, target), "1", "lower", note)
         if is_whole:
             yield Indicator(
                 "steady-state level error", name, steady_state_error(depths[is_last], target), "1", "lower",
-                f"part of the target depth; mean of the last {STEADY_HOURS:g} h, {int(is_last.sum())} samples",
+                f"part of the target depth; mean of the last {STEADY_HOURS:g} h, samples: {int(is_last.sum())}",
             )  # fmt: skip
 
 

@@ -19,19 +19,19 @@ _OFFTAKES = {
     "tail-end supply ratio": "in full at the tail end",
 }
 _POOLS = {
-    "greatest level error": "greatest",
-    "integrated level error": "integrated",
-    "steady-state level error": "steady state",
+    "maximum absolute level error": "maximum error",
+    "integrated absolute level error": "integrated error",
+    "steady-state level error": "steady-state error",
 }
 _GATES = {
     "gate moves": "moves",
     "gate travel": "travel",
-    "integrated gate travel": "integrated travel",
-    "integrated discharge change": "integrated flow change",
+    "integrated absolute gate movement": "integrated movement",
+    "integrated absolute discharge change": "integrated flow change",
 }
 _STATES = {
     "modular-limit crossings": "modular limit crossed",
-    "hours near the modular limit": "near it",
+    "hours near the modular limit": "near that limit",
     "hours at avoided openings": "at avoided openings",
 }
 """Names of indicators and the headings of their columns."""
@@ -41,7 +41,8 @@ _DELIVERY_NOTE = (
     "over offtakes, 0 where there is none; standard deviation of the population (Molden & Gates 1990)."
 )
 _LEVEL_NOTE = (
-    "Level errors are parts of the target depth at the lower end of the pool; steady state: of the last 2 hours."
+    "Level errors are parts of the target depth at the lower end of the pool; steady-state: of the last 2 hours. "
+    "Every output step is one sample."
 )
 _GATE_NOTE = (
     "Integrated: what openings and discharges changed beyond the way from their first to their last value. Near the "
@@ -53,8 +54,8 @@ def indicator_lines(found: Sequence[Indicator], display: Display, width: int) ->
     """Deliveries, levels and gates; what there is nothing to count for is left out."""
     for subject, columns, note in (
         ("deliveries", _CANAL, ""),
-        ("deliveries", _OFFTAKES, _DELIVERY_NOTE),
-        ("level error", _POOLS, _LEVEL_NOTE),
+        ("deliveries", _OFFTAKES, f"{_DELIVERY_NOTE} {_sampling(found)}"),
+        ("levels", _POOLS, _LEVEL_NOTE),
         ("gates", _GATES, ""),
         ("gates", _STATES, _GATE_NOTE),
     ):
@@ -64,6 +65,12 @@ def indicator_lines(found: Sequence[Indicator], display: Display, width: int) ->
                 yield paragraph(note, width)
     if not any(indicator.name in _CANAL for indicator in found):
         yield paragraph("Nothing was asked of an offtake: there are no indicators of deliveries.", width)
+
+
+def _sampling(found: Sequence[Indicator]) -> str:
+    """How many samples the measures of deliveries count, and what they leave out."""
+    words = next((indicator.note for indicator in found if indicator.name == "adequacy"), "")
+    return f"{words[:1].upper()}{words[1:]}."
 
 
 def _pivoted(

@@ -12,7 +12,7 @@ from toeline.report.layout import INDENT, paragraph
 from toeline.report.run_clock import RunClock
 from toeline.report.values import value_text
 from toeline.results.encoding import surface_names_of
-from toeline.units import Display
+from toeline.units import Display, UnitSystem, quantity_text
 
 Everything = Mapping[str, Sequence[str]]
 """Names of all pools, gates, offtakes and surfaces of a canal, by "pool", "gate", "offtake", "surface"."""
@@ -35,9 +35,8 @@ def limit_lines(
         text = f"{limit_words(use.limit, everything, display)}: {_use_words(use, clock, display)}"
         yield paragraph(text, width, hanging=INDENT * 2)
         yield paragraph(use.limit.source, width, indent=INDENT * 2)
-    lasting = (run["time"].values[-1] - run["time"].values[0]) / np.timedelta64(1, "s")
-    if any(use.limit.window > lasting for use in uses):
-        yield paragraph("The run is shorter than a window: what came before it is not known here.", width)
+    if uses:
+        yield paragraph(_reach_words(uses, run), width)
 
 
 def limit_words(limit: Limit, everything: Everything, display: Display) -> str:
@@ -58,6 +57,16 @@ def where_words(limit: Limit, everything: Everything) -> str:
 
 def _listed(places: Sequence[str], dimension: str, everything: Everything) -> str:
     return f"all {dimension}s" if set(places) >= set(everything[dimension]) else " and ".join(places)
+
+
+def _reach_words(uses: Sequence[LimitUse], run: xr.Dataset) -> str:
+    """What the findings cannot know: what was between two steps, and what came before the run."""
+    seconds = (run["time"].values - run["time"].values[0]) / np.timedelta64(1, "s")
+    step = quantity_text(float(np.diff(seconds).max(initial=0.0)), "duration", UnitSystem.metric)
+    words = f"Held against values every {step}: what begins and ends between two of them is not seen."
+    if any(use.limit.window >= seconds[-1] for use in uses):
+        words += " A window as long as the run, or longer, is known in part: what came before the run is not in it."
+    return words
 
 
 def _use_words(use: LimitUse, clock: RunClock, display: Display) -> str:
