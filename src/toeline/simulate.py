@@ -25,8 +25,16 @@ from toeline.network.timetable import Timetable, timetable_of
 from toeline.results.dataset import DatasetSink, open_run
 from toeline.results.end_state import read_end_state
 from toeline.results.netcdf_writer import NetcdfSink
-from toeline.results.provenance import COMPLETE, DIMENSIONS, START_DIGEST, run_attributes
-from toeline.scenario import Scenario
+from toeline.results.provenance import (
+    COMPLETE,
+    DIMENSIONS,
+    RULE_DIMENSIONS,
+    RULES,
+    START_DIGEST,
+    STUCK,
+    run_attributes,
+)
+from toeline.scenario import RuleChoice, Scenario
 from toeline.scenario.limits import limits_of
 from toeline.scenario.setting_dimensions import setting_dimensions
 
@@ -104,11 +112,18 @@ def _settings(scenario: Scenario) -> dict[str, Any]:
         "canal": scenario.canal.model_dump(),
         "day": scenario.day.model_dump(exclude={"plans"}),
         START_DIGEST: sha256(scenario.start_file.read_bytes()).hexdigest() if scenario.start_file else None,
-        "rules": [{"kind": rule.kind, **vars(rule.given)} for rule in scenario.rules],
-        "stuck": list(scenario.stuck),
+        RULES: [{"kind": rule.kind, **vars(rule.given)} for rule in scenario.rules],
+        STUCK: list(scenario.stuck),
+        RULE_DIMENSIONS: {rule.kind: _rule_dimensions(rule) for rule in scenario.rules},
         DIMENSIONS: setting_dimensions(),
     }
     return json.loads(json.dumps(plain, default=_plain))
+
+
+def _rule_dimensions(rule: RuleChoice) -> dict[str, str]:
+    settings = rule.found.rule.settings.items()
+    measured = {key: "duration" if setting.takes == "duration" else setting.dimension for key, setting in settings}
+    return {key: dimension for key, dimension in measured.items() if dimension}
 
 
 def _plain(value: Any) -> Any:

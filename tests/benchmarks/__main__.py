@@ -91,10 +91,12 @@ def time_the_command(folder: Path) -> None:
     first = time.perf_counter() - began
     wall(*run_it)
     help_times, run_times = [wall("--help") for _ in range(7)], [wall(*run_it) for _ in range(5)]
+    compare_times = [wall("compare", str(DEMO)) for _ in range(5)]
     verify_times = [wall("verify", str(DEMO), "--plan", "early") for _ in range(5)]
     print("command, wall time")
     show("toeline --help", help_times, median(run_times))
     show("toeline run of the demo day", run_times, median(run_times))
+    show("toeline compare of its two plans", compare_times, median(run_times))
     show("toeline verify of the demo day", verify_times, median(run_times))
     show("the run, first ever (compiles)", [first], median(run_times))
 

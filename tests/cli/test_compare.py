@@ -2,6 +2,7 @@
 
 import csv
 import json
+import re
 from pathlib import Path
 
 import pytest
@@ -80,7 +81,7 @@ def test_runs_of_other_inputs_are_compared_when_told(weedy, call):
 def test_the_exit_status_serves_scripts(spilling, call, options, status):
     result = call("compare", "day.toml", *options.split())
     assert result.exit_code == status
-    assert "East lateral: delivery shortfall, 38 min instead of none" in " ".join(result.stdout.split())
+    assert re.search(r"East lateral: delivery shortfall, \d+ min instead of none", result.stdout)
 
 
 def test_a_plan_that_mends_an_incident_is_not_graver(spilling, call):
@@ -102,7 +103,7 @@ def test_equal_runs_are_alike(folder, call):
         (["day.toml", "--plan", "hold", "--plan", "rasie"], 'did you mean "raise"?'),
         (["day.toml", "--plan", "hold", "--plan", "hold"], "a run or plan is named twice"),
         (["canal.toml"], "canal.toml is a canal file: name a day file"),
-        (["day.toml", "-o", "day.toml"], "day.toml is one of the files to compare and would be lost"),
+        (["day.toml", "-o", "day.toml"], "day.toml is an input and would be lost"),
         (["day.toml", "-o", "nowhere/page.txt"], "there is no directory nowhere"),
     ],
 )

@@ -6,6 +6,8 @@ from types import SimpleNamespace
 import pytest
 
 from toeline.engine.gate_motion import ACCEPTED, REFUSED, REPLACED, TRIMMED, GateMotion, allowed_opening
+from toeline.network.timetable import Marks
+from toeline.scenario import Stuck
 
 MINUTE = 60_000
 
@@ -144,3 +146,94 @@ def test_move_goes_on_on_the_next_day():
     motion = GateMotion(gate(), 0.60)
     motion.resume(target=0.80, ordered=0.80, remaining=2 * MINUTE)
     assert motion.opening_at(MINUTE) == pytest.approx(0.70)
+
+
+@pytest.mark.parametrize(
+    ("wanted", "held", "status", "is_limited"),
+    [
+        (0.58, 0.58, ACCEPTED, False),
+        (0.75, 0.60, TRIMMED, True),
+        (0.20, 0.40, TRIMMED, True),
+        (0.60, 0.60, ACCEPTED, False),
+    ],
+)
+def test_one_move_is_at_most_the_largest(wanted, held, status, is_limited):
+    found = allowed_opening(gate(largest_move=0.10), wanted, ordered=0.50)
+    assert (found.opening, found.status, found.is_limited) == (pytest.approx(held), status, is_limited)
+
+
+def test_a_largest_move_that_ends_in_an_avoided_band_stops_before_it():
+    found = allowed_opening(gate(largest_move=0.10, avoid_openings=[(0.58, 0.70)]), 0.90, ordered=0.50)
+    assert found.opening == pytest.approx(0.58)
+
+
+@pytest.mark.parametrize(
+    ("wanted", "held"),
+    [
+        (0.512, 0.51),
+        (0.513, 0.515),
+        (0.515, 0.515),
+        (0.012, 0.0),  # inside the band from 0 to 2.2 cm: closed is nearer than the mark above the band
+        (0.018, 0.025),  # the first mark above the band
+        (1.799, 1.8),  # the end of travel may be held
+    ],
+)
+def test_openings_are_rounded_to_marks_that_may_be_held(wanted, held):
+    found = allowed_opening(
+        gate(avoid_openings=[(0.0, 0.022)]), wanted, ordered=0.80, marks=Marks(0.005, "whole turns")
+    )
+    assert found.opening == pytest.approx(held)
+    assert bool(found.rounding) == (abs(held - wanted) > 1e-6)
+
+
+def test_rounding_of_an_order_is_listed():
+    motion = GateMotion(gate(), 0.50, Marks(0.005, "whole turns"))
+    record = motion.order(0, "opening", 0.553, 0.553)
+    assert (record.status, record.after) == (TRIMMED, pytest.approx(0.555))
+    assert record.reason == "rounded to whole turns"
+
+
+def test_moves_an_hour_are_counted_for_orders_and_rules_alike():
+    motion = GateMotion(gate(moves_per_hour=2, hoist_speed=None), 0.50)
+    assert motion.order(0, "opening", 0.55, 0.55).status == ACCEPTED
+    assert motion.propose(10 * MINUTE, "hold discharge", 0.60)[0].status == ACCEPTED
+    record, is_limited = motion.propose(59 * MINUTE, "hold discharge", 0.65)
+    assert (record.status, record.source, is_limited) == (REFUSED, "hold discharge", True)
+    assert record.reason == "2 moves in an hour are the most"
+    assert motion.order(60 * MINUTE, "opening", 0.65, 0.65).status == ACCEPTED  # an hour after the first
+
+
+def test_moves_of_the_hour_before_the_start_count():
+    motion = GateMotion(gate(moves_per_hour=1), 0.50)
+    motion.resume(target=0.50, ordered=0.50, remaining=0, moves=[-20 * MINUTE])
+    assert motion.order(39 * MINUTE, "opening", 0.60, 0.60).status == REFUSED
+    assert motion.order(40 * MINUTE, "opening", 0.60, 0.60).status == ACCEPTED
+
+
+@pytest.mark.parametrize("wanted", [0.505, 0.50])
+def test_a_proposal_that_moves_nothing_leaves_no_record(wanted):
+    assert GateMotion(gate(), 0.50).propose(0, "hold discharge", wanted) == (None, False)
+
+
+def test_a_proposal_beyond_travel_from_its_end_leaves_no_record_but_is_limited():
+    assert GateMotion(gate(), 1.80).propose(0, "hold discharge", 2.0) == (None, True)
+
+
+STUCK = [Stuck("G", 10 * MINUTE, 40 * MINUTE)]
+
+
+def test_a_stuck_leaf_refuses_orders():
+    motion = GateMotion(gate(), 0.50, stuck=STUCK)
+    record = motion.order(10 * MINUTE, "opening", 0.60, 0.60)
+    assert (record.status, record.reason) == (REFUSED, "the leaf is stuck for another 30 min")
+    assert motion.order(40 * MINUTE, "opening", 0.60, 0.60).status == ACCEPTED
+
+
+def test_a_leaf_that_sticks_on_its_way_stands_there():
+    motion = GateMotion(gate(), 0.50, stuck=STUCK)
+    record = motion.order(9 * MINUTE, "opening", 0.80, 0.80)
+    motion.arrive(10 * MINUTE)
+    motion.halt_if_stuck(10 * MINUTE)
+    assert (motion.is_moving, motion.ordered) == (False, pytest.approx(0.60))
+    assert (record.status, record.after, record.completed) == (TRIMMED, pytest.approx(0.60), 10 * MINUTE)
+    assert record.reason == "the leaf stuck at an opening of 0.600 m"

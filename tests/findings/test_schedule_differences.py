@@ -1,9 +1,12 @@
 """How the schedules of two runs differ, order by order."""
 
+import json
+
 import numpy as np
 import pytest
 import xarray as xr
 
+from toeline.findings.input_differences import InputDifference
 from toeline.findings.schedule_differences import (
     GateOrder,
     OrderDifference,
@@ -11,7 +14,7 @@ from toeline.findings.schedule_differences import (
     paired_orders,
     schedule_difference,
 )
-from toeline.results.variables import ORDER_KINDS
+from toeline.results.variables import ORDER_KINDS, ORDER_STATUSES
 
 GATES = ["Orchard check", "Mill check"]
 
@@ -24,7 +27,7 @@ def order(clock: str, kind: str = "opening", value: float = 0.5, gate: str = "Mi
     return GateOrder(time(clock), gate, kind, value, 0.4)
 
 
-def run_of(*orders: GateOrder, sources: list[str] | None = None) -> xr.Dataset:
+def run_of(*orders: GateOrder, sources: list[str] | None = None, settings: dict | None = None) -> xr.Dataset:
     """As much of a run as its orders need."""
     kinds = np.array([ORDER_KINDS.index(order.kind) for order in orders], dtype="i1")
     columns = {
@@ -35,7 +38,10 @@ def run_of(*orders: GateOrder, sources: list[str] | None = None) -> xr.Dataset:
     }
     run = xr.Dataset({name: ("order", values) for name, values in columns.items()}, {"gate": GATES})
     run["order_kind"] = ("order", kinds, {"flag_meanings": " ".join(ORDER_KINDS)})
-    return run if sources is None else run.assign(order_source=("order", np.array(sources, dtype=object)))
+    run["order_status"] = ("order", np.zeros(len(orders), dtype="i1"), {"flag_meanings": " ".join(ORDER_STATUSES)})
+    run["order_opening_after"] = run["order_opening_before"] + 0.05
+    run["order_source"] = ("order", np.array(sources or ["schedule"] * len(orders), dtype=object))
+    return run.assign_attrs(resolved_settings=json.dumps(settings or {}))
 
 
 def test_equal_schedules_have_no_difference():
@@ -133,3 +139,15 @@ def test_moves_by_rules_are_counted_and_are_no_orders():
     difference = schedule_difference(first, other)
     assert (difference.orders, difference.alike) == ((), 1)
     assert difference.rule_moves == (RuleMoves(rule, "Mill check", 1, 3),)
+
+
+def test_rules_and_stuck_leaves_that_differ_are_found_by_kind_and_gate():
+    rule = {"kind": "hold upstream level", "gate": "Mill check", "band": 0.02, "every": 300.0}
+    measured = {"hold upstream level": {"band": "length", "every": "duration"}}
+    first = run_of(settings={"rules": [rule], "rule_dimensions": measured})
+    stuck = [{"gate": "Mill check", "begin": 0, "end": 60_000}]
+    other = run_of(settings={"rules": [rule | {"band": 0.03}], "stuck": stuck, "rule_dimensions": measured})
+    assert schedule_difference(first, other).beside_orders == (
+        InputDifference(("rules", "hold upstream level", "Mill check", "band"), 0.02, 0.03, "length"),
+        InputDifference(("stuck", "Mill check"), None, [[0, 60_000]], None),
+    )

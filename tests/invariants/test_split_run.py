@@ -57,6 +57,40 @@ def test_split_run_equals_the_unbroken_one(tmp_path, hour, local_inertia):
         assert np.abs(whole.end_level - second.end_level).max() <= AGREES
 
 
+RULES = [
+    {"kind": "hold downstream level", "gate": "G0", "feedforward": "volume"},
+    {"kind": "hold upstream level", "gate": "G1", "every": "7 min"},
+    {"kind": "hold volume", "pool": "P2", "by": "lower gate", "target": 30_000.0},
+]
+
+
+def test_a_day_under_rules_split_equals_the_unbroken_one(tmp_path):
+    """To the last bit: gains found at the first start, bases, carried moves and moves of the last hour all go on."""
+
+    def half(begin: int, end: int, name: str, **tables):
+        takes = {"T1": [["+0 h", 0.2], ["+2 h", 0.5]]} if begin == 0 else {"T1": [["+0 h", 0.5]]}
+        keys = part(begin, end, False, **tables) | {
+            "inflow": 8.0, "deliveries": takes, "plans": {"only": {"rules": RULES}},
+        }  # fmt: skip
+        take = {"name": "T1", "pool": "P1", "chainage": 1400.0, "kind": "demand"}
+        canal = stepped_canal(3, 1500.0, gate={"moves_per_hour": 3}, offtakes=[take])
+        return scenario_of(tmp_path, canal, keys, name=name)
+
+    files = {name: tmp_path / f"{name}.nc" for name in ("whole", "first", "second")}
+    simulate(half(0, 12, "whole"), files["whole"]).close()
+    simulate(half(0, 6, "first"), files["first"]).close()
+    simulate(half(6, 12, "second", start={"file": "first.nc"}), files["second"]).close()
+    with open_run(files["whole"]) as whole, open_run(files["second"]) as second:
+        late = whole.isel(order=(whole.order_time >= second.time[0]).values)
+        assert late.sizes["order"] > 10
+        assert (late.order_status == 2).any()  # some are refused for moves an hour
+        for name in ("order_time", "order_opening_after", "order_status", "order_reason"):
+            assert (late[name].values == second[name].values).all(), name
+        assert (whole.end_opening.values == second.end_opening.values).all()
+        assert (whole.end_level.values == second.end_level.values).all()
+        assert (whole.end_rule_value.values == second.end_rule_value.values).all()
+
+
 def test_ledger_of_a_day_that_goes_on_from_an_end_state(tmp_path):
     simulate(scenario_of(tmp_path, canal(), part(0, 6, False), name="first"), tmp_path / "first.nc").close()
     run = simulate(scenario_of(tmp_path, canal(), part(6, 12, False, start={"file": "first.nc"}), name="second"))

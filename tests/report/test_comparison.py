@@ -3,6 +3,7 @@
 import csv
 import io
 import json
+from pathlib import Path
 
 import numpy as np
 import pytest
@@ -26,6 +27,7 @@ def orders(*entries: tuple[float, str, float]) -> dict[str, np.ndarray]:
     return {
         "order_time": np.array(hours) * 3600.0,
         "order_gate": np.array(gates, dtype=object),
+        "order_source": np.full(count, "schedule", dtype=object),
         "order_kind": np.ones(count, dtype=np.int8),
         "order_value": np.array(moves),
         "order_opening_before": np.full(count, 0.40),
@@ -252,3 +254,8 @@ def test_json_carries_the_same_rows_and_what_was_compared(runs):
     )  # fmt: skip
     assert about["caution"] == CAUTION
     assert [row["part"] for row in about["rows"]] == [row["part"] for row in read_csv(runs)]
+
+
+def test_the_page_of_the_documentation_names_every_column():
+    page = (Path(__file__).parents[2] / "docs" / "comparing.md").read_text(encoding="utf-8")
+    assert [column for column in COLUMNS if f"| `{column}` |" not in page] == []

@@ -3,6 +3,7 @@
 import numpy as np
 import pytest
 
+from toeline.findings.input_differences import InputDifference
 from toeline.findings.schedule_differences import GateOrder, OrderDifference, RuleMoves, ScheduleDifference
 from toeline.report.run_clock import RunClock
 from toeline.report.schedule_words import MOST_TOLD, order_difference_words, schedule_words
@@ -104,10 +105,43 @@ def test_a_sum_names_what_was_changed_added_and_dropped(clock, metric):
     [
         (0, 24, "B: under the rule hold upstream level the Mill check moves 24 times"),
         (13, 1, "B: under the rule hold upstream level the Mill check moves once instead of 13 times"),
-        (13, 0, "B: under the rule hold upstream level the Mill check does not move, "
-                "which it does 13 times in the first"),
+        (13, 0, "B: under the rule hold upstream level the Mill check moves at no time instead of 13 times"),
     ],
-)  # fmt: skip
+)
 def test_moves_by_rules_are_counted(first, other, words, clock, metric):
     moves = RuleMoves("hold upstream level", GATE, first, other)
     assert list(schedule_words("B", ScheduleDifference((), 0, (moves,)), clock, metric)) == [words]
+
+
+RULE = ("rules", "hold upstream level")
+
+
+@pytest.mark.parametrize(
+    ("differences", "words"),
+    [
+        ([InputDifference(RULE, None, {GATE: {}, "Tail gate": {}}, None)],
+         ["B follows the rule hold upstream level at Mill check and Tail gate"]),
+        ([InputDifference((*RULE, GATE), {"gain": 1.0}, None, None)],
+         ["B does not follow the rule hold upstream level at Mill check"]),
+        ([InputDifference((*RULE, GATE, "band"), 0.02, 0.03, "length")],
+         ["B: rule hold upstream level at Mill check: band 0.03 m instead of 0.02 m"]),
+        ([InputDifference((*RULE, GATE, "every"), 300.0, 600.0, "duration")],
+         ["B: rule hold upstream level at Mill check: every 10 min instead of 5 min"]),
+        ([InputDifference((*RULE, gate, "gain"), 0.4, 0.8, None) for gate in (GATE, "Heron check", "Tail gate")],
+         ["B: rule hold upstream level at Mill check, Heron check and Tail gate: gain 0.8 instead of 0.4"]),
+        ([InputDifference(("stuck", GATE), None, [[7_200_000, 9_000_000]], None)],
+         ["B: the leaf of Mill check is stuck from 08:00 to 08:30"]),
+        ([InputDifference(("stuck", GATE), [[0, 1]], None, None)], ["B: the leaf of Mill check is not stuck"]),
+    ],
+)  # fmt: skip
+def test_what_plans_say_beside_their_orders(differences, words, clock, metric):
+    difference = ScheduleDifference((), 0, (), tuple(differences))
+    assert list(schedule_words("B", difference, clock, metric)) == words
+
+
+def test_moves_of_a_rule_that_is_not_followed_are_not_told_again(clock, metric):
+    dropped = InputDifference(RULE, {GATE: {}}, None, None)
+    difference = ScheduleDifference((), 0, (RuleMoves(RULE[1], GATE, 13, 0),), (dropped,))
+    assert list(schedule_words("B", difference, clock, metric)) == [
+        "B does not follow the rule hold upstream level at Mill check"
+    ]

@@ -152,6 +152,19 @@ def test_surge_bounds_are_held_against_inertia(run_of, rise, short, row):
     assert row in section(page, "Surge bounds against inertia")
 
 
+def test_gates_that_answer_other_levels_are_told_where_surges_are(run_of):
+    other = run_of(gate_opening=np.where(HALF_WAY & [True, False], 0.035, 0.0))
+    page = page_of(found_in(run_of(), local_inertia=other))
+    assert "Gates stand up to 3.5 cm apart with and without inertia" in section(page, "In short")
+    assert "openings, settled 3.5 cm 3.5 cm Middle check, 08:00" in section(page, "With local inertia")
+
+
+def test_gates_that_stand_alike_are_not_told(run_of):
+    page = page_of(found_in(run_of(), local_inertia=run_of()))
+    assert "Gates stand" not in page
+    assert "openings," not in section(page, "With local inertia")
+
+
 def test_water_that_is_lost_stands_out(run_of):
     leaking = run_of(pool_volume=np.where(HALF_WAY, 2400.0, 2500.0))
     page = page_of(found_in(run_of(), local_inertia=leaking))

@@ -146,9 +146,8 @@ def opened_runs(sources: Sequence[Source]) -> Iterator[dict[str, "xr.Dataset"]]:
         tell_of_compiling()
     with ExitStack() as stack:
         runs = [stack.enter_context(source.opened()) for source in sources]
-        yield dict(
-            zip(run_names([(s.path, r.attrs["plan"]) for s, r in zip(sources, runs, strict=True)]), runs, strict=True)
-        )
+        places = [(source.path, run.attrs["plan"]) for source, run in zip(sources, runs, strict=True)]
+        yield dict(zip(run_names(places), runs, strict=True))
 
 
 def run_names(places: Sequence[tuple[Path, str]]) -> list[str]:

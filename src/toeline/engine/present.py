@@ -6,7 +6,6 @@ import numpy as np
 
 from toeline.engine.gate_link import law_of
 from toeline.engine.gate_motion import GateMotion
-from toeline.engine.settling import round_trip
 from toeline.engine.state import State
 from toeline.hydraulics.underflow_gate import gate_discharge, opening_for_discharge
 from toeline.network.lead_times import pool_times
@@ -16,16 +15,16 @@ from toeline.rules.base import CanalFacts
 
 
 def facts_at_start(network: Network, canal: CanalFacts, state: State) -> CanalFacts:
-    """What a state makes of the pools of a canal: their lead times, areas and round trips."""
+    """What a state makes of the pools of a canal; see `PoolFacts`."""
     times = pool_times(network, state.nodes.level, state.links.discharge)
     pools = {
         name: replace(
             pool,
             lead_times={"wave": float(times.wave[p]), "volume": float(times.volume[p])},
             backed_up_area=float(times.area[p]),
-            round_trip=float(round_trip(network.channel, ends.first_node, ends.last_node, state)),
+            wave_admittance=float(times.admittance[p]),
         )
-        for p, ((name, pool), ends) in enumerate(zip(canal.pools.items(), network.tables.pools, strict=True))
+        for p, (name, pool) in enumerate(canal.pools.items())
     }
     return replace(canal, pools=pools)
 

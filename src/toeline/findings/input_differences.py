@@ -2,13 +2,13 @@
 
 import json
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 import numpy as np
 import xarray as xr
 
-from toeline.results.provenance import DIMENSIONS, shared_settings
+from toeline.results.provenance import DIMENSIONS, RULE_DIMENSIONS, RULES, STUCK, shared_settings
 
 KeyPath = tuple[str, ...]
 
@@ -41,6 +41,38 @@ def input_differences(first: xr.Dataset, other: xr.Dataset) -> list[InputDiffere
     before, after = (json.loads(run.attrs["resolved_settings"]) for run in (first, other))
     dimensions = before.get(DIMENSIONS, {}) | after.get(DIMENSIONS, {})
     return list(_differences((), shared_settings(before), shared_settings(after), dimensions))
+
+
+def plan_differences(first: xr.Dataset, other: xr.Dataset) -> list[InputDifference]:
+    """What differs in the plans beside their orders: rules by kind and gate, and spells of stuck leaves by gate.
+
+    Durations of rules are in s, the spells [begin, end] in ms from the start of the period.
+    """
+    before, after = (json.loads(run.attrs["resolved_settings"]) for run in (first, other))
+    measured = before.get(RULE_DIMENSIONS, {}) | after.get(RULE_DIMENSIONS, {})
+    rules = _differences((), _rules(before), _rules(after), {})
+    stuck = _differences((), _stuck(before), _stuck(after), {})
+    return [
+        replace(one, path=(name, *one.path), dimension=measured.get(one.path[0], {}).get(one.path[-1]))
+        for name, differences in ((RULES, rules), (STUCK, stuck))
+        for one in differences
+    ]
+
+
+def _rules(settings: Mapping[str, Any]) -> dict[str, dict[str, Any]]:
+    """Settings of the rules, by kind and gate."""
+    rules: dict[str, dict[str, Any]] = {}
+    for rule in settings.get(RULES, []):
+        own = {key: value for key, value in rule.items() if key not in ("kind", "gate")}
+        rules.setdefault(rule["kind"], {})[rule.get("gate", "")] = own
+    return rules
+
+
+def _stuck(settings: Mapping[str, Any]) -> dict[str, list[list[int]]]:
+    spells: dict[str, list[list[int]]] = {}
+    for spell in settings.get(STUCK, []):
+        spells.setdefault(spell["gate"], []).append([spell["begin"], spell["end"]])
+    return spells
 
 
 def largest_of_series(first: Any, other: Any) -> tuple[int, float, float] | None:

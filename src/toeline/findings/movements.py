@@ -12,7 +12,7 @@ from toeline.findings.series import NO_EXTREME, Extreme, greatest, hours_of_rows
 from toeline.findings.settling import gates_settling, pools_settling
 from toeline.units import UnitSystem
 
-Quantity = Literal["level", "discharge", "jump toe", "jump end"]
+Quantity = Literal["level", "opening", "discharge", "jump toe", "jump end"]
 Side = Literal["above", "below"]
 
 GAUGE_READINGS = {UnitSystem.metric: 0.01, UnitSystem.us_customary: 0.003048}
@@ -24,6 +24,7 @@ TYPICAL_SHARE = 95.0
 
 _POOL_LEVELS = {"head": "pool_head_level", "lower end": "pool_tail_level"}
 _GATE_VALUES: dict[Quantity, tuple[str, str]] = {
+    "opening": ("gate_opening", "m"),
     "discharge": ("gate_discharge", "m3 s-1"),
     "jump toe": ("jump_toe_distance", "m"),
     "jump end": ("jump_end_distance", "m"),

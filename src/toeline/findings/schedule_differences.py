@@ -3,17 +3,15 @@
 Moves that an operating rule made are no orders of a schedule; they are counted.
 """
 
-from collections import Counter
 from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
 import xarray as xr
 
+from toeline.findings.input_differences import InputDifference, plan_differences
+from toeline.findings.moves import SCHEDULE, gate_moves
 from toeline.findings.series import meanings, names
-
-SCHEDULE = "schedule"
-"""Source of an order that stands in the plan."""
 
 _UNPAIRED_HOURS = 1.5
 _OTHER_VALUE_HOURS = 0.5
@@ -66,11 +64,14 @@ class RuleMoves:
 
 @dataclass(frozen=True)
 class ScheduleDifference:
-    """All differences between the orders of two runs, by gate from the head down, and how many orders are alike."""
+    """How two plans differ: in orders, by gate from the head down, with how many are alike; in what else they say, as
+    rules and stuck leaves; and in the moves that rules made.
+    """
 
     orders: tuple[OrderDifference, ...]
     alike: int
     rule_moves: tuple[RuleMoves, ...]
+    beside_orders: tuple[InputDifference, ...] = ()
 
 
 def schedule_difference(first: xr.Dataset, other: xr.Dataset) -> ScheduleDifference:
@@ -83,7 +84,8 @@ def schedule_difference(first: xr.Dataset, other: xr.Dataset) -> ScheduleDiffere
         changed = [pair for pair in paired if not _is_alike(*pair)]
         alike += len(paired) - len(changed)
         differences += [OrderDifference(gate, *pair) for pair in changed]
-    return ScheduleDifference(tuple(differences), alike, tuple(_rule_moves(first, other)))
+    moves, beside_orders = _rule_moves(first, other), plan_differences(first, other)
+    return ScheduleDifference(tuple(differences), alike, tuple(moves), tuple(beside_orders))
 
 
 Pair = tuple[GateOrder | None, GateOrder | None]
@@ -149,24 +151,27 @@ def _orders(run: xr.Dataset) -> list[GateOrder]:
         GateOrder(time, gate, kinds[int(kind)], float(value), float(before))
         for time, gate, kind, value, before, source in zip(
             run["order_time"].values, names(run["order_gate"]), run["order_kind"].values, run["order_value"].values,
-            run["order_opening_before"].values, _sources(run), strict=True,
+            run["order_opening_before"].values, names(run["order_source"]), strict=True,
         )
         if source == SCHEDULE
     ]  # fmt: skip
 
 
-def _sources(run: xr.Dataset) -> list[str]:
-    return names(run["order_source"]) if "order_source" in run else [SCHEDULE] * run.sizes["order"]
-
-
 def _rule_moves(first: xr.Dataset, other: xr.Dataset) -> list[RuleMoves]:
-    before, after = (
-        Counter(move for move in zip(_sources(run), names(run["order_gate"]), strict=True) if move[0] != SCHEDULE)
-        for run in (first, other)
-    )
+    before, after = _moves_by_rules(first), _moves_by_rules(other)
     places = {gate: place for place, gate in enumerate(_gates(first, other))}
     moved = sorted(before.keys() | after.keys(), key=lambda move: (move[0], places[move[1]]))
-    return [RuleMoves(*move, before[move], after[move]) for move in moved]
+    return [RuleMoves(*move, before.get(move, 0), after.get(move, 0)) for move in moved]
+
+
+def _moves_by_rules(run: xr.Dataset) -> dict[tuple[str, str], int]:
+    """How often each rule moved each gate."""
+    return {
+        (source, gate.gate): count
+        for gate in gate_moves(run)
+        for source, count in gate.by_source.items()
+        if source != SCHEDULE
+    }
 
 
 def _gates(first: xr.Dataset, other: xr.Dataset) -> list[str]:

@@ -2,6 +2,7 @@
 
 from dataclasses import dataclass, field
 
+import numpy as np
 import xarray as xr
 
 from toeline.findings.closure import Closure
@@ -34,6 +35,12 @@ class Member:
     closure: Closure | None = None
     reason: str = ""
     failed: bool = False
+
+    @property
+    def opening_moved(self) -> float:
+        """How far apart a gate stood in both runs at most [m]: rules, and orders of a discharge, answer the levels."""
+        moved = [m.largest.value for m in self.movements if m.quantity == "opening"]
+        return float(np.nan_to_num(moved).max(initial=0.0))
 
     def movement(self, quantity: str, *, settling: bool) -> Movement:
         """How far a quantity moves in one kind of time."""

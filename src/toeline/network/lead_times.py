@@ -23,20 +23,24 @@ LEAST_DISCHARGE = 1e-6
 
 
 class Response(NamedTuple):
-    """A pool's answer to a change of flow at its head: first after a delay [s], then as a reservoir of an area [m²]."""
+    """A pool's answer to a change of flow: at its lower end after a delay [s], there as a reservoir of an area [m²],
+    and to waves by a discharge per level T(C − V) [m²/s].
+    """
 
     delay: float
     area: float
+    admittance: float
 
 
 class PoolTimes(NamedTuple):
-    """By pool: lead times by wave and by volume [s], and areas that store what is left over [m²]; NaN where there is
-    none.
+    """By pool: lead times by wave and by volume [s]; areas [m²] and wave admittances [m²/s] of the lower end; NaN where
+    there is none.
     """
 
     wave: np.ndarray
     volume: np.ndarray
     area: np.ndarray
+    admittance: np.ndarray
 
 
 def pool_times(network: Network, level: np.ndarray, discharge: np.ndarray) -> PoolTimes:
@@ -60,7 +64,7 @@ def response(
     area, width, _, _ = geometry(section, depth)
     froude_squared = discharge * discharge * width / (GRAVITY * area**3) if area > 0.0 else math.inf
     if froude_squared >= 1.0 or discharge < LEAST_DISCHARGE:
-        return Response(math.nan, math.nan)
+        return Response(math.nan, math.nan, math.nan)
     rise = (slope - friction_slope(section, roughness, discharge, depth)) / (1.0 - froude_squared)
     normal, flag = normal_depth(section, roughness, slope, discharge) if slope > 0.0 else (math.nan, status.OK)
     uniform = _uniform_length(length, depth - normal, rise) if flag == status.OK else 0.0
@@ -71,7 +75,7 @@ def response(
     )
     lower, raised = _end_areas(section, slope, backed_up, middle, rise, discharge)
     upper = _end_areas(section, slope, uniform, normal, 0.0, discharge)[0] if uniform else 0.0
-    return Response(delay, lower * (1.0 + upper / raised))
+    return Response(delay, lower * (1.0 + upper / raised), width * wave_speeds(section, discharge, depth)[1])
 
 
 def _uniform_length(length: float, excess: float, rise: float) -> float:
@@ -98,7 +102,9 @@ def _end_areas(
     return reach / gamma * -math.expm1(-exponent), reach / gamma * math.expm1(exponent)
 
 
-def _times_of_pool(network: Network, p: int, level: np.ndarray, discharge: np.ndarray) -> tuple[float, float, float]:
+def _times_of_pool(
+    network: Network, p: int, level: np.ndarray, discharge: np.ndarray
+) -> tuple[float, float, float, float]:
     channel, ends = network.channel, network.tables.pools[p]
     first, last = int(ends.first_node), int(ends.last_node)
     head, end = channel.nodes[first], channel.nodes[last]
@@ -108,7 +114,7 @@ def _times_of_pool(network: Network, p: int, level: np.ndarray, discharge: np.nd
     length = end.chainage - head.chainage
     slope = (head.bed_level - end.bed_level) / length
     found = response(channel.shapes[end.section], end.roughness, slope, length, held - end.bed_level, flow)
-    return found.delay, _volume_by_discharge(network, first, last, held, flow), found.area
+    return found.delay, _volume_by_discharge(network, first, last, held, flow), found.area, found.admittance
 
 
 def _volume_by_discharge(network: Network, first: int, last: int, held: float, flow: float) -> float:

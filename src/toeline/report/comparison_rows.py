@@ -4,13 +4,14 @@ import csv
 import io
 import json
 import math
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from dataclasses import asdict, dataclass, fields
 from typing import Any
 
 import numpy as np
 
 from toeline.findings.comparison import Comparison, Contrast, IncidentRow, IndicatorRow
+from toeline.findings.input_differences import InputDifference
 from toeline.findings.schedule_differences import OrderDifference
 from toeline.report.run_clock import RunClock
 from toeline.report.schedule_words import order_difference_words
@@ -22,7 +23,7 @@ from toeline.units import Display
 class ComparisonRow:
     """One finding of one run beside that of the first; what has no meaning in its `part` is None.
 
-    part        indicator, incident, result, order, rule or input
+    part        input, plan, order, rule, result, incident or indicator
     run         name of the run or plan
     name        which indicator, kind of incident, quantity, what became of an order, rule, or key of a file
     where       gate, pool or offtake; empty for the whole canal
@@ -89,7 +90,8 @@ def comparison_json(comparison: Comparison, clock: RunClock, display: Display) -
 def comparison_rows(comparison: Comparison, clock: RunClock, display: Display) -> Iterator[ComparisonRow]:
     """What differs first, as on the page; incidents and indicators of all runs, also where they are alike."""
     for contrast in comparison.contrasts:
-        yield from _input_rows(contrast)
+        yield from _setting_rows("input", contrast, contrast.inputs)
+        yield from _setting_rows("plan", contrast, contrast.schedule.beside_orders)
         yield from (_order_row(contrast, order, clock, display) for order in contrast.schedule.orders)
         yield from _rule_rows(contrast)
         yield from _result_rows(contrast, clock)
@@ -99,11 +101,9 @@ def comparison_rows(comparison: Comparison, clock: RunClock, display: Display) -
         yield from _indicator_rows(indicator, comparison)
 
 
-def _input_rows(contrast: Contrast) -> Iterator[ComparisonRow]:
-    for one in contrast.inputs:
-        yield ComparisonRow(
-            "input", contrast.run.name, ".".join(one.path), "", _setting(one.other), _setting(one.first)
-        )
+def _setting_rows(part: str, contrast: Contrast, differences: Iterable[InputDifference]) -> Iterator[ComparisonRow]:
+    for one in differences:
+        yield ComparisonRow(part, contrast.run.name, ".".join(one.path), "", _setting(one.other), _setting(one.first))
 
 
 def _setting(value: Any) -> float | str:

@@ -28,13 +28,19 @@ def difference_words(difference: InputDifference, clock: RunClock, display: Disp
     file, *path = difference.path
     if file == START_DIGEST:
         return "the state that the run starts from: another file, or the same file with other contents"
-    key = f"{file} file, {'.'.join(path).removesuffix('_ms')}"
+    return f"{file} file, {'.'.join(path).removesuffix('_ms')}: {change_words(difference, clock, display)}"
+
+
+def change_words(difference: InputDifference, clock: RunClock, display: Display) -> str:
+    """The value of the run and that of the first, of a series where they differ most."""
     if (largest := largest_of_series(difference.first, difference.other)) is None:
         other, first = (_value(value, difference, display) for value in (difference.other, difference.first))
-        return f"{key}: {other} instead of {first}" if other != first else f"{key}: other values"
+        return f"{other} instead of {first}" if other != first else "other values"
     at, before, after = largest
     words = f"{_value(after, difference, display)} instead of {_value(before, difference, display)}"
-    return f"{key}: {words} at {clock_text(later(clock.start, at / 1000), clock.start)}, where they differ most"
+    if at <= 0:
+        return words
+    return f"{words} at {clock_text(later(clock.start, at / 1000), clock.start)}, where they differ most"
 
 
 def _value(value: Any, difference: InputDifference, display: Display) -> str:
@@ -43,15 +49,15 @@ def _value(value: Any, difference: InputDifference, display: Display) -> str:
     if isinstance(value, bool):
         return str(value).lower()
     if isinstance(value, (int, float)):
-        return _number(value, difference.dimension, display)
+        seconds = value / 1000 if difference.path[-1].endswith("_ms") else value
+        return _number(seconds, difference.dimension, display)
     return value if isinstance(value, str) else "other values" if isinstance(value, list) else "given"
 
 
 def _number(value: float, dimension: str | None, display: Display) -> str:
     if dimension is None:
         return f"{value:g}"
-    in_si = value / 1000 if dimension == "duration" else value
-    return quantity_text(in_si, cast(Dimension, dimension), display.system)
+    return quantity_text(value, cast(Dimension, dimension), display.system)
 
 
 def refusal_words(comparison: Comparison, clock: RunClock, display: Display) -> str:

@@ -9,10 +9,12 @@ import numpy as np
 from toeline.findings.schedule_differences import GateOrder, OrderDifference, RuleMoves, ScheduleDifference
 from toeline.report.clock import duration_text
 from toeline.report.layout import counted
+from toeline.report.plan_words import plan_words
 from toeline.report.run_clock import RunClock
+from toeline.results.provenance import RULES
 from toeline.units import Display
 
-MOST_TOLD = 16
+MOST_TOLD = 12
 """With more differences than this every gate is summed up in one line."""
 
 HELD = 0.0005
@@ -25,7 +27,11 @@ def schedule_words(letter: str, difference: ScheduleDifference, clock: RunClock,
         yield from _summaries(difference.orders)
     else:
         yield from (order_difference_words(letter, order, clock, display) for order in difference.orders)
-    yield from (_rule_words(letter, moves) for moves in difference.rule_moves if moves.first != moves.other)
+    yield from plan_words(letter, difference.beside_orders, clock, display)
+    dropped = {one.path[1] for one in difference.beside_orders if one.path[0] == RULES and one.other is None}
+    moved = [moves for moves in difference.rule_moves if moves.first != moves.other and moves.rule not in dropped]
+    for rule, group in groupby(moved, key=lambda moves: moves.rule):
+        yield f"{letter}: under the rule {rule} {', '.join(_move_words(moves) for moves in group)}"
 
 
 def order_difference_words(letter: str, difference: OrderDifference, clock: RunClock, display: Display) -> str:
@@ -113,13 +119,11 @@ def _shift_words(seconds: Sequence[float]) -> str:
     return f"{sense}, by {'' if least == most else 'up to '}{duration_text(most)}"
 
 
-def _rule_words(letter: str, moves: RuleMoves) -> str:
-    told = f"{letter}: under the rule {moves.rule} the {moves.gate}"
-    if not moves.other:
-        return f"{told} does not move, which it does {_times(moves.first)} in the first"
+def _move_words(moves: RuleMoves) -> str:
+    """How often a rule moved a gate, beside how often it did in the first run where that has the rule."""
     instead = f" instead of {_times(moves.first)}" if moves.first else ""
-    return f"{told} moves {_times(moves.other)}{instead}"
+    return f"the {moves.gate} moves {_times(moves.other)}{instead}"
 
 
 def _times(count: int) -> str:
-    return "once" if count == 1 else f"{count} times"
+    return {0: "at no time", 1: "once"}.get(count, f"{count} times")

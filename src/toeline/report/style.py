@@ -72,6 +72,13 @@ MODULAR_LIMIT = Line("modular limit: flow drowned above it", BLUE, 1.4, (5.0, 2.
 DROWNING_LIMIT = Line("jump drowned above it", REDDISH_PURPLE, 1.6, (1.5, 1.5))
 PROTECTION_LIMIT = Line("protection limit: jump beyond protection below it", BLACK, 1.4, (7.0, 2.0, 1.5, 2.0))
 APRON_LIMIT = Line("apron limit: jump ends beyond the apron below it", ORANGE, 1.4, (3.0, 1.5))
+FALL_USES = (
+    Line("", BLUE, 1.3),
+    Line("", ORANGE, 1.3, (5.0, 2.0)),
+    Line("", BLACK, 1.3, (1.5, 1.5)),
+    Line("", VERMILION, 1.3, (7.0, 2.0, 1.5, 2.0)),
+)
+"""Looks of how much of the limits on falls and rises was used; what each is about is said where they are drawn."""
 BED = Line("bed", INK, 1.2)
 LINING = Line("top of the lining", FAINT_INK, 1.0, (4.0, 2.0))
 BANK = Line("top of the bank", FAINT_INK, 1.0, (1.0, 2.0))
@@ -80,6 +87,7 @@ DEMAND = Line("asked for", INK, 1.2, (5.0, 2.0))
 DELIVERY = Line("delivered", BLUISH_GREEN, 1.6)
 DISCHARGE = Line("discharge", BLUISH_GREEN, 1.4)
 
+AVOIDED = Area("opening to be passed, not held", ORANGE, "/", 0.25)
 WATER_BODY = Area("water", BLUISH_GREEN, opacity=0.22)
 DAY_RANGE = Area("lowest to highest level of the run", BLUISH_GREEN, "|", 0.14)
 GROUND = Area("ground", "#B5B5B5")
@@ -90,6 +98,10 @@ LEAF = Area("gate leaf", INK)
 SHORTFALL = Area("not delivered", VERMILION, "\\", 0.8)
 OVER_EDGE = Area("water above the edge", VERMILION, "\\")
 SETTLING = Area("settling: waves of a move still travel, levels uncertain", FAINT_INK, "/", 0.25)
+
+CAME_IN = Area("taken in", BLUISH_GREEN)
+WENT_OUT = Area("delivered, let out or lost", SKY_BLUE, "/")
+KEPT = Area("kept in a pool, or drawn from it (a step to the right)", ORANGE, "-")
 
 HAZARD_FLOOR = Area("floor: jump beyond protection", VERMILION, "\\")
 HAZARD_PEOPLE = Area("people: drowned roller", REDDISH_PURPLE, "x")
@@ -120,6 +132,8 @@ ORDER_STATUSES = {
     "refused": Mark("order refused", VERMILION, "cross"),
     "replaced": Mark("order replaced by a later one", INK, "circle", filled=False),
 }
+
+RULE_MOVE = Mark("move by a rule", BLUE, "diamond")
 
 _PLAN_LOOKS = (
     (BLUE, "circle", ()),

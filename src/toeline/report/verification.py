@@ -10,6 +10,7 @@ from toeline.report.clock import duration_text
 from toeline.report.layout import INDENT, counted, heading, paragraph
 from toeline.report.run_clock import RunClock
 from toeline.report.verification_runs import (
+    answer_words,
     bound_lines,
     incident_lines,
     member_lines,
@@ -36,7 +37,7 @@ def verification_page(found: Verification, display: Display, *, width: int = 80)
     sections = (
         ("In short", _short_lines(found, display, width)),
         *((member_title(member), member_lines(member, clock, display, width)) for member in found.members),
-        ("Surge bounds against inertia", bound_lines(found.bound_checks, clock, display, width)),
+        ("Surge bounds against inertia", bound_lines(found, clock, display, width)),
         ("Incidents in each run", incident_lines(found, width)),
         ("Mass test", mass_lines(found, width)),
         ("Ramp test", ramp_lines(found, display, width)),
@@ -55,9 +56,9 @@ def _title(found: Verification, clock: RunClock, width: int) -> str:
     day = f"{plan}; {clock.start:%A %Y-%m-%d}, {clock.span(times[0], times[-1])}"
     how = (
         "How far the answer moves when the same day is computed in other ways. Compared every "
-        f"{every}: levels at both ends of every pool, discharges and jumps at every gate. A pool is settling while "
-        "waves of a change travel in it, once down and back; a gate is while a pool beside it is. Typical: 95 of 100 "
-        "differences are not larger. Where water arrives some minutes earlier or later, levels differ for those "
+        f"{every}: levels at both ends of every pool; openings, discharges and jumps at every gate. A pool is settling "
+        "while waves of a change travel in it, once down and back; a gate is while a pool beside it is. Typical: 95 of "
+        "100 differences are not larger. Where water arrives some minutes earlier or later, levels differ for those "
         "minutes by the height of its front."
     )
     return "\n".join([first, paragraph(day, width), paragraph(how, width)])
@@ -69,6 +70,7 @@ def _short_lines(found: Verification, display: Display, width: int) -> Iterator[
         _jump_sentence(found),
         _incident_sentence(found),
         _bound_sentence(found.bound_checks, display),
+        answer_words(found, display),
         _test_sentence(found),
     )
     for sentence in filter(None, sentences):

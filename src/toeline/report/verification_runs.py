@@ -12,7 +12,13 @@ from toeline.report.layout import INDENT, paragraph, table
 from toeline.report.run_clock import RunClock
 from toeline.units import FILE_UNITS, Display, file_factor
 
-_NAMES = {"level": "levels", "discharge": "discharges", "jump toe": "jump toes", "jump end": "jump ends"}
+_NAMES = {
+    "level": "levels",
+    "opening": "openings",
+    "discharge": "discharges",
+    "jump toe": "jump toes",
+    "jump end": "jump ends",
+}
 
 _MEANINGS = {
     "local inertia": "The day leaves out the time that water needs to gather and lose speed; here it is kept. What "
@@ -26,6 +32,10 @@ _MEANINGS = {
 }
 
 
+SCALE_READING = 0.01
+"""m that the scale of a gate shows (choice)."""
+
+
 def member_title(member: Member) -> str:
     return member.name if member.name.startswith("without") else f"with {member.name}"
 
@@ -37,7 +47,7 @@ def member_lines(member: Member, clock: RunClock, display: Display, width: int) 
     if member.reason:
         yield paragraph(f"Not run: {member.reason}.", width)
         return
-    compared = [movement for movement in member.movements if np.isfinite(movement.typical)]
+    compared = [movement for movement in member.movements if _is_told(movement)]
     rows = [_movement_row(movement, clock, display) for movement in compared]
     yield table(("", "typical", "at most", "where and when"), rows, width)
     if not any(movement.settling for movement in compared):
@@ -54,6 +64,11 @@ def _setting_words(setting: Setting, display: Display) -> str:
     else:
         factor, unit = file_factor("length", display.system), FILE_UNITS["length"][display.system]
     return f"{setting.name} {setting.after / factor:.4g} {unit} instead of {setting.before / factor:.4g} {unit}"
+
+
+def _is_told(movement: Movement) -> bool:
+    """Whether there is something to compare; openings only where they differ."""
+    return bool(np.isfinite(movement.typical)) and (movement.quantity != "opening" or movement.largest.value > 0.0)
 
 
 def _movement_row(movement: Movement, clock: RunClock, display: Display) -> tuple[str, ...]:
@@ -77,7 +92,7 @@ def moved_level(value: float, display: Display) -> str:
 
 
 def _written(movement: Movement, value: float, display: Display) -> str:
-    if movement.quantity == "level":
+    if movement.quantity in ("level", "opening"):
         return moved_level(value, display)
     return _not_nothing(display.discharge(value) if movement.quantity == "discharge" else display.length(value), value)
 
@@ -100,8 +115,9 @@ def _state_words(state: str) -> str:
     return "no jump" if state == "none" else state.replace("_", " ")
 
 
-def bound_lines(checks: Sequence[BoundCheck], clock: RunClock, display: Display, width: int) -> Iterator[str]:
+def bound_lines(found: Verification, clock: RunClock, display: Display, width: int) -> Iterator[str]:
     """The surge bounds beside every gate that moved, held against the run with inertia."""
+    checks = found.bound_checks
     if not checks:
         yield paragraph("No move of a gate made a bound, or there is no run with inertia to hold against it.", width)
         return
@@ -112,6 +128,19 @@ def bound_lines(checks: Sequence[BoundCheck], clock: RunClock, display: Display,
         width,
     )
     yield table(("", "bound", "difference", "beyond it"), [_bound_row(c, clock, display) for c in checks], width)
+    if answer := answer_words(found, display):
+        yield paragraph(answer, width)
+
+
+def answer_words(found: Verification, display: Display) -> str:
+    """How far apart gates stood with and without inertia; nothing where no scale would show it."""
+    apart = max((member.opening_moved for member in found.members if "inertia" in member.name), default=0.0)
+    if apart < SCALE_READING:
+        return ""
+    return (
+        f"Gates stand up to {moved_level(apart, display)} apart with and without inertia: rules, and orders that give "
+        "a discharge, answer the levels that they find. Part of what moves is that answer and no surge."
+    )
 
 
 def _bound_row(check: BoundCheck, clock: RunClock, display: Display) -> tuple[str, ...]:

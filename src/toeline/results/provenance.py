@@ -42,6 +42,10 @@ ATTRIBUTES = {
 DIMENSIONS = "dimensions"
 """Where the resolved settings say what each of them measures, by key path, * for any name."""
 
+RULES, STUCK, RULE_DIMENSIONS = "rules", "stuck", "rule_dimensions"
+"""Where the resolved settings carry those of the plan beside its orders: rules, leaves that are stuck, and what the
+settings of each kind of rule measure, by key (durations in seconds)."""
+
 START_DIGEST = "start_file_digest"
 """Where the resolved settings tell by a digest which run a run goes on from; null where it begins afresh."""
 

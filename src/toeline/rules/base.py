@@ -32,15 +32,16 @@ class PoolFacts:
     """A pool: length [m], target level at its lower end [m] or None, and what the state at the start makes of it.
 
     `lead_times` [s] are those of a change of flow through the pool, "wave" and "volume"; `backed_up_area` [m²] is the
-    area that fills when more comes in than goes out; `round_trip` [s] is the time of a small wave down and back. NaN
-    where the start gives none, as in a dry pool, and before a run.
+    area that fills when more comes in than goes out; `wave_admittance` [m²/s] is the change of discharge that a wave
+    brings to the lower end, per metre of its height. NaN where the start gives none, as in a dry pool, and before a
+    run.
     """
 
     length: float
     target_level: float | None
     lead_times: Mapping[str, float] = field(default_factory=lambda: {"wave": math.nan, "volume": math.nan})
     backed_up_area: float = math.nan
-    round_trip: float = math.nan
+    wave_admittance: float = math.nan
 
 
 @dataclass(frozen=True)

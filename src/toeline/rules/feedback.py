@@ -8,8 +8,8 @@ from toeline.rules.base import Answer
 DETUNING = 4.0
 """Reset time over the sum of closed-loop time and delay (Skogestad 2003, for integrating processes; from memory)."""
 
-ROUND_TRIPS, INTERVALS = 1.0, 4.0
-"""Least closed-loop time of a pool in its wave round trips, and in decision intervals (choice)."""
+SHARE_OF_ADMITTANCE, INTERVALS = 0.5, 4.0
+"""Most gain in shares of the wave admittance of the pool, and least closed-loop time in decision intervals (choice)."""
 
 
 class Gains(NamedTuple):
@@ -21,22 +21,25 @@ class Gains(NamedTuple):
     reset: float
 
 
-def gains_of_pool(area: float, delay: float, round_trip: float, every: float) -> Gains:
+def gains_of_pool(area: float, delay: float, wave_admittance: float, every: float) -> Gains:
     """Discharge per level error [m²/s] and reset time [s] for a pool that stores on an area [m²] what comes after a
-    delay [s].
+    delay [s], where decisions fall every so often [s].
 
-    A/(T + τ) and 4(T + τ) with the closed-loop time T (Skogestad 2003, from memory): at least the delay, one wave round
-    trip of the pool and four decision intervals (choice), so that a rule does not hunt.
+    A/(T + τ) and 4(T + τ) with the closed-loop time T (Skogestad 2003, from memory): at least the delay, four decision
+    intervals, and such that the gain stays below half of T_s(C − V) [m²/s], which is as far as the pool's own waves let
+    it go (their peak gain is 1/(T_s(C − V)), Clemmens et al. 2015, second-hand). The numbers four and half are choices.
     """
-    closed_loop = max(delay, ROUND_TRIPS * round_trip, INTERVALS * every)
+    closed_loop = max(delay, area / (SHARE_OF_ADMITTANCE * wave_admittance), INTERVALS * every)
     return Gains(area / (closed_loop + delay), DETUNING * (closed_loop + delay))
 
 
 class Feedback:
-    """A quantity (an opening or a discharge) that follows an error: base + gain · error, the base moved by
-    gain · error · interval / reset at every decision at which the error lies outside the dead band.
+    """A quantity (an opening or a discharge) that follows what of an error lies beyond its dead band: base +
+    gain · error, the base moved by gain · error · interval / reset at every decision.
 
-    Everything it keeps is in `memory`: "base", and "ordered", the opening that was ordered after the last decision.
+    Counted from the edge of the band the gate goes back gently as the level comes in; counted from the target it would
+    jump by the whole band at every edge, and hunt between the two. Everything it keeps is in `memory`: "base", and
+    "ordered", the opening that was ordered after the last decision.
     """
 
     def __init__(self, memory: dict[str, float], band: float, every: float):
@@ -51,7 +54,7 @@ class Feedback:
 
     def start(self, quantity: float, error: float, gains: Gains) -> None:
         """Go on without a bump from the quantity as it is."""
-        self.memory["base"] = quantity - gains.proportional * error
+        self.memory["base"] = quantity - gains.proportional * self._beyond(error)
 
     def shift(self, change: float) -> None:
         """Move the base, as feedforward does."""
@@ -61,13 +64,16 @@ class Feedback:
         """The quantity that the error calls for; inside the dead band None, unless the rule is pressed to move all the
         same.
         """
-        is_off = abs(error) > self.band
-        self.step = gains.proportional * error * self.every / gains.reset if is_off else 0.0
+        beyond = self._beyond(error)
+        self.step = gains.proportional * beyond * self.every / gains.reset
         self.memory["base"] += self.step
-        return self.memory["base"] + gains.proportional * error if is_off or is_pressed else None
+        return self.memory["base"] + gains.proportional * beyond if beyond != 0.0 or is_pressed else None
 
     def learn(self, answer: Answer, ordered: float) -> None:
         """Keep the base from winding up while something stands in the way."""
         if answer is Answer.limited:
             self.memory["base"] -= self.step
         self.memory["ordered"] = ordered
+
+    def _beyond(self, error: float) -> float:
+        return math.copysign(max(abs(error) - self.band, 0.0), error)

@@ -44,7 +44,7 @@ class HoldDownstreamLevel(LevelRule):
     def found_gains(self) -> Gains:
         pool = self.canal.pools[self.pool]
         delay = pool.lead_times["wave"] if self._is_distant else 0.0
-        return gains_of_pool(pool.backed_up_area, delay, pool.round_trip, self.given.every)
+        return gains_of_pool(pool.backed_up_area, delay, pool.wave_admittance, self.given.every)
 
     @property
     def _is_distant(self) -> bool:

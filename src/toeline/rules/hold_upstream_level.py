@@ -32,4 +32,4 @@ class HoldUpstreamLevel(LevelRule):
 
     def found_gains(self) -> Gains:
         pool = self.canal.pools[self.pool]
-        return gains_of_pool(pool.backed_up_area, 0.0, pool.round_trip, self.given.every)
+        return gains_of_pool(pool.backed_up_area, 0.0, pool.wave_admittance, self.given.every)

@@ -6,11 +6,11 @@ import numpy as np
 import xarray as xr
 from matplotlib.axes import Axes
 
-from toeline.findings.incidents import SHORTFALL_FROM
+from toeline.findings.deliveries import SHORTFALL_FROM
 from toeline.findings.series import names
 from toeline.report.figures.draw import Drawn, area_look, draw_line, empty_note, key, panel_title, words_of
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import Sheet, in_house_style
+from toeline.report.figures.sheet import Sheet, about_run, in_house_style
 from toeline.report.figures.time_axis import TimeAxis
 from toeline.report.number_table import NumberTable, quantity_column, time_column
 from toeline.report.run_identity import run_identity
@@ -34,7 +34,10 @@ def _page(run: xr.Dataset, display: Display, name: str) -> Picture:
     offtakes = names(run["offtake"])
     shown: list[Drawn] = [DELIVERY, DEMAND, SHORTFALL]
     sheet = Sheet(
-        "Deliveries asked for and given", run_identity(run), PITCH * max(len(offtakes), 1) + 0.1, words_of(shown)
+        "Deliveries asked for and given",
+        about_run(run_identity(run)),
+        PITCH * max(len(offtakes), 1) + 0.1,
+        words_of(shown),
     )
     time = TimeAxis(run)
     for row, axes in enumerate(time.rows(sheet, max(len(offtakes), 1), PITCH, HEIGHT)):

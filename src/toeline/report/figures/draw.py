@@ -10,7 +10,7 @@ from matplotlib.lines import Line2D
 from matplotlib.patches import Patch
 
 from toeline.report.figures.sheet import SMALL_SIZE, TEXT_SIZE
-from toeline.report.style import FAINT_INK, INK, Area, Line, Mark
+from toeline.report.style import FAINT_INK, INK, PAPER, Area, Line, Mark
 
 Drawn = Line | Area | Mark
 """Anything of the style that can stand in a legend."""
@@ -24,11 +24,11 @@ def line_look(line: Line) -> dict[str, Any]:
     return {"color": line.colour, "linewidth": line.width, "linestyle": dash}
 
 
-def area_look(area: Area) -> dict[str, Any]:
+def area_look(area: Area, density: int = HATCH_DENSITY) -> dict[str, Any]:
     """An area of the style as matplotlib takes it; the hatch is drawn in ink and keeps its strength."""
     return {
         "facecolor": (area.colour, area.opacity), "edgecolor": INK, "linewidth": 0.0,
-        "hatch": area.hatch * HATCH_DENSITY or None,
+        "hatch": area.hatch * density or None,
     }  # fmt: skip
 
 
@@ -46,7 +46,7 @@ def draw_line(axes: Axes, line: Line, x: np.ndarray, y: np.ndarray, **how: Any) 
     alone = finite & ~np.roll(finite, 1) & ~np.roll(finite, -1) if len(finite) > 1 else finite
     axes.plot(x, y, label=line.word, **line_look(line), **how)
     if alone.any():
-        axes.plot(np.asarray(x)[alone], np.asarray(y)[alone], marker="o", markersize=3, linestyle="none",
+        axes.plot(np.asarray(x)[alone], np.asarray(y)[alone], marker="o", markersize=4.5, linestyle="none",
                   color=line.colour, label=f"_{line.word}")  # fmt: skip
 
 
@@ -80,10 +80,10 @@ def words_of(things: Sequence[Drawn]) -> list[str]:
     return [thing.word for thing in things]
 
 
-def panel_title(axes: Axes, name: str, told: str = "", *, lift: float = 4.0) -> None:
+def panel_title(axes: Axes, name: str, told: str = "", *, lift: float = 4.0, size: float = TEXT_SIZE) -> None:
     """The name of a panel above its left corner, and what is to be told of it at the right."""
     axes.annotate(name, (0, 1), xytext=(0, lift), xycoords="axes fraction", textcoords="offset points",
-                  fontsize=TEXT_SIZE, weight="bold", va="bottom")  # fmt: skip
+                  fontsize=size, weight="bold", va="bottom")  # fmt: skip
     if told:
         axes.annotate(told, (1, 1), xytext=(0, lift), xycoords="axes fraction", textcoords="offset points",
                       fontsize=SMALL_SIZE, va="bottom", ha="right")  # fmt: skip
@@ -95,6 +95,13 @@ def margin_note(axes: Axes, y: float, text: str, *, in_axes: bool = False) -> No
     axes.text(1.008, y, text, transform=transform, fontsize=SMALL_SIZE, color=FAINT_INK, va="center", clip_on=False)
 
 
+def value_range(values: np.ndarray) -> tuple[float, float]:
+    """Least and greatest of the finite values; 0 and 0 where there is none."""
+    finite = values[np.isfinite(values)]
+    return (float(finite.min()), float(finite.max())) if finite.size else (0.0, 0.0)
+
+
 def empty_note(axes: Axes, text: str) -> None:
     """Says in the middle of a panel why nothing is drawn there."""
-    axes.text(0.5, 0.5, text, transform=axes.transAxes, fontsize=TEXT_SIZE, color=FAINT_INK, ha="center", va="center")
+    axes.text(0.5, 0.5, text, transform=axes.transAxes, fontsize=TEXT_SIZE, color=FAINT_INK, ha="center", va="center",
+              bbox={"facecolor": PAPER, "edgecolor": "none"})  # fmt: skip

@@ -8,27 +8,34 @@ import xarray as xr
 from matplotlib.axes import Axes
 from matplotlib.patches import Rectangle
 
+from toeline.findings.limits import avoided_openings
+from toeline.findings.moves import SCHEDULE
 from toeline.findings.series import is_any, meanings_seen, names
-from toeline.report.figures.draw import Drawn, draw_line, key, margin_note, mark_look, panel_title, words_of
+from toeline.report.figures.draw import Drawn, area_look, draw_line, key, margin_note, mark_look, panel_title, words_of
 from toeline.report.figures.gate_moves import orders_of
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import Sheet, in_house_style
+from toeline.report.figures.sheet import Sheet, about_run, in_house_style
 from toeline.report.figures.time_axis import TimeAxis, positions
 from toeline.report.layout import counted
 from toeline.report.number_table import NumberTable, flag_column, quantity_column, text_column, time_column
 from toeline.report.run_identity import run_identity
 from toeline.report.style import (
+    AVOIDED,
     FAINT_INK,
     FLOW_STATES,
     JUMP_STATES,
     OPENING,
     ORDER_STATUSES,
+    RULE_MOVE,
     Area,
     Mark,
     axis_text,
     shown_factor,
 )
 from toeline.units import Display
+
+Bands = list[list[float]]
+"""Lower and upper ends of openings [m]."""
 
 NAME = "gate_openings"
 GATES_ON_A_PAGE = 6
@@ -49,14 +56,17 @@ def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
 @in_house_style
 def _page(run: xr.Dataset, display: Display, name: str) -> Picture:
     gates = names(run["gate"])
-    marks, areas = _marks_seen(run), _areas_seen(run)
-    shown: list[Drawn] = [OPENING, *marks, *areas]
+    avoided = avoided_openings(run)
+    shown: list[Drawn] = [OPENING, *_marks_seen(run), *([AVOIDED] if avoided else []), *_areas_seen(run)]
     sheet = Sheet(
-        "Gate openings, orders and flow", run_identity(run), PITCH * max(len(gates), 1) + 0.1, words_of(shown)
+        "Gate openings, orders and flow",
+        about_run(run_identity(run)),
+        PITCH * max(len(gates), 1) + 0.1,
+        words_of(shown),
     )
     time = TimeAxis(run)
     for row, axes in enumerate(time.rows(sheet, len(gates), PITCH, HEIGHT, first=-0.25)):
-        _panel(axes, run.isel(gate=row), time, display)
+        _panel(axes, run.isel(gate=row), avoided.get(gates[row], []), time, display)
         axes.tick_params(axis="x", pad=34 if row == len(gates) - 1 else 3, length=0)
     sheet.side_title(axis_text("opening, lip above sill", "length", display))
     sheet.legend([key(thing) for thing in shown])
@@ -65,13 +75,15 @@ def _page(run: xr.Dataset, display: Display, name: str) -> Picture:
     )
 
 
-def _panel(axes: Axes, run: xr.Dataset, time: TimeAxis, display: Display) -> None:
+def _panel(axes: Axes, run: xr.Dataset, avoided: Bands, time: TimeAxis, display: Display) -> None:
     gate, opening = str(run["gate"].values), run["gate_opening"].values
     factor = shown_factor("length", display)
     draw_line(axes, OPENING, time.steps, opening / factor)
     orders = orders_of(run, gate)
-    for status, mark in ORDER_STATUSES.items():
-        _order_marks(axes, orders.isel(order=np.flatnonzero(is_any(orders["order_status"], status))), mark, factor)
+    for mark, of_mark in marked_orders(orders).items():
+        _order_marks(axes, of_mark, mark, factor)
+    for low, high in avoided:
+        axes.axhspan(low / factor, high / factor, label=AVOIDED.word, **area_look(AVOIDED))
     axes.set_ylim(*_range(opening, float(run["gate_max_opening"]), factor))
     for bottom, name, variable, areas in STRIPS:
         for state in meanings_seen(run[variable]):
@@ -79,6 +91,14 @@ def _panel(axes: Axes, run: xr.Dataset, time: TimeAxis, display: Display) -> Non
         axes.add_patch(Rectangle((0, bottom), 1, STRIP, transform=axes.transAxes, clip_on=False, fill=False, **FRAME))
         margin_note(axes, bottom + STRIP / 2, name, in_axes=True)
     panel_title(axes, gate, _told(opening, orders.sizes["order"], display))
+
+
+def marked_orders(orders: xr.Dataset) -> dict[Mark, xr.Dataset]:
+    """Orders by their marks: those of the schedule by what became of them, moves by rules apart."""
+    by_plan = orders["order_source"].values == SCHEDULE
+    groups = {mark: by_plan & is_any(orders["order_status"], status) for status, mark in ORDER_STATUSES.items()}
+    groups[RULE_MOVE] = ~by_plan & ~is_any(orders["order_status"], "refused")
+    return {mark: orders.isel(order=np.flatnonzero(holds)) for mark, holds in groups.items() if holds.any()}
 
 
 def _order_marks(axes: Axes, orders: xr.Dataset, mark: Mark, factor: float) -> None:
@@ -111,7 +131,7 @@ def _areas_seen(run: xr.Dataset) -> list[Area]:
 
 def _marks_seen(run: xr.Dataset) -> list[Mark]:
     on_page = run.isel(order=np.flatnonzero(np.isin(run["order_gate"].values, names(run["gate"]))))
-    return [ORDER_STATUSES[status] for status in meanings_seen(on_page["order_status"])]
+    return list(marked_orders(on_page))
 
 
 def words(run: xr.Dataset, display: Display) -> str:
@@ -147,5 +167,6 @@ def orders_table(run: xr.Dataset, display: Display) -> NumberTable:
         quantity_column("opening after", orders["order_opening_after"].values, "length", display),
         time_column(run, orders["order_completed"].values, "leaf stands"),
         flag_column("status", orders["order_status"]),
+        text_column("given by", orders["order_source"].values.tolist()),
         text_column("reason", orders["order_reason"].values.tolist()),
     ))  # fmt: skip

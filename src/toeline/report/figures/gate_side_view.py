@@ -29,7 +29,7 @@ UPSTREAM = 0.35
 """Room upstream of the gate, in lengths of the view downstream of it."""
 BEYOND = 1.25
 """Room downstream of the gate, in lengths of the protected floor."""
-LEAST_FLOOR = 5.0
+LEAST_FLOOR, LEAST_HEIGHT = 5.0, 0.1
 
 
 def draw_side_view(axes: Axes, gate: xr.Dataset, display: Display) -> None:
@@ -79,8 +79,9 @@ def _ground(axes: Axes, here: dict[str, float], reach: float) -> None:
 
 def _heights(here: dict[str, float]) -> tuple[float, float]:
     """Lowest and highest level of the view: the ground below the floor, and above water and leaf."""
+    floor, sill = here["gate_floor_level"], here["gate_sill_level"]
     levels = (here["gate_headwater_level"], here["gate_tailwater_level"], _leaf_top(here))
-    top, floor = np.nanmax(levels), here["gate_floor_level"]
+    top = float(np.nanmax([*levels, sill + here["gate_max_opening"], floor + LEAST_HEIGHT]))
     return floor - 0.2 * (top - floor), top + 0.08 * (top - floor)
 
 

@@ -8,13 +8,14 @@ from matplotlib.axes import Axes
 
 from toeline.findings.jumps import GateJumps, gate_jumps
 from toeline.findings.series import is_any, meanings_seen, names
+from toeline.findings.settling import gates_settling
 from toeline.report.clock import duration_text
 from toeline.report.figures.draw import Drawn, area_look, draw_level, draw_line, key, margin_note, panel_title, words_of
 from toeline.report.figures.gate_moves import MOVE, move_marks
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import SMALL_SIZE, Sheet, in_house_style
+from toeline.report.figures.sheet import SMALL_SIZE, Sheet, about_run, in_house_style
 from toeline.report.figures.time_axis import TimeAxis, positions
-from toeline.report.number_table import Column, NumberTable, flag_column, quantity_column, time_column
+from toeline.report.number_table import Column, NumberTable, flag_column, quantity_column, text_column, time_column
 from toeline.report.run_clock import RunClock
 from toeline.report.run_identity import run_identity
 from toeline.report.style import (
@@ -54,16 +55,20 @@ def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
 def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) -> Picture:
     states = [JUMP_STATES[state] for state in _states_seen(run) if state != "none"]
     shown: list[Drawn] = [*states, *FLOORS, APRON_END, PROTECTION_END, SETTLING, MOVE]
-    sheet = Sheet("Where the jump stood", run_identity(run), PITCH * max(len(jumps), 1) + 0.1, words_of(shown))
-    time = TimeAxis(run)
+    sheet = Sheet(
+        "Where the jump stood", about_run(run_identity(run)), PITCH * max(len(jumps), 1) + 0.1, words_of(shown)
+    )
+    time, settling = TimeAxis(run), gates_settling(run)
     for row, axes in enumerate(time.rows(sheet, len(jumps), PITCH, HEIGHT)):
-        _panel(axes, run.isel(gate=row), jumps[row], time, display)
+        _panel(axes, run.isel(gate=row), jumps[row], settling[:, row], time, display)
     sheet.side_title(axis_text("distance below the gate", "length", display))
     sheet.legend([key(thing) for thing in shown])
     return Picture(name, sheet.figure, {"": table(run, display)}, words(jumps))
 
 
-def _panel(axes: Axes, run: xr.Dataset, jumps: GateJumps, time: TimeAxis, display: Display) -> None:
+def _panel(
+    axes: Axes, run: xr.Dataset, jumps: GateJumps, settling: np.ndarray, time: TimeAxis, display: Display
+) -> None:
     factor = shown_factor("length", display)
     apron, protection = (float(run[f"gate_{floor}_end"]) / factor for floor in ("apron", "protection"))
     toe, end = (run[f"jump_{edge}_distance"].values / factor for edge in ("toe", "end"))
@@ -76,7 +81,7 @@ def _panel(axes: Axes, run: xr.Dataset, jumps: GateJumps, time: TimeAxis, displa
     draw_level(axes, PROTECTION_END, protection)
     draw_line(axes, Line("toe of the jump", INK, 0.7), time.steps, toe)
     draw_line(axes, Line("end of the jump", INK, 1.1), time.steps, np.minimum(end, top))
-    time.strip(axes, settling_beside(run), SETTLING, 1.02, 0.09, above=True)
+    time.strip(axes, settling, SETTLING, 1.02, 0.09, above=True)
     move_marks(axes, run)
     if jumps.beyond_protection_hours:
         _furthest_mark(axes, jumps, RunClock(run), display, top)
@@ -119,20 +124,13 @@ def _band(
     if state == "swept_out_of_pool":
         time.strip(axes, holds, JUMP_STATES[state], 0.0, top)
     elif state != "none":
-        look = area_look(JUMP_STATES[state])
+        low, high = np.minimum(np.nan_to_num(toe), top), np.minimum(end, top)
         reaches = holds | np.concatenate(([False], holds[:-1]))  # up to the next step, so that no gap is left
-        low, high = np.minimum(np.nan_to_num(toe, nan=0.0), top), np.minimum(end, top)
-        axes.fill_between(time.steps, low, high, where=reaches, label=JUMP_STATES[state].word, **look)
-        if len(holds) == 1:
-            axes.fill_between(time.borders, low[[0, 0]], high[[0, 0]], where=holds[[0, 0]], **look)
-
-
-def settling_beside(run: xr.Dataset) -> np.ndarray:
-    """Whether a pool beside the gate of a run of one gate was settling, by output step."""
-    settling, pools = is_any(run["settling"], "settling"), names(run["pool"])
-    beside = (str(run[f"gate_{side}_pool"].values) for side in ("upstream", "downstream"))
-    columns = [pools.index(pool) for pool in beside if pool in pools]
-    return np.asarray(settling[:, columns].any(axis=1))
+        x = time.steps
+        if x.size == 1:
+            x, low, high, reaches = time.borders, *(np.repeat(values, 2) for values in (low, high, reaches))
+        area = JUMP_STATES[state]
+        axes.fill_between(x, low, high, where=reaches, label=area.word, **area_look(area))
 
 
 def _states_seen(run: xr.Dataset) -> list[str]:
@@ -155,13 +153,14 @@ def words(jumps: list[GateJumps]) -> str:
 def table(run: xr.Dataset, display: Display) -> NumberTable:
     """Toe, end and state of the jump and whether levels were settling, by output step and gate."""
     columns = [time_column(run, run["time"].values)]
+    settling = gates_settling(run)
     for row, gate in enumerate(names(run["gate"])):
-        columns += _gate_columns(gate, run.isel(gate=row), display)
+        columns += _gate_columns(gate, run.isel(gate=row), settling[:, row], display)
     return NumberTable(tuple(columns))
 
 
-def _gate_columns(gate: str, run: xr.Dataset, display: Display) -> Iterator[Column]:
+def _gate_columns(gate: str, run: xr.Dataset, settling: np.ndarray, display: Display) -> Iterator[Column]:
     yield quantity_column(f"{gate}: toe of the jump from the gate", run["jump_toe_distance"].values, "length", display)
     yield quantity_column(f"{gate}: end of the jump from the gate", run["jump_end_distance"].values, "length", display)
     yield flag_column(f"{gate}: jump", run["jump_state"])
-    yield Column(f"{gate}: levels", "", tuple("settling" if holds else "settled" for holds in settling_beside(run)))
+    yield text_column(f"{gate}: levels", ["settling" if holds else "settled" for holds in settling])

@@ -12,7 +12,7 @@ from toeline.findings.series import meanings, meanings_seen, names
 from toeline.report.figures.draw import Drawn, area_look, draw_line, empty_note, key, margin_note, words_of
 from toeline.report.figures.gate_side_view import AREAS, draw_side_view
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import SMALL_SIZE, Panel, Sheet, in_house_style
+from toeline.report.figures.sheet import SMALL_SIZE, Panel, Sheet, about_run, in_house_style
 from toeline.report.number_table import NumberTable, flag_column, quantity_column, text_column
 from toeline.report.run_clock import RunClock
 from toeline.report.run_identity import run_identity
@@ -82,7 +82,7 @@ def _page(run: xr.Dataset, gates: list[int], moment: Moment, display: Display, n
     when, beside = clock.at(moment.time), clock.at(run["time"].values[moment.step])
     states = [JUMP_STATES[state] for state in _states_at(run.isel(gate=gates), moment) if state != "none"]
     shown: list[Drawn] = [WATER, DAY_RANGE, TARGET, LINING, BANK, BED, LEAF, *AREAS, *states]
-    sheet = Sheet(f"Long profile at {when}", run_identity(run), ROOM, words_of(shown))
+    sheet = Sheet(f"Long profile at {when}", about_run(run_identity(run)), ROOM, words_of(shown))
     axes = sheet.axes(Panel(TOP, HEIGHT))
     _profile(axes, run, gates, moment, display)
     for place, gate in enumerate(gates):
@@ -126,7 +126,9 @@ def _nodes_of_page(run: xr.Dataset, gates: list[int]) -> np.ndarray:
         return np.arange(chainage.size)
     start = -np.inf if gates[0] == 0 else places[gates[0] - 1]
     end = np.inf if gates[-1] == places.size - 1 else places[gates[-1] + 1]
-    return np.flatnonzero((chainage >= start) & (chainage <= end))
+    inside = (chainage >= start) & (chainage <= end)
+    pools, counts = np.unique(run["node_pool"].values[inside], return_counts=True)
+    return np.flatnonzero(inside & np.isin(run["node_pool"].values, pools[counts > 1]))
 
 
 def _highest(run: xr.Dataset, nodes: np.ndarray) -> float:

@@ -23,7 +23,16 @@ class Picture:
 
 def pages(places: Sequence[int], most: int) -> list[list[int]]:
     """Places spread over as few pages as hold at most so many each, as evenly as that goes; one empty page for none."""
-    count = max(1, -(-len(places) // most))
+    return spread(places, page_count(len(places), most))
+
+
+def page_count(number: int, most: int) -> int:
+    """How many pages hold a number of things, at most so many each; at least one."""
+    return max(1, -(-number // most))
+
+
+def spread(places: Sequence[int], count: int) -> list[list[int]]:
+    """Places spread in order over so many pages, as evenly as that goes."""
     size, larger = divmod(len(places), count)
     ends = [(page + 1) * size + min(page + 1, larger) for page in range(count)]
     return [list(places[start:end]) for start, end in zip([0, *ends[:-1]], ends, strict=True)]

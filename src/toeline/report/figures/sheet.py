@@ -5,6 +5,7 @@ All measures are inches on paper, so that text keeps its size and nothing is cut
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from typing import Any
 
 import matplotlib
 from matplotlib.artist import Artist
@@ -14,6 +15,7 @@ from matplotlib.ticker import MaxNLocator
 
 from toeline.report.run_identity import RunIdentity
 from toeline.report.style import FAINT_INK, INK, PAPER, RULE
+from toeline.results.provenance import COMPLETE
 
 WIDTH = 10.0
 LEFT, RIGHT = 0.85, 0.95
@@ -65,10 +67,25 @@ class Panel:
     width: float = 1.0
 
 
+@dataclass(frozen=True)
+class About:
+    """What a figure is of: the line below its title, the small line below that, and the version of the program."""
+
+    line: str
+    small_line: str
+    version: str
+
+
+def about_run(run: RunIdentity) -> About:
+    """What a figure of a run says about it."""
+    outcome = "" if run.outcome == COMPLETE else f"; {run.outcome}"
+    return About(f"{run.canal}: {run.day}; {run.plan}", f"{run.period}, {run.zone}{outcome}", run.version)
+
+
 class Sheet:
     """A page with one title and panels below it."""
 
-    def __init__(self, title: str, about: RunIdentity, room: float, keys: Sequence[str], *, right: float = RIGHT):
+    def __init__(self, title: str, about: About, room: float, keys: Sequence[str], *, right: float = RIGHT):
         """`room` is the height for panels [inch]; `keys` are the words of the legend, for which room is kept."""
         self._rows = legend_rows(keys)
         self._room, self._right = room, right
@@ -80,12 +97,13 @@ class Sheet:
     def _legend_height(self) -> float:
         return 0.42 + LEGEND_ROW * len(self._rows)
 
-    def _title(self, title: str, about: RunIdentity) -> None:
+    def _title(self, title: str, about: About) -> None:
         write, left = self.figure.text, 0.3 / WIDTH
         write(left, self._up(0.32), title, fontsize=TITLE_SIZE, weight="bold", va="center")
-        write(left, self._up(0.55), f"{about.canal}: {about.day}; {about.plan}", fontsize=TEXT_SIZE, va="center")
-        when = f"{about.period}, {about.zone}" + ("" if about.outcome == "complete" else f"; {about.outcome}")
-        write(left, self._up(0.73), _shortened(when), fontsize=SMALL_SIZE, color=FAINT_INK, va="center")
+        write(left, self._up(0.55), _shortened(about.line, 115), fontsize=TEXT_SIZE, va="center")
+        write(
+            left, self._up(0.73), _shortened(about.small_line, 150), fontsize=SMALL_SIZE, color=FAINT_INK, va="center"
+        )
         bottom = 0.2 / self.height
         write(left, bottom, CAUTION, fontsize=SMALL_SIZE, color=INK, va="center")
         write(1 - left, bottom, about.version, fontsize=SMALL_SIZE, color=FAINT_INK, va="center", ha="right")
@@ -107,7 +125,7 @@ class Sheet:
     def side_title(self, text: str) -> None:
         """What all vertical axes of the sheet measure, at its left edge."""
         middle = self.height - HEAD - self._room / 2
-        place = {"rotation": 90, "ha": "center", "va": "center"}
+        place: dict[str, Any] = {"rotation": 90, "ha": "center", "va": "center"}
         self.figure.text(0.3 / WIDTH, middle / self.height, text, fontsize=TEXT_SIZE, **place)
 
     def heading(self, top: float, text: str) -> None:
@@ -143,5 +161,5 @@ def legend_rows(keys: Sequence[str]) -> list[int]:
     return rows if rows[-1] else []
 
 
-def _shortened(text: str, most: int = 150) -> str:
+def _shortened(text: str, most: int) -> str:
     return text if len(text) <= most else text[: most - 1].rstrip() + "…"

@@ -14,10 +14,21 @@ from matplotlib.axes import Axes
 
 from toeline.findings.jumps import GateJumps, gate_jumps
 from toeline.findings.series import Extreme, is_any, names
-from toeline.report.figures.draw import Drawn, area_look, draw_line, empty_note, key, mark_look, panel_title, words_of
-from toeline.report.figures.jump_strip import hazard_words, settling_beside
+from toeline.findings.settling import gates_settling
+from toeline.report.figures.draw import (
+    Drawn,
+    area_look,
+    draw_line,
+    empty_note,
+    key,
+    mark_look,
+    panel_title,
+    value_range,
+    words_of,
+)
+from toeline.report.figures.jump_strip import hazard_words
 from toeline.report.figures.picture import Picture, page_name, pages
-from toeline.report.figures.sheet import Panel, Sheet, in_house_style
+from toeline.report.figures.sheet import Panel, Sheet, about_run, in_house_style
 from toeline.report.figures.time_axis import TimeAxis
 from toeline.report.number_table import Column, NumberTable, flag_column, quantity_column, time_column
 from toeline.report.run_clock import RunClock
@@ -43,6 +54,8 @@ THROUGH_TIME, IN_PLANE = (0.0, 0.62), (0.72, 0.28)
 """Left edge and width of the two panels of a gate, in shares of the room."""
 THIN = 0.8
 """Width of limits in the plane, where they fold [points]."""
+LEAST_DISCHARGE = 0.05
+"""Room beside the path in the plane, at least [m³/s]: a gate whose discharge stands has no range of its own."""
 START = Mark("start of the run", INK, "circle", filled=False)
 END = Mark("end of the run", INK, "square")
 LIMITS = (MODULAR_LIMIT, DROWNING_LIMIT, PROTECTION_LIMIT)
@@ -70,15 +83,18 @@ def limit_levels(run: xr.Dataset) -> dict[str, np.ndarray]:
 def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) -> Picture:
     shown: list[Drawn] = [TAILWATER, *LIMITS, HAZARD_FLOOR, SETTLING, START, END]
     sheet = Sheet(
-        "Tailwater and its limits", run_identity(run), PITCH * max(len(jumps), 1) + RISE + 0.25, words_of(shown)
+        "Tailwater and its limits",
+        about_run(run_identity(run)),
+        PITCH * max(len(jumps), 1) + RISE + 0.25,
+        words_of(shown),
     )
-    time = TimeAxis(run)
+    time, settling = TimeAxis(run), gates_settling(run)
     for row, gate in enumerate(jumps):
         top, here = RISE + (row + 1) * PITCH - HEIGHT, run.isel(gate=row)
         left = sheet.axes(Panel(top, HEIGHT, *THROUGH_TIME))
         right = sheet.axes(Panel(top, HEIGHT, *IN_PLANE))
         right.sharey(left)
-        _through_time(left, here, time, display)
+        _through_time(left, here, settling[:, row], time, display)
         time.apply(left, labelled=row == len(jumps) - 1)
         _in_plane(right, here, display)
         panel_title(left, gate.gate, lift=11.0)
@@ -90,7 +106,7 @@ def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) 
     return Picture(name, sheet.figure, {"": table(run, display)}, words(run, jumps, display))
 
 
-def _through_time(axes: Axes, run: xr.Dataset, time: TimeAxis, display: Display) -> None:
+def _through_time(axes: Axes, run: xr.Dataset, settling: np.ndarray, time: TimeAxis, display: Display) -> None:
     factor = shown_factor("length", display)
     tailwater, limits = run["gate_tailwater_level"].values / factor, limit_levels(run)
     for line in LIMITS:
@@ -100,7 +116,7 @@ def _through_time(axes: Axes, run: xr.Dataset, time: TimeAxis, display: Display)
     look = area_look(HAZARD_FLOOR)
     limit = limits[PROTECTION_LIMIT.word] / factor
     axes.fill_between(time.steps, tailwater, limit, where=lacks, label=HAZARD_FLOOR.word, **look)
-    time.strip(axes, settling_beside(run), SETTLING, 1.02, 0.06, above=True)
+    time.strip(axes, settling, SETTLING, 1.02, 0.06, above=True)
 
 
 def _in_plane(axes: Axes, run: xr.Dataset, display: Display) -> None:
@@ -119,7 +135,9 @@ def _in_plane(axes: Axes, run: xr.Dataset, display: Display) -> None:
               color=HAZARD_FLOOR.colour, markeredgecolor=INK, markeredgewidth=0.4)  # fmt: skip
     for mark, place in ((START, 0), (END, -1)):
         axes.plot(discharge[[place]], tailwater[[place]], label=mark.word, zorder=5, **mark_look(mark))
-    axes.margins(x=0.08)
+    low, high = value_range(discharge)
+    room = max(0.08 * (high - low), LEAST_DISCHARGE / shown_factor("discharge", display))
+    axes.set_xlim(low - room, high + room)
 
 
 def words(run: xr.Dataset, jumps: list[GateJumps], display: Display) -> str:
