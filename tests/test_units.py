@@ -58,9 +58,13 @@ EXACT = {
     ("duration", "min"): Fraction(MINUTE),
     ("duration", "h"): Fraction(HOUR),
     ("duration", "d"): Fraction(DAY),
+    ("discharge per length", "ft2/s"): FOOT**2,
     ("rate of loss", "mm/day"): Fraction(1, 1000 * DAY),
     ("rate of loss", "mm/h"): Fraction(1, 1000 * HOUR),
+    ("rate of loss", "m/day"): Fraction(1, DAY),
     ("rate of loss", "in/day"): INCH / DAY,
+    ("rate of loss", "in/h"): INCH / HOUR,
+    ("rate of loss", "ft/day"): FOOT / DAY,
 }
 
 
@@ -82,7 +86,14 @@ def test_every_spelling_has_an_exact_factor_or_is_si():
 
 
 IN_UDUNITS = {"cfs": "ft3/s", "mi": "mile", "in": "inch", "in/min": "inch/min", "in/day": "inch/day"}
-SI = {"length": "m", "area": "m2", "volume": "m3", "discharge": "m3/s", "duration": "s"}  # others: m/s
+SI = {
+    "length": "m",
+    "area": "m2",
+    "volume": "m3",
+    "discharge": "m3/s",
+    "discharge per length": "m2/s",
+    "duration": "s",
+}  # others: m/s
 
 
 @pytest.mark.parametrize("dimension", [dimension for dimension in SPELLINGS if dimension != "weir coefficient"])

@@ -34,6 +34,7 @@ from toeline.results.provenance import (
     STUCK,
     run_attributes,
 )
+from toeline.results.variables import GAUGE_SIDES
 from toeline.scenario import RuleChoice, Scenario
 from toeline.scenario.limits import limits_of
 from toeline.scenario.setting_dimensions import setting_dimensions
@@ -49,8 +50,8 @@ def simulate(
     """Step a day and return the run as a dataset; with `output` it is written there while it goes on.
 
     `progress` is called with the fraction done. Raises ScenarioError where the day cannot start as asked, UsageError
-    where `output` exists and may not be overwritten, RunError where no step can be solved; what was done until then, as
-    after a KeyboardInterrupt, stays in `output`.partial.
+    where `output` exists and may not be overwritten, RunError where no step can be solved or a rule fails; what was
+    done until then, as after a KeyboardInterrupt, stays in `output`.partial.
     """
     network = network_of(scenario.canal, scenario.day.period.spacing)
     timetable = timetable_of(scenario, network)
@@ -59,11 +60,12 @@ def simulate(
     level, discharge = levels_and_discharges(start)
     description = static_values(network, level, discharge), attributes(scenario), scenario.day.period.start
     sink = DatasetSink(*description) if output is None else NetcdfSink(output, *description, overwrite=overwrite)
-    run = Run(network, timetable, sink, start)
+    run = None
     try:
+        run = Run(network, timetable, sink, start)
         run.go(progress)
     except (KeyboardInterrupt, RunError) as reason:
-        sink.close(_stopped(run, reason), {})
+        sink.close(_stopped(timetable, run.time if run else 0, reason), {})
         raise
     sink.close(COMPLETE, run.end_state())
     return sink.dataset if isinstance(sink, DatasetSink) else open_run(sink.written_path)
@@ -76,7 +78,7 @@ def start_of(scenario: Scenario, network: Network, timetable: Timetable) -> Star
     nodes = network.channel.nodes[: network.canal_node_count]
     return read_end_state(
         scenario.start_file, start=scenario.day.period.start, chainage=nodes["chainage"], bed_level=nodes["bed_level"],
-        gates=network.names.gates,
+        labels={"gate": network.names.gates, "bay": network.names.bays, "offtake": network.names.offtakes},
     )  # fmt: skip
 
 
@@ -85,8 +87,8 @@ def levels_and_discharges(start: Start | dict[str, np.ndarray]) -> tuple[np.ndar
     return (start["end_level"], start["end_discharge"]) if isinstance(start, dict) else (start.level, start.discharge)
 
 
-def _stopped(run: Run, reason: BaseException) -> str:
-    at = datetime.fromtimestamp((run.timetable.start_epoch_ms + run.time) / 1000.0, UTC).isoformat()
+def _stopped(timetable: Timetable, time: int, reason: BaseException) -> str:
+    at = datetime.fromtimestamp((timetable.start_epoch_ms + time) / 1000.0, UTC).isoformat()
     return f"stopped at {at}: {reason if isinstance(reason, RunError) else 'interrupted'}"
 
 
@@ -143,7 +145,7 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
     pools, offtakes = network.tables.pools, network.tables.offtakes
     times = pool_times(network, level, discharge)
     beside = (*names.pools, "tail")
-    node_pool = np.searchsorted(pools.last_node, np.arange(nodes.size)).astype(np.int32)
+    node_pool = network.pool_of(np.arange(nodes.size)).astype(np.int32)
     return {
         "gate": np.array(names.gates, object),
         "gate_chainage": network.channel.nodes["chainage"][gates.downstream_node],
@@ -162,6 +164,10 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
         "gate_downstream_pool": np.array(
             [beside[np.searchsorted(pools.last_node, down)] for down in gates.downstream_node], object
         ),
+        "bay": np.array(names.bays, object),
+        "bay_gate": np.array(
+            [names.gates[g] for g in network.tables.leaves.gate[network.tables.leaves.bay >= 0]], object
+        ),
         "pool": np.array(names.pools, object),
         "pool_length": chainage[pools.last_node] - chainage[pools.first_node],
         "pool_target_level": names.target_level,
@@ -171,6 +177,8 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
         "offtake": np.array(names.offtakes, object),
         "offtake_pool": np.array([names.pools[node_pool[node]] for node in offtakes.node], object),
         "offtake_chainage": chainage[offtakes.node],
+        **_escape_facts(network),
+        **_gauge_facts(network),
         "offtake_sill_level": offtakes.sill_level,
         "node": np.arange(nodes.size),
         "chainage": chainage,
@@ -183,9 +191,32 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
     }
 
 
+def _escape_facts(network: Network) -> dict[str, np.ndarray]:
+    names, escapes = network.names, network.tables.escapes
+    return {
+        "escape": np.array(names.escapes, object),
+        "escape_pool": np.array([names.pools[pool] for pool in network.pool_of(escapes.node)], object),
+        "escape_chainage": network.channel.nodes["chainage"][escapes.node],
+        "escape_crest_level": escapes.crest_level,
+    }
+
+
+def _gauge_facts(network: Network) -> dict[str, np.ndarray]:
+    gauges, chainage = network.names.gauges, network.channel.nodes["chainage"]
+    places = np.maximum(network.tables.gauges.node, 0) + network.tables.gauges.weight
+    return {
+        "gauge": np.array([gauge.name for gauge in gauges], object),
+        "gauge_gate": np.array([gauge.gate for gauge in gauges], object),
+        "gauge_side": np.array([GAUGE_SIDES.index(gauge.side) for gauge in gauges], np.int8),
+        "gauge_pool": np.array([gauge.pool for gauge in gauges], object),
+        "gauge_chainage": np.interp(places, np.arange(chainage.size), chainage),
+        "gauge_zero_level": network.tables.gauges.zero_level,
+    }
+
+
 def _round_trips(network: Network, level: np.ndarray, discharge: np.ndarray) -> np.ndarray:
     """Wave round trip of every pool [s]; NaN where a pool is dry."""
-    state = new_state(network.node_count, network.offtake_count)
+    state = new_state(network)
     state.nodes["level"], state.links["discharge"] = level, discharge
     trips = [round_trip(network.channel, pool.first_node, pool.last_node, state) for pool in network.tables.pools]
     return np.where(np.isfinite(trips), trips, np.nan)

@@ -61,7 +61,14 @@ SPELLINGS: dict[Dimension, dict[str, float]] = {
     "velocity": _VELOCITIES,
     "speed": _VELOCITIES,
     "duration": {"s": 1.0, "min": 60.0, "h": 3600.0, "d": 86_400.0},
-    "rate of loss": {"mm/day": 0.001 / 86_400.0, "mm/h": 0.001 / 3600.0, "in/day": 0.0254 / 86_400.0},
+    "rate of loss": {
+        "mm/day": 0.001 / 86_400.0,
+        "mm/h": 0.001 / 3600.0,
+        "m/day": 1.0 / 86_400.0,
+        "in/day": 0.0254 / 86_400.0,
+        "in/h": 0.0254 / 3600.0,
+        "ft/day": 0.3048 / 86_400.0,
+    },
     "weir coefficient": {"m^0.5/s": 1.0, "ft^0.5/s": math.sqrt(0.3048)},
 }
 """Factor to SI of every spelling: value in SI = value as written × factor."""
@@ -205,6 +212,10 @@ class Display:
     def speed(self, value: float) -> str:
         """Write the speed of a hoist [m/s]."""
         return self._text(value, "speed", 3)
+
+    def rate_of_loss(self, value: float) -> str:
+        """Write a seepage, evaporation or rain [m/s]."""
+        return self._text(value, "rate of loss", 1 if self.system is UnitSystem.metric else 2)
 
     def _text(self, value: float, dimension: Dimension, decimals: int) -> str:
         if math.isnan(value):

@@ -1,11 +1,11 @@
-"""Standard day against a stripped kernel, and the command from the shell; medians and spread of one run."""
+"""Standard day against a stripped kernel and under rules, and the command from the shell; medians and spreads."""
 
 import os
 import subprocess
 import sys
 import tempfile
 import time
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from pathlib import Path
 from statistics import median
 
@@ -29,10 +29,13 @@ class NoSink:
 
 
 class Day:
-    """The standard day, ready to be stepped again and again; `quiet` leaves all output but the last row out."""
+    """The standard day, ready to be stepped again and again; `quiet` leaves all output but the last row out, `rules`
+    stand beside its orders.
+    """
 
-    def __init__(self, folder: Path, quiet: bool):
+    def __init__(self, folder: Path, quiet: bool, rules: Sequence[dict] = ()):
         canal, day = standard_day()
+        day["plans"]["only"]["rules"] = list(rules)
         day["output"] = {"every": "24 h", "profiles_every": "24 h"} if quiet else day["output"]
         scenario = scenario_of(folder, canal, day)
         self.network = network_of(scenario.canal, scenario.day.period.spacing)
@@ -83,6 +86,24 @@ def time_the_day(folder: Path) -> None:
     show("day with output every minute and near-gate pass", times["loud"], over)
 
 
+def time_the_rules(folder: Path) -> None:
+    print("rules on ten gates every 5 min: processor time inside them, over that of the whole day")
+    kinds: dict[str, dict] = {"hold upstream level": {}, "hold discharge": {"target": 8.0}}
+    for kind, keys in kinds.items():
+        day = Day(folder, False, [{"kind": kind, "gate": f"G{k}", "every": "5 min", **keys} for k in range(10)])
+        shares = [share_of_rules(day) for _ in range(REPEATS + 1)][1:]
+        print(f"{kind:<52}{median(shares):9.1%}    {min(shares):.1%} to {max(shares):.1%}")
+
+
+def share_of_rules(day: Day) -> float:
+    """Time that deciding and moving the gates takes of a run; in one run, so that a busy machine slows both."""
+    run = Run(day.network, day.timetable, NoSink(), day.start)
+    decide, inside = run.operations.decisions.act, []
+    run.operations.decisions.act = lambda *given: inside.append(seconds(lambda: decide(*given)))
+    whole = seconds(run.go)
+    return sum(inside) / whole
+
+
 def time_the_command(folder: Path) -> None:
     run_it = ("run", str(DEMO), "--plan", "early", "--overwrite", "-o", str(folder / "demo.nc"))
     fresh = os.environ | {"TOELINE_CACHE_DIR": str(folder / "cache")}
@@ -104,6 +125,7 @@ def time_the_command(folder: Path) -> None:
 def main() -> None:
     with tempfile.TemporaryDirectory() as folder:
         time_the_day(Path(folder))
+        time_the_rules(Path(folder))
         time_the_command(Path(folder))
 
 

@@ -27,6 +27,6 @@ def solve_many(tables, nodes, work, solves):
 
 def prepared(network, level: np.ndarray):
     """Arguments of `solve_many` but for the count."""
-    state, work = new_state(network.node_count, network.offtake_count), new_work(network.node_count)
+    state, work = new_state(network), new_work(network.node_count)
     state.nodes["level"] = level
     return network.tables, state.nodes, work

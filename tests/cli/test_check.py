@@ -41,3 +41,19 @@ def test_a_file_that_is_not_there_is_wrong_use(folder, call):
     result = call("check", "dya.toml")
     assert result.exit_code == 2
     assert "dya.toml" in result.stderr
+
+
+def test_rules_are_counted_and_code_of_ones_own_is_named(folder, call):
+    rule = (
+        "from toeline.rules import Rule, place\n"
+        "class Idle(Rule):\n"
+        "    settings = {'gate': place('gate', 'Its gate.')}\n"
+        "    def decide(self, now):\n"
+        "        return None\n"
+    )
+    (folder / "idle.py").write_text(rule)
+    day = folder / "day.toml"
+    entry = 'rules = [{ kind = "idle.py:Idle", gate = "Last check" }]\norders = []'
+    day.write_text(day.read_text().replace("orders = []", entry))
+    result = call("check", "day.toml")
+    assert "plan hold, 0 orders, 1 rule; plan raise, 1 order; rules of your own were run from idle.py" in result.stdout

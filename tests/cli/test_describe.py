@@ -42,3 +42,27 @@ def test_a_file_that_is_no_run_is_refused(folder, call):
     result = call("describe", "run.nc")
     assert (result.exit_code, result.stdout) == (2, "")
     assert "run.nc" in result.stderr
+
+
+def test_rules_are_described_with_their_settings(folder, call):
+    day = folder / "day.toml"
+    rule = '{ kind = "hold upstream level", gate = "Last check", gain = 0.4, hours = ["06:00", "20:00"] }'
+    day.write_text(day.read_text().replace("orders = []", f"rules = [{rule}]"))
+    page = " ".join(call("describe", "day.toml").stdout.split())
+    assert (
+        "RULES of plan hold: 1 hold upstream level: gate Last check; band 0.02 m; every 5 min; "
+        "hours 06:00 to 20:00; gain 0.4 " in page
+    )
+
+
+def test_lead_times_of_the_pools_are_told(folder, call):
+    page = call("describe", "day.toml").stdout
+    assert "LEAD TIMES OF THE POOLS\n              by wave  by volume\n  Upper pool" in page
+
+
+def test_a_day_without_a_steady_start_is_described_all_the_same(folder, call):
+    day = folder / "day.toml"
+    day.write_text(day.read_text().replace('["06:00", 0.2]', '["06:00", 9.0]'))
+    page = " ".join(call("describe", "day.toml").stdout.split())
+    assert "LEAD TIMES OF THE POOLS None:" in page
+    assert "exceed the inflow" in page

@@ -7,7 +7,15 @@ from toeline.hydraulics import hydraulic_jump, jump_location, underflow_gate
 from toeline.results import variables
 from toeline.results.variables import VARIABLES, growing
 
-OUTPUT = (rows.GATE_OUTPUT, rows.POOL_OUTPUT, rows.OFFTAKE_OUTPUT, rows.CANAL_OUTPUT)
+OUTPUT = (
+    rows.GATE_OUTPUT,
+    rows.BAY_OUTPUT,
+    rows.POOL_OUTPUT,
+    rows.OFFTAKE_OUTPUT,
+    rows.ESCAPE_OUTPUT,
+    rows.GAUGE_OUTPUT,
+    rows.CANAL_OUTPUT,
+)
 
 
 def test_every_row_of_output_is_known_and_complete():
@@ -31,7 +39,8 @@ def test_flags_are_bytes_in_both():
         ),
         (
             variables.DISCHARGE_QUALITIES,
-            "QUALITY_GOOD QUALITY_NEAR_LIMIT QUALITY_LIP_NEAR_SURFACE QUALITY_VERY_DROWNED QUALITY_REVERSE",
+            "QUALITY_GOOD QUALITY_NEAR_LIMIT QUALITY_LIP_NEAR_SURFACE QUALITY_VERY_DROWNED QUALITY_REVERSE "
+            "QUALITY_UNEVEN_BAYS",
         ),
         (
             variables.JUMP_STATES,

@@ -31,9 +31,16 @@ LABELS = {
     "gate": ["Orchard check", "Mill check"],
     "gate_upstream_pool": ["Orchard pool", "Mill pool"],
     "gate_downstream_pool": ["Mill pool", "tail"],
+    "bay": ["Mill check, bay 1", "Mill check, bay 2", "Mill check, bay 3"],
+    "bay_gate": ["Mill check"] * 3,
     "pool": ["Orchard pool", "Mill pool"],
     "offtake": ["North lateral"],
     "offtake_pool": ["Orchard pool"],
+    "escape": ["Storm escape"],
+    "escape_pool": ["Mill pool"],
+    "gauge": ["Mill gauge"],
+    "gauge_gate": ["Mill check"],
+    "gauge_pool": ["Mill pool"],
 }
 
 
@@ -60,8 +67,11 @@ def run_by_hand(
         "profile_time": len(profile_minutes),
         "order": orders,
         "gate": 2,
+        "bay": 3,
         "pool": 2,
         "offtake": 1,
+        "escape": 1,
+        "gauge": 1,
         "node": nodes,
     }
     given = {name: np.asarray(value) for name, value in values.items()} | {

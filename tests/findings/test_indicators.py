@@ -187,13 +187,14 @@ def test_limits_of_one_name_are_told_apart(run_by_hand):
 
 def test_volumes_spilled_and_lost_are_told_where_the_run_has_them(run_by_hand):
     run = run_by_hand(MINUTES, values={})
-    assert found(run, "volume spilled") is None
-    with_escapes = run.assign(
+    assert found(run, "volume lost") is None
+    assert found(run.isel(escape=[]), "volume spilled") is None
+    with_escapes = run.isel(escape=[0, 0]).assign(
         escape_volume=(("time", "escape"), [[0.0, 1.0], [2.0, 1.0], [3.0, 1.0], [5.0, 2.0]]),
         pool_loss_volume=(("time", "pool"), [[0.0, 0.0], [1.0, 0.0], [2.0, 0.0], [3.0, 4.0]]),
     )
-    assert found(with_escapes, "volume spilled").value == pytest.approx(6.0)
     assert found(with_escapes, "volume lost").value == pytest.approx(7.0)
+    assert found(with_escapes.assign_coords(escape=["one", "two"]), "volume spilled").value == pytest.approx(6.0)
 
 
 def test_every_indicator_is_a_finite_number_and_stands_once(run_by_hand):

@@ -1,4 +1,4 @@
-"""The water ledger closes on a run whose volumes are known."""
+"""The water ledger closes on a run whose volumes are known, for the canal and pool by pool."""
 
 import numpy as np
 import pytest
@@ -15,6 +15,10 @@ def book(run_by_hand):
                 "canal_inflow_volume": [0.0, 3600.0, 7200.0],
                 "canal_outflow_volume": [0.0, 2000.0, 4100.0],
                 "delivery_volume": np.array([[0.0, 500.0, 1000.5]]).T,
+                "escape_volume": np.array([[0.0, 0.0, 70.0]]).T,
+                "pool_inflow_volume": np.array([[0.0, 3600.0, 7200.0], [0.0, 2500.0, 5180.0]]).T,
+                "pool_outflow_volume": np.array([[0.0, 2500.0, 5180.0], [0.0, 2000.0, 4100.0]]).T,
+                "pool_loss_volume": np.array([[0.0, 9.0, 19.0], [0.0, -40.0, -90.0]]).T,
                 "pool_volume": np.array([[10_000.0, 10_600.0, 11_000.0], [8_000.0, 8_500.0, 9_099.0]]).T,
             },
         )
@@ -22,19 +26,27 @@ def book(run_by_hand):
 
 
 def test_entries_are_volumes_over_the_run(book):
-    assert (book.inflow, book.outflow) == (7200.0, 4100.0)
-    assert book.deliveries == {"North lateral": 1000.5}
-    assert book.storage_changes == {"Orchard pool": 1000.0, "Mill pool": 1099.0}
+    assert (book.canal.inflow, book.canal.outflow) == (7200.0, 4100.0)
+    assert book.canal.deliveries == {"North lateral": 1000.5}
+    assert book.canal.escapes == {"Storm escape": 70.0}
+    assert book.canal.losses == 19.0 - 90.0
+    assert book.canal.storage_change == 2099.0
 
 
 def test_the_residual_is_what_is_left_over(book):
-    assert (book.delivered, book.storage_change) == (1000.5, 2099.0)
-    assert book.residual == pytest.approx(0.5, abs=1e-9)
+    assert book.canal.residual == pytest.approx(7200 - 4100 - 1000.5 - 70 + 71 - 2099, abs=1e-9)
+
+
+def test_every_pool_has_its_own_account_and_residual(book):
+    orchard, mill = book.pools["Orchard pool"], book.pools["Mill pool"]
+    assert (orchard.delivered, orchard.spilled, mill.delivered, mill.spilled) == (1000.5, 0.0, 0.0, 70.0)
+    assert orchard.residual == pytest.approx(7200 - 5180 - 1000.5 - 19 - 1000, abs=1e-9)
+    assert mill.residual == pytest.approx(5180 - 4100 - 70 + 90 - 1099, abs=1e-9)
 
 
 def test_a_run_that_never_made_a_step_has_an_empty_ledger(run_by_hand):
     book = ledger(run_by_hand([], values={}))
-    assert (book.inflow, book.delivered, book.residual) == (0.0, 0.0, 0.0)
+    assert (book.canal.inflow, book.canal.delivered, book.canal.residual) == (0.0, 0.0, 0.0)
 
 
 def test_an_acre_foot_is_43560_cubic_feet():

@@ -6,7 +6,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from toeline.hydraulics.weir import drowned_weir_factor, weir_discharge
+from toeline.hydraulics.weir import drowned_weir_factor, side_weir_discharge, weir_discharge
 
 levels = st.floats(-1.0, 4.0)
 
@@ -40,3 +40,20 @@ def test_share_of_the_free_discharge(upstream_head, downstream_head):
     share = drowned_weir_factor(upstream_head, downstream_head)
     assert 0.0 <= share <= 1.0
     assert (share == 1.0) or downstream_head > 0.0
+
+
+def test_side_weir_is_a_weir_while_it_falls_freely():
+    assert side_weir_discharge(1.7, 8.0, 1.0, 1.3, -math.inf) == weir_discharge(1.7, 8.0, 1.0, 1.3, -math.inf)
+    assert side_weir_discharge(1.7, 8.0, 1.0, 1.0, -math.inf) == 0.0
+
+
+@given(levels, levels)
+def test_nothing_comes_back_over_a_side_weir(water, outside):
+    assert side_weir_discharge(1.7, 8.0, 1.0, water, outside) >= 0.0
+    assert side_weir_discharge(1.7, 8.0, 1.0, min(water, outside), outside) == 0.0
+
+
+@given(levels, levels, st.floats(1e-6, 1e-4))
+def test_side_weir_rises_with_the_water_without_a_leap(water, outside, rise):
+    base, more = (side_weir_discharge(1.7, 8.0, 1.0, level, outside) for level in (water, water + rise))
+    assert base - 1e-12 <= more <= base + 1000.0 * rise

@@ -96,3 +96,36 @@ def test_ledger_of_a_day_that_goes_on_from_an_end_state(tmp_path):
     run = simulate(scenario_of(tmp_path, canal(), part(6, 12, False, start={"file": "first.nc"}), name="second"))
     assert run.canal_inflow_volume[0] == run.balance_residual[0] == 0.0
     assert np.abs(run.balance_residual).max() <= 1e-9 * run.canal_inflow_volume[-1]
+
+
+SHORT_OF_NOTHING = {
+    "escapes": [
+        {"name": "E0", "pool": "P0", "chainage": 1400.0, "crest_level": 3.35, "length": 10.0},
+        {"name": "E1", "pool": "P1", "chainage": 1400.0, "crest_level": 2.9, "length": 6.0, "outside_level": 2.92},
+    ],
+    "losses": {"seepage": "300 mm/day", "evaporation": "8 mm/day"},
+    "roughness_calendar": [{"from": "05-01", "factor": 1.3}, {"from": "05-05", "factor": 1.1}],
+}
+"""Escapes, losses and a calendar that changes at midnight of the first day."""
+
+
+def night(begin: int, end: int, **tables) -> Table:
+    """Part of the night that begins at 18:00; hours from there."""
+    period = {"start": f"2031-05-{4 + (18 + begin) // 24:02d}T{(18 + begin) % 24:02d}:00:00Z"}
+    orders = [order("19:30", "G1", by=-0.1)] if begin < 1 else []
+    rain = [[f"+{hour - begin} h", value] for hour, value in ((begin, "10 mm/h"), (10, 0.0)) if begin <= hour < end]
+    weather = {"losses": {"rain": {"shape": "steps", "values": rain}}}
+    return day(9.0, length=f"{end - begin} h", period=period, orders=orders, **weather, **tables)
+
+
+@pytest.mark.parametrize("hour", [4, 6], ids=["before midnight", "at midnight, when the roughness changes"])
+def test_split_run_with_escapes_losses_and_roughness_equals_the_unbroken_one(tmp_path, hour):
+    full = {**canal(), **SHORT_OF_NOTHING}
+    whole = simulate(scenario_of(tmp_path, full, night(0, 12), name="whole"))
+    simulate(scenario_of(tmp_path, full, night(0, hour), name="first"), tmp_path / "first.nc").close()
+    second = simulate(scenario_of(tmp_path, full, night(hour, 12, start={"file": "first.nc"}), name="second"))
+    same_times = whole.sel(time=second.time)
+    assert whole.escape_discharge[-1].min() > 0.0
+    for name in ("pool_tail_level", "escape_discharge", "pool_losses", "pool_roughness_factor"):
+        assert np.abs(same_times[name] - second[name]).max() <= AGREES, name
+    assert np.abs(second.balance_residual).max() <= 1e-9 * second.canal_inflow_volume[-1]

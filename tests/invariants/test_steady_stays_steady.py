@@ -67,3 +67,33 @@ def test_small_disturbance_dies_out_below_a_widening(tmp_path, longest_step, loc
     change = np.abs(run.water_level - run.water_level[0]).max("node")
     assert change.max() > 2e-3
     assert change[-1] < 0.1 * change.max()
+
+
+@pytest.mark.parametrize(
+    "openings", [None, {"G0": 0.5, "G1": 0.35, "G2": 0.5}], ids=["openings that hold the targets", "openings given"]
+)
+def test_with_losses_and_overflowing_escapes(tmp_path, openings):
+    canal = stepped_canal(
+        3, 1500.0, losses={"seepage": "300 mm/day", "evaporation": "8 mm/day"},
+        escapes=[
+            {"name": "E0", "pool": "P0", "chainage": 1400.0, "crest_level": 3.3, "length": 8.0},
+            {"name": "E1", "pool": "P1", "chainage": 1400.0, "crest_level": 2.85, "length": 10.0, "outside_level": 2.9},
+        ],
+        offtakes=[{"name": "T0", "pool": "P1", "chainage": 700.0, "kind": "weir", "sill_level": 2.5, "width": 1.0}],
+    )  # fmt: skip
+    start = {"state": "steady", **({"openings": openings} if openings else {})}
+    run = simulate(scenario_of(tmp_path, canal, day(9.0, length="24 h", start=start)))
+    assert run.escape_discharge[0].min() > 0.05
+    assert change_of_levels(run) <= 1e-6
+
+
+def test_losses_below_a_reservoir(tmp_path):
+    canal = stepped_canal(1, 1000.0, losses={"seepage": "500 mm/day"})
+    escape = {"name": "E0", "pool": "P0", "chainage": 990.0, "crest_level": 1.6, "length": 4.0}
+    canal |= {"head": {"kind": "reservoir", "level": 4.0}, "escapes": [escape]}
+    head = {"bays": 1, "bay_width": 3.0, "sill_level": 1.0, "max_opening": 1.5, "kind": "vertical"}
+    canal["gates"].insert(0, {"name": "H", "upstream": "head", "downstream": "P0", **head})
+    start = {"state": "steady", "openings": {"H": 0.4, "G0": 0.2}}
+    run = simulate(scenario_of(tmp_path, canal, day(length="4 h", start=start)))
+    assert run.escape_discharge[0, 0] > 0.1
+    assert change_of_levels(run) <= 1e-6

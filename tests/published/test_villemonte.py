@@ -2,7 +2,7 @@
 
 import pytest
 
-from toeline.hydraulics.weir import drowned_weir_factor, weir_discharge
+from toeline.hydraulics.weir import drowned_weir_factor, side_weir_discharge, weir_discharge
 
 
 @pytest.fixture(
@@ -31,3 +31,12 @@ def test_villemonte_1947(villemonte_1947):
     assert weir_discharge(1.7, 3.0, 10.0, 10.6, 10.0 + 0.6 * ratio) == pytest.approx(
         1.7 * 3.0 * 0.6**1.5 * share, abs=2e-4
     )
+
+
+def test_drowned_side_weir(villemonte_1947):
+    """The same law beside a canal; a centimetre between both levels is left out, where it is scaled (choice)."""
+    ratio, share = villemonte_1947
+    if ratio == 1.0:
+        share = 0.0
+    passed = side_weir_discharge(1.7, 3.0, 10.0, 10.6, 10.0 + 0.6 * ratio)
+    assert passed == pytest.approx(1.7 * 3.0 * 0.6**1.5 * share, abs=2e-4)

@@ -14,14 +14,23 @@ from toeline.units import Display, UnitSystem
 
 START = datetime(2031, 5, 4, 6, tzinfo=timezone(timedelta(hours=2)))
 STEP_MS = 300_000
-SIZES = {"gate": 2, "pool": 2, "offtake": 1, "node": 4, "time": 49, "profile_time": 5, "order": 0}
+SIZES = {
+    "gate": 2, "bay": 2, "pool": 2, "offtake": 1, "escape": 1, "gauge": 1, "node": 4, "time": 49, "profile_time": 5,
+    "order": 0,
+}  # fmt: skip
 LABELS = {
     "gate": ["Middle check", "Last check"],
+    "bay": ["Last check, bay 1", "Last check, bay 2"],
+    "bay_gate": ["Last check", "Last check"],
     "pool": ["Upper pool", "Lower pool"],
     "offtake": ["East lateral"],
     "gate_upstream_pool": ["Upper pool", "Lower pool"],
     "gate_downstream_pool": ["Lower pool", "tail"],
     "offtake_pool": ["Lower pool"],
+    "escape": ["Storm escape"],
+    "escape_pool": ["Upper pool"],
+    "gauge": ["Staff 3"],
+    "gauge_pool": ["Lower pool"],
 }
 DROWNED_FLOW, DROWNED_JUMP = 3, 1
 QUIET = {
@@ -30,6 +39,8 @@ QUIET = {
     "jump_end_distance": 9.0,
     "jump_state": DROWNED_JUMP,
     "gate_flow_state": DROWNED_FLOW,
+    "pool_roughness_factor": 1.0,
+    "gauge_reading": 1.25,
 }
 
 

@@ -100,6 +100,7 @@ def test_the_ledger_is_in_both_units_with_its_residual(invented_run, metric):
 def order(invented_run, status: int, reason: str):
     return invented_run(
         order_time=np.array([1200.0]), order_gate=np.array(["Middle check"], dtype=object), order_kind=np.array([0]),
+        order_source=np.array(["schedule"], dtype=object),
         order_value=np.array([2.5]), order_opening_before=np.array([0.4]), order_opening_after=np.array([1.2]),
         order_completed=np.array([1500.0]), order_status=np.array([status]),
         order_reason=np.array([reason], dtype=object),
@@ -139,6 +140,53 @@ def test_the_page_keeps_to_its_width_and_ends_with_the_caution(swept_hour, metri
     page = run_summary(swept_hour, metric, width=width)
     assert max(len(line) for line in page.splitlines()) <= width
     assert section(page, "Caution") == CAUTION
+
+
+def test_an_escape_that_spills_tells_when_and_how_much(invented_run, metric):
+    volume = np.linspace(0.0, 1200.0, 49)[:, None]
+    page = run_summary(invented_run(escape_discharge=one_bad_hour((0.0, 0.5))[:, :1], escape_volume=volume), metric)
+    assert "Storm escape, Upper pool: spills 07:" in section(page, "ESCAPES")
+    assert "1200 m3 in all, at most 0.500 m3/s at 07:10" in section(page, "ESCAPES")
+
+
+def test_an_escape_that_stays_dry_says_so(invented_run, metric):
+    assert "Storm escape, Upper pool: did not spill." in section(run_summary(invented_run(), metric), "ESCAPES")
+
+
+def test_a_gauge_shows_its_readings_as_on_the_staff(invented_run, metric):
+    readings = np.linspace(1.0, 1.48, 49)[:, None]
+    text = section(run_summary(invented_run(gauge_reading=readings), metric), "STAFF GAUGES")
+    assert "Staff 3 Lower pool 1.00 m 1.00 m at 06:00 1.48 m at 10:00" in " ".join(text.split())
+
+
+def test_roughness_is_told_only_where_the_calendar_changes_it(invented_run, metric):
+    quiet, weedy = invented_run(), invented_run(pool_roughness_factor=np.full((49, 2), 1.15))
+    assert "ROUGHNESS" not in run_summary(quiet, metric)
+    assert "Upper pool 1.150 1.150 1.150" in " ".join(section(run_summary(weedy, metric), "ROUGHNESS").split())
+
+
+def test_the_ledger_is_told_pool_by_pool_with_losses(invented_run, metric):
+    lost = np.outer(np.linspace(0.0, 1.0, 49), [40.0, 25.0])
+    page = section(run_summary(invented_run(pool_loss_volume=lost), metric), "WATER LEDGER")
+    words = " ".join(page.split())
+    assert "lost in Upper pool -40 -0.03" in words
+    assert "m3 lost residual Upper pool 40 -4e+01 Lower pool 25 -2e+01 canal 65 -6e+01" in words
+
+
+def test_uneven_bays_are_told_with_what_is_not_modelled(invented_run, metric):
+    page = run_summary(invented_run(bay_opening=one_bad_hour((0.3, 0.8))), metric)
+    text = section(page, "BAYS THAT MOVE APART")
+    assert "Last check: greatest difference of neighbours 0.50 m at 07:10, bays 1 and 2" in text
+    assert "side rollers" in text
+
+
+def test_order_to_one_bay_names_it(invented_run, metric):
+    order = {
+        "order_time": np.array([600.0]), "order_gate": np.array(["Last check"], object), "order_bay": np.array([2]),
+        "order_reason": np.array(["too small"], object), "order_status": np.array([2]),
+        "order_source": np.array(["schedule"], object),
+    }  # fmt: skip
+    assert "Last check, bay 2, " in section(run_summary(invented_run(**order), metric), "ORDERS")
 
 
 FALL = {

@@ -28,7 +28,7 @@ def next_run(run):
         "start": run.start + timedelta(hours=1),
         "chainage": run.values("chainage"),
         "bed_level": run.values("bed_level"),
-        "gates": run.values("gate").tolist(),
+        "labels": {name: run.values(name).tolist() for name in ("gate", "bay", "offtake")},
     }
 
 
@@ -54,7 +54,9 @@ def test_the_same_instant_in_another_offset_is_accepted(path, next_run):
 @pytest.mark.parametrize(
     ("change", "message"),
     [
-        ({"gates": ["Orchard check"]}, "its gates are"),
+        ({"labels": {"gate": ["Orchard check"]}}, "its gates are"),
+        ({"labels": {"bay": ["Orchard check, bay 1"]}}, "its bays are"),
+        ({"labels": {"offtake": []}}, "its offtakes are"),
         ({"chainage": np.arange(13) * 90.0}, "12 nodes, this canal 13: another canal, or another spacing"),
         ({"chainage": np.arange(12) * 90.0}, r"chainage of node 11 is 1100\.000 m there, 990\.000 m here"),
         ({"bed_level": np.zeros(12)}, "bed_level of node"),
@@ -69,4 +71,11 @@ def test_an_unfinished_run_is_refused(run, next_run, tmp_path):
     sink = NetcdfSink(tmp_path / "run.nc", run.static(), run.attributes, run.start)
     sink.close("stopped at noon: interrupted", run.end_state())
     with pytest.raises(UsageError, match="no finished run to start from; its outcome is 'stopped at noon"):
+        read_end_state(sink.written_path, **next_run)
+
+
+def test_state_of_a_version_that_kept_less_is_refused(run, next_run, tmp_path):
+    sink = NetcdfSink(tmp_path / "run.nc", run.static(), run.attributes, run.start)
+    sink.close("complete")
+    with pytest.raises(UsageError, match="no end state to start from, or one of another version: end_level is missing"):
         read_end_state(sink.written_path, **next_run)

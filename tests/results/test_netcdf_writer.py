@@ -170,7 +170,7 @@ def test_a_killed_run_opens_with_every_row_it_had_made_safe(endless_writer, tmp_
 
 def test_a_full_disk_stops_the_run_and_leaves_every_row_it_had_made_safe(endless_writer, tmp_path):
     start, run = endless_writer
-    with start("300_000") as process:
+    with start("500_000") as process:
         told, complaints = process.communicate()
     *safe, error = told.splitlines()
     assert "MB of disk are free" in error

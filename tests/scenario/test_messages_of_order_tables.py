@@ -8,14 +8,14 @@ CASES = [
         "at,gate,opening,by,discharge",
         "at,gate,opening,by,flow",
         [
-            'orders.csv:2: unknown column "flow"; known: "at", "gate", "opening", "by", "discharge"',
+            'orders.csv:2: unknown column "flow"; known: "at", "gate", "bay", "opening", "by", "discharge"',
         ],
     ),
     (
         "at,gate,opening,by,discharge",
         "at;gate;opening;by;discharge",
         [
-            'orders.csv:2: the header lacks "at", "gate"; columns, separated by commas: at, gate, opening, '
+            'orders.csv:2: the header lacks "at", "gate"; columns, separated by commas: at, gate, bay, opening, '
             "by, discharge",
         ],
     ),

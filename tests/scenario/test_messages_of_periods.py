@@ -129,7 +129,7 @@ CASES = [
         'every = "1 min"\nprofiles_every = "24 h"\n[limits]',
         [
             'day.toml:12: limits: unknown key; known: "canal", "title", "units", "zone", "period", "output", '
-            '"inflow", "deliveries", "offtake_openings", "head", "tail", "start", "plans"',
+            '"inflow", "deliveries", "offtake_openings", "head", "tail", "losses", "start", "round_openings", "plans"',
         ],
     ),
 ]

@@ -140,14 +140,14 @@ CASES = [
         "orders = 7",
         [
             "day.toml:35: plans from_file orders: found 7; allowed: an array of orders, or the name of a CSV "
-            "file with the columns at,gate,opening,by,discharge",
+            "file with the columns at,gate,bay,opening,by,discharge",
         ],
     ),
     (
         'orders = "orders.csv"',
-        "rules = []",
+        "rule = []",
         [
-            'day.toml:35: plans from_file rules: unknown key; known: "orders"',
+            'day.toml:35: plans from_file rule: unknown key; did you mean "rules"?',
         ],
     ),
 ]

@@ -7,7 +7,10 @@ import pytest
 from toeline.scenario import load_canal, load_scenario, plan_names
 
 QUILLMERE = Path(__file__).parents[2] / "scenarios" / "quillmere"
-DAYS = ["steady", "morning_increase", "evening_cut", "filling_from_dry"]
+DAYS = [
+    "steady", "morning_increase", "evening_cut", "filling_from_dry", "rotation", "storm", "pump_trip", "isolation",
+    "dewatering", "stuck_gate", "weed_season", "weed_cut", "four_rules",
+]  # fmt: skip
 
 
 def test_the_canal_has_five_pools_and_six_gates():

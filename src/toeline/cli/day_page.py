@@ -65,9 +65,11 @@ def _water_rows(scenario: "Scenario") -> list[tuple[str, ...]]:
     day, display = scenario.day, scenario.display
     discharges = {"inflow": day.inflow} | {f"asked at {name}": series for name, series in day.deliveries.items()}
     levels = {"level of the reservoir": day.head, "level at the tail": day.tail}
+    weather = {"evaporation": day.losses.evaporation, "rain": day.losses.rain}
     return [
         *(_water_row(name, series, display.discharge) for name, series in discharges.items() if series is not None),
         *(_water_row(name, series, display.level) for name, series in levels.items() if series is not None),
+        *(_water_row(name, series, display.rate_of_loss) for name, series in weather.items() if series is not None),
     ]
 
 
@@ -83,4 +85,5 @@ def _stuck_words(stuck: "Stuck", start: datetime) -> str:
 def _order_row(order: "Order", scenario: "Scenario") -> tuple[str, ...]:
     start = scenario.day.period.start
     words = order_words(order.kind, order.value, scenario.display)
-    return (clock_text(later(start, order.at / 1000), start), order.gate, words)
+    place = f"{order.gate}, bay {order.bay}" if order.bay else order.gate
+    return (clock_text(later(start, order.at / 1000), start), place, words)

@@ -55,12 +55,31 @@ def gate_levels(gate, level, nodes, head_level, tail_level):
 
 
 @inner_kernel
-def gate_balance(shapes, gate, up, down, opening, q):
+def leaves_discharge_at(shapes, gate, level_up, level_down, forcing):
+    """Discharge of a gate row [m³/s] with every leaf at its own opening: each passes its share of what the gate would
+    pass with all leaves there.
+    """
+    law, above, beside = law_of(gate), shapes[gate.upstream_section], shapes[gate.downstream_section]
+    total = gate_discharge(law, above, beside, level_up, level_down, leaf_opening(forcing, gate, 0))
+    for k in range(1, gate.leaf_count):
+        total += gate_discharge(law, above, beside, level_up, level_down, leaf_opening(forcing, gate, k))
+    return total / gate.leaf_count
+
+
+@inner_kernel
+def leaf_opening(forcing, gate, k):
+    """Opening [m] of leaf k of a gate."""
+    return forcing[FORCING_GATES + gate.first_leaf + k].now
+
+
+@inner_kernel
+def gate_balance(shapes, gate, up, down, forcing, q):
     """Residual q − Q(levels) of a gate [m³/s] and its derivatives to the level above, q and the level below."""
     passed = above = below = 0.0
     for k in range(3):
         nudge_up, nudge_down = LEVEL_NUDGE if k == 1 else 0.0, LEVEL_NUDGE if k == 2 else 0.0
-        passed, above, below = above, below, gate_discharge_at(shapes, gate, up + nudge_up, down + nudge_down, opening)
+        q_nudged = leaves_discharge_at(shapes, gate, up + nudge_up, down + nudge_down, forcing)
+        passed, above, below = above, below, q_nudged
     by_up, by_down = max(above - passed, 0.0) / LEVEL_NUDGE, min(below - passed, 0.0) / LEVEL_NUDGE
     return q - passed, -by_up, 1.0, -by_down
 
@@ -118,7 +137,7 @@ def boundary_balance(tables, index, nodes, q, forcing, work):
     if link.kind == GATE:
         gate = tables.gates[link.gate]
         up, down = gate_levels(gate, nodes.level, nodes.size, forcing[FORCING_HEAD].now, forcing[FORCING_TAIL].now)
-        return gate_balance(tables.channel.shapes, gate, up, down, forcing[FORCING_GATES + link.gate].now, q)
+        return gate_balance(tables.channel.shapes, gate, up, down, forcing, q)
     last = nodes.size - 1
     level = nodes[last].level
     if link.kind == TAIL_LEVEL:

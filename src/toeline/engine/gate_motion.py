@@ -34,6 +34,7 @@ class OrderRecord:
     reason: str
     source: str = SCHEDULE
     is_final: bool = False
+    bay: int = 0
 
 
 class Allowed(NamedTuple):
@@ -50,10 +51,12 @@ class Allowed(NamedTuple):
 
 
 class GateMotion:
-    """One leaf: where it is, where it goes, and the orders it was given."""
+    """One leaf: where it is, where it goes, and the orders it was given; `bay` from 1, 0 where it stands for all."""
 
-    def __init__(self, gate: Gate, opening: float, marks: Marks | None = None, stuck: Sequence[Stuck] = ()):
-        self.gate, self.marks, self.stuck = gate, marks, stuck
+    def __init__(
+        self, gate: Gate, opening: float, marks: Marks | None = None, stuck: Sequence[Stuck] = (), bay: int = 0
+    ):
+        self.gate, self.marks, self.stuck, self.bay = gate, marks, stuck, bay
         self.opening = opening
         self.target = opening
         self.ordered = opening
@@ -159,12 +162,15 @@ class GateMotion:
 
     def _refuse(self, time: int, kind: str, value: float, reason: str, source: str) -> OrderRecord:
         return OrderRecord(
-            time, self.gate.name, kind, value, self.opening, self.ordered, math.nan, REFUSED, reason, source, True
-        )
+            time, self.gate.name, kind, value, self.opening, self.ordered, math.nan, REFUSED, reason, source, True,
+            self.bay,
+        )  # fmt: skip
 
     def _begin(self, time: int, kind: str, value: float, target: float, reason: str, source: str) -> OrderRecord:
         status = TRIMMED if reason else ACCEPTED
-        record = OrderRecord(time, self.gate.name, kind, value, self.opening, target, math.nan, status, reason, source)
+        record = OrderRecord(
+            time, self.gate.name, kind, value, self.opening, target, math.nan, status, reason, source, bay=self.bay
+        )  # fmt: skip
         self._replace(time)
         self.ordered = self.target = target
         self.since = time

@@ -21,25 +21,31 @@ class Operations:
         self, network: Network, timetable: Timetable, state: State, forcing: np.recarray, unrest: Unrest,
         openings: np.ndarray,
     ):  # fmt: skip
-        """`openings` [m] are those at the start, by gate; `begin` must follow once `state` is that of the start."""
+        """`openings` [m] are those at the start, by leaf; `begin` must follow once `state` is that of the start."""
         self.network, self.timetable, self.unrest = network, timetable, unrest
         self.motions = [
-            GateMotion(gate, float(opening), marks, [stuck for stuck in timetable.stuck if stuck.gate == gate.name])
-            for gate, opening, marks in zip(timetable.gates, openings, timetable.marks, strict=True)
+            self._motion(g, bay, float(opening))
+            for (g, bay), opening in zip(network.places_of_leaves(), openings, strict=True)
         ]
         self.present = PresentCanal(network, timetable, state, forcing, self.motions)
         self.orders = list(timetable.orders)
         self.records: list[OrderRecord] = []
+
+    def _motion(self, g: int, bay: int, opening: float) -> GateMotion:
+        gate, marks = self.timetable.gates[g], self.timetable.marks[g]
+        return GateMotion(gate, opening, marks, [one for one in self.timetable.stuck if one.gate == gate.name], bay)
 
     def begin(self, end: dict[str, np.ndarray] | None = None) -> None:
         """Make the rules for the state at the start; go on from the end state of the run before, if there was one."""
         self.decisions = Decisions(self.network, self.timetable, self.present)
         if end is None:
             return
-        for g, motion in enumerate(self.motions):
-            remaining = round(float(end["end_motion_remaining"][g]) * 1000.0)
-            moves = [-round(float(age) * 1000.0) for age in end["end_move_age"][end["end_move_gate"] == g]]
-            motion.resume(float(end["end_target_opening"][g]), float(end["end_ordered_opening"][g]), remaining, moves)
+        for leaf, motion in enumerate(self.motions):
+            remaining = round(float(end["end_motion_remaining"][leaf]) * 1000.0)
+            moves = [-round(float(age) * 1000.0) for age in end["end_move_age"][end["end_move_leaf"] == leaf]]
+            motion.resume(
+                float(end["end_target_opening"][leaf]), float(end["end_ordered_opening"][leaf]), remaining, moves
+            )
         self.decisions.take_over(end)
 
     def act(self, time: int) -> None:
@@ -63,7 +69,7 @@ class Operations:
         """Close the records of moves under way and of orders that were not reached."""
         for motion in self.motions:
             motion.end_of_day()
-        self.records += [self.motions[self._index(order)].not_reached(order) for order in self.orders]
+        self.records += [motion.not_reached(order) for order in self.orders for motion in self._moved_by(order)]
 
     def take_records(self) -> dict[str, np.ndarray]:
         """Hand over, once, the records that will not change any more, by variable name."""
@@ -73,10 +79,12 @@ class Operations:
 
     def end_state(self, time: int) -> dict[str, np.ndarray]:
         """Where the leaves stand and go, the moves of the last hour, and what the rules keep, by variable name."""
-        moves = [(g, time - at) for g, motion in enumerate(self.motions) for at in motion.moves_within_an_hour(time)]
+        moves = [
+            (leaf, time - at) for leaf, motion in enumerate(self.motions) for at in motion.moves_within_an_hour(time)
+        ]
         return {
             **self.decisions.end_state(),
-            "end_move_gate": np.array([g for g, _ in moves], np.int32),
+            "end_move_leaf": np.array([leaf for leaf, _ in moves], np.int32),
             "end_move_age": np.array([age / 1000.0 for _, age in moves], float),
             "end_opening": np.array([motion.opening for motion in self.motions]),
             "end_target_opening": np.array([motion.target for motion in self.motions]),
@@ -85,42 +93,48 @@ class Operations:
         }
 
     def _carry_out(self, order: Order, time: int) -> None:
-        motion = self.motions[self._index(order)]
-        wanted, note = self._wanted_opening(order, motion)
-        opening = motion.opening
-        record = motion.order(time, order.kind, order.value, wanted, note)
-        self._note(record, opening)
+        for motion in self._moved_by(order):
+            wanted, note = self._wanted_opening(order, motion)
+            opening = motion.opening
+            self._note(motion.order(time, order.kind, order.value, wanted, note), opening, motion)
 
     def _move(self, gate: str, kind: str, wanted: float) -> tuple[OrderRecord | None, bool]:
-        """Have a gate carry out what a rule wants."""
-        motion = self.motions[self.network.names.gates.index(gate)]
-        opening = motion.opening
-        record, is_limited = motion.propose(self.present.time_ms, kind, wanted)
-        if record is not None:
-            self._note(record, opening)
-        return record, is_limited
+        """Have all leaves of a gate carry out what a rule wants."""
+        done, is_limited = None, False
+        for motion in self._leaves(gate):
+            opening = motion.opening
+            record, is_held_back = motion.propose(self.present.time_ms, kind, wanted)
+            if record is not None:
+                self._note(record, opening, motion)
+            done, is_limited = done or record, is_limited or is_held_back
+        return done, is_limited
 
-    def _note(self, record: OrderRecord, opening: float) -> None:
-        """Keep a record, and what the move that it is of leaves unsettled; `opening` [m] is that before."""
+    def _note(self, record: OrderRecord, opening: float, motion: GateMotion) -> None:
+        """Keep a record, and what the move of a leaf that it is of leaves unsettled; `opening` [m] is that before."""
         self.records.append(record)
         if record.is_final and math.isnan(record.completed):
             return
         g = self.network.names.gates.index(record.gate)
         up, down = self.present.headwater_level(record.gate), self.present.tailwater_level(record.gate)
-        self.unrest.note_move(record.time, g, up, down, opening, self.motions[g])
+        self.unrest.note_move(record.time, g, up, down, opening, motion)
 
-    def _index(self, order: Order) -> int:
-        return self.network.names.gates.index(order.gate)
+    def _leaves(self, gate: str) -> list[GateMotion]:
+        return [self.motions[leaf] for leaf in self.network.leaves_of(self.network.names.gates.index(gate))]
+
+    def _moved_by(self, order: Order) -> list[GateMotion]:
+        return [motion for motion in self._leaves(order.gate) if order.bay in (0, motion.bay)]
 
     def _wanted_opening(self, order: Order, motion: GateMotion) -> tuple[float, str]:
+        """The opening [m] that an order asks of a leaf, and how it falls short of the discharge of its bay or gate."""
         if order.kind == "opening":
             return order.value, ""
         if order.kind == "by":
             return motion.ordered + order.value, ""
-        opening = self.present.opening_for(order.gate, order.value)
-        passed = self.present.discharge_at(order.gate, opening)
+        what, shares = ("bay", motion.gate.bays) if order.bay else ("gate", 1)
+        opening = self.present.opening_for(order.gate, order.value * shares)
+        passed = self.present.discharge_at(order.gate, opening) / shares
         if abs(passed - order.value) > 1e-3 + 1e-6 * abs(order.value):
-            return opening, f"the gate passes {passed:.3f} m3/s at {opening:.3f} m with the present levels"
+            return opening, f"the {what} passes {passed:.3f} m3/s at {opening:.3f} m with the present levels"
         return opening, ""
 
 
@@ -128,6 +142,7 @@ def _order_arrays(records: list[OrderRecord]) -> dict[str, np.ndarray]:
     return {
         "order_time": np.array([record.time / 1000.0 for record in records], float),
         "order_gate": np.array([record.gate for record in records], object),
+        "order_bay": np.array([record.bay for record in records], np.int32),
         "order_kind": np.array([KINDS.index(record.kind) for record in records], np.int8),
         "order_value": np.array([record.value for record in records], float),
         "order_opening_before": np.array([record.before for record in records], float),

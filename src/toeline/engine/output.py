@@ -5,16 +5,20 @@ from typing import NamedTuple
 
 import numpy as np
 
-from toeline.engine.gate_link import gate_levels
+from toeline.engine.gate_link import gate_discharge_at, gate_levels, leaf_opening
 from toeline.engine.near_gate import judge_gate
-from toeline.engine.step import DIAGONAL, GAMMA, canal_outflow_link, weighted
+from toeline.engine.step import DIAGONAL, GAMMA, pool_end_link, weighted
 from toeline.hydraulics.cross_section import geometry
 from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH
 from toeline.hydraulics.kernel import inner_kernel
-from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, GATE
+from toeline.hydraulics.underflow_gate import CLEAR_OF_WATER, FREE, QUALITY_UNEVEN_BAYS
+from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, GATE, HEAD
 
 JET_POINTS = 400
 """Most points of a jet's profile."""
+
+EVEN = 0.01
+"""Difference of opening [m] up to which bays count as equal (choice)."""
 
 GATE_WATCH = np.dtype(
     [
@@ -35,6 +39,7 @@ class Watch(NamedTuple):
     banks: np.recarray  # (canal nodes) of BANKS
     gates: np.recarray  # (g) of GATE_WATCH
     settled_at: np.ndarray  # (p) int64 ms
+    roughness_factor: np.ndarray  # (p) 1
     start_storage: np.ndarray  # (1) m³ in the canal at the start of the day
     level: np.ndarray  # (all channel nodes) m, scratch
     discharge: np.ndarray  # (n + 1) m³/s, scratch
@@ -94,26 +99,64 @@ def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at,
         if link.kind == GATE:
             gate, out, guard = tables.gates[link.gate], rows.gates[row, link.gate], watch.gates[link.gate]
             up, down = gate_levels(gate, watch.level, before.nodes.size, head_level, tail_level)
-            opening = forcing[FORCING_GATES + link.gate].now
+            opening = ruling_opening(tables.channel.shapes, gate, up, down, forcing)
             watch.discharge[index] = judge_gate(tables.channel, gate, up, down, opening, watch.level, watch.jet, out)
+            if gate.leaf_count > 1:
+                watch.discharge[index] = fill_bays(tables, gate, up, down, forcing, rows.bays[row], out)
             out.surge_height_bound_upstream = guard.surge_upstream if time_ms < guard.surge_upstream_until else 0.0
             out.surge_height_bound_downstream = (
                 guard.surge_downstream if time_ms < guard.surge_downstream_until else 0.0
             )
-    storage = fill_pools(tables, before, middle, after, watch, rows.pools[row], time_ms, shares)
-    delivered = fill_offtakes(tables, before, middle, after, totals, watch, rows.offtakes[row], h, shares, forcing)
+    left = fill_offtakes(tables, before, middle, after, totals, watch, rows.offtakes[row], h, shares, forcing)
+    left += fill_escapes(before, middle, after, totals, rows.escapes[row], h, shares)
+    fill_gauges(tables, watch.level, rows.gauges[row], head_level)
+    fill_pools(tables, before, middle, after, totals, watch, rows.pools[row], time_ms, h, shares)
     canal = rows.canal[row]
     canal.time = time_ms
-    canal.canal_storage = storage
-    fill_canal(tables, before, middle, after, totals, watch, canal, h, shares)
-    change = storage - watch.start_storage[0]
-    canal.balance_residual = canal.canal_inflow_volume - canal.canal_outflow_volume - delivered - change
+    fill_canal(watch, rows.pools[row], canal, left)
 
 
 @inner_kernel
-def fill_pools(tables, before, middle, after, watch, out, time_ms, shares):
-    """Fill a row of pools; returns the volume in the canal [m³]."""
-    storage = 0.0
+def ruling_opening(shapes, gate, up, down, forcing):
+    """Opening [m] of the bay with the largest unit discharge, by which the jump of the gate is judged."""
+    ruling, most = leaf_opening(forcing, gate, 0), -1.0
+    if gate.leaf_count == 1:
+        return ruling
+    for k in range(gate.leaf_count):
+        opening = leaf_opening(forcing, gate, k)
+        passed = abs(gate_discharge_at(shapes, gate, up, down, opening))
+        if passed > most:
+            ruling, most = opening, passed
+    return ruling
+
+
+@inner_kernel
+def fill_bays(tables, gate, up, down, forcing, bays, out):
+    """Fill the bays of a gate that move apart, and what the gate's record says of all of them: mean opening, discharge
+    and the power of that discharge. Returns the discharge [m³/s].
+    """
+    opened = passed = highest = 0.0
+    lowest, ruling = math.inf, out.gate_discharge
+    for k in range(gate.leaf_count):
+        bay = bays[tables.leaves[gate.first_leaf + k].bay]
+        bay.bay_opening = leaf_opening(forcing, gate, k)
+        discharge = gate_discharge_at(tables.channel.shapes, gate, up, down, bay.bay_opening)
+        bay.bay_discharge = discharge / gate.leaf_count
+        opened += bay.bay_opening / gate.leaf_count
+        highest, lowest = max(highest, bay.bay_opening), min(lowest, bay.bay_opening)
+        passed += discharge
+    passed /= gate.leaf_count
+    out.gate_opening, out.gate_discharge = opened, passed
+    if highest - lowest > EVEN and out.gate_flow_state != FREE and out.gate_flow_state != CLEAR_OF_WATER:
+        out.discharge_quality = QUALITY_UNEVEN_BAYS
+    if ruling != 0.0:
+        out.jump_power *= passed / ruling
+    return passed
+
+
+@inner_kernel
+def fill_pools(tables, before, middle, after, totals, watch, out, time_ms, h, shares):
+    """Fill a row of pools."""
     for p in range(tables.pools.size):
         first, last = tables.pools[p].first_node, tables.pools[p].last_node
         start = inner = end = 0.0
@@ -131,11 +174,23 @@ def fill_pools(tables, before, middle, after, watch, out, time_ms, shares):
         pool.pool_tail_level = max(watch.level[last], tables.channel.nodes[last].bed_level)
         pool.pool_inflow = watch.discharge[first]
         pool.pool_outflow = watch.discharge[last + 1]
-        pool.pool_losses = 0.0
+        pool.pool_inflow_volume = passed_volume(tables, before, middle, after, totals, p, h, shares)
+        pool.pool_outflow_volume = passed_volume(tables, before, middle, after, totals, p + 1, h, shares)
+        pool.pool_losses = between(shares, before.loss[p], middle.loss[p], after.loss[p])
+        pool.pool_loss_volume = total_at(shares, h, totals.loss[p], before.loss[p], middle.loss[p], after.loss[p])
+        pool.pool_roughness_factor = watch.roughness_factor[p]
         pool.pool_bank_margin = bank if bank < math.inf else math.nan
         pool.pool_lining_margin = lining if lining < math.inf else math.nan
-        storage += pool.pool_volume
-    return storage
+
+
+@inner_kernel
+def passed_volume(tables, before, middle, after, totals, p, h, shares):
+    """Volume [m³] that has passed the upper end of pool p, or of the last pool's lower end behind it."""
+    end = pool_end_link(tables, p)
+    return total_at(
+        shares, h, totals.passed[p], before.links[end].discharge, middle.links[end].discharge,
+        after.links[end].discharge,
+    )  # fmt: skip
 
 
 @inner_kernel
@@ -148,7 +203,7 @@ def total_at(shares, h, total, start, middle, end):
 @inner_kernel
 def fill_offtakes(tables, before, middle, after, totals, watch, out, h, shares, forcing):
     """Fill a row of offtakes; returns the volume delivered by all [m³]."""
-    first_demand = FORCING_GATES + tables.gates.size
+    first_demand = FORCING_GATES + tables.leaves.size
     delivered = 0.0
     for k in range(before.delivery.size):
         start, inner, end = before.delivery[k], middle.delivery[k], after.delivery[k]
@@ -162,17 +217,45 @@ def fill_offtakes(tables, before, middle, after, totals, watch, out, h, shares, 
 
 
 @inner_kernel
-def fill_canal(tables, before, middle, after, totals, watch, canal, h, shares):
-    """Fill what comes into and leaves the canal."""
-    out = canal_outflow_link(tables)
-    canal.canal_inflow = watch.discharge[0]
-    canal.canal_outflow = watch.discharge[out]
-    canal.canal_inflow_volume = total_at(
-        shares, h, totals.canal[0], before.links[0].discharge, middle.links[0].discharge, after.links[0].discharge
-    )
-    canal.canal_outflow_volume = total_at(
-        shares, h, totals.canal[1], before.links[out].discharge, middle.links[out].discharge, after.links[out].discharge
-    )
+def fill_escapes(before, middle, after, totals, out, h, shares):
+    """Fill a row of escapes; returns the volume that all have let out [m³]."""
+    escaped = 0.0
+    for k in range(before.escape.size):
+        start, inner, end = before.escape[k], middle.escape[k], after.escape[k]
+        out[k].escape_discharge = max(between(shares, start, inner, end), 0.0)
+        out[k].escape_volume = total_at(shares, h, totals.escape[k], start, inner, end)
+        escaped += out[k].escape_volume
+    return escaped
+
+
+@inner_kernel
+def fill_gauges(tables, level, out, head_level):
+    """Fill a row of gauges; no reading where the bed beside the staff is dry."""
+    for k in range(tables.gauges.size):
+        gauge = tables.gauges[k]
+        water = head_level
+        if gauge.node != HEAD:
+            water = level[gauge.node]
+            if gauge.weight > 0.0:
+                water += gauge.weight * (level[gauge.node + 1] - water)
+        out[k].gauge_reading = water - gauge.zero_level if water - gauge.bed_level > DRY_DEPTH else math.nan
+
+
+@inner_kernel
+def fill_canal(watch, pools, canal, left):
+    """Fill what comes into, stays in and leaves the canal; `left` [m³] went to offtakes and over escapes."""
+    last = pools.size - 1
+    canal.canal_inflow = pools[0].pool_inflow
+    canal.canal_outflow = pools[last].pool_outflow
+    canal.canal_inflow_volume = pools[0].pool_inflow_volume
+    canal.canal_outflow_volume = pools[last].pool_outflow_volume
+    storage = lost = 0.0
+    for p in range(pools.size):
+        storage += pools[p].pool_volume
+        lost += pools[p].pool_loss_volume
+    canal.canal_storage = storage
+    change = storage - watch.start_storage[0]
+    canal.balance_residual = canal.canal_inflow_volume - canal.canal_outflow_volume - left - lost - change
 
 
 @inner_kernel

@@ -30,17 +30,25 @@ def facts_at_start(network: Network, canal: CanalFacts, state: State) -> CanalFa
 
 
 class PresentCanal:
-    """The state of the canal at the last stop; see `rules.base.Present`."""
+    """The state of the canal at the last stop; see `rules.base.Present`. It holds views of arrays that are changed in
+    place: reading them by name at every decision would cost more than the rules.
+    """
 
     def __init__(
         self, network: Network, timetable: Timetable, state: State, forcing: np.recarray, motions: list[GateMotion]
     ):
-        self.network, self.timetable, self.state, self.forcing, self.motions = (
-            network, timetable, state, forcing, motions,
-        )  # fmt: skip
+        self.state, self.motions = state, motions
+        self._level, self._volume = state.nodes["level"], state.nodes["volume"]
+        self._discharge, self._forcing = state.links["discharge"], forcing["value"]
         names, gates, shapes = network.names, network.tables.gates, network.channel.shapes
+        ends = network.tables.pools
         self._gates = {name: g for g, name in enumerate(names.gates)}
-        self._pools = {name: p for p, name in enumerate(names.pools)}
+        self._leaves = [list(network.leaves_of(g)) for g in range(gates.size)]
+        self._largest = [gate.max_opening for gate in timetable.gates]
+        self._ends = dict(
+            zip(names.pools, zip(ends.first_node.tolist(), ends.last_node.tolist(), strict=True), strict=True)
+        )
+        self._node_count = network.node_count
         self._demands = {name: timetable.demand_of(k) for k, name in enumerate(names.offtakes)}
         self._laws = [(law_of(row), shapes[row.upstream_section], shapes[row.downstream_section]) for row in gates]
         self._links = [int(np.flatnonzero(network.tables.links.gate == g)[0]) for g in range(gates.size)]
@@ -49,21 +57,20 @@ class PresentCanal:
 
     def headwater_level(self, gate: str) -> float:
         node = self._above[self._gates[gate]]
-        return float(self.forcing.value[FORCING_HEAD] if node == HEAD else self.state.nodes.level[node])
+        return float(self._forcing[FORCING_HEAD] if node == HEAD else self._level[node])
 
     def tailwater_level(self, gate: str) -> float:
         node = self._below[self._gates[gate]]
-        is_beyond = node >= self.network.node_count
-        return float(self.forcing.value[FORCING_TAIL] if is_beyond else self.state.nodes.level[node])
+        return float(self._forcing[FORCING_TAIL] if node >= self._node_count else self._level[node])
 
     def opening(self, gate: str) -> float:
-        return self.motions[self._gates[gate]].opening
+        return float(np.mean([self.motions[leaf].opening for leaf in self._leaves[self._gates[gate]]]))
 
     def ordered_opening(self, gate: str) -> float:
-        return self.motions[self._gates[gate]].ordered
+        return float(np.mean([self.motions[leaf].ordered for leaf in self._leaves[self._gates[gate]]]))
 
     def discharge(self, gate: str) -> float:
-        return float(self.state.links.discharge[self._links[self._gates[gate]]])
+        return float(self._discharge[self._links[self._gates[gate]]])
 
     def discharge_at(self, gate: str, opening: float) -> float:
         law = self._laws[self._gates[gate]]
@@ -71,23 +78,18 @@ class PresentCanal:
 
     def opening_for(self, gate: str, discharge: float) -> float:
         g = self._gates[gate]
-        largest = self.motions[g].gate.max_opening
         levels = self.headwater_level(gate), self.tailwater_level(gate)
-        return float(opening_for_discharge(*self._laws[g], *levels, discharge, largest)[0])
+        return float(opening_for_discharge(*self._laws[g], *levels, discharge, self._largest[g])[0])
 
     def head_level(self, pool: str) -> float:
-        return float(self.state.nodes.level[self._ends(pool)[0]])
+        return float(self._level[self._ends[pool][0]])
 
     def tail_level(self, pool: str) -> float:
-        return float(self.state.nodes.level[self._ends(pool)[1]])
+        return float(self._level[self._ends[pool][1]])
 
     def volume(self, pool: str) -> float:
-        first, last = self._ends(pool)
-        return float(np.sum(self.state.nodes.volume[first : last + 1]))
+        first, last = self._ends[pool]
+        return float(np.sum(self._volume[first : last + 1]))
 
     def demand(self, offtake: str, time_ms: int) -> float:
         return self._demands[offtake].at(time_ms)
-
-    def _ends(self, pool: str) -> tuple[int, int]:
-        ends = self.network.tables.pools[self._pools[pool]]
-        return int(ends.first_node), int(ends.last_node)

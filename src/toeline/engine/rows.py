@@ -4,6 +4,8 @@ from typing import NamedTuple
 
 import numpy as np
 
+from toeline.network.tables import Network
+
 FLAG = np.int8
 
 GATE_OUTPUT = np.dtype(
@@ -40,16 +42,26 @@ POOL_OUTPUT = np.dtype(
         ("pool_tail_level", float),
         ("pool_inflow", float),
         ("pool_outflow", float),
+        ("pool_inflow_volume", float),
+        ("pool_outflow_volume", float),
         ("pool_losses", float),
+        ("pool_loss_volume", float),
+        ("pool_roughness_factor", float),
         ("pool_bank_margin", float),
         ("pool_lining_margin", float),
         ("settling", FLAG),
     ]
 )
 
+BAY_OUTPUT = np.dtype([("bay_opening", float), ("bay_discharge", float)])
+
 OFFTAKE_OUTPUT = np.dtype(
     [("demand", float), ("delivery", float), ("delivery_volume", float), ("offtake_level", float)]
 )
+
+ESCAPE_OUTPUT = np.dtype([("escape_discharge", float), ("escape_volume", float)])
+
+GAUGE_OUTPUT = np.dtype([("gauge_reading", float)])
 
 CANAL_OUTPUT = np.dtype(
     [
@@ -71,14 +83,17 @@ class Rows(NamedTuple):
 
     canal: np.recarray  # (rows) of CANAL_OUTPUT
     gates: np.recarray  # (rows, g) of GATE_OUTPUT
+    bays: np.recarray  # (rows, bays that move apart) of BAY_OUTPUT
     pools: np.recarray  # (rows, p) of POOL_OUTPUT
     offtakes: np.recarray  # (rows, d) of OFFTAKE_OUTPUT
+    escapes: np.recarray  # (rows, e) of ESCAPE_OUTPUT
+    gauges: np.recarray  # (rows, u) of GAUGE_OUTPUT
     profile_time: np.ndarray  # (profile rows) int64 ms from the start of the period
     profiles: np.recarray  # (profile rows, n) of PROFILE_OUTPUT
     filled: np.ndarray  # (2) int64: rows, profile rows
 
 
-def new_rows(rows: int, profile_rows: int, gates: int, pools: int, offtakes: int, nodes: int) -> Rows:
+def new_rows(rows: int, profile_rows: int, network: Network) -> Rows:
     """An empty block of the given capacity."""
 
     def block(kind: np.dtype, *shape: int) -> np.recarray:
@@ -86,11 +101,14 @@ def new_rows(rows: int, profile_rows: int, gates: int, pools: int, offtakes: int
 
     return Rows(
         block(CANAL_OUTPUT, rows),
-        block(GATE_OUTPUT, rows, gates),
-        block(POOL_OUTPUT, rows, pools),
-        block(OFFTAKE_OUTPUT, rows, offtakes),
+        block(GATE_OUTPUT, rows, network.gate_count),
+        block(BAY_OUTPUT, rows, network.bay_count),
+        block(POOL_OUTPUT, rows, network.pool_count),
+        block(OFFTAKE_OUTPUT, rows, network.offtake_count),
+        block(ESCAPE_OUTPUT, rows, network.escape_count),
+        block(GAUGE_OUTPUT, rows, network.tables.gauges.size),
         np.zeros(profile_rows, np.int64),
-        block(PROFILE_OUTPUT, profile_rows, nodes),
+        block(PROFILE_OUTPUT, profile_rows, network.canal_node_count),
         np.zeros(2, np.int64),
     )
 
@@ -99,7 +117,7 @@ def filled_block(rows: Rows) -> dict[str, np.ndarray]:
     """The filled part of a block as copies by variable name."""
     count, profile_count = rows.filled
     block = {"profile_time": rows.profile_time[:profile_count].copy()}
-    for table, size in ((rows.canal, count), (rows.gates, count), (rows.pools, count), (rows.offtakes, count),
-                        (rows.profiles, profile_count)):  # fmt: skip
+    by_row = (rows.canal, rows.gates, rows.bays, rows.pools, rows.offtakes, rows.escapes, rows.gauges)
+    for table, size in (*((table, count) for table in by_row), (rows.profiles, profile_count)):
         block |= {name: np.ascontiguousarray(table[:size][name]) for name in table.dtype.names or ()}
     return block

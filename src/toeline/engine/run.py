@@ -34,13 +34,13 @@ class Run:
 
     def __init__(self, network: Network, timetable: Timetable, sink, start: Start | dict[str, np.ndarray]):
         self.network, self.timetable, self.sink, self.tables = network, timetable, sink, network.tables
-        nodes, offtakes = network.node_count, network.offtake_count
-        self.state, self.middle, self.after = (new_state(nodes, offtakes) for _ in range(3))
-        self.work, self.totals = new_work(nodes), new_totals(offtakes)
+        self.state, self.middle, self.after = (new_state(network) for _ in range(3))
+        self.work, self.totals = new_work(network.node_count), new_totals(network)
         self.forcing = zeros(timetable.forcing_size, FORCING)
         self.pace = self._new_pace()
         self.rows, self.watch = self._new_rows(), self._new_watch()
         self.time = 0
+        self.roughness = list(timetable.roughness)
         openings = start["end_opening"] if isinstance(start, dict) else start.opening
         self.unrest = Unrest(network, self.state, self.watch, timetable.length)
         self.operations = Operations(network, timetable, self.state, self.forcing, self.unrest, openings)
@@ -73,6 +73,7 @@ class Run:
         left |= self.operations.end_state(self.time) | self.unrest.end_state(self.time)
         return left | {
             "end_delivery": self.state.delivery.copy(),
+            "end_roughness_factor": self.watch.roughness_factor.copy(),
             "end_rate": self.forcing.rate.copy(),
             "end_next_step": np.float64(self.pace.next_step[0]),
             "end_time": np.float64(self.time / 1000.0),
@@ -80,6 +81,7 @@ class Run:
 
     def _start_at(self, start: Start) -> None:
         self.state.nodes.level, self.state.links.discharge = start.level, start.discharge
+        self.watch.roughness_factor[:] = self.timetable.roughness[0].factors
         start_from_levels(self.tables, self.state, self.work)
 
     def _take_over(self, end: dict[str, np.ndarray]) -> None:
@@ -90,6 +92,7 @@ class Run:
         self.state.delivery[:] = end["end_delivery"]
         self.pace.next_step = end["end_next_step"]
         self.forcing.rate = end["end_rate"]
+        self.watch.roughness_factor[:] = end["end_roughness_factor"]
         self.unrest.take_over(end)
 
     def _storage(self) -> float:
@@ -111,9 +114,8 @@ class Run:
         spare = timetable.longest_step // timetable.every + 4
         profiles = timetable.longest_step // timetable.profiles_every + 4
         return new_rows(
-            BLOCK_ROWS + spare, BLOCK_ROWS * timetable.every // timetable.profiles_every + 2 * profiles,
-            network.gate_count, len(network.names.pools), network.offtake_count, network.canal_node_count,
-        )  # fmt: skip
+            BLOCK_ROWS + spare, BLOCK_ROWS * timetable.every // timetable.profiles_every + 2 * profiles, network
+        )
 
     def _new_watch(self) -> Watch:
         network, names = self.network, self.network.names
@@ -123,7 +125,8 @@ class Run:
         return Watch(
             banks=banks,
             gates=zeros(network.gate_count, GATE_WATCH),
-            settled_at=np.zeros(len(names.pools), np.int64),
+            settled_at=np.zeros(network.pool_count, np.int64),
+            roughness_factor=np.ones(network.pool_count),
             start_storage=np.zeros(1),
             level=np.zeros(self.tables.channel.nodes.size),
             discharge=np.zeros(network.node_count + 1),
@@ -144,12 +147,12 @@ class Run:
 
     def _leg(self, until: int) -> None:
         """Advance to the next stop."""
-        gates = slice(FORCING_GATES, FORCING_GATES + self.network.gate_count)
-        self.forcing.value[gates] = [motion.opening for motion in self.operations.motions]
+        leaves = slice(FORCING_GATES, FORCING_GATES + self.network.leaf_count)
+        self.forcing.value[leaves] = [motion.opening for motion in self.operations.motions]
         before = self.forcing.rate.copy()
         self.forcing.rate = self.timetable.rates_between(self.time, until)
-        self.forcing.rate[gates] = [motion.rate() for motion in self.operations.motions]
-        has_kink = bool(np.any(np.abs(self.forcing.rate - before) > SAME_RATE))
+        self.forcing.rate[leaves] = [motion.rate() for motion in self.operations.motions]
+        has_kink = self._change_roughness() or bool(np.any(np.abs(self.forcing.rate - before) > SAME_RATE))
         self.pace.leg_start, self.pace.done = self.time, 0.0
         seconds, outcome = (until - self.time) / 1000.0, None
         while outcome != LEG_DONE:
@@ -161,6 +164,17 @@ class Run:
         self.time = until
         self.operations.arrive(until)
         set_forcing(self.forcing, seconds)
+
+    def _change_roughness(self) -> bool:
+        """Give the pools the roughness that the calendar has for this stop; returns whether that changed any."""
+        is_changed = False
+        while self.roughness and self.roughness[0].time <= self.time:
+            factors = self.roughness.pop(0).factors
+            is_changed = not np.array_equal(factors, self.watch.roughness_factor)
+            self.unrest.note_roughness(self.time, factors / self.watch.roughness_factor)
+            self.watch.roughness_factor[:] = factors
+            self.network.set_roughness(factors)
+        return is_changed
 
     def _give_up(self) -> None:
         self.time += round(float(self.pace.done[0]) * 1000.0)

@@ -30,11 +30,11 @@ def round_trip(channel, first, last, state):
 
 
 @kernel
-def surge_bounds(shapes, gate, level_up, level_down, opening, opening_after):
-    """Heights [m] of the surges up and down the pools if a gate went from one opening to another at once, and the
-    change of its discharge [m³/s]."""
-    before = gate_discharge_at(shapes, gate, level_up, level_down, opening)
-    change = gate_discharge_at(shapes, gate, level_up, level_down, opening_after) - before
+def surge_bounds(shapes, gate, level_up, level_down, before, opening, opening_after):
+    """Heights [m] of the surges up and down the pools if a leaf of a gate went from one opening to another at once, and
+    the change of the gate's discharge from `before` [m³/s]."""
+    left = gate_discharge_at(shapes, gate, level_up, level_down, opening)
+    change = (gate_discharge_at(shapes, gate, level_up, level_down, opening_after) - left) / gate.leaf_count
     section_up, section_down = shapes[gate.upstream_section], shapes[gate.downstream_section]
     depth_up, depth_down = level_up - gate.upstream_bed_level, level_down - gate.floor_level
     up = down = 0.0

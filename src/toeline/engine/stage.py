@@ -8,7 +8,9 @@ from toeline.engine.tridiagonal import back_substitute
 from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH
 from toeline.hydraulics.kernel import inner_kernel
 from toeline.hydraulics.offtake import offtake_discharge
-from toeline.network.tables import FORCING_GATES, REACH
+from toeline.hydraulics.water_losses import loss_per_length
+from toeline.hydraulics.weir import side_weir_discharge
+from toeline.network.tables import FORCING_EVAPORATION, FORCING_GATES, FORCING_RAIN, REACH
 
 LEVEL_CONVERGED = 1e-4
 """Last Newton update [m] of a solved stage; the convergence is quadratic, the error left far smaller."""
@@ -16,17 +18,25 @@ ITERATIONS = 12
 LOWEST_DEPTH = -0.5
 """Depth [m] below which the image of an empty node is not followed."""
 DEMAND_NUDGE = 1e-5
-"""Step [m] of the finite difference of a delivery."""
+"""Step [m] of the finite difference of a delivery or an escape."""
 
 
 @inner_kernel
-def set_sources(tables, nodes, forcing, work, delivery):
-    """Deliveries at the present levels, and what they take from each node with its derivative."""
-    for node in range(nodes.size):
+def set_sources(tables, state, forcing, work):
+    """Deliveries, escapes and losses at the present levels: what they take from each node, with its derivative."""
+    for node in range(state.nodes.size):
         work.nodes[node].source = 0.0
         work.nodes[node].source_slope = 0.0
+    set_deliveries(tables, state.nodes, forcing, work, state.delivery)
+    set_escapes(tables, state.nodes, work, state.escape)
+    set_losses(tables, state.nodes, forcing, work, state.loss)
+
+
+@inner_kernel
+def set_deliveries(tables, nodes, forcing, work, delivery):
+    """Deliveries at the present levels, and what they take from each node."""
     count = tables.offtakes.size
-    first_demand = FORCING_GATES + tables.gates.size
+    first_demand = FORCING_GATES + tables.leaves.size
     for k in range(count):
         take = tables.offtakes[k]
         demand, opening = forcing[first_demand + k].now, forcing[first_demand + count + k].now
@@ -38,6 +48,39 @@ def set_sources(tables, nodes, forcing, work, delivery):
         delivery[k] = q
         work.nodes[take.node].source -= q
         work.nodes[take.node].source_slope -= (nudged - q) / DEMAND_NUDGE
+
+
+@inner_kernel
+def set_escapes(tables, nodes, work, escape):
+    """What flows over side weirs at the present levels, and takes from each node."""
+    for k in range(tables.escapes.size):
+        weir = tables.escapes[k]
+        level = nodes[weir.node].level
+        q = side_weir_discharge(weir.coefficient, weir.length, weir.crest_level, level, weir.outside_level)
+        nudged = side_weir_discharge(
+            weir.coefficient, weir.length, weir.crest_level, level + DEMAND_NUDGE, weir.outside_level
+        )
+        escape[k] = q
+        work.nodes[weir.node].source -= q
+        work.nodes[weir.node].source_slope -= (nudged - q) / DEMAND_NUDGE
+
+
+@inner_kernel
+def set_losses(tables, nodes, forcing, work, loss):
+    """Losses of the pools at the present levels, and what they take from each node."""
+    surface_rate = forcing[FORCING_EVAPORATION].now - forcing[FORCING_RAIN].now
+    for p in range(tables.pools.size):
+        pool = tables.pools[p]
+        loss[p] = 0.0
+        if surface_rate == 0.0 and pool.seeps == 0:
+            continue
+        for k in range(pool.first_node, pool.last_node + 1):
+            site, cell = tables.channel.nodes[k], tables.cells[k]
+            section, depth = tables.channel.shapes[site.section], nodes[k].level - site.bed_level
+            lost, slope = loss_per_length(section, depth, cell.seepage, surface_rate)
+            loss[p] += cell.length * lost
+            work.nodes[k].source -= cell.length * lost
+            work.nodes[k].source_slope -= cell.length * slope
 
 
 @inner_kernel
@@ -151,7 +194,7 @@ def solve_stage(tables, before, after, work, seconds, head_factor, inertial, for
     """Newton's method for the levels and discharges in `after`; returns the number of solves, 0 where it failed."""
     last_change = math.inf
     for k in range(ITERATIONS):
-        set_sources(tables, after.nodes, forcing, work, after.delivery)
+        set_sources(tables, after, forcing, work)
         assemble(tables, before, after, work, seconds, head_factor, inertial, forcing)
         back_substitute(work.rows)
         change = apply_correction(tables, after, work)
@@ -167,7 +210,7 @@ def solve_stage(tables, before, after, work, seconds, head_factor, inertial, for
 @inner_kernel
 def finish_stage(tables, before, after, work, seconds, head_factor, inertial, forcing):
     """Rates and volumes of a solved stage; areas follow the last correction to first order."""
-    set_sources(tables, after.nodes, forcing, work, after.delivery)
+    set_sources(tables, after, forcing, work)
     for k in range(after.nodes.size):
         node, scratch, change = after.nodes[k], work.nodes[k], work.rows[2 * k + 1].x
         node.width = scratch.width

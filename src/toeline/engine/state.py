@@ -4,6 +4,8 @@ from typing import NamedTuple
 
 import numpy as np
 
+from toeline.network.tables import Network
+
 STORED = np.dtype(
     [
         ("level", float),  # m above datum
@@ -37,7 +39,7 @@ NODE_WORK = np.dtype(
         ("inverse_area", float),  # α/A² [1/m⁴]
         ("inverse_area_slope", float),  # [1/m⁵]
         ("volume_base", float),  # m³ that the stage starts from
-        ("source", float),  # m³/s, deliveries, negative
+        ("source", float),  # m³/s, deliveries, escapes and losses, negative
         ("source_slope", float),  # m²/s
     ]
 )
@@ -62,6 +64,8 @@ class State(NamedTuple):
     nodes: np.recarray  # (n) of STORED
     links: np.recarray  # (n + 1) of CARRIED
     delivery: np.ndarray  # (d) m³/s
+    escape: np.ndarray  # (e) m³/s
+    loss: np.ndarray  # (p) m³/s, seepage and evaporation less rain of a pool
 
 
 class Work(NamedTuple):
@@ -75,8 +79,10 @@ class Work(NamedTuple):
 class Totals(NamedTuple):
     """Volumes since the start of the day [m³], advanced with the same weights as the stored volumes."""
 
-    canal: np.ndarray  # (2) inflow, outflow
+    passed: np.ndarray  # (p + 1) through the upper ends of the pools and the lower end of the last
     delivery: np.ndarray  # (d)
+    escape: np.ndarray  # (e)
+    loss: np.ndarray  # (p)
 
 
 def zeros(count: int, kind: np.dtype) -> np.recarray:
@@ -84,11 +90,13 @@ def zeros(count: int, kind: np.dtype) -> np.recarray:
     return np.zeros(count, kind).view(np.recarray)
 
 
-def new_state(nodes: int, offtakes: int) -> State:
+def new_state(network: Network) -> State:
     """A state of zeros."""
+    nodes = network.node_count
     links = zeros(nodes + 1, CARRIED)
     links.mean_area = links.source_area = links.convective_share = 1.0
-    return State(zeros(nodes, STORED), links, np.zeros(offtakes))
+    takes, escapes, pools = network.offtake_count, network.escape_count, network.pool_count
+    return State(zeros(nodes, STORED), links, np.zeros(takes), np.zeros(escapes), np.zeros(pools))
 
 
 def new_work(nodes: int) -> Work:
@@ -96,6 +104,7 @@ def new_work(nodes: int) -> Work:
     return Work(zeros(nodes, NODE_WORK), zeros(nodes + 1, LINK_WORK), zeros(2 * nodes + 1, MATRIX_ROW))
 
 
-def new_totals(offtakes: int) -> Totals:
+def new_totals(network: Network) -> Totals:
     """Totals of zero."""
-    return Totals(np.zeros(2), np.zeros(offtakes))
+    takes, escapes, pools = network.offtake_count, network.escape_count, network.pool_count
+    return Totals(np.zeros(pools + 1), np.zeros(takes), np.zeros(escapes), np.zeros(pools))

@@ -141,7 +141,7 @@ def begin_leg(tables, state, work, forcing, inertial):
     largest = 0.0
     for k in range(state.delivery.size):
         work.rows[k].x = state.delivery[k]
-    set_sources(tables, state.nodes, forcing, work, state.delivery)
+    set_sources(tables, state, forcing, work)
     for k in range(state.delivery.size):
         largest = max(largest, abs(state.delivery[k] - work.rows[k].x))
     geometry_pass(tables, state.nodes, work)
@@ -201,12 +201,14 @@ def start_from_levels(tables, state, work):
 @inner_kernel
 def accept(tables, state, middle, after, work, totals, h):
     """Take `after` as the new state, add up what came and went, and judge anew how calm each reach link is."""
-    out = canal_outflow_link(tables)
-    totals.canal[0] += h * weighted(state.links[0].discharge, middle.links[0].discharge, after.links[0].discharge)
-    totals.canal[1] += h * weighted(state.links[out].discharge, middle.links[out].discharge, after.links[out].discharge)
-    for k in range(totals.delivery.size):
-        totals.delivery[k] += h * weighted(state.delivery[k], middle.delivery[k], after.delivery[k])
-        state.delivery[k] = after.delivery[k]
+    for p in range(totals.passed.size):
+        end = pool_end_link(tables, p)
+        totals.passed[p] += h * weighted(
+            state.links[end].discharge, middle.links[end].discharge, after.links[end].discharge
+        )
+    add_up(totals.delivery, state.delivery, middle.delivery, after.delivery, h)
+    add_up(totals.escape, state.escape, middle.escape, after.escape, h)
+    add_up(totals.loss, state.loss, middle.loss, after.loss, h)
     for k in range(state.nodes.size):
         state.nodes[k] = after.nodes[k]
     for index in range(state.links.size):
@@ -219,9 +221,17 @@ def accept(tables, state, middle, after, work, totals, h):
 
 
 @inner_kernel
-def canal_outflow_link(tables):
-    """The link by which water leaves the canal: the last, or the tail gate where a basin stands beyond it."""
-    return tables.pools[tables.pools.size - 1].last_node + 1
+def add_up(totals, state, middle, after, h):
+    """Add the volumes of a step to running totals, and take its end as the new state."""
+    for k in range(totals.size):
+        totals[k] += h * weighted(state[k], middle[k], after[k])
+        state[k] = after[k]
+
+
+@inner_kernel
+def pool_end_link(tables, p):
+    """The link by which water enters pool p; behind the last pool that by which it leaves the canal."""
+    return tables.pools[p].first_node if p < tables.pools.size else tables.pools[p - 1].last_node + 1
 
 
 @inner_kernel

@@ -13,6 +13,9 @@ from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, TA
 LEAST_CHANGE = 1e-9
 """Change of a discharge [m³/s] below which nothing is said to settle."""
 
+LEAST_ROUGHENING = 0.01
+"""Relative change of Manning's n at once from which a pool is said to settle (choice)."""
+
 SIDES = ("upstream", "downstream")
 
 
@@ -23,12 +26,13 @@ class Unrest:
         self.network, self.state, self.watch, self.length = network, state, watch, length
 
     def note_move(self, time: int, g: int, up: float, down: float, opening: float, motion: GateMotion) -> None:
-        """Surge bounds of a move of gate `g` from `opening` [m] at the levels beside it, and until when both pools
-        settle.
+        """Surge bounds of a move of a leaf of gate `g` from `opening` [m] at the levels beside it, and until when both
+        pools settle.
         """
         tables = self.network.tables
+        before = self.state.links.discharge[np.flatnonzero(tables.links.gate == g)[0]]
         up_height, down_height, change = surge_bounds(
-            tables.channel.shapes, tables.gates[g], up, down, opening, motion.target
+            tables.channel.shapes, tables.gates[g], up, down, before, opening, motion.target
         )
         if abs(change) < LEAST_CHANGE:
             return
@@ -46,7 +50,7 @@ class Unrest:
         """Pools that a change of inflow, of the tail level or of a delivery leaves settling."""
         changed = np.abs(now - before) > LEAST_CHANGE
         network, tables = self.network, self.network.tables
-        first = FORCING_GATES + network.gate_count
+        first = FORCING_GATES + network.leaf_count
         pools = set()
         if changed[FORCING_HEAD] and tables.links.gate[0] < 0:
             pools.add(0)
@@ -56,6 +60,11 @@ class Unrest:
             if changed[first + k] or changed[first + network.offtake_count + k]:
                 pools.add(int(np.searchsorted(tables.pools.last_node, node)))
         for pool in pools:
+            self._unsettle(pool, self._settled_after(pool, time))
+
+    def note_roughness(self, time: int, ratio: np.ndarray) -> None:
+        """Pools that a change of the roughness, new over old by pool, leaves settling."""
+        for pool in np.flatnonzero(np.abs(ratio - 1.0) > LEAST_ROUGHENING).tolist():
             self._unsettle(pool, self._settled_after(pool, time))
 
     def end_state(self, time: int) -> dict[str, np.ndarray]:

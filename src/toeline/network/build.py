@@ -12,11 +12,14 @@ from toeline.hydraulics.uniform_flow import normal_depth
 from toeline.network.layout import Line, Node, lay_out, protected_ends
 from toeline.network.tables import (
     CELL,
+    ESCAPE,
     FREE_OVERFALL,
     GATE,
     GATE_ROW,
+    GAUGE,
     HEAD,
     INFLOW,
+    LEAF,
     LINK,
     NORMAL_DEPTH,
     OFFTAKE,
@@ -24,6 +27,7 @@ from toeline.network.tables import (
     RATING,
     REACH,
     TAIL_LEVEL,
+    GaugeName,
     Names,
     Network,
     Tables,
@@ -31,6 +35,7 @@ from toeline.network.tables import (
 )
 from toeline.scenario.schema.canal import Canal
 from toeline.scenario.schema.gates import Gate
+from toeline.scenario.schema.gauges import Gauge
 from toeline.scenario.schema.sections import Section
 
 TAIL_BASIN_LENGTH = 20.0
@@ -53,15 +58,18 @@ def network_of(canal: Canal, spacing: float) -> Network:
     canal_nodes = sum(len(line.nodes) for line in lines[: len(canal.pools)])
     tables = Tables(
         channel=channel,
-        cells=_cells(lines, channel, canal_nodes, has_basin),
+        cells=_cells(canal, lines, channel, canal_nodes, has_basin),
         links=_links(canal, lines, canal_nodes, has_basin),
         gates=_gates(canal, lines, channel, shapes),
+        leaves=_leaves(canal),
         offtakes=_offtakes(canal, lines, channel),
-        pools=_pools(lines[: len(canal.pools)]),
+        escapes=_escapes(canal, lines),
+        gauges=_gauges(canal, lines, channel),
+        pools=_pools(canal, lines),
         tail_slope=np.array([canal.tail.slope or 0.0]),
         tail_rating=np.ascontiguousarray(np.array(canal.tail.rating or [(0.0, 0.0), (1.0, 1.0)], float).T),
     )
-    return Network(tables, has_basin, _names(canal, lines, canal_nodes))
+    return Network(tables, channel.nodes.roughness.copy(), has_basin, _names(canal, lines, canal_nodes))
 
 
 class _Shapes:
@@ -118,19 +126,29 @@ def _channel(lines: list[Line], shapes: _Shapes) -> Channel:
     return Channel(table, cross_section.packed(shapes.rows))
 
 
-def _cells(lines: list[Line], channel: Channel, canal_nodes: int, has_basin: bool) -> np.recarray:
+def _cells(canal: Canal, lines: list[Line], channel: Channel, canal_nodes: int, has_basin: bool) -> np.recarray:
     count = canal_nodes + int(has_basin)
-    length = np.zeros(count)
+    length, seeping = np.zeros(count), np.zeros(count)
     for line in lines:
         last = min(line.last_index, canal_nodes - 1)
         half = 0.5 * np.diff(channel.nodes.chainage[line.first_index : last + 1])
-        length[line.first_index : last] += half
-        length[line.first_index + 1 : last + 1] += half
+        rate = [_seepage(canal, node.surface) for node in line.nodes[: half.size]]
+        for side in (slice(line.first_index, last), slice(line.first_index + 1, last + 1)):
+            length[side] += half
+            seeping[side] += half * rate
     if has_basin:
         length[-1] = TAIL_BASIN_LENGTH
     at_dry = np.array([cross_section.geometry(row, DRY_DEPTH)[:3] for row in channel.shapes])
     area, width, perimeter = at_dry[channel.nodes.section[:count]].T
-    return records(CELL, length=length, dry_area=area, dry_width=width, dry_perimeter=perimeter)
+    return records(
+        CELL, length=length, dry_area=area, dry_width=width, dry_perimeter=perimeter, seepage=seeping / length
+    )
+
+
+def _seepage(canal: Canal, surface: str) -> float:
+    """Seepage [m/s] over a surface; none beyond the last gate where no surface is named."""
+    own = canal.surfaces[surface].seepage if surface else 0.0
+    return canal.losses.seepage if own is None else own
 
 
 def _links(canal: Canal, lines: list[Line], canal_nodes: int, has_basin: bool) -> np.recarray:
@@ -160,7 +178,7 @@ def _gate_links(canal: Canal, lines: list[Line]) -> list[int]:
 
 def _gates(canal: Canal, lines: list[Line], channel: Channel, shapes: _Shapes) -> np.recarray:
     names = [pool.name for pool in canal.pools] + ["tail"]
-    rows = []
+    rows, first_leaf = [], 0
     for gate in canal.gates:
         line = lines[names.index(gate.downstream)]
         up = HEAD if gate.upstream == "head" else lines[names.index(gate.upstream)].last_index
@@ -172,8 +190,17 @@ def _gates(canal: Canal, lines: list[Line], channel: Channel, shapes: _Shapes) -
         )
         apron, protection = protected_ends(canal, line)
         protected = line.first_index + max(1, sum(node.distance <= protection for node in line.nodes) - 1)
-        rows.append((*law, up, line.first_index, *sections, line.last_index, protected, apron, protection))
+        leaves = (first_leaf, gate.leaf_count)
+        rows.append((*law, up, line.first_index, *sections, line.last_index, protected, apron, protection, *leaves))
+        first_leaf += gate.leaf_count
     return np.array(rows, GATE_ROW).view(np.recarray)
+
+
+def _leaves(canal: Canal) -> np.recarray:
+    """The leaves of all gates, those of bays that move apart numbered through."""
+    gates = [g for g, gate in enumerate(canal.gates) for _ in range(gate.leaf_count)]
+    is_apart = np.array([canal.gates[g].separate_bays for g in gates], bool)
+    return records(LEAF, gate=gates, bay=np.where(is_apart, np.cumsum(is_apart) - 1, -1))
 
 
 def gate_law(gate: Gate, floor_level: float, upstream_bed_level: float) -> UnderflowGate:
@@ -195,12 +222,7 @@ def gate_law(gate: Gate, floor_level: float, upstream_bed_level: float) -> Under
 
 def _offtakes(canal: Canal, lines: list[Line], channel: Channel) -> np.recarray:
     """Every offtake at the node nearest to it."""
-    names = [pool.name for pool in canal.pools]
-    nodes = []
-    for take in canal.offtakes:
-        line = lines[names.index(take.pool)]
-        distances = np.array([node.distance for node in line.nodes])
-        nodes.append(line.first_index + int(np.argmin(np.abs(distances - take.chainage))))
+    nodes = [_nearest_node(canal, lines, take.pool, take.chainage) for take in canal.offtakes]
     sills = [
         take.sill_level if take.sill_level is not None else channel.nodes.bed_level[node]
         for take, node in zip(canal.offtakes, nodes, strict=True)
@@ -215,8 +237,70 @@ def _offtakes(canal: Canal, lines: list[Line], channel: Channel) -> np.recarray:
     )
 
 
-def _pools(lines: list[Line]) -> np.recarray:
-    return records(POOL, first_node=[line.first_index for line in lines], last_node=[line.last_index for line in lines])
+def _line_of(canal: Canal, lines: list[Line], pool: str) -> Line:
+    return lines[[other.name for other in canal.pools].index(pool)]
+
+
+def _nearest_node(canal: Canal, lines: list[Line], pool: str, chainage: float) -> int:
+    line = _line_of(canal, lines, pool)
+    distances = np.array([node.distance for node in line.nodes])
+    return line.first_index + int(np.argmin(np.abs(distances - chainage)))
+
+
+def _escapes(canal: Canal, lines: list[Line]) -> np.recarray:
+    """Every escape at the node nearest to the middle of its crest."""
+    outside = [escape.outside_level for escape in canal.escapes]
+    return records(
+        ESCAPE,
+        node=[_nearest_node(canal, lines, escape.pool, escape.chainage) for escape in canal.escapes],
+        crest_level=[escape.crest_level for escape in canal.escapes],
+        length=[escape.length for escape in canal.escapes],
+        coefficient=[escape.coefficient for escape in canal.escapes],
+        outside_level=[-math.inf if level is None else level for level in outside],
+    )
+
+
+def _gauges(canal: Canal, lines: list[Line], channel: Channel) -> np.recarray:
+    """Every gauge between the two nodes beside it, or at the node beside its gate."""
+    rows = []
+    for gauge in canal.gauges:
+        node, weight = _gauge_place(canal, lines, gauge)
+        beds = channel.nodes.bed_level[node : node + 2]
+        bed = -math.inf if node == HEAD else beds[0] + (weight * (beds[1] - beds[0]) if weight else 0.0)
+        rows.append((node, weight, bed, gauge.zero_level))
+    return np.array(rows, GAUGE).view(np.recarray)
+
+
+def _gauge_place(canal: Canal, lines: list[Line], gauge: Gauge) -> tuple[int, float]:
+    """Node of the channel and share of the next one."""
+    if gauge.pool is not None and gauge.chainage is not None:
+        line = _line_of(canal, lines, gauge.pool)
+        distances = np.array([node.distance for node in line.nodes])
+        before = int(np.searchsorted(distances[1:-1], gauge.chainage, side="right"))
+        weight = (gauge.chainage - distances[before]) / (distances[before + 1] - distances[before])
+        return line.first_index + before, float(min(weight, 1.0))
+    gate = next(gate for gate in canal.gates if gate.name == gauge.gate)
+    if gauge.side == "downstream":
+        return _gate_links(canal, lines)[canal.gates.index(gate)], 0.0
+    return (HEAD if gate.upstream == "head" else _line_of(canal, lines, gate.upstream).last_index), 0.0
+
+
+def _gauge_name(canal: Canal, gauge: Gauge) -> GaugeName:
+    if gauge.pool is not None:
+        return GaugeName(gauge.name, "", "none", gauge.pool)
+    gate = next(gate for gate in canal.gates if gate.name == gauge.gate)
+    side = gauge.side or ""
+    return GaugeName(gauge.name, gate.name, side, gate.upstream if side == "upstream" else gate.downstream)
+
+
+def _pools(canal: Canal, lines: list[Line]) -> np.recarray:
+    seepage = [[_seepage(canal, node.surface) for node in line.nodes] for line in lines[: len(canal.pools)]]
+    return records(
+        POOL,
+        first_node=[line.first_index for line in lines[: len(canal.pools)]],
+        last_node=[line.last_index for line in lines[: len(canal.pools)]],
+        seeps=[int(any(rates)) for rates in seepage],
+    )
 
 
 def _names(canal: Canal, lines: list[Line], canal_nodes: int) -> Names:
@@ -226,7 +310,10 @@ def _names(canal: Canal, lines: list[Line], canal_nodes: int) -> Names:
     return Names(
         pools=tuple(pool.name for pool in canal.pools),
         gates=tuple(gate.name for gate in canal.gates),
+        bays=tuple(f"{g.name}, bay {k + 1}" for g in canal.gates if g.separate_bays for k in range(g.bays)),
         offtakes=tuple(take.name for take in canal.offtakes),
+        escapes=tuple(escape.name for escape in canal.escapes),
+        gauges=tuple(_gauge_name(canal, gauge) for gauge in canal.gauges),
         surfaces=surfaces,
         node_surface=np.array([surfaces.index(node.surface) for node in nodes], np.int8),
         velocity_limit=np.array([_or_nan(limits[node.surface]) for node in nodes]),
@@ -253,13 +340,16 @@ def _line_level(canal: Canal, node: Node, height: str) -> float:
     return node.bed + here + node.blend[1] * (there - here)
 
 
-def steep_stretches(canal: Canal, discharge: float) -> list[tuple[int, int, float, float]]:
-    """Stretches whose normal depth is below critical: pool index, stretch index, normal and critical depth [m]."""
+def steep_stretches(canal: Canal, discharge: float, factors: np.ndarray) -> list[tuple[int, int, float, float]]:
+    """Stretches whose normal depth is below critical: pool index, stretch index, normal and critical depth [m].
+
+    `factors` are those on Manning's n, by pool.
+    """
     found = []
     sections = {name: _section(section) for name, section in canal.sections.items()}
     for p, pool in enumerate(canal.pools):
         for s, stretch in enumerate(pool.stretches):
-            section, n = sections[stretch.section], canal.sections[stretch.section].roughness
+            section, n = sections[stretch.section], factors[p] * canal.sections[stretch.section].roughness
             normal, flag = normal_depth(section, n, stretch.slope, discharge)
             critical, _ = critical_depth(section, discharge)
             if flag == status.OK and normal < critical:

@@ -114,15 +114,15 @@ def _times_of_pool(
     length = end.chainage - head.chainage
     slope = (head.bed_level - end.bed_level) / length
     found = response(channel.shapes[end.section], end.roughness, slope, length, held - end.bed_level, flow)
-    return found.delay, _volume_by_discharge(network, first, last, held, flow), found.area, found.admittance
+    is_calm = math.isfinite(found.delay)
+    by_volume = _volume_by_discharge(network, first, last, held, flow) if is_calm else math.nan
+    return found.delay, by_volume, found.area, found.admittance
 
 
 def _volume_by_discharge(network: Network, first: int, last: int, held: float, flow: float) -> float:
     """dV/dQ [s] of the steady pool at the level held at its lower end (Bautista & Clemmens 2005, J. Irrig. Drain. Eng.
     131(6); from memory).
     """
-    if flow < LEAST_DISCHARGE:
-        return math.nan
     change = RELATIVE_CHANGE * flow
     low, high = (_volume(network, first, last, held, q) for q in (flow - change, flow + change))
     return (high - low) / (2.0 * change)

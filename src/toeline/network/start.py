@@ -12,9 +12,18 @@ from toeline.network.initial_state import (
     steady_at_targets,
     steady_under_reservoir,
 )
-from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, Network
+from toeline.network.tables import (
+    FORCING_EVAPORATION,
+    FORCING_GATES,
+    FORCING_HEAD,
+    FORCING_RAIN,
+    FORCING_TAIL,
+    Network,
+)
 from toeline.network.timetable import Timetable
 from toeline.scenario import Scenario
+from toeline.scenario.schema.canal import Canal
+from toeline.scenario.schema.day import OpeningOfGate
 
 
 def starting_state(scenario: Scenario, network: Network, timetable: Timetable) -> Start:
@@ -25,8 +34,13 @@ def starting_state(scenario: Scenario, network: Network, timetable: Timetable) -
     """
     start, canal = scenario.day.start, scenario.canal
     forcing = timetable.values_at(0)
-    first, count = FORCING_GATES + network.gate_count, network.offtake_count
-    demands = Demands(np.nan_to_num(forcing[first : first + count]), forcing[first + count :])
+    first, count = FORCING_GATES + network.leaf_count, network.offtake_count
+    demands = Demands(
+        np.nan_to_num(forcing[first : first + count]),
+        forcing[first + count :],
+        forcing[FORCING_EVAPORATION] - forcing[FORCING_RAIN],
+    )
+    network.set_roughness(timetable.roughness[0].factors)
     inflow, tail_level, head_level = start.inflow or 0.0, forcing[FORCING_TAIL], forcing[FORCING_HEAD]
     if canal.head.kind == "inflow":
         inflow = head_level
@@ -34,7 +48,7 @@ def starting_state(scenario: Scenario, network: Network, timetable: Timetable) -
         if not isinstance(start.openings, dict):
             largest = [gate.max_opening for gate in canal.gates]
             return steady_at_targets(network, inflow, tail_level, head_level, demands, largest)
-        openings = np.array([start.openings.get(gate.name, 0.0) for gate in canal.gates])
+        openings = leaf_openings(start.openings, canal)
         if start.state == "dry":
             return dry_state(network, openings)
         if canal.head.kind == "inflow":
@@ -44,9 +58,16 @@ def starting_state(scenario: Scenario, network: Network, timetable: Timetable) -
         raise ScenarioError([scenario.fault(str(error), "start", file="day")]) from None
 
 
+def leaf_openings(openings: dict[str, OpeningOfGate], canal: Canal) -> np.ndarray:
+    """Openings of all leaves [m] from those by gate: one of a gate is that of all its leaves."""
+    by_gate = [np.broadcast_to(openings.get(gate.name, 0.0), gate.leaf_count) for gate in canal.gates]
+    return np.concatenate([np.empty(0), *by_gate])
+
+
 def check_mild(scenario: Scenario, timetable: Timetable) -> None:
     """Raise ScenarioError for stretches that are steep for the largest inflow that the day gives."""
     head = timetable.series[FORCING_HEAD]
+    least_factors = np.min([change.factors for change in timetable.roughness], axis=0)
     inflow = float(np.max(head.values)) if scenario.canal.head.kind == "inflow" else scenario.day.start.inflow
     if not inflow:
         return
@@ -56,7 +77,7 @@ def check_mild(scenario: Scenario, timetable: Timetable) -> None:
             "steep pools are not computed: give a milder slope, or the drop as a step at a gate",
             "pools", p, "stretches", s, "slope",
         )
-        for p, s, normal, critical in steep_stretches(scenario.canal, inflow)
+        for p, s, normal, critical in steep_stretches(scenario.canal, inflow, least_factors)
     ]  # fmt: skip
     if faults:
         raise ScenarioError(faults)

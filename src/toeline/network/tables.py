@@ -18,8 +18,10 @@ INFLOW, REACH, GATE, TAIL_LEVEL, FREE_OVERFALL, RATING, NORMAL_DEPTH = range(7)
 HEAD, TAIL = -1, -2
 """Stand for the node beyond either end of the canal."""
 
-FORCING_HEAD, FORCING_TAIL, FORCING_GATES = 0, 1, 2
-"""Where the forcing array holds the inflow or head level, the tail level and, from there on, gate openings."""
+FORCING_HEAD, FORCING_TAIL, FORCING_EVAPORATION, FORCING_RAIN, FORCING_GATES = range(5)
+"""Where the forcing array holds the inflow or head level, the tail level, evaporation and rain [m/s] and, from there
+on, openings of leaves.
+"""
 
 
 CELL = np.dtype(
@@ -28,6 +30,7 @@ CELL = np.dtype(
         ("dry_area", float),  # m² at the dry depth, from which the area goes on exponentially
         ("dry_width", float),  # m there
         ("dry_perimeter", float),  # m there
+        ("seepage", float),  # m/s through the wetted perimeter
     ]
 )
 """The storage of a node whose level is unknown."""
@@ -52,9 +55,18 @@ GATE_ROW = np.dtype(
         ("protection_last", np.int64),  # last node of its protected floor, at least one below the first
         ("apron_end", float),  # m from the gate
         ("protection_end", float),  # m from the gate
+        ("first_leaf", np.int64),  # one leaf for all bays, or one a bay
+        ("leaf_count", np.int64),
     ]
 )
-"""A gate: the fields of its law, and where it stands."""
+"""A gate: the fields of its law, where it stands, and what moves it."""
+
+LEAF = np.dtype(
+    [
+        ("gate", np.int64),
+        ("bay", np.int64),  # row of bays that move apart, -1 where the leaf stands for all bays of its gate
+    ]
+)
 
 OFFTAKE = np.dtype(
     [
@@ -66,17 +78,40 @@ OFFTAKE = np.dtype(
     ]
 )
 
-POOL = np.dtype([("first_node", np.int64), ("last_node", np.int64)])
+ESCAPE = np.dtype(
+    [
+        ("node", np.int64),
+        ("crest_level", float),  # m above datum
+        ("length", float),  # m of crest
+        ("coefficient", float),  # m^0.5/s
+        ("outside_level", float),  # m above datum, -inf where the water falls freely
+    ]
+)
+
+GAUGE = np.dtype(
+    [
+        ("node", np.int64),  # of the channel; HEAD for the reservoir
+        ("weight", float),  # 1, share of the next node
+        ("bed_level", float),  # m above datum, at the staff
+        ("zero_level", float),  # m above datum
+    ]
+)
+
+POOL = np.dtype([("first_node", np.int64), ("last_node", np.int64), ("seeps", np.int64)])
+"""`seeps` is 1 where any of its nodes has a seepage."""
 
 
 class Tables(NamedTuple):
-    """The canal as compiled code takes it: record arrays by node (n), link (n + 1), gate, offtake and pool."""
+    """The canal as compiled code takes it: record arrays by node (n), link (n + 1), gate, offtake and so on."""
 
     channel: Channel
     cells: np.recarray  # (n) of CELL
     links: np.recarray  # (n + 1) of LINK
     gates: np.recarray  # (g) of GATE_ROW
+    leaves: np.recarray  # (l) of LEAF
     offtakes: np.recarray  # (d) of OFFTAKE
+    escapes: np.recarray  # (e) of ESCAPE
+    gauges: np.recarray  # (u) of GAUGE
     pools: np.recarray  # (p) of POOL
     tail_slope: np.ndarray  # (1) for NORMAL_DEPTH
     tail_rating: np.ndarray  # (2, r) levels [m] and discharges [m³/s] for RATING
@@ -99,6 +134,7 @@ class Network:
     """
 
     tables: Tables
+    clean_roughness: np.ndarray  # (channel nodes) Manning's n before any factor
     has_tail_basin: bool
     names: "Names"
 
@@ -121,8 +157,46 @@ class Network:
         return self.tables.gates.size
 
     @property
+    def leaf_count(self) -> int:
+        return self.tables.leaves.size
+
+    @property
+    def bay_count(self) -> int:
+        """Bays of gates whose bays move apart."""
+        return len(self.names.bays)
+
+    def leaves_of(self, g: int) -> range:
+        """Rows of the leaves of a gate."""
+        first = int(self.tables.gates.first_leaf[g])
+        return range(first, first + int(self.tables.gates.leaf_count[g]))
+
+    def places_of_leaves(self) -> list[tuple[int, int]]:
+        """Gate and number of the bay of every leaf; 0 where it stands for all bays."""
+        gates, leaves = self.tables.gates, self.tables.leaves
+        numbers = np.arange(leaves.size) - gates.first_leaf[leaves.gate] + 1
+        return list(zip(leaves.gate.tolist(), np.where(leaves.bay < 0, 0, numbers).tolist(), strict=True))
+
+    @property
     def offtake_count(self) -> int:
         return self.tables.offtakes.size
+
+    @property
+    def escape_count(self) -> int:
+        return self.tables.escapes.size
+
+    @property
+    def pool_count(self) -> int:
+        return self.tables.pools.size
+
+    def set_roughness(self, factors: np.ndarray) -> None:
+        """Give the nodes of every pool their roughness times a factor [1]; beyond a tail gate it is never changed."""
+        by_node = np.ones(self.clean_roughness.size)
+        by_node[: self.canal_node_count] = factors[self.pool_of(np.arange(self.canal_node_count))]
+        self.channel.nodes.roughness = self.clean_roughness * by_node
+
+    def pool_of(self, node: np.ndarray) -> np.ndarray:
+        """Index of the pool of a canal node."""
+        return np.searchsorted(self.tables.pools.last_node, node)
 
 
 @dataclass(frozen=True)
@@ -131,7 +205,10 @@ class Names:
 
     pools: tuple[str, ...]
     gates: tuple[str, ...]
+    bays: tuple[str, ...]  # of gates whose bays move apart
     offtakes: tuple[str, ...]
+    escapes: tuple[str, ...]
+    gauges: tuple["GaugeName", ...]
     surfaces: tuple[str, ...]
     node_surface: np.ndarray  # (canal nodes) int8, index of the surface that begins at the node
     velocity_limit: np.ndarray  # (canal nodes) m/s, NaN where none
@@ -142,3 +219,12 @@ class Names:
     smallest_move: np.ndarray  # (g) m
     turn: np.ndarray  # (g) m, NaN where none
     scale_mark: np.ndarray  # (g) m, NaN where none
+
+
+class GaugeName(NamedTuple):
+    """A gauge as people know it: beside a gate, or along a pool (no gate, side "none")."""
+
+    name: str
+    gate: str
+    side: str
+    pool: str  # "head" or "tail" beyond the ends of the canal

@@ -7,7 +7,15 @@ from typing import NamedTuple
 
 import numpy as np
 
-from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, Network
+from toeline.network.roughness import RoughnessChange, roughness_changes
+from toeline.network.tables import (
+    FORCING_EVAPORATION,
+    FORCING_GATES,
+    FORCING_HEAD,
+    FORCING_RAIN,
+    FORCING_TAIL,
+    Network,
+)
 from toeline.rules.base import CanalFacts
 from toeline.scenario import Order, RuleChoice, Scenario, Stuck
 from toeline.scenario.canal_facts import canal_facts
@@ -38,6 +46,7 @@ class Timetable:
     every: int  # ms, rows
     profiles_every: int  # ms
     series: dict[int, Series]  # by forcing index
+    roughness: tuple[RoughnessChange, ...]  # by time, the first at the start
     orders: tuple[Order, ...]  # by time
     rules: tuple[RuleChoice, ...]
     decisions: tuple[np.ndarray, ...]  # ms, by rule
@@ -45,7 +54,7 @@ class Timetable:
     gates: tuple[Gate, ...]  # of the scenario, for travel, hoist and bands
     marks: tuple[Marks | None, ...]  # by gate, what its openings are rounded to
     canal: CanalFacts  # for rules
-    gate_count: int
+    leaf_count: int
     offtake_count: int
 
     def stops(self) -> np.ndarray:
@@ -54,6 +63,7 @@ class Timetable:
         times = [np.arange(first_hour, self.length, HOUR_MS)]
         times += [np.asarray(series.times) for series in self.series.values()]
         times.append(np.array([order.at for order in self.orders], np.int64))
+        times.append(np.array([change.time for change in self.roughness], np.int64))
         times.append(np.array([stuck.begin for stuck in self.stuck], np.int64))
         times += self.decisions
         all_times = np.unique(np.concatenate(times).astype(np.int64))
@@ -77,13 +87,13 @@ class Timetable:
 
     def demand_of(self, offtake: int) -> Series:
         """Demand at an offtake [m³/s], zero where nothing is asked."""
-        series = self.series[FORCING_GATES + self.gate_count + offtake]
+        series = self.series[FORCING_GATES + self.leaf_count + offtake]
         return constant(0.0) if np.isnan(series.values).any() else series
 
     @property
     def forcing_size(self) -> int:
-        """Head, tail, an opening a gate, a demand and an opening an offtake."""
-        return FORCING_GATES + self.gate_count + 2 * self.offtake_count
+        """Head, tail, evaporation, rain, an opening a leaf, a demand and an opening an offtake."""
+        return FORCING_GATES + self.leaf_count + 2 * self.offtake_count
 
 
 def timetable_of(scenario: Scenario, network: Network) -> Timetable:
@@ -99,6 +109,7 @@ def timetable_of(scenario: Scenario, network: Network) -> Timetable:
         every=day.output.every_ms,
         profiles_every=day.output.profiles_every_ms,
         series=_series(day, canal, network),
+        roughness=roughness_changes(canal, period.start, period.length_ms),
         orders=scenario.orders,
         rules=scenario.rules,
         decisions=tuple(
@@ -108,7 +119,7 @@ def timetable_of(scenario: Scenario, network: Network) -> Timetable:
         gates=tuple(canal.gates),
         marks=tuple(_marks(day, gate) for gate in canal.gates),
         canal=canal_facts(canal),
-        gate_count=network.gate_count,
+        leaf_count=network.leaf_count,
         offtake_count=network.offtake_count,
     )
 
@@ -124,8 +135,10 @@ def _series(day: Day, canal: Canal, network: Network) -> dict[int, Series]:
     series = {
         FORCING_HEAD: day.inflow or day.head or constant(canal.head.level or 0.0),
         FORCING_TAIL: day.tail or constant(canal.tail.level or 0.0),
+        FORCING_EVAPORATION: day.losses.evaporation or constant(canal.losses.evaporation),
+        FORCING_RAIN: day.losses.rain or constant(canal.losses.rain),
     }
-    first = FORCING_GATES + network.gate_count
+    first = FORCING_GATES + network.leaf_count
     count = network.offtake_count
     for k, take in enumerate(canal.offtakes):
         series[first + k] = day.deliveries.get(take.name, constant(0.0 if take.kind == "demand" else np.nan))

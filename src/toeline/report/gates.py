@@ -3,10 +3,9 @@
 from collections.abc import Iterator, Sequence
 
 from toeline.findings.jumps import GateJumps
-from toeline.findings.series import Extreme
 from toeline.report.clock import duration_text
 from toeline.report.layout import INDENT, paragraph, table
-from toeline.report.run_clock import RunClock
+from toeline.report.run_clock import RunClock, extreme_text
 from toeline.units import Display
 
 
@@ -34,9 +33,9 @@ def margin_lines(gates: Sequence[GateJumps], clock: RunClock, display: Display, 
     rows = [
         (
             gate.gate,
-            _extreme(gate.protection_margin, clock, display),
-            _extreme(gate.tailwater_margin, clock, display),
-            _extreme(gate.jump_end_distance, clock, display),
+            extreme_text(gate.protection_margin, clock, display),
+            extreme_text(gate.tailwater_margin, clock, display),
+            extreme_text(gate.jump_end_distance, clock, display),
         )
         for gate in gates
     ]
@@ -62,8 +61,3 @@ def _hours_table(subject: str, rows: Sequence[tuple[str, dict[str, float]]], wid
 
 def _hours(hours: float) -> str:
     return duration_text(hours * 3600) if hours else "-"
-
-
-def _extreme(extreme: Extreme, clock: RunClock, display: Display) -> str:
-    value = display.length(extreme.value)
-    return value if value == "-" else f"{value} at {clock.at(extreme.time)}"

@@ -32,7 +32,8 @@ def _departure(order: xr.Dataset, display: Display) -> str:
     status = _word(order["order_status"])
     if status == "trimmed":
         status += f" to {display.opening(float(order['order_opening_after']))}"
-    return f"{order['order_gate'].item()}, {asked}: {status}: {order['order_reason'].item()}"
+    bay = f", bay {int(order['order_bay'])}" if order["order_bay"] else ""
+    return f"{order['order_gate'].item()}{bay}, {asked}: {status}: {order['order_reason'].item()}"
 
 
 def _word(flag: xr.DataArray) -> str:

@@ -8,9 +8,10 @@ from functools import cached_property
 import numpy as np
 import xarray as xr
 
+from toeline.findings.series import Extreme
 from toeline.report.clock import clock_text, duration_text, span_text
 from toeline.results.dataset import local_time
-from toeline.units import UnitSystem, quantity_text
+from toeline.units import Display, UnitSystem, quantity_text
 
 SPANS_LISTED = 3
 
@@ -49,3 +50,9 @@ class RunClock:
         if not seconds:
             return f"at {self.at(end)}"
         return f"in the {quantity_text(seconds, 'duration', UnitSystem.metric)} to {self.at(end)}"
+
+
+def extreme_text(extreme: Extreme, clock: RunClock, display: Display) -> str:
+    """A least or greatest length and when it came; "-" where there is none."""
+    value = display.length(extreme.value)
+    return value if value == "-" else f"{value} at {clock.at(extreme.time)}"

@@ -4,13 +4,18 @@ from collections.abc import Iterable
 
 import xarray as xr
 
+from toeline.findings.bays import uneven_bays
+from toeline.findings.escapes import escape_spills
+from toeline.findings.gauges import gauge_readings
 from toeline.findings.incidents import incidents
 from toeline.findings.indicators import indicators
 from toeline.findings.jumps import gate_jumps
 from toeline.findings.ledger import ledger
 from toeline.findings.limit_incidents import limit_uses
 from toeline.findings.moves import gate_moves
+from toeline.report.bays import bay_lines
 from toeline.report.gates import hazard_lines, hour_lines, margin_lines
+from toeline.report.gauges import gauge_lines, roughness_lines
 from toeline.report.incidents import incident_lines
 from toeline.report.indicators import indicator_lines
 from toeline.report.layout import heading, paragraph
@@ -19,7 +24,7 @@ from toeline.report.moves import move_lines
 from toeline.report.orders import order_lines
 from toeline.report.run_clock import RunClock
 from toeline.report.run_identity import run_identity
-from toeline.report.water import ledger_lines
+from toeline.report.water import escape_lines, ledger_lines
 from toeline.units import Display
 
 
@@ -29,19 +34,24 @@ def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
         return paragraph("The run was stopped before anything reached the disk.", width, indent="")
     clock = RunClock(run)
     gates, moves = gate_jumps(run), gate_moves(run)
-    sections = (
+    sections = [
         ("What goes wrong", incident_lines(incidents(run), clock, display, width)),
         ("Floor and people", hazard_lines(gates, clock, width)),
         ("Limits", limit_lines(limit_uses(run), run, clock, display, width)),
         ("Least margins", margin_lines(gates, clock, display, width)),
         ("Hours in each state", hour_lines(gates, width)),
+        ("Bays that move apart", bay_lines(uneven_bays(run), clock, display, width)),
         ("Orders", order_lines(run, clock, display, width)),
-        *([("Moves", move_lines(run, moves, clock, display, width))] if any(gate.moves for gate in moves) else []),
+        ("Moves", move_lines(run, moves, clock, display, width) if any(gate.moves for gate in moves) else ()),
+        ("Escapes", escape_lines(escape_spills(run), clock, display, width)),
+        ("Staff gauges", gauge_lines(gauge_readings(run), clock, display, width)),
+        ("Roughness", roughness_lines(run, width)),
         ("Indicators", indicator_lines(indicators(run), display, width)),
         ("Water ledger", ledger_lines(ledger(run), width)),
         ("Caution", [paragraph(run.attrs["comment"], width)]),
-    )
-    return "\n\n".join([_title(run, width), *(_section(title, lines) for title, lines in sections)])
+    ]
+    shown = [(title, list(lines)) for title, lines in sections]
+    return "\n\n".join([_title(run, width), *(_section(title, lines) for title, lines in shown if lines)])
 
 
 def _title(run: xr.Dataset, width: int) -> str:

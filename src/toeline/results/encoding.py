@@ -8,7 +8,7 @@ from datetime import UTC, datetime
 import numpy as np
 
 from toeline.results import variables as registry
-from toeline.results.variables import CLOCK, GROWING_DIMENSIONS, Variable, growing
+from toeline.results.variables import CLOCK, GROWING_DIMENSIONS, LABELLED_DIMENSIONS, Variable, growing
 
 Rows = dict[str, np.ndarray]
 """Arrays of one leading dimension by variable name, all with the same number of rows."""
@@ -18,8 +18,8 @@ INTEGER_CLOCKS = ("time", "profile_time")
 
 
 def sizes_of(static: Mapping[str, np.ndarray]) -> dict[str, int]:
-    """Lengths of the fixed dimensions: as many gates, pools, offtakes and nodes as their labels."""
-    return {dimension: len(static[dimension]) for dimension in ("gate", "pool", "offtake", "node")}
+    """Lengths of the fixed dimensions: as many gates, pools and so on as their labels."""
+    return {dimension: len(static[dimension]) for dimension in LABELLED_DIMENSIONS}
 
 
 def rows_by_dimension(block: Mapping[str, np.ndarray]) -> dict[str, Rows]:

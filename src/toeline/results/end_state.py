@@ -1,7 +1,7 @@
 """The state in which a finished run ended, for the next run to start from."""
 
 import os
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from datetime import datetime
 
 import numpy as np
@@ -22,17 +22,18 @@ def read_end_state(
     start: datetime,
     chainage: np.ndarray,
     bed_level: np.ndarray,
-    gates: Sequence[str],
+    labels: Mapping[str, Sequence[str]],
 ) -> dict[str, np.ndarray]:
     """The end state of the run in `path`, as it was given to the sink, but for `end_time`.
 
-    `start` is the aware time at which the next run begins, `chainage` and `bed_level` [m] those of its nodes, `gates`
-    its gates from the head down. UsageError if the run is unfinished, ended at another time, or was of another canal.
+    `start` is the aware time at which the next run begins, `chainage` and `bed_level` [m] those of its nodes, `labels`
+    its gates, bays that move apart and offtakes, each from the head down. UsageError if the run is unfinished, ended at
+    another time, or was of another canal.
     """
     with open_run(path) as run:
         _check_finished(run, path)
         _check_time(run, path, start)
-        _check_canal(run, path, chainage, bed_level, gates)
+        _check_canal(run, path, chainage, bed_level, labels)
         kept = [variable for variable in end_state() if variable.unit != CLOCK]
         return {v.name: run[v.name].values.astype(str if v.dtype == "text" else v.dtype) for v in kept}
 
@@ -41,8 +42,9 @@ def _check_finished(run: xr.Dataset, path: str | os.PathLike[str]) -> None:
     outcome = run.attrs["outcome"]
     if outcome != COMPLETE:
         raise UsageError(f"{path} is no finished run to start from; its outcome is {outcome!r}")
-    if "end_level" not in run:
-        raise UsageError(f"{path} holds no end state to start from")
+    missing = [variable.name for variable in end_state() if variable.name not in run]
+    if missing:
+        raise UsageError(f"{path} holds no end state to start from, or one of another version: {missing[0]} is missing")
 
 
 def _check_time(run: xr.Dataset, path: str | os.PathLike[str], start: datetime) -> None:
@@ -53,11 +55,18 @@ def _check_time(run: xr.Dataset, path: str | os.PathLike[str], start: datetime) 
 
 
 def _check_canal(
-    run: xr.Dataset, path: str | os.PathLike[str], chainage: np.ndarray, bed_level: np.ndarray, gates: Sequence[str]
+    run: xr.Dataset,
+    path: str | os.PathLike[str],
+    chainage: np.ndarray,
+    bed_level: np.ndarray,
+    labels: Mapping[str, Sequence[str]],
 ) -> None:
-    names = run["gate"].values.tolist()
-    if names != list(gates):
-        raise UsageError(f"{path} is a run of another canal: its gates are {names}, not {list(gates)}")
+    for dimension, expected_names in labels.items():
+        names = run[dimension].values.tolist()
+        if names != list(expected_names):
+            raise UsageError(
+                f"{path} is a run of another canal: its {dimension}s are {names}, not {list(expected_names)}"
+            )
     if run.sizes["node"] != len(chainage):
         raise UsageError(
             f"{path} has {run.sizes['node']} nodes, this canal {len(chainage)}: another canal, or another spacing"

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 GROWING_DIMENSIONS = ("time", "profile_time", "order")
+LABELLED_DIMENSIONS = ("gate", "bay", "pool", "offtake", "escape", "gauge", "node")
 CLOCK = "seconds since the start of the period"
 """Unit of all times in the registry; the file names the instant itself, in UTC."""
 
@@ -21,10 +22,11 @@ FLOW_STATES = (
     "overtopped",
     "reverse",
 )
-DISCHARGE_QUALITIES = ("good", "near_modular_limit", "lip_near_surface", "very_drowned", "reverse")
+DISCHARGE_QUALITIES = ("good", "near_modular_limit", "lip_near_surface", "very_drowned", "reverse", "uneven_bays")
 JUMP_STATES = ("none", "drowned", "on_apron", "on_protection", "beyond_protection", "swept_out_of_pool")
 JUMP_KINDS = ("none", "undular", "weak", "oscillating", "steady", "strong")
 LENGTH_QUALITIES = ("not_defined", "good", "poorly_known")
+GAUGE_SIDES = ("none", "upstream", "downstream")
 ORDER_KINDS = ("opening", "by", "discharge")
 ORDER_STATUSES = ("accepted", "trimmed", "refused", "replaced")
 
@@ -61,6 +63,7 @@ class Variable:
 
 
 _GATES, _POOLS, _OFFTAKES, _PROFILE = ("time", "gate"), ("time", "pool"), ("time", "offtake"), ("profile_time", "node")
+_ESCAPES = ("time", "escape")
 _SURFACE = "water_surface_height_above_reference_datum"
 _LEVEL = "above the datum of the canal file, whose altitude is not known here"
 _JUMP = ("jump_state", "jump_length_quality")
@@ -96,14 +99,17 @@ _CLOCKS = (
 )
 
 _GATE_SERIES = (
-    Variable("gate_opening", _GATES, "m", "opening of the gate, lip above sill", "as moved, not as ordered",
-             dtype="f8"),
+    Variable("gate_opening", _GATES, "m", "opening of the gate, lip above sill",
+             "as moved, not as ordered; the mean over bays that move apart", dtype="f8"),
     Variable("gate_discharge", _GATES, "m3 s-1", "discharge of the gate", "downstream positive; all bays together",
              companions=("gate_flow_state", "discharge_quality"), dtype="f8"),
-    _flag("gate_flow_state", _GATES, "state of the flow through the gate", FLOW_STATES, standard_name="status_flag"),
+    _flag("gate_flow_state", _GATES, "state of the flow through the gate", FLOW_STATES, standard_name="status_flag",
+          comment="this and all that is said of jet and jump: where bays move apart, of the bay with the largest unit "
+          "discharge, as if the whole width ran like it"),
     _flag("discharge_quality", _GATES, "how well the discharge of the gate is known", DISCHARGE_QUALITIES,
           standard_name="quality_flag",
-          comment="near the modular limit, with the lip near the surface and when very drowned, gate ratings are poor"),
+          comment="near the modular limit, with the lip near the surface, when very drowned, and with uneven bays that "
+          "the tailwater reaches, gate ratings are poor"),
     Variable("gate_headwater_level", _GATES, "m", "water level just above the gate", _LEVEL, _SURFACE, dtype="f8"),
     Variable("gate_tailwater_level", _GATES, "m", "water level just below the gate", _LEVEL, _SURFACE, dtype="f8"),
     Variable("gate_modular_limit_level", _GATES, "m", "tailwater level above which the flow begins to drown",
@@ -140,6 +146,13 @@ _GATE_SERIES = (
              "of an instantaneous change as large as the last move of the gate; 0 when settled"),
 )
 
+_BAY_SERIES = (
+    Variable("bay_opening", ("time", "bay"), "m", "opening of the bay, lip above sill", "as moved, not as ordered",
+             dtype="f8"),
+    Variable("bay_discharge", ("time", "bay"), "m3 s-1", "discharge of the bay",
+             "its share of what the gate would pass with all bays at this opening", dtype="f8"),
+)
+
 _POOL_SERIES = (
     _flag("settling", _POOLS, "whether waves of the last move still travel in the pool", ("settled", "settling"),
           standard_name="status_flag",
@@ -151,7 +164,15 @@ _POOL_SERIES = (
              companions=("settling",), dtype="f8"),
     Variable("pool_inflow", _POOLS, "m3 s-1", "discharge into the upper end of the pool", dtype="f8"),
     Variable("pool_outflow", _POOLS, "m3 s-1", "discharge out of the lower end of the pool", dtype="f8"),
-    Variable("pool_losses", _POOLS, "m3 s-1", "seepage and evaporation less rain", "deliveries are not losses"),
+    Variable("pool_inflow_volume", _POOLS, "m3", "volume taken in at the upper end of the pool since the start",
+             dtype="f8"),
+    Variable("pool_outflow_volume", _POOLS, "m3", "volume let out at the lower end of the pool since the start",
+             dtype="f8"),
+    Variable("pool_losses", _POOLS, "m3 s-1", "seepage and evaporation less rain",
+             "deliveries and escapes are not losses; negative where rain exceeds the rest"),
+    Variable("pool_loss_volume", _POOLS, "m3", "volume lost by seepage and evaporation less rain since the start",
+             dtype="f8"),
+    Variable("pool_roughness_factor", _POOLS, "1", "factor of the roughness calendar on Manning's n in the pool"),
     Variable("pool_bank_margin", _POOLS, "m", "least height of the bank above the water along the pool",
              "negative: over the bank; surges are not in it; missing where no bank is given", companions=("settling",)),
     Variable("pool_lining_margin", _POOLS, "m", "least height of the lining above the water along the pool",
@@ -167,6 +188,17 @@ _OFFTAKE_SERIES = (
     Variable("offtake_level", _OFFTAKES, "m", "water level at the offtake", _LEVEL, _SURFACE, dtype="f8"),
 )
 
+_ESCAPE_SERIES = (
+    Variable("escape_discharge", _ESCAPES, "m3 s-1", "discharge over the escape", "out of the canal; never back",
+             dtype="f8"),
+    Variable("escape_volume", _ESCAPES, "m3", "volume let out over the escape since the start", dtype="f8"),
+)
+
+_GAUGE_SERIES = (
+    Variable("gauge_reading", ("time", "gauge"), "m", "water level as read on the staff gauge",
+             "above its zero; negative below the zero; missing where the bed beside it is dry", dtype="f8"),
+)
+
 _CANAL_SERIES = (
     Variable("canal_inflow", ("time",), "m3 s-1", "discharge into the canal at its head", dtype="f8"),
     Variable("canal_outflow", ("time",), "m3 s-1", "discharge out of the canal at its tail", dtype="f8"),
@@ -174,7 +206,7 @@ _CANAL_SERIES = (
     Variable("canal_outflow_volume", ("time",), "m3", "volume let out at the tail since the start", dtype="f8"),
     Variable("canal_storage", ("time",), "m3", "volume of water in all pools", dtype="f8"),
     Variable("balance_residual", ("time",), "m3", "residual of the water ledger since the start",
-             "inflow less deliveries, losses, outflow and growth of storage", dtype="f8"),
+             "inflow less deliveries, escapes, losses, outflow and growth of storage", dtype="f8"),
 )
 
 _PROFILES = (
@@ -188,6 +220,8 @@ _ORDERS = (
     Variable("order_time", ("order",), CLOCK, "time of the order", dtype="f8"),
     _text("order_source", ("order",), "who gave the order", "schedule: the plan; else the kind of the rule"),
     _text("order_gate", ("order",), "gate of the order"),
+    Variable("order_bay", ("order",), "1", "number of the bay of the order", "from 1; 0: all bays, moved together",
+             dtype="i4"),
     _flag("order_kind", ("order",), "what the order gives", ORDER_KINDS,
           comment="opening: the opening to reach; by: the change of the opening; discharge: what it is to pass then"),
     Variable("order_value", ("order",), None, "value given by the order",
@@ -218,6 +252,11 @@ _GATE_FACTS = (
     _text("gate_downstream_pool", ("gate",), "pool below the gate", "tail: beyond the last pool"),
 )
 
+_BAY_FACTS = (
+    _text("bay", ("bay",), "name of the bay", "of gates whose bays move apart; numbered from the left bank"),
+    _text("bay_gate", ("bay",), "gate of the bay"),
+)
+
 _POOL_FACTS = (
     _text("pool", ("pool",), "name of the pool"),
     Variable("pool_length", ("pool",), "m", "length of the pool", dtype="f8"),
@@ -238,6 +277,24 @@ _OFFTAKE_FACTS = (
              dtype="f8"),
     Variable("offtake_sill_level", ("offtake",), "m", "level of the sill of the offtake",
              "of the bed where the canal file gives no sill", dtype="f8"),
+)
+
+_ESCAPE_FACTS = (
+    _text("escape", ("escape",), "name of the escape"),
+    _text("escape_pool", ("escape",), "pool of the escape"),
+    Variable("escape_chainage", ("escape",), "m", "chainage of the escape",
+             "from the head, downstream positive; of the node that the water leaves", dtype="f8"),
+    Variable("escape_crest_level", ("escape",), "m", "level of the crest of the escape", _LEVEL, dtype="f8"),
+)
+
+_GAUGE_FACTS = (
+    _text("gauge", ("gauge",), "name of the staff gauge"),
+    _text("gauge_gate", ("gauge",), "gate beside which the gauge stands", "empty where it stands along a pool"),
+    _flag("gauge_side", ("gauge",), "side of the gate on which the gauge stands", GAUGE_SIDES),
+    _text("gauge_pool", ("gauge",), "pool of the gauge", "head, tail: beyond the ends of the canal"),
+    Variable("gauge_chainage", ("gauge",), "m", "chainage of the gauge", "from the head, downstream positive",
+             dtype="f8"),
+    Variable("gauge_zero_level", ("gauge",), "m", "level of the zero of the staff", _LEVEL, dtype="f8"),
 )
 
 _NODE_FACTS = (
@@ -263,23 +320,24 @@ _END_STATE = (
     _state("end_imbalance", ("state_link",), "m", "head that accelerates the water of a link at the end of the run",
            "zero without local inertia"),
     _state("end_delivery", ("state_offtake",), "m3 s-1", "delivery at the end of the run"),
-    _state("end_opening", ("state_gate",), "m", "opening at the end of the run"),
-    _state("end_target_opening", ("state_gate",), "m", "opening the leaf is moving to at the end of the run"),
-    _state("end_ordered_opening", ("state_gate",), "m", "opening last ordered", "'by' orders count from it"),
-    _state("end_motion_remaining", ("state_gate",), "s", "time for which the leaf still moves"),
+    _state("end_opening", ("state_leaf",), "m", "opening at the end of the run"),
+    _state("end_target_opening", ("state_leaf",), "m", "opening the leaf is moving to at the end of the run"),
+    _state("end_ordered_opening", ("state_leaf",), "m", "opening last ordered", "'by' orders count from it"),
+    _state("end_motion_remaining", ("state_leaf",), "s", "time for which the leaf still moves"),
     _state("end_surge_upstream", ("state_gate",), "m", "bound of the surge up the pool of the last moves"),
     _state("end_surge_downstream", ("state_gate",), "m", "bound of the surge down the pool of the last moves"),
     _state("end_surge_upstream_remaining", ("state_gate",), "s", "time until the pool above has settled"),
     _state("end_surge_downstream_remaining", ("state_gate",), "s", "time until the pool below has settled"),
     _state("end_settling_remaining", ("state_pool",), "s", "time until the pool has settled"),
+    _state("end_roughness_factor", ("state_pool",), "1", "factor on Manning's n at the end of the run"),
     _state("end_move_age", ("state_move",), "s", "time since a move of the last hour began"),
-    Variable("end_move_gate", ("state_move",), "1", "position of the gate of that move in the list of gates", "from 0",
+    Variable("end_move_leaf", ("state_move",), "1", "position of the leaf of that move in the list of leaves", "from 0",
              dtype="i4", is_state=True),
     _state_text("end_rule", ("state_memory",), "rule that keeps the value", "kind and gate"),
     _state_text("end_rule_memory", ("state_memory",), "name of the value that the rule keeps"),
     _state("end_rule_value", ("state_memory",), None, "value that the rule keeps", "in SI units"),
     _state("end_rate", ("state_forcing",), None, "rates of change at the end of the run",
-           "a second; of head, tail, gate openings, demands and offtake openings in their units"),
+           "a second; of head, tail, evaporation, rain, gate openings, demands and offtake openings in their units"),
     _state("end_next_step", (), "s", "length of the step that would have come next"),
     _state("end_time", (), CLOCK, "time of the end state"),
 )
@@ -290,14 +348,20 @@ VARIABLES = {
     for group in (
         _CLOCKS,
         _GATE_SERIES,
+        _BAY_SERIES,
         _POOL_SERIES,
         _OFFTAKE_SERIES,
+        _ESCAPE_SERIES,
+        _GAUGE_SERIES,
         _CANAL_SERIES,
         _PROFILES,
         _ORDERS,
         _GATE_FACTS,
+        _BAY_FACTS,
         _POOL_FACTS,
         _OFFTAKE_FACTS,
+        _ESCAPE_FACTS,
+        _GAUGE_FACTS,
         _NODE_FACTS,
         _END_STATE,
     )

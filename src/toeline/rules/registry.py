@@ -3,6 +3,7 @@
 import hashlib
 import importlib
 import importlib.util
+import inspect
 import math
 import sys
 import traceback
@@ -97,12 +98,12 @@ def find_rule(kind: str, folder: Path) -> FoundRule:
         return FoundRule(kind, BUILT_IN[kind])
     place, colon, name = kind.partition(":")
     if colon and place.endswith(".py"):
-        return _of_module(kind, _module_of_file(kind, folder / place), name)
+        return _of_module(kind, _module_of_file(folder / place), name, str(folder / place))
     if colon:
-        return _of_module(kind, _imported(kind, place), name)
+        return _of_module(kind, _imported(place), name)
     announced = _announced()
     if kind in announced:
-        return _of_module(kind, _imported(kind, announced[kind].module), announced[kind].attr)
+        return _of_module(kind, _imported(announced[kind].module), announced[kind].attr)
     raise UnknownRuleError("")
 
 
@@ -116,14 +117,14 @@ def _announced() -> dict[str, EntryPoint]:
     return {point.name: point for point in found}
 
 
-def _imported(kind: str, module: str) -> ModuleType:
+def _imported(module: str) -> ModuleType:
     try:
         return importlib.import_module(module)
     except Exception as error:
         raise UnknownRuleError(f"{module} cannot be loaded: {_words(error)}") from error
 
 
-def _module_of_file(kind: str, path: Path) -> ModuleType:
+def _module_of_file(path: Path) -> ModuleType:
     try:
         source = path.read_bytes()
     except OSError as error:
@@ -144,14 +145,16 @@ def _module_of_file(kind: str, path: Path) -> ModuleType:
     return module
 
 
-def _of_module(kind: str, module: ModuleType, name: str) -> FoundRule:
+def _of_module(kind: str, module: ModuleType, name: str, path: str = "") -> FoundRule:
     rule = getattr(module, name, None)
-    file = str(module.__file__ or module.__name__)
+    file = path or str(module.__file__ or module.__name__)
     if not isinstance(rule, type) or not issubclass(rule, Rule):
         raise UnknownRuleError(f"{file} has no class {name} that derives from toeline.rules.Rule")
+    if inspect.isabstract(rule):
+        raise UnknownRuleError(f"{name} has no {' and no '.join(sorted(rule.__abstractmethods__))} in {file}")
     if not all(isinstance(setting, Setting) for setting in rule.settings.values()):
         raise UnknownRuleError(f"{name} in {file} has settings that are none; each is a toeline.rules.Setting")
-    source = Path(file).read_text(encoding="utf-8") if module.__file__ else ""
+    source = Path(file).read_text(encoding="utf-8", errors="replace") if module.__file__ else ""
     return FoundRule(kind, rule, file, source)
 
 

@@ -5,6 +5,7 @@ from collections.abc import Iterable, Iterator
 from toeline.scenario.checks.gate_chain import misfits_of_gate_chain
 from toeline.scenario.checks.gate_levels import ROUNDING, misfits_of_gate_levels
 from toeline.scenario.checks.limit_checks import misfits_of_limits
+from toeline.scenario.checks.places import misfits_of_places
 from toeline.scenario.misfits import Misfit, length_outside, nearest, shown
 from toeline.scenario.schema.canal import Canal
 from toeline.scenario.schema.offtakes import Offtake
@@ -22,6 +23,7 @@ def misfits_of_canal(canal: Canal) -> Iterator[Misfit]:
     yield from misfits_of_limits(canal)
     if repeated:
         return  # a pool cannot be told from its namesake
+    yield from misfits_of_places(canal)
     broken_chain = list(misfits_of_gate_chain(canal))
     yield from broken_chain
     if not broken_chain:
@@ -30,7 +32,7 @@ def misfits_of_canal(canal: Canal) -> Iterator[Misfit]:
 
 
 def _repeated_names(canal: Canal) -> Iterator[Misfit]:
-    for table in ("pools", "gates", "offtakes"):
+    for table in ("pools", "gates", "offtakes", "escapes", "gauges"):
         names = [item.name for item in getattr(canal, table)]
         for index, name in enumerate(names):
             if name in names[:index]:

@@ -6,7 +6,7 @@ from pathlib import Path
 from toeline.scenario.misfits import Misfit, length_outside, nearest, shown
 from toeline.scenario.orders import Order
 from toeline.scenario.schema.canal import Canal
-from toeline.scenario.schema.day import MARKS_OF_ROUNDING, TO_HOLD_TARGETS, Day
+from toeline.scenario.schema.day import MARKS_OF_ROUNDING, TO_HOLD_TARGETS, Day, OpeningOfGate
 from toeline.scenario.schema.gates import Gate
 from toeline.scenario.text_file import is_there
 from toeline.units import UnitSystem, quantity_text
@@ -74,7 +74,7 @@ def _misfits_of_holding(day: Day, canal: Canal) -> Iterator[Misfit]:
 
 
 def _misfits_of_openings(
-    openings: dict[str, float], state: str | None, canal: Canal, system: UnitSystem
+    openings: dict[str, OpeningOfGate], state: str | None, canal: Canal, system: UnitSystem
 ) -> Iterator[Misfit]:
     gates = {gate.name: gate for gate in canal.gates}
     for name, opening in openings.items():
@@ -82,14 +82,32 @@ def _misfits_of_openings(
         if name not in gates:
             yield Misfit(path, f"{shown(name)} is no gate of the canal; {nearest(name, gates)}")
         else:
-            yield from _misfits_of_opening(path, gates[name], opening, system)
+            yield from _misfits_of_leaves(path, gates[name], opening, system)
     missing = [name for name in gates if name not in openings]
     if state == "steady" and missing:
         names = ", ".join(f'"{name}"' for name in missing)
         yield Misfit(("start", "openings"), f"a steady start needs the opening of every gate; missing: {names}")
 
 
-def _misfits_of_opening(path: tuple[str, ...], gate: Gate, opening: float, system: UnitSystem) -> Iterator[Misfit]:
+def _misfits_of_leaves(
+    path: tuple[str, ...], gate: Gate, opening: OpeningOfGate, system: UnitSystem
+) -> Iterator[Misfit]:
+    if isinstance(opening, float):
+        yield from _misfits_of_opening(path, gate, opening, system)
+    elif not gate.separate_bays:
+        yield Misfit(path, "found an array, but the bays of the gate move together; allowed: one opening")
+    elif len(opening) != gate.bays:
+        yield Misfit(
+            path, f"found an array of {len(opening)}; allowed: one opening, or one for each of {gate.bays} bays"
+        )
+    else:
+        for index, own in enumerate(opening):
+            yield from _misfits_of_opening((*path, index), gate, own, system)
+
+
+def _misfits_of_opening(
+    path: tuple[str | int, ...], gate: Gate, opening: float, system: UnitSystem
+) -> Iterator[Misfit]:
     if opening > gate.max_opening:
         yield length_outside(path, opening, "up to the max_opening of the gate", gate.max_opening, system)
     if gate.is_avoided(opening):
@@ -104,13 +122,24 @@ def _misfits_of_rounding(day: Day, canal: Canal) -> Iterator[Misfit]:
 
 
 def misfits_of_orders(orders: list[Order], canal: Canal) -> Iterator[Misfit]:
-    """Find orders to unknown gates, and two for one gate at one time; paths begin with the index of the order."""
-    gates = [gate.name for gate in canal.gates]
-    seen: set[tuple[int, str]] = set()
+    """Find orders to unknown gates or bays, and two for one leaf at one time; paths begin with the order's index."""
+    gates = {gate.name: gate for gate in canal.gates}
+    seen: set[tuple[int, str, int]] = set()
     for index, order in enumerate(orders):
         if order.gate not in gates:
             message = f"found {shown(order.gate)}, which is no gate of the canal; {nearest(order.gate, gates)}"
             yield Misfit((index, "gate"), message)
-        if (order.at, order.gate) in seen:
+            continue
+        yield from _misfits_of_bay(index, order, gates[order.gate])
+        bays = {order.bay} if order.bay else set(range(gates[order.gate].bays + 1))
+        if any((order.at, order.gate, bay) in seen for bay in bays):
             yield Misfit((index, "at"), f"{shown(order.gate)} already has an order for that time")
-        seen.add((order.at, order.gate))
+        seen |= {(order.at, order.gate, bay) for bay in bays | {0}}
+
+
+def _misfits_of_bay(index: int, order: Order, gate: Gate) -> Iterator[Misfit]:
+    if order.bay and not gate.separate_bays:
+        message = f"not used with {shown(gate.name)}, whose bays move together; separate_bays = true in the canal file"
+        yield Misfit((index, "bay"), message)
+    elif order.bay > gate.bays:
+        yield Misfit((index, "bay"), f"found {order.bay}; allowed: 1 to {gate.bays}, the bays of {shown(gate.name)}")

@@ -10,6 +10,7 @@ from pydantic import Field, ValidationInfo
 from toeline.scenario.misfits import Misfit, MisfitsError, shown
 from toeline.scenario.reading import reading_of
 from toeline.scenario.schema.day_series import Delivery, Inflow, LevelSeries, OpeningSeries
+from toeline.scenario.schema.losses import LossesOfDay
 from toeline.scenario.schema.plans import Plan
 from toeline.scenario.schema.table import OPENING, DischargeOrZero, FileName, Name, Table
 from toeline.scenario.schema.value_kinds import Duration, Quantity, Text, ValueKind
@@ -17,6 +18,9 @@ from toeline.scenario.times import read_start, read_zone
 from toeline.units import UnitSystem
 
 TO_HOLD_TARGETS = "to hold targets"
+
+OpeningOfGate = float | tuple[float, ...]
+"""The opening of a gate [m], or those of its separate bays."""
 
 MARKS_OF_ROUNDING = {"turns": "turn", "scale marks": "scale_mark"}
 """The key of a gate that gives the spacing for each way of rounding openings."""
@@ -65,22 +69,31 @@ class OpeningsAtStart(ValueKind):
             raise ValueError(f'found {shown(value)}; allowed: "{TO_HOLD_TARGETS}" or a table of openings by gate')
         return self._by_gate(value, info)
 
-    def _by_gate(self, table: dict[str, Any], info: ValidationInfo) -> dict[str, float]:
-        openings, misfits = {}, []
+    def _by_gate(self, table: dict[str, Any], info: ValidationInfo) -> dict[str, OpeningOfGate]:
+        openings: dict[str, OpeningOfGate] = {}
+        misfits = []
         for gate, value in table.items():
             try:
-                openings[gate] = self.opening.read(value, info)
+                openings[gate] = self._of_gate(value, info)
             except ValueError as error:
                 misfits.append(Misfit((gate,), str(error)))
         if misfits:
             raise MisfitsError(misfits)
         return openings
 
+    def _of_gate(self, value: Any, info: ValidationInfo) -> OpeningOfGate:
+        if isinstance(value, list):
+            return tuple(self.opening.read(item, info) for item in value)
+        return self.opening.read(value, info)
+
     def describe(self) -> str:
-        return f'"{TO_HOLD_TARGETS}", or a table of openings by gate: {self.opening.describe()}'
+        by_gate = f"a table of openings by gate (an array for separate bays): {self.opening.describe()}"
+        return f'"{TO_HOLD_TARGETS}", or {by_gate}'
 
     def json_schema(self) -> dict[str, Any]:
-        by_gate = {"type": "object", "additionalProperties": self.opening.json_schema()}
+        opening = self.opening.json_schema()
+        of_gate = {"anyOf": [opening, {"type": "array", "items": opening}]}
+        by_gate = {"type": "object", "additionalProperties": of_gate}
         return {"anyOf": [{"const": TO_HOLD_TARGETS}, by_gate]}
 
 
@@ -121,7 +134,7 @@ class Start(Table):
         None, description="steady: steady flow at the first values of the day; dry: an empty canal."
     )
     file: FileName | None = Field(None, description="Run file to go on from the end of, in place of a state.")
-    openings: Annotated[Literal["to hold targets"] | dict[str, float] | None, OpeningsAtStart(OPENING)] = Field(
+    openings: Annotated[Literal["to hold targets"] | dict[str, OpeningOfGate] | None, OpeningsAtStart(OPENING)] = Field(
         None,
         validate_default=True,
         description="Openings of the gates. Left out: those that hold the targets (steady), closed (dry).",
@@ -159,6 +172,7 @@ class Day(Table):
     offtake_openings: dict[str, OpeningSeries] = Field({}, description="Opening of orifice offtakes that are moved.")
     head: LevelSeries | None = Field(None, description="Level of the reservoir, where it changes during the day.")
     tail: LevelSeries | None = Field(None, description="Level beyond the end, where it changes during the day.")
+    losses: LossesOfDay = Field(default_factory=LossesOfDay, description="Evaporation and rain of the day.")
     start: Start = Field(description="The state of the canal at the start.")
     round_openings: Literal["turns", "scale marks"] | None = Field(
         None,

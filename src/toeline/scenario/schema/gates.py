@@ -26,7 +26,11 @@ class Gate(Table):
     kind: Literal["vertical", "radial"] = Field(description="Leaf that slides in a plane, or turns about a pinion.")
     radius: Size | None = Field(None, description="Radius of the leaf (radial).")
     pinion_height: Size | None = Field(None, description="Height of the pinion above the sill (radial).")
-    bays: Annotated[int, WholeNumber(1, 50)] = Field(1, description="Number of equal bays, moved together.")
+    bays: Annotated[int, WholeNumber(1, 50)] = Field(1, description="Number of equal bays.")
+    separate_bays: bool = Field(
+        False,
+        description="Whether every bay is ordered by itself, numbered from the left bank; else all move together.",
+    )
     bay_width: Size = Field(description="Clear width of one bay.")
     sill_level: Level = Field(
         description="Level of the sill; not below the bed at the end of the pool above, nor at the head of that below."
@@ -65,6 +69,11 @@ class Gate(Table):
     def width(self) -> float:
         """Clear width of all bays [m]."""
         return self.bays * self.bay_width
+
+    @property
+    def leaf_count(self) -> int:
+        """Leaves that move by themselves."""
+        return self.bays if self.separate_bays else 1
 
     def is_avoided(self, opening: float) -> bool:
         """Say whether an opening [m] may not be held; closed may always be."""

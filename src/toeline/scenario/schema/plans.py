@@ -15,11 +15,11 @@ from toeline.scenario.rules import RuleChoice, Stuck
 from toeline.scenario.schema.rules import RulesKind
 from toeline.scenario.schema.table import DischargeOrZero, Name, SizeOrZero, Table
 from toeline.scenario.schema.toml_json_schema import TomlJsonSchema
-from toeline.scenario.schema.value_kinds import Moment, Quantity, ValueKind
+from toeline.scenario.schema.value_kinds import Moment, Quantity, ValueKind, WholeNumber
 from toeline.units import UnitSystem
 
 _ACTIONS = ("opening", "by", "discharge")
-_COLUMNS = Columns(("at", "gate"), _ACTIONS)
+_COLUMNS = Columns(("at", "gate"), ("bay", *_ACTIONS))
 
 
 class OrderEntry(Table):
@@ -27,6 +27,9 @@ class OrderEntry(Table):
 
     at: Annotated[int, Moment(before_end=True)] = Field(description="When the gate begins to move.")
     gate: Name = Field(description="Name of the gate.")
+    bay: Annotated[int, WholeNumber(1, 50)] | None = Field(
+        None, description="Bay that moves, of a gate with separate_bays. Left out: all bays."
+    )
     opening: SizeOrZero | None = Field(None, description="The opening to have.")
     by: Annotated[float, Quantity("length", least=-1000.0, most=1000.0)] | None = Field(
         None, description="The change from the opening last ordered; negative closes."
@@ -46,7 +49,7 @@ class OrderEntry(Table):
     def order(self, file: str = "", line: int | None = None) -> Order:
         """Give the order, with the place where it is written."""
         kind = next(key for key in _ACTIONS if getattr(self, key) is not None)
-        return Order(self.at, self.gate, cast(OrderKind, kind), getattr(self, kind), file, line)
+        return Order(self.at, self.gate, cast(OrderKind, kind), getattr(self, kind), file, line, self.bay or 0)
 
 
 @dataclass(frozen=True)
@@ -77,7 +80,7 @@ class OrdersKind(ValueKind):
         file = reading_of(info).read_csv(name, _COLUMNS)
         orders = []
         for line, row in file.rows:
-            entry = {key: number_or_text(cell) if key in _ACTIONS else cell for key, cell in row.items()}
+            entry = {key: _cell(key, cell) for key, cell in row.items()}
             try:
                 orders.append(OrderEntry.model_validate(entry, context=info.context).order(str(file.path), line))
             except ValidationError as error:
@@ -88,7 +91,7 @@ class OrdersKind(ValueKind):
         return orders
 
     def describe(self) -> str:
-        return "an array of orders, or the name of a CSV file with the columns at,gate,opening,by,discharge"
+        return "an array of orders, or the name of a CSV file with the columns at,gate,bay,opening,by,discharge"
 
     def json_schema(self) -> dict[str, Any]:
         order = OrderEntry.model_json_schema(schema_generator=TomlJsonSchema)
@@ -109,6 +112,13 @@ class StuckEntry(Table):
     def stuck(self) -> Stuck:
         """Give the spell."""
         return Stuck(self.gate, self.begin, self.until)
+
+
+def _cell(key: str, cell: str) -> Any:
+    """The value in a cell of a row: a number where its column takes one."""
+    if key == "bay" and cell.isdecimal():
+        return int(cell)
+    return number_or_text(cell) if key in _ACTIONS else cell
 
 
 class Plan(Table):

@@ -105,7 +105,7 @@ class LeadTimesKind(ValueKind):
         return leads
 
     def describe(self) -> str:
-        return '`"wave"`, `"volume"`, or a table of these or durations by pool'
+        return '"wave", "volume", or a table of these or durations by pool'
 
     def json_schema(self) -> dict[str, Any]:
         by_pool = {"type": "object", "additionalProperties": {"type": "string"}}

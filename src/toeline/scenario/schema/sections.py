@@ -7,6 +7,7 @@ from typing import Annotated, Literal
 from pydantic import Field
 
 from toeline.scenario.misfits import Misfit, length_outside
+from toeline.scenario.schema.losses import Seepage
 from toeline.scenario.schema.table import KeysOfKind, LevelAtStation, Size, Table
 from toeline.scenario.schema.value_kinds import Quantity
 from toeline.units import UnitSystem
@@ -73,6 +74,9 @@ class Surface(Table):
     apron: bool = Field(False, description="Whether it is the concrete apron of a gate; an apron is protected.")
     velocity_limit: Annotated[float, Quantity("velocity", above=0.0, most=50.0)] | None = Field(
         None, description="Velocity of the water above which a run reports an incident; the owner's value."
+    )
+    seepage: Seepage | None = Field(
+        None, description="Seepage through the wetted perimeter over it. Left out: that of [losses]."
     )
 
     def misfits(self, system: UnitSystem) -> Iterator[Misfit]:

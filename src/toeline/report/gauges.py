@@ -1,0 +1,47 @@
+"""Staff gauges and roughness of a run as tables."""
+
+from collections.abc import Iterator, Sequence
+
+import xarray as xr
+
+from toeline.findings.gauges import GaugeReadings
+from toeline.findings.series import names
+from toeline.report.layout import paragraph, table
+from toeline.report.run_clock import RunClock, extreme_text
+from toeline.units import Display
+
+
+def gauge_lines(gauges: Sequence[GaugeReadings], clock: RunClock, display: Display, width: int) -> Iterator[str]:
+    """Readings at the start, and the least and the greatest with their times; nothing where there is no gauge."""
+    if not gauges:
+        return
+    rows = [
+        (
+            gauge.gauge,
+            gauge.place,
+            display.length(gauge.first),
+            extreme_text(gauge.least, clock, display),
+            extreme_text(gauge.greatest, clock, display),
+        )
+        for gauge in gauges
+    ]
+    yield table(("", "stands", "at the start", "least", "greatest"), rows, width)
+    yield paragraph("Readings are above the zero of the staff; negative: the water stands below it.", width)
+
+
+def roughness_lines(run: xr.Dataset, width: int) -> Iterator[str]:
+    """Factors on Manning's n that the calendar gave: first, last and greatest; nothing where it gave none."""
+    factors = run["pool_roughness_factor"].values
+    if (factors == 1.0).all():
+        return
+    rows = [
+        (pool, f"{first:.3f}", f"{last:.3f}", f"{most:.3f}")
+        for pool, first, last, most in zip(names(run["pool"]), factors[0], factors[-1], factors.max(0), strict=True)
+    ]
+    yield table(("factor on Manning's n", "at the start", "at the end", "greatest"), rows, width)
+    if (factors != factors[0]).any():
+        yield paragraph(
+            "The factor changes at midnight, all at once. The wave that a large change sends through the pools is not "
+            "real: cutting weeds takes days.",
+            width,
+        )

@@ -1,0 +1,156 @@
+"""Rules of a user's own: from a file beside the day file, a package, an entry point; and what they do wrong."""
+
+import json
+from importlib.metadata import EntryPoint
+from pathlib import Path
+
+import pytest
+from tests.canals import day, scenario_of, stepped_canal
+
+from toeline import open_run, simulate
+from toeline.errors import RunError, ScenarioError
+from toeline.rules import registry
+
+WATCH = '''\
+"""A rule that opens a little every hour, as often as it is told."""
+
+from toeline.rules import Present, Rule, duration, number, place
+
+
+class Watch(Rule):
+    """Opens by a step at every decision until it has done so often enough."""
+
+    settings = {
+        "gate": place("gate", "Name of the gate."),
+        "every": duration("Time between decisions.", least=60.0, most=86400.0, default=3600.0),
+        "step": number("length", "Opening added.", above=0.0, most=1.0),
+        "times": number(None, "How often.", least=1, most=100, default=2),
+    }
+
+    def decide(self, now: Present):
+        done = self.memory.get("done", 0)
+        if done >= self.given.times:
+            return None
+        self.memory["done"] = done + 1
+        return now.ordered_opening(self.gate) + self.given.step
+'''
+RULE = {"kind": "watch.py:Watch", "gate": "G0", "step": "2 cm"}
+
+
+DEVELOPERS = Path(__file__).parents[2] / "DEVELOPERS.md"
+
+
+def scenario(folder, *rules):
+    keys = day(8.0, length="4 h", plans={"only": {"rules": list(rules)}})
+    return scenario_of(folder, stepped_canal(2, 800.0, gate={"hoist_speed": "1 m/min"}), keys)
+
+
+def test_a_file_beside_the_day_file(tmp_path):
+    (tmp_path / "watch.py").write_text(WATCH, encoding="utf-8")
+    run = simulate(scenario(tmp_path, RULE))
+    assert run.order_source.values.tolist() == ["watch.py:Watch"] * 2
+    steps = run.order_opening_after - run.order_opening_before
+    assert steps.values == pytest.approx([0.02, 0.02], abs=1e-6)
+    assert run.end_rule_value.values.tolist() == [2.0]
+
+
+def test_settings_are_checked_on_their_line(tmp_path):
+    (tmp_path / "watch.py").write_text(WATCH, encoding="utf-8")
+    with pytest.raises(ScenarioError, match=r"step: found \"2 kg\"; allowed: a finite number in m"):
+        scenario(tmp_path, RULE | {"step": "2 kg"})
+
+
+def test_its_text_enters_the_digest_of_the_inputs(tmp_path):
+    file = tmp_path / "watch.py"
+    file.write_text(WATCH, encoding="utf-8")
+    before = scenario(tmp_path, RULE).input_hash
+    file.write_text(WATCH.replace("default=2", "default=3"), encoding="utf-8")
+    changed = scenario(tmp_path, RULE)
+    assert changed.input_hash != before
+    assert changed.rules[0].given.times == 3  # an edit takes effect
+
+
+def test_an_error_names_rule_file_and_line_and_keeps_what_was_done(tmp_path):
+    (tmp_path / "watch.py").write_text(WATCH.replace("if done >=", "if 1 / (1 - done) >="), encoding="utf-8")
+    with pytest.raises(RunError) as raised:
+        simulate(scenario(tmp_path, RULE), tmp_path / "run.nc")
+    file = tmp_path / "watch.py"
+    assert str(raised.value) == (
+        f'3600 s after the start: rule "watch.py:Watch" failed in {file}, line 18: ZeroDivisionError: division by zero'
+    )
+    with open_run(tmp_path / "run.nc.partial") as run:
+        assert run.sizes["order"] == 1
+        assert run.sizes["time"] == 60
+        assert "ZeroDivisionError" in run.attrs["outcome"]
+
+
+@pytest.mark.parametrize(
+    ("source", "message"),
+    [
+        ("def = 1\n", "SyntaxError: invalid syntax, line 1"),
+        ("import no_such_module\n", "ModuleNotFoundError: No module named 'no_such_module'"),
+        ("class Watch:\n    pass\n", "has no class Watch that derives from toeline.rules.Rule"),
+        (WATCH.replace('place("gate", "Name of the gate.")', '"gate"'), "each is a toeline.rules.Setting"),
+        (WATCH.replace("    def decide", "    def decided"), "Watch has no decide"),
+        (WATCH + "\n    @classmethod\n    def misfits(cls, given, canal):\n        return given.nothing\n",
+         "has no attribute 'nothing'"),
+    ],
+)  # fmt: skip
+def test_a_file_that_is_no_rule_is_told_on_the_line_that_names_it(tmp_path, source, message):
+    (tmp_path / "watch.py").write_text(source, encoding="utf-8")
+    with pytest.raises(ScenarioError) as raised:
+        scenario(tmp_path, RULE)
+    [fault] = raised.value.faults
+    assert fault.key == "plans only rules[1] kind"
+    assert message in fault.message
+
+
+def test_a_rule_that_cannot_be_made_leaves_a_file_that_says_so(tmp_path):
+    source = f"{WATCH}\n    def __init__(self, given, canal):\n        raise KeyError('pool')\n"
+    (tmp_path / "watch.py").write_text(source, encoding="utf-8")
+    with pytest.raises(RunError, match="line 24: KeyError: 'pool'"):
+        simulate(scenario(tmp_path, RULE), tmp_path / "run.nc")
+    assert [file.name for file in tmp_path.glob("run.nc*")] == ["run.nc.partial"]
+
+
+def test_an_opening_that_is_no_number_ends_the_run(tmp_path):
+    source = WATCH.replace("return now.ordered_opening(self.gate) + self.given.step", 'return "wide"')
+    (tmp_path / "watch.py").write_text(source, encoding="utf-8")
+    with pytest.raises(RunError, match="wants an opening of 'wide'; allowed: a number in m, or None"):
+        simulate(scenario(tmp_path, RULE))
+
+
+@pytest.fixture
+def package(tmp_path, monkeypatch):
+    folder = tmp_path / "site" / "canal_rules"
+    folder.mkdir(parents=True)
+    (folder / "__init__.py").write_text("", encoding="utf-8")
+    (folder / "night.py").write_text(WATCH, encoding="utf-8")
+    monkeypatch.syspath_prepend(folder.parent)
+
+
+def test_a_class_of_an_installed_package(tmp_path, package):
+    run = simulate(scenario(tmp_path, RULE | {"kind": "canal_rules.night:Watch"}))
+    assert run.order_source.values.tolist() == ["canal_rules.night:Watch"] * 2
+
+
+def test_an_entry_point(tmp_path, package, monkeypatch):
+    point = EntryPoint("night watch", "canal_rules.night:Watch", registry.ENTRY_POINTS)
+    monkeypatch.setattr(registry, "entry_points", lambda group: [point] if group == point.group else [])
+    run = simulate(scenario(tmp_path, RULE | {"kind": "night watch"}))
+    assert run.order_source.values.tolist() == ["night watch"] * 2
+
+
+def test_settings_of_the_run_are_kept_with_it(tmp_path):
+    (tmp_path / "watch.py").write_text(WATCH, encoding="utf-8")
+    rules = json.loads(simulate(scenario(tmp_path, RULE)).attrs["resolved_settings"])["rules"]
+    assert rules == [{"kind": "watch.py:Watch", "gate": "G0", "every": 3600.0, "step": 0.02, "times": 2}]
+
+
+def test_the_example_of_the_developers_page_runs(tmp_path):
+    source = DEVELOPERS.read_text(encoding="utf-8").split("```python\n")[1].split("```")[0]
+    (tmp_path / "night_watch.py").write_text(source, encoding="utf-8")
+    rule = {"kind": "night_watch.py:NightWatch", "gate": "G0", "lowest": 9.0}
+    run = simulate(scenario(tmp_path, rule))
+    changes = run.order_opening_after - run.order_opening_before
+    assert changes.values == pytest.approx([-0.02] * 4, abs=1e-6)
