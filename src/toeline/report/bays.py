@@ -7,6 +7,12 @@ from toeline.report.layout import paragraph
 from toeline.report.run_clock import RunClock, extreme_text
 from toeline.units import Display
 
+UNEVEN = (
+    "Jet and jump of such a gate are those of the bay with the largest unit discharge, as if the whole width ran "
+    "like it against the common tailwater. Unequal bays make eddies and side rollers, which carry stones and turn "
+    "the jet aside; they are not modelled: what is said of the jump is then least trustworthy."
+)
+
 
 def bay_lines(gates: Sequence[UnevenBays], clock: RunClock, display: Display, width: int) -> Iterator[str]:
     """How unevenly each gate stood open, and what that leaves unknown; nothing where all bays move together."""
@@ -16,9 +22,4 @@ def bay_lines(gates: Sequence[UnevenBays], clock: RunClock, display: Display, wi
         difference = extreme_text(gate.difference, clock, display)
         words = f"{difference}, bays {gate.bays[0]} and {gate.bays[1]}" if gate.difference.value else "none"
         yield paragraph(f"{gate.gate}: greatest difference of neighbours {words}", width)
-    yield paragraph(
-        "Jet and jump of such a gate are those of the bay with the largest unit discharge, as if the whole width ran "
-        "like it against the common tailwater. Unequal bays make eddies and side rollers, which carry stones and turn "
-        "the jet aside; they are not modelled: what is said of the jump is then least trustworthy.",
-        width,
-    )
+    yield paragraph(UNEVEN, width)

@@ -20,20 +20,16 @@ from toeline.findings.series import names
 from toeline.report import style
 from toeline.report.comparison import contrast_words
 from toeline.report.incidents import NOTHING_FOUND, SETTLING
+from toeline.report.page.gate_tables import bay_table, hour_tables, margin_table, move_table
 from toeline.report.page.hazard_strips import hazard_strips, hours_of_strips
 from toeline.report.page.legend import hatch_patterns, legend
+from toeline.report.page.measure_tables import indicator_tables, limit_tables
 from toeline.report.page.moments import Moments, moments_of
 from toeline.report.page.moving_figures import moving_figures
-from toeline.report.page.rows import (
-    Table,
-    hour_tables,
-    indicator_tables,
-    ledger_table,
-    limit_tables,
-    margin_table,
-    order_table,
-)
+from toeline.report.page.order_table import order_table
+from toeline.report.page.table import Table
 from toeline.report.page.verdict import floor_hazard, headline, incident_rows, people_hazard, wrongs
+from toeline.report.page.water_tables import escape_table, gauge_table, ledger_tables, roughness_table
 from toeline.report.run_clock import RunClock
 from toeline.report.run_identity import run_identity
 from toeline.units import Display, UnitSystem
@@ -168,13 +164,28 @@ def _run_words(each: ShownRun, moments: Moments, display: Display) -> dict[str, 
 def _number_parts(shown: Sequence[ShownRun], display: Display) -> list[tuple[str, list[list[Table]]]]:
     """Every part with its tables, run by run."""
     parts: dict[str, Callable[[ShownRun], list[Table]]] = {
-        "Margins and hours": lambda each: [margin_table(each.run, each.clock, display), *hour_tables(each.run)],
-        "Water ledger": lambda each: [ledger_table(each.run)],
-        "Orders": lambda each: [order_table(each.run, each.clock, display)],
-        "Indicators": lambda each: indicator_tables(each.run, display),
+        "Margins and hours": lambda each: [
+            margin_table(each.run, each.clock, display),
+            *hour_tables(each.run),
+            bay_table(each.run, each.clock, display),
+        ],
+        "Orders and moves": lambda each: [
+            order_table(each.run, each.clock, display),
+            move_table(each.run, each.clock, display),
+        ],
         "Limits": lambda each: limit_tables(each.run, each.clock, display),
+        "Indicators": lambda each: indicator_tables(each.run, display),
+        "Water": lambda each: [
+            *ledger_tables(each.run),
+            escape_table(each.run, each.clock, display),
+            gauge_table(each.run, each.clock, display),
+            roughness_table(each.run),
+        ],
     }
-    return [(heading, [tables(each) for each in shown]) for heading, tables in parts.items()]
+    return [
+        (heading, [[table for table in tables(each) if table.rows] for each in shown])
+        for heading, tables in parts.items()
+    ]
 
 
 def _differences(shown: Sequence[ShownRun], display: Display) -> list[tuple[str, list[str]]]:
