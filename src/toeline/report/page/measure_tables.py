@@ -16,6 +16,9 @@ from toeline.report.values import value_text
 from toeline.results.encoding import surface_names_of
 from toeline.units import Display
 
+PLACES_ABREAST = 8
+"""So many places find room as columns of a table; of more each is a row."""
+
 NO_SAFER = "A value that is better is no safer."
 
 
@@ -40,6 +43,9 @@ def _indicator_table(heading: str, found: Sequence[Indicator], display: Display)
     if places == [""]:
         rows: list[tuple[str, ...]] = [(wishes[name], values[name, ""]) for name in listed]
         return Table(f"Indicators, {heading}", ("indicator", "value"), tuple(rows), note=NO_SAFER)
+    if len(places) <= PLACES_ABREAST:
+        rows = [(wishes[name], *(values.get((name, place), "-") for place in places)) for name in listed]
+        return Table(f"Indicators, {heading}", ("indicator", *places), tuple(rows))
     rows = [(place, *(values.get((name, place), "-") for name in listed)) for place in places]
     return Table(f"Indicators, {heading}", ("place", *(wishes[name] for name in listed)), tuple(rows))
 

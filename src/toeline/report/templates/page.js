@@ -11,6 +11,14 @@ function toeline(page) {
   const state = { moment: 0, gate: 0, timer: null };
   const wholeCanal = [profile.figure.x_range.start, profile.figure.x_range.end];
 
+  /* Figures out of sight wait until they are scrolled to: only what is seen is drawn at every moment. */
+  const sight = new Map();
+  const isInSight = (name) => sight.get(name) !== false;
+  const observer = new IntersectionObserver((entries) => {
+    for (const { target, isIntersecting } of entries) sight.set(target.dataset.figure, isIntersecting);
+    if (entries.some((entry) => entry.isIntersecting)) showMoment(state.moment);
+  }, { rootMargin: "200px" });
+
   const number = (value, decimals) => (Number.isFinite(value) ? value.toFixed(decimals).replace(/^-(0\.?0*)$/, "$1") : "-");
   const length = (value) => number(value, 2);
   const withUnit = (value) => (Number.isFinite(value) ? `${length(value)} ${words.length}` : "-");
@@ -100,6 +108,8 @@ function toeline(page) {
 
   function showCloseUp(run, place) {
     const gate = state.gate, now = readings(run, run.rows[state.moment], gate), shapes = figures[place].shapes;
+    document.querySelectorAll(".telling")[place].textContent = telling(now, gate);
+    if (!isInSight(`close_up_${place}`)) return;
     const floor = canal.floor_level[gate], sill = canal.sill_level[gate], above = canal.bed_above[gate];
     const left = axes.distances.start * 3 - 10, right = axes.distances.end * 3, bottom = axes.close_up_levels.start - 10;
     const lip = sill + now.opening, water = waterBelow(now, gate, right);
@@ -124,7 +134,6 @@ function toeline(page) {
     shapes.modular.data = mark(now.modularLimit);
     shapes.drowning.data = mark(now.drownedFrom);
     shapes.protection_limit.data = mark(now.leavesBelow);
-    document.querySelectorAll(".telling")[place].textContent = telling(now, gate);
   }
 
   /* The close-up in a sentence. */
@@ -208,7 +217,9 @@ function toeline(page) {
       showProfile(run, place);
       showGates(run, place);
       showCloseUp(run, place);
-      for (const cursor of figures[place].cursors) cursor.location = words.start + elapsed;
+      figures[place].figures.forEach((figure, index) => {
+        if (isInSight(figure.name)) figures[place].cursors[index].location = words.start + elapsed;
+      });
     });
     showTables();
     const drawn = runs[0].profiles[state.moment] < 0 ? NaN : runs[0].profile_elapsed[runs[0].profiles[state.moment]];
@@ -375,6 +386,8 @@ function toeline(page) {
 
   /* A printer gets pictures of the figures as they stand: figures themselves do not follow the width of the sheet. */
   window.addEventListener("beforeprint", () => {
+    sight.clear();
+    showMoment(state.moment);
     document.querySelectorAll(".plot").forEach((plot) => {
       const model = plot.querySelector("[data-root-id]").dataset.rootId;
       const picture = plot.nextElementSibling?.matches("img.printed") ? plot.nextElementSibling : document.createElement("img");
@@ -386,6 +399,7 @@ function toeline(page) {
   });
 
   showGate(gates > 1 ? firstToLookAt() : 0);
+  document.querySelectorAll(".plot").forEach((plot) => observer.observe(plot));
   document.documentElement.dataset.ready = "yes";
 
   /* The page opens at the first thing that goes wrong. */
