@@ -43,6 +43,7 @@ class RunArrays:
     profile_elapsed  since the start of the run, of every profile [ms]
     water_level      along (profile, node), flattened
     profiles         the profile that is shown at every moment, the nearest; -1 where there is none
+    pools            by pool its first node, the node after its last, and the gate at its head, -1 where there is none
     """
 
     elapsed: np.ndarray
@@ -51,6 +52,7 @@ class RunArrays:
     profile_elapsed: np.ndarray
     water_level: np.ndarray
     profiles: np.ndarray
+    pools: list[tuple[int, int, int]]
     steps_left_out: int
 
 
@@ -68,6 +70,7 @@ def run_arrays(run: xr.Dataset, moments: Moments, display: Display) -> RunArrays
         profile_elapsed=_milliseconds(profile_times[profiles] - times[0]),
         water_level=_shown(run["water_level"].values[profiles], "length", display),
         profiles=np.where(of_profile < 0, -1, np.searchsorted(profiles, of_profile)).astype(np.int32),
+        pools=_pools(run),
         steps_left_out=int(times.size - rows.size),
     )
 
@@ -97,6 +100,13 @@ def start_milliseconds(run: xr.Dataset) -> float:
     """The start of a run by its own clock as milliseconds of an axis of times."""
     naive = np.datetime64(local_time(run, run["time"].values[0]).replace(tzinfo=None), "ms")
     return float(naive.astype(np.int64))
+
+
+def _pools(run: xr.Dataset) -> list[tuple[int, int, int]]:
+    below = names(run["gate_downstream_pool"])
+    spans = [np.flatnonzero(run["node_pool"].values == pool) for pool in range(run.sizes["pool"])]
+    heads = [below.index(pool) if pool in below else -1 for pool in names(run["pool"])]
+    return [(int(nodes[0]), int(nodes[-1]) + 1, gate) for nodes, gate in zip(spans, heads, strict=True)]
 
 
 def _gate_series(run: xr.Dataset, rows: np.ndarray, display: Display) -> dict[str, np.ndarray]:

@@ -10,7 +10,7 @@ from bokeh.models import ColumnDataSource, HoverTool, NumeralTickFormatter, Rang
 from bokeh.plotting import figure
 
 from toeline.findings.series import names
-from toeline.report.page.looks import FONT, empty_figure, line_look, source_of, state_look
+from toeline.report.page.looks import FONT, area_look, empty_figure, line_look, source_of, state_look
 from toeline.report.style import (
     BANK,
     BED,
@@ -37,13 +37,18 @@ ROOM_FOR_NAMES = 0.42
 
 @dataclass(frozen=True)
 class MovingProfile:
-    """The figure, and by run what moves in it: the water along the nodes, the gates, and the water at the jumps."""
+    """The figure, and by run what moves in it.
+
+    `water` are the levels at the nodes, from which the browser draws `surfaces`, with the jets and jumps below the
+    gates, and the `bodies` of water under them; `rollers` are outlines, `gates` the leaves.
+    """
 
     figure: figure
     water: list[ColumnDataSource]
-    gates: list[ColumnDataSource]
+    bodies: list[ColumnDataSource]
     surfaces: list[ColumnDataSource]
     rollers: list[ColumnDataSource]
+    gates: list[ColumnDataSource]
 
 
 def long_profile(runs: Sequence[xr.Dataset], lines: Sequence[Line], display: Display) -> MovingProfile:
@@ -59,38 +64,34 @@ def long_profile(runs: Sequence[xr.Dataset], lines: Sequence[Line], display: Dis
         name="long_profile",
     )
     drawn.xaxis.formatter = NumeralTickFormatter(format="0,0")
-    water = [source_of(f"water_{place}", **_nodes(run, factor)) for place, run in enumerate(runs)]
-    gates = [source_of(**_gates(run, drawn.y_range.end, place, factor)) for place, run in enumerate(runs)]
-    surfaces = [source_of(x=np.empty(0), y=np.empty(0)) for _ in runs]
-    rollers = [source_of(xs=[], ys=[], colour=[], hatch=[]) for _ in runs]
-    drawn.varea(
-        "chainage", "bed", "water_level", source=water[0], fill_color=WATER_BODY.colour, fill_alpha=WATER_BODY.opacity
+    profile = MovingProfile(
+        drawn,
+        water=[source_of(f"water_{place}", **_nodes(run, factor)) for place, run in enumerate(runs)],
+        bodies=[source_of(xs=[], ys=[]) for _ in runs],
+        surfaces=[source_of(x=[], y=[]) for _ in runs],
+        rollers=[source_of(xs=[], ys=[], colour=[], hatch=[]) for _ in runs],
+        gates=[source_of(**_gates(run, drawn.y_range.end, place, factor)) for place, run in enumerate(runs)],
     )
-    for sources in zip(lines, water, surfaces, rollers, strict=True):
-        _draw_water(drawn, *sources, display)
-    _draw_canal(drawn, runs[0], water[0], factor)
-    _draw_gates(drawn, gates)
-    return MovingProfile(drawn, water, gates, surfaces, rollers)
+    drawn.patches("xs", "ys", source=profile.bodies[0], line_color=None, **area_look(WATER_BODY))
+    for place, line in enumerate(lines):
+        _draw_water(profile, place, line, display)
+    _draw_canal(drawn, runs[0], profile.water[0], factor)
+    _draw_gates(drawn, profile.gates)
+    return profile
 
 
-def _draw_water(
-    drawn: figure,
-    line: Line,
-    water: ColumnDataSource,
-    surface: ColumnDataSource,
-    roller: ColumnDataSource,
-    display: Display,
-) -> None:
-    drawn.patches("xs", "ys", source=roller, line_color=None, **state_look())
-    traced = drawn.line("chainage", "water_line", source=water, **line_look(line))
-    drawn.line("x", "y", source=surface, **line_look(line))
+def _draw_water(profile: MovingProfile, place: int, line: Line, display: Display) -> None:
+    drawn = profile.figure
+    drawn.patches("xs", "ys", source=profile.rollers[place], line_color=None, **state_look())
+    drawn.line("x", "y", source=profile.surfaces[place], **line_look(line))
+    at_nodes = drawn.line("chainage", "water_level", source=profile.water[place], line_alpha=0.0)
     unit = unit_text("length", display)
     told = [
         (line.word, f"@water_level{{0.00}} {unit}"),
         ("above bed", f"@depth{{0.00}} {unit}"),
         ("chainage", f"@chainage{{0,0}} {unit}"),
     ]
-    drawn.add_tools(HoverTool(renderers=[traced], tooltips=told, mode="vline", line_policy="nearest"))
+    drawn.add_tools(HoverTool(renderers=[at_nodes], tooltips=told, mode="vline", line_policy="nearest"))
 
 
 def _draw_canal(drawn: figure, run: xr.Dataset, water: ColumnDataSource, factor: float) -> None:
@@ -135,7 +136,7 @@ def _draw_gates(drawn: figure, gates: Sequence[ColumnDataSource]) -> None:
 
 def _nodes(run: xr.Dataset, factor: float) -> dict[str, np.ndarray]:
     fixed = {"chainage": "chainage", "bed": "bed_level", "lining": "lining_level", "bank": "bank_level"}
-    moving = {name: np.full(run.sizes["node"], np.nan, np.float32) for name in ("water_level", "water_line", "depth")}
+    moving = {name: np.full(run.sizes["node"], np.nan, np.float32) for name in ("water_level", "depth")}
     return {name: run[variable].values / factor for name, variable in fixed.items()} | moving
 
 

@@ -10,6 +10,7 @@ function toeline(page) {
   const calm = window.matchMedia("(prefers-reduced-motion: reduce)");
   const state = { moment: 0, gate: 0, timer: null };
   const wholeCanal = [profile.figure.x_range.start, profile.figure.x_range.end];
+  const allLevels = [profile.figure.y_range.start, profile.figure.y_range.end];
 
   /* Figures out of sight wait until they are scrolled to: only what is seen is drawn at every moment. */
   const sight = new Map();
@@ -37,12 +38,13 @@ function toeline(page) {
     };
   }
 
-  /* The surface of the water below a gate as points [distance, level], its jet and its roller as outlines. */
+  /* The surface of the water below a gate as points [distance, level], its jet and its roller as outlines; the surface
+     goes on at the tailwater as far as `reach`, or ends where the jump does. */
   function waterBelow(now, gate, reach) {
     const floor = canal.floor_level[gate], lip = canal.sill_level[gate] + now.opening;
     const jetTop = floor + now.jet;
     const contracted = Math.min(2 * now.opening, Number.isFinite(now.toe) ? now.toe : Infinity);
-    const rest = [[reach, now.tailwater]];
+    const rest = reach === null ? [] : [[reach, now.tailwater]];
     if (Number.isFinite(now.roller)) {
       const end = Number.isFinite(now.end) ? now.end : contracted;
       const surface = [[0, floor + now.roller], [end, now.tailwater], ...rest];
@@ -56,7 +58,7 @@ function toeline(page) {
       return { surface, jet, roller: [[now.toe, jetTop], [end, now.tailwater], [end, jetTop]] };
     }
     if (Number.isFinite(now.jet) && now.opening > 0) {
-      return { surface: [[0, lip], [contracted, jetTop], [reach, jetTop]], jet: [], roller: [] };
+      return { surface: [[0, lip], [contracted, jetTop], ...(reach === null ? [] : [[reach, jetTop]])], jet: [], roller: [] };
     }
     return { surface: [[0, now.tailwater], ...rest], jet: [], roller: [] };
   }
@@ -67,43 +69,68 @@ function toeline(page) {
     return { xs: kept.map((p) => p.xs), ys: kept.map((p) => p.ys), colour: kept.map(() => colour), hatch: kept.map(() => hatch) };
   }
 
-  function showProfile(run, place) {
+  /* Levels at the nodes as they are in the file, for the table and the hand that asks. */
+  function showLevels(run, place) {
     const source = profile.water[place], columns = source.data, row = run.profiles[state.moment];
     const nodes = columns.bed.length;
     for (let node = 0; node < nodes; node++) {
-      const level = row < 0 ? NaN : run.water_level[row * nodes + node];
-      const depth = level - columns.bed[node];
-      columns.water_level[node] = level;
-      columns.depth[node] = depth;
-      columns.water_line[node] = depth > 0.001 ? level : NaN;
+      columns.water_level[node] = row < 0 ? NaN : run.water_level[row * nodes + node];
+      columns.depth[node] = columns.water_level[node] - columns.bed[node];
     }
     source.change.emit();
   }
 
+  /* The water pool by pool: below its gate the jet and the jump, then the levels of the nodes; none where it is dry. */
+  function showWater(run, place) {
+    const { chainage, bed, water_level: level, depth } = profile.water[place].data, row = run.rows[state.moment];
+    const x = [], y = [], bodies = { xs: [], ys: [] }, rollers = { xs: [], ys: [], colour: [], hatch: [] };
+    const headed = new Set();
+    const add = (points, floor) => {
+      x.push(...points.map((p) => (p[1] - p[2] > 0.001 ? p[0] : NaN)), NaN);
+      y.push(...points.map((p) => p[1]), NaN);
+      bodies.xs.push([...points.map((p) => p[0]), ...floor.map((p) => p[0])]);
+      bodies.ys.push([...points.map((p) => Math.max(p[1], p[2])), ...floor.map((p) => p[1])]);
+    };
+    const below = (gate, reach) => {
+      const now = readings(run, row, gate), at = canal.chainage[gate], floor = canal.floor_level[gate];
+      const { surface, roller } = waterBelow(now, gate, reach);
+      if (roller.length) {
+        rollers.xs.push(roller.map((p) => at + p[0]));
+        rollers.ys.push(roller.map((p) => p[1]));
+        rollers.colour.push(words.colours[now.jump]);
+        rollers.hatch.push(words.hatches[now.jump]);
+      }
+      headed.add(gate);
+      return surface.map((p) => [at + p[0], p[1], floor]);
+    };
+    for (const [first, after, gate] of run.pools) {
+      const points = gate < 0 ? [] : below(gate, null), from = points.length ? points[points.length - 1][0] : -Infinity;
+      const floor = [];
+      for (let node = after - 1; node >= first; node--) floor.push([chainage[node], bed[node]]);
+      for (let node = first; node < after; node++) if (chainage[node] > from) points.push([chainage[node], level[node], bed[node]]);
+      if (points.every((p) => Number.isFinite(p[1]))) add(points, floor);
+    }
+    canal.name.forEach((_, gate) => {
+      if (headed.has(gate)) return;
+      const points = below(gate, 1.5 * Math.max(canal.protection_end[gate] || 0, 20));
+      add(points, [[points[points.length - 1][0], canal.floor_level[gate]], [points[0][0], canal.floor_level[gate]]]);
+    });
+    profile.surfaces[place].data = { x, y };
+    profile.bodies[place].data = bodies;
+    profile.rollers[place].data = rollers;
+  }
+
   function showGates(run, place) {
     const row = run.rows[state.moment], columns = profile.gates[place].data;
-    const x = [], y = [], rollers = { xs: [], ys: [], colour: [], hatch: [] };
     for (let gate = 0; gate < gates; gate++) {
-      const now = readings(run, row, gate), chainage = canal.chainage[gate];
+      const now = readings(run, row, gate);
       columns.lip[gate] = canal.sill_level[gate] + now.opening;
       columns.top[gate] = columns.lip[gate] + canal.leaf_height[gate];
       columns.marker[gate] = words.markers[now.jump];
       columns.colour[gate] = words.colours[now.jump];
       columns.plan[gate] = words.plans[place];
-      const reach = Math.max(Number.isFinite(now.end) ? now.end : 0, Number.isFinite(now.toe) ? now.toe : 0);
-      const { surface, roller } = waterBelow(now, gate, reach);
-      for (const [distance, level] of surface) { x.push(chainage + distance); y.push(level); }
-      x.push(NaN); y.push(NaN);
-      if (roller.length) {
-        rollers.xs.push(roller.map((p) => chainage + p[0]));
-        rollers.ys.push(roller.map((p) => p[1]));
-        rollers.colour.push(words.colours[now.jump]);
-        rollers.hatch.push(words.hatches[now.jump]);
-      }
     }
     profile.gates[place].change.emit();
-    profile.surfaces[place].data = { x, y };
-    profile.rollers[place].data = rollers;
   }
 
   function showCloseUp(run, place) {
@@ -214,7 +241,8 @@ function toeline(page) {
     clock.textContent = label;
     fillText(".clock", label);
     runs.forEach((run, place) => {
-      showProfile(run, place);
+      showLevels(run, place);
+      showWater(run, place);
       showGates(run, place);
       showCloseUp(run, place);
       figures[place].figures.forEach((figure, index) => {
@@ -329,9 +357,11 @@ function toeline(page) {
   }
 
   function lookAlong() {
-    const range = profile.figure.x_range, near = along.value === "gate", chainage = canal.chainage[state.gate];
+    const { x_range: range, y_range: levels } = profile.figure;
+    const near = along.value === "gate", chainage = canal.chainage[state.gate], { start: low, end: high } = axes.close_up_levels;
     const reach = 3 * Math.max(canal.protection_end[state.gate] || 0, 30);
     [range.start, range.end] = near ? [chainage - reach, chainage + 2 * reach] : wholeCanal;
+    [levels.start, levels.end] = near ? [low, high + 0.3 * (high - low)] : allLevels;
   }
 
   function stop() {
