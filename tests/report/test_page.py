@@ -7,11 +7,13 @@ from html import unescape
 import numpy as np
 import pytest
 import xarray as xr
+from tests.canals import scenario_of, standard_day
 
+from toeline import simulate
 from toeline.constants import CAUTION
 from toeline.errors import UsageError
 from toeline.findings.incidents import Incident
-from toeline.report.page.arrays import MOST_SERIES_VALUES, run_arrays
+from toeline.report.page.arrays import MOST_SERIES_VALUES, order_marks, run_arrays
 from toeline.report.page.document import report_page
 from toeline.report.page.hazard_strips import WIDTH, hazard_strips
 from toeline.report.page.moments import moments_of, nearest_rows
@@ -212,6 +214,30 @@ def test_values_are_handed_over_in_the_units_shown(morning):
     run = morning(gate_opening=np.full((49, 2), 0.3048))
     arrays = run_arrays(run, moments_of([run], [[]]), Display(UnitSystem.us_customary))
     assert arrays.series["opening"][0] == pytest.approx(1.0)
+
+
+def test_orders_are_marked_at_their_gate_by_what_became_of_them(morning, metric):
+    run = morning(
+        order_time=np.array([1200.0, 2400.0]), order_gate=np.array(["Last check", "Middle check"], dtype=object),
+        order_kind=np.array([0, 1]), order_value=np.array([2.5, 0.1]), order_bay=np.array([0, 0]),
+        order_opening_before=np.array([0.4, 0.4]), order_opening_after=np.array([1.25, 0.5]),
+        order_completed=np.array([1500.0, 2500.0]), order_status=np.array([1, 0]),
+        order_reason=np.array(["travel is 0 to 1.25 m", ""], dtype=object),
+        order_source=np.array(["schedule", "schedule"], dtype=object),
+    )  # fmt: skip
+    marks = order_marks(run, metric)
+    assert (marks["gate"], marks["elapsed"]) == ([1, 0], [1_200_000.0, 2_400_000.0])
+    assert marks["opening"] == [1.25, 0.5]
+    assert marks["marker"] == ["triangle", "circle"]
+    assert marks["words"][0] == "06:20 open to 2.50 m: order trimmed"
+
+
+def test_a_full_day_of_ten_gates_stays_below_eight_megabytes(tmp_path):
+    canal, day = standard_day()
+    day["output"] = {"every": "1 min", "profiles_every": "1 min"}
+    run = simulate(scenario_of(tmp_path, canal, day))
+    assert run["water_level"].size > 1_440 * 400
+    assert len(report_page({"day": run}).encode()) < 8_000_000
 
 
 def test_a_strip_shows_its_spells_to_scale_and_in_words(bad_hour):

@@ -1,22 +1,17 @@
 """The page as a browser shows it: values read back from it, links, keyboard, print, narrow screens, accessibility."""
 
 import json
-import shutil
 from collections.abc import Iterator
 from pathlib import Path
 
 import numpy as np
 import pytest
 import xarray as xr
+from tests.browser import CHROMIUM, launched, move_to, open_page
 
 from toeline import load_scenario, simulate
 from toeline.report.page.document import report_page
 
-CHROMIUM = shutil.which("chromium") or shutil.which("chromium-browser") or shutil.which("google-chrome")
-OPTIONS = (
-    "--no-sandbox", "--disable-gpu", "--disable-quic", "--no-first-run", "--disable-background-networking",
-    "--disable-component-update", "--disable-sync",
-)  # fmt: skip
 DAY = Path(__file__).parents[2] / "scenarios" / "quillmere" / "morning_increase.toml"
 GATE = "Lower check"
 
@@ -47,24 +42,8 @@ def files(plans, tmp_path_factory) -> dict[str, Path]:
 
 @pytest.fixture(scope="module")
 def browser() -> Iterator:
-    from playwright.sync_api import sync_playwright
-
-    with sync_playwright() as playwright:
-        chromium = playwright.chromium.launch(executable_path=CHROMIUM, args=list(OPTIONS))
+    with launched() as chromium:
         yield chromium
-        chromium.close()
-
-
-def open_page(browser, file: Path, width: int = 1280, **options):
-    """Open a page in a window of its own; `told` gathers errors and warnings, `asked` all requests."""
-    page = browser.new_context(viewport={"width": width, "height": 800}, **options).new_page()
-    page.told, page.asked = [], []
-    page.on("console", lambda message: page.told.append(message.text) if message.type in ("error", "warning") else None)
-    page.on("pageerror", lambda error: page.told.append(str(error)))
-    page.on("request", lambda request: page.asked.append(request.url))
-    page.goto(file.as_uri())
-    page.wait_for_function("document.documentElement.dataset.ready")
-    return page
 
 
 @pytest.fixture(scope="module")
@@ -83,14 +62,6 @@ def both(browser, files):
 def narrow(browser, files) -> dict:
     """Both pages on the screen of a phone."""
     return {name: open_page(browser, file, 380) for name, file in files.items()}
-
-
-def move_to(page, moment: int) -> None:
-    page.evaluate(
-        "moment => { const slider = document.getElementById('moment'); slider.value = moment;"
-        " slider.dispatchEvent(new Event('input')); }",
-        moment,
-    )
 
 
 def column(page, source: str, name: str) -> np.ndarray:

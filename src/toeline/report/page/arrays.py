@@ -8,9 +8,12 @@ from typing import Any
 import numpy as np
 import xarray as xr
 
-from toeline.findings.series import is_any, names
+from toeline.findings.series import is_any, meanings, names
+from toeline.report.order_words import order_words
+from toeline.report.page.looks import MARKERS
 from toeline.report.page.moments import Moments, nearest_rows
-from toeline.report.style import shown_factor
+from toeline.report.run_clock import RunClock
+from toeline.report.style import ORDER_STATUSES, PAPER, shown_factor
 from toeline.results.dataset import local_time
 from toeline.units import Dimension, Display
 
@@ -73,6 +76,29 @@ def run_arrays(run: xr.Dataset, moments: Moments, display: Display) -> RunArrays
         pools=_pools(run),
         steps_left_out=int(times.size - rows.size),
     )
+
+
+def order_marks(run: xr.Dataset, display: Display) -> dict[str, list[Any]]:
+    """The orders of a run, to be marked at the opening that each led to."""
+    clock, listed = RunClock(run), names(run["gate"])
+    kinds, statuses = meanings(run["order_kind"]), meanings(run["order_status"])
+    marks = [ORDER_STATUSES[statuses[int(status)]] for status in run["order_status"].values]
+    asked = [
+        order_words(kinds[int(kind)], float(value), display)
+        for kind, value in zip(run["order_kind"].values, run["order_value"].values, strict=True)
+    ]
+    return {
+        "gate": [listed.index(gate) for gate in names(run["order_gate"])],
+        "elapsed": _milliseconds(run["order_time"].values - run["time"].values[0]).tolist(),
+        "opening": _shown(run["order_opening_after"].values, "length", display).tolist(),
+        "marker": [MARKERS[mark.shape] for mark in marks],
+        "colour": [mark.colour for mark in marks],
+        "filling": [mark.colour if mark.filled else PAPER for mark in marks],
+        "words": [
+            f"{clock.at(time)} {words}: {mark.word}"
+            for time, words, mark in zip(run["order_time"].values, asked, marks, strict=True)
+        ],
+    }
 
 
 def places(run: xr.Dataset, display: Display) -> dict[str, Any]:

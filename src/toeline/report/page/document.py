@@ -16,7 +16,7 @@ from markupsafe import Markup
 from toeline.errors import UsageError
 from toeline.findings.comparison import compare
 from toeline.findings.incidents import Incident, incidents
-from toeline.findings.series import names
+from toeline.findings.series import meanings, names
 from toeline.report import style
 from toeline.report.comparison import contrast_words
 from toeline.report.incidents import NOTHING_FOUND, SETTLING
@@ -49,7 +49,7 @@ TRACE_FIGURES = (
         "Headwater against the target of the pool above",
         "Headwater level against time, with the target level",
     ),
-    ("opening", "Opening as moved", "Opening of the gate against time"),
+    ("opening", "Opening as moved, and its orders", "Opening of the gate against time, with the orders"),
 )
 """Figures over time: their names, headings, and what they show in words."""
 
@@ -91,7 +91,7 @@ def report_page(runs: Mapping[str, xr.Dataset]) -> str:
             divs=figures.places,
             drawn_from=_drawn_from(shown, moments, figures.steps_left_out),
             **_words(shown, moments, display),
-            **_legends(lines),
+            **_legends(lines, _order_statuses(shown)),
             **_fixed_parts(),
         )
     )
@@ -211,16 +211,25 @@ def _drawn_from(shown: Sequence[ShownRun], moments: Moments, steps_left_out: int
     )
 
 
-def _legends(lines: Sequence[style.Line]) -> dict[str, list[tuple[Markup, str]]]:
+def _order_statuses(shown: Sequence[ShownRun]) -> list[str]:
+    """What became of orders in any of the runs."""
+    known = meanings(shown[0].run["order_status"])
+    return [
+        known[value] for value in sorted({int(value) for each in shown for value in each.run["order_status"].values})
+    ]
+
+
+def _legends(lines: Sequence[style.Line], statuses: Sequence[str]) -> dict[str, list[tuple[Markup, str]]]:
     jumps = list(style.JUMP_STATES.values())[1:]
     floor, limits = (style.APRON, style.PROTECTION), (style.MODULAR_LIMIT, style.DROWNING_LIMIT, style.PROTECTION_LIMIT)
     levels = (style.TAILWATER, *limits, style.HEADWATER, style.TARGET, style.OPENING)
+    orders = [style.ORDER_STATUSES[status] for status in statuses]
     canal = (style.BED, style.LINING, style.BANK, style.TARGET, style.LEAF, style.GROUND)
     return {
         "state_legend": legend(style.JUMP_STATES.values()),
         "profile_legend": legend([*lines, *canal]),
         "close_up_legend": legend([style.WATER_BODY, *jumps, style.LEAF, *floor, *limits]),
-        "trace_legend": legend([*jumps, *floor, style.SETTLING, *levels]),
+        "trace_legend": legend([*jumps, *floor, style.SETTLING, *levels, *orders]),
     }
 
 

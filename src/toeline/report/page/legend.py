@@ -4,7 +4,7 @@ from collections.abc import Iterable, Iterator
 
 from markupsafe import Markup
 
-from toeline.report.style import INK, Area, Line
+from toeline.report.style import INK, PAPER, Area, Line, Mark
 
 _HATCHES = {
     "/": "M0 8 8 0",
@@ -15,6 +15,14 @@ _HATCHES = {
     "+": "M0 4H8M4 0V8",
     ".": "M3.4 4h1.2",
     "o": "M2.5 4a1.5 1.5 0 1 0 3 0a1.5 1.5 0 1 0 -3 0",
+}
+_SHAPES = {
+    "circle": "M10 7a5 5 0 1 0 10 0a5 5 0 1 0 -10 0",
+    "square": "M10 2H20V12H10Z",
+    "triangle": "M15 2 20.5 12H9.5Z",
+    "diamond": "M15 1 20 7 15 13 10 7Z",
+    "cross": "M10 2 20 12M20 2 10 12",
+    "plus": "M15 1V13M9 7H21",
 }
 _NAMES = {"/": "rising", "\\": "falling", "x": "crossed", "-": "flat", "|": "upright", "+": "squared", ".": "dotted",
           "o": "ringed"}  # fmt: skip
@@ -35,13 +43,19 @@ def hatch_fill(area: Area) -> str:
     return f"url(#hatch-{_NAMES[area.hatch]})" if area.hatch else "none"
 
 
-def legend(entries: Iterable[Line | Area]) -> list[tuple[Markup, str]]:
+def legend(entries: Iterable[Line | Area | Mark]) -> list[tuple[Markup, str]]:
     """Each entry as a drawing 30 by 14 pixels and its words."""
     return [(_swatch(entry), entry.word) for entry in entries]
 
 
-def _swatch(entry: Line | Area) -> Markup:
-    shapes = "".join(_line(entry) if isinstance(entry, Line) else _area(entry))
+def _swatch(entry: Line | Area | Mark) -> Markup:
+    match entry:
+        case Line():
+            shapes = "".join(_line(entry))
+        case Area():
+            shapes = "".join(_area(entry))
+        case Mark():
+            shapes = _mark(entry)
     return Markup(f'<svg class="swatch" width="30" height="14" aria-hidden="true">{shapes}</svg>')
 
 
@@ -51,6 +65,11 @@ def _line(line: Line) -> Iterator[str]:
         f'<line x1="0" y1="7" x2="30" y2="7" stroke="{line.colour}" stroke-width="{line.width * 4 / 3:.1f}" '
         f'stroke-dasharray="{dash}"/>'
     )
+
+
+def _mark(mark: Mark) -> str:
+    fill = mark.colour if mark.filled else PAPER
+    return f'<path d="{_SHAPES[mark.shape]}" fill="{fill}" stroke="{mark.colour}" stroke-width="1.4"/>'
 
 
 def _area(area: Area) -> Iterator[str]:

@@ -9,6 +9,16 @@ from toeline.report.style import FAINT_INK, INK, PAPER, RULE, Area, Line
 
 FONT = "system-ui, 'Segoe UI', Roboto, 'Helvetica Neue', sans-serif"
 PIXELS_OF_POINT = 4 / 3
+MARKERS = {
+    "circle": "circle",
+    "square": "square",
+    "triangle": "triangle",
+    "diamond": "diamond",
+    "cross": "x",
+    "plus": "cross",
+}
+"""Shapes of the style by the names that bokeh has for them."""
+
 JUMP_MARKERS = {
     "none": "dash",
     "drowned": "circle_x",

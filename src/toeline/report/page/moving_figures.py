@@ -14,7 +14,7 @@ from bokeh.plotting import figure
 from markupsafe import Markup
 
 from toeline.findings.series import meanings
-from toeline.report.page.arrays import places, run_arrays, start_milliseconds
+from toeline.report.page.arrays import order_marks, places, run_arrays, start_milliseconds
 from toeline.report.page.close_up import close_up
 from toeline.report.page.long_profile import long_profile
 from toeline.report.page.looks import JUMP_MARKERS
@@ -57,7 +57,9 @@ def moving_figures(
             "gate_figures": [{"shapes": cut.shapes, **vars(each)} for cut, each in zip(cuts, through, strict=True)],
             "time_figures": over_time,
             "axes": {"distances": distances, "close_up_levels": levels, **vars(trace_axes)},
-            "runs": [vars(each) for each in arrays],
+            "runs": [
+                vars(each) | {"orders": order_marks(run, display)} for each, run in zip(arrays, runs, strict=True)
+            ],
             "canal": places(runs[0], display),
             "moments": {"labels": list(moments.labels), "elapsed": moments.elapsed / np.timedelta64(1, "ms")},
             "words": _words(runs[0], lines, display) | {"start": start},

@@ -48,12 +48,13 @@ class TraceAxes:
 class Traces:
     """The figures, times below one another, and what the browser draws in them.
 
-    `bands` are the outlines from toe to end by state of the jump, `settling` the times of settling; `apron` and
-    `protection` the ground of the strip; `cursors` stand at the moment shown.
+    `orders` are marks, `bands` outlines from toe to end by state of the jump, `settling` the times of settling; `apron`
+    and `protection` the ground of the strip; `cursors` stand at the moment shown.
     """
 
     figures: list[figure]
     series: ColumnDataSource
+    orders: ColumnDataSource
     bands: ColumnDataSource
     settling: ColumnDataSource
     apron: BoxAnnotation
@@ -81,8 +82,11 @@ def traces(axes: TraceAxes, display: Display, name: str) -> Traces:
     target = Span(location=0.0, dimension="width", **line_look(TARGET))
     headwater.add_layout(target)
     _draw_lines(opening, series, {"opening": OPENING}, display)
+    orders = _draw_orders(opening)
     figures = [strip, tailwater, headwater, opening]
-    return Traces(figures, series, bands, settling, apron, protection, target, [_cursor(drawn) for drawn in figures])
+    return Traces(
+        figures, series, orders, bands, settling, apron, protection, target, [_cursor(drawn) for drawn in figures]
+    )
 
 
 def _over_time(height: int, times: Range1d, values: Range1d, label: str, name: str) -> figure:
@@ -118,6 +122,16 @@ def _draw_jump(
     unit = unit_text("length", display)
     told = [("", "@clock"), ("", "@jump"), ("toe", f"@toe{{0.00}} {unit}"), ("end", f"@end{{0.00}} {unit}")]
     strip.add_tools(HoverTool(renderers=[ends], tooltips=told, mode="vline"))
+
+
+def _draw_orders(drawn: figure) -> ColumnDataSource:
+    """Marks at the openings that orders led to, by what became of them."""
+    orders = source_of(time=[], opening=[], marker=[], colour=[], filling=[], words=[])
+    marks = drawn.scatter(
+        "time", "opening", marker="marker", size=10, source=orders, line_color="colour", fill_color="filling"
+    )
+    drawn.add_tools(HoverTool(renderers=[marks], tooltips=[("", "@words")], mode="mouse"))
+    return orders
 
 
 def _draw_lines(drawn: figure, series: ColumnDataSource, lines: Mapping[str, Line], display: Display) -> None:

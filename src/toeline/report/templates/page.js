@@ -324,6 +324,12 @@ function toeline(page) {
       if (last >= 0 && settling.right[last] >= edge(row)) settling.right[last] = edge(row + 1);
       else { settling.left.push(edge(row)); settling.right.push(edge(row + 1)); settling.top.push(0.05 * reach); }
     });
+    const given = run.orders.gate.map((each, index) => (each === gate ? index : -1)).filter((index) => index >= 0);
+    const pick = (name) => given.map((index) => run.orders[name][index]);
+    figure.orders.data = {
+      time: pick("elapsed").map((elapsed) => words.start + elapsed), opening: pick("opening"), marker: pick("marker"),
+      colour: pick("colour"), filling: pick("filling"), words: pick("words"),
+    };
     figure.bands.data = bands;
     figure.settling.data = settling;
     const apron = canal.apron_end[gate] || 0;
