@@ -194,6 +194,8 @@ def test_durations_are_written_in_a_unit_that_fits(seconds, text):
         (US, "level", 103.6249, "339.98 ft"),
         (METRIC, "depth", 2.005001, "2.01 m"),
         (METRIC, "opening", -0.001, "0.00 m"),
+        (METRIC, "setting", 0.4374, "0.437 m"),
+        (US, "setting", 0.4374, "1.44 ft"),
         (METRIC, "length", 1234.5, "1234.50 m"),
         (METRIC, "level_difference", 0.0234, "2.3 cm"),
         (US, "level_difference", 0.0234, "0.08 ft"),
@@ -206,6 +208,8 @@ def test_durations_are_written_in_a_unit_that_fits(seconds, text):
         (US, "velocity", 0.3048, "1.00 ft/s"),
         (METRIC, "speed", 0.0025, "0.150 m/min"),
         (US, "speed", 0.00254, "0.500 ft/min"),
+        (METRIC, "rate_of_loss", 0.025 / 86_400.0, "25.0 mm/day"),
+        (US, "rate_of_loss", 0.0254 / 86_400.0, "1.00 in/day"),
         (METRIC, "level", math.nan, "-"),
     ],
 )

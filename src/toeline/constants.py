@@ -16,3 +16,9 @@ CAUTION = (
     "A dry canal can fill without warning."
 )
 """The short form, for run files, pages and the end of every summary."""
+
+FIELD_CAUTION = (
+    "Water below gates drowns people: no state shown here is safe to enter. A dry canal can fill without warning. "
+    "Expected readings are estimates; this sheet commands nothing beyond the owner's standing orders, which govern."
+)
+"""The shortest form, at the foot of every page that is carried to a gate; the whole caution stands once beside it."""

@@ -101,6 +101,7 @@ def attributes(scenario: Scenario) -> dict[str, str]:
         surface_names=tuple(scenario.canal.surfaces), units_for_display=scenario.display.system.value, zone=day.zone,
         limits=limits_of(scenario.canal), avoided_openings=_avoided_openings(scenario),
         start=day.period.start, version=toeline.__version__, created=datetime.now(UTC),
+        call=scenario.canal.call,
     )  # fmt: skip
 
 
@@ -156,6 +157,7 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
         "gate_smallest_move": names.smallest_move,
         "gate_turn": names.turn,
         "gate_scale_mark": names.scale_mark,
+        "gate_gatekeeper": np.array(names.gatekeepers, object),
         "gate_apron_end": gates.apron_end,
         "gate_protection_end": gates.protection_end,
         "gate_upstream_pool": np.array(

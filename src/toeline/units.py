@@ -183,6 +183,10 @@ class Display:
         """Write an opening of a gate [m]."""
         return self._text(value, "length", 2)
 
+    def setting(self, value: float) -> str:
+        """Write an opening that is to be set [m]: to 1 mm or 0.01 ft."""
+        return self._text(value, "length", 3 if self.system is UnitSystem.metric else 2)
+
     def length(self, value: float) -> str:
         """Write a length or a distance [m]."""
         return self._text(value, "length", 2)

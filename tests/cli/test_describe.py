@@ -66,3 +66,26 @@ def test_a_day_without_a_steady_start_is_described_all_the_same(folder, call):
     page = " ".join(call("describe", "day.toml").stdout.split())
     assert "LEAD TIMES OF THE POOLS None:" in page
     assert "exceed the inflow" in page
+
+
+def test_escapes_gauges_losses_and_roughness_are_described(tmp_path, call):
+    call("new", str(tmp_path))
+    page = " ".join(call("describe", str(tmp_path / "canal.toml")).stdout.split())
+    assert "ESCAPES pool below its head crest length outside Fern escape Upper pool 1760.00 m 51.35 m" in page
+    assert "Upper check, upstream upstream of Upper check 49.60 m" in page
+    assert "seepage 25.0 mm/day evaporation 5.0 mm/day" in page
+    assert "08-20 every pool 1.05 holds weed cut" in page
+
+
+def test_weather_and_orders_to_bays_are_described(tmp_path, call):
+    call("new", str(tmp_path))
+    canal, day = tmp_path / "canal.toml", tmp_path / "day.toml"
+    canal.write_text(
+        canal.read_text().replace("bays = 1\nbay_width = 2.6", "bays = 2\nseparate_bays = true\nbay_width = 1.3")
+    )
+    text = day.read_text().replace('gate = "Upper check", by = 0.06', 'gate = "Upper check", bay = 2, by = 0.06')
+    day.write_text(text + '\n[losses]\nrain = [["00:00", 0.0], ["12:00", "20 mm/h"]]\n')
+    page = " ".join(call("describe", str(day)).stdout.split())
+    assert "rain 0.0 mm/day 0.0 mm/day 480.0 mm/day" in page
+    assert "07:45 Upper check, bay 2 open by 0.06 m" in page
+    assert "2 of 1.30 m, separate" in call("describe", str(canal)).stdout

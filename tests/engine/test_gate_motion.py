@@ -190,7 +190,7 @@ def test_rounding_of_an_order_is_listed():
     motion = GateMotion(gate(), 0.50, Marks(0.005, "whole turns"))
     record = motion.order(0, "opening", 0.553, 0.553)
     assert (record.status, record.after) == (TRIMMED, pytest.approx(0.555))
-    assert record.reason == "rounded to whole turns"
+    assert record.reason == "rounded to whole turns of 0.005 m"
 
 
 def test_moves_an_hour_are_counted_for_orders_and_rules_alike():

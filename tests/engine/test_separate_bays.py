@@ -97,3 +97,14 @@ def test_day_goes_on_with_each_bay_where_it_was(tmp_path):
     second = simulate(scenario_of(tmp_path, canal, day(8.0, length="1 h", **next_start), name="second"))
     for name in ("bay_opening", "gate_discharge", "pool_tail_level"):
         assert np.abs(whole.sel(time=second.time)[name] - second[name]).max() <= 1e-9, name
+
+
+def test_rule_moves_all_bays_alike(tmp_path):
+    canal = stepped_canal(2, 1500.0, gate=SEPARATE)
+    rule = {"kind": "hold discharge", "gate": "G0", "target": 6.0, "every": "10 min"}
+    plan = {"plans": {"ruled": {"rules": [rule]}}}
+    run = simulate(scenario_of(tmp_path, canal, day(8.0, length="2 h", **plan)))
+    moved = run.bay_opening.isel(bay=slice(0, 2))
+    assert run.gate_discharge[-1, 0] == pytest.approx(6.0, rel=0.05)
+    assert np.abs(moved[:, 0] - moved[:, 1]).max() == 0.0
+    assert set(run.order_bay.values.tolist()) == {1, 2}

@@ -55,7 +55,6 @@ def run_by_hand(
     *,
     values: Mapping[str, object],
     nodes: int = 4,
-    orders: int = 0,
     outcome: str = COMPLETE,
 ) -> xr.Dataset:
     """A run with output at the given minutes. `values` are by variable name and are spread over its dimensions.
@@ -65,7 +64,7 @@ def run_by_hand(
     sizes = {
         "time": len(minutes),
         "profile_time": len(profile_minutes),
-        "order": orders,
+        "order": np.size(values.get("order_time", ())),
         "gate": 2,
         "bay": 3,
         "pool": 2,

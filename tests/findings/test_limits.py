@@ -140,7 +140,7 @@ def ordered(run_by_hand, minutes, gate="Orchard check", statuses=None, **limit):
         "order_opening_after": np.full(count, 0.45),
         "order_status": np.array(statuses or [0] * count),
     }
-    run = run_by_hand(MINUTES, values=orders, orders=count)
+    run = run_by_hand(MINUTES, values=orders)
     entry = {"kind": "moves", "unit": "count", "places": BOTH_GATES, "source": SOURCE} | limit
     run.attrs["limits"] = json.dumps([entry])
     return run

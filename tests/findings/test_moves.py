@@ -18,6 +18,7 @@ def run(*orders: tuple[str, float, float, float, int, str]) -> xr.Dataset:
         {
             "gate": ("gate", ["Upper check", "Lower check"]),
             "order_gate": ("order", gates),
+            "order_bay": ("order", np.zeros(len(gates), np.int32)),
             "order_time": ("order", START + np.array(minutes) * np.timedelta64(60_000_000_000, "ns")),
             "order_opening_before": ("order", np.array(before, np.float32)),
             "order_opening_after": ("order", np.array(after, np.float32)),
@@ -50,3 +51,13 @@ def test_the_busiest_hour_begins_with_a_move_and_leaves_its_end_out():
     [upper, _] = gate_moves(run(*(("Upper check", m, 0.5, 0.6, ACCEPTED, "schedule") for m in minutes)))
     assert upper.busiest == 3
     assert upper.busiest_from == START + np.timedelta64(10, "m")  # 10, 60, 65
+
+
+def test_reversals_are_counted_leaf_by_leaf():
+    two_bays = run(
+        ("Upper check", 10, 0.3, 0.4, ACCEPTED, "schedule"),
+        ("Upper check", 20, 0.5, 0.4, ACCEPTED, "schedule"),
+        ("Upper check", 30, 0.4, 0.5, ACCEPTED, "schedule"),
+    )
+    two_bays["order_bay"] = ("order", np.array([1, 2, 1], np.int32))
+    assert gate_moves(two_bays)[0].reversals == 0

@@ -35,6 +35,7 @@ def run_of(*orders: GateOrder, sources: list[str] | None = None, settings: dict 
         "order_gate": np.array([order.gate for order in orders], dtype=object),
         "order_value": np.array([order.value for order in orders], dtype=float),
         "order_opening_before": np.array([order.opening_before for order in orders], dtype=float),
+        "order_bay": np.array([order.bay for order in orders], dtype=np.int32),
     }
     run = xr.Dataset({name: ("order", values) for name, values in columns.items()}, {"gate": GATES})
     run["order_kind"] = ("order", kinds, {"flag_meanings": " ".join(ORDER_KINDS)})
@@ -42,6 +43,16 @@ def run_of(*orders: GateOrder, sources: list[str] | None = None, settings: dict 
     run["order_opening_after"] = run["order_opening_before"] + 0.05
     run["order_source"] = ("order", np.array(sources or ["schedule"] * len(orders), dtype=object))
     return run.assign_attrs(resolved_settings=json.dumps(settings or {}))
+
+
+def test_bays_are_compared_each_by_itself():
+    first = run_of(order("06:00", value=0.4), GateOrder(time("07:00"), "Mill check", "opening", 0.5, 0.4, 2))
+    other = run_of(order("06:00", value=0.4), GateOrder(time("07:00"), "Mill check", "opening", 0.5, 0.4, 1))
+    differences = schedule_difference(first, other).orders
+    assert [(one.gate, one.first is None) for one in differences] == [
+        ("Mill check, bay 1", True),
+        ("Mill check, bay 2", False),
+    ]
 
 
 def test_equal_schedules_have_no_difference():

@@ -17,6 +17,8 @@ def write_day(folder: Path, seed: int, local_inertia: bool, start: str) -> Path:
     """Write a canal and a day drawn from `seed`; returns the day file."""
     rng = np.random.default_rng(seed)
     canal = _canal(rng)
+    if seed % 3 == 0:
+        canal |= _water_astray(np.random.default_rng([seed, 1]), canal["pools"])
     _write(folder / "canal.toml", canal)
     return _write(folder / "day.toml", _day(rng, canal, local_inertia, start))
 
@@ -89,6 +91,25 @@ def _pools(rng: np.random.Generator) -> tuple[list[dict[str, Any]], list[float]]
         )
         bed = ends[-1] - rng.choice([0.0, 0.2, 0.8])
     return pools, ends
+
+
+def _water_astray(rng: np.random.Generator, pools: list[dict[str, Any]]) -> dict[str, Any]:
+    """Escapes with high and low crests, free and drowned, heavy losses, and a roughness that leaps."""
+    escapes = []
+    for k, pool in enumerate(pools):
+        crest = pool["target_level"] + rng.uniform(-0.4, 0.3)
+        place = rng.uniform(0.0, 1.0) * sum(stretch["length"] for stretch in pool["stretches"])
+        escapes.append(
+            {"name": f"E{k}", "pool": pool["name"], "chainage": place, "crest_level": max(crest, pool["bed_level"]),
+             "length": rng.choice([2.0, 10.0, 60.0])}
+        )  # fmt: skip
+        if rng.random() < 0.6:
+            escapes[-1]["outside_level"] = crest + rng.uniform(-0.3, 0.6)
+    return {
+        "escapes": escapes,
+        "losses": {"seepage": f"{rng.choice([0.1, 1.0, 10.0])} m/day", "rain": f"{rng.choice([0.0, 80.0])} mm/h"},
+        "roughness_calendar": [{"from": "2031-05-01", "factor": rng.choice([0.5, 1.0, 3.0])}],
+    }
 
 
 def _gate(rng: np.random.Generator, upstream: str, downstream: str, sill: float, width: float) -> dict[str, Any]:

@@ -2,6 +2,8 @@
 
 import numpy as np
 import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 from scipy.integrate import quad, solve_ivp
 from tests.canals import prismatic_canal, rectangle, trapezoid
 
@@ -69,3 +71,12 @@ def test_an_adverse_bed_is_all_backed_up():
     times = times_at(3.0, rectangle(WIDTH, ROUGHNESS), slope=-1e-5)
     assert times.wave[0] > 0.0
     assert times.area[0] == pytest.approx(LENGTH * WIDTH, rel=0.1)
+
+
+@given(
+    slope=st.floats(-1e-3, 1e-2), depth=st.floats(-0.5, 6.0), discharge=st.floats(-5.0, 200.0),
+    length=st.floats(1.0, 50_000.0), side=st.floats(0.0, 3.0),
+)  # fmt: skip
+def test_a_pool_answers_with_numbers_or_with_none_at_all(slope, depth, discharge, length, side):
+    found = response(cross_section.trapezoid(3.0, side), ROUGHNESS, slope, length, depth, discharge)
+    assert np.isnan(found).all() or (np.isfinite(found).all() and min(found) > 0.0)

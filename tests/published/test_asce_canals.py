@@ -1,44 +1,28 @@
-"""The two test canals of the ASCE task committee on canal automation: normal depths and backwater of every kind of
-pool.
+"""Normal depths and backwater of every kind of pool of the two ASCE test canals (geometry and sources: asce_canals.py).
 
-Clemmens, Kacerek, Grawitz & Schuurmans 1998, J. Irrig. Drain. Eng. 124(1) 23-30 (from memory). Geometry published
-second-hand: transcribed from Clemmens et al. 2015 (table 1), Bonet et al. 2025 (tables 5-6), Litrico & Fromion
-2004. Depths and volumes are recomputed or derived; nothing of the committee's unsteady results is claimed.
+Depths and volumes are recomputed or derived; nothing of the committee's unsteady results is claimed.
 """
 
 from typing import NamedTuple
 
 import numpy as np
 import pytest
+from tests.published.asce_canals import CANAL_1, CANAL_2, SIDE_SLOPE, TestCanal
 
 from toeline.hydraulics.cross_section import area, trapezoid
 from toeline.hydraulics.uniform_flow import normal_depth
 
-SIDE_SLOPE = 1.5
-
-
-class Canal(NamedTuple):
-    slope: float
-    roughness: float
-    bottom_widths: tuple[float, ...]
-    low_flows: tuple[float, ...]
-    high_flows: tuple[float, ...]
-    low_depths: tuple[float, ...]
-    high_depths: tuple[float, ...]
-
-
-CANAL_1 = Canal(
-    0.002, 0.014, (1.0, 1.0, 1.0, 0.8, 0.8, 0.8, 0.6, 0.6),
-    (0.8, 0.7, 0.6, 0.5, 0.4, 0.3, 0.2, 0.1), (2.0, 1.8, 1.6, 1.4, 1.2, 1.0, 0.8, 0.6),
-    (0.3905, 0.3638, 0.3350, 0.3337, 0.2966, 0.2542, 0.2313, 0.1591),
-    (0.6248, 0.5928, 0.5587, 0.5622, 0.5211, 0.4759, 0.4664, 0.4054),
-)  # fmt: skip
-CANAL_2 = Canal(
-    0.0001, 0.020, (7.0, 7.0, 7.0, 6.0, 6.0, 5.0, 5.0, 5.0),
-    (2.7, 2.5, 2.2, 2.0, 1.7, 1.5, 1.2, 1.0), (11.0, 10.0, 9.0, 8.0, 7.0, 6.0, 5.0, 4.0),
-    (0.8375, 0.8008, 0.7433, 0.7657, 0.6967, 0.7157, 0.6290, 0.5657),
-    (1.8597, 1.7644, 1.6641, 1.6773, 1.5585, 1.5575, 1.4102, 1.2470),
-)  # fmt: skip
+NORMAL_DEPTHS = {
+    CANAL_1: (
+        (0.3905, 0.3638, 0.3350, 0.3337, 0.2966, 0.2542, 0.2313, 0.1591),
+        (0.6248, 0.5928, 0.5587, 0.5622, 0.5211, 0.4759, 0.4664, 0.4054),
+    ),
+    CANAL_2: (
+        (0.8375, 0.8008, 0.7433, 0.7657, 0.6967, 0.7157, 0.6290, 0.5657),
+        (1.8597, 1.7644, 1.6641, 1.6773, 1.5585, 1.5575, 1.4102, 1.2470),
+    ),
+}
+"""At the low and at the high flows."""
 
 
 @pytest.fixture(params=[CANAL_1, CANAL_2], ids=["canal 1", "canal 2"])
@@ -49,16 +33,16 @@ def normal_depths_of_the_test_canals(request):
 
 def test_normal_depths_of_the_test_canals(normal_depths_of_the_test_canals):
     canal = normal_depths_of_the_test_canals
-    for flows, depths in ((canal.low_flows, canal.low_depths), (canal.high_flows, canal.high_depths)):
+    for pools, depths in zip((canal.low, canal.high), NORMAL_DEPTHS[canal], strict=True):
         found = [
             normal_depth(trapezoid(width, SIDE_SLOPE), canal.roughness, canal.slope, flow)[0]
-            for width, flow in zip(canal.bottom_widths, flows, strict=True)
+            for width, (flow, _, _) in zip(canal.bottom_widths, pools, strict=True)
         ]
         assert found == pytest.approx(depths, abs=6e-5)
 
 
 class Pool(NamedTuple):
-    canal: Canal
+    canal: TestCanal
     bottom_width: float
     length: float
     discharge: float

@@ -30,7 +30,7 @@ def test_lead_times_by_wave_of_a_canal_file_are_the_published_delays(canal):
     network = network_of(Canal.model_validate(file), 100.0)
     taken = deliveries_at_low_flow(canal)
     start = steady_at_targets(
-        network, canal.low[0][0], file["tail"]["level"], 0.0, Demands(np.array(taken), np.zeros(len(taken))),
+        network, canal.low[0][0], file["tail"]["level"], 0.0, Demands(np.array(taken), np.zeros(len(taken)), 0.0),
         [gate["max_opening"] for gate in file["gates"]],
     )  # fmt: skip
     times = pool_times(network, start.level, start.discharge)

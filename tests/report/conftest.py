@@ -79,3 +79,39 @@ def invented_run() -> Callable[..., xr.Dataset]:
 @pytest.fixture
 def metric() -> Display:
     return Display(UnitSystem.metric)
+
+
+@pytest.fixture
+def ordered_run(invented_run) -> Callable[..., xr.Dataset]:
+    """Build the run with orders to the Middle check, one every quarter of an hour from 06:30 on, each of 0.06 m.
+
+    The level above it rises by 1 mm a minute from 51.40 m; that below stands at 50.60 m. A turn is 5 mm.
+    """
+
+    def build(count: int = 2, **given: object) -> xr.Dataset:
+        minutes = 30.0 + 15.0 * np.arange(count)
+        openings = 0.30 + 0.06 * np.arange(count + 1)
+        level = 51.40 + 0.005 * np.arange(SIZES["time"])
+        values = {
+            "order_time": 60.0 * minutes,
+            "order_completed": 60.0 * minutes + 90.0,
+            "order_gate": np.full(count, "Middle check", object),
+            "order_source": np.full(count, "schedule", object),
+            "order_kind": np.zeros(count),
+            "order_value": openings[1:],
+            "order_opening_before": openings[:-1],
+            "order_opening_after": openings[1:],
+            "order_status": np.zeros(count),
+            "order_reason": np.full(count, "", object),
+            "gate_headwater_level": np.stack([level, level], axis=1),
+            "gate_tailwater_level": np.full((SIZES["time"], 2), 50.60),
+            "settling": np.ones((SIZES["time"], 2)),
+            "pool_wave_round_trip": np.array([600.0, 300.0]),
+            "gate_protection_end": np.array([23.0, 0.0]),
+            "gate_turn": np.array([0.005, np.nan]),
+            "gate_scale_mark": np.full(2, np.nan),
+            "gate_gatekeeper": np.array(["Upper beat", "Lower beat"], object),
+        }
+        return invented_run(**values | given)
+
+    return build

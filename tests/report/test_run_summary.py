@@ -176,7 +176,7 @@ def test_the_ledger_is_told_pool_by_pool_with_losses(invented_run, metric):
 def test_uneven_bays_are_told_with_what_is_not_modelled(invented_run, metric):
     page = run_summary(invented_run(bay_opening=one_bad_hour((0.3, 0.8))), metric)
     text = section(page, "BAYS THAT MOVE APART")
-    assert "Last check: greatest difference of neighbours 0.50 m at 07:10, bays 1 and 2" in text
+    assert "Last check: bays 1 and 2, side by side, differ most: by 0.50 m at 07:10." in text
     assert "side rollers" in text
 
 

@@ -76,7 +76,7 @@ def test_an_error_names_rule_file_and_line_and_keeps_what_was_done(tmp_path):
         simulate(scenario(tmp_path, RULE), tmp_path / "run.nc")
     file = tmp_path / "watch.py"
     assert str(raised.value) == (
-        f'3600 s after the start: rule "watch.py:Watch" failed in {file}, line 18: ZeroDivisionError: division by zero'
+        f'1 h after the start: rule "watch.py:Watch" failed in {file}, line 18: ZeroDivisionError: division by zero'
     )
     with open_run(tmp_path / "run.nc.partial") as run:
         assert run.sizes["order"] == 1
@@ -150,7 +150,7 @@ def test_settings_of_the_run_are_kept_with_it(tmp_path):
 def test_the_example_of_the_developers_page_runs(tmp_path):
     source = DEVELOPERS.read_text(encoding="utf-8").split("```python\n")[1].split("```")[0]
     (tmp_path / "night_watch.py").write_text(source, encoding="utf-8")
-    rule = {"kind": "night_watch.py:NightWatch", "gate": "G0", "lowest": 9.0}
+    rule = {"kind": "night_watch.py:NightWatch", "gate": "G0", "every": "1 h", "lowest": 9.0}
     run = simulate(scenario(tmp_path, rule))
     changes = run.order_opening_after - run.order_opening_before
     assert changes.values == pytest.approx([-0.02] * 4, abs=1e-6)

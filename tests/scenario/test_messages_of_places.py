@@ -7,7 +7,7 @@ import pytest
 ESCAPE = '[[escapes]]\nname = "E"\npool = "Upper pool"\nchainage = 500.0\ncrest_level = 22.0\nlength = 10.0\n'
 GAUGE = '[[gauges]]\nname = "S"\ngate = "Upper check"\nside = "upstream"\nzero_level = 19.0\n'
 ENTRY = '[[roughness_calendar]]\nfrom = "06-01"\nfactor = 1.2\n'
-PERIOD = 'day of every year such as "06-01" (month-day, not "02-29"), or a date such as 2031-06-01'
+CALENDAR_DAY = 'day of every year such as "06-01" (month-day, not "02-29"), or a date such as 2031-06-01'
 CASES = [
     # text added to canal.toml, messages after the line
     (ESCAPE.replace("Upper pool", "Uper pool"), ['"E" pool: found "Uper pool", which is not described; did you mean']),
@@ -30,8 +30,10 @@ CASES = [
     ),
     ('[losses]\nseepage = "-1 mm/day"\n', ['losses seepage: found "-1 mm/day"; allowed: from 0 mm/day to 10000']),
     ('[losses]\nrain = "3 m"\n', ["losses rain: found", "or text such as"]),
-    (ENTRY.replace("06-01", "06-31"), [f'from: found "06-31"; allowed: {PERIOD}']),
-    (ENTRY.replace("06-01", "02-29"), [f'from: found "02-29"; allowed: {PERIOD}']),
+    (ENTRY.replace("06-01", "06-31"), [f'from: found "06-31"; allowed: {CALENDAR_DAY}']),
+    (ENTRY.replace("06-01", "02-29"), [f'from: found "02-29"; allowed: {CALENDAR_DAY}']),
+    (ENTRY.replace("06-01", "20310601"), [f'from: found "20310601"; allowed: {CALENDAR_DAY}']),
+    (ENTRY.replace('"06-01"', "601"), [f"from: found 601; allowed: {CALENDAR_DAY}"]),
     (ENTRY.replace("1.2", "0.1"), ["factor: found 0.1; allowed: from 0.2 to 10"]),
     (
         ENTRY + 'pools = ["Mil pool"]\n',

@@ -23,7 +23,8 @@ CASES = [
         'units = "metric"\nforecast = []',
         [
             'canal.toml:3: forecast: unknown key; known: "name", "units", "sections", "surfaces", "pools", '
-            '"gates", "offtakes", "escapes", "gauges", "losses", "roughness_calendar", "head", "tail", "limits"',
+            '"gates", "offtakes", "escapes", "gauges", "losses", "roughness_calendar", "head", "tail", "limits", '
+            '"call"',
         ],
     ),
     (

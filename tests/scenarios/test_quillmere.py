@@ -233,26 +233,26 @@ def moves(run: xr.Dataset) -> dict[str, int]:
 def test_upstream_levels_hold_the_pools_and_pass_the_mismatch_to_the_tail():
     run = run_of("four_rules", "upstream_levels")
     assert greatest_stray(run) < 0.07
-    assert run.canal_outflow.min() < 5.3
-    assert run.canal_outflow.max() > 7.4
+    assert run.canal_outflow.min() < 5.4
+    assert run.canal_outflow.max() > 7.6
 
 
 def test_downstream_levels_hold_the_tail_and_swing_the_head():
     run = run_of("four_rules", "downstream_levels")
     assert (np.abs(run.canal_outflow - 6.0) < 0.4).all()
     assert run.canal_inflow.min() < 8.0
-    assert run.canal_inflow.max() > 11.2
+    assert run.canal_inflow.max() > 11.0
     stray = np.abs(run.pool_tail_level - run.pool_target_level).max("time")
-    assert stray.sel(pool="Orchard pool") > 2 * stray.sel(pool="Lower pool")
+    assert stray.sel(pool="Orchard pool") > 1.5 * stray.sel(pool="Lower pool")
 
 
 def test_volumes_let_the_surface_turn_about_a_point_in_the_pool():
     run = run_of("four_rules", "volumes")
-    assert (np.abs(run.pool_volume / run.pool_volume[0] - 1).max("time") < 0.04).all()
+    assert (np.abs(run.pool_volume / run.pool_volume[0] - 1).max("time") < 0.05).all()
     mill = run.sel(pool="Mill pool")
     afternoon = mill.sel(time=run.time.values[0] + np.timedelta64(12, "h"))
-    assert -0.04 < afternoon.pool_tail_level - mill.pool_tail_level[0] < -0.02
-    assert 0.03 < afternoon.pool_head_level - mill.pool_head_level[0] < 0.05
+    assert -0.07 < afternoon.pool_tail_level - mill.pool_tail_level[0] < -0.05
+    assert 0.02 < afternoon.pool_head_level - mill.pool_head_level[0] < 0.04
 
 
 def test_gatekeeper_rounds_move_least_and_stray_most():

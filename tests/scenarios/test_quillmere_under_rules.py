@@ -82,7 +82,7 @@ def test_no_rule_hunts(kind):
 def test_feedback_comes_to_rest(kind):
     run = run_under(kind)
     last = run.order_time.values >= run.time.values[-1] - np.timedelta64(4, "h")
-    assert np.count_nonzero(last) <= 4
+    assert np.count_nonzero(last) <= 8  # two an hour, all gates together
 
 
 @pytest.mark.parametrize("kind", ["hold upstream level", "hold downstream level"])

@@ -14,7 +14,8 @@ def command(file: Path) -> None:
     """Read FILE, a canal or a day with its canal, and tell in one line what it holds.
 
     Every fault is listed with its file, line and key, what was found and what is allowed; exit status 2.
-    Nothing is run and nothing is written.
+    Nothing is simulated and nothing is written. But rules of your own that a plan names are loaded, which runs their
+    code: check files that you trust.
     """
     from toeline.cli.canal_page import canal_line
     from toeline.cli.day_page import day_line

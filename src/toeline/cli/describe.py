@@ -33,5 +33,7 @@ def describe_canal(file: Path, width: int) -> str:
 
 def describe_day(file: Path, width: int) -> str:
     from toeline.cli.day_page import day_page
+    from toeline.cli.run import tell_of_compiling
 
+    tell_of_compiling()
     return day_page(load_plans(file), width)

@@ -1,8 +1,7 @@
-"""Where a run is written, and what must not be lost by it."""
+"""Where a run or its sheets are written, and what must not be lost by it."""
 
-import os
 import re
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -24,8 +23,13 @@ def choose_outputs(scenarios: Sequence["Scenario"], output: Path | None) -> list
     wanted = output or Path(f"{day.day_path.stem}.nc")
     if len(day.day.plans) < 2 or (output is not None and len(scenarios) == 1):
         return [wanted]
-    plans = (re.sub(r"[^\w.-]+", "_", scenario.plan or "") for scenario in scenarios)
+    plans = (file_name(scenario.plan or "") for scenario in scenarios)
     return [wanted.with_name(f"{wanted.stem}.{plan}{wanted.suffix}") for plan in plans]
+
+
+def file_name(name: str) -> str:
+    """A name as part of the name of a file: what is no letter, digit, point or hyphen becomes one underscore."""
+    return re.sub(r"[^\w.-]+", "_", name)
 
 
 def refuse_outputs(outputs: Sequence[Path], scenarios: Sequence["Scenario"], overwrite: bool) -> None:
@@ -59,20 +63,26 @@ def show_or_write(text: str, output: Path | None) -> None:
     if output is None:
         show(text)
         return
-    write_page(output, text)
+    write_together({output: f"{text}\n".encode()})
     note(f"Written: {output}")
-
-
-def write_page(output: Path, text: str) -> None:
-    """Write a page whole or not at all."""
-    half = output.with_name(f".{output.name}.{os.getpid()}.partial")
-    try:
-        half.write_text(f"{text}\n", encoding="utf-8")
-        half.replace(output)
-    finally:
-        half.unlink(missing_ok=True)
 
 
 def input_files(scenarios: Iterable["Scenario"]) -> set[Path]:
     """All files that scenarios are read from."""
     return {path.resolve() for s in scenarios for path in (s.day_path, s.canal_path, s.start_file) if path}
+
+
+def write_together(files: Mapping[Path, bytes]) -> None:
+    """Write several files so that a failure leaves each as it was before: none is under its name until all are on disk.
+
+    OSError where one cannot be written.
+    """
+    working = {path: path.with_name(path.name + ".writing") for path in files}
+    try:
+        for path, content in files.items():
+            working[path].write_bytes(content)
+        for path in files:
+            working[path].replace(path)
+    finally:
+        for left in working.values():
+            left.unlink(missing_ok=True)

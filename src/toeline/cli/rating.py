@@ -6,12 +6,12 @@ from typing import TYPE_CHECKING
 import click
 
 from toeline.cli.input_files import INPUT_FILE, is_day
+from toeline.cli.option_values import lengths
 from toeline.cli.terminal import note, page_width, show
 from toeline.errors import UsageError
 
 if TYPE_CHECKING:
     from toeline.scenario import CanalFile
-    from toeline.units import UnitSystem
 
 QUANTITIES = "LEVEL[,LEVEL...]"
 CHART_ENDINGS = (".png", ".svg", ".pdf")
@@ -111,23 +111,6 @@ def chosen_values(
     if min(chosen[2]) < 0.0:
         raise UsageError("--opening: openings count from the closed gate upward, from 0.")
     return chosen
-
-
-def lengths(option: str, text: str, system: "UnitSystem") -> list[float]:
-    """The lengths of a list such as "3.2, 3.6" or "340 ft", rising, in SI."""
-    from toeline.units import parse_quantity
-
-    try:
-        return sorted({parse_quantity(_plain_or_text(part.strip()), "length", system) for part in text.split(",")})
-    except ValueError as error:
-        raise UsageError(f"{option}: {error}") from error
-
-
-def _plain_or_text(part: str) -> float | str:
-    try:
-        return float(part)
-    except ValueError:
-        return part
 
 
 def check_gate(canal_file: "CanalFile", gate: str) -> None:

@@ -11,6 +11,7 @@ from toeline.errors import UsageError
 from toeline.network.rating import operating_range
 from toeline.report.figures.files import write_pictures
 from toeline.report.figures.operating_chart import HEADWATERS_ON_A_PAGE, pictures
+from toeline.report.figures.picture import Picture
 from toeline.results.provenance import SOURCE_PREFIX
 from toeline.units import Display
 
@@ -35,6 +36,18 @@ def write_chart(
 
     UsageError for more headwaters than one chart holds, for no opening above 0, and where a file exists.
     """
+    picture = operating_chart(canal, gate, headwaters, tailwaters, openings)
+    return write_pictures([(file.stem, picture)], file.parent, [file.suffix[1:].lower()], overwrite=overwrite)
+
+
+def operating_chart(
+    canal: "CanalFile",
+    gate: str,
+    headwaters: Sequence[float],
+    tailwaters: Sequence[float],
+    openings: Sequence[float],
+) -> Picture:
+    """The chart of a gate at its headwaters, over the range of tailwaters and openings [m]."""
     if len(headwaters) > HEADWATERS_ON_A_PAGE:
         raise UsageError(f"--chart: found {len(headwaters)} headwaters; allowed: up to {HEADWATERS_ON_A_PAGE}")
     if max(openings) <= 0.0:
@@ -47,4 +60,4 @@ def write_chart(
     chart = operating_range(canal, gate, np.asarray(headwaters), down, lift)
     chart.attrs["source"] = f"{SOURCE_PREFIX}{__version__}"
     (picture,) = pictures(chart, Display(canal.units))
-    return write_pictures([(file.stem, picture)], file.parent, [file.suffix[1:].lower()], overwrite=overwrite)
+    return picture

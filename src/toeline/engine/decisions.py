@@ -18,17 +18,15 @@ Move = Callable[[str, str, float], tuple[OrderRecord | None, bool]]
 
 @dataclass
 class RuleOfDay:
-    """A rule, the gate that it moves, and its decisions [ms] that are still to come."""
+    """A rule, the gate that it moves, its decisions [ms] that are still to come, the last first, and a label that tells
+    it from the other rules of the day and finds it again on the next.
+    """
 
     found: FoundRule
     rule: Rule
     gate: str
     times: list[int]
-
-    @property
-    def label(self) -> str:
-        """What tells it from the other rules of the day, and finds it again on the next."""
-        return f"{self.found.kind}, {self.gate}"
+    label: str
 
 
 class Decisions:
@@ -43,7 +41,8 @@ class Decisions:
         facts = facts_at_start(network, timetable.canal, present.state)
         for choice, times in zip(timetable.rules, timetable.decisions, strict=True):
             rule = choice.found.make(choice.given, facts)
-            self.rules.append(RuleOfDay(choice.found, rule, rule.gate, times.tolist()[::-1]))
+            label = self._label(f"{choice.kind}, {rule.gate}")
+            self.rules.append(RuleOfDay(choice.found, rule, rule.gate, times.tolist()[::-1], label))
 
     def act(self, time: int, move: Move) -> None:
         """Ask the rules whose decision is due at a stop [ms of the period]."""
@@ -68,6 +67,11 @@ class Decisions:
         for label, name, value in zip(end["end_rule"], end["end_rule_memory"], end["end_rule_value"], strict=True):
             if label in by_label:
                 by_label[label].memory[str(name)] = float(value)
+
+    def _label(self, name: str) -> str:
+        """The name, numbered where a rule of the same kind moves the same gate at other hours."""
+        earlier = sum(one.label.partition(" (")[0] == name for one in self.rules)
+        return f"{name} ({earlier + 1})" if earlier else name
 
     def _ask(self, one: RuleOfDay, move: Move) -> None:
         wanted = one.found.decide(one.rule, self.present)

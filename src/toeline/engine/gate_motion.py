@@ -118,7 +118,7 @@ class GateMotion:
         allowed = allowed_opening(self.gate, wanted, self.ordered, self.marks)
         refusal = self._refusal(time)
         if refusal or allowed.status == REFUSED:
-            return self._refuse(time, kind, value, _joined(refusal, allowed.reason), SCHEDULE)
+            return self._refuse(time, kind, value, refusal or allowed.reason, SCHEDULE)
         reason = _joined(note, allowed.reason, allowed.rounding)
         return self._begin(time, kind, value, allowed.opening, reason, SCHEDULE)
 
@@ -204,23 +204,16 @@ class GateMotion:
 
 def allowed_opening(gate: Gate, wanted: float, ordered: float, marks: Marks | None = None) -> Allowed:
     """The opening [m] at which a gate may be held nearest to the wanted one, `ordered` [m] being the one held now."""
-    target, reasons = wanted, []
-    if not 0.0 <= target <= gate.max_opening:
-        target = min(max(target, 0.0), gate.max_opening)
-        reasons.append(f"travel is 0 to {gate.max_opening:.3f} m")
-    reach = math.inf if gate.largest_move is None else gate.largest_move
-    if abs(target - ordered) > reach + SAME_OPENING:
-        target = ordered + math.copysign(reach, target - ordered)
-        reasons.append(f"one move is at most {reach:.3f} m")
+    target, reasons = _within_reach(gate, wanted, ordered)
     is_limited = bool(reasons)
     reasons += [
-        f"openings between {low:.3f} and {high:.3f} m are not held"
-        for low, high in gate.avoid_openings
-        if low < target < high and target > 0.0
+        f"openings between {low:.3f} and {high:.3f} m are not held" for low, high in _bands_around(gate, target)
     ]
-    can_be_held = [place for place in _places(gate, target, marks) if abs(place - ordered) <= reach + SAME_OPENING]
-    held = min(can_be_held, key=lambda place: abs(place - target), default=ordered)
-    rounding = f"rounded to {marks.name}" if marks and abs(held - target) > SAME_OPENING else ""
+    in_reach = [place for place in _places(gate, target, marks) if abs(place - ordered) <= _reach(gate) + SAME_OPENING]
+    held = min(in_reach, key=lambda place: abs(place - target), default=ordered)
+    rounding = ""
+    if marks is not None and abs(held - target) > SAME_OPENING:
+        rounding = f"rounded to {marks.name} of {marks.spacing:.3f} m"
     move = abs(held - ordered)
     is_wanted = move > 0.0 or held != wanted
     if is_wanted and move < gate.smallest_move - SAME_OPENING:
@@ -229,18 +222,38 @@ def allowed_opening(gate: Gate, wanted: float, ordered: float, marks: Marks | No
     return Allowed(held, TRIMMED if reasons or rounding else ACCEPTED, "; ".join(reasons), is_limited, rounding)
 
 
+def _reach(gate: Gate) -> float:
+    """The largest move [m]."""
+    return math.inf if gate.largest_move is None else gate.largest_move
+
+
+def _within_reach(gate: Gate, wanted: float, ordered: float) -> tuple[float, list[str]]:
+    """The wanted opening [m] cut to travel and to the largest move, and what cut it."""
+    target, reasons = wanted, []
+    if not 0.0 <= target <= gate.max_opening:
+        target = min(max(target, 0.0), gate.max_opening)
+        reasons.append(f"travel is 0 to {gate.max_opening:.3f} m")
+    reach = _reach(gate)
+    if abs(target - ordered) > reach + SAME_OPENING:
+        target = ordered + math.copysign(reach, target - ordered)
+        reasons.append(f"one move is at most {reach:.3f} m")
+    return target, reasons
+
+
+def _bands_around(gate: Gate, opening: float) -> list[tuple[float, float]]:
+    """Avoided bands inside which an opening [m] lies; closed lies in none."""
+    return [(low, high) for low, high in gate.avoid_openings if low < opening < high and opening > 0.0]
+
+
 def _places(gate: Gate, target: float, marks: Marks | None) -> Iterator[float]:
     """Openings around a target within travel that may be held: itself or the edges of its band, or the marks there."""
-    bands = [(low, high) for low, high in gate.avoid_openings if low < target < high]
-    edges = [edge for low, high in bands for edge in (high, low)] if target > 0.0 else []
-    near = [target, *edges]
+    near = [target, *(edge for low, high in _bands_around(gate, target) for edge in (high, low))]
     if marks is not None:
         step = marks.spacing
         near = [number * step for edge in near for number in _numbers_beside(edge / step)]
         near += [gate.max_opening] if abs(gate.max_opening - target) < step else []
     for place in near:
-        is_avoided = place > 0.0 and any(low < place < high for low, high in gate.avoid_openings)
-        if 0.0 <= place <= gate.max_opening and not is_avoided:
+        if 0.0 <= place <= gate.max_opening and not _bands_around(gate, place):
             yield place
 
 

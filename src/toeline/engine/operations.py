@@ -27,7 +27,10 @@ class Operations:
             self._motion(g, bay, float(opening))
             for (g, bay), opening in zip(network.places_of_leaves(), openings, strict=True)
         ]
-        self.present = PresentCanal(network, timetable, state, forcing, self.motions)
+        self.leaves = {
+            name: [self.motions[leaf] for leaf in network.leaves_of(g)] for g, name in enumerate(network.names.gates)
+        }
+        self.present = PresentCanal(network, timetable, state, forcing, self.leaves)
         self.orders = list(timetable.orders)
         self.records: list[OrderRecord] = []
 
@@ -101,7 +104,7 @@ class Operations:
     def _move(self, gate: str, kind: str, wanted: float) -> tuple[OrderRecord | None, bool]:
         """Have all leaves of a gate carry out what a rule wants."""
         done, is_limited = None, False
-        for motion in self._leaves(gate):
+        for motion in self.leaves[gate]:
             opening = motion.opening
             record, is_held_back = motion.propose(self.present.time_ms, kind, wanted)
             if record is not None:
@@ -118,11 +121,8 @@ class Operations:
         up, down = self.present.headwater_level(record.gate), self.present.tailwater_level(record.gate)
         self.unrest.note_move(record.time, g, up, down, opening, motion)
 
-    def _leaves(self, gate: str) -> list[GateMotion]:
-        return [self.motions[leaf] for leaf in self.network.leaves_of(self.network.names.gates.index(gate))]
-
     def _moved_by(self, order: Order) -> list[GateMotion]:
-        return [motion for motion in self._leaves(order.gate) if order.bay in (0, motion.bay)]
+        return [motion for motion in self.leaves[order.gate] if order.bay in (0, motion.bay)]
 
     def _wanted_opening(self, order: Order, motion: GateMotion) -> tuple[float, str]:
         """The opening [m] that an order asks of a leaf, and how it falls short of the discharge of its bay or gate."""

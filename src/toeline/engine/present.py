@@ -35,16 +35,16 @@ class PresentCanal:
     """
 
     def __init__(
-        self, network: Network, timetable: Timetable, state: State, forcing: np.recarray, motions: list[GateMotion]
-    ):
-        self.state, self.motions = state, motions
+        self, network: Network, timetable: Timetable, state: State, forcing: np.recarray,
+        leaves: dict[str, list[GateMotion]],
+    ):  # fmt: skip
+        """`leaves` are those of every gate by its name; of several the rules see the mean opening."""
+        self.state, self.leaves = state, leaves
         self._level, self._volume = state.nodes["level"], state.nodes["volume"]
         self._discharge, self._forcing = state.links["discharge"], forcing["value"]
         names, gates, shapes = network.names, network.tables.gates, network.channel.shapes
         ends = network.tables.pools
         self._gates = {name: g for g, name in enumerate(names.gates)}
-        self._leaves = [list(network.leaves_of(g)) for g in range(gates.size)]
-        self._largest = [gate.max_opening for gate in timetable.gates]
         self._ends = dict(
             zip(names.pools, zip(ends.first_node.tolist(), ends.last_node.tolist(), strict=True), strict=True)
         )
@@ -64,10 +64,12 @@ class PresentCanal:
         return float(self._forcing[FORCING_TAIL] if node >= self._node_count else self._level[node])
 
     def opening(self, gate: str) -> float:
-        return float(np.mean([self.motions[leaf].opening for leaf in self._leaves[self._gates[gate]]]))
+        leaves = self.leaves[gate]
+        return sum(leaf.opening for leaf in leaves) / len(leaves)
 
     def ordered_opening(self, gate: str) -> float:
-        return float(np.mean([self.motions[leaf].ordered for leaf in self._leaves[self._gates[gate]]]))
+        leaves = self.leaves[gate]
+        return sum(leaf.ordered for leaf in leaves) / len(leaves)
 
     def discharge(self, gate: str) -> float:
         return float(self._discharge[self._links[self._gates[gate]]])
@@ -78,8 +80,9 @@ class PresentCanal:
 
     def opening_for(self, gate: str, discharge: float) -> float:
         g = self._gates[gate]
+        largest = self.leaves[gate][0].gate.max_opening
         levels = self.headwater_level(gate), self.tailwater_level(gate)
-        return float(opening_for_discharge(*self._laws[g], *levels, discharge, self._largest[g])[0])
+        return float(opening_for_discharge(*self._laws[g], *levels, discharge, largest)[0])
 
     def head_level(self, pool: str) -> float:
         return float(self._level[self._ends[pool][0]])

@@ -15,6 +15,7 @@ from toeline.errors import RunError
 from toeline.network.initial_state import Start
 from toeline.network.tables import FORCING_GATES, Network
 from toeline.network.timetable import Timetable
+from toeline.units import UnitSystem, quantity_text
 
 BLOCK_ROWS = 720
 """Rows of output after which a block is handed on."""
@@ -143,7 +144,8 @@ class Run:
             self.operations.act(self.time)
         except RunError as error:
             self.flush()
-            raise RunError(f"{self.time / 1000.0:.0f} s after the start: {error}") from error
+            since = quantity_text(self.time / 1000.0, "duration", UnitSystem.metric)
+            raise RunError(f"{since} after the start: {error}") from error
 
     def _leg(self, until: int) -> None:
         """Advance to the next stop."""

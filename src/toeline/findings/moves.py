@@ -20,7 +20,8 @@ class GateMoves:
     """The moves of one gate over the whole run.
 
     `by_source` counts them by who gave the order; `busiest` is the greatest number that began within an hour, from
-    `busiest_from` on; `travel` [m] is the sum of all changes of opening; a reversal is a move against the one before.
+    `busiest_from` on; `travel` [m] is the sum of all changes of opening; a reversal is a move against the one before of
+    the same leaf.
     """
 
     gate: str
@@ -39,13 +40,14 @@ def gate_moves(run: xr.Dataset) -> list[GateMoves]:
     """All gates from the head down; orders that were refused or changed nothing are no moves."""
     change = (run["order_opening_after"] - run["order_opening_before"]).values.astype(float)
     is_move = ~is_any(run["order_status"], "refused") & (np.abs(change) > LEAST_MOVE)
-    times, sources, gates = (run[name].values for name in ("order_time", "order_source", "order_gate"))
-    return [_of_gate(name, times, sources, change, is_move & (gates == name)) for name in names(run["gate"])]
+    gates = run["order_gate"].values
+    return [_of_gate(name, run.isel(order=is_move & (gates == name))) for name in names(run["gate"])]
 
 
-def _of_gate(gate: str, times: np.ndarray, sources: np.ndarray, change: np.ndarray, is_move: np.ndarray) -> GateMoves:
-    began, change = times[is_move], change[is_move]
-    counted = np.unique(sources[is_move].astype(str), return_counts=True)
+def _of_gate(gate: str, moves: xr.Dataset) -> GateMoves:
+    began, bays = moves["order_time"].values, moves["order_bay"].values
+    change = (moves["order_opening_after"] - moves["order_opening_before"]).values.astype(float)
+    counted = np.unique(moves["order_source"].values.astype(str), return_counts=True)
     within = np.searchsorted(began, began + HOUR, side="left") - np.arange(began.size)
     first = int(np.argmax(within)) if began.size else 0
     return GateMoves(
@@ -54,5 +56,9 @@ def _of_gate(gate: str, times: np.ndarray, sources: np.ndarray, change: np.ndarr
         busiest=int(within[first]) if began.size else 0,
         busiest_from=began[first] if began.size else np.datetime64("NaT", "ns"),
         travel=float(np.abs(change).sum()),
-        reversals=int(np.count_nonzero(change[1:] * change[:-1] < 0.0)),
+        reversals=sum(_reversals(change[bays == bay]) for bay in np.unique(bays)),
     )
+
+
+def _reversals(change: np.ndarray) -> int:
+    return int(np.count_nonzero(change[1:] * change[:-1] < 0.0))

@@ -23,13 +23,21 @@ nearer."""
 
 @dataclass(frozen=True)
 class GateOrder:
-    """One order: `value` is in m, or m³/s where `kind` is discharge; `opening_before` [m] is that when it came."""
+    """One order: `value` is in m, or m³/s where `kind` is discharge; `opening_before` [m] is that when it came; `bay`
+    is 0 where all bays of the gate move.
+    """
 
     time: np.datetime64
     gate: str
     kind: str
     value: float
     opening_before: float
+    bay: int = 0
+
+    @property
+    def leaf(self) -> str:
+        """What is moved, in words."""
+        return f"{self.gate}, bay {self.bay}" if self.bay else self.gate
 
     @property
     def change(self) -> float:
@@ -45,7 +53,9 @@ class GateOrder:
 
 @dataclass(frozen=True)
 class OrderDifference:
-    """An order of the first run and what stands in its place in the other; None where there is none."""
+    """An order to a gate, or to one bay of it, of the first run and what stands in its place in the other; None where
+    there is none.
+    """
 
     gate: str
     first: GateOrder | None
@@ -79,11 +89,11 @@ def schedule_difference(first: xr.Dataset, other: xr.Dataset) -> ScheduleDiffere
     before, after = _orders(first), _orders(other)
     differences: list[OrderDifference] = []
     alike = 0
-    for gate in _gates(first, other):
-        paired = paired_orders(*([order for order in orders if order.gate == gate] for orders in (before, after)))
+    for leaf in _leaves([*before, *after], _gates(first, other)):
+        paired = paired_orders(*([order for order in orders if order.leaf == leaf] for orders in (before, after)))
         changed = [pair for pair in paired if not _is_alike(*pair)]
         alike += len(paired) - len(changed)
-        differences += [OrderDifference(gate, *pair) for pair in changed]
+        differences += [OrderDifference(leaf, *pair) for pair in changed]
     moves, beside_orders = _rule_moves(first, other), plan_differences(first, other)
     return ScheduleDifference(tuple(differences), alike, tuple(moves), tuple(beside_orders))
 
@@ -92,7 +102,7 @@ Pair = tuple[GateOrder | None, GateOrder | None]
 
 
 def paired_orders(first: Sequence[GateOrder], other: Sequence[GateOrder]) -> list[Pair]:
-    """Pair the orders of one gate, both in time order, so that together the pairs lie nearest.
+    """Pair the orders of one leaf, both in time order, so that together the pairs lie nearest.
 
     An order without a partner stands beside None. Pairs do not cross, and come in time order.
     """
@@ -148,13 +158,19 @@ def _orders(run: xr.Dataset) -> list[GateOrder]:
     """Orders of the schedule, without the moves that rules made."""
     kinds = meanings(run["order_kind"])
     return [
-        GateOrder(time, gate, kinds[int(kind)], float(value), float(before))
-        for time, gate, kind, value, before, source in zip(
+        GateOrder(time, gate, kinds[int(kind)], float(value), float(before), int(bay))
+        for time, gate, kind, value, before, bay, source in zip(
             run["order_time"].values, names(run["order_gate"]), run["order_kind"].values, run["order_value"].values,
-            run["order_opening_before"].values, names(run["order_source"]), strict=True,
+            run["order_opening_before"].values, run["order_bay"].values, names(run["order_source"]), strict=True,
         )
         if source == SCHEDULE
     ]  # fmt: skip
+
+
+def _leaves(orders: Sequence[GateOrder], gates: Sequence[str]) -> list[str]:
+    """What the orders move: gates from the head down, bays of a gate from the left."""
+    placed = sorted(orders, key=lambda order: (gates.index(order.gate), order.bay))
+    return list(dict.fromkeys(order.leaf for order in placed))
 
 
 def _rule_moves(first: xr.Dataset, other: xr.Dataset) -> list[RuleMoves]:

@@ -324,6 +324,7 @@ def _names(canal: Canal, lines: list[Line], canal_nodes: int) -> Names:
         smallest_move=np.array([gate.smallest_move for gate in canal.gates], float),
         turn=np.array([_or_nan(gate.turn) for gate in canal.gates], float),
         scale_mark=np.array([_or_nan(gate.scale_mark) for gate in canal.gates], float),
+        gatekeepers=tuple(gate.gatekeeper or "" for gate in canal.gates),
     )
 
 

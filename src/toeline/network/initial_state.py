@@ -149,15 +149,14 @@ class _Search:
         needs rises with the discharge at the tail, which is looked for between bounds.
         """
         below, above = (0.0, self._excess_of_nothing(supply_of, headwater_of)), (math.inf, math.inf)
-        outflow, failure = max(-below[1], 0.0), None
+        outflow, agrees, failure = max(-below[1], 0.0), DISCHARGE_AGREES, None
         for k in range(PASSES):
             try:
                 level, discharge = self._upward(outflow, headwater_of)
                 supply = supply_of(level[0])
-                excess = discharge[0] - supply
+                excess, agrees = discharge[0] - supply, DISCHARGE_AGREES * (1.0 + supply)
             except UsageError as error:
                 failure, excess = failure or error, math.inf
-            agrees = DISCHARGE_AGREES * (1.0 + outflow)
             if abs(excess) <= agrees:
                 return level, discharge
             below, above = ((outflow, excess), above) if excess < 0.0 else (below, (outflow, excess))

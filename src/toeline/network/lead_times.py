@@ -21,6 +21,9 @@ RELATIVE_CHANGE = 0.01
 LEAST_DISCHARGE = 1e-6
 """Discharge [m³/s] below which a pool has no lead time: its water stands."""
 
+LARGEST_EXPONENT = 50.0
+"""Of e, beyond which a pool is none that holds water back."""
+
 
 class Response(NamedTuple):
     """A pool's answer to a change of flow: at its lower end after a delay [s], there as a reservoir of an area [m²],
@@ -30,6 +33,9 @@ class Response(NamedTuple):
     delay: float
     area: float
     admittance: float
+
+
+NO_RESPONSE = Response(math.nan, math.nan, math.nan)
 
 
 class PoolTimes(NamedTuple):
@@ -61,21 +67,27 @@ def response(
     Fromion 2004, J. Irrig. Drain. Eng. 130(5); second-hand). Where no uniform flow is, as on a level bed, all is backed
     up. NaN where the flow is not calm or nothing flows.
     """
+    if discharge < LEAST_DISCHARGE or not _is_calm(section, discharge, depth):
+        return NO_RESPONSE
     area, width, _, _ = geometry(section, depth)
-    froude_squared = discharge * discharge * width / (GRAVITY * area**3) if area > 0.0 else math.inf
-    if froude_squared >= 1.0 or discharge < LEAST_DISCHARGE:
-        return Response(math.nan, math.nan, math.nan)
+    froude_squared = discharge * discharge * width / (GRAVITY * area**3)
     rise = (slope - friction_slope(section, roughness, discharge, depth)) / (1.0 - froude_squared)
     normal, flag = normal_depth(section, roughness, slope, discharge) if slope > 0.0 else (math.nan, status.OK)
     uniform = _uniform_length(length, depth - normal, rise) if flag == status.OK else 0.0
     backed_up = length - uniform
     middle = depth - 0.5 * rise * backed_up
-    delay = sum(
-        part / wave_speeds(section, discharge, at)[0] for part, at in ((uniform, normal), (backed_up, middle)) if part
-    )
-    lower, raised = _end_areas(section, slope, backed_up, middle, rise, discharge)
-    upper = _end_areas(section, slope, uniform, normal, 0.0, discharge)[0] if uniform else 0.0
-    return Response(delay, lower * (1.0 + upper / raised), width * wave_speeds(section, discharge, depth)[1])
+    parts = [part for part in ((uniform, normal), (backed_up, middle)) if part[0] > 0.0]
+    if not all(_is_calm(section, discharge, at) for _, at in parts):
+        return NO_RESPONSE
+    delay = sum(part / wave_speeds(section, discharge, at)[0] for part, at in parts)
+    lower, share = _end_area(section, slope, backed_up, middle, rise, discharge) if backed_up > 0.0 else (0.0, 1.0)
+    upper = _end_area(section, slope, uniform, normal, 0.0, discharge)[0] if uniform > 0.0 else 0.0
+    return Response(delay, lower + share * upper, width * wave_speeds(section, discharge, depth)[1])
+
+
+def _is_calm(section: np.ndarray, discharge: float, depth: float) -> bool:
+    area, width, _, _ = geometry(section, depth)
+    return bool(area > 0.0 and discharge * discharge * width < GRAVITY * area**3)
 
 
 def _uniform_length(length: float, excess: float, rise: float) -> float:
@@ -85,21 +97,22 @@ def _uniform_length(length: float, excess: float, rise: float) -> float:
     return max(length - excess / rise, 0.0) if rise != 0.0 else length
 
 
-def _end_areas(
+def _end_area(
     section: np.ndarray, slope: float, length: float, depth: float, rise: float, discharge: float
 ) -> tuple[float, float]:
-    """Areas [m²] with which a part of a pool answers at its lower and at its upper end."""
+    """Area [m²] with which a part of a pool answers at its lower end, and the share of that of the part above it which
+    is felt there.
+    """
     area, width, perimeter, perimeter_slope = geometry(section, depth)
-    velocity = discharge / area
-    celerity_squared = GRAVITY * area / width
-    froude_squared = velocity * velocity / celerity_squared
+    velocity_squared, celerity_squared = (discharge / area) ** 2, GRAVITY * area / width
     kappa = 7.0 / 3.0 - 4.0 * area / (3.0 * width * perimeter) * perimeter_slope
+    froude_squared = velocity_squared / celerity_squared
     gamma = GRAVITY * width * ((1.0 + kappa) * slope - (1.0 + kappa - (kappa - 2.0) * froude_squared) * rise)
-    reach = width * width * (celerity_squared - velocity * velocity)
-    if abs(gamma * length) < 1e-9 * reach:
-        return width * length, width * length
-    exponent = gamma * length / (width * (celerity_squared - velocity * velocity))
-    return reach / gamma * -math.expm1(-exponent), reach / gamma * math.expm1(exponent)
+    decay = gamma / (width * (celerity_squared - velocity_squared))
+    if abs(decay * length) < 1e-9:
+        return width * length, 1.0
+    exponent = min(-decay * length, LARGEST_EXPONENT)
+    return -width / decay * math.expm1(exponent), math.exp(exponent)
 
 
 def _times_of_pool(

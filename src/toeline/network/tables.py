@@ -219,6 +219,7 @@ class Names:
     smallest_move: np.ndarray  # (g) m
     turn: np.ndarray  # (g) m, NaN where none
     scale_mark: np.ndarray  # (g) m, NaN where none
+    gatekeepers: tuple[str, ...]  # by gate, "" where none is named
 
 
 class GaugeName(NamedTuple):

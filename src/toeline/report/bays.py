@@ -19,7 +19,13 @@ def bay_lines(gates: Sequence[UnevenBays], clock: RunClock, display: Display, wi
     if not gates:
         return
     for gate in gates:
-        difference = extreme_text(gate.difference, clock, display)
-        words = f"{difference}, bays {gate.bays[0]} and {gate.bays[1]}" if gate.difference.value else "none"
-        yield paragraph(f"{gate.gate}: greatest difference of neighbours {words}", width)
+        yield paragraph(f"{gate.gate}: {_words(gate, clock, display)}", width)
     yield paragraph(UNEVEN, width)
+
+
+def _words(gate: UnevenBays, clock: RunClock, display: Display) -> str:
+    if not gate.difference.value:
+        return "all bays alike."
+    left, right = gate.bays
+    most = extreme_text(gate.difference, clock, display)
+    return f"bays {left} and {right}, side by side, differ most: by {most}."

@@ -9,7 +9,7 @@ import numpy as np
 import xarray as xr
 
 from toeline.findings.series import Extreme
-from toeline.report.clock import clock_text, duration_text, span_text
+from toeline.report.clock import clock_text, duration_text, later, span_text
 from toeline.results.dataset import local_time
 from toeline.units import Display, UnitSystem, quantity_text
 
@@ -30,8 +30,16 @@ class RunClock:
     def end(self) -> datetime:
         return local_time(self.run, self.run["time"].values[-1])
 
+    def after(self, seconds: float) -> str:
+        """The local time so many seconds after the start."""
+        return clock_text(later(self.start, seconds), self.start)
+
     def at(self, instant: np.datetime64) -> str:
         return clock_text(local_time(self.run, instant), self.start)
+
+    def by(self, instant: np.datetime64) -> str:
+        """The first full minute that is not before the instant."""
+        return self.at(instant - np.timedelta64(1, "ms") + np.timedelta64(30, "s"))
 
     def span(self, begin: np.datetime64, end: np.datetime64) -> str:
         return span_text(local_time(self.run, begin), local_time(self.run, end), self.start)

@@ -34,6 +34,7 @@ ATTRIBUTES = {
     "units_for_display": "units in which people are shown results; the file itself is in SI units",
     "zone": "name of the time zone for people; empty where the day gives none",
     "utc_offset": "offset from UTC at the start of the period",
+    "call": "whom gatekeepers call, and how; empty where the canal file does not say",
     "outcome": f"`{COMPLETE}`, or when and why the run stopped",
     "comment": "the caution that goes with all results",
 }
@@ -79,6 +80,7 @@ def run_attributes(
     start: datetime,
     version: str,
     created: datetime,
+    call: str | None = None,
 ) -> dict[str, str]:
     """Global attributes of a run, but for its outcome, which the sink writes.
 
@@ -104,6 +106,7 @@ def run_attributes(
         "units_for_display": units_for_display,
         "zone": zone or "",
         "utc_offset": _offset(start),
+        "call": call or "",
         "comment": CAUTION,
     }
 

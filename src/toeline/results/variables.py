@@ -248,6 +248,7 @@ _GATE_FACTS = (
     Variable("gate_apron_end", ("gate",), "m", "distance of the end of the apron from the gate", dtype="f8"),
     Variable("gate_protection_end", ("gate",), "m", "distance of the end of the protected floor from the gate",
              "where the last protected surface without a gap ends", dtype="f8"),
+    _text("gate_gatekeeper", ("gate",), "who works the gate", "empty where the canal file names nobody"),
     _text("gate_upstream_pool", ("gate",), "pool above the gate", "head: the source"),
     _text("gate_downstream_pool", ("gate",), "pool below the gate", "tail: beyond the last pool"),
 )

@@ -16,7 +16,7 @@ class FeedbackRule(Rule):
 
     def __init__(self, given: SimpleNamespace, canal: CanalFacts):
         super().__init__(given, canal)
-        self.feedback = Feedback(self.memory, given.band, given.every)
+        self.feedback = Feedback(self.memory, given.band or 0.0, given.every)
         self.ahead = given.feedforward and Feedforward(self.memory, self.gate, given.feedforward, canal)
         self.is_saturated = False
 

@@ -11,6 +11,9 @@ from toeline.rules.setting import EVERY, FEEDFORWARD, HOURS, Setting, duration, 
 
 UPPER, LOWER = "upper gate", "lower gate"
 
+USUAL_BAND = 0.01
+"""Dead band in shares of the target where none is given (choice)."""
+
 
 class HoldVolume(FeedbackRule):
     """Moves the upper or the lower gate of a pool so that the pool keeps its volume; its surface then turns about a
@@ -25,8 +28,8 @@ class HoldVolume(FeedbackRule):
             "volume", "Volume to hold. Left out: that of the first decision.", least=0.0, most=1e9, default=None
         ),
         "band": number(
-            "volume", "Dead band: the gate is left alone while the volume is no further from the target.", least=0.0,
-            most=1e8, default=100.0,
+            "volume", "Dead band: the gate is left alone while the volume is no further from the target. Left out: 1 % "
+            "of the target.", least=0.0, most=1e8, default=None,
         ),
         "every": EVERY,
         "hours": HOURS,
@@ -53,6 +56,8 @@ class HoldVolume(FeedbackRule):
     def error(self, now: Present) -> float:
         volume = now.volume(self.given.pool)
         target = self.memory.setdefault("target", volume) if self.given.target is None else self._target(now)
+        if self.given.band is None:
+            self.feedback.band = USUAL_BAND * target
         return target - volume if self.given.by == UPPER else volume - target
 
     @property

@@ -2,8 +2,9 @@
 
 import numpy as np
 import pytest
-
+from matplotlib.axes import Axes
 from tests.report.figures.drawn import areas, line, minutes, panel, texts
+
 from toeline.report.figures.jump_strip import pictures
 from toeline.report.style import JUMP_STATES, SETTLING
 from toeline.units import Display, UnitSystem
@@ -33,6 +34,11 @@ def strip(swept_hour, metric):
     return picture
 
 
+def bands(axes: Axes, label: str) -> list[tuple[float, float, float, float]]:
+    """The pieces of a jump in its place; the strip of states lies below the panel."""
+    return [piece for piece in areas(axes, label) if piece[2] >= 0.0]
+
+
 def test_every_gate_has_a_panel_with_both_hazards_side_by_side(strip):
     assert "floor: jump beyond protection 1 h   |   people: drowned roller 3 h" in texts(strip.figure)
     assert "floor: jump beyond protection 0 min   |   people: drowned roller 4 h" in texts(strip.figure)
@@ -41,11 +47,11 @@ def test_every_gate_has_a_panel_with_both_hazards_side_by_side(strip):
 
 def test_a_jump_is_a_band_from_toe_to_end_while_its_state_lasts(strip):
     axes = panel(strip.figure, "Middle check")
-    (beyond,) = areas(axes, JUMP_STATES["beyond_protection"].word)
+    (beyond,) = bands(axes, JUMP_STATES["beyond_protection"].word)
     left, right, bottom, top = beyond
     assert (minutes(axes, left), minutes(axes, right)) == (70.0, 130.0)
     assert (top, bottom) == (pytest.approx(41.2), 0.0)  # the row that ends the spell closes the band
-    assert len(list(areas(axes, JUMP_STATES["drowned"].word))) == 2
+    assert len(bands(axes, JUMP_STATES["drowned"].word)) == 2
 
 
 def test_a_short_spell_beyond_the_floor_says_how_far_and_when(strip):
@@ -71,7 +77,7 @@ def test_a_swept_out_jump_fills_the_height_though_it_has_no_place(invented_run, 
     run = invented_run(jump_state=by_gate(1, 5, slice(14, 26)), jump_end_distance=nowhere, **FLOOR)
     (picture,) = pictures(run, metric)
     axes = panel(picture.figure, "Middle check")
-    (swept,) = areas(axes, JUMP_STATES["swept_out_of_pool"].word)
+    (swept,) = bands(axes, JUMP_STATES["swept_out_of_pool"].word)
     assert swept[2:] == axes.get_ylim()
 
 
@@ -95,10 +101,19 @@ def test_feet_are_drawn_and_told_where_feet_are_asked_for(swept_hour):
 def test_a_run_of_one_step_fills_its_panel(swept_hour, metric):
     (picture,) = pictures(swept_hour.isel(time=slice(0, 1)), metric)
     axes = panel(picture.figure, "Middle check")
-    (roller,) = areas(axes, JUMP_STATES["drowned"].word)
+    (roller,) = bands(axes, JUMP_STATES["drowned"].word)
     assert roller[:2] == axes.get_xlim()
 
 
 def test_missing_places_draw_nothing(invented_run, metric):
     (picture,) = pictures(invented_run(jump_end_distance=np.full((49, 2), np.nan), **FLOOR), metric)
-    assert list(areas(panel(picture.figure, "Middle check"), JUMP_STATES["drowned"].word)) == []
+    axes = panel(picture.figure, "Middle check")
+    assert bands(axes, JUMP_STATES["drowned"].word) == []
+
+
+def test_a_roller_without_a_known_length_is_told_by_the_strip_of_states(invented_run, metric):
+    (picture,) = pictures(invented_run(jump_end_distance=np.full((49, 2), np.nan), **FLOOR), metric)
+    axes = panel(picture.figure, "Middle check")
+    (strip,) = areas(axes, JUMP_STATES["drowned"].word)
+    assert (minutes(axes, strip[0]), minutes(axes, strip[1])) == (0.0, 240.0)
+    assert strip[3] < 0.0

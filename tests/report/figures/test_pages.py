@@ -3,8 +3,8 @@
 import numpy as np
 import pytest
 import xarray as xr
-
 from tests.report.figures.drawn import texts
+
 from toeline.report.figures.catalogue import FIGURES, run_pictures
 from toeline.report.figures.picture import page_name, pages
 from toeline.report.figures.sheet import CAUTION
@@ -70,19 +70,18 @@ def test_odd_runs_can_be_drawn(name, odd, invented_run, metric):
     assert all(picture.figure.axes for picture in drawn)
 
 
+def forty_gates(run: xr.Dataset) -> xr.Dataset:
+    """The gates, pools and offtakes of a run over and over again, 25 m apart, with four nodes each."""
+    again = {"gate": np.arange(40) % 2, "pool": np.arange(40) % 2, "offtake": np.zeros(40, int)}
+    many = run.isel(again | {"node": np.arange(160) % 4})
+    many = many.assign_coords({what: [f"{what} {k}" for k in range(40)] for what in again})
+    places = {"gate_chainage": ("gate", np.arange(40) * 25.0), "chainage": ("node", np.arange(160) * 6.25)}
+    return many.assign(places)
+
+
 @EVERY_FIGURE
 def test_forty_gates_go_over_several_pages_and_each_stands_on_one(name, invented_run, metric):
-    run = invented_run()
-    places = {
-        "gate": np.arange(40) % 2,
-        "pool": np.arange(40) % 2,
-        "offtake": np.zeros(40, int),
-        "node": np.arange(160) % 4,
-    }
-    many = run.isel(places)
-    many = many.assign(chainage=("node", np.linspace(0.0, 1000.0, many.sizes["node"])))
-    many = many.assign_coords({what: [f"{what} {k}" for k in range(40)] for what in places})
-    drawn = list(run_pictures(many.assign(gate_chainage=("gate", np.arange(40) * 25.0)), metric, [name]))
+    drawn = list(run_pictures(forty_gates(invented_run()), metric, [name]))
     assert len(drawn) > 1
     assert [picture.name for picture in drawn] == [f"{name}.{page + 1}" for page in range(len(drawn))]
     assert all(picture.figure.get_size_inches()[1] < 14.0 for picture in drawn)
@@ -90,7 +89,7 @@ def test_forty_gates_go_over_several_pages_and_each_stands_on_one(name, invented
 
 def test_pages_are_as_even_as_they_can_be():
     assert [len(page) for page in pages(range(13), 6)] == [5, 4, 4]
-    assert sum(pages(range(13), 6), []) == list(range(13))
+    assert [place for page in pages(range(13), 6) for place in page] == list(range(13))
     assert pages(range(0), 6) == [[]]
 
 

@@ -13,7 +13,7 @@ from toeline.report.figures.sheet import in_house_style
 
 FORMATS = ("png", "svg", "pdf")
 DOTS_PER_INCH = 150
-_REPEATABLE = matplotlib.rc_context({"svg.hashsalt": "toeline", "pdf.fonttype": 42, "savefig.dpi": DOTS_PER_INCH})
+_REPEATABLE = matplotlib.rc_context({"svg.hashsalt": "toeline", "pdf.fonttype": 42})
 
 
 def write_pictures(
@@ -55,11 +55,11 @@ def _write_one(name: str, picture: Picture, folder: Path, formats: Sequence[str]
 
 @_REPEATABLE
 @in_house_style
-def save(picture: Picture, path: Path) -> None:
+def save(picture: Picture, path: Path, dots_per_inch: int = DOTS_PER_INCH) -> None:
     """Draw a picture into a file; its words go along where the format has a place for them."""
     metadata: dict[str, dict[str, Any]] = {
         ".png": {"Software": None, "Description": picture.words},
         ".svg": {"Date": None, "Creator": None, "Description": picture.words},
         ".pdf": {"CreationDate": None, "ModDate": None, "Creator": None, "Producer": None, "Subject": picture.words},
     }
-    picture.figure.savefig(path, metadata=metadata[path.suffix.lower()])
+    picture.figure.savefig(path, dpi=dots_per_inch, metadata=metadata[path.suffix.lower()])

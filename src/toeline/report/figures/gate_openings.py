@@ -1,27 +1,26 @@
 """Gate openings through the run, with the orders that moved them, and below each how the water went through."""
 
 from collections.abc import Iterator
-from typing import Any
 
 import numpy as np
 import xarray as xr
 from matplotlib.axes import Axes
-from matplotlib.patches import Rectangle
 
 from toeline.findings.limits import avoided_openings
 from toeline.findings.moves import SCHEDULE
 from toeline.findings.series import is_any, meanings_seen, names
-from toeline.report.figures.draw import Drawn, area_look, draw_line, key, margin_note, mark_look, panel_title, words_of
+from toeline.report.figures.draw import Drawn, area_look, draw_line, key, mark_look, panel_title, words_of
 from toeline.report.figures.gate_moves import orders_of
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.sheet import Sheet, about_run, in_house_style
+from toeline.report.figures.state_strip import state_strip
 from toeline.report.figures.time_axis import TimeAxis, positions
 from toeline.report.layout import counted
 from toeline.report.number_table import NumberTable, flag_column, quantity_column, text_column, time_column
 from toeline.report.run_identity import run_identity
 from toeline.report.style import (
     AVOIDED,
-    FAINT_INK,
+    BAY_OPENING,
     FLOW_STATES,
     JUMP_STATES,
     OPENING,
@@ -43,7 +42,6 @@ PITCH, HEIGHT = 1.5, 0.85
 STRIP = 0.13
 STRIPS = ((-0.20, "flow", "gate_flow_state", FLOW_STATES), (-0.36, "jump", "jump_state", JUMP_STATES))
 """Strips below each panel, in shares of its height."""
-FRAME: dict[str, Any] = {"edgecolor": FAINT_INK, "linewidth": 0.5}
 
 
 def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
@@ -57,7 +55,9 @@ def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
 def _page(run: xr.Dataset, display: Display, name: str) -> Picture:
     gates = names(run["gate"])
     avoided = avoided_openings(run)
-    shown: list[Drawn] = [OPENING, *_marks_seen(run), *([AVOIDED] if avoided else []), *_areas_seen(run)]
+    apart = np.isin(run["bay_gate"].values, gates).any()
+    lines = [OPENING, BAY_OPENING] if apart else [OPENING]
+    shown: list[Drawn] = [*lines, *_marks_seen(run), *([AVOIDED] if avoided else []), *_areas_seen(run)]
     sheet = Sheet(
         "Gate openings, orders and flow",
         about_run(run_identity(run)),
@@ -78,19 +78,30 @@ def _page(run: xr.Dataset, display: Display, name: str) -> Picture:
 def _panel(axes: Axes, run: xr.Dataset, avoided: Bands, time: TimeAxis, display: Display) -> None:
     gate, opening = str(run["gate"].values), run["gate_opening"].values
     factor = shown_factor("length", display)
+    bays = bays_of(run, gate)
+    for bay in bays.T:
+        draw_line(axes, BAY_OPENING, time.steps, bay / factor)
     draw_line(axes, OPENING, time.steps, opening / factor)
     orders = orders_of(run, gate)
     for mark, of_mark in marked_orders(orders).items():
         _order_marks(axes, of_mark, mark, factor)
     for low, high in avoided:
         axes.axhspan(low / factor, high / factor, label=AVOIDED.word, **area_look(AVOIDED))
-    axes.set_ylim(*_range(opening, float(run["gate_max_opening"]), factor))
+    axes.set_ylim(*_range(np.column_stack((opening, bays)), float(run["gate_max_opening"]), factor))
     for bottom, name, variable, areas in STRIPS:
-        for state in meanings_seen(run[variable]):
-            time.strip(axes, is_any(run[variable], state), areas[state], bottom, STRIP, above=True)
-        axes.add_patch(Rectangle((0, bottom), 1, STRIP, transform=axes.transAxes, clip_on=False, fill=False, **FRAME))
-        margin_note(axes, bottom + STRIP / 2, name, in_axes=True)
+        state_strip(axes, time, run[variable], areas, name, bottom, STRIP)
     panel_title(axes, gate, _told(opening, orders.sizes["order"], display))
+
+
+def bays_of(run: xr.Dataset, gate: str) -> np.ndarray:
+    """Openings [m] of the bays of a gate that move apart, along time and bay; no column for other gates."""
+    openings: np.ndarray = run["bay_opening"].values[:, run["bay_gate"].values == gate]
+    return openings
+
+
+def _bay_names(run: xr.Dataset, gate: str) -> list[str]:
+    labels: list[str] = run["bay"].values[run["bay_gate"].values == gate].tolist()
+    return labels
 
 
 def marked_orders(orders: xr.Dataset) -> dict[Mark, xr.Dataset]:
@@ -150,6 +161,10 @@ def table(run: xr.Dataset, display: Display) -> NumberTable:
         here = run.isel(gate=row)
         columns += [
             quantity_column(f"{gate}: opening", here["gate_opening"].values, "length", display),
+            *(
+                quantity_column(f"{bay}: opening", openings, "length", display)
+                for bay, openings in zip(_bay_names(run, gate), bays_of(run, gate).T, strict=True)
+            ),
             quantity_column(f"{gate}: discharge", here["gate_discharge"].values, "discharge", display),
             flag_column(f"{gate}: flow", here["gate_flow_state"]),
             flag_column(f"{gate}: jump", here["jump_state"]),

@@ -14,6 +14,7 @@ from toeline.report.figures.draw import Drawn, area_look, draw_level, draw_line,
 from toeline.report.figures.gate_moves import MOVE, move_marks
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.sheet import SMALL_SIZE, Sheet, about_run, in_house_style
+from toeline.report.figures.state_strip import state_strip
 from toeline.report.figures.time_axis import TimeAxis, positions
 from toeline.report.number_table import Column, NumberTable, flag_column, quantity_column, text_column, time_column
 from toeline.report.run_clock import RunClock
@@ -34,7 +35,9 @@ from toeline.units import Display
 
 NAME = "jump_strip"
 GATES_ON_A_PAGE = 6
-PITCH, HEIGHT = 1.5, 1.05
+PITCH, HEIGHT, RISE = 1.67, 1.05, -0.17
+STATE_BOTTOM, STATE_HEIGHT = -0.16, 0.1
+"""The strip that tells the state also where the jump has no place, in shares of the height of a panel."""
 FURTHEST = 2.5
 """How far a panel reaches at most, in lengths of the protected floor."""
 
@@ -53,13 +56,14 @@ def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
 
 @in_house_style
 def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) -> Picture:
-    states = [JUMP_STATES[state] for state in _states_seen(run) if state != "none"]
+    states = [JUMP_STATES[state] for state in _states_seen(run)]
     shown: list[Drawn] = [*states, *FLOORS, APRON_END, PROTECTION_END, SETTLING, MOVE]
     sheet = Sheet(
         "Where the jump stood", about_run(run_identity(run)), PITCH * max(len(jumps), 1) + 0.1, words_of(shown)
     )
     time, settling = TimeAxis(run), gates_settling(run)
-    for row, axes in enumerate(time.rows(sheet, len(jumps), PITCH, HEIGHT)):
+    for row, axes in enumerate(time.rows(sheet, len(jumps), PITCH, HEIGHT, first=RISE)):
+        axes.tick_params(axis="x", pad=18 if row == len(jumps) - 1 else 3, length=0)
         _panel(axes, run.isel(gate=row), jumps[row], settling[:, row], time, display)
     sheet.side_title(axis_text("distance below the gate", "length", display))
     sheet.legend([key(thing) for thing in shown])
@@ -82,6 +86,7 @@ def _panel(
     draw_line(axes, Line("toe of the jump", INK, 0.7), time.steps, toe)
     draw_line(axes, Line("end of the jump", INK, 1.1), time.steps, np.minimum(end, top))
     time.strip(axes, settling, SETTLING, 1.02, 0.09, above=True)
+    state_strip(axes, time, run["jump_state"], JUMP_STATES, "state", STATE_BOTTOM, STATE_HEIGHT)
     move_marks(axes, run)
     if jumps.beyond_protection_hours:
         _furthest_mark(axes, jumps, RunClock(run), display, top)

@@ -15,6 +15,7 @@ from toeline.report.figures.sheet import SMALL_SIZE, Panel, Sheet, about_run, in
 from toeline.report.number_table import NumberTable, quantity_column, text_column
 from toeline.report.run_identity import run_identity
 from toeline.report.style import CAME_IN, INK, KEPT, WENT_OUT, Area, axis_text, shown_factor, unit_text
+from toeline.report.water import ENTRIES
 from toeline.units import Display, UnitSystem
 
 NAME = "ledger"
@@ -36,12 +37,14 @@ class Entry:
 
 def entries(run: xr.Dataset) -> list[Entry]:
     """All lines of the ledger, in its order; their sum is the residual."""
-    volumes = ledger(run)
+    account, pools = ledger(run).canal, ledger(run).pools
     return [
-        Entry("taken in at the head", volumes.inflow, CAME_IN),
-        *(Entry(f"delivered, {offtake}", -volume, WENT_OUT) for offtake, volume in volumes.deliveries.items()),
-        Entry("let out at the tail", -volumes.outflow, WENT_OUT),
-        *(Entry(f"kept in {pool}", -change, KEPT) for pool, change in volumes.storage_changes.items()),
+        Entry("taken in at the head", account.inflow, CAME_IN),
+        *(Entry(f"delivered, {offtake}", -volume, WENT_OUT) for offtake, volume in account.deliveries.items()),
+        *(Entry(f"spilled, {escape}", -volume, WENT_OUT) for escape, volume in account.escapes.items()),
+        *(Entry(f"lost in {pool}", -of_pool.losses, WENT_OUT) for pool, of_pool in pools.items() if of_pool.losses),
+        Entry("let out at the tail", -account.outflow, WENT_OUT),
+        *(Entry(f"kept in {pool}", -of_pool.storage_change, KEPT) for pool, of_pool in pools.items()),
     ]
 
 
@@ -61,10 +64,12 @@ def _page(run: xr.Dataset, listed: list[Entry], before: list[float], display: Di
     axes = sheet.axes(Panel(0.25, PITCH * (len(listed) + 1), LABELS, 1.0 - LABELS))
     _steps(axes, listed, before, display)
     axes.set_xlabel(axis_text("volume", "volume", display))
-    residual = ledger(run).residual / shown_factor("volume", display)
+    residual = ledger(run).canal.residual / shown_factor("volume", display)
     panel_title(axes, "", f"residual {residual:.1g} {unit_text('volume', display)}: whether the computing lost water")
     sheet.legend([key(area) for area in AREAS])
-    return Picture(name, sheet.figure, {"": table(run, display)}, words(run, display))
+    return Picture(
+        name, sheet.figure, {"": table(run, display), "pools": pools_table(run, display)}, words(run, display)
+    )
 
 
 def _steps(axes: Axes, listed: list[Entry], before: list[float], display: Display) -> None:
@@ -99,14 +104,24 @@ def _signed(volume: float, display: Display) -> str:
 def words(run: xr.Dataset, display: Display) -> str:
     """All lines of the ledger with their volumes."""
     told = "; ".join(f"{entry.name} {_signed(entry.volume, display)}" for entry in entries(run))
-    return f"Water ledger of the run. {told}; residual {display.volume(ledger(run).residual)}."
+    return f"Water ledger of the run. {told}; residual {display.volume(ledger(run).canal.residual)}."
 
 
 def table(run: xr.Dataset, display: Display) -> NumberTable:
     """The lines of the ledger and the residual; what comes in is positive."""
     listed = entries(run)
-    volumes = [entry.volume for entry in listed] + [ledger(run).residual]
+    volumes = [entry.volume for entry in listed] + [ledger(run).canal.residual]
     return NumberTable((
         text_column("entry", [*(entry.name for entry in listed), "residual"]),
         quantity_column("volume", np.array(volumes), "volume", display),
     ))  # fmt: skip
+
+
+def pools_table(run: xr.Dataset, display: Display) -> NumberTable:
+    """The account of every pool and of the canal: what came in, where it went, what was kept, what is unexplained."""
+    volumes = ledger(run)
+    accounts = {**volumes.pools, "canal": volumes.canal}
+    columns = {name: [entry(account) for account in accounts.values()] for name, entry in ENTRIES.items()}
+    columns["residual"] = [account.residual for account in accounts.values()]
+    numbers = (quantity_column(name, np.array(column), "volume", display) for name, column in columns.items())
+    return NumberTable((text_column("pool", list(accounts)), *numbers))

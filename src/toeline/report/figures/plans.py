@@ -1,4 +1,4 @@
-"""Plans of one day side by side: both hazards, least margins, levels, and the gate at which the plans differ most."""
+"""Plans of one day side by side: both hazards, least margins, levels, and the gate with the least margin of all."""
 
 from collections.abc import Callable, Iterator, Sequence
 from dataclasses import replace

@@ -15,6 +15,7 @@ from toeline.scenario.schema.pools import Pool
 from toeline.scenario.schema.roughness import RoughnessEntry
 from toeline.scenario.schema.sections import Section, Surface
 from toeline.scenario.schema.table import Name, Table
+from toeline.scenario.schema.value_kinds import Text
 from toeline.units import UnitSystem
 
 
@@ -37,3 +38,6 @@ class Canal(Table):
     head: Head = Field(description="The upper end of the canal.")
     tail: Tail = Field(description="The lower end of the canal.")
     limits: list[Limit] = Field([], description="What is not to be passed; none is built in.")
+    call: Annotated[str, Text("text of one line", longest=200)] | None = Field(
+        None, description="Whom gatekeepers call, and how, for order sheets. Left out: a blank to fill in by hand."
+    )

@@ -61,6 +61,9 @@ class Gate(Table):
     )
     turn: Size | None = Field(None, description="Change of opening for one turn of the handwheel.")
     scale_mark: Size | None = Field(None, description="Spacing of the marks on the scale of the opening.")
+    gatekeeper: Name | None = Field(
+        None, description="Who works the gate: a person, a post or a beat. Order sheets are made for each."
+    )
     leaf_weir_coefficient: Annotated[float, Quantity("weir coefficient", above=0.0, most=3.0)] = Field(
         1.7, description="Coefficient C of the flow C·b·h^1.5 over the leaf."
     )

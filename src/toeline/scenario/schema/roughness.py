@@ -1,5 +1,6 @@
 """The roughness calendar of a canal file: by how much weeds and silt raise Manning's n through the year."""
 
+import re
 from collections.abc import Iterable
 from dataclasses import dataclass
 from datetime import date
@@ -12,6 +13,11 @@ from toeline.scenario.schema.table import Table
 from toeline.scenario.schema.value_kinds import Quantity, Text, ValueKind
 
 ALL = "all"
+COMMON_YEAR = 2001
+"""A year without 29 February, which does not come every year."""
+
+_CALENDAR_DAY = re.compile(r"(?:(\d{4})-)?(\d{2})-(\d{2})")
+_POOL_NAME = Text()
 
 
 @dataclass(frozen=True, order=True)
@@ -36,19 +42,15 @@ class CalendarDayKind(ValueKind):
     """A date, or month and day of every year."""
 
     def read(self, value: Any, info: ValidationInfo) -> CalendarDay:
-        found = value if type(value) is date else self._from_text(value) if isinstance(value, str) else None
-        if found is None or (isinstance(value, str) and len(value) == 5 and (found.month, found.day) == (2, 29)):
-            raise ValueError(f"found {shown(value)}; allowed: {self.describe()}")
-        is_yearly = isinstance(value, str) and len(value) == 5
-        return CalendarDay(found.month, found.day, None if is_yearly else found.year)
-
-    @staticmethod
-    def _from_text(text: str) -> date | None:
-        """Read "06-01" in a leap year, for its month and day alone, or "2031-06-01"."""
+        if type(value) is date:
+            return CalendarDay(value.month, value.day, value.year)
+        match = _CALENDAR_DAY.fullmatch(value) if isinstance(value, str) else None
         try:
-            return date.fromisoformat(f"2000-{text}" if len(text) == 5 else text)
+            year, month, day = (int(part or 0) for part in match.groups()) if match else (0, 0, 0)
+            date(year or COMMON_YEAR, month, day)
         except ValueError:
-            return None
+            raise ValueError(f"found {shown(value)}; allowed: {self.describe()}") from None
+        return CalendarDay(month, day, year or None)
 
     def describe(self) -> str:
         return 'day of every year such as "06-01" (month-day, not "02-29"), or a date such as 2031-06-01'
@@ -61,27 +63,27 @@ class CalendarDayKind(ValueKind):
 class PoolsKind(ValueKind):
     """All pools, or some by name."""
 
-    name: Text = Text()  # noqa: RUF009
-
     def read(self, value: Any, info: ValidationInfo) -> tuple[str, ...] | None:
         if value == ALL:
             return None
         if not isinstance(value, list) or not value:
             raise ValueError(f"found {shown(value)}; allowed: {self.describe()}")
-        return tuple(self.name.read(item, info) for item in value)
+        return tuple(_POOL_NAME.read(item, info) for item in value)
 
     def describe(self) -> str:
         return f'"{ALL}", or an array of names of pools'
 
     def json_schema(self) -> dict[str, Any]:
-        return {"anyOf": [{"const": ALL}, {"type": "array", "items": self.name.json_schema(), "minItems": 1}]}
+        return {"anyOf": [{"const": ALL}, {"type": "array", "items": _POOL_NAME.json_schema(), "minItems": 1}]}
 
 
 class RoughnessEntry(Table):
     """From a day on, Manning's n of the pools is that of their sections times a factor; before the first day, 1."""
 
     day: Annotated[CalendarDay, CalendarDayKind()] = Field(
-        alias="from", description="The day from whose midnight (by the clock of the day file) on the factor holds."
+        alias="from",
+        description="The day from whose midnight (by the clock of the day file) on the factor holds. Days of every "
+        "year come round: the last one holds over New Year, a single one always.",
     )
     pools: Annotated[tuple[str, ...] | None, PoolsKind()] = Field(
         None, description='Names of the pools. Left out, or "all": every pool.'

@@ -1,5 +1,6 @@
 """Rules of a plan: every rule declares its settings plainly, and here they become a table like any other."""
 
+import re
 from dataclasses import dataclass
 from datetime import time
 from functools import cache
@@ -21,6 +22,7 @@ from toeline.scenario.schema.value_kinds import Duration, Quantity, ValueKind
 from toeline.units import UnitSystem, quantity_text
 
 KINDS_OF_LEAD = ("wave", "volume")
+_CLOCK_TIME = re.compile(r"(\d{1,2}):(\d{2})(?::(\d{2}))?")
 _LONGEST_LEAD = Duration("0 s", "10 d")
 
 
@@ -70,15 +72,14 @@ class TimesOfDay(ValueKind):
 
 
 def _time_of_day(value: Any) -> time:
-    moment = value
-    if isinstance(value, str):
-        try:
-            moment = time.fromisoformat(value)
-        except ValueError:
-            moment = None
-    if not isinstance(moment, time) or moment.tzinfo is not None:
+    """Read "00:00" to "24:00", which is midnight again."""
+    if isinstance(value, time):
+        return value.replace(microsecond=0)
+    match = _CLOCK_TIME.fullmatch(value) if isinstance(value, str) else None
+    hour, minute, second = (int(part or 0) for part in match.groups()) if match else (25, 0, 0)
+    if (hour, minute, second) > (24, 0, 0) or max(minute, second) > 59:
         raise ValueError(f'found {shown(value)}; allowed: a time of day such as "06:30"')
-    return moment.replace(microsecond=0)
+    return time(hour % 24, minute, second)
 
 
 @dataclass(frozen=True)
