@@ -6,7 +6,6 @@ from pathlib import Path
 import click
 
 from toeline.cli.input_files import INPUT_FILE, is_run
-from toeline.cli.terminal import note
 from toeline.errors import UsageError
 
 
@@ -27,7 +26,7 @@ def command(runs: tuple[Path, ...], output: Path | None, overwrite: bool) -> Non
     any browser opens it, without a network.
     """
     from toeline.cli.compare import run_names
-    from toeline.cli.output_files import refuse_page, write_page
+    from toeline.cli.output_files import refuse_page, show_or_write
     from toeline.report.page.document import report_page
     from toeline.results.dataset import open_run
 
@@ -40,5 +39,4 @@ def command(runs: tuple[Path, ...], output: Path | None, overwrite: bool) -> Non
         opened = [stack.enter_context(open_run(run)) for run in runs]
         names = run_names([(file, run.attrs["plan"]) for file, run in zip(runs, opened, strict=True)])
         text = report_page(dict(zip(names, opened, strict=True)))
-    write_page(page, text)
-    note(f"Written: {page}")
+    show_or_write(text, page)
