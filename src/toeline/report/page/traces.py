@@ -94,7 +94,7 @@ def _over_time(height: int, times: Range1d, values: Range1d, label: str, name: s
         height, "width", x_range=times, y_range=values, x_axis_type="datetime", y_axis_label=label, name=name
     )
     drawn.xaxis.formatter = DatetimeTickFormatter(
-        minutes="%H:%M", hourmin="%H:%M", hours="%H:%M", days="%a %d %b", months="%b %Y", strip_leading_zeros=False
+        minutes="%H:%M", hourmin="%H:%M", hours="%H:%M", days="%d %b", months="%b %Y", strip_leading_zeros=False
     )
     return drawn
 

@@ -9,7 +9,7 @@ function toeline(page) {
   const slider = at("moment"), play = at("play"), clock = at("clock"), gateChoice = at("gate"), along = at("along");
   const calm = window.matchMedia("(prefers-reduced-motion: reduce)");
   const state = { moment: 0, gate: 0, timer: null };
-  const wholeCanal = [profile.figure.x_range.start, profile.figure.x_range.end];
+  const { start: canalStart, end: canalEnd } = profile.figure.x_range;
   const allLevels = [profile.figure.y_range.start, profile.figure.y_range.end];
 
   /* Figures out of sight wait until they are scrolled to: only what is seen is drawn at every moment. */
@@ -349,6 +349,19 @@ function toeline(page) {
     write(table, ["time", ...NOW.slice(1)], moments.labels.map((label, moment) => [label, ...nowCells(readings(run, run.rows[moment], state.gate))]), 3);
   }
 
+  /* The whole canal, with room for the name of its last gate. */
+  function wholeCanal() {
+    const width = Math.max(profile.figure.inner_width || 1000, 200), last = canal.chainage[gates - 1];
+    return [canalStart, Math.max(canalEnd, last + (last - canalStart) * 60 / (width - 60))];
+  }
+
+  /* As many times on an axis as find room; names and ranges follow the width as well. */
+  function fitWidth() {
+    for (const figure of page.time_figures) figure.below[0].ticker.desired_num_ticks = Math.max(2, Math.floor((figure.inner_width || 1000) / 120));
+    if (along.value === "all") lookAlong();
+    nameGates();
+  }
+
   /* Names that find room beside one another; that of the chosen gate always. */
   function nameGates() {
     const columns = profile.gates[0].data, range = profile.figure.x_range;
@@ -366,7 +379,7 @@ function toeline(page) {
     const { x_range: range, y_range: levels } = profile.figure;
     const near = along.value === "gate", chainage = canal.chainage[state.gate], { start: low, end: high } = axes.close_up_levels;
     const reach = 3 * Math.max(canal.protection_end[state.gate] || 0, 30);
-    [range.start, range.end] = near ? [chainage - reach, chainage + 2 * reach] : wholeCanal;
+    [range.start, range.end] = near ? [chainage - reach, chainage + 2 * reach] : wholeCanal();
     [levels.start, levels.end] = near ? [low, high + 0.3 * (high - low)] : allLevels;
   }
 
@@ -418,7 +431,7 @@ function toeline(page) {
   });
 
   profile.figure.x_range.change.connect(nameGates);
-  profile.figure.properties.inner_width.change.connect(nameGates);
+  profile.figure.properties.inner_width.change.connect(fitWidth);
 
   /* A printer gets pictures of the figures as they stand: figures themselves do not follow the width of the sheet. */
   window.addEventListener("beforeprint", () => {
@@ -434,7 +447,8 @@ function toeline(page) {
     });
   });
 
-  showGate(gates > 1 ? firstToLookAt() : 0);
+  showGate(firstToLookAt());
+  fitWidth();
   document.querySelectorAll(".plot").forEach((plot) => observer.observe(plot));
   document.documentElement.dataset.ready = "yes";
 
