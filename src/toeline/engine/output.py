@@ -44,6 +44,7 @@ class Watch(NamedTuple):
     level: np.ndarray  # (all channel nodes) m, scratch
     discharge: np.ndarray  # (n + 1) m³/s, scratch
     jet: np.ndarray  # (2, JET_POINTS) chainages and depths, scratch
+    free_jets: np.recarray  # (g) of FREE_JET
 
 
 @inner_kernel
@@ -100,7 +101,10 @@ def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at,
             gate, out, guard = tables.gates[link.gate], rows.gates[row, link.gate], watch.gates[link.gate]
             up, down = gate_levels(gate, watch.level, before.nodes.size, head_level, tail_level)
             opening = ruling_opening(tables.channel.shapes, gate, up, down, forcing)
-            watch.discharge[index] = judge_gate(tables.channel, gate, up, down, opening, watch.level, watch.jet, out)
+            watch.discharge[index] = judge_gate(
+                tables.channel, gate, up, down, opening, leaves_move(forcing, gate), watch.level, watch.jet,
+                watch.free_jets[link.gate], out,
+            )  # fmt: skip
             if gate.leaf_count > 1:
                 watch.discharge[index] = fill_bays(tables, gate, up, down, forcing, rows.bays[row], out)
             out.surge_height_bound_upstream = guard.surge_upstream if time_ms < guard.surge_upstream_until else 0.0
@@ -114,6 +118,15 @@ def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at,
     canal = rows.canal[row]
     canal.time = time_ms
     fill_canal(watch, rows.pools[row], canal, left)
+
+
+@inner_kernel
+def leaves_move(forcing, gate):
+    """Whether a leaf of the gate moves."""
+    moving = 0
+    for k in range(gate.leaf_count):
+        moving += forcing[FORCING_GATES + gate.first_leaf + k].rate != 0.0
+    return moving > 0
 
 
 @inner_kernel

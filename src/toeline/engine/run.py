@@ -5,6 +5,7 @@ from collections.abc import Callable
 import numpy as np
 
 from toeline.engine.advance import LEG_DONE, PACE, STEP_TOO_SMALL, advance
+from toeline.engine.near_gate import FREE_JET
 from toeline.engine.operations import Operations
 from toeline.engine.output import BANKS, GATE_WATCH, JET_POINTS, Watch
 from toeline.engine.rows import filled_block, new_rows
@@ -132,6 +133,7 @@ class Run:
             level=np.zeros(self.tables.channel.nodes.size),
             discharge=np.zeros(network.node_count + 1),
             jet=np.zeros((2, JET_POINTS)),
+            free_jets=zeros(network.gate_count, FREE_JET),
         )
 
     def _act(self) -> None:
