@@ -113,7 +113,7 @@ _GATE_SERIES = (
     Variable("gate_headwater_level", _GATES, "m", "water level just above the gate", _LEVEL, _SURFACE, dtype="f8"),
     Variable("gate_tailwater_level", _GATES, "m", "water level just below the gate", _LEVEL, _SURFACE, dtype="f8"),
     Variable("gate_modular_limit_level", _GATES, "m", "tailwater level above which the flow begins to drown",
-             "at this headwater and opening; missing where nothing flows below the leaf, or it is clear and drowned",
+             "at this headwater and opening; missing where nothing flows below the leaf",
              dtype="f8"),
     Variable("jet_depth", _GATES, "m", "depth of the jet at the contracted section",
              "above the floor below the gate; missing where there is no jet"),
