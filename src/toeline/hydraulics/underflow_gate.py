@@ -108,7 +108,10 @@ def free_jet(gate, upstream_section, headwater_level, opening):
     share = width / geometry(upstream_section, headwater_level - gate.upstream_bed_level)[0]
     energy = head
     for _ in range(APPROACH_PASSES):
-        energy = min(max(_with_approach(gate, head, energy, opening, share), head), 1.5 * head)
+        before = energy
+        energy = min(max(_with_approach(gate, head, before, opening, share), head), 1.5 * head)
+        if energy == before:
+            break
     lip = contraction_coefficient(gate, opening, energy) * opening
     jet = min(lip, energy * 2.0 / 3.0)
     return energy, jet, width * jet * math.sqrt(2.0 * GRAVITY * (energy - jet)), lip
