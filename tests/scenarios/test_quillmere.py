@@ -262,3 +262,24 @@ def test_gatekeeper_rounds_move_least_and_stray_most():
     assert checks["gatekeeper_rounds"] <= 16
     assert min(checks, key=checks.get) == "gatekeeper_rounds"
     assert max(plans, key=lambda plan: greatest_stray(run_of("four_rules", plan))) == "gatekeeper_rounds"
+
+
+def falls(run: xr.Dataset) -> set[str]:
+    return {found.what for found in incidents(run) if found.what.startswith("fall in")}
+
+
+def test_dewatering_in_one_go_passes_both_limits_on_the_fall_of_a_pool():
+    run = run_of("dewatering", "in_one_go")
+    assert falls(run) == {"fall in 1 h over the limit", "fall in 24 h over the limit"}
+    heron = [found for found in incidents(run) if found.where == "Heron pool, lower end"]
+    assert max(found.worst for found in heron if "1 h" in found.what) > 0.40
+    assert max(found.worst for found in heron if "24 h" in found.what) > 1.9
+
+
+def test_dewatering_over_eight_days_keeps_the_limits_and_leaves_little():
+    run = run_of("dewatering", "within_the_limits")
+    assert incidents(run) == []
+    heron = run.pool_tail_level.sel(pool="Heron pool")
+    assert heron[0] - heron[-1] > 1.75
+    last_bed = run.bed_level.values[(run.node_pool == 2).values][-1]
+    assert 0.2 < heron[-1] - last_bed < 0.4

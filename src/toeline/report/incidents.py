@@ -1,6 +1,7 @@
 """Incidents in words: what goes wrong, where, when, and by how much."""
 
 from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
 
 import numpy as np
 
@@ -24,14 +25,30 @@ def incident_lines(found: Sequence[Incident], clock: RunClock, display: Display,
     """All incidents of one kind at one place together, in the order in which they begin."""
     if not found:
         yield paragraph(NOTHING_FOUND, width)
-    for together in _together(found):
-        worst = max(together, key=_excess)
-        times = clock.spans([(incident.start, incident.end) for incident in together])
-        yield paragraph(f"{worst.where}: {worst.what}{f', {times}' if times else ''}", width, hanging=INDENT * 2)
-        for detail in _details(worst, together, clock, display):
+    for story in incident_stories(found, clock, display):
+        times = f", {story.times}" if story.times else ""
+        yield paragraph(f"{story.worst.where}: {story.worst.what}{times}", width, hanging=INDENT * 2)
+        for detail in story.details:
             yield paragraph(detail, width, indent=INDENT * 2, hanging=INDENT * 3)
     if any(incident.settling for incident in found):
         yield paragraph(SETTLING, width)
+
+
+@dataclass(frozen=True)
+class IncidentStory:
+    """All incidents of one kind at one place: the worst of them, when they were, and how far they went."""
+
+    worst: Incident
+    times: str
+    details: tuple[str, ...]
+
+
+def incident_stories(found: Sequence[Incident], clock: RunClock, display: Display) -> Iterator[IncidentStory]:
+    """What goes wrong, each kind at each place once, in the order in which they begin."""
+    for together in _together(found):
+        worst = max(together, key=_excess)
+        times = clock.spans([(incident.start, incident.end) for incident in together])
+        yield IncidentStory(worst, times, tuple(_details(worst, together, clock, display)))
 
 
 def _together(found: Sequence[Incident]) -> list[list[Incident]]:
