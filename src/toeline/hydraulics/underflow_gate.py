@@ -411,8 +411,10 @@ def opening_for_discharge(
     high_gap = (
         gate_discharge(gate, upstream_section, downstream_section, headwater_level, tailwater_level, high) - discharge
     )
-    if low_gap >= 0.0 or high_gap <= 0.0:
-        return (low, discharge + low_gap) if low_gap >= 0.0 else (high, discharge + high_gap)
+    if low_gap >= 0.0 or high_gap < low_gap:  # more open is further away where the head is reversed
+        return low, discharge + low_gap
+    if high_gap <= 0.0:
+        return high, discharge + high_gap
     best, gap, side = high, high_gap, 0
     for _ in range(100):
         best = (low * high_gap - high * low_gap) / (high_gap - low_gap)
