@@ -88,8 +88,8 @@ class Run:
             "end_delivery": self.state.delivery.copy(),
             "end_roughness_factor": self.watch.roughness_factor.copy(),
             "end_rate": self._rate.copy(),
-            "end_next_step": np.float64(self.pace.next_step[0]),
-            "end_time": np.float64(self.time / 1000.0),
+            "end_next_step": np.array(self.pace.next_step[0]),
+            "end_time": np.array(self.time / 1000.0),
         }
 
     def _start_at(self, start: Start) -> None:
