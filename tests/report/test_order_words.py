@@ -44,3 +44,7 @@ def test_lengths_in_a_reason_are_in_the_units_of_the_page():
         reason_words(reason, Display(UnitSystem.us_customary))
         == "a move of 0.02 ft is smaller than the smallest, 0.03 ft"
     )
+
+
+def test_times_in_a_reason_are_in_hours_and_minutes(metric):
+    assert reason_words("the leaf is stuck for another 195 min", metric) == "the leaf is stuck for another 3 h 15 min"

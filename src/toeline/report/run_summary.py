@@ -46,7 +46,7 @@ def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
         ("Staff gauges", gauge_lines(gauge_readings(run), clock, display, width)),
         ("Roughness", roughness_lines(run, width)),
         ("Indicators", indicator_lines(indicators(run), display, width)),
-        ("Water ledger", ledger_lines(ledger(run), width)),
+        ("Water ledger", ledger_lines(ledger(run), display, width)),
         ("Caution", [paragraph(run.attrs["comment"], width)]),
     ]
     shown = [(title, list(lines)) for title, lines in sections]
