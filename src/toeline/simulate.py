@@ -53,10 +53,7 @@ def simulate(
     where `output` exists and may not be overwritten, RunError where no step can be solved or a rule fails; what was
     done until then, as after a KeyboardInterrupt, stays in `output`.partial.
     """
-    network = network_of(scenario.canal, scenario.day.period.spacing)
-    timetable = timetable_of(scenario, network)
-    check_mild(scenario, timetable)
-    start = start_of(scenario, network, timetable)
+    network, timetable, start = ready(scenario)
     level, discharge = levels_and_discharges(start)
     description = static_values(network, level, discharge), attributes(scenario), scenario.day.period.start
     sink = DatasetSink(*description) if output is None else NetcdfSink(output, *description, overwrite=overwrite)
@@ -69,6 +66,17 @@ def simulate(
         raise
     sink.close(COMPLETE, run.end_state())
     return sink.dataset if isinstance(sink, DatasetSink) else open_run(sink.written_path)
+
+
+def ready(scenario: Scenario) -> tuple[Network, Timetable, Start | dict[str, np.ndarray]]:
+    """The canal as arrays, the course of the day, and the state at the start; nothing is stepped.
+
+    Raises ScenarioError or UsageError where the day cannot start as asked.
+    """
+    network = network_of(scenario.canal, scenario.day.period.spacing)
+    timetable = timetable_of(scenario, network)
+    check_mild(scenario, timetable)
+    return network, timetable, start_of(scenario, network, timetable)
 
 
 def start_of(scenario: Scenario, network: Network, timetable: Timetable) -> Start | dict[str, np.ndarray]:

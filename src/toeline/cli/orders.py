@@ -178,13 +178,22 @@ def issue_page(
     run: Path, folder: Path, sheets: Sequence["Sheet"], stems: Mapping[str, str], suffixes: Sequence[str]
 ) -> str:
     """What was written: a line for each sheet."""
-    from toeline.report.layout import counted, paragraph, table
+    from toeline.report.layout import paragraph, table
 
     width = page_width()
-    rows = [(sheet.whose, counted(len(sheet.orders), "order"), stems[sheet.whose]) for sheet in sheets]
+    rows = [(sheet.whose, contents(sheet), stems[sheet.whose]) for sheet in sheets]
     title = paragraph(f"Order sheets of {run}: {sheets[0].plan}, revision {sheets[0].revision}", width, indent="")
     where = paragraph(f"In {folder}, each as {', '.join(suffixes)}", width, indent="")
     return "\n".join([title, table(("", "", "file"), rows, width), where])
+
+
+def contents(sheet: "Sheet") -> str:
+    """What a sheet asks for, in numbers."""
+    from toeline.report.layout import counted
+
+    visits = sum(form.count for form in sheet.rounds)
+    orders = counted(len(sheet.orders), "order")
+    return f"{orders}, {counted(visits, 'visit')}" if visits else orders
 
 
 def tell_what_to_look_at(run: Path, dataset: "xr.Dataset") -> None:

@@ -61,7 +61,7 @@ def _title(comparison: Comparison, clock: RunClock, width: int) -> str:
 
 def _input_lines(comparison: Comparison, clock: RunClock, display: Display, width: int) -> Iterator[str]:
     if comparison.have_same_inputs:
-        yield paragraph("The same in all but the plans, by the digests that the runs carry.", width)
+        yield paragraph("The same canal and day in all; only the plans differ.", width)
     for contrast in comparison.contrasts:
         if not contrast.has_same_inputs:
             yield paragraph(f"{_against(contrast, comparison)}: what is found need not come from the plans", width)

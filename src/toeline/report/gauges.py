@@ -30,10 +30,10 @@ def gauge_lines(gauges: Sequence[GaugeReadings], clock: RunClock, display: Displ
 
 
 def _with_places_where_they_fit(
-    header: tuple[str, ...], rows: list[tuple[str, ...]], width: int
-) -> tuple[tuple[str, ...], list[tuple[str, ...]]]:
+    header: Sequence[str], rows: Sequence[Sequence[str]], width: int
+) -> tuple[Sequence[str], Sequence[Sequence[str]]]:
     """The table without the places of the gauges, which the page of the canal tells, where it has room only so."""
-    narrow = (header[0], *header[2:]), [(row[0], *row[2:]) for row in rows]
+    narrow = [header[0], *header[2:]], [[row[0], *row[2:]] for row in rows]
     return narrow if fits(*narrow, width) and not fits(header, rows, width) else (header, rows)
 
 

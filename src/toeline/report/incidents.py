@@ -56,6 +56,14 @@ def incident_lines(found: Sequence[Incident], clock: RunClock, display: Display,
         yield paragraph(SETTLING, width)
 
 
+def incident_words(found: Sequence[Incident]) -> str:
+    """How many incidents there are and of which kinds, the gravest first, in one sentence."""
+    if not found:
+        return "no incident, which makes no place safe"
+    kinds = sorted(dict.fromkeys(incident.what for incident in found), key=_gravity)
+    return f"{counted(len(found), 'incident')}: {'; '.join(kinds)}"
+
+
 def worst_text(incident: Incident, display: Display) -> str:
     """The worst value of an incident: by how much a margin was missed, or the value itself; "-" where there is none."""
     is_amount = incident.what in AMOUNTS
@@ -77,9 +85,13 @@ def _in_short(found: Sequence[Incident], clock: RunClock, display: Display, widt
     for group in groups:
         of_kind.setdefault(group[0].what, []).append(group)
     yield paragraph(f"In short, {counted(len(found), 'incident')}, each told below:", width)
-    for what in sorted(of_kind, key=lambda kind: (*GRAVEST_FIRST, kind).index(kind)):
+    for what in sorted(of_kind, key=_gravity):
         words = _kind_words(of_kind[what], clock, display)
         yield paragraph(f"{what}: {words}", width, indent=INDENT * 2, hanging=INDENT * 3)
+
+
+def _gravity(kind: str) -> int:
+    return (*GRAVEST_FIRST, kind).index(kind)
 
 
 def _kind_words(groups: Sequence[Sequence[Incident]], clock: RunClock, display: Display) -> str:

@@ -47,8 +47,8 @@ _LEVEL_NOTE = (
     "Every output step is one sample."
 )
 _GATE_NOTE = (
-    "Integrated: what openings and discharges changed beyond the way from their first to their last value. Where "
-    "a gate is near the modular limit, its discharge is poorly known. Crossings and hours that no gate had are left out."
+    "Integrated: what openings and discharges changed beyond the way from their first to their last value. Near "
+    "the modular limit the discharge of a gate is poorly known. Crossings and hours that no gate had are left out."
 )
 
 

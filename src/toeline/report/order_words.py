@@ -7,6 +7,7 @@ from toeline.report.clock import duration_text
 from toeline.units import Display, UnitSystem
 
 _MINUTES = re.compile(r"\b(\d+) min\b")
+_UNIT = re.compile(r"(?<=\d )(?:M|FT)\b")
 _LENGTH = re.compile(r"(\d+\.\d{3})(?: m\b)?")
 
 
@@ -35,6 +36,11 @@ def move_words(before: float, after: float, turn: float, scale_mark: float, disp
     verb = "close fully," if after == 0.0 else "open" if after > before else "close"
     to_mark = "" if math.isnan(scale_mark) or after == 0.0 else f" to mark {_number(after / scale_mark)}"
     return f"{verb} {' = '.join(amounts)}{to_mark}"
+
+
+def loud(move: str) -> str:
+    """A move in capitals, all but the unit of its length."""
+    return _UNIT.sub(lambda unit: unit[0].lower(), move.upper())
 
 
 def counted_share(share: float, noun: str) -> str:
