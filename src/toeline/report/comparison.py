@@ -7,7 +7,7 @@ from toeline.constants import CAUTION
 from toeline.findings.comparison import Comparison, Contrast, IncidentRow, IncidentSum, IndicatorRow
 from toeline.findings.result_differences import ResultDifference
 from toeline.report.clock import duration_text
-from toeline.report.incidents import worst_text, worst_words
+from toeline.report.incidents import gravity, worst_text, worst_words
 from toeline.report.input_words import input_words
 from toeline.report.layout import INDENT, counted, heading, paragraph
 from toeline.report.run_clock import RunClock
@@ -96,8 +96,9 @@ def _incidents_in_short(comparison: Comparison, place: int, display: Display) ->
     """How the incidents of one run differ from those of the first: what is new or graver before what is less."""
     if not any(row.sums[0] or row.sums[place] for row in comparison.incidents):
         return ["no incident in either"]
-    graver = [row for row in comparison.incidents if _is_graver(row, place, 0)]
-    less = [row for row in comparison.incidents if row not in graver and _is_graver(row, 0, place)]
+    rows = sorted(comparison.incidents, key=lambda row: gravity(row.what))
+    graver = [row for row in rows if _is_graver(row, place, 0)]
+    less = [row for row in rows if row not in graver and _is_graver(row, 0, place)]
     told = [_incident_words(row, place, comparison, display) for row in (*graver, *less)]
     if len(told) > MOST_INCIDENTS:
         more = counted(len(told) - MOST_INCIDENTS, "more difference")
@@ -201,7 +202,7 @@ def _incident_lines(comparison: Comparison, display: Display, width: int) -> Ite
         "For how long in all, and the worst value: how high the water is above an edge, how much tailwater is missing.",
         width,
     )
-    rows = sorted(comparison.incidents, key=lambda row: (row.what, not row.differs))
+    rows = sorted(comparison.incidents, key=lambda row: (gravity(row.what), row.what, not row.differs))
     groups = [
         Group(what, tuple((row.where, tuple(_incident_cell(one, display) for one in row.sums)) for row in group))
         for what, group in groupby(rows, key=lambda row: row.what)

@@ -60,7 +60,7 @@ def incident_words(found: Sequence[Incident]) -> str:
     """How many incidents there are and of which kinds, the gravest first, in one sentence."""
     if not found:
         return "no incident, which makes no place safe"
-    kinds = sorted(dict.fromkeys(incident.what for incident in found), key=_gravity)
+    kinds = sorted(dict.fromkeys(incident.what for incident in found), key=gravity)
     return f"{counted(len(found), 'incident')}: {'; '.join(kinds)}"
 
 
@@ -85,12 +85,13 @@ def _in_short(found: Sequence[Incident], clock: RunClock, display: Display, widt
     for group in groups:
         of_kind.setdefault(group[0].what, []).append(group)
     yield paragraph(f"In short, {counted(len(found), 'incident')}, each told below:", width)
-    for what in sorted(of_kind, key=_gravity):
+    for what in sorted(of_kind, key=gravity):
         words = _kind_words(of_kind[what], clock, display)
         yield paragraph(f"{what}: {words}", width, indent=INDENT * 2, hanging=INDENT * 3)
 
 
-def _gravity(kind: str) -> int:
+def gravity(kind: str) -> int:
+    """Where a kind of incidents stands among the others: the gravest have the least."""
     return (*GRAVEST_FIRST, kind).index(kind)
 
 
