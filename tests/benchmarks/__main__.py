@@ -1,4 +1,4 @@
-"""Standard day against a stripped kernel and under rules, and the command from the shell; medians and spreads."""
+"""Standard day against a stripped kernel and under rules, the command from the shell, the page; medians, spreads."""
 
 import os
 import subprocess
@@ -9,6 +9,7 @@ from collections.abc import Callable, Sequence
 from pathlib import Path
 from statistics import median
 
+from tests.benchmarks.page import time_the_page
 from tests.benchmarks.stripped_kernel import prepared, solve_many
 from tests.canals import scenario_of, standard_day
 
@@ -127,6 +128,7 @@ def main() -> None:
         time_the_day(Path(folder))
         time_the_rules(Path(folder))
         time_the_command(Path(folder))
+        time_the_page(Path(folder))
 
 
 if __name__ == "__main__":

@@ -13,7 +13,7 @@ from toeline.cli.exit_status import ExitStatus
 from toeline.cli.terminal import note
 from toeline.errors import ScenarioError, ToelineError, UsageError
 
-COMMANDS = ("new", "check", "run", "describe", "compare", "orders", "rating", "verify")
+COMMANDS = ("new", "check", "run", "describe", "report", "figures", "orders", "compare", "rating", "verify")
 
 
 class LazyGroup(click.Group):

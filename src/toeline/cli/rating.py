@@ -7,13 +7,14 @@ import click
 
 from toeline.cli.input_files import INPUT_FILE, is_day
 from toeline.cli.option_values import lengths
-from toeline.cli.terminal import page_width, show
+from toeline.cli.terminal import note, page_width, show
 from toeline.errors import UsageError
 
 if TYPE_CHECKING:
     from toeline.scenario import CanalFile
 
 QUANTITIES = "LEVEL[,LEVEL...]"
+CHART_ENDINGS = (".png", ".svg", ".pdf")
 
 
 @click.command(short_help="Tabulate the discharge of a gate, its modular limit and where its jump leaves the floor.")
@@ -29,7 +30,15 @@ QUANTITIES = "LEVEL[,LEVEL...]"
     metavar="FILE",
     help="Write the table to FILE as well, one row a value, in the units of the canal file.",
 )
-@click.option("--overwrite", is_flag=True, help="Replace a CSV file that exists.")
+@click.option(
+    "--chart",
+    "chart_file",
+    type=click.Path(dir_okay=False, path_type=Path),
+    metavar="FILE",
+    help="Draw the operating chart into FILE (.png, .svg or .pdf): what flow and jump do over tailwater and opening, "
+    "at up to three headwaters, with the numbers as CSV beside it.",
+)
+@click.option("--overwrite", is_flag=True, help="Replace files that exist.")
 def command(
     canal: Path,
     gate: str,
@@ -37,6 +46,7 @@ def command(
     tailwater: str | None,
     opening: str | None,
     csv_file: Path | None,
+    chart_file: Path | None,
     overwrite: bool,
 ) -> None:
     """Tabulate the discharge of GATE of the file CANAL by headwater, tailwater and opening.
@@ -51,6 +61,7 @@ def command(
     from toeline.units import Display
 
     check_files(canal, csv_file, overwrite)
+    check_chart(chart_file, overwrite)
     canal_file = load_canal(canal)
     check_gate(canal_file, gate)
     chosen = chosen_values(canal_file, gate, headwater, tailwater, opening)
@@ -58,6 +69,11 @@ def command(
     show(rating_page(rows, f"{gate}, {canal_file.canal.name}", Display(canal_file.units), page_width()))
     if csv_file is not None:
         write_csv(csv_file, rows, canal_file.units)
+    if chart_file is not None:
+        from toeline.cli.rating_chart import write_chart
+
+        for path in write_chart(chart_file, canal_file, gate, *chosen, overwrite=overwrite):
+            note(f"Chart: {path}")
 
 
 def check_files(canal: Path, csv_file: Path | None, overwrite: bool) -> None:
@@ -68,6 +84,17 @@ def check_files(canal: Path, csv_file: Path | None, overwrite: bool) -> None:
             raise UsageError(f"{csv_file} is the canal file and would be lost: name another file.")
         if not overwrite:
             raise UsageError(f"{csv_file} exists: name another file, or replace it with --overwrite.")
+
+
+def check_chart(chart_file: Path | None, overwrite: bool) -> None:
+    if chart_file is None:
+        return
+    if chart_file.suffix.lower() not in CHART_ENDINGS:
+        raise UsageError(f"--chart {chart_file}: the name must end in {', '.join(CHART_ENDINGS)}.")
+    if not chart_file.parent.is_dir():
+        raise UsageError(f"there is no directory {chart_file.parent} to write {chart_file.name} in.")
+    if chart_file.exists() and not overwrite:
+        raise UsageError(f"{chart_file} exists: name another file, or replace it with --overwrite.")
 
 
 def chosen_values(

@@ -73,15 +73,19 @@ def leaf_opening(forcing, gate, k):
 
 
 @inner_kernel
-def gate_balance(shapes, gate, up, down, forcing, q):
-    """Residual q − Q(levels) of a gate [m³/s] and its derivatives to the level above, q and the level below."""
-    passed = above = below = 0.0
-    for k in range(3):
-        nudge_up, nudge_down = LEVEL_NUDGE if k == 1 else 0.0, LEVEL_NUDGE if k == 2 else 0.0
-        q_nudged = leaves_discharge_at(shapes, gate, up + nudge_up, down + nudge_down, forcing)
-        passed, above, below = above, below, q_nudged
-    by_up, by_down = max(above - passed, 0.0) / LEVEL_NUDGE, min(below - passed, 0.0) / LEVEL_NUDGE
-    return q - passed, -by_up, 1.0, -by_down
+def gate_balance(shapes, gate, up, down, forcing, q, slopes, afresh):
+    """Residual q − Q(levels) of a gate [m³/s] and its derivatives to the level above, q and the level below.
+
+    The derivatives are kept in `slopes`, a row of LINK_WORK, and found anew only `afresh`: over the last small
+    corrections of a stage they hardly change.
+    """
+    passed = leaves_discharge_at(shapes, gate, up, down, forcing)
+    if afresh:
+        above = leaves_discharge_at(shapes, gate, up + LEVEL_NUDGE, down, forcing)
+        below = leaves_discharge_at(shapes, gate, up, down + LEVEL_NUDGE, forcing)
+        slopes.by_up = max(above - passed, 0.0) / LEVEL_NUDGE
+        slopes.by_down = min(below - passed, 0.0) / LEVEL_NUDGE
+    return q - passed, -slopes.by_up, 1.0, -slopes.by_down
 
 
 @inner_kernel
@@ -127,7 +131,7 @@ def tail_level_balance(tables, link, last, level, tail_level, q, inner):
 
 
 @inner_kernel
-def boundary_balance(tables, index, nodes, q, forcing, work):
+def boundary_balance(tables, index, nodes, q, forcing, work, afresh):
     """Residual of a link that is not a reach, and its derivatives to the level above, the discharge and the level
     below.
     """
@@ -137,7 +141,7 @@ def boundary_balance(tables, index, nodes, q, forcing, work):
     if link.kind == GATE:
         gate = tables.gates[link.gate]
         up, down = gate_levels(gate, nodes.level, nodes.size, forcing[FORCING_HEAD].now, forcing[FORCING_TAIL].now)
-        return gate_balance(tables.channel.shapes, gate, up, down, forcing, q)
+        return gate_balance(tables.channel.shapes, gate, up, down, forcing, q, work.links[index], afresh)
     last = nodes.size - 1
     level = nodes[last].level
     if link.kind == TAIL_LEVEL:

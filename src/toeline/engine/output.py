@@ -33,6 +33,10 @@ BANKS = np.dtype([("bank_level", float), ("lining_level", float)])
 """Of a canal node [m], inf where none."""
 
 
+POOL_VOLUMES = np.dtype([("start", float), ("middle", float), ("end", float)])
+"""Of a pool [m³] in the present step."""
+
+
 class Watch(NamedTuple):
     """What the output needs beside the state."""
 
@@ -41,9 +45,11 @@ class Watch(NamedTuple):
     settled_at: np.ndarray  # (p) int64 ms
     roughness_factor: np.ndarray  # (p) 1
     start_storage: np.ndarray  # (1) m³ in the canal at the start of the day
+    volumes: np.recarray  # (p) of POOL_VOLUMES, scratch
     level: np.ndarray  # (all channel nodes) m, scratch
     discharge: np.ndarray  # (n + 1) m³/s, scratch
     jet: np.ndarray  # (2, JET_POINTS) chainages and depths, scratch
+    free_jets: np.recarray  # (g) of FREE_JET
 
 
 @inner_kernel
@@ -100,7 +106,10 @@ def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at,
             gate, out, guard = tables.gates[link.gate], rows.gates[row, link.gate], watch.gates[link.gate]
             up, down = gate_levels(gate, watch.level, before.nodes.size, head_level, tail_level)
             opening = ruling_opening(tables.channel.shapes, gate, up, down, forcing)
-            watch.discharge[index] = judge_gate(tables.channel, gate, up, down, opening, watch.level, watch.jet, out)
+            watch.discharge[index] = judge_gate(
+                tables.channel, gate, up, down, opening, leaves_move(forcing, gate), watch.level, watch.jet,
+                watch.free_jets[link.gate], out,
+            )  # fmt: skip
             if gate.leaf_count > 1:
                 watch.discharge[index] = fill_bays(tables, gate, up, down, forcing, rows.bays[row], out)
             out.surge_height_bound_upstream = guard.surge_upstream if time_ms < guard.surge_upstream_until else 0.0
@@ -114,6 +123,15 @@ def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at,
     canal = rows.canal[row]
     canal.time = time_ms
     fill_canal(watch, rows.pools[row], canal, left)
+
+
+@inner_kernel
+def leaves_move(forcing, gate):
+    """Whether a leaf of the gate moves."""
+    moving = 0
+    for k in range(gate.leaf_count):
+        moving += forcing[FORCING_GATES + gate.first_leaf + k].rate != 0.0
+    return moving > 0
 
 
 @inner_kernel
@@ -155,21 +173,30 @@ def fill_bays(tables, gate, up, down, forcing, bays, out):
 
 
 @inner_kernel
+def sum_pools(tables, before, middle, after, volumes):
+    """Volumes of the pools at the start, the stage at γ and the end of a step."""
+    for p in range(tables.pools.size):
+        start = inner = end = 0.0
+        for k in range(tables.pools[p].first_node, tables.pools[p].last_node + 1):
+            start += before.nodes[k].volume
+            inner += middle.nodes[k].volume
+            end += after.nodes[k].volume
+        volumes[p].start, volumes[p].middle, volumes[p].end = start, inner, end
+
+
+@inner_kernel
 def fill_pools(tables, before, middle, after, totals, watch, out, time_ms, h, shares):
     """Fill a row of pools."""
     for p in range(tables.pools.size):
         first, last = tables.pools[p].first_node, tables.pools[p].last_node
-        start = inner = end = 0.0
         bank = lining = math.inf
         for k in range(first, last + 1):
-            start += before.nodes[k].volume
-            inner += middle.nodes[k].volume
-            end += after.nodes[k].volume
             bank = min(bank, watch.banks[k].bank_level - watch.level[k])
             lining = min(lining, watch.banks[k].lining_level - watch.level[k])
         pool = out[p]
         pool.settling = 1 if time_ms < watch.settled_at[p] else 0
-        pool.pool_volume = between(shares, start, inner, end)
+        stored = watch.volumes[p]
+        pool.pool_volume = between(shares, stored.start, stored.middle, stored.end)
         pool.pool_head_level = max(watch.level[first], tables.channel.nodes[first].bed_level)
         pool.pool_tail_level = max(watch.level[last], tables.channel.nodes[last].bed_level)
         pool.pool_inflow = watch.discharge[first]

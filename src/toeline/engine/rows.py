@@ -14,6 +14,7 @@ GATE_OUTPUT = np.dtype(
         ("gate_discharge", float),
         ("gate_headwater_level", float),
         ("gate_tailwater_level", float),
+        ("gate_modular_limit_level", float),
         ("jet_depth", float),
         ("jet_froude_number", float),
         ("sequent_depth", float),

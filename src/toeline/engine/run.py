@@ -5,8 +5,9 @@ from collections.abc import Callable
 import numpy as np
 
 from toeline.engine.advance import LEG_DONE, PACE, STEP_TOO_SMALL, advance
+from toeline.engine.near_gate import FREE_JET
 from toeline.engine.operations import Operations
-from toeline.engine.output import BANKS, GATE_WATCH, JET_POINTS, Watch
+from toeline.engine.output import BANKS, GATE_WATCH, JET_POINTS, POOL_VOLUMES, Watch
 from toeline.engine.rows import filled_block, new_rows
 from toeline.engine.state import FORCING, new_state, new_totals, new_work, zeros
 from toeline.engine.step import set_forcing, start_from_levels
@@ -129,9 +130,11 @@ class Run:
             settled_at=np.zeros(network.pool_count, np.int64),
             roughness_factor=np.ones(network.pool_count),
             start_storage=np.zeros(1),
+            volumes=zeros(len(names.pools), POOL_VOLUMES),
             level=np.zeros(self.tables.channel.nodes.size),
             discharge=np.zeros(network.node_count + 1),
             jet=np.zeros((2, JET_POINTS)),
+            free_jets=zeros(network.gate_count, FREE_JET),
         )
 
     def _act(self) -> None:

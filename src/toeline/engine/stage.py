@@ -15,6 +15,8 @@ from toeline.network.tables import FORCING_EVAPORATION, FORCING_GATES, FORCING_R
 LEVEL_CONVERGED = 1e-4
 """Last Newton update [m] of a solved stage; the convergence is quadratic, the error left far smaller."""
 ITERATIONS = 12
+SMALL_CORRECTION = 5e-3
+"""Newton update [m] after which the derivatives of the gates are kept (choice)."""
 LOWEST_DEPTH = -0.5
 """Depth [m] below which the image of an empty node is not followed."""
 DEMAND_NUDGE = 1e-5
@@ -139,9 +141,9 @@ def source_area(discharge, up, down):
 
 
 @inner_kernel
-def assemble(tables, before, after, work, seconds, head_factor, inertial, forcing):
+def assemble(tables, before, after, work, seconds, head_factor, inertial, forcing, afresh):
     """Fill the Newton matrix and right side at the present levels and discharges, and sweep it forward as it is
-    made.
+    made; with `afresh` the derivatives of the gates are found anew.
     """
     geometry_pass(tables, after.nodes, work)
     count = after.nodes.size
@@ -151,7 +153,7 @@ def assemble(tables, before, after, work, seconds, head_factor, inertial, forcin
         if tables.links[index].kind == REACH:
             left, by_up, by_q, by_down = reach_row(tables, before, after, work, index, seconds, head_factor, inertial)
         else:
-            left, by_up, by_q, by_down = boundary_balance(tables, index, after.nodes, q, forcing, work)
+            left, by_up, by_q, by_down = boundary_balance(tables, index, after.nodes, q, forcing, work, afresh)
         row, factor = work.rows[2 * index], by_up * pivot_before
         row.lower, row.upper = by_up, by_down
         row.pivot = 1.0 / (by_q - factor * upper_before)
@@ -195,7 +197,8 @@ def solve_stage(tables, before, after, work, seconds, head_factor, inertial, for
     last_change = math.inf
     for k in range(ITERATIONS):
         set_sources(tables, after, forcing, work)
-        assemble(tables, before, after, work, seconds, head_factor, inertial, forcing)
+        afresh = last_change > SMALL_CORRECTION
+        assemble(tables, before, after, work, seconds, head_factor, inertial, forcing, afresh)
         back_substitute(work.rows)
         change = apply_correction(tables, after, work)
         if not math.isfinite(change) or (k > 5 and change > 0.9 * last_change and change > 0.05):

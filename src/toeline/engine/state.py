@@ -48,6 +48,8 @@ LINK_WORK = np.dtype(
     [
         ("convective_base", float),  # m that the stage starts from
         ("momentum_base", float),  # m of head an area, left by earlier stages
+        ("by_up", float),  # m²/s, derivative of a gate's discharge to the level above
+        ("by_down", float),  # m²/s, and to the level below
     ]
 )
 

@@ -43,11 +43,18 @@ def predict(tables, before, after, seconds):
 
 
 @inner_kernel
-def extrapolate(start, middle, end):
-    """First guess of the end stage, on the line through start and middle."""
-    ratio = (1.0 - GAMMA) / GAMMA
+def extrapolate(tables, start, middle, end, h):
+    """First guess of the end stage: wet nodes on the cubic through the levels and rates of start and middle, no further
+    than `PREDICTED` from the line through both levels; discharges on the line.
+    """
+    ratio, reach = (1.0 - GAMMA) / GAMMA, GAMMA * h
+    bend_start, bend_middle = ratio * ratio / GAMMA, ratio / (GAMMA * GAMMA)
     for k in range(end.nodes.size):
-        end.nodes[k].level = middle.nodes[k].level + ratio * (middle.nodes[k].level - start.nodes[k].level)
+        old, new, bend = start.nodes[k], middle.nodes[k], 0.0
+        rise = new.level - old.level
+        if min(old.level, new.level) - tables.channel.nodes[k].bed_level > 2.0 * DRY_DEPTH:
+            bend = bend_start * (reach * old.rate - rise) + bend_middle * (reach * new.rate - rise)
+        end.nodes[k].level = new.level + ratio * rise + min(max(bend, -PREDICTED), PREDICTED)
     for k in range(end.links.size):
         here, there = middle.links[k].discharge, start.links[k].discharge
         end.links[k].discharge = here + ratio * (here - there)
@@ -102,7 +109,7 @@ def try_step(tables, before, middle, after, work, forcing, start, h, inertial):
         return 0, math.inf
     base_of_end(before, middle, work, WEIGHT * h, scale)
     set_forcing(forcing, start + h)
-    extrapolate(before, middle, after)
+    extrapolate(tables, before, middle, after, h)
     second = solve_stage(tables, before, after, work, seconds, head_factor, inertial, forcing)
     if second == 0:
         return 0, math.inf
@@ -150,7 +157,7 @@ def begin_leg(tables, state, work, forcing, inertial):
         if kind == REACH:
             restart_reach(state, work, index, inertial)
         elif kind != TAIL_LEVEL:
-            left = boundary_balance(tables, index, state.nodes, link.discharge, forcing, work)[0]
+            left = boundary_balance(tables, index, state.nodes, link.discharge, forcing, work, True)[0]
             link.discharge -= left
             largest = max(largest, abs(left))
     for k in range(state.nodes.size):

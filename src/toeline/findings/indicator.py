@@ -5,6 +5,7 @@ from typing import Literal
 
 Better = Literal["lower", "higher", "none"]
 
+
 @dataclass(frozen=True)
 class Indicator:
     """A figure of a run by its name and place; `where` is "" for the whole canal.

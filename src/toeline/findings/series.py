@@ -43,6 +43,11 @@ def meanings(flags: xr.DataArray) -> list[str]:
     return words
 
 
+def meanings_seen(flags: xr.DataArray) -> list[str]:
+    """The meanings that occur in a flag variable, in the order of its values."""
+    return [word for value, word in enumerate(meanings(flags)) if (flags.values == value).any()]
+
+
 def is_any(flags: xr.DataArray, *wanted: str) -> np.ndarray:
     """Where a flag has one of the wanted meanings."""
     known = meanings(flags)

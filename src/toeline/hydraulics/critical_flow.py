@@ -7,6 +7,9 @@ from toeline.hydraulics import status
 from toeline.hydraulics.cross_section import ALPHA, BETA, OWN, TOP, TRAPEZOID, geometry, static_moment
 from toeline.hydraulics.kernel import inner_kernel, kernel
 
+ROUNDING = 1e-12
+"""Relative shortfall of energy that still counts as critical flow."""
+
 
 @kernel
 def froude_number(section, discharge, depth):
@@ -102,9 +105,9 @@ def is_rectangle(section):
 def alternate_depth(flux, energy):
     """Supercritical root [m] of y + flux/y² = energy [m³, m], in closed form and polished; NaN where there is none."""
     cosine = 1.0 - 13.5 * flux / (energy * energy * energy) if energy > 0.0 else -2.0
-    if cosine <= -1.0:
+    if cosine < -1.0 - ROUNDING:
         return math.nan
-    y = energy / 3.0 * (1.0 + 2.0 * math.cos((math.acos(min(cosine, 1.0)) + 4.0 * math.pi) / 3.0))
+    y = energy / 3.0 * (1.0 + 2.0 * math.cos((math.acos(min(max(cosine, -1.0), 1.0)) + 4.0 * math.pi) / 3.0))
     for _ in range(2):
         slope = 1.0 - 2.0 * flux / (y * y * y) if y > 0.0 else 0.0
         if slope < -1e-3:

@@ -52,12 +52,18 @@ def jet_on_floor(section, jet_width, thickness, step, discharge):
     """The jet of a gate after its fall of `step` [m] onto the floor: y₁ + q²/(2gy₁²) = h + q²/(2gh²) + step, as a
     `Jet`.
     """
-    q = discharge / jet_width
-    energy = thickness + q * q / (2.0 * GRAVITY * thickness * thickness) + step
-    depth = alternate_depth(q * q / (2.0 * GRAVITY), energy) if step > 0.0 else thickness
+    energy, depth = fallen_jet(jet_width, thickness, step, discharge)
     full, _ = supercritical_depth(section, discharge, energy)
-    froude = q / (depth * math.sqrt(GRAVITY * depth))
+    froude = discharge / (jet_width * depth * math.sqrt(GRAVITY * depth))
     return Jet(discharge, jet_width, depth, full, froude, jet_force(section, discharge, jet_width, depth, depth))
+
+
+@inner_kernel
+def fallen_jet(jet_width, thickness, step, discharge):
+    """Energy and depth [m] over the floor of a jet after its fall of `step` [m]."""
+    flux = discharge * discharge / (2.0 * GRAVITY * jet_width * jet_width)
+    energy = thickness + flux / (thickness * thickness) + step
+    return energy, alternate_depth(flux, energy) if step > 0.0 else thickness
 
 
 @kernel
@@ -86,6 +92,14 @@ def _node_below(channel, first, last, chainage):
 def drowning_depth(section, jet):
     """Tail depth [m] at which the jump would just stand at the contracted section."""
     return subcritical_depth_of_force(section, jet.discharge, jet.force)[0]
+
+
+@inner_kernel
+def sequent_of_jet(section, jet_width, thickness, step, discharge):
+    """`drowning_depth` of the jet of a gate after its fall of `step` [m] onto the floor."""
+    _, depth = fallen_jet(jet_width, thickness, step, discharge)
+    force = jet_force(section, discharge, jet_width, depth, depth)
+    return subcritical_depth_of_force(section, discharge, force)[0]
 
 
 @kernel
@@ -175,23 +189,21 @@ def _end_of_jump_from(channel, first, last, discharge, x, depth):
     return (x if math.isnan(length) else x + length), sequent
 
 
-@kernel
-def protection_margin(channel, first, last, levels, discharge, chainages, depths, count, protection_end):
-    """How far the tailwater could fall [m], its whole profile alike, before the jump's end passes `protection_end`.
-
-    Negative: how much it is short. From the profile of the free jet: the toe whose jump ends at the end of the
-    protection; margin = tailwater level there less the level of the sequent depth. NaN where the jet turns critical
-    before any such toe.
+@inner_kernel
+def last_protected_toe(channel, first, last, discharge, chainages, depths, count, protection_end):
+    """Chainage of the toe whose jump ends at `protection_end` and its sequent depth [m], from the profile of a free
+    jet; the first point of the profile where every jump would end further on, NaN where the jet turns critical before
+    any such toe.
     """
     low, high = 0, count - 1
     while high > 1 and chainages[high - 1] >= protection_end:
         high -= 1
     end_high, sequent_high = _end_of_jump_from(channel, first, last, discharge, chainages[high], depths[high])
     if end_high < protection_end:
-        return math.nan
+        return math.nan, math.nan
     end_low, sequent = _end_of_jump_from(channel, first, last, discharge, chainages[0], depths[0])
     if end_low > protection_end:
-        return _tail_over(channel, first, last, levels, chainages[0], sequent)
+        return chainages[0], sequent
     while high - low > 1:
         share = (protection_end - end_low) / (end_high - end_low)
         guess = low + min(max(int(share * (high - low) + 0.5), 1), high - low - 1)
@@ -202,12 +214,25 @@ def protection_margin(channel, first, last, levels, discharge, chainages, depths
             high, end_high, sequent_high = guess, end, sequent_guess
     share = (protection_end - end_low) / (end_high - end_low) if end_high > end_low else 0.0
     toe = chainages[low] + share * (chainages[high] - chainages[low])
-    return _tail_over(channel, first, last, levels, toe, sequent + share * (sequent_high - sequent))
+    return toe, sequent + share * (sequent_high - sequent)
+
+
+@kernel
+def protection_margin(channel, first, last, levels, discharge, chainages, depths, count, protection_end):
+    """How far the tailwater could fall [m], its whole profile alike, before the jump's end passes `protection_end`.
+
+    Negative: how much it is short. Margin = tailwater level at the last protected toe less the level of the sequent
+    depth; NaN where the jet turns critical before any such toe.
+    """
+    toe, sequent = last_protected_toe(channel, first, last, discharge, chainages, depths, count, protection_end)
+    return tail_over(channel, first, last, levels, toe, sequent)
 
 
 @inner_kernel
-def _tail_over(channel, first, last, levels, x, depth):
-    """Height [m] of the tailwater over a depth at a chainage."""
+def tail_over(channel, first, last, levels, x, depth):
+    """Height [m] of the tailwater over a depth at a chainage; NaN where there is none."""
+    if math.isnan(x):
+        return math.nan
     node, weight = _node_below(channel, first, last, x)
     level = levels[node] + weight * (levels[node + 1] - levels[node])
     return level - link_bed(channel, node, weight) - depth

@@ -3,15 +3,24 @@ needs.
 """
 
 import math
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from itertools import product
+from typing import NamedTuple
 
 import numpy as np
+import xarray as xr
 
 from toeline.hydraulics.gradually_varied_flow import supercritical_profile
-from toeline.hydraulics.jump_location import jet_on_floor, protection_margin
-from toeline.hydraulics.underflow_gate import UnderflowGate, free_jet, gate_flow, jet_width, modular_limit_depth
+from toeline.hydraulics.jump_location import Jet, drowning_depth, jet_on_floor, protection_margin
+from toeline.hydraulics.underflow_gate import (
+    GateFlow,
+    UnderflowGate,
+    free_jet,
+    gate_flow,
+    jet_width,
+    modular_limit_depth,
+)
 from toeline.network.build import network_of
 from toeline.network.tables import Network
 from toeline.scenario import CanalFile
@@ -45,6 +54,22 @@ class RatingRow:
     quality: str
 
 
+class TailwaterLimits(NamedTuple):
+    """Tailwater levels [m] at which something changes below a gate, at one headwater and opening; NaN where none does.
+
+    The flow drowns above the first, the jump above the second; below the third the jump ends beyond the apron, below
+    the fourth beyond the protected floor. The tailwater is taken as level.
+    """
+
+    modular_limit_level: float
+    drowning_level: float
+    apron_limit_level: float
+    protection_limit_level: float
+
+
+NO_LIMITS = TailwaterLimits(math.nan, math.nan, math.nan, math.nan)
+
+
 def rating_table(
     canal: CanalFile,
     gate_name: str,
@@ -60,8 +85,42 @@ def rating_table(
     rows = []
     for up, opening in product(headwater_levels, openings):
         limits = site.limits(float(up), float(opening))
-        rows += [site.row(float(up), float(down), float(opening), *limits) for down in tailwater_levels]
+        rows += [site.row(float(up), float(down), float(opening), limits) for down in tailwater_levels]
     return rows
+
+
+def operating_range(
+    canal: CanalFile,
+    gate_name: str,
+    headwater_levels: np.ndarray,
+    tailwater_levels: np.ndarray,
+    openings: np.ndarray,
+) -> xr.Dataset:
+    """What flow and jump do over the plane of tailwater and opening, at each headwater, as a dataset in SI units.
+
+    `discharge` and `flow_state` are by headwater, opening and tailwater; the levels of `TailwaterLimits` by headwater
+    and opening. Tailwaters above a headwater have no values. ValueError where the canal has no gate of that name.
+    """
+    site = _Site(network_of(canal.canal, SPACING), gate_name)
+    shape = len(headwater_levels), len(openings), len(tailwater_levels)
+    discharge, state = np.full(shape, np.nan), np.full(shape, np.nan)
+    limits = np.full((*shape[:2], len(TailwaterLimits._fields)), np.nan)
+    for (i, up), (j, opening) in product(enumerate(headwater_levels), enumerate(openings)):
+        limits[i, j] = site.limits(float(up), float(opening))
+        for k, down in enumerate(tailwater_levels):
+            if down < up:
+                flow = site.flow(float(up), float(down), float(opening))
+                discharge[i, j, k], state[i, j, k] = flow.discharge, flow.state
+    by_opening = ("headwater", "opening")
+    return xr.Dataset(
+        {
+            "discharge": ((*by_opening, "tailwater"), discharge),
+            "flow_state": ((*by_opening, "tailwater"), state, {"flag_meanings": " ".join(STATES)}),
+            **{name: (by_opening, limits[..., k]) for k, name in enumerate(TailwaterLimits._fields)},
+        },
+        {"headwater": headwater_levels, "opening": openings, "tailwater": tailwater_levels},
+        {"canal": canal.canal.name, "gate": gate_name, "floor_level": site.law.floor_level},
+    )  # fmt: skip
 
 
 def default_rating_levels(canal: CanalFile, gate_name: str) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
@@ -93,32 +152,36 @@ class _Site:
         self.above = self.channel.shapes[self.gate.upstream_section]
         self.below = self.channel.shapes[self.gate.downstream_section]
 
-    def row(self, up: float, down: float, opening: float, modular: float, protection: float) -> RatingRow:
-        flow = gate_flow(self.law, self.above, self.below, up, down, opening)
+    def flow(self, up: float, down: float, opening: float) -> GateFlow:
+        return gate_flow(self.law, self.above, self.below, up, down, opening)
+
+    def row(self, up: float, down: float, opening: float, limits: TailwaterLimits) -> RatingRow:
+        flow = self.flow(up, down, opening)
         return RatingRow(
-            up, down, opening, flow.discharge, STATES[flow.state], modular, protection, QUALITIES[flow.quality]
-        )
+            up, down, opening, flow.discharge, STATES[flow.state], limits.modular_limit_level,
+            limits.protection_limit_level, QUALITIES[flow.quality],
+        )  # fmt: skip
 
-    def limits(self, up: float, opening: float) -> tuple[float, float]:
-        """Tailwater levels [m] of the modular limit and of the jump's end at the end of the protection."""
-        _, jet, discharge, _ = free_jet(self.law, self.above, up, opening)
+    def limits(self, up: float, opening: float) -> TailwaterLimits:
+        _, thickness, discharge, _ = free_jet(self.law, self.above, up, opening)
         if discharge <= 0.0:
-            return math.nan, math.nan
-        modular = self.law.floor_level + modular_limit_depth(self.law, self.below, jet, discharge)
-        return modular, self._protection_limit(jet, discharge, opening)
-
-    def _protection_limit(self, thickness: float, discharge: float, opening: float) -> float:
-        """Level of still tailwater, found as the margin of tailwater at the datum."""
+            return NO_LIMITS
+        modular = self.law.floor_level + modular_limit_depth(self.law, self.below, thickness, discharge)
         step = self.law.sill_level - self.law.floor_level
         jet = jet_on_floor(self.below, jet_width(self.law), thickness, step, discharge)
         if jet.froude <= 1.0:
-            return math.nan
+            return NO_LIMITS._replace(modular_limit_level=modular)
+        drowning = self.law.floor_level + drowning_depth(self.below, jet)
+        return TailwaterLimits(modular, drowning, *self._levels_at_ends(jet, opening))
+
+    def _levels_at_ends(self, jet: Jet, opening: float) -> Iterator[float]:
+        """Levels of still tailwater whose jump ends where apron and protection end: margins of tailwater at datum."""
         first, last = self.gate.downstream_node, self.gate.floor_last
         origin = self.channel.nodes[first].chainage
         chainages, depths = np.zeros(JET_POINTS), np.zeros(JET_POINTS)
         count, _ = supercritical_profile(
-            self.channel, first, last, origin + opening, jet.full_depth, discharge, chainages, depths
+            self.channel, first, last, origin + opening, jet.full_depth, jet.discharge, chainages, depths
         )
-        level = np.zeros(self.channel.nodes.size)
-        end = origin + self.gate.protection_end
-        return -protection_margin(self.channel, first, last, level, discharge, chainages, depths, count, end)
+        still = np.zeros(self.channel.nodes.size)
+        for end in (origin + self.gate.apron_end, origin + self.gate.protection_end):
+            yield -protection_margin(self.channel, first, last, still, jet.discharge, chainages, depths, count, end)

@@ -272,3 +272,15 @@ def _letters(comparison: Comparison) -> list[str]:
 
 def _listed(sentences: Iterable[str], width: int) -> Iterator[str]:
     return (paragraph(words, width, indent=INDENT * 2, hanging=INDENT * 3) for words in sentences)
+
+
+def contrast_words(comparison: Comparison, place: int, clock: RunClock, display: Display) -> list[str]:
+    """In sentences how the run at a place, from 1 on, differs from the first: incidents, since when, orders, inputs."""
+    contrast = comparison.contrasts[place - 1]
+    return [
+        *_incidents_in_short(comparison, place, display),
+        _start_words(contrast, comparison, clock),
+        *schedule_words(contrast.run.letter, contrast.schedule, clock, display),
+        *([] if contrast.has_same_inputs else ["what is found need not come from the plans"]),
+        *([] if contrast.has_same_inputs else input_words(contrast, clock, display)),
+    ]

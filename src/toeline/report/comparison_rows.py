@@ -103,9 +103,7 @@ def comparison_rows(comparison: Comparison, clock: RunClock, display: Display) -
 
 def _setting_rows(part: str, contrast: Contrast, differences: Iterable[InputDifference]) -> Iterator[ComparisonRow]:
     for one in differences:
-        yield ComparisonRow(
-            part, contrast.run.name, ".".join(one.path), "", _setting(one.other), _setting(one.first)
-        )
+        yield ComparisonRow(part, contrast.run.name, ".".join(one.path), "", _setting(one.other), _setting(one.first))
 
 
 def _setting(value: Any) -> float | str:

@@ -75,9 +75,7 @@ def _sampling(found: Sequence[Indicator]) -> str:
     return f"{words[:1].upper()}{words[1:]}."
 
 
-def _pivoted(
-    found: Sequence[Indicator], subject: str, columns: Mapping[str, str], display: Display, width: int
-) -> str:
+def _pivoted(found: Sequence[Indicator], subject: str, columns: Mapping[str, str], display: Display, width: int) -> str:
     """One row a place, one column an indicator; empty where there is nothing to count."""
     cells = {
         (indicator.where, indicator.name): value_text(indicator.value, indicator.unit, display)

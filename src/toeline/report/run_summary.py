@@ -23,6 +23,7 @@ from toeline.report.limits import limit_lines
 from toeline.report.moves import move_lines
 from toeline.report.orders import order_lines
 from toeline.report.run_clock import RunClock
+from toeline.report.run_identity import run_identity
 from toeline.report.water import escape_lines, ledger_lines
 from toeline.units import Display
 
@@ -50,15 +51,13 @@ def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
         ("Caution", [paragraph(run.attrs["comment"], width)]),
     ]
     shown = [(title, list(lines)) for title, lines in sections]
-    return "\n\n".join([_title(run, clock, width), *(_section(title, lines) for title, lines in shown if lines)])
+    return "\n\n".join([_title(run, width), *(_section(title, lines) for title, lines in shown if lines)])
 
 
-def _title(run: xr.Dataset, clock: RunClock, width: int) -> str:
-    plan = f"plan {run.attrs['plan']}" if run.attrs["plan"] else "no plan"
-    day = f"{clock.start:%A %Y-%m-%d}, {clock.span(run['time'].values[0], run['time'].values[-1])}"
-    zone = run.attrs["zone"] or f"UTC{run.attrs['utc_offset']}"
-    first = paragraph(f"{run.attrs['canal']}: {run.attrs['title']}", width, indent="")
-    return first + "\n" + paragraph(f"{plan}; {day}, {zone}; {run.attrs['outcome']}", width)
+def _title(run: xr.Dataset, width: int) -> str:
+    about = run_identity(run)
+    first = paragraph(f"{about.canal}: {about.day}", width, indent="")
+    return first + "\n" + paragraph(f"{about.plan}; {about.period}, {about.zone}; {about.outcome}", width)
 
 
 def _section(title: str, lines: Iterable[str]) -> str:

@@ -76,7 +76,7 @@ class Limit(Table):
     )
     limit: float = Field(
         description="Greatest fall or rise, highest or lowest level, least freeboard or head over the sill of the "
-        "offtake, greatest velocity, most moves, or longest time in the window, such as `\"2 h\"`."
+        'offtake, greatest velocity, most moves, or longest time in the window, such as `"2 h"`.'
     )
     pools: _NamesOrAll = Field(ALL, description="Pools it holds for.")
     gates: _NamesOrAll = Field(ALL, description="Gates it holds for.")

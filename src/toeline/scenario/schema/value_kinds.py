@@ -193,7 +193,7 @@ class Names(ValueKind):
         if value == "all":
             return "all"
         if not isinstance(value, list) or not value:
-            raise ValueError(f"found {shown(value)}; allowed: \"all\", or an array of one or more names")
+            raise ValueError(f'found {shown(value)}; allowed: "all", or an array of one or more names')
         names = tuple(Text().read(name, info) for name in value)
         if repeated := next((name for place, name in enumerate(names) if name in names[:place]), None):
             raise ValueError(f"found {shown(repeated)} twice; allowed: each name once")
