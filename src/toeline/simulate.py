@@ -4,7 +4,7 @@ import json
 import os
 from collections.abc import Callable
 from dataclasses import fields, is_dataclass
-from datetime import UTC, datetime
+from datetime import UTC, datetime, timedelta
 from hashlib import sha256
 from typing import Any
 
@@ -62,7 +62,7 @@ def simulate(
         run = Run(network, timetable, sink, start)
         run.go(progress)
     except (KeyboardInterrupt, RunError) as reason:
-        sink.close(_stopped(timetable, run.time if run else 0, reason), {})
+        sink.close(_stopped(scenario, run.time if run else 0, reason), {})
         raise
     sink.close(COMPLETE, run.end_state())
     return sink.dataset if isinstance(sink, DatasetSink) else open_run(sink.written_path)
@@ -95,8 +95,9 @@ def levels_and_discharges(start: Start | dict[str, np.ndarray]) -> tuple[np.ndar
     return (start["end_level"], start["end_discharge"]) if isinstance(start, dict) else (start.level, start.discharge)
 
 
-def _stopped(timetable: Timetable, time: int, reason: BaseException) -> str:
-    at = datetime.fromtimestamp((timetable.start_epoch_ms + time) / 1000.0, UTC).isoformat()
+def _stopped(scenario: Scenario, time: int, reason: BaseException) -> str:
+    start = scenario.day.period.start
+    at = (start.astimezone(UTC) + timedelta(milliseconds=time)).astimezone(start.tzinfo).isoformat(timespec="seconds")
     return f"stopped at {at}: {reason if isinstance(reason, RunError) else 'interrupted'}"
 
 

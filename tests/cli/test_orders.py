@@ -140,7 +140,8 @@ def test_a_day_file_is_not_taken_for_a_run(folder, call):
     [
         (("--by", "gatekeeper"), 'with the key "gatekeeper"'),
         (("--allow", "much"), "--allow: found"),
-        (("--allow=-1 cm",), "not below 0"),
+        (("--allow=-1 cm",), "from 0 to 0.50 m"),
+        (("--allow", "3"), "--allow: found 3; allowed: one length, from 0 to 0.50 m"),
         (("-o", "no/such"), "there is no directory no"),
     ],
 )

@@ -23,6 +23,8 @@ if TYPE_CHECKING:
 
 FORMATS = {"pdf": ".pdf", "text": ".txt", "csv": ".csv"}
 CALENDAR = ".ics"
+MOST_ALLOWED = 0.5
+"""Widest allowance [m]: with more a band says nothing, and a number in the wrong unit is near (choice)."""
 
 
 @click.command(short_help="Write the order sheets of a run: to print, as text, CSV and calendar.")
@@ -114,8 +116,8 @@ def allowance_of(text: str | None, run: "xr.Dataset") -> float | None:
     if text is None:
         return None
     given = lengths("--allow", text, UnitSystem(run.attrs["units_for_display"]))
-    if len(given) > 1 or given[0] < 0.0:
-        raise UsageError(f"--allow: found {text}; allowed: one length, not below 0")
+    if len(given) > 1 or not 0.0 <= given[0] <= MOST_ALLOWED:
+        raise UsageError(f"--allow: found {text}; allowed: one length, from 0 to {MOST_ALLOWED:.2f} m, such as '3 cm'")
     return given[0]
 
 

@@ -19,10 +19,10 @@ ENTRIES: dict[str, Callable[[Account], float]] = {
 """Columns of the table of pools."""
 
 
-def ledger_lines(ledger: Ledger, display: Display, width: int) -> Iterator[str]:
-    """What came in, where it went and what is left unexplained, in both units; then pool by pool in that of display."""
+def canal_entries(ledger: Ledger) -> dict[str, float]:
+    """The lines of the ledger of the canal [m³], all as amounts; the residual is the first less all others."""
     canal = ledger.canal
-    entries = {
+    return {
         "taken in at the head": canal.inflow,
         **{f"delivered, {offtake}": volume for offtake, volume in canal.deliveries.items()},
         **{f"spilled, {escape}": volume for escape, volume in canal.escapes.items()},
@@ -31,14 +31,23 @@ def ledger_lines(ledger: Ledger, display: Display, width: int) -> Iterator[str]:
         **{f"kept in {pool}": account.storage_change for pool, account in ledger.pools.items()},
         "residual": canal.residual,
     }
-    rows = [(name, _rounded(volume, 0), _rounded(acre_feet(volume), 2)) for name, volume in entries.items()]
-    yield table(("", "m3", "acre-ft"), rows, width)
-    losses = "Lost: seepage and evaporation less rain. " if canal.losses else ""
-    yield paragraph(
+
+
+def ledger_note(ledger: Ledger) -> str:
+    """What the words of the ledger mean."""
+    losses = "Lost: seepage and evaporation less rain. " if ledger.canal.losses else ""
+    return (
         f"{losses}Kept: what the volume grew by; negative: it shrank. Residual: what was taken in less all of the "
-        "other lines: whether the computing lost water.",
-        width,
+        "other lines: whether the computing lost water."
     )
+
+
+def ledger_lines(ledger: Ledger, display: Display, width: int) -> Iterator[str]:
+    """What came in, where it went and what is left unexplained, in both units; then pool by pool in that of display."""
+    entries = canal_entries(ledger)
+    rows = [(name, rounded(volume, 0), rounded(acre_feet(volume), 2)) for name, volume in entries.items()]
+    yield table(("", "m3", "acre-ft"), rows, width)
+    yield paragraph(ledger_note(ledger), width)
     yield _pool_table(ledger, display, width)
 
 
@@ -50,7 +59,7 @@ def _pool_table(ledger: Ledger, display: Display, width: int) -> str:
     is_metric = display.system is UnitSystem.metric
     convert, decimals = (float, 0) if is_metric else (acre_feet, 2)
     rows = [
-        (name, *(_rounded(convert(entry(account)), decimals) for entry in used.values()))
+        (name, *(rounded(convert(entry(account)), decimals) for entry in used.values()))
         for name, account in accounts.items()
     ]
     return table((FILE_UNITS["volume"][display.system], *used), rows, width)
@@ -78,5 +87,6 @@ def _spill_words(spill: EscapeSpill, clock: RunClock, display: Display) -> str:
     )
 
 
-def _rounded(value: float, decimals: int) -> str:
+def rounded(value: float, decimals: int) -> str:
+    """A number with its thousands apart."""
     return f"{round(value, decimals) + 0.0:,.{decimals}f}"  # + 0.0 turns -0.0 into 0.0
