@@ -4,7 +4,7 @@ import json
 import os
 from collections.abc import Callable
 from dataclasses import fields, is_dataclass
-from datetime import UTC, datetime
+from datetime import UTC, datetime, timedelta
 from hashlib import sha256
 from typing import Any
 
@@ -53,10 +53,7 @@ def simulate(
     where `output` exists and may not be overwritten, RunError where no step can be solved or a rule fails; what was
     done until then, as after a KeyboardInterrupt, stays in `output`.partial.
     """
-    network = network_of(scenario.canal, scenario.day.period.spacing)
-    timetable = timetable_of(scenario, network)
-    check_mild(scenario, timetable)
-    start = start_of(scenario, network, timetable)
+    network, timetable, start = ready(scenario)
     level, discharge = levels_and_discharges(start)
     description = static_values(network, level, discharge), attributes(scenario), scenario.day.period.start
     sink = DatasetSink(*description) if output is None else NetcdfSink(output, *description, overwrite=overwrite)
@@ -65,10 +62,21 @@ def simulate(
         run = Run(network, timetable, sink, start)
         run.go(progress)
     except (KeyboardInterrupt, RunError) as reason:
-        sink.close(_stopped(timetable, run.time if run else 0, reason), {})
+        sink.close(_stopped(scenario, run.time if run else 0, reason), {})
         raise
     sink.close(COMPLETE, run.end_state())
     return sink.dataset if isinstance(sink, DatasetSink) else open_run(sink.written_path)
+
+
+def ready(scenario: Scenario) -> tuple[Network, Timetable, Start | dict[str, np.ndarray]]:
+    """The canal as arrays, the course of the day, and the state at the start; nothing is stepped.
+
+    Raises ScenarioError or UsageError where the day cannot start as asked.
+    """
+    network = network_of(scenario.canal, scenario.day.period.spacing)
+    timetable = timetable_of(scenario, network)
+    check_mild(scenario, timetable)
+    return network, timetable, start_of(scenario, network, timetable)
 
 
 def start_of(scenario: Scenario, network: Network, timetable: Timetable) -> Start | dict[str, np.ndarray]:
@@ -87,8 +95,9 @@ def levels_and_discharges(start: Start | dict[str, np.ndarray]) -> tuple[np.ndar
     return (start["end_level"], start["end_discharge"]) if isinstance(start, dict) else (start.level, start.discharge)
 
 
-def _stopped(timetable: Timetable, time: int, reason: BaseException) -> str:
-    at = datetime.fromtimestamp((timetable.start_epoch_ms + time) / 1000.0, UTC).isoformat()
+def _stopped(scenario: Scenario, time: int, reason: BaseException) -> str:
+    start = scenario.day.period.start
+    at = (start.astimezone(UTC) + timedelta(milliseconds=time)).astimezone(start.tzinfo).isoformat(timespec="seconds")
     return f"stopped at {at}: {reason if isinstance(reason, RunError) else 'interrupted'}"
 
 

@@ -36,8 +36,8 @@ def test_all_formats_tell_the_same_order(run, folder, call):
     page = " ".join(PdfReader(sheets / "Middle_check.pdf").pages[0].extract_text().split())
     assert row["move"] == "open by 0.050 m"
     assert event.summary.value == "Middle check: open by 0.050 m"
-    assert "OPEN BY 0.050 M" in page
-    assert "OPEN BY 0.050 M" in (sheets / "Middle_check.txt").read_text()
+    assert "OPEN BY 0.050 m" in page
+    assert "OPEN BY 0.050 m" in (sheets / "Middle_check.txt").read_text()
     assert f"From {float(row['opening_from [m]']):.3f} m to {float(row['opening_to [m]']):.3f} m." in page
 
 
@@ -140,7 +140,8 @@ def test_a_day_file_is_not_taken_for_a_run(folder, call):
     [
         (("--by", "gatekeeper"), 'with the key "gatekeeper"'),
         (("--allow", "much"), "--allow: found"),
-        (("--allow=-1 cm",), "not below 0"),
+        (("--allow=-1 cm",), "from 0 to 0.50 m"),
+        (("--allow", "3"), "--allow: found 3; allowed: one length, from 0 to 0.50 m"),
         (("-o", "no/such"), "there is no directory no"),
     ],
 )

@@ -60,13 +60,13 @@ def test_the_verdict_comes_first_with_place_time_and_amount(bad_hour):
     text = words(report_page({"day": bad_hour}))
     verdict = text[: text.index("Where the jump stood")]
     assert "Middle check: jump beyond protection, 07:08 to 08:07 (58 min)." in verdict
-    assert "worst -0.14 m at 07:10" in verdict
-    assert "end of the jump from the gate 41.20 m; limit 34.00 m" in verdict
+    assert "worst 0.14 m of tailwater missing at 07:10" in verdict
+    assert "the jump ends up to 41.2 m from the gate; the floor is protected to 34.0 m" in verdict
 
 
 def test_both_hazards_stand_side_by_side(bad_hour):
     text = words(report_page({"day": bad_hour}))
-    floor, people = text.index("Floor: jump beyond protection 1 h"), text.index("People: drowned roller 4 h")
+    floor, people = text.index("Floor: jump beyond protection 58 min"), text.index("People: drowned roller 4 h")
     assert floor < people < text.index("At no hour is any place below a gate safe to enter")
 
 

@@ -23,6 +23,8 @@ if TYPE_CHECKING:
 
 FORMATS = {"pdf": ".pdf", "text": ".txt", "csv": ".csv"}
 CALENDAR = ".ics"
+MOST_ALLOWED = 0.5
+"""Widest allowance [m]: with more a band says nothing, and a number in the wrong unit is near (choice)."""
 
 
 @click.command(short_help="Write the order sheets of a run: to print, as text, CSV and calendar.")
@@ -114,8 +116,8 @@ def allowance_of(text: str | None, run: "xr.Dataset") -> float | None:
     if text is None:
         return None
     given = lengths("--allow", text, UnitSystem(run.attrs["units_for_display"]))
-    if len(given) > 1 or given[0] < 0.0:
-        raise UsageError(f"--allow: found {text}; allowed: one length, not below 0")
+    if len(given) > 1 or not 0.0 <= given[0] <= MOST_ALLOWED:
+        raise UsageError(f"--allow: found {text}; allowed: one length, from 0 to {MOST_ALLOWED:.2f} m, such as '3 cm'")
     return given[0]
 
 
@@ -178,13 +180,22 @@ def issue_page(
     run: Path, folder: Path, sheets: Sequence["Sheet"], stems: Mapping[str, str], suffixes: Sequence[str]
 ) -> str:
     """What was written: a line for each sheet."""
-    from toeline.report.layout import counted, paragraph, table
+    from toeline.report.layout import paragraph, table
 
     width = page_width()
-    rows = [(sheet.whose, counted(len(sheet.orders), "order"), stems[sheet.whose]) for sheet in sheets]
+    rows = [(sheet.whose, contents(sheet), stems[sheet.whose]) for sheet in sheets]
     title = paragraph(f"Order sheets of {run}: {sheets[0].plan}, revision {sheets[0].revision}", width, indent="")
     where = paragraph(f"In {folder}, each as {', '.join(suffixes)}", width, indent="")
     return "\n".join([title, table(("", "", "file"), rows, width), where])
+
+
+def contents(sheet: "Sheet") -> str:
+    """What a sheet asks for, in numbers."""
+    from toeline.report.layout import counted
+
+    visits = sum(form.count for form in sheet.rounds)
+    orders = counted(len(sheet.orders), "order")
+    return f"{orders}, {counted(visits, 'visit')}" if visits else orders
 
 
 def tell_what_to_look_at(run: Path, dataset: "xr.Dataset") -> None:

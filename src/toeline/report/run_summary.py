@@ -8,7 +8,7 @@ from toeline.findings.bays import uneven_bays
 from toeline.findings.escapes import escape_spills
 from toeline.findings.gauges import gauge_readings
 from toeline.findings.incidents import incidents
-from toeline.findings.indicators import indicators
+from toeline.findings.indicators import place_indicators
 from toeline.findings.jumps import gate_jumps
 from toeline.findings.ledger import ledger
 from toeline.findings.limit_incidents import limit_uses
@@ -46,8 +46,8 @@ def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
         ("Escapes", escape_lines(escape_spills(run), clock, display, width)),
         ("Staff gauges", gauge_lines(gauge_readings(run), clock, display, width)),
         ("Roughness", roughness_lines(run, width)),
-        ("Indicators", indicator_lines(indicators(run), display, width)),
-        ("Water ledger", ledger_lines(ledger(run), width)),
+        ("Indicators", indicator_lines(place_indicators(run), display, width)),
+        ("Water ledger", ledger_lines(ledger(run), display, width)),
         ("Caution", [paragraph(run.attrs["comment"], width)]),
     ]
     shown = [(title, list(lines)) for title, lines in sections]

@@ -10,7 +10,7 @@ from toeline.findings.incidents import Incident
 from toeline.findings.jumps import GateJumps, gate_jumps
 from toeline.findings.series import is_any, names
 from toeline.report.clock import duration_text
-from toeline.report.incidents import incident_stories
+from toeline.report.incidents import incident_stories, worst_words
 from toeline.report.layout import counted
 from toeline.report.page.moments import Moments
 from toeline.report.run_clock import RunClock
@@ -173,7 +173,7 @@ def _nearest(gates: Sequence[GateJumps], display: Display) -> str:
 
 
 def _worst(incident: Incident, clock: RunClock, display: Display) -> str:
-    value = value_text(incident.worst, incident.unit, display)
+    value = worst_words(incident, display)
     return value if value == "-" else f"{value} {clock.window(incident.worst_time, incident.window)}"
 
 
