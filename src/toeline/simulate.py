@@ -15,7 +15,6 @@ import toeline
 from toeline.engine.run import Run
 from toeline.engine.settling import round_trip
 from toeline.engine.state import new_state
-from toeline.errors import RunError
 from toeline.network.build import network_of
 from toeline.network.initial_state import Start
 from toeline.network.lead_times import pool_times
@@ -64,7 +63,7 @@ def simulate(
     try:
         run = Run(network, timetable, sink, start)
         run.go(progress)
-    except (KeyboardInterrupt, RunError) as reason:
+    except BaseException as reason:
         sink.close(_stopped(timetable, run.time if run else 0, reason), {})
         raise
     sink.close(COMPLETE, run.end_state())
@@ -89,7 +88,7 @@ def levels_and_discharges(start: Start | dict[str, np.ndarray]) -> tuple[np.ndar
 
 def _stopped(timetable: Timetable, time: int, reason: BaseException) -> str:
     at = datetime.fromtimestamp((timetable.start_epoch_ms + time) / 1000.0, UTC).isoformat()
-    return f"stopped at {at}: {reason if isinstance(reason, RunError) else 'interrupted'}"
+    return f"stopped at {at}: {'interrupted' if isinstance(reason, KeyboardInterrupt) else reason}"
 
 
 def attributes(scenario: Scenario) -> dict[str, str]:
