@@ -134,6 +134,17 @@ def test_fixed_values_that_do_not_fit_leave_no_file(invented_run, tmp_path):
     assert list(tmp_path.iterdir()) == []
 
 
+def test_a_disk_that_is_full_from_the_start_leaves_no_file(invented_run, tmp_path, monkeypatch):
+    def fail(*_):
+        raise RuntimeError("NetCDF: HDF error")  # what netCDF4 raises then
+
+    monkeypatch.setattr(NetcdfSink, "_define", fail)
+    run = invented_run()
+    with pytest.raises(UsageError, match="cannot be written: NetCDF: HDF error; .* MB of disk are free"):
+        NetcdfSink(tmp_path / "run.nc", run.static(), run.attributes, run.start)
+    assert list(tmp_path.iterdir()) == []
+
+
 @pytest.fixture
 def endless_writer(invented_run, tmp_path):
     """A process that writes an invented run over and over, and that run."""
