@@ -140,7 +140,7 @@ def test_a_disk_that_is_full_from_the_start_leaves_no_file(invented_run, tmp_pat
 
     monkeypatch.setattr(NetcdfSink, "_define", fail)
     run = invented_run()
-    with pytest.raises(UsageError, match="cannot be written: NetCDF: HDF error; .* MB of disk are free"):
+    with pytest.raises(UsageError, match=r"cannot be written: NetCDF: HDF error; .* MB of disk are free"):
         NetcdfSink(tmp_path / "run.nc", run.static(), run.attributes, run.start)
     assert list(tmp_path.iterdir()) == []
 
