@@ -9,6 +9,7 @@ import numpy as np
 import pytest
 import xarray as xr
 
+from toeline.errors import UsageError
 from toeline.results import netcdf_writer
 from toeline.results.dataset import DatasetSink, open_run
 from toeline.results.netcdf_writer import NetcdfSink

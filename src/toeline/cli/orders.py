@@ -91,6 +91,8 @@ def command(
         dataset = opened.load()
     if not dataset.sizes["time"]:
         raise UsageError(f"{run} was stopped before anything reached the disk: there are no orders to write.")
+    if not dataset.sizes["gate"]:
+        raise UsageError(f"{run} is of a canal without gates: there is nobody to write orders for.")
     sheets = order_sheets(dataset, by, allowance=allowance_of(allow, dataset))
     stems = sheet_files(sheets)
     refuse_files(folder, stems.values(), [*suffixes, CALENDAR], overwrite)
