@@ -15,7 +15,6 @@ import toeline
 from toeline.engine.run import Run
 from toeline.engine.settling import round_trip
 from toeline.engine.state import new_state
-from toeline.errors import RunError
 from toeline.network.build import network_of
 from toeline.network.initial_state import Start
 from toeline.network.lead_times import pool_times
@@ -61,7 +60,7 @@ def simulate(
     try:
         run = Run(network, timetable, sink, start)
         run.go(progress)
-    except (KeyboardInterrupt, RunError) as reason:
+    except BaseException as reason:
         sink.close(_stopped(scenario, run.time if run else 0, reason), {})
         raise
     sink.close(COMPLETE, run.end_state())
@@ -98,7 +97,7 @@ def levels_and_discharges(start: Start | dict[str, np.ndarray]) -> tuple[np.ndar
 def _stopped(scenario: Scenario, time: int, reason: BaseException) -> str:
     start = scenario.day.period.start
     at = (start.astimezone(UTC) + timedelta(milliseconds=time)).astimezone(start.tzinfo).isoformat(timespec="seconds")
-    return f"stopped at {at}: {reason if isinstance(reason, RunError) else 'interrupted'}"
+    return f"stopped at {at}: {'interrupted' if isinstance(reason, KeyboardInterrupt) else reason}"
 
 
 def attributes(scenario: Scenario) -> dict[str, str]:

@@ -7,6 +7,8 @@ import pytest
 import vobject
 from pypdf import PdfReader
 
+from toeline.results.dataset import open_run
+
 FILES = {f"{gate}{suffix}" for gate in ("Middle_check", "Last_check") for suffix in (".pdf", ".txt", ".csv", ".ics")}
 
 
@@ -160,3 +162,12 @@ def test_a_run_that_stopped_early_gives_no_sheets(run, folder, call):
     result = call("orders", run)
     assert (result.exit_code, result.stdout) == (2, "")
     assert "not complete" in result.stderr
+
+
+def test_a_run_stopped_before_its_first_row_has_no_sheets(run, folder, call):
+    with open_run(folder / run) as whole:
+        whole.isel(time=slice(0)).load().to_netcdf(folder / "stopped.nc")
+    result = call("orders", "stopped.nc")
+    assert result.exit_code == 2
+    assert "stopped.nc was stopped before anything reached the disk" in result.stderr
+    assert not (folder / "stopped.orders").exists()

@@ -115,10 +115,12 @@ class Source:
     @contextmanager
     def opened(self) -> Iterator["xr.Dataset"]:
         from toeline import open_run, simulate
+        from toeline.results.dataset import damage_told
 
         if self.scenario is None:
-            with open_run(self.path) as run:
-                yield run
+            with open_run(self.path) as opened, damage_told(self.path):
+                run = opened.load()
+            yield run
             return
         label = self.scenario.plan or self.path.stem
         try:

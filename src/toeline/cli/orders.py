@@ -83,14 +83,18 @@ def command(
     """
     from toeline.report.order_calendar import issue
     from toeline.report.order_sheet import order_sheets
-    from toeline.results.dataset import open_run
+    from toeline.results.dataset import damage_told, open_run
 
     if not is_run(run):
         raise UsageError(f"{run} is no run: run the day first, look at what goes wrong, then name its file of results.")
     folder = output or Path(f"{run.stem}.orders")
     suffixes = [FORMATS[name] for name in formats or FORMATS]
-    with open_run(run) as opened:
+    with open_run(run) as opened, damage_told(run):
         dataset = opened.load()
+    if not dataset.sizes["time"]:
+        raise UsageError(f"{run} was stopped before anything reached the disk: there are no orders to write.")
+    if not dataset.sizes["gate"]:
+        raise UsageError(f"{run} is of a canal without gates: there is nobody to write orders for.")
     sheets = order_sheets(dataset, by, allowance=allowance_of(allow, dataset))
     stems = sheet_files(sheets)
     refuse_files(folder, stems.values(), [*suffixes, CALENDAR], overwrite)

@@ -36,10 +36,10 @@ def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
     gates, moves = gate_jumps(run), gate_moves(run)
     sections = [
         ("What goes wrong", incident_lines(incidents(run), clock, display, width)),
-        ("Floor and people", hazard_lines(gates, clock, width)),
+        ("Floor and people", hazard_lines(gates, clock, width) if gates else ()),
         ("Limits", limit_lines(limit_uses(run), run, clock, display, width)),
-        ("Least margins", margin_lines(gates, clock, display, width)),
-        ("Hours in each state", hour_lines(gates, width)),
+        ("Least margins", margin_lines(gates, clock, display, width) if gates else ()),
+        ("Hours in each state", hour_lines(gates, width) if gates else ()),
         ("Bays that move apart", bay_lines(uneven_bays(run), clock, display, width)),
         ("Orders", order_lines(run, clock, display, width)),
         ("Moves", move_lines(run, moves, clock, display, width) if any(gate.moves for gate in moves) else ()),
