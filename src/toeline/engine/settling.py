@@ -1,4 +1,6 @@
-"""Until when a pool settles after a change, and the surge that an instantaneous change could send."""
+"""Until when a pool settles after a change, the surge that an instantaneous change could send, and what of a wave goes
+on through a gate.
+"""
 
 import math
 
@@ -10,6 +12,10 @@ from toeline.hydraulics.surge import DOWNSTREAM, UPSTREAM, surge_height, wave_sp
 
 LEAST_SURGE_DEPTH = 0.05
 """Depth [m] below which no surge bound is given: there is no pool to carry it."""
+
+
+WAVE_NUDGE = 1e-4
+"""Change of level [m] over which the slopes of the gate law are taken."""
 
 
 @kernel
@@ -43,6 +49,38 @@ def surge_bounds(shapes, gate, level_up, level_down, before, opening, opening_af
     if depth_down > LEAST_SURGE_DEPTH and is_carried(section_down, before, depth_down):
         down = surge_height(section_down, before, depth_down, change, DOWNSTREAM)[0]
     return up, down, change
+
+
+@kernel
+def passed_share(channel, gate, levels, opening, above, below, way):
+    """Share of the height of a small wave on its `way` that goes on into the pool beyond a gate, the rest being thrown
+    back: linear waves with the admittances T(c ± V) of both pools, and the slopes of the gate law to both levels.
+
+    `levels` [m] are those above and below the gate, `above` and `below` pairs of `pool_admittances`.
+    """
+    here = gate_discharge_at(channel.shapes, gate, levels[0], levels[1], opening)
+    by_up = gate_discharge_at(channel.shapes, gate, levels[0] + WAVE_NUDGE, levels[1], opening) - here
+    by_down = here - gate_discharge_at(channel.shapes, gate, levels[0], levels[1] + WAVE_NUDGE, opening)
+    near, far = max(by_up, 0.0) / WAVE_NUDGE, max(by_down, 0.0) / WAVE_NUDGE
+    coming, back, on = above[0], above[1], below[0]
+    if way == UPSTREAM:
+        near, far = far, near
+        coming, back, on = below[1], below[0], above[1]
+    return near * (1.0 / on + coming / (back * on)) / (1.0 + far / on + near / back)
+
+
+@kernel
+def pool_admittances(channel, node, state):
+    """Discharge of a small wave over its height [m²/s], T(c + V) and T(c − V), beside a node; 0 where it is dry or
+    critical.
+    """
+    site, level = channel.nodes[node], state.nodes[node].level
+    section, depth = channel.shapes[site.section], level - site.bed_level
+    with_flow, against = wave_speeds(section, state.links[node + 1].discharge, depth)
+    if with_flow <= 0.0 or against <= 0.0:
+        return 0.0, 0.0
+    width = geometry(section, depth)[1]
+    return width * with_flow, width * against
 
 
 @inner_kernel
