@@ -55,7 +55,7 @@ def test_one_day_under_two_file_names_with_other_plans_has_the_same_inputs(folde
     (folder / "other.toml").write_text("# another way\n" + other.replace("A short morning", "The same morning"))
     result = call("compare", "day.toml", "other.toml", "--plan", "hold")
     assert result.exit_code == 0
-    assert "The same in all but the plans" in result.stdout
+    assert "The same canal and day in all" in result.stdout
 
 
 def test_a_value_can_be_set_for_all(folder, call):

@@ -139,14 +139,17 @@ def sources_of(files: Sequence[Path], plans: Sequence[str], overrides: Sequence[
     if len(sources) < 2:
         found = "a day with one plan" if sources[0].scenario else "one run"
         raise UsageError(f"found {found} to compare; allowed: a day with several plans, or several runs.")
-    seen: set[tuple[Path, str | None]] = set()
-    for source in sources:
-        one = source.path.resolve(), source.plan
-        if one in seen:
-            plan = f", plan {source.plan}," if source.plan else ""
-            raise UsageError(f"{source.path}{plan} is named twice: name every run or plan once.")
-        seen.add(one)
+    refuse_twice([(source.path, source.plan) for source in sources])
     return sources
+
+
+def refuse_twice(given: Sequence[tuple[Path, str | None]]) -> None:
+    """Raise UsageError where one file, or one plan of a day, is named more than once."""
+    seen: set[tuple[Path, str | None]] = set()
+    for path, plan in given:
+        if (path.resolve(), plan) in seen:
+            raise UsageError(f"{path}{f', plan {plan},' if plan else ''} is named twice: name every run or plan once.")
+        seen.add((path.resolve(), plan))
 
 
 def _sources_in(file: Path, plans: Sequence[str], overrides: Sequence[str]) -> list[Source]:
