@@ -17,7 +17,7 @@ from toeline.report.page.arrays import MOST_SERIES_VALUES, order_marks, run_arra
 from toeline.report.page.document import report_page
 from toeline.report.page.hazard_strips import WIDTH, hazard_strips
 from toeline.report.page.moments import moments_of, nearest_rows
-from toeline.report.page.verdict import link_to
+from toeline.report.page.verdict import Wrong, headline, link_to
 from toeline.units import Display, UnitSystem
 
 BEYOND, DROWNED = 4, 1
@@ -247,3 +247,16 @@ def test_a_strip_shows_its_spells_to_scale_and_in_words(bad_hour):
     assert "Middle check: drowned: a roller, deadly to people 3 h; jump beyond protection 1 h" in strip.drawing
     widths = {float(width) for width in re.findall(r'width="([\d.]+)" height="\d+" fill="#D55E00"', strip.drawing)}
     assert widths == {WIDTH / 4}
+
+
+def test_the_headline_names_the_gravest_of_what_goes_wrong():
+    found = [
+        Wrong("Upper pool", "fall in 1 h over the limit", "06:10 to 07:31", (), None),
+        Wrong("Last check", "jump beyond protection", "07:00 to 07:10", (), None),
+    ]
+    told = headline(found)
+    assert told == (
+        "2 things go wrong at 2 places. Gravest of all, Last check: jump beyond protection, 07:00 to 07:10."
+    )
+    assert headline(found[:1]) == "Upper pool: fall in 1 h over the limit, 06:10 to 07:31."
+    assert headline([]) == "No incident was found."
