@@ -10,7 +10,7 @@ from click.exceptions import Exit
 
 from toeline.cli.exit_status import ExitStatus
 from toeline.cli.input_files import INPUT_FILE, load_plans
-from toeline.cli.terminal import note, page_width, progress_bar, show, shown_path
+from toeline.cli.terminal import heeding_ctrl_c, note, page_width, progress_bar, show, shown_path
 from toeline.errors import RunError
 
 if TYPE_CHECKING:
@@ -98,7 +98,7 @@ def run_plan(scenario: "Scenario", output: Path, overwrite: bool, strict: bool) 
     from toeline.report.run_summary import run_summary
 
     try:
-        with progress_bar(scenario.plan or scenario.day_path.stem) as progress:
+        with progress_bar(scenario.plan or scenario.day_path.stem) as bar, heeding_ctrl_c(bar) as progress:
             dataset = simulate(scenario, output, overwrite=overwrite, progress=progress)
     except KeyboardInterrupt:
         note(f"Stopped by Ctrl-C. {what_is_left(output)}")
