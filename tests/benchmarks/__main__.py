@@ -6,7 +6,7 @@ from collections.abc import Callable
 from pathlib import Path
 
 from tests.benchmarks.command import tell_imports, time_the_command
-from tests.benchmarks.growth import tell_memory, time_growth
+from tests.benchmarks.growth import tell_memory, time_growth, time_the_season
 from tests.benchmarks.page import time_the_page
 from tests.benchmarks.rules import time_the_rules
 from tests.benchmarks.standard_day import time_the_day, time_the_full_equations, time_the_integrator
@@ -18,6 +18,7 @@ BENCHMARKS: dict[str, Callable[[Path], None]] = {
     "full": time_the_full_equations,
     "growth": time_growth,
     "memory": tell_memory,
+    "season": time_the_season,
     "writer": time_the_writer,
     "rules": time_the_rules,
     "command": time_the_command,

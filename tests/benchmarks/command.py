@@ -1,6 +1,7 @@
 """The command from the shell, and what it imports."""
 
 import os
+import resource
 import subprocess
 import sys
 import time
@@ -11,36 +12,45 @@ from statistics import median
 from tests.benchmarks.timing import show
 
 DEMO = Path(__file__).parents[2] / "scenarios" / "quillmere" / "morning_increase.toml"
+REPEATS = 5
 SHOWN = 8
 """Packages named, those that take longest."""
 
 
 def time_the_command(folder: Path) -> None:
+    """Wall time of commands, and the processor time in it: what they would take on a machine of their own."""
     run_it = ("run", str(DEMO), "--plan", "early", "--overwrite", "-o", str(folder / "demo.nc"))
-    first = wall(*run_it, environment=os.environ | {"TOELINE_CACHE_DIR": str(folder / "cache")})
-    wall(*run_it)
-    help_times, run_times = [wall("--help") for _ in range(7)], [wall(*run_it) for _ in range(5)]
-    compare_times = [wall("compare", str(DEMO)) for _ in range(5)]
-    verify_times = [wall("verify", str(DEMO), "--plan", "early") for _ in range(5)]
-    print("command, wall time")
-    show("toeline --help", help_times, median(run_times))
-    show("toeline run of the demo day", run_times, median(run_times))
-    show("toeline compare of its two plans", compare_times, median(run_times))
-    show("toeline verify of the demo day", verify_times, median(run_times))
-    show("the run, first ever (compiles)", [first], median(run_times))
+    first = took(*run_it, environment=os.environ | {"TOELINE_CACHE_DIR": str(folder / "cache")})
+    took(*run_it)
+    commands = {
+        "toeline --help": ("--help",),
+        "toeline run of the demo day": run_it,
+        "toeline compare of its two plans": ("compare", str(DEMO)),
+        "toeline verify of the demo day": ("verify", str(DEMO), "--plan", "early"),
+    }
+    times = {what: [took(*command) for _ in range(REPEATS)] for what, command in commands.items()}
+    times["the run, first ever (compiles)"] = [first]
+    over = median(wall for wall, _ in times["toeline run of the demo day"])
+    print("command, wall time, and processor time below")
+    for what, pairs in times.items():
+        walls, processors = (list(column) for column in zip(*pairs, strict=True))
+        show(what, walls, over)
+        show("", processors, over)
 
 
-def wall(*command: str, environment: dict[str, str] | None = None) -> float:
-    """Wall time of a command [s]."""
-    began = time.perf_counter()
+def took(*command: str, environment: dict[str, str] | None = None) -> tuple[float, float]:
+    """Wall and processor time of a command [s]."""
+    began, before = time.perf_counter(), resource.getrusage(resource.RUSAGE_CHILDREN)
     subprocess.run([sys.executable, "-m", "toeline", *command], check=True, capture_output=True, env=environment)
-    return time.perf_counter() - began
+    after = resource.getrusage(resource.RUSAGE_CHILDREN)
+    processor = after.ru_utime + after.ru_stime - before.ru_utime - before.ru_stime
+    return time.perf_counter() - began, processor
 
 
 def tell_imports(folder: Path) -> None:
     """Time that imports take, by package; the interpreter counts slower than it imports."""
     run_it = ("run", str(DEMO), "--plan", "early", "--overwrite", "-o", str(folder / "demo.nc"))
-    wall(*run_it)
+    took(*run_it)
     print("imports, time inside the modules of each package")
     for what, command in (("toeline --help", ("--help",)), ("toeline run of the demo day", run_it)):
         taken = import_times(*command)

@@ -9,7 +9,7 @@ from statistics import median
 
 import numpy as np
 from tests.benchmarks.canal_day import CanalDay
-from tests.benchmarks.timing import alternated
+from tests.benchmarks.timing import alternated, seconds
 from tests.canals import Table, day, order, scenario_of, stepped_canal
 
 from toeline import simulate
@@ -17,6 +17,7 @@ from toeline import simulate
 REPEATS = 5
 POOLS, DAYS, SPACINGS = (5, 10, 20, 40, 80), (1, 3, 10, 30), (400, 200, 100, 50, 25)
 MEMORY_DAYS = (1, 5, 15, 30)
+SEASON = (20, 180)
 DAY_LENGTH = 86_400
 MOVES = 20
 """Gate moves a day, however many gates: the work of every stop grows with the canal, their number does not."""
@@ -75,20 +76,30 @@ def exponent(sizes: Sequence[float], times: Sequence[float]) -> float:
 
 def tell_memory(folder: Path) -> None:
     """Peak memory of runs that write their file, each in a process of its own."""
-    peaks = {days: peak_memory(folder, days) for days in MEMORY_DAYS}
+    peaks = {days: run_apart(folder, 10, days)[1] for days in MEMORY_DAYS}
     print("peak memory of a run of 10 pools that writes its file")
     print(", ".join(f"{days} d: {peak:.0f} MB" for days, peak in peaks.items()))
     by_day = np.polyfit(list(peaks), list(peaks.values()), 1)[0]
     print(f"{by_day:.2f} MB a day of the run")
 
 
-def peak_memory(folder: Path, days: int) -> float:
-    """MB."""
-    command = [sys.executable, "-m", "tests.benchmarks.growth", str(folder), str(days)]
-    return float(subprocess.run(command, check=True, capture_output=True, text=True).stdout)
+def time_the_season(folder: Path) -> None:
+    """Once: a long run of a larger canal, its file written."""
+    taken, peak = run_apart(folder, *SEASON)
+    size = (folder / "run.nc").stat().st_size / 1e6
+    print("season: {} pools, {} days, output every minute, from the scenario to the file".format(*SEASON))
+    print(f"{taken:.1f} s of processor time, peak memory {peak:.0f} MB, file {size:.0f} MB")
+
+
+def run_apart(folder: Path, pools: int, days: int) -> tuple[float, float]:
+    """Processor time [s] and peak memory [MB] of a run in a process of its own."""
+    command = [sys.executable, "-m", "tests.benchmarks.growth", str(folder), str(pools), str(days)]
+    taken, peak = subprocess.run(command, check=True, capture_output=True, text=True).stdout.split()
+    return float(taken), float(peak)
 
 
 if __name__ == "__main__":
-    place = Path(sys.argv[1])
-    simulate(scenario_of(place, *busy_days(10, int(sys.argv[2]))), place / "season.nc", overwrite=True)
+    place, (pool_count, day_count) = Path(sys.argv[1]), map(int, sys.argv[2:])
+    scenario = scenario_of(place, *busy_days(pool_count, day_count))
+    print(seconds(lambda: simulate(scenario, place / "run.nc", overwrite=True).close()))
     print(resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024.0)
