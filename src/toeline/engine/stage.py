@@ -4,7 +4,6 @@ import math
 
 from toeline.engine.gate_link import boundary_balance
 from toeline.engine.reach_link import convective_target, convective_time, inertia_head, node_geometry, reach_balance
-from toeline.engine.tridiagonal import back_substitute
 from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH
 from toeline.hydraulics.kernel import inner_kernel
 from toeline.hydraulics.offtake import offtake_discharge
@@ -170,24 +169,27 @@ def assemble(tables, before, after, work, seconds, head_factor, inertial, forcin
 
 
 @inner_kernel
-def apply_correction(tables, after, work):
-    """Add the correction, each level within half its depth or 5 cm; returns the largest change of a level [m] that
-    counts.
+def correct(tables, after, work):
+    """Second sweep of the solution, adding each correction as it is found, levels within half the depth or 5 cm;
+    returns the largest change of a level [m] that counts.
     """
-    largest = 0.0
-    after.links[0].discharge += work.rows[0].x
-    for k in range(after.nodes.size):
-        node, row = after.nodes[k], work.rows[2 * k + 1]
+    last = after.nodes.size
+    x, largest = work.rows[2 * last].x * work.rows[2 * last].pivot, 0.0
+    after.links[last].discharge += x
+    for k in range(last - 1, -1, -1):
+        node, row, above = after.nodes[k], work.rows[2 * k + 1], work.rows[2 * k]
+        x = (row.x - row.upper * x) * row.pivot
         depth = node.level - tables.channel.nodes[k].bed_level
         most = max(0.5 * depth, 0.05)
-        change = max(min(max(row.x, -most), most), LOWEST_DEPTH - depth)
+        change = max(min(max(x, -most), most), LOWEST_DEPTH - depth)
         row.x = change
         node.level += change
-        after.links[k + 1].discharge += work.rows[2 * k + 2].x
         felt = abs(change)
         if depth < DRY_DEPTH:
             felt *= min(work.nodes[k].width / tables.cells[k].dry_width, 1.0)
         largest = max(largest, felt)
+        x = (above.x - above.upper * x) * above.pivot
+        after.links[k].discharge += x
     return largest
 
 
@@ -199,8 +201,7 @@ def solve_stage(tables, before, after, work, seconds, head_factor, inertial, for
         set_sources(tables, after, forcing, work)
         afresh = last_change > SMALL_CORRECTION
         assemble(tables, before, after, work, seconds, head_factor, inertial, forcing, afresh)
-        back_substitute(work.rows)
-        change = apply_correction(tables, after, work)
+        change = correct(tables, after, work)
         if not math.isfinite(change) or (k > 5 and change > 0.9 * last_change and change > 0.05):
             return 0
         if change < LEVEL_CONVERGED:
