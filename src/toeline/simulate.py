@@ -55,9 +55,9 @@ def simulate(
 
     `progress` is called with the fraction done. With `resume` the run goes on from the last checkpoint of an unfinished
     one, to the same values as if it had not been stopped, and begins anew where there is none. Raises ScenarioError
-    where the day cannot start as asked, UsageError where `output` exists and may not be overwritten, or where what is to
-    go on was begun with other inputs, RunError where no step can be solved or a rule fails; what was done until then,
-    as after a KeyboardInterrupt, stays in `output`.partial.
+    where the day cannot start as asked, UsageError where `output` exists and may not be overwritten, or what is to go
+    on was begun with other inputs, RunError where no step can be solved or a rule fails; what was done until then, as
+    after a KeyboardInterrupt, stays in `output`.partial.
     """
     network = network_of(scenario.canal, scenario.day.period.spacing)
     timetable = timetable_of(scenario, network)

@@ -1,6 +1,6 @@
 """A day in which everything moves that a checkpoint has to keep; run as a program it steps it, telling how far it is.
 
-    python stopped_days.py FOLDER
+python stopped_days.py FOLDER
 """
 
 import itertools

@@ -39,8 +39,8 @@ if TYPE_CHECKING:
 @click.option(
     "--resume",
     is_flag=True,
-    help="Go on with a run that was stopped or killed, from FILE.partial and FILE.checkpoint, to the same results as if "
-    "it had not been. Plans that are complete are left as they are; those not yet begun begin.",
+    help="Go on with a run that was stopped or killed, from FILE.partial and FILE.checkpoint, to the same results as "
+    "if it had not been. Plans that are complete are left as they are; those not yet begun begin.",
 )
 @click.option("--strict", is_flag=True, help="Exit with status 3 if there was an incident.")
 @click.pass_context

@@ -44,7 +44,8 @@ class Decisions:
         for choice, times in zip(timetable.rules, timetable.decisions, strict=True):
             rule = choice.found.make(choice.given, facts)
             label = self._label(f"{choice.kind}, {rule.gate}")
-            self.rules.append(RuleOfDay(choice.found, rule, rule.gate, array("q", times[::-1].astype(np.int64).tobytes()), label))
+            to_come = array("q", times[::-1].astype(np.int64).tobytes())
+            self.rules.append(RuleOfDay(choice.found, rule, rule.gate, to_come, label))
 
     def act(self, time: int, move: Move) -> None:
         """Ask the rules whose decision is due at a stop [ms of the period]."""

@@ -1,11 +1,13 @@
 """The run as a labelled dataset: collected in memory, or opened from a file, with the same metadata."""
 
 import os
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
+from contextlib import contextmanager
 from datetime import UTC, datetime, timedelta, timezone, tzinfo
 from pathlib import Path
 from zoneinfo import ZoneInfo
 
+import netCDF4
 import numpy as np
 import xarray as xr
 
@@ -22,6 +24,12 @@ from toeline.results.encoding import (
 )
 from toeline.results.provenance import SOURCE_PREFIX
 from toeline.results.variables import GROWING_DIMENSIONS, VARIABLES, growing
+
+CHUNK_CACHE = 2**18
+"""Bytes for each variable: a chunk or two; the default would keep what is read twice."""
+
+LONG_RUN = 100e6
+"""Bytes of a run from which it is not read as a whole."""
 
 
 class DatasetSink:
@@ -79,6 +87,7 @@ def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
     file = Path(path)
     if not file.is_file():
         raise UsageError(f"{file} is no file{_hint(file)}")
+    netCDF4.set_chunk_cache(CHUNK_CACHE)
     try:
         run = xr.open_dataset(file, engine="netcdf4")
     except (OSError, ValueError) as error:
@@ -87,6 +96,17 @@ def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
         run.close()
         raise UsageError(f"{file} is not the file of a Toeline run")
     return run
+
+
+@contextmanager
+def read_apart(run: xr.Dataset) -> Iterator[xr.Dataset]:
+    """The run for one finding of many: what is read of a long run is let go at the end of the `with`, not kept."""
+    source = run.encoding.get("source")
+    if source is None or run.nbytes < LONG_RUN:
+        yield run
+        return
+    with open_run(source) as apart:
+        yield apart
 
 
 def _hint(file: Path) -> str:

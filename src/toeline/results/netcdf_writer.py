@@ -29,8 +29,8 @@ from toeline.results.variables import GROWING_DIMENSIONS, VARIABLES, Variable, g
 TIME_CHUNK = 720
 ORDER_CHUNK = 64
 PROFILE_CHUNK_VALUES = 65_536
-CHUNK_CACHE = 2**20
-"""Bytes for each variable; the default of 64 MiB would fill the memory."""
+CHUNK_CACHE = 2**18
+"""Bytes for each variable: a chunk or two; the default of 64 MiB would fill the memory."""
 
 COPY_EVERY = 1.0
 COPY_SHARE = 0.2

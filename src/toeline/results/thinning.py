@@ -28,7 +28,7 @@ class Sink(Protocol):
 
 
 class Thinning:
-    """Hands on the rows at multiples of `every` and those less than or just `within` of an event [ms], both sides.
+    """Hands on the rows at multiples of `every` and those within `within` of an event [ms], before and after it.
 
     Events are moves of a leaf, changes of the state of a gate's flow or of its jump, water that passes a bank, a
     lining or the crest of an escape. The first and the last row are always handed on.
@@ -65,7 +65,7 @@ class Thinning:
         self._events = checkpoint[_EVENTS]
 
     def _passed(self, rows: dict[str, np.ndarray]) -> dict[str, np.ndarray]:
-        """Put new rows behind those that wait; take off, thinned, those that are so old that no event can touch them."""
+        """Put new rows behind those that wait; take off, thinned, those so old that no event can touch them."""
         before = len(self._waiting["time"]) if self._waiting else 0
         if before:
             rows = {name: np.concatenate((self._waiting[name], column)) for name, column in rows.items()}
