@@ -55,7 +55,8 @@ class Unfinished:
 def checkpoint_bytes(row_counts: Mapping[str, int], checkpoint: Mapping[str, np.ndarray]) -> bytes:
     """A checkpoint as it is kept beside the rows that were safe by then."""
     buffer = io.BytesIO()
-    np.savez(buffer, **{_ROWS: np.array(json.dumps(dict(row_counts)))}, **checkpoint)
+    arrays: dict[str, Any] = {_ROWS: np.array(json.dumps(dict(row_counts))), **checkpoint}
+    np.savez(buffer, **arrays)
     return buffer.getvalue()
 
 
