@@ -1,6 +1,7 @@
 """A run on one page, for the planner: first what goes wrong, then the rest."""
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Callable, Iterable
+from typing import TypeVar
 
 import xarray as xr
 
@@ -28,8 +29,7 @@ from toeline.report.water import escape_lines, ledger_lines
 from toeline.results.dataset import read_apart
 from toeline.units import Display
 
-Section = tuple[str, list[str]]
-"""Its heading, and its lines; none where there is nothing to tell."""
+T = TypeVar("T")
 
 
 def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
@@ -37,38 +37,36 @@ def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
     if not run.sizes["time"]:
         return paragraph("The run was stopped before anything reached the disk.", width, indent="")
     clock = RunClock(run)
-    shown = []
-    for part in (_hazards, _openings, _water, _figures):
-        with read_apart(run) as apart:
-            shown += [_section(title, lines) for title, lines in part(apart, clock, display, width) if lines]
-    return "\n\n".join([_title(run, width), *shown, _section("Caution", [paragraph(run.attrs["comment"], width)])])
+    gates = _apart(gate_jumps, run)
+    sections = [
+        ("What goes wrong", incident_lines(incidents(run), clock, display, width)),
+        ("Floor and people", hazard_lines(gates, clock, width)),
+        ("Limits", limit_lines(_apart(limit_uses, run), run, clock, display, width)),
+        ("Least margins", margin_lines(gates, clock, display, width)),
+        ("Hours in each state", hour_lines(gates, width)),
+        ("Bays that move apart", bay_lines(_apart(uneven_bays, run), clock, display, width)),
+        ("Orders", order_lines(run, clock, display, width)),
+        ("Moves", _apart(lambda apart: _moves(apart, clock, display, width), run)),
+        ("Escapes", escape_lines(_apart(escape_spills, run), clock, display, width)),
+        ("Staff gauges", gauge_lines(_apart(gauge_readings, run), clock, display, width)),
+        ("Roughness", _apart(lambda apart: roughness_lines(apart, width), run)),
+        ("Indicators", indicator_lines(indicators(run), display, width)),
+        ("Water ledger", ledger_lines(ledger(run), width)),
+        ("Caution", [paragraph(run.attrs["comment"], width)]),
+    ]
+    shown = [(title, list(lines)) for title, lines in sections]
+    return "\n\n".join([_title(run, width), *(_section(title, lines) for title, lines in shown if lines)])
 
 
-def _hazards(run: xr.Dataset, clock: RunClock, display: Display, width: int) -> Iterator[Section]:
-    yield "What goes wrong", list(incident_lines(incidents(run), clock, display, width))
-    gates = gate_jumps(run)
-    yield "Floor and people", list(hazard_lines(gates, clock, width))
-    yield "Limits", list(limit_lines(limit_uses(run), run, clock, display, width))
-    yield "Least margins", list(margin_lines(gates, clock, display, width))
-    yield "Hours in each state", list(hour_lines(gates, width))
+def _apart(finding: Callable[[xr.Dataset], Iterable[T]], run: xr.Dataset) -> list[T]:
+    """What a finding tells of a run; what it read of a long one is let go."""
+    with read_apart(run) as apart:
+        return list(finding(apart))
 
 
-def _openings(run: xr.Dataset, clock: RunClock, display: Display, width: int) -> Iterator[Section]:
+def _moves(run: xr.Dataset, clock: RunClock, display: Display, width: int) -> Iterable[str]:
     moves = gate_moves(run)
-    yield "Bays that move apart", list(bay_lines(uneven_bays(run), clock, display, width))
-    yield "Orders", list(order_lines(run, clock, display, width))
-    yield "Moves", list(move_lines(run, moves, clock, display, width)) if any(gate.moves for gate in moves) else []
-
-
-def _water(run: xr.Dataset, clock: RunClock, display: Display, width: int) -> Iterator[Section]:
-    yield "Escapes", list(escape_lines(escape_spills(run), clock, display, width))
-    yield "Staff gauges", list(gauge_lines(gauge_readings(run), clock, display, width))
-    yield "Roughness", list(roughness_lines(run, width))
-
-
-def _figures(run: xr.Dataset, clock: RunClock, display: Display, width: int) -> Iterator[Section]:
-    yield "Indicators", list(indicator_lines(indicators(run), display, width))
-    yield "Water ledger", list(ledger_lines(ledger(run), width))
+    return move_lines(run, moves, clock, display, width) if any(gate.moves for gate in moves) else ()
 
 
 def _title(run: xr.Dataset, width: int) -> str:

@@ -26,6 +26,7 @@ While a run goes on, and after one that stopped early, its file is named `run.nc
 it ended. `run.nc.checkpoint` beside it is what `toeline run --resume` needs to go on. A killed run may also leave
 `run.nc.writing` or `run.nc.copying`: they are of no use, and the next run of that name removes them. No state in any
 file is safe to enter.
+"""
 
 
 def reference_page() -> str:
