@@ -19,7 +19,7 @@ RULES = [
 ]
 ORDERS = [
     order("02:30", "G2", by=0.10),
-    order("05:58", "G2", by=0.20),
+    {"at": "05:58", "gate": "G2", "bay": 2, "by": 0.20},
     order("06:01", "G2", by=-0.10),  # replaces the one before
     order("09:15", "G2", opening=0.30),
 ]
@@ -43,7 +43,7 @@ def full_day(folder: Path, *, local_inertia: bool = False, **output: str) -> Sce
         deliveries={"T1": [["+0 h", 0.2], ["+8 h", 0.5]]},
         plans={"only": {"rules": RULES, "orders": ORDERS}},
     )  # fmt: skip
-    return scenario_of(folder, stepped_canal(3, 1500.0, gate={"moves_per_hour": 3}, **CANAL), keys)
+    return scenario_of(folder, stepped_canal(3, 1500.0, gate={"moves_per_hour": 3, "separate_bays": True}, **CANAL), keys)
 
 
 def copies_by_count(stops: int = 25) -> property:
