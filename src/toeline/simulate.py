@@ -4,7 +4,7 @@ import json
 import os
 from collections.abc import Callable
 from dataclasses import fields, is_dataclass
-from datetime import UTC, datetime
+from datetime import UTC, datetime, timedelta
 from hashlib import sha256
 from typing import Any
 
@@ -16,7 +16,6 @@ from toeline.engine.checkpoint import checkpoint_of, go_on_from
 from toeline.engine.run import Run
 from toeline.engine.settling import round_trip
 from toeline.engine.state import new_state
-from toeline.errors import RunError
 from toeline.network.build import network_of
 from toeline.network.initial_state import Start
 from toeline.network.lead_times import pool_times
@@ -59,10 +58,7 @@ def simulate(
     on was begun with other inputs, RunError where no step can be solved or a rule fails; what was done until then, as
     after a KeyboardInterrupt, stays in `output`.partial.
     """
-    network = network_of(scenario.canal, scenario.day.period.spacing)
-    timetable = timetable_of(scenario, network)
-    check_mild(scenario, timetable)
-    start = start_of(scenario, network, timetable)
+    network, timetable, start = ready(scenario)
     level, discharge = levels_and_discharges(start)
     static, about = static_values(network, level, discharge), attributes(scenario)
     unfinished = read_unfinished(output, about) if resume and output is not None else None
@@ -82,9 +78,9 @@ def simulate(
             thinning.go_on_from(unfinished.checkpoint)
             go_on_from(run, unfinished.checkpoint)
         run.go(_at_stops(run, thinning, sink, progress))
-    except (KeyboardInterrupt, RunError) as reason:
+    except BaseException as reason:
         thinning.finish()
-        sink.close(_stopped(timetable, run.time if run else 0, reason), {})
+        sink.close(_stopped(scenario, run.time if run else 0, reason), {})
         raise
     thinning.finish()
     sink.close(COMPLETE, run.end_state())
@@ -106,6 +102,17 @@ def _at_stops(
     return at_stop
 
 
+def ready(scenario: Scenario) -> tuple[Network, Timetable, Start | dict[str, np.ndarray]]:
+    """The canal as arrays, the course of the day, and the state at the start; nothing is stepped.
+
+    Raises ScenarioError or UsageError where the day cannot start as asked.
+    """
+    network = network_of(scenario.canal, scenario.day.period.spacing)
+    timetable = timetable_of(scenario, network)
+    check_mild(scenario, timetable)
+    return network, timetable, start_of(scenario, network, timetable)
+
+
 def start_of(scenario: Scenario, network: Network, timetable: Timetable) -> Start | dict[str, np.ndarray]:
     """The state at the start: computed, or the end state of the run that the day goes on from."""
     if scenario.start_file is None:
@@ -122,9 +129,10 @@ def levels_and_discharges(start: Start | dict[str, np.ndarray]) -> tuple[np.ndar
     return (start["end_level"], start["end_discharge"]) if isinstance(start, dict) else (start.level, start.discharge)
 
 
-def _stopped(timetable: Timetable, time: int, reason: BaseException) -> str:
-    at = datetime.fromtimestamp((timetable.start_epoch_ms + time) / 1000.0, UTC).isoformat()
-    return f"stopped at {at}: {reason if isinstance(reason, RunError) else 'interrupted'}"
+def _stopped(scenario: Scenario, time: int, reason: BaseException) -> str:
+    start = scenario.day.period.start
+    at = (start.astimezone(UTC) + timedelta(milliseconds=time)).astimezone(start.tzinfo).isoformat(timespec="seconds")
+    return f"stopped at {at}: {'interrupted' if isinstance(reason, KeyboardInterrupt) else reason}"
 
 
 def attributes(scenario: Scenario) -> dict[str, str]:

@@ -180,8 +180,9 @@ class Display:
         return self._text(value, "length", 2)
 
     def opening(self, value: float) -> str:
-        """Write an opening of a gate [m]."""
-        return self._text(value, "length", 2)
+        """Write an opening of a gate [m]: to 1 cm, where need be to 1 mm, or 0.01 ft."""
+        is_fine = self.system is UnitSystem.metric and round(value, 3) != round(value, 2)
+        return self._text(value, "length", 3 if is_fine else 2)
 
     def setting(self, value: float) -> str:
         """Write an opening that is to be set [m]: to 1 mm or 0.01 ft."""
@@ -190,6 +191,20 @@ class Display:
     def length(self, value: float) -> str:
         """Write a length or a distance [m]."""
         return self._text(value, "length", 2)
+
+    def amount(self, value: float) -> str:
+        """Write by how much an edge is passed [m]; one that rounds to nothing is still there."""
+        text = self.length(value)
+        return f"under {self.length(self._finest)}" if value > 0.0 and text == self.length(0.0) else text
+
+    @property
+    def _finest(self) -> float:
+        """The length [m] to which lengths are written."""
+        return 0.01 * file_factor("length", self.system)
+
+    def distance(self, value: float) -> str:
+        """Write how far from a gate something is that moves to and fro, as a jump does [m]: to 0.1 m or 1 ft."""
+        return self._text(value, "length", 1 if self.system is UnitSystem.metric else 0)
 
     def move(self, value: float) -> str:
         """Write by how much an opening is changed [m], without its sign: metric in cm, to the mm where need be."""
@@ -206,8 +221,8 @@ class Display:
         return self._text(value, "discharge", 3 if self.system is UnitSystem.metric else 1)
 
     def volume(self, value: float) -> str:
-        """Write a volume [m³]."""
-        return self._text(value, "volume", 0 if self.system is UnitSystem.metric else 2)
+        """Write a volume [m³], thousands apart."""
+        return self._text(value, "volume", 0 if self.system is UnitSystem.metric else 2, grouping=",")
 
     def velocity(self, value: float) -> str:
         """Write a velocity of the water [m/s]."""
@@ -221,8 +236,8 @@ class Display:
         """Write a seepage, evaporation or rain [m/s]."""
         return self._text(value, "rate of loss", 1 if self.system is UnitSystem.metric else 2)
 
-    def _text(self, value: float, dimension: Dimension, decimals: int) -> str:
+    def _text(self, value: float, dimension: Dimension, decimals: int, grouping: str = "") -> str:
         if math.isnan(value):
             return "-"
         number = round(value / file_factor(dimension, self.system), decimals) + 0.0  # + 0.0 turns -0.0 into 0.0
-        return f"{number:.{decimals}f} {FILE_UNITS[dimension][self.system]}"
+        return f"{number:{grouping}.{decimals}f} {FILE_UNITS[dimension][self.system]}"

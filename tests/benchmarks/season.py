@@ -1,4 +1,4 @@
-"""A season in one process: seconds and peak memory of runs of 30, 90 and 180 days, each in a process of its own.
+"""A season in one process, its page at the end: seconds and peak memory of 30, 90 and 180 days, each in its own.
 
     python -m tests.benchmarks.season
 """
@@ -46,28 +46,34 @@ def _peak() -> float:
     return resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1e3
 
 
-def _in_a_process(days: int) -> dict[str, float]:
-    command = [sys.executable, "-m", "tests.benchmarks.season", str(days)]
+def _in_a_process(days: int, folder: Path) -> dict[str, float]:
+    command = [sys.executable, "-m", "tests.benchmarks.season", str(days), str(folder)]
     found: dict[str, float] = json.loads(subprocess.run(command, check=True, capture_output=True, text=True).stdout)
     return found
 
 
-def main() -> None:
+def time_the_pages(folder: Path) -> None:
     """Print the table."""
-    _in_a_process(ONE_DAY)
-    print("season of 20 pools; wall time of stepping, and with the page; processor time; peak memory before the page")
+    _in_a_process(ONE_DAY, folder)
+    print("season of 20 pools, thinned but around events: wall time of stepping, and with the page; processor time;")
+    print("peak memory before and with the page")
     print(f"{'days':>6}{'stepped':>10}{'page':>10}{'processor':>12}{'peak':>10}{'page':>9}{'rows':>9}{'file':>10}")
     for days in DAYS:
-        one = _in_a_process(days)
+        one = _in_a_process(days, folder)
         print(
             f"{days:>6}{one['stepped']:>8.1f} s{one['whole']:>8.1f} s{one['processor']:>10.1f} s"
             f"{one['stepped_peak']:>7.0f} MB{one['peak']:>6.0f} MB{one['rows']:>9.0f}{one['file']:>7.0f} MB"
         )
 
 
+def main() -> None:
+    """The table alone."""
+    with tempfile.TemporaryDirectory() as folder:
+        time_the_pages(Path(folder))
+
+
 if __name__ == "__main__":
     if len(sys.argv) > 1:
-        with tempfile.TemporaryDirectory() as folder:
-            print(json.dumps(run_season(int(sys.argv[1]), Path(folder))))
+        print(json.dumps(run_season(int(sys.argv[1]), Path(sys.argv[2]))))
     else:
         main()

@@ -45,15 +45,44 @@ def test_a_file_that_is_not_there_is_wrong_use(folder, call):
 
 def test_rules_are_counted_and_code_of_ones_own_is_named(folder, call):
     rule = (
-        "from toeline.rules import Rule, place\n"
+        "from toeline.rules import EVERY, Rule, place\n"
         "class Idle(Rule):\n"
-        "    settings = {'gate': place('gate', 'Its gate.')}\n"
+        "    settings = {'every': EVERY, 'gate': place('gate', 'Its gate.')}\n"
         "    def decide(self, now):\n"
         "        return None\n"
     )
     (folder / "idle.py").write_text(rule)
     day = folder / "day.toml"
-    entry = 'rules = [{ kind = "idle.py:Idle", gate = "Last check" }]\norders = []'
+    entry = 'rules = [{ kind = "idle.py:Idle", every = "1 h", gate = "Last check" }]\norders = []'
     day.write_text(day.read_text().replace("orders = []", entry))
     result = call("check", "day.toml")
     assert "plan hold, 0 orders, 1 rule; plan raise, 1 order; rules of your own were run from idle.py" in result.stdout
+
+
+def test_a_start_that_cannot_be_is_told_as_by_run(folder, call):
+    day = folder / "day.toml"
+    day.write_text(day.read_text().replace('values = [["06:00", 3.0]]', 'values = [["06:00", 300.0]]'))
+    results = [call(name, "day.toml") for name in ("check", "run")]
+    assert [(result.exit_code, result.stdout) for result in results] == [(2, "")] * 2
+    assert "day.toml:15: start: no calm steady flow" in results[0].stderr
+    assert results[0].stderr == results[1].stderr
+
+
+def test_a_steep_pool_is_told_as_by_run(folder, call):
+    canal = folder / "canal.toml"
+    smooth = canal.read_text().replace("roughness = 0.020", "roughness = 0.005")
+    canal.write_text(smooth.replace("slope = 0.0002 },\n]\n\n[[pools]]", "slope = 0.001 },\n]\n\n[[pools]]").replace(
+        "sill_level = 49.84", "sill_level = 49.70"
+    ).replace("bed_level = 49.20", "bed_level = 48.90"))  # fmt: skip
+    result = call("check", "day.toml")
+    assert result.exit_code == 2
+    assert "steep pools are not computed" in result.stderr
+    assert result.stderr == call("run", "day.toml").stderr
+
+
+def test_a_file_of_results_is_no_day(folder, call):
+    (folder / "day.nc").write_bytes(b"\x89HDF\r\n\x1a\n")
+    for command in ("check", "run", "verify"):
+        result = call(command, "day.nc")
+        assert (result.exit_code, result.stdout) == (2, "")
+        assert "day.nc is a file of results: name the day file" in result.stderr

@@ -9,7 +9,7 @@ import pytest
 
 import toeline
 from toeline.cli.compare import run_names
-from toeline.errors import RunError, UsageError
+from toeline.errors import RunError
 
 
 @pytest.fixture
@@ -55,7 +55,7 @@ def test_one_day_under_two_file_names_with_other_plans_has_the_same_inputs(folde
     (folder / "other.toml").write_text("# another way\n" + other.replace("A short morning", "The same morning"))
     result = call("compare", "day.toml", "other.toml", "--plan", "hold")
     assert result.exit_code == 0
-    assert "The same in all but the plans" in result.stdout
+    assert "The same canal and day in all" in result.stdout
 
 
 def test_a_value_can_be_set_for_all(folder, call):
@@ -101,7 +101,7 @@ def test_equal_runs_are_alike(folder, call):
     [
         (["day.toml", "--plan", "hold"], "found a day with one plan to compare; allowed: a day with several plans"),
         (["day.toml", "--plan", "hold", "--plan", "rasie"], 'did you mean "raise"?'),
-        (["day.toml", "--plan", "hold", "--plan", "hold"], "a run or plan is named twice"),
+        (["day.toml", "--plan", "hold", "--plan", "hold"], "day.toml, plan hold, is named twice"),
         (["canal.toml"], "canal.toml is a canal file: name a day file"),
         (["day.toml", "-o", "day.toml"], "day.toml is an input and would be lost"),
         (["day.toml", "-o", "nowhere/page.txt"], "there is no directory nowhere"),
@@ -164,6 +164,8 @@ def test_names_tell_the_runs_apart(places, names):
     assert run_names([(Path(path), plan) for path, plan in places]) == names
 
 
-def test_a_run_given_twice_is_refused():
-    with pytest.raises(UsageError, match="named twice"):
-        run_names([(Path("a.nc"), "early")] * 2)
+def test_what_is_named_twice_is_refused_before_anything_is_run(folder, call, monkeypatch):
+    monkeypatch.setattr("toeline.simulate", None)
+    result = call("compare", "day.toml", "./day.toml")
+    assert (result.exit_code, result.stdout) == (2, "")
+    assert "plan hold, is named twice" in result.stderr

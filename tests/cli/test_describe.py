@@ -1,5 +1,7 @@
 """`toeline describe` of a canal and of a day."""
 
+from tests.canals import day, prismatic_canal, rectangle, write_table
+
 
 def test_a_canal_is_described_from_the_head_down(folder, call):
     page = call("describe", "canal.toml").stdout
@@ -89,3 +91,14 @@ def test_weather_and_orders_to_bays_are_described(tmp_path, call):
     assert "rain 0.0 mm/day 0.0 mm/day 480.0 mm/day" in page
     assert "07:45 Upper check, bay 2 open by 0.06 m" in page
     assert "2 of 1.30 m, separate" in call("describe", str(canal)).stdout
+
+
+def test_a_canal_without_gates_has_its_pages_and_no_sheets(tmp_path, monkeypatch, call):
+    monkeypatch.chdir(tmp_path)
+    canal = prismatic_canal(rectangle(5.0), 800.0, 2e-4, {"kind": "level", "level": 1.5})
+    write_table(tmp_path / "canal.toml", canal)
+    write_table(tmp_path / "day.toml", day(5.0, length="1 h"))
+    assert [call(*line).exit_code for line in (("run", "day.toml"), ("describe", "day.nc"))] == [0, 0]
+    sheets = call("orders", "day.nc")
+    assert sheets.exit_code == 2
+    assert "day.nc is of a canal without gates" in sheets.stderr

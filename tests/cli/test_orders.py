@@ -7,6 +7,8 @@ import pytest
 import vobject
 from pypdf import PdfReader
 
+from toeline.results.dataset import open_run
+
 FILES = {f"{gate}{suffix}" for gate in ("Middle_check", "Last_check") for suffix in (".pdf", ".txt", ".csv", ".ics")}
 
 
@@ -36,8 +38,8 @@ def test_all_formats_tell_the_same_order(run, folder, call):
     page = " ".join(PdfReader(sheets / "Middle_check.pdf").pages[0].extract_text().split())
     assert row["move"] == "open by 0.050 m"
     assert event.summary.value == "Middle check: open by 0.050 m"
-    assert "OPEN BY 0.050 M" in page
-    assert "OPEN BY 0.050 M" in (sheets / "Middle_check.txt").read_text()
+    assert "OPEN BY 0.050 m" in page
+    assert "OPEN BY 0.050 m" in (sheets / "Middle_check.txt").read_text()
     assert f"From {float(row['opening_from [m]']):.3f} m to {float(row['opening_to [m]']):.3f} m." in page
 
 
@@ -140,7 +142,8 @@ def test_a_day_file_is_not_taken_for_a_run(folder, call):
     [
         (("--by", "gatekeeper"), 'with the key "gatekeeper"'),
         (("--allow", "much"), "--allow: found"),
-        (("--allow=-1 cm",), "not below 0"),
+        (("--allow=-1 cm",), "from 0 to 0.50 m"),
+        (("--allow", "3"), "--allow: found 3; allowed: one length, from 0 to 0.50 m"),
         (("-o", "no/such"), "there is no directory no"),
     ],
 )
@@ -159,3 +162,12 @@ def test_a_run_that_stopped_early_gives_no_sheets(run, folder, call):
     result = call("orders", run)
     assert (result.exit_code, result.stdout) == (2, "")
     assert "not complete" in result.stderr
+
+
+def test_a_run_stopped_before_its_first_row_has_no_sheets(run, folder, call):
+    with open_run(folder / run) as whole:
+        whole.isel(time=slice(0)).load().to_netcdf(folder / "stopped.nc")
+    result = call("orders", "stopped.nc")
+    assert result.exit_code == 2
+    assert "stopped.nc was stopped before anything reached the disk" in result.stderr
+    assert not (folder / "stopped.orders").exists()

@@ -1,11 +1,12 @@
 """Where a run is written, and what must not be lost by it."""
 
+import os
 from pathlib import Path
 
 import pytest
 
 from toeline.cli.input_files import load_plans
-from toeline.cli.output_files import choose_outputs, refuse_outputs
+from toeline.cli.output_files import choose_outputs, refuse_outputs, refuse_page, show_or_write
 from toeline.errors import UsageError
 
 
@@ -72,3 +73,29 @@ def test_two_plans_never_share_a_file(folder):
     scenarios = load_plans(day)
     with pytest.raises(UsageError, match="two plans would go to one file"):
         refuse_outputs(choose_outputs(scenarios, None), scenarios, overwrite=False)
+
+
+def test_a_page_never_takes_the_place_of_a_pipe_or_device(tmp_path):
+    os.mkfifo(tmp_path / "pipe")
+    with pytest.raises(UsageError, match="pipe is a pipe or device"):
+        refuse_page(tmp_path / "pipe", [], overwrite=True)
+
+
+def test_a_page_follows_links_and_leaves_them(tmp_path):
+    (tmp_path / "link").symlink_to("page.txt")
+    refuse_page(tmp_path / "link", [], overwrite=False)
+    show_or_write("a page", tmp_path / "link")
+    assert (tmp_path / "link").is_symlink()
+    assert (tmp_path / "page.txt").read_text() == "a page\n"
+
+
+def test_links_in_a_circle_are_refused(tmp_path):
+    (tmp_path / "loop").symlink_to("loop")
+    with pytest.raises(UsageError, match="loop cannot be a file name"):
+        refuse_page(tmp_path / "loop", [], overwrite=True)
+
+
+def test_a_page_that_cannot_be_written_is_named(tmp_path):
+    with pytest.raises(OSError, match="No such file or directory") as raised:
+        show_or_write("a page", tmp_path / "none" / "page.txt")
+    assert raised.value.filename == str(tmp_path / "none" / "page.txt")

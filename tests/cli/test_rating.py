@@ -58,6 +58,12 @@ def test_lengths_carry_their_own_units_where_given(folder, call):
     assert "\n     0.20  " in result.stdout
 
 
+def test_an_opening_that_the_gate_has_not_is_refused(folder, call):
+    result = call("rating", "canal.toml", "Middle check", "--opening", "0.2,1.3")
+    assert (result.exit_code, result.stdout) == (2, "")
+    assert "--opening: Middle check opens to 1.2 m, by max_opening of the canal file." in result.stderr
+
+
 def test_an_opening_below_the_closed_gate_is_refused(folder, call):
     result = call("rating", "canal.toml", "Middle check", "--opening=-0.2")
     assert (result.exit_code, result.stdout) == (2, "")

@@ -44,6 +44,13 @@ def test_each_plan_is_told_and_written_to_its_own_file(folder, call):
     assert result.stdout.index("plan hold;") < result.stdout.index("plan raise;")
 
 
+def test_several_plans_end_in_what_went_wrong_under_each(folder, call):
+    _, _, told = call("run", "day.toml").stdout.partition("ALL PLANS\n")
+    assert "hold: no incident, which makes no place safe" in told
+    assert "raise: " in told
+    assert told.rstrip().endswith("Side by side: toeline compare day.toml")
+
+
 def test_one_plan_can_be_picked(folder, call):
     assert call("run", "day.toml", "--plan", "raise").exit_code == 0
     assert call("run", "day.toml", "--plan", "raise", "-o", "picked.nc").exit_code == 0

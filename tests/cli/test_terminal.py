@@ -1,9 +1,13 @@
 """What the commands say, and where."""
 
+import os
+import signal
 import subprocess
 import sys
 
-from toeline.cli.terminal import page_width, progress_bar
+import pytest
+
+from toeline.cli.terminal import heeding_ctrl_c, page_width, progress_bar
 
 
 def test_a_page_for_a_pipe_is_80_columns_wide(capsys):
@@ -31,3 +35,23 @@ def test_a_reader_who_closes_the_pipe_changes_nothing():
     complaint = writer.stderr.read()
     writer.stderr.close()
     assert (writer.wait(), complaint) == (3, b"")
+
+
+class LosesCtrlC:
+    """Pressed while this is thrown away, Ctrl-C raises where nothing can be raised."""
+
+    def __del__(self):
+        os.kill(os.getpid(), signal.SIGINT)
+        sum(range(1000))  # the signal is handled between two steps of Python
+
+
+@pytest.mark.filterwarnings("ignore::pytest.PytestUnraisableExceptionWarning")
+def test_ctrl_c_whose_exception_was_lost_stops_at_the_next_step():
+    before = signal.getsignal(signal.SIGINT)
+    with heeding_ctrl_c(None) as progress:
+        progress(0.1)
+        thing = LosesCtrlC()
+        del thing
+        with pytest.raises(KeyboardInterrupt):
+            progress(0.2)
+    assert signal.getsignal(signal.SIGINT) is before

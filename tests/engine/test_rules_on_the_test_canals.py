@@ -92,3 +92,23 @@ def test_feedforward_spares_the_pools_most_of_the_disturbance(tmp_path):
     errors = [np.abs(run["pool_tail_level"] - run.network.names.target_level)[:, pools].max() for run in (plain, ahead)]
     assert errors[1] < 0.8 * errors[0]
     assert ahead["order_time"].size < 0.5 * plain["order_time"].size
+
+
+def swing(folder, smallest_move):
+    """By how much levels of canal 1 swing in the last 12 of 48 h after a step of the third offtake [m]."""
+    taken = deliveries_at_low_flow(CANAL_1)
+    deliveries = {f"Offtake {k + 1}": [["00:00", taking]] for k, taking in enumerate(taken)}
+    deliveries[f"Offtake {STEPPED}"].append(["02:00", taken[STEPPED - 1] + 0.05])
+    rules = [{"kind": "hold upstream level", "gate": f"Check {k + 1}"} for k in range(len(CANAL_1.gate_widths))]
+    canal = canal_file(CANAL_1)
+    canal["gates"] = [gate | {"smallest_move": smallest_move} for gate in canal["gates"]]
+    tables = {"length": "48 h", "deliveries": deliveries, "plans": {"held": {"rules": rules}}}
+    run = RecordedRun(scenario_of(folder, canal, day(CANAL_1.low[0][0], **tables)))
+    return np.ptp(run["pool_tail_level"][run["time"] >= 36 * HOUR_MS], axis=0)
+
+
+def test_gates_that_make_no_small_moves_swing_for_ever_and_the_same_rules_rest_where_they_do(tmp_path):
+    """As theory has it, where half a band is less than H·δ/a: 6 to 40 cm here against 2 cm."""
+    lower = slice(STEPPED - 1, len(CANAL_1.gate_widths))
+    assert 0.08 < swing(tmp_path, 0.01)[lower].min() < swing(tmp_path, 0.01)[lower].max() < 0.25
+    assert swing(tmp_path, 0.0).max() < 0.002

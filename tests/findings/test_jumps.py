@@ -32,8 +32,8 @@ def test_hours_in_every_state_add_up_to_the_run(orchard_check):
 
 
 def test_both_hazards_have_their_hours(orchard_check):
-    assert orchard_check.beyond_protection_hours == 1.5
-    assert orchard_check.roller_hours == 1.5
+    assert orchard_check.beyond_protection_hours == pytest.approx(100 / 60)
+    assert orchard_check.roller_hours == 2.0
 
 
 def test_worst_values_come_with_their_times(orchard_check, at):

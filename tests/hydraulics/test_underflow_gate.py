@@ -223,3 +223,12 @@ def test_gate_wider_than_the_floor_below(share, side_slope):
         for tail in (0.02 * k for k in range(100)):
             flow = gate_flow(PLAIN, POOL, narrow, 1.43, min(tail, 1.42), opening)
             assert 0.0 <= flow.discharge <= flow.free_discharge * (1.0 + 1e-9), (opening, tail)
+
+
+@pytest.mark.parametrize("leakage", [0.0, 0.05])
+def test_no_opening_lets_water_flow_forward_against_a_reversed_head(leakage):
+    """The gate stays shut: every opening would let more of it come back."""
+    gate = UnderflowGate(WIDTH, 0.0, 0.0, 0.0, leakage=leakage)
+    opening, passed = opening_for_discharge(gate, POOL, FLOORS["as wide"], 1.6, 2.0, 3.0, 0.8)
+    assert opening == 0.0
+    assert passed == pytest.approx(gate_discharge(gate, POOL, FLOORS["as wide"], 1.6, 2.0, 0.0), abs=1e-12)

@@ -43,7 +43,8 @@ def full_day(folder: Path, *, local_inertia: bool = False, **output: str) -> Sce
         deliveries={"T1": [["+0 h", 0.2], ["+8 h", 0.5]]},
         plans={"only": {"rules": RULES, "orders": ORDERS}},
     )  # fmt: skip
-    return scenario_of(folder, stepped_canal(3, 1500.0, gate={"moves_per_hour": 3, "separate_bays": True}, **CANAL), keys)
+    gate = {"moves_per_hour": 3, "separate_bays": True}
+    return scenario_of(folder, stepped_canal(3, 1500.0, gate=gate, **CANAL), keys)
 
 
 def copies_by_count(stops: int = 25) -> property:

@@ -20,7 +20,10 @@ def write_day(folder: Path, seed: int, local_inertia: bool, start: str) -> Path:
     if seed % 3 == 0:
         canal |= _water_astray(np.random.default_rng([seed, 1]), canal["pools"])
     _write(folder / "canal.toml", canal)
-    return _write(folder / "day.toml", _day(rng, canal, local_inertia, start))
+    day = _day(rng, canal, local_inertia, start)
+    if seed % 5 == 0:
+        day["plans"]["only"] |= _silly_operation(np.random.default_rng([seed, 2]), canal["gates"])
+    return _write(folder / "day.toml", day)
 
 
 def _write(path: Path, tables: dict[str, Any]) -> Path:
@@ -191,3 +194,27 @@ def _orders(rng: np.random.Generator, gates: list[dict[str, Any]]) -> list[dict[
         }
         for t in times
     ]
+
+
+def _silly_operation(rng: np.random.Generator, gates: list[dict[str, Any]]) -> dict[str, Any]:
+    """Beside the orders a rule on every gate below a pool, with targets out of reach and gains that can only hunt; a
+    stuck leaf.
+    """
+    below = [gate["name"] for gate in gates if gate["upstream"] != "head"]
+    rules = [_silly_rule(rng, gate) | {"every": str(rng.choice(["1 min", "7 min", "24 h"]))} for gate in below]
+    return {"rules": rules, "stuck": [{"gate": gates[-1]["name"], "from": "03:00", "until": "09:00"}]}
+
+
+def _silly_rule(rng: np.random.Generator, gate: str) -> dict[str, Any]:
+    target = float(rng.choice([-50.0, 100.0, 101.0, 150.0]))
+    level = {"kind": "hold upstream level", "target": target, "band": 0.0}
+    rule: dict[str, Any] = rng.choice(
+        [
+            level | {"gain": 100.0},
+            level | {"gain": 1e-6, "reset": "1 min"},
+            level | {"discharge_gain": 10_000.0, "reset": "1 min"},
+            {"kind": "hold discharge", "target": float(rng.choice([0.0, 4.0, 9999.0])), "feedforward": "wave"},
+            {"kind": "gatekeeper rounds", "target": target, "step": 100.0},
+        ]
+    )
+    return rule | {"gate": gate}

@@ -35,3 +35,12 @@ def test_escape_takes_what_a_gate_nearly_shut_cannot_pass(tmp_path):
     assert 7.0 < spilled < 8.0
     assert run.pool_tail_level[0, 1] == pytest.approx(2.4 + (spilled / (1.7 * 19.6)) ** (2.0 / 3.0), abs=1e-6)
     assert abs(run.water_level - run.water_level[0]).max() <= 1e-6
+
+
+def test_target_below_the_water_beyond_the_last_gate_is_refused(tmp_path):
+    canal = stepped_canal(2, 1500.0, tail={"kind": "level", "level": 3.0, "floor_level": 0.0})
+    start = {"state": "steady", "openings": "to hold targets"}
+    with pytest.raises(
+        ScenarioError, match=r"G1 passes 0\.000 m3/s closed at 0\.00 m, asked 8\.000 m3/s \(headwater 2\."
+    ):
+        simulate(scenario_of(tmp_path, canal, day(8.0, length="30 min", start=start)))

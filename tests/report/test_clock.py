@@ -37,6 +37,11 @@ def test_a_span_over_the_change_of_clocks_counts_hours_that_pass():
     assert span == "00:00 to 03:00 (+0100) (4 h)"
 
 
+def test_a_span_after_the_change_of_clocks_tells_the_offset_once():
+    begin, end = (later(CHANGE_OF_CLOCKS, hours * 3600) for hours in (21, 22))
+    assert span_text(begin, end, CHANGE_OF_CLOCKS) == "20:00 to 21:00 (+0100) (1 h)"
+
+
 @pytest.mark.parametrize(
     ("seconds", "text"),
     [

@@ -31,7 +31,7 @@ def test_alike_refusals_are_one_line(invented_run, metric):
     stuck = [f"the leaf is stuck for another {left} min" for left in (90, 85, 80)]
     run = run_with(invented_run, [10, 20, 25, 30], [0, REFUSED, REFUSED, REFUSED], ["", *stuck])
     assert (
-        "06:20 to 06:30 Middle check, hold upstream level: 3 moves refused: the leaf is stuck for another 90 min"
+        "06:20 to 06:30 Middle check, hold upstream level: 3 moves refused: the leaf is stuck for another 1 h 30 min"
         in section(run_summary(run, metric), "Moves")
     )
 

@@ -94,7 +94,7 @@ def test_the_band_is_told_with_what_is_in_it(ordered_run):
 
 
 def test_the_end_of_the_protected_floor_is_a_reason_to_stop(ordered_run):
-    assert "(Middle check 23.00 m from it)" in text_of(ordered_run())
+    assert "(Middle check 23.0 m from it)" in text_of(ordered_run())
     assert "protected floor" not in text_of(ordered_run(), 1)
 
 
@@ -203,6 +203,42 @@ def test_rounds_are_told_in_words(ordered_run):
     ) in text_of(run)
 
 
+def rounds_of(ordered_run, **rule):
+    """A run with rounds at the Middle check."""
+    given = {
+        "kind": "gatekeeper rounds", "gate": "Middle check", "band": 0.02, "step": 0.05, "where": "below the gate",
+        "target": None, "visits": None, "every": None, "hours": None,
+    }  # fmt: skip
+    return ordered_run(attributes={"resolved_settings": json.dumps({"rules": [given | rule]})})
+
+
+def test_every_visit_of_rounds_has_its_blanks(ordered_run):
+    run = rounds_of(ordered_run, visits=["05:30:00", "07:20:00", "09:50:00", "10:00:00"])
+    (form,) = order_sheets(run)[0].rounds
+    assert (form.gate, form.visits, form.count) == ("Middle check", ("07:20", "09:50"), 2)
+    lines = text_of(run).partition("ROUNDS AT MIDDLE CHECK ")[2]
+    blanks = " ".join(["________"] * 4)
+    assert lines.startswith(f"visit read moved by opening signed 07:20 {blanks} 09:50 {blanks} ")
+
+
+@pytest.mark.parametrize(
+    ("hours", "visits"),
+    [
+        (["07:00:00", "09:00:00"], ("07:00", "08:00")),
+        (["09:00:00", "07:00:00"], ("06:00", "09:00")),
+        (None, ("06:00", "07:00", "08:00", "09:00")),
+    ],
+)
+def test_visits_at_intervals_are_counted_from_midnight_within_their_hours(ordered_run, hours, visits):
+    (form,) = order_sheets(rounds_of(ordered_run, every=3600.0, hours=hours))[0].rounds
+    assert form.visits == visits
+
+
+def test_more_visits_than_find_a_line_are_told(ordered_run):
+    text = text_of(rounds_of(ordered_run, every=60.0))
+    assert "And 180 more visits: go on by hand." in text
+
+
 def test_a_sheet_in_us_customary_units_has_no_metre_on_it(ordered_run):
     run = one_order(
         ordered_run, TRIMMED, "openings between 0.150 and 0.300 m are not held", attributes=US,
@@ -210,7 +246,7 @@ def test_a_sheet_in_us_customary_units_has_no_metre_on_it(ordered_run):
     )  # fmt: skip
     text = text_of(run)
     assert "US customary units: ft, ft3/s" in text
-    assert "OPEN BY 0.20 FT From 0.98 ft to 1.18 ft." in text
+    assert "OPEN BY 0.20 ft From 0.98 ft to 1.18 ft." in text
     assert "openings between 0.49 ft and 0.98 ft are not held" in text
     assert "168.73 ft" in text
     assert " m " not in text

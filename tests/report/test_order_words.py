@@ -3,7 +3,7 @@
 import numpy as np
 import pytest
 
-from toeline.report.order_words import move_words, order_words, reason_words
+from toeline.report.order_words import loud, move_words, order_words, reason_words
 from toeline.units import Display, UnitSystem
 
 
@@ -44,3 +44,20 @@ def test_lengths_in_a_reason_are_in_the_units_of_the_page():
         reason_words(reason, Display(UnitSystem.us_customary))
         == "a move of 0.02 ft is smaller than the smallest, 0.03 ft"
     )
+
+
+def test_times_in_a_reason_are_in_hours_and_minutes(metric):
+    assert reason_words("the leaf is stuck for another 195 min", metric) == "the leaf is stuck for another 3 h 15 min"
+
+
+@pytest.mark.parametrize(
+    ("move", "capitals"),
+    [
+        ("open by 0.060 m", "OPEN BY 0.060 m"),
+        ("close by 0.20 ft", "CLOSE BY 0.20 ft"),
+        ("open 3 marks to mark 18", "OPEN 3 MARKS TO MARK 18"),
+        ("do not move", "DO NOT MOVE"),
+    ],
+)
+def test_capitals_leave_the_unit_as_it_is_written(move, capitals):
+    assert loud(move) == capitals

@@ -17,7 +17,7 @@ from toeline.report.page.arrays import MOST_SERIES_VALUES, order_marks, run_arra
 from toeline.report.page.document import report_page
 from toeline.report.page.hazard_strips import WIDTH, hazard_strips
 from toeline.report.page.moments import moments_of, nearest_rows
-from toeline.report.page.verdict import link_to
+from toeline.report.page.verdict import Wrong, headline, link_to
 from toeline.units import Display, UnitSystem
 
 BEYOND, DROWNED = 4, 1
@@ -60,13 +60,13 @@ def test_the_verdict_comes_first_with_place_time_and_amount(bad_hour):
     text = words(report_page({"day": bad_hour}))
     verdict = text[: text.index("Where the jump stood")]
     assert "Middle check: jump beyond protection, 07:08 to 08:07 (58 min)." in verdict
-    assert "worst -0.14 m at 07:10" in verdict
-    assert "end of the jump from the gate 41.20 m; limit 34.00 m" in verdict
+    assert "worst 0.14 m of tailwater missing at 07:10" in verdict
+    assert "the jump ends up to 41.2 m from the gate; the floor is protected to 34.0 m" in verdict
 
 
 def test_both_hazards_stand_side_by_side(bad_hour):
     text = words(report_page({"day": bad_hour}))
-    floor, people = text.index("Floor: jump beyond protection 1 h"), text.index("People: drowned roller 4 h")
+    floor, people = text.index("Floor: jump beyond protection 58 min"), text.index("People: drowned roller 4 h")
     assert floor < people < text.index("At no hour is any place below a gate safe to enter")
 
 
@@ -247,3 +247,16 @@ def test_a_strip_shows_its_spells_to_scale_and_in_words(bad_hour):
     assert "Middle check: drowned: a roller, deadly to people 3 h; jump beyond protection 1 h" in strip.drawing
     widths = {float(width) for width in re.findall(r'width="([\d.]+)" height="\d+" fill="#D55E00"', strip.drawing)}
     assert widths == {WIDTH / 4}
+
+
+def test_the_headline_names_the_gravest_of_what_goes_wrong():
+    found = [
+        Wrong("Upper pool", "fall in 1 h over the limit", "06:10 to 07:31", (), None),
+        Wrong("Last check", "jump beyond protection", "07:00 to 07:10", (), None),
+    ]
+    told = headline(found)
+    assert told == (
+        "2 things go wrong at 2 places. Gravest of all, Last check: jump beyond protection, 07:00 to 07:10."
+    )
+    assert headline(found[:1]) == "Upper pool: fall in 1 h over the limit, 06:10 to 07:31."
+    assert headline([]) == "No incident was found."

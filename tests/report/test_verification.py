@@ -179,7 +179,7 @@ def test_a_ramp_is_told_with_tolerances_and_times(run_of):
     assert "from 8.000 m3/s to 8.800 m3/s" in test
     assert "volume taken up, not explained 0.014 % 0 to 0.5 % within" in test
     assert "of the rise leaves in the end 100 % 99 % to 101 % within" in test
-    assert "The pools take up 7200 m3, as much as the rise brings in 2 h 30 min." in test
+    assert "The pools take up 7,200 m3, as much as the rise brings in 2 h 30 min." in test
     assert "a small fast wave needs 30 min" in test
 
 

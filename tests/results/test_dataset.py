@@ -7,7 +7,7 @@ import numpy as np
 import pytest
 
 from toeline.errors import UsageError
-from toeline.results.dataset import DatasetSink, local_time, open_run, timezone_of, utc
+from toeline.results.dataset import DatasetSink, damage_told, local_time, open_run, timezone_of, utc
 from toeline.results.netcdf_writer import NetcdfSink
 
 
@@ -81,3 +81,25 @@ def test_a_netcdf_file_of_another_program_is_refused(tmp_path):
     netCDF4.Dataset(tmp_path / "other.nc", "w").close()
     with pytest.raises(UsageError, match="not the file of a Toeline run"):
         open_run(tmp_path / "other.nc")
+
+
+def test_a_run_of_another_version_is_refused(invented_run, tmp_path):
+    run = invented_run()
+    written = run.write_to(NetcdfSink(tmp_path / "run.nc", run.static(), run.attributes, run.start)).written_path
+    with netCDF4.Dataset(written, "a") as file:
+        file.renameVariable("escape_volume", "spilled")
+    with pytest.raises(UsageError, match=r"of another version, Toeline 0\.1\.0: it has no escape_volume; run its day"):
+        open_run(written)
+
+
+def test_damage_inside_a_file_is_told_with_its_name():
+    with (
+        pytest.raises(UsageError, match=r"run\.nc is damaged and cannot be read: NetCDF: HDF"),
+        damage_told("run.nc"),
+    ):
+        raise RuntimeError("NetCDF: HDF error")
+
+
+def test_what_is_no_damage_is_not_told_as_such():
+    with pytest.raises(RuntimeError, match="something else"), damage_told("run.nc"):
+        raise RuntimeError("something else")

@@ -9,6 +9,7 @@ import numpy as np
 import pytest
 import xarray as xr
 
+from toeline.errors import UsageError
 from toeline.results import netcdf_writer
 from toeline.results.dataset import DatasetSink, open_run
 from toeline.results.netcdf_writer import NetcdfSink
@@ -135,6 +136,17 @@ def test_fixed_values_that_do_not_fit_leave_no_file(invented_run, tmp_path):
     del static["bank_level"]
     with pytest.raises(ValueError, match="bank_level"):
         NetcdfSink(tmp_path / "run.nc", static, run.attributes, run.start)
+    assert list(tmp_path.iterdir()) == []
+
+
+def test_a_disk_that_is_full_from_the_start_leaves_no_file(invented_run, tmp_path, monkeypatch):
+    def fail(*_):
+        raise RuntimeError("NetCDF: HDF error")  # what netCDF4 raises then
+
+    monkeypatch.setattr(NetcdfSink, "_define", fail)
+    run = invented_run()
+    with pytest.raises(UsageError, match=r"cannot be written: NetCDF: HDF error; .* MB of disk are free"):
+        NetcdfSink(tmp_path / "run.nc", run.static(), run.attributes, run.start)
     assert list(tmp_path.iterdir()) == []
 
 

@@ -46,7 +46,7 @@ class Bench:
         }  # fmt: skip
         self.motion = GateMotion(SimpleNamespace(**plain | (limits or {})), opening)
         self.time_ms = 0
-        self.levels: dict[str, float] = {}
+        self.levels: dict[str, float] = {"headwater": 103.60, "tailwater": 101.20}
         self.demands = dict.fromkeys(CANAL.offtakes, constant(0.0))
         self.record: OrderRecord | None = None
 

@@ -23,3 +23,8 @@ def test_the_step_ends_at_the_end_of_travel(bench):
     rule = bench(GatekeeperRounds, opening=1.47, **SETTINGS)
     assert rule.decide(0, headwater=103.90) == 1.50
     assert rule.record.reason == "travel is 0 to 1.500 m"
+
+
+def test_the_gate_is_left_alone_while_the_water_below_stands_higher(bench):
+    rule = bench(GatekeeperRounds, **SETTINGS)
+    assert rule.decide(0, headwater=103.80, tailwater=103.90) == 0.50

@@ -43,3 +43,10 @@ def test_lead_times_of_the_pools(bench, kind, minute):
     rule.ask("Far lateral", [0, 420], [0.4, 0.9])
     moved = [at for at in range(0, 435, 15) if rule.decide(at) > 0.5 and rule.record]
     assert moved == [minute]
+
+
+def test_what_should_be_on_its_way_at_the_first_decision_goes_out_at_once(bench):
+    rule = bench(HoldDischarge, target=5.0, feedforward="volume", **SETTINGS)
+    rule.ask("Far lateral", [0, 30], [0.4, 0.9])
+    # 3000 s ahead of 00:30 is before the start
+    assert [rule.decide(minute) for minute in (0, 15, 30)] == pytest.approx([0.55, 0.55, 0.55])

@@ -108,3 +108,33 @@ def test_feedforward_moves_inside_the_band(bench):
     # half of the Lower pool's 2400 s: 20 min before 03:00 the gate opens for 0.5 m3/s, 5 cm
     openings = [rule.decide(minute, headwater=103.60) for minute in (0, 150, 155, 160, 165)]
     assert openings == pytest.approx([0.50, 0.50, 0.50, 0.55, 0.55])
+
+
+def test_nothing_winds_up_while_the_largest_move_stands_in_the_way(bench):
+    rule = bench(HoldUpstreamLevel, limits={"largest_move": 0.02}, **SETTINGS)
+    rule.decide(0, headwater=103.60)
+    # 0.38 beyond: wanted 0.671, of which 2 cm are moved; the base stays at 0.50
+    assert rule.decide(5, headwater=104.00) == pytest.approx(0.52)
+    # 0.08 too low, 0.06 beyond: base 0.50 − 0.003, wanted 0.473, of which 2 cm are moved: the base stays again
+    assert rule.decide(10, headwater=103.52) == pytest.approx(0.50)
+    assert rule.rule.memory["base"] == pytest.approx(0.50)
+
+
+def test_what_cannot_pass_lets_the_base_come_back_when_the_level_has_turned(bench):
+    rule = bench(HoldUpstreamLevel, opening=1.40, **SETTINGS | {"gain": None, "discharge_gain": 6.0})
+    rule.decide(0, headwater=103.60)
+    rule.rule.memory["base"] = 18.0  # of a time with more head; no more than 15 m3/s pass now
+    # 0.03 beyond on either side: 6·0.03·300/2400 = 0.0225 m3/s a decision, towards what is lacking not at all
+    assert rule.decide(5, headwater=103.65) == 1.50
+    assert rule.rule.memory["base"] == pytest.approx(18.0)
+    assert rule.decide(10, headwater=103.55) == 1.50
+    assert rule.rule.memory["base"] == pytest.approx(18.0 - 0.0225)
+
+
+def test_an_opening_is_left_alone_while_the_water_below_stands_higher(bench):
+    rule = bench(HoldUpstreamLevel, **SETTINGS)
+    rule.decide(0, headwater=103.60)
+    for minute in range(5, 65, 5):
+        assert rule.decide(minute, headwater=103.80, tailwater=103.90) == 0.50
+    # 0.18 beyond and nothing wound up: base 0.50 + 0.009, wanted 0.581
+    assert rule.decide(65, headwater=103.80, tailwater=101.20) == pytest.approx(0.581)

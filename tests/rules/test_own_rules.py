@@ -90,10 +90,19 @@ def test_an_error_names_rule_file_and_line_and_keeps_what_was_done(tmp_path):
         ("def = 1\n", "SyntaxError: invalid syntax, line 1"),
         ("import no_such_module\n", "ModuleNotFoundError: No module named 'no_such_module'"),
         ("class Watch:\n    pass\n", "has no class Watch that derives from toeline.rules.Rule"),
-        (WATCH.replace('place("gate", "Name of the gate.")', '"gate"'), "each is a toeline.rules.Setting"),
+        (WATCH.replace('place("gate", "Name of the gate.")', '"gate"'), "allowed: a toeline.rules.Setting by key"),
+        (WATCH.replace("settings = {", "settings = None and {"), "allowed: a toeline.rules.Setting by key"),
+        (WATCH.replace('"step": number', '"kind": number'), "by key, any but kind"),
+        (WATCH.replace("default=2", "default=float('nan')"), "found the default nan; allowed: a finite number in SI"),
+        (WATCH.replace('"length"', '"width"'), "found the dimension 'width'; allowed: "),
+        ("import sys\nsys.exit(3)\n", "cannot be loaded: SystemExit: 3"),
         (WATCH.replace("    def decide", "    def decided"), "Watch has no decide"),
         (WATCH + "\n    @classmethod\n    def misfits(cls, given, canal):\n        return given.nothing\n",
          "has no attribute 'nothing'"),
+        (WATCH + "\n    @classmethod\n    def misfits(cls, given, canal):\n        return ['gate']\n",
+         "objects with ['gate']; allowed: pairs of a key and a sentence"),
+        (WATCH + "\n    @classmethod\n    def gate_of(cls, given, canal):\n        return []\n",
+         "moves no gate of the canal"),
     ],
 )  # fmt: skip
 def test_a_file_that_is_no_rule_is_told_on_the_line_that_names_it(tmp_path, source, message):
@@ -113,11 +122,75 @@ def test_a_rule_that_cannot_be_made_leaves_a_file_that_says_so(tmp_path):
     assert [file.name for file in tmp_path.glob("run.nc*")] == ["run.nc.partial"]
 
 
-def test_an_opening_that_is_no_number_ends_the_run(tmp_path):
-    source = WATCH.replace("return now.ordered_opening(self.gate) + self.given.step", 'return "wide"')
+def ending(decision, tmp_path, more=""):
+    """How a run ends whose rule decides so."""
+    source = WATCH.replace("return now.ordered_opening(self.gate) + self.given.step", decision) + more
     (tmp_path / "watch.py").write_text(source, encoding="utf-8")
-    with pytest.raises(RunError, match="wants an opening of 'wide'; allowed: a number in m, or None"):
-        simulate(scenario(tmp_path, RULE))
+    with pytest.raises(RunError) as raised:
+        simulate(scenario(tmp_path, RULE), tmp_path / "run.nc")
+    assert not (tmp_path / "run.nc.writing").exists()
+    return str(raised.value)
+
+
+@pytest.mark.parametrize("opening", ["'wide'", "float('nan')", "True", "10**400", "[0.1]"])
+def test_an_opening_that_is_no_number_ends_the_run(tmp_path, opening):
+    message = ending(f"return {opening}", tmp_path)
+    assert "wants an opening of " in message
+    assert message.endswith("; allowed: a number in m, or None")
+
+
+@pytest.mark.parametrize("memory", ["['a'] = 'x'", "['a'] = 10**400", "[3] = 1.0", "['a\\0b'] = 1.0", " = None"])
+def test_a_memory_that_the_next_day_could_not_read_ends_the_run(tmp_path, memory):
+    assert "allowed: numbers by name" in ending(f"self.memory{memory}", tmp_path)
+
+
+@pytest.mark.parametrize("times", ["None", "[float('nan')]", "['06:00']", "[[0]]"])
+def test_decision_times_that_are_none_end_the_run(tmp_path, times):
+    more = f"\n    @classmethod\n    def decision_times(cls, given, start, length_ms):\n        return {times}\n"
+    assert "allowed: an array of times in ms from the start" in ending("return None", tmp_path, more)
+
+
+def test_a_gate_that_is_none_ends_the_run(tmp_path):
+    assert "moves 'G9'; allowed: a gate of the canal" in ending("return 0.1", tmp_path, "\n    gate = 'G9'\n")
+
+
+def test_a_rule_cannot_end_the_program(tmp_path):
+    assert "SystemExit: 7" in ending("raise SystemExit(7)", tmp_path)
+
+
+def test_decision_times_may_come_in_any_order(tmp_path):
+    more = "\n    @classmethod\n    def decision_times(cls, *_):\n        return [7200000, 60000, -5, 60000, 1e15]\n"
+    (tmp_path / "watch.py").write_text(WATCH + more, encoding="utf-8")
+    run = simulate(scenario(tmp_path, RULE))
+    assert ((run.order_time - run.time[0]).values.astype("timedelta64[s]").astype(int)).tolist() == [60, 7200]
+
+
+def test_what_it_prints_goes_to_the_error_stream(tmp_path, capsys):
+    source = f"print('read')\n{WATCH}".replace("done = ", "print('asked'); done = ")
+    (tmp_path / "watch.py").write_text(source, encoding="utf-8")
+    simulate(scenario(tmp_path, RULE))
+    told = capsys.readouterr()
+    assert told.out == ""
+    assert told.err.splitlines() == ["read", *["asked"] * 4]
+
+
+def test_a_setting_may_have_any_name(tmp_path):
+    source = WATCH.replace('"times"', '"schema"').replace("given.times", "given.schema")
+    (tmp_path / "watch.py").write_text(source, encoding="utf-8")
+    assert simulate(scenario(tmp_path, RULE | {"schema": 1})).sizes["order"] == 1
+
+
+def test_what_a_rule_does_to_its_settings_ends_with_the_run(tmp_path):
+    source = WATCH.replace("done = self", "self.given.times -= 1; done = self")
+    (tmp_path / "watch.py").write_text(source, encoding="utf-8")
+    twice = scenario(tmp_path, RULE | {"times": 3})
+    assert simulate(twice).sizes["order"] == simulate(twice).sizes["order"] > 0
+
+
+@pytest.mark.parametrize("kind", ["sys:Watch", "a\0b.py:Watch"])
+def test_a_module_without_a_file_and_a_file_that_cannot_be(tmp_path, kind):
+    with pytest.raises(ScenarioError, match=r"has no class Watch|cannot be read: embedded null"):
+        scenario(tmp_path, RULE | {"kind": kind})
 
 
 @pytest.fixture

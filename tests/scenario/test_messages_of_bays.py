@@ -1,5 +1,7 @@
 """Every message for a fault in orders to bays and in their openings at the start."""
 
+from pathlib import Path
+
 import pytest
 
 BAYS = "bays = 2\nbay_width = 2.5"
@@ -34,3 +36,10 @@ def test_message(folder, is_separate, old, new, message):
     found = folder.messages()
     assert len(found) == 1
     assert message in found[0]
+
+
+def test_a_bay_of_too_many_digits_in_a_file_of_orders(folder):
+    Path("orders.csv").write_text(f"at,gate,bay,by\n06:30,Upper check,{'9' * 5000},0.1\n", encoding="utf-8")
+    [message] = [text for text in folder.messages() if "bay" in text]
+    assert message.startswith('orders.csv:2: bay: found "999')
+    assert message.endswith("allowed: a whole number from 1 to 50")

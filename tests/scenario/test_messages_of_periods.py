@@ -1,5 +1,7 @@
 """Every message for a fault in the heading, period and output of a day file."""
 
+from zoneinfo import available_timezones
+
 import pytest
 
 CASES = [
@@ -64,6 +66,14 @@ CASES = [
         [
             'day.toml:4: zone: found "Europe/Berlln"; allowed: a name of the tz database; did you mean '
             '"Europe/Berlin"?',
+        ],
+    ),
+    (
+        "[period]",
+        'zone = "Mars/X"\n[period]',
+        [
+            'day.toml:4: zone: found "Mars/X"; allowed: a name of the tz database; none of '
+            f"{len(available_timezones())} known ones is like it",
         ],
     ),
     (

@@ -48,6 +48,8 @@ CASES = [
     ('kind = "gatekeeper rounds", gate = "Upper check"', 'visits: exactly one of "visits" and "every" is required'),
     ('kind = "hold volume", pool = "Uper pool"', 'pool: found "Uper pool", which is no pool of the canal; did you mean '
      '"Upper pool"?'),
+    ('kind = "hold volume", pool = "Upper pool", every = "3 h"', 'within: shorter than "every": an error would be made '
+     "good more than once between two decisions"),
     ('kind = "watch.py:Watch", gate = "Upper check"', 'kind: found "watch.py:Watch"; watch.py cannot be read: no such '
      "file or directory"),
     ('kind = "no_such_package:Watch"', 'kind: found "no_such_package:Watch"; no_such_package cannot be loaded: '

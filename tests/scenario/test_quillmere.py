@@ -49,3 +49,8 @@ def test_the_two_plans_of_the_morning_differ_at_the_lower_check_alone():
     different = {(o.at, o.gate, o.kind, o.value) for o in early} ^ {(o.at, o.gate, o.kind, o.value) for o in later}
 
     assert {gate for _, gate, _, _ in different} == {"Lower check"}
+
+
+@pytest.mark.parametrize("day", DAYS)
+def test_every_day_stands_on_the_page_of_example_days(day):
+    assert f"`{day}`" in (QUILLMERE.parents[1] / "docs" / "example_days.md").read_text(encoding="utf-8")

@@ -176,6 +176,12 @@ def test_isolation_with_the_head_gate_keeps_every_pool_below_its_lining():
     assert {found.where for found in incidents(run) if found.what == "delivery shortfall"} == {"Far lateral"}
 
 
+@pytest.mark.parametrize("plan", ["checks_alone", "head_gate_too"])
+def test_isolation_lets_the_pools_below_fall_too_fast(plan):
+    fallen = {found.where for found in incidents(run_of("isolation", plan)) if found.what.startswith("fall in 1 h")}
+    assert {"Lower pool, lower end", "Reedbed pool, lower end"} <= fallen
+
+
 def spilled(run: xr.Dataset) -> dict[str, float]:
     """Volume that went over each escape [m³]."""
     return dict(zip(run.escape.values.tolist(), run.escape_volume[-1].values.tolist(), strict=True))
@@ -244,6 +250,7 @@ def test_downstream_levels_hold_the_tail_and_swing_the_head():
     assert run.canal_inflow.max() > 11.0
     stray = np.abs(run.pool_tail_level - run.pool_target_level).max("time")
     assert stray.sel(pool="Orchard pool") > 1.5 * stray.sel(pool="Lower pool")
+    assert 0.09 < stray.sel(pool="Mill pool") < stray.sel(pool="Orchard pool") < 0.12
 
 
 def test_volumes_let_the_surface_turn_about_a_point_in_the_pool():

@@ -107,13 +107,20 @@ class Source:
     path: Path
     scenario: "Scenario | None" = None
 
+    @property
+    def plan(self) -> str | None:
+        """The plan of a day; None for a file of results, which knows its own."""
+        return self.scenario.plan if self.scenario else None
+
     @contextmanager
     def opened(self) -> Iterator["xr.Dataset"]:
         from toeline import open_run, simulate
+        from toeline.results.dataset import damage_told
 
         if self.scenario is None:
-            with open_run(self.path) as run:
-                yield run
+            with open_run(self.path) as opened, damage_told(self.path):
+                run = opened.load()
+            yield run
             return
         label = self.scenario.plan or self.path.stem
         try:
@@ -125,12 +132,24 @@ class Source:
 
 
 def sources_of(files: Sequence[Path], plans: Sequence[str], overrides: Sequence[str]) -> list[Source]:
-    """All that is to be compared. Raises UsageError where that is less than two, before any work is done."""
+    """All that is to be compared. Raises UsageError where that is less than two, or one of it is named twice, before
+    any work is done.
+    """
     sources = [source for file in files for source in _sources_in(file, plans, overrides)]
     if len(sources) < 2:
         found = "a day with one plan" if sources[0].scenario else "one run"
         raise UsageError(f"found {found} to compare; allowed: a day with several plans, or several runs.")
+    refuse_twice([(source.path, source.plan) for source in sources])
     return sources
+
+
+def refuse_twice(given: Sequence[tuple[Path, str | None]]) -> None:
+    """Raise UsageError where one file, or one plan of a day, is named more than once."""
+    seen: set[tuple[Path, str | None]] = set()
+    for path, plan in given:
+        if (path.resolve(), plan) in seen:
+            raise UsageError(f"{path}{f', plan {plan},' if plan else ''} is named twice: name every run or plan once.")
+        seen.add((path.resolve(), plan))
 
 
 def _sources_in(file: Path, plans: Sequence[str], overrides: Sequence[str]) -> list[Source]:
@@ -151,16 +170,14 @@ def opened_runs(sources: Sequence[Source]) -> Iterator[dict[str, "xr.Dataset"]]:
 
 
 def run_names(places: Sequence[tuple[Path, str]]) -> list[str]:
-    """Names that tell the runs apart, by file and plan: the plan, the file, or both. UsageError for one given twice."""
-    for names in (
+    """Names that tell the runs apart, by file and plan: the plan, the file, or both."""
+    full = [f"{path}, {plan}" for path, plan in places]
+    shorter = (
         [plan or path.stem for path, plan in places],
         [path.stem for path, _ in places],
         [f"{path.stem}, {plan}" for path, plan in places],
-        [f"{path}, {plan}" for path, plan in places],
-    ):
-        if len(set(names)) == len(names):
-            return names
-    raise UsageError("a run or plan is named twice: name every one once.")
+    )
+    return next((names for names in shorter if len(set(names)) == len(names)), full)
 
 
 def told_as(form: str, comparison: "Comparison", clock: "RunClock", display: "Display", width: int) -> str:

@@ -18,9 +18,9 @@ def command(file: Path) -> None:
 
 def describe_run(file: Path, width: int) -> str:
     from toeline.report.describe import run_page
-    from toeline.results.dataset import open_run
+    from toeline.results.dataset import damage_told, open_run
 
-    with open_run(file) as dataset:
+    with open_run(file) as dataset, damage_told(file):
         return run_page(dataset, width=width)
 
 

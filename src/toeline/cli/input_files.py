@@ -49,6 +49,8 @@ def load_plans(day: Path, plan: str | None = None, overrides: Sequence[str] = ()
     """
     from toeline.scenario import load_scenario, plan_names
 
+    if is_run(day):
+        raise UsageError(f"{day} is a file of results: name the day file, or see it with: toeline describe {day}")
     if is_canal(day):
         raise UsageError(f"{day} is a canal file: name a day file, which says what happens on it.")
     names: Sequence[str | None] = (plan,) if plan is not None else plan_names(day) or (None,)

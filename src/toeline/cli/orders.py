@@ -23,6 +23,8 @@ if TYPE_CHECKING:
 
 FORMATS = {"pdf": ".pdf", "text": ".txt", "csv": ".csv"}
 CALENDAR = ".ics"
+MOST_ALLOWED = 0.5
+"""Widest allowance [m]: with more a band says nothing, and a number in the wrong unit is near (choice)."""
 
 
 @click.command(short_help="Write the order sheets of a run: to print, as text, CSV and calendar.")
@@ -81,14 +83,18 @@ def command(
     """
     from toeline.report.order_calendar import issue
     from toeline.report.order_sheet import order_sheets
-    from toeline.results.dataset import open_run
+    from toeline.results.dataset import damage_told, open_run
 
     if not is_run(run):
         raise UsageError(f"{run} is no run: run the day first, look at what goes wrong, then name its file of results.")
     folder = output or Path(f"{run.stem}.orders")
     suffixes = [FORMATS[name] for name in formats or FORMATS]
-    with open_run(run) as opened:
+    with open_run(run) as opened, damage_told(run):
         dataset = opened.load()
+    if not dataset.sizes["time"]:
+        raise UsageError(f"{run} was stopped before anything reached the disk: there are no orders to write.")
+    if not dataset.sizes["gate"]:
+        raise UsageError(f"{run} is of a canal without gates: there is nobody to write orders for.")
     sheets = order_sheets(dataset, by, allowance=allowance_of(allow, dataset))
     stems = sheet_files(sheets)
     refuse_files(folder, stems.values(), [*suffixes, CALENDAR], overwrite)
@@ -114,8 +120,8 @@ def allowance_of(text: str | None, run: "xr.Dataset") -> float | None:
     if text is None:
         return None
     given = lengths("--allow", text, UnitSystem(run.attrs["units_for_display"]))
-    if len(given) > 1 or given[0] < 0.0:
-        raise UsageError(f"--allow: found {text}; allowed: one length, not below 0")
+    if len(given) > 1 or not 0.0 <= given[0] <= MOST_ALLOWED:
+        raise UsageError(f"--allow: found {text}; allowed: one length, from 0 to {MOST_ALLOWED:.2f} m, such as '3 cm'")
     return given[0]
 
 
@@ -178,13 +184,22 @@ def issue_page(
     run: Path, folder: Path, sheets: Sequence["Sheet"], stems: Mapping[str, str], suffixes: Sequence[str]
 ) -> str:
     """What was written: a line for each sheet."""
-    from toeline.report.layout import counted, paragraph, table
+    from toeline.report.layout import paragraph, table
 
     width = page_width()
-    rows = [(sheet.whose, counted(len(sheet.orders), "order"), stems[sheet.whose]) for sheet in sheets]
+    rows = [(sheet.whose, contents(sheet), stems[sheet.whose]) for sheet in sheets]
     title = paragraph(f"Order sheets of {run}: {sheets[0].plan}, revision {sheets[0].revision}", width, indent="")
     where = paragraph(f"In {folder}, each as {', '.join(suffixes)}", width, indent="")
     return "\n".join([title, table(("", "", "file"), rows, width), where])
+
+
+def contents(sheet: "Sheet") -> str:
+    """What a sheet asks for, in numbers."""
+    from toeline.report.layout import counted
+
+    visits = sum(form.count for form in sheet.rounds)
+    orders = counted(len(sheet.orders), "order")
+    return f"{orders}, {counted(visits, 'visit')}" if visits else orders
 
 
 def tell_what_to_look_at(run: Path, dataset: "xr.Dataset") -> None:

@@ -58,10 +58,16 @@ def refuse_outputs(
 
 def refuse_page(output: Path, inputs: Iterable[Path], overwrite: bool) -> None:
     """Raise UsageError, before any work is done, where writing a page would fail or lose something."""
-    if output.resolve() in {path.resolve() for path in inputs}:
+    try:
+        resolved = output.resolve()
+    except (OSError, RuntimeError, ValueError) as error:  # RuntimeError: links in a circle
+        raise UsageError(f"{output} cannot be a file name: {error}") from error
+    if resolved in {path.resolve() for path in inputs}:
         raise UsageError(f"{output} is an input and would be lost: name another file with -o.")
-    if not output.parent.is_dir():
+    if not resolved.parent.is_dir():
         raise UsageError(f"there is no directory {output.parent} to write {output.name} in.")
+    if output.exists() and not output.is_file():
+        raise UsageError(f"{output} is a pipe or device and would be replaced: name a file with -o.")
     if output.exists() and not overwrite:
         raise UsageError(f"{output} exists: name another file with -o, or replace it with --overwrite.")
 
@@ -71,7 +77,7 @@ def show_or_write(text: str, output: Path | None) -> None:
     if output is None:
         show(text)
         return
-    write_together({output: f"{text}\n".encode()})
+    write_together({output.resolve(): f"{text}\n".encode()})
     note(f"Written: {output}")
 
 
@@ -91,6 +97,8 @@ def write_together(files: Mapping[Path, bytes]) -> None:
             working[path].write_bytes(content)
         for path in files:
             working[path].replace(path)
+    except OSError as error:
+        raise OSError(error.errno, error.strerror, str(path)) from error
     finally:
         for left in working.values():
             left.unlink(missing_ok=True)

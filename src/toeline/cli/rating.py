@@ -102,6 +102,7 @@ def chosen_values(
 ) -> list[list[float]]:
     """Headwaters, tailwaters and openings in SI: those given, the others from the levels of the canal."""
     from toeline.network.rating import default_rating_levels
+    from toeline.units import quantity_text
 
     given = (("--headwater", headwater), ("--tailwater", tailwater), ("--opening", opening))
     chosen = [
@@ -110,6 +111,10 @@ def chosen_values(
     ]
     if min(chosen[2]) < 0.0:
         raise UsageError("--opening: openings count from the closed gate upward, from 0.")
+    most = next(known.max_opening for known in canal_file.canal.gates if known.name == gate)
+    if max(chosen[2]) > most:
+        allowed = quantity_text(most, "length", canal_file.units)
+        raise UsageError(f"--opening: {gate} opens to {allowed}, by max_opening of the canal file.")
     return chosen
 
 

@@ -1,14 +1,16 @@
 """`toeline run`: step the canal through the day."""
 
+import shlex
+from collections.abc import Sequence
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, NamedTuple
 
 import click
 from click.exceptions import Exit
 
 from toeline.cli.exit_status import ExitStatus
 from toeline.cli.input_files import INPUT_FILE, load_plans
-from toeline.cli.terminal import note, page_width, progress_bar, show, shown_path
+from toeline.cli.terminal import heeding_ctrl_c, note, page_width, progress_bar, show, shown_path
 from toeline.errors import RunError, UsageError
 
 if TYPE_CHECKING:
@@ -68,8 +70,28 @@ def command(
     outputs = choose_outputs(scenarios, output)
     refuse_outputs(outputs, scenarios, overwrite, resume)
     tell_of_compiling()
-    statuses = {run_plan(*pair, overwrite, resume, strict) for pair in zip(scenarios, outputs, strict=True)}
+    ends = [run_plan(*pair, overwrite, resume, strict) for pair in zip(scenarios, outputs, strict=True)]
+    if len(ends) > 1:
+        show(plans_page(day, [scenario.plan or "" for scenario in scenarios], ends))
+    statuses = {end.status for end in ends}
     ctx.exit(ExitStatus.RUN_FAILED if ExitStatus.RUN_FAILED in statuses else max(statuses))
+
+
+class PlanEnd(NamedTuple):
+    """How the run of a plan ended: the exit status, and what went wrong in a sentence."""
+
+    status: ExitStatus
+    words: str
+
+
+def plans_page(day: Path, plans: Sequence[str], ends: Sequence[PlanEnd]) -> str:
+    """What went wrong under each of several plans, below all of their pages, and what to do next."""
+    from toeline.report.layout import INDENT, heading, paragraph
+
+    width = page_width()
+    told = (paragraph(f"{plan}: {end.words}", width, hanging=INDENT * 2) for plan, end in zip(plans, ends, strict=True))
+    next_step = paragraph(f"Side by side: toeline compare {shlex.quote(str(day))}", width, hanging=INDENT * 2)
+    return "\n".join([heading("All plans"), *told, next_step])
 
 
 def tell_of_compiling() -> None:
@@ -80,9 +102,10 @@ def tell_of_compiling() -> None:
         note("Compiling the equations for this machine: once, about a minute. Later runs start at once.")
 
 
-def run_plan(scenario: "Scenario", output: Path, overwrite: bool, resume: bool, strict: bool) -> ExitStatus:
-    """Run one plan, show its page and return the exit status; a failed run tells why and what is left of it."""
+def run_plan(scenario: "Scenario", output: Path, overwrite: bool, resume: bool, strict: bool) -> PlanEnd:
+    """Run one plan, show its page and return how it ended; a failed run tells why and what is left of it."""
     from toeline.findings.incidents import incidents
+    from toeline.report.incidents import incident_words
     from toeline.report.run_summary import run_summary
 
     try:
@@ -93,18 +116,19 @@ def run_plan(scenario: "Scenario", output: Path, overwrite: bool, resume: bool, 
         raise Exit(ExitStatus.INTERRUPTED) from None
     except RunError as error:
         note(f"Error: {error}\n{what_is_left(output)}")
-        return ExitStatus.RUN_FAILED
+        return PlanEnd(ExitStatus.RUN_FAILED, "the run failed")
     with dataset:
         show(run_summary(dataset, scenario.display, width=page_width()))
         show(f"\nResults: {output}\n")
-        return ExitStatus.INCIDENT_FOUND if strict and incidents(dataset) else ExitStatus.DONE
+        found = incidents(dataset)
+        return PlanEnd(ExitStatus.INCIDENT_FOUND if strict and found else ExitStatus.DONE, incident_words(found))
 
 
 def stepped(scenario: "Scenario", output: Path, overwrite: bool, resume: bool) -> "Dataset":
     """Step a plan, with a bar that tells how far it is."""
     from toeline import simulate
 
-    with progress_bar(scenario.plan or scenario.day_path.stem) as progress:
+    with progress_bar(scenario.plan or scenario.day_path.stem) as bar, heeding_ctrl_c(bar) as progress:
         return simulate(scenario, output, overwrite=overwrite, resume=resume, progress=progress)
 
 

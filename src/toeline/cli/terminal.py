@@ -2,6 +2,7 @@
 
 import os
 import shutil
+import signal
 import sys
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
@@ -51,3 +52,29 @@ def progress_bar(label: str) -> Iterator[Callable[[float], None] | None]:
     with Progress(*columns, console=Console(stderr=True), transient=True) as bar:
         task = bar.add_task(label, total=1.0)
         yield lambda fraction: bar.update(task, completed=fraction)
+
+
+@contextmanager
+def heeding_ctrl_c(progress: Callable[[float], None] | None) -> Iterator[Callable[[float], None]]:
+    """Yield what a run calls as it goes on: it raises KeyboardInterrupt once Ctrl-C was pressed.
+
+    The exception that the signal itself raises is lost where it falls into code that cannot raise.
+    """
+    is_pressed = False
+
+    def remember(number: int, frame: object) -> None:
+        nonlocal is_pressed
+        is_pressed = True
+        raise KeyboardInterrupt
+
+    def go_on(fraction: float) -> None:
+        if is_pressed:
+            raise KeyboardInterrupt
+        if progress is not None:
+            progress(fraction)
+
+    before = signal.signal(signal.SIGINT, remember)
+    try:
+        yield go_on
+    finally:
+        signal.signal(signal.SIGINT, before)

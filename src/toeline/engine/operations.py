@@ -137,8 +137,9 @@ class Operations:
         if record.is_final and math.isnan(record.completed):
             return
         g = self.network.names.gates.index(record.gate)
-        up, down = self.present.headwater_level(record.gate), self.present.tailwater_level(record.gate)
-        self.unrest.note_move(record.time, g, up, down, opening, motion)
+        levels = self.present.headwater_level(record.gate), self.present.tailwater_level(record.gate)
+        openings = [self.present.opening(name) for name in self.network.names.gates]
+        self.unrest.note_move(record.time, g, levels, opening, motion, openings)
 
     def _moved_by(self, order: Order) -> list[GateMotion]:
         return [motion for motion in self.leaves[order.gate] if order.bay in (0, motion.bay)]

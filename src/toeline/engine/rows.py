@@ -8,6 +8,7 @@ from toeline.network.tables import Network
 
 FLAG = np.int8
 
+# Aligned, because records of odd length cost a tenth of a day.
 GATE_OUTPUT = np.dtype(
     [
         ("gate_opening", float),
@@ -32,7 +33,8 @@ GATE_OUTPUT = np.dtype(
         ("jump_state", FLAG),
         ("jump_kind", FLAG),
         ("jump_length_quality", FLAG),
-    ]
+    ],
+    align=True,
 )
 
 POOL_OUTPUT = np.dtype(
@@ -50,7 +52,8 @@ POOL_OUTPUT = np.dtype(
         ("pool_bank_margin", float),
         ("pool_lining_margin", float),
         ("settling", FLAG),
-    ]
+    ],
+    align=True,
 )
 
 BAY_OUTPUT = np.dtype([("bay_opening", float), ("bay_discharge", float)])

@@ -40,6 +40,7 @@ class Run:
         self.work, self.totals = new_work(network.node_count), new_totals(network)
         self.forcing = zeros(timetable.forcing_size, FORCING)
         self.pace = self._new_pace()
+        self._keep_views()
         self.rows, self.watch = self._new_rows(), self._new_watch()
         self.time = 0
         self.roughness = list(timetable.roughness)
@@ -49,6 +50,16 @@ class Run:
         self._take_over(start) if isinstance(start, dict) else self._start_at(start)
         self.operations.begin(start if isinstance(start, dict) else None)
         self.watch.start_storage[0] = self._storage()
+
+    def _keep_views(self) -> None:
+        """Keep plain views of what is set at every stop: reading the fields of records by name costs more than a
+        step.
+        """
+        self._value: np.ndarray = self.forcing["value"]
+        self._rate: np.ndarray = self.forcing["rate"]
+        self._now: np.ndarray = self.forcing["now"]
+        self._leg_start, self._done = self.pace["leg_start"], self.pace["done"]
+        self._leaves = slice(FORCING_GATES, FORCING_GATES + self.network.leaf_count)
 
     def go(self, progress: Callable[[float], None] | None = None) -> None:
         """Step to the end of the period; raises RunError where no step can be solved or a rule fails."""
@@ -76,9 +87,9 @@ class Run:
         return left | {
             "end_delivery": self.state.delivery.copy(),
             "end_roughness_factor": self.watch.roughness_factor.copy(),
-            "end_rate": self.forcing.rate.copy(),
-            "end_next_step": np.float64(self.pace.next_step[0]),
-            "end_time": np.float64(self.time / 1000.0),
+            "end_rate": self._rate.copy(),
+            "end_next_step": np.array(self.pace.next_step[0]),
+            "end_time": np.array(self.time / 1000.0),
         }
 
     def _start_at(self, start: Start) -> None:
@@ -93,7 +104,7 @@ class Run:
             self.state.links[name] = end["end_" + name]
         self.state.delivery[:] = end["end_delivery"]
         self.pace.next_step = end["end_next_step"]
-        self.forcing.rate = end["end_rate"]
+        self._rate[:] = end["end_rate"]
         self.watch.roughness_factor[:] = end["end_roughness_factor"]
         self.unrest.take_over(end)
 
@@ -139,10 +150,10 @@ class Run:
 
     def _act(self) -> None:
         """What changes at a stop: the forcing, then what people do."""
-        before = self.forcing.now.copy()
-        self.forcing.value = self.timetable.values_at(self.time)
+        before = self._now.copy()
+        self._value[:] = self.timetable.values_at(self.time)
         if self.time > 0:
-            self.unrest.note_changes(self.time, before, self.forcing.value)
+            self.unrest.note_changes(self.time, before, self._value)
         try:
             self.operations.act(self.time)
         except RunError as error:
@@ -152,13 +163,12 @@ class Run:
 
     def _leg(self, until: int) -> None:
         """Advance to the next stop."""
-        leaves = slice(FORCING_GATES, FORCING_GATES + self.network.leaf_count)
-        self.forcing.value[leaves] = [motion.opening for motion in self.operations.motions]
-        before = self.forcing.rate.copy()
-        self.forcing.rate = self.timetable.rates_between(self.time, until)
-        self.forcing.rate[leaves] = [motion.rate() for motion in self.operations.motions]
-        has_kink = self._change_roughness() or bool(np.any(np.abs(self.forcing.rate - before) > SAME_RATE))
-        self.pace.leg_start, self.pace.done = self.time, 0.0
+        self._value[self._leaves] = [motion.opening for motion in self.operations.motions]
+        before = self._rate.copy()
+        self._rate[:] = self.timetable.rates_between(self.time, until)
+        self._rate[self._leaves] = [motion.rate() for motion in self.operations.motions]
+        has_kink = self._change_roughness() or bool(np.any(np.abs(self._rate - before) > SAME_RATE))
+        self._begin_leg()
         seconds, outcome = (until - self.time) / 1000.0, None
         while outcome != LEG_DONE:
             outcome = self._advance(seconds, has_kink)
@@ -182,14 +192,17 @@ class Run:
         return is_changed
 
     def _give_up(self) -> None:
-        self.time += round(float(self.pace.done[0]) * 1000.0)
+        self.time += round(float(self._done[0]) * 1000.0)
         self.flush()
         raise RunError(f"no step could be solved {self.time / 1000.0:.1f} s after the start; the output ends there")
 
     def _last_row(self) -> None:
-        self.forcing.value = self.forcing.now
-        self.pace.leg_start, self.pace.done = self.time, 0.0
+        self._value[:] = self._now
+        self._begin_leg()
         self._advance(0.0, False)
+
+    def _begin_leg(self) -> None:
+        self._leg_start[0], self._done[0] = self.time, 0.0
 
     def _advance(self, seconds: float, has_kink: bool) -> int:
         return advance(

@@ -1,17 +1,15 @@
 """What a change leaves behind for a while: surge bounds beside the gates, and pools that settle."""
 
 import math
+from collections.abc import Sequence
 
 import numpy as np
 
 from toeline.engine.gate_motion import GateMotion
 from toeline.engine.output import Watch
-from toeline.engine.settling import round_trip, surge_bounds
+from toeline.engine.settling import LEAST_CHANGE, round_trip, unsettle_by_move
 from toeline.engine.state import State
 from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, TAIL_LEVEL, Network
-
-LEAST_CHANGE = 1e-9
-"""Change of a discharge [m³/s] below which nothing is said to settle."""
 
 LEAST_ROUGHENING = 0.01
 """Relative change of Manning's n at once from which a pool is said to settle (choice)."""
@@ -25,26 +23,17 @@ class Unrest:
     def __init__(self, network: Network, state: State, watch: Watch, length: int):
         self.network, self.state, self.watch, self.length = network, state, watch, length
 
-    def note_move(self, time: int, g: int, up: float, down: float, opening: float, motion: GateMotion) -> None:
-        """Surge bounds of a move of a leaf of gate `g` from `opening` [m] at the levels beside it, and until when both
-        pools settle.
+    def note_move(
+        self, time: int, g: int, levels: tuple[float, float], opening: float, motion: GateMotion,
+        openings: Sequence[float],
+    ) -> None:  # fmt: skip
+        """Surge bounds of a move of a leaf of gate `g` from `opening` [m] with the levels above and below it, and until
+        when the pools settle; `openings` [m] are those of all gates.
         """
-        tables = self.network.tables
-        before = self.state.links.discharge[np.flatnonzero(tables.links.gate == g)[0]]
-        up_height, down_height, change = surge_bounds(
-            tables.channel.shapes, tables.gates[g], up, down, before, opening, motion.target
-        )
-        if abs(change) < LEAST_CHANGE:
-            return
-        for side, height in zip(SIDES, (up_height, down_height), strict=True):
-            pool, gates = self._pool_beside(g, side), self.watch.gates
-            if pool is None:
-                continue
-            running = gates[f"surge_{side}"][g] if gates[f"surge_{side}_until"][g] > time else 0.0
-            settled = self._settled_after(pool, max(motion.until, time))
-            gates[f"surge_{side}"][g] = running + height if running * height >= 0.0 else max(running, height, key=abs)
-            gates[f"surge_{side}_until"][g] = settled
-            self._unsettle(pool, settled)
+        unsettle_by_move(
+            self.network.tables, self.state, self.watch, g, levels, (opening, float(motion.target)), np.array(openings),
+            time, max(motion.until, time), self.length + 1,
+        )  # fmt: skip
 
     def note_changes(self, time: int, before: np.ndarray, now: np.ndarray) -> None:
         """Pools that a change of inflow, of the tail level or of a delivery leaves settling."""
@@ -86,16 +75,9 @@ class Unrest:
     def _unsettle(self, pool: int, until: int) -> None:
         self.watch.settled_at[pool] = max(self.watch.settled_at[pool], until)
 
-    def _pool_beside(self, g: int, side: str) -> int | None:
-        """Index of the pool above ("upstream") or below a gate; None beyond the canal's ends."""
-        node = self.network.tables.gates[f"{side}_node"][g]
-        if node < 0 or node >= self.network.canal_node_count:
-            return None
-        return int(np.searchsorted(self.network.tables.pools.last_node, node))
-
     def _settled_after(self, pool: int, time: int) -> int:
         ends = self.network.tables.pools[pool]
-        seconds = round_trip(self.network.channel, ends.first_node, ends.last_node, self.state)
+        seconds = float(round_trip(self.network.channel, ends.first_node, ends.last_node, self.state))
         return time + round(1000.0 * seconds) if math.isfinite(seconds) else self.length + 1
 
 

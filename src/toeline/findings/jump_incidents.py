@@ -6,6 +6,7 @@ import numpy as np
 import xarray as xr
 
 from toeline.findings.incident import Incident, Measure, Settling, pools_beside_gates
+from toeline.findings.jumps import BEYOND_PROTECTION
 from toeline.findings.series import greatest, is_any, least
 from toeline.findings.spells import spells
 
@@ -13,7 +14,7 @@ JUMP_END = "end of the jump from the gate"
 
 
 def jumps_beyond_protection(run: xr.Dataset, settling: Settling) -> Iterator[Incident]:
-    is_beyond = is_any(run["jump_state"], "beyond_protection", "swept_out_of_pool")
+    is_beyond = is_any(run["jump_state"], *BEYOND_PROTECTION)
     return _jump_incidents("jump beyond protection", is_beyond, run["protection_margin"].values, run, settling)
 
 

@@ -4,12 +4,17 @@ Two hazards stand side by side. Beyond the protected floor a jump scours; a drow
 Little of one says nothing about the other, and no state is safe to enter.
 """
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
+import numpy as np
 import xarray as xr
 
 from toeline.findings.series import Extreme, greatest, hours_in_each, hours_of_rows, is_any, least
 from toeline.findings.spells import Spell, spells
+
+BEYOND_PROTECTION = ("beyond_protection", "swept_out_of_pool")
+"""States of a jump that the floor does not bear."""
 
 _NEEDED = (
     "gate_flow_state",
@@ -26,7 +31,8 @@ class GateJumps:
     """One gate over the whole run: hours by state, and the worst values with their times.
 
     `protection_margin` and `tailwater_margin` are the least, `jump_end_distance` the greatest [m]; NaN where there was
-    no value at all. `rollers` are the times with a drowned jump.
+    no value at all. `rollers` are the times with a drowned jump, `beyond_protection` those with one that ended beyond
+    the protected floor or was swept out of the pool.
     """
 
     gate: str
@@ -37,16 +43,17 @@ class GateJumps:
     tailwater_margin: Extreme
     jump_end_distance: Extreme
     rollers: tuple[Spell, ...]
+    beyond_protection: tuple[Spell, ...]
 
     @property
     def beyond_protection_hours(self) -> float:
         """Hazard to the floor: the jump ended beyond the protected floor, or was swept out of the pool."""
-        return self.jump_state_hours["beyond_protection"] + self.jump_state_hours["swept_out_of_pool"]
+        return _hours(self.beyond_protection)
 
     @property
     def roller_hours(self) -> float:
         """Hazard to people: the jump was drowned, a roller at the gate. Other hours are no safer to enter."""
-        return self.jump_state_hours["drowned"]
+        return _hours(self.rollers)
 
 
 def gate_jumps(run: xr.Dataset) -> list[GateJumps]:
@@ -67,4 +74,11 @@ def _of_gate(run: xr.Dataset) -> GateJumps:
         tailwater_margin=least(run["tailwater_margin"].values, times),
         jump_end_distance=greatest(run["jump_end_distance"].values, times),
         rollers=tuple(spells(is_any(run["jump_state"], "drowned"), times, -run["tailwater_margin"].values)),
+        beyond_protection=tuple(
+            spells(is_any(run["jump_state"], *BEYOND_PROTECTION), times, run["protection_margin"].values)
+        ),
     )
+
+
+def _hours(times: Sequence[Spell]) -> float:
+    return float(sum((spell.end - spell.start) / np.timedelta64(1, "h") for spell in times))

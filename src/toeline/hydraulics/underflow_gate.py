@@ -108,7 +108,10 @@ def free_jet(gate, upstream_section, headwater_level, opening):
     share = width / geometry(upstream_section, headwater_level - gate.upstream_bed_level)[0]
     energy = head
     for _ in range(APPROACH_PASSES):
-        energy = min(max(_with_approach(gate, head, energy, opening, share), head), 1.5 * head)
+        before = energy
+        energy = min(max(_with_approach(gate, head, before, opening, share), head), 1.5 * head)
+        if energy == before:
+            break
     lip = contraction_coefficient(gate, opening, energy) * opening
     jet = min(lip, energy * 2.0 / 3.0)
     return energy, jet, width * jet * math.sqrt(2.0 * GRAVITY * (energy - jet)), lip
@@ -408,8 +411,10 @@ def opening_for_discharge(
     high_gap = (
         gate_discharge(gate, upstream_section, downstream_section, headwater_level, tailwater_level, high) - discharge
     )
-    if low_gap >= 0.0 or high_gap <= 0.0:
-        return (low, discharge + low_gap) if low_gap >= 0.0 else (high, discharge + high_gap)
+    if low_gap >= 0.0 or high_gap < low_gap:  # more open is further away where the head is reversed
+        return low, discharge + low_gap
+    if high_gap <= 0.0:
+        return high, discharge + high_gap
     best, gap, side = high, high_gap, 0
     for _ in range(100):
         best = (low * high_gap - high * low_gap) / (high_gap - low_gap)

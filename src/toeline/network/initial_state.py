@@ -301,8 +301,9 @@ class _Search:
         law, above, beside = self._law(g)
         found, passed = opening_for_discharge(law, above, beside, up, down, q, largest)
         if abs(passed - q) > 1e-6 * (1.0 + q):
+            how = "fully open" if found > 0.0 else "closed"
             raise UsageError(
                 f"no steady state at the target levels: {self.network.names.gates[g]} passes {passed:.3f} m3/s "
-                f"fully open at {largest:.2f} m, asked {q:.3f} m3/s (headwater {up:.2f} m, tailwater {down:.2f} m)"
+                f"{how} at {found:.2f} m, asked {q:.3f} m3/s (headwater {up:.2f} m, tailwater {down:.2f} m)"
             )
         return found

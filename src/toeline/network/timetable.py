@@ -3,6 +3,7 @@ for them.
 """
 
 from dataclasses import dataclass
+from functools import cached_property
 from typing import NamedTuple
 
 import numpy as np
@@ -72,18 +73,31 @@ class Timetable:
 
     def values_at(self, time: int) -> np.ndarray:
         """Forcing [SI] at a time, gate openings left at zero."""
-        value = np.zeros(self.forcing_size)
-        for index, series in self.series.items():
+        value = self._constants.copy()
+        for index, series in self._changing.items():
             value[index] = series.at(time)
         return value
 
     def rates_between(self, time: int, until: int) -> np.ndarray:
         """Rates of change [SI a second] between two stops."""
         rate = np.zeros(self.forcing_size)
-        for index, series in self.series.items():
+        for index, series in self._changing.items():
             if series.shape == "lines":
                 rate[index] = (series.at(until) - series.at(time)) * 1000.0 / (until - time)
         return rate
+
+    @cached_property
+    def _constants(self) -> np.ndarray:
+        """The first value of every series, gate openings left at zero."""
+        value = np.zeros(self.forcing_size)
+        for index, series in self.series.items():
+            value[index] = series.values[0]
+        return value
+
+    @cached_property
+    def _changing(self) -> dict[int, Series]:
+        """The series of more than one value."""
+        return {index: series for index, series in self.series.items() if series.values.size > 1}
 
     def demand_of(self, offtake: int) -> Series:
         """Demand at an offtake [m³/s], zero where nothing is asked."""

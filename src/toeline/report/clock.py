@@ -25,9 +25,12 @@ def clock_text(moment: datetime, start: datetime) -> str:
 
 
 def span_text(begin: datetime, end: datetime, start: datetime) -> str:
-    """From when to when, and how long that is, in a period that starts at `start`."""
+    """From when to when, and how long that is, in a period that starts at `start`; an offset from UTC once for both."""
     elapsed = (end.astimezone(UTC) - begin.astimezone(UTC)).total_seconds()
-    return f"{clock_text(begin, start)} to {clock_text(end, start)} ({duration_text(elapsed)})"
+    first, last = clock_text(begin, start), clock_text(end, start)
+    if begin.utcoffset() == end.utcoffset() != start.utcoffset():
+        first = first.removesuffix(f" ({begin:%z})")
+    return f"{first} to {last} ({duration_text(elapsed)})"
 
 
 def duration_text(seconds: float) -> str:

@@ -7,6 +7,7 @@ from toeline.constants import CAUTION
 from toeline.findings.comparison import Comparison, Contrast, IncidentRow, IncidentSum, IndicatorRow
 from toeline.findings.result_differences import ResultDifference
 from toeline.report.clock import duration_text
+from toeline.report.incidents import gravity, worst_text, worst_words
 from toeline.report.input_words import input_words
 from toeline.report.layout import INDENT, counted, heading, paragraph
 from toeline.report.run_clock import RunClock
@@ -60,7 +61,7 @@ def _title(comparison: Comparison, clock: RunClock, width: int) -> str:
 
 def _input_lines(comparison: Comparison, clock: RunClock, display: Display, width: int) -> Iterator[str]:
     if comparison.have_same_inputs:
-        yield paragraph("The same in all but the plans, by the digests that the runs carry.", width)
+        yield paragraph("The same canal and day in all; only the plans differ.", width)
     for contrast in comparison.contrasts:
         if not contrast.has_same_inputs:
             yield paragraph(f"{_against(contrast, comparison)}: what is found need not come from the plans", width)
@@ -95,8 +96,9 @@ def _incidents_in_short(comparison: Comparison, place: int, display: Display) ->
     """How the incidents of one run differ from those of the first: what is new or graver before what is less."""
     if not any(row.sums[0] or row.sums[place] for row in comparison.incidents):
         return ["no incident in either"]
-    graver = [row for row in comparison.incidents if _is_graver(row, place, 0)]
-    less = [row for row in comparison.incidents if row not in graver and _is_graver(row, 0, place)]
+    rows = sorted(comparison.incidents, key=lambda row: gravity(row.what))
+    graver = [row for row in rows if _is_graver(row, place, 0)]
+    less = [row for row in rows if row not in graver and _is_graver(row, 0, place)]
     told = [_incident_words(row, place, comparison, display) for row in (*graver, *less)]
     if len(told) > MOST_INCIDENTS:
         more = counted(len(told) - MOST_INCIDENTS, "more difference")
@@ -129,7 +131,7 @@ def _incident_words(row: IncidentRow, place: int, comparison: Comparison, displa
         words += f" instead of {lasting[1]}"
     if first is None or other is None:
         return words
-    worst = [value_text(one.worst.worst, one.worst.unit, display) for one in (other, first)]
+    worst = [worst_words(one.worst, display) for one in (other, first)]
     return words if worst[0] == worst[1] else f"{words}; worst {worst[0]} instead of {worst[1]}"
 
 
@@ -181,18 +183,26 @@ def _difference_cell(difference: ResultDifference | None, clock: RunClock, displ
     if difference is None:
         return "-"
     sign = "+" if difference.difference > 0.0 else "-"
-    is_level = "level" in difference.quantity or difference.quantity == "opening"
+    return f"{sign}{_size_words(difference, display)} {clock.at(difference.time)}"
+
+
+def _size_words(difference: ResultDifference, display: Display) -> str:
     size = abs(difference.difference)
-    words = display.level_change(size) if is_level else value_text(size, difference.unit, display)
-    return f"{sign}{words} {clock.at(difference.time)}"
+    if "jump" in difference.quantity:
+        return display.distance(size)
+    is_level = "level" in difference.quantity or difference.quantity == "opening"
+    return display.level_change(size) if is_level else value_text(size, difference.unit, display)
 
 
 def _incident_lines(comparison: Comparison, display: Display, width: int) -> Iterator[str]:
     if not comparison.incidents:
         yield paragraph("None in any run. That nothing was found makes no place safe.", width)
         return
-    yield paragraph("For how long in all, and the worst value.", width)
-    rows = sorted(comparison.incidents, key=lambda row: (row.what, not row.differs))
+    yield paragraph(
+        "For how long in all, and the worst value: how high the water is above an edge, how much tailwater is missing.",
+        width,
+    )
+    rows = sorted(comparison.incidents, key=lambda row: (gravity(row.what), row.what, not row.differs))
     groups = [
         Group(what, tuple((row.where, tuple(_incident_cell(one, display) for one in row.sums)) for row in group))
         for what, group in groupby(rows, key=lambda row: row.what)
@@ -203,7 +213,7 @@ def _incident_lines(comparison: Comparison, display: Display, width: int) -> Ite
 def _incident_cell(incident: IncidentSum | None, display: Display) -> str:
     if incident is None:
         return "none"
-    worst = value_text(incident.worst.worst, incident.worst.unit, display)
+    worst = worst_text(incident.worst, display)
     parts = [duration_text(incident.seconds) if incident.seconds else "", "" if worst == "-" else worst]
     return ", ".join(part for part in parts if part) or "yes"
 

@@ -6,7 +6,7 @@ import xarray as xr
 
 from toeline.findings.gauges import GaugeReadings
 from toeline.findings.series import names
-from toeline.report.layout import paragraph, table
+from toeline.report.layout import fits, paragraph, table
 from toeline.report.run_clock import RunClock, extreme_text
 from toeline.units import Display
 
@@ -25,8 +25,16 @@ def gauge_lines(gauges: Sequence[GaugeReadings], clock: RunClock, display: Displ
         )
         for gauge in gauges
     ]
-    yield table(("", "stands", "at the start", "least", "greatest"), rows, width)
+    yield table(*_with_places_where_they_fit(("", "stands", "at the start", "least", "greatest"), rows, width), width)
     yield paragraph("Readings are above the zero of the staff; negative: the water stands below it.", width)
+
+
+def _with_places_where_they_fit(
+    header: Sequence[str], rows: Sequence[Sequence[str]], width: int
+) -> tuple[Sequence[str], Sequence[Sequence[str]]]:
+    """The table without the places of the gauges, which the page of the canal tells, where it has room only so."""
+    narrow = [header[0], *header[2:]], [[row[0], *row[2:]] for row in rows]
+    return narrow if fits(*narrow, width) and not fits(header, rows, width) else (header, rows)
 
 
 def roughness_lines(run: xr.Dataset, width: int) -> Iterator[str]:

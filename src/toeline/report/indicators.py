@@ -24,17 +24,19 @@ _POOLS = {
     "steady-state level error": "steady-state error",
 }
 _GATES = {
-    "gate moves": "moves",
-    "gate travel": "travel",
     "integrated absolute gate movement": "integrated movement",
     "integrated absolute discharge change": "integrated flow change",
 }
 _STATES = {
     "modular-limit crossings": "modular limit crossed",
-    "hours near the modular limit": "near that limit",
     "hours at avoided openings": "at avoided openings",
 }
-"""Names of indicators and the headings of their columns."""
+"""Names of indicators and the headings of their columns. Moves and travel, hours near the modular limit and what was
+used of the limits stand in sections of their own.
+"""
+
+_NOTHING = ("-", "0")
+"""What the cells of a column are that is left out."""
 
 _DELIVERY_NOTE = (
     "Adequacy, efficiency: 1 where all was given and nothing too much. Dependability, equity: variation over time and "
@@ -45,8 +47,8 @@ _LEVEL_NOTE = (
     "Every output step is one sample."
 )
 _GATE_NOTE = (
-    "Integrated: what openings and discharges changed beyond the way from their first to their last value. Near the "
-    "modular limit the discharge of a gate is poorly known."
+    "Integrated: what openings and discharges changed beyond the way from their first to their last value. Near "
+    "the modular limit the discharge of a gate is poorly known. Crossings and hours that no gate had are left out."
 )
 
 
@@ -61,8 +63,8 @@ def indicator_lines(found: Sequence[Indicator], display: Display, width: int) ->
     ):
         if text := _pivoted(found, subject, columns, display, width):
             yield text
-            if note:
-                yield paragraph(note, width)
+        if note and any(indicator.name in columns for indicator in found):
+            yield paragraph(note, width)
     if not any(indicator.name in _CANAL for indicator in found):
         yield paragraph("Nothing was asked of an offtake: there are no indicators of deliveries.", width)
 
@@ -74,13 +76,14 @@ def _sampling(found: Sequence[Indicator]) -> str:
 
 
 def _pivoted(found: Sequence[Indicator], subject: str, columns: Mapping[str, str], display: Display, width: int) -> str:
-    """One row a place, one column an indicator; empty where there is none."""
+    """One row a place, one column an indicator; empty where there is nothing to count."""
     cells = {
         (indicator.where, indicator.name): value_text(indicator.value, indicator.unit, display)
         for indicator in found
         if indicator.name in columns
     }
-    used = [name for name in columns if any(name == named for _, named in cells)]
+    told = {name for (_, name), cell in cells.items() if cell not in _NOTHING}
+    used = [name for name in columns if name in told]
     places = dict.fromkeys(place for place, _ in cells)
     rows = [(place or "whole canal", *(cells.get((place, name), "-") for name in used)) for place in places]
-    return table((subject, *(columns[name] for name in used)), rows, width) if rows else ""
+    return table((subject, *(columns[name] for name in used)), rows, width) if used else ""

@@ -77,5 +77,6 @@ def _use_words(use: LimitUse, clock: RunClock, display: Display) -> str:
     value = f"{value_text(worst.value, use.limit.unit, display)}{share}"
     if not worst.value and use.share is not None:
         return value
-    passed = "passed: " if use.room < 0.0 else ""
+    side = "below" if use.limit.is_least else "over"
+    passed = f"{side} the limit: " if use.room < 0.0 else ""
     return f"{passed}{value}, {use.where}, {clock.window(worst.time, use.limit.window)}"

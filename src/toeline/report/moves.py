@@ -10,6 +10,7 @@ import xarray as xr
 from toeline.findings.moves import SCHEDULE, GateMoves
 from toeline.findings.series import meanings
 from toeline.report.layout import INDENT, counted, paragraph, table
+from toeline.report.order_words import reason_words
 from toeline.report.run_clock import RunClock
 from toeline.units import Display
 
@@ -21,20 +22,32 @@ def move_lines(
 ) -> Iterator[str]:
     """Moves of every gate, then what stood in the way of rules, alike ones together."""
     hours = (run["time"].values[-1] - run["time"].values[0]) / np.timedelta64(1, "h")
-    columns = ("", "moves", "by rules", "an hour", "busiest hour", "back and forth", "travel")
-    yield table(columns, [_row(gate, hours, clock, display) for gate in gates], width)
-    yield paragraph("Back and forth: moves against the one before. Many of them tell of a rule that hunts.", width)
-    yield from _hindered(run, clock, width)
+    columns = {
+        "": [gate.gate for gate in gates],
+        "moves": [str(gate.moves) for gate in gates],
+        "by rules": [str(_by_rules(gate)) for gate in gates],
+        "an hour": [f"{gate.moves / hours:.1f}" if hours > 0.0 else "-" for gate in gates],
+        "busiest hour": [
+            f"{gate.busiest} from {clock.at(gate.busiest_from)}" if gate.moves else "-" for gate in gates
+        ],
+        "back and forth": [str(gate.reversals) for gate in gates],
+        "travel": [display.length(gate.travel) for gate in gates],
+    }
+    if not any(map(_by_rules, gates)):
+        del columns["by rules"]
+    yield table(tuple(columns), list(zip(*columns.values(), strict=True)), width)
+    words = "Back and forth: moves against the one before."
+    if "by rules" in columns:
+        words += " Many of them tell of a rule that hunts."
+    yield paragraph(words, width)
+    yield from _hindered(run, clock, display, width)
 
 
-def _row(gate: GateMoves, hours: float, clock: RunClock, display: Display) -> tuple[str, ...]:
-    busiest = f"{gate.busiest} from {clock.at(gate.busiest_from)}" if gate.moves else "-"
-    by_rules = gate.moves - gate.by_source.get(SCHEDULE, 0)
-    rate = f"{gate.moves / hours:.1f}" if hours > 0.0 else "-"
-    return (gate.gate, str(gate.moves), str(by_rules), rate, busiest, str(gate.reversals), display.length(gate.travel))
+def _by_rules(gate: GateMoves) -> int:
+    return gate.moves - gate.by_source.get(SCHEDULE, 0)
 
 
-def _hindered(run: xr.Dataset, clock: RunClock, width: int) -> Iterator[str]:
+def _hindered(run: xr.Dataset, clock: RunClock, display: Display, width: int) -> Iterator[str]:
     """Moves of rules that were not made as wanted, those of one gate and one reason as one line."""
     words = meanings(run["order_status"])
     sources, reasons = run["order_source"].values, run["order_reason"].values
@@ -49,7 +62,7 @@ def _hindered(run: xr.Dataset, clock: RunClock, width: int) -> Iterator[str]:
         begin, end = clock.at(times[alike[0]]), clock.at(times[alike[-1]])
         when = begin if begin == end else f"{begin} to {end}"
         number = f"{counted(len(alike), 'move')} {status}"
-        text = f"{when} {gate}, {source}: {number}: {reasons[alike[0]]}"
+        text = f"{when} {gate}, {source}: {number}: {reason_words(reasons[alike[0]], display)}"
         yield paragraph(text, width, hanging=INDENT * 2)
 
 

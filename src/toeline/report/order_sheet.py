@@ -18,7 +18,7 @@ from toeline.findings.series import names
 from toeline.report.clock import duration_text
 from toeline.report.layout import counted
 from toeline.report.order_words import move_words, order_words, reason_words
-from toeline.report.rounds import rounds_words
+from toeline.report.rounds import RoundsForm, rounds_form, rounds_words
 from toeline.report.run_clock import RunClock
 from toeline.results.provenance import COMPLETE
 from toeline.units import FILE_UNITS, Display, UnitSystem, file_factor
@@ -108,6 +108,7 @@ class Sheet:
     not_here: tuple[str, ...]
     trouble: tuple[str, ...]
     how_to_read: tuple[str, ...]
+    rounds: tuple[RoundsForm, ...] = ()
     revision: int = 0
 
     @property
@@ -206,6 +207,7 @@ class _Maker:
             not_here=tuple(self._not_here(gates)),
             trouble=tuple(self._trouble(gates)),
             how_to_read=tuple(self._how_to_read()),
+            rounds=tuple(rounds_form(one, clock) for one in rounds(run) if one.gate in gates),
         )
 
     def _how_to_read(self) -> Iterator[str]:
@@ -310,7 +312,7 @@ class _Maker:
     def _always(self, gates: Sequence[str]) -> Iterator[str]:
         yield PEOPLE
         ends = dict(zip(names(self._run["gate"]), self._run["gate_protection_end"].values, strict=True))
-        protected = [f"{gate} {self._display.length(float(ends[gate]))}" for gate in gates if ends[gate] > 0.0]
+        protected = [f"{gate} {self._display.distance(float(ends[gate]))}" for gate in gates if ends[gate] > 0.0]
         if protected:
             yield (
                 "white water of the jump, or fast water, goes past the end of the protected floor below the gate "

@@ -17,6 +17,8 @@ from fpdf.fonts import TTFFont
 from toeline.constants import FIELD_CAUTION
 from toeline.errors import UsageError
 from toeline.report.order_sheet import ReadingWords, Sheet, SheetOrder
+from toeline.report.order_words import loud
+from toeline.report.rounds import BLANKS, RoundsForm
 
 Paper = Literal["A4", "Letter"]
 
@@ -33,6 +35,8 @@ BLANK = 10.5
 """Height of a box to write in [mm]."""
 THIN, THICK = 0.2, 0.6
 """Widths of rules [mm]."""
+VISITS_TOGETHER = 6
+"""Lines of visits that are not torn apart."""
 FOOT = 3 * SMALL * POINT * LINE + 3.0
 """Height of the foot of a page: a rule and the caution [mm]."""
 
@@ -104,6 +108,9 @@ class _Page(FPDF):
             yield lambda page: page._text(sheet.orders_line, MIDDLE, bold=True)
         for order in sheet.orders:
             yield partial(_Page._order, order=order)
+        for form in sheet.rounds:
+            for first in range(0, len(form.visits), VISITS_TOGETHER):
+                yield partial(_Page._rounds, form=form, first=first)
         for title, lines in sheet.lists_after:
             yield partial(_Page._list, title=title, lines=lines)
         yield lambda page: page._blanks(*sheet.blanks)
@@ -145,6 +152,17 @@ class _Page(FPDF):
             self._labelled("Stop and call if", "; ".join(order.stop) + ".")
         self._blanks(*order.blanks)
 
+    def _rounds(self, form: RoundsForm, first: int) -> None:
+        """Lines to fill in, from visit number `first` on; the note below the last."""
+        self._text(form.title, MIDDLE, bold=True)
+        widths = [share * self.epw for share in (0.25, 0.17, 0.17, 0.17, 0.24)]
+        self._row(widths, [(head, "") for head in ("Visit", *BLANKS)], 0.0)
+        for visit in form.visits[first : first + VISITS_TOGETHER]:
+            self._row(widths, [(visit, ""), *(("", "") for _ in BLANKS)], BLANK)
+        if form.note and first + VISITS_TOGETHER >= len(form.visits):
+            self._text(form.note, SMALL)
+        self.set_y(self.get_y() + GAP)
+
     def _title(self, order: SheetOrder) -> None:
         top = self.get_y() + 1.0
         half = self.epw / 2
@@ -152,7 +170,7 @@ class _Page(FPDF):
         self._text(f"{order.number}.  {order.at}  {order.leaf}", LARGE, bold=True, width=half + 10.0)
         left = self.get_y()
         self.set_xy(MARGIN + half + 12.0, top)
-        self._text(order.move.upper(), LARGE, bold=True, width=half - 12.0)
+        self._text(loud(order.move), LARGE, bold=True, width=half - 12.0)
         self.set_y(max(left, self.get_y()))
 
     def _readings(self, order: SheetOrder) -> None:

@@ -4,6 +4,8 @@ from collections.abc import Iterator, Sequence
 
 from toeline.report.layout import INDENT, heading, paragraph, table
 from toeline.report.order_sheet import Sheet, SheetOrder
+from toeline.report.order_words import loud
+from toeline.report.rounds import BLANKS, RoundsForm
 
 WIDTH = 80
 BLANK = "________"
@@ -17,6 +19,7 @@ def sheet_text(sheet: Sheet) -> str:
         *(_list(title, lines) for title, lines in sheet.lists_before),
         orders,
         *("\n".join(_order(order)) for order in sheet.orders),
+        *("\n".join(_rounds(form)) for form in sheet.rounds),
         *(_list(title, lines) for title, lines in sheet.lists_after),
         "\n".join(_blanks(*sheet.blanks)),
     ]
@@ -40,7 +43,7 @@ def _list(title: str, lines: Sequence[str]) -> str:
 
 
 def _order(order: SheetOrder) -> Iterator[str]:
-    yield paragraph(f"{order.number}. {order.at}  {order.leaf}: {order.move.upper()}", WIDTH, indent="", hanging=INDENT)
+    yield paragraph(f"{order.number}. {order.at}  {order.leaf}: {loud(order.move)}", WIDTH, indent="", hanging=INDENT)
     yield paragraph(order.openings, WIDTH)
     if order.warning:
         yield paragraph(f"! {order.warning}", WIDTH, hanging=INDENT * 2)
@@ -52,6 +55,13 @@ def _order(order: SheetOrder) -> Iterator[str]:
     if order.stop:
         yield paragraph(f"Stop and call if {'; '.join(order.stop)}.", WIDTH, hanging=INDENT * 2)
     yield from _blanks(*order.blanks)
+
+
+def _rounds(form: RoundsForm) -> Iterator[str]:
+    yield heading(form.title)
+    yield table(("visit", *BLANKS), [(visit, *(BLANK for _ in BLANKS)) for visit in form.visits], WIDTH)
+    if form.note:
+        yield paragraph(form.note, WIDTH)
 
 
 def _readings(order: SheetOrder) -> Iterator[tuple[str, ...]]:

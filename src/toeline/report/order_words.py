@@ -3,7 +3,12 @@
 import math
 import re
 
+from toeline.report.clock import duration_text
 from toeline.units import Display, UnitSystem
+
+_MINUTES = re.compile(r"\b(\d+) min\b")
+_UNIT = re.compile(r"(?<=\d )(?:M|FT)\b")
+_LENGTH = re.compile(r"(\d+\.\d{3})(?: m\b)?")
 
 
 def order_words(kind: str, value: float, display: Display) -> str:
@@ -33,6 +38,11 @@ def move_words(before: float, after: float, turn: float, scale_mark: float, disp
     return f"{verb} {' = '.join(amounts)}{to_mark}"
 
 
+def loud(move: str) -> str:
+    """A move in capitals, all but the unit of its length."""
+    return _UNIT.sub(lambda unit: unit[0].lower(), move.upper())
+
+
 def counted_share(share: float, noun: str) -> str:
     """A number of turns or marks to a tenth: "1 turn", "12.4 turns"."""
     number = _number(share)
@@ -45,10 +55,11 @@ def _number(share: float) -> str:
 
 
 def reason_words(reason: str, display: Display) -> str:
-    """Why an order was not carried out as given; the lengths in it, which a run tells in metres, as people read them.
+    """Why an order was not carried out as given, with times and lengths as people read them.
 
-    A run writes lengths to three decimals and nothing else so.
+    A run tells them in whole minutes and in metres; it writes lengths to three decimals and nothing else so.
     """
+    told = _MINUTES.sub(lambda minutes: duration_text(60.0 * int(minutes[1])), reason)
     if display.system is UnitSystem.metric:
-        return reason
-    return re.sub(r"\d+\.\d{3}(?: m\b)?", lambda length: display.setting(float(length[0].split()[0])), reason)
+        return told
+    return _LENGTH.sub(lambda length: display.setting(float(length[1])), told)

@@ -8,7 +8,7 @@ import xarray as xr
 from toeline.findings.moves import SCHEDULE
 from toeline.findings.series import meanings
 from toeline.report.layout import INDENT, counted, paragraph
-from toeline.report.order_words import order_words
+from toeline.report.order_words import order_words, reason_words
 from toeline.report.run_clock import RunClock
 from toeline.units import Display
 
@@ -33,7 +33,8 @@ def _departure(order: xr.Dataset, display: Display) -> str:
     if status == "trimmed":
         status += f" to {display.opening(float(order['order_opening_after']))}"
     bay = f", bay {int(order['order_bay'])}" if order["order_bay"] else ""
-    return f"{order['order_gate'].item()}{bay}, {asked}: {status}: {order['order_reason'].item()}"
+    reason = reason_words(order["order_reason"].item(), display)
+    return f"{order['order_gate'].item()}{bay}, {asked}: {status}: {reason}"
 
 
 def _word(flag: xr.DataArray) -> str:

@@ -62,5 +62,9 @@ class RunClock:
 
 def extreme_text(extreme: Extreme, clock: RunClock, display: Display) -> str:
     """A least or greatest length and when it came; "-" where there is none."""
-    value = display.length(extreme.value)
+    return timed_text(display.length(extreme.value), extreme, clock)
+
+
+def timed_text(value: str, extreme: Extreme, clock: RunClock) -> str:
+    """The value of an extreme as it is written, and when it came."""
     return value if value == "-" else f"{value} at {clock.at(extreme.time)}"

@@ -9,7 +9,7 @@ from toeline.findings.bays import uneven_bays
 from toeline.findings.escapes import escape_spills
 from toeline.findings.gauges import gauge_readings
 from toeline.findings.incidents import incidents
-from toeline.findings.indicators import indicators
+from toeline.findings.indicators import place_indicators
 from toeline.findings.jumps import gate_jumps
 from toeline.findings.ledger import ledger
 from toeline.findings.limit_incidents import limit_uses
@@ -40,18 +40,18 @@ def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
     gates = _apart(gate_jumps, run)
     sections = [
         ("What goes wrong", incident_lines(incidents(run), clock, display, width)),
-        ("Floor and people", hazard_lines(gates, clock, width)),
+        ("Floor and people", hazard_lines(gates, clock, width) if gates else ()),
         ("Limits", limit_lines(_apart(limit_uses, run), run, clock, display, width)),
-        ("Least margins", margin_lines(gates, clock, display, width)),
-        ("Hours in each state", hour_lines(gates, width)),
+        ("Least margins", margin_lines(gates, clock, display, width) if gates else ()),
+        ("Hours in each state", hour_lines(gates, width) if gates else ()),
         ("Bays that move apart", bay_lines(_apart(uneven_bays, run), clock, display, width)),
         ("Orders", order_lines(run, clock, display, width)),
         ("Moves", _apart(lambda apart: _moves(apart, clock, display, width), run)),
         ("Escapes", escape_lines(_apart(escape_spills, run), clock, display, width)),
         ("Staff gauges", gauge_lines(_apart(gauge_readings, run), clock, display, width)),
         ("Roughness", _apart(lambda apart: roughness_lines(apart, width), run)),
-        ("Indicators", indicator_lines(indicators(run), display, width)),
-        ("Water ledger", ledger_lines(ledger(run), width)),
+        ("Indicators", indicator_lines(place_indicators(run), display, width)),
+        ("Water ledger", ledger_lines(ledger(run), display, width)),
         ("Caution", [paragraph(run.attrs["comment"], width)]),
     ]
     shown = [(title, list(lines)) for title, lines in sections]

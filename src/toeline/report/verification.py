@@ -57,9 +57,9 @@ def _title(found: Verification, clock: RunClock, width: int) -> str:
     how = (
         "How far the answer moves when the same day is computed in other ways. Compared every "
         f"{every}: levels at both ends of every pool; openings, discharges and jumps at every gate. A pool is settling "
-        "while waves of a change travel in it, once down and back; a gate is while a pool beside it is. Typical: 95 of "
-        "100 differences are not larger. Where water arrives some minutes earlier or later, levels differ for those "
-        "minutes by the height of its front."
+        "while waves of a change travel in it, once down and back, and on through drowned gates; a gate is while a "
+        "pool beside it is. Typical: 95 of 100 differences are not larger. Where water arrives some minutes earlier or "
+        "later, levels differ for those minutes by the height of its front."
     )
     return "\n".join([first, paragraph(day, width), paragraph(how, width)])
 

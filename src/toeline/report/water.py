@@ -4,9 +4,9 @@ from collections.abc import Callable, Iterator, Sequence
 
 from toeline.findings.escapes import EscapeSpill
 from toeline.findings.ledger import Account, Ledger, acre_feet
-from toeline.report.layout import counted, paragraph, table
+from toeline.report.layout import INDENT, counted, paragraph, table
 from toeline.report.run_clock import RunClock
-from toeline.units import Display
+from toeline.units import FILE_UNITS, Display, UnitSystem
 
 ENTRIES: dict[str, Callable[[Account], float]] = {
     "in": lambda account: account.inflow,
@@ -19,53 +19,65 @@ ENTRIES: dict[str, Callable[[Account], float]] = {
 """Columns of the table of pools."""
 
 
-def ledger_lines(ledger: Ledger, width: int) -> Iterator[str]:
-    """What came in, where it went, and what is left unexplained, in both units; then pool by pool."""
+def canal_entries(ledger: Ledger) -> dict[str, float]:
+    """The lines of the ledger of the canal [m³], all as amounts; the residual is the first less all others."""
     canal = ledger.canal
-    entries = {
+    return {
         "taken in at the head": canal.inflow,
-        **{f"delivered, {offtake}": -volume for offtake, volume in canal.deliveries.items()},
-        **{f"spilled, {escape}": -volume for escape, volume in canal.escapes.items()},
-        **{f"lost in {pool}": -account.losses for pool, account in ledger.pools.items() if account.losses},
-        "let out at the tail": -canal.outflow,
-        **{f"kept in {pool}": -account.storage_change for pool, account in ledger.pools.items()},
+        **{f"delivered, {offtake}": volume for offtake, volume in canal.deliveries.items()},
+        **{f"spilled, {escape}": volume for escape, volume in canal.escapes.items()},
+        **{f"lost in {pool}": account.losses for pool, account in ledger.pools.items() if account.losses},
+        "let out at the tail": canal.outflow,
+        **{f"kept in {pool}": account.storage_change for pool, account in ledger.pools.items()},
+        "residual": canal.residual,
     }
-    rows = [(name, _rounded(volume, 0), _rounded(acre_feet(volume), 2)) for name, volume in entries.items()]
-    rows.append(("residual", *_residual(canal)))
+
+
+def ledger_note(ledger: Ledger) -> str:
+    """What the words of the ledger mean."""
+    losses = "Lost: seepage and evaporation less rain. " if ledger.canal.losses else ""
+    return (
+        f"{losses}Kept: what the volume grew by; negative: it shrank. Residual: what was taken in less all of the "
+        "other lines: whether the computing lost water."
+    )
+
+
+def ledger_lines(ledger: Ledger, display: Display, width: int) -> Iterator[str]:
+    """What came in, where it went and what is left unexplained, in both units; then pool by pool in that of display."""
+    entries = canal_entries(ledger)
+    rows = [(name, rounded(volume, 0), rounded(acre_feet(volume), 2)) for name, volume in entries.items()]
     yield table(("", "m3", "acre-ft"), rows, width)
-    losses = "Lost: seepage and evaporation less rain. " if canal.losses else ""
-    residual = "The residual is what the other lines leave over: whether the computing lost water."
-    yield paragraph(losses + residual, width)
-    yield from _pool_lines(ledger, width)
+    yield paragraph(ledger_note(ledger), width)
+    yield _pool_table(ledger, display, width)
 
 
-def _pool_lines(ledger: Ledger, width: int) -> Iterator[str]:
-    """A table of all pools in m³, and one in acre-feet; entries that no pool has are left out."""
+def _pool_table(ledger: Ledger, display: Display, width: int) -> str:
+    """Pools and the canal in one unit; entries that no pool has are left out."""
     accounts = {**ledger.pools, "canal": ledger.canal}
     used = {name: entry for name, entry in ENTRIES.items() if any(entry(account) for account in accounts.values())}
-    for unit, convert, decimals, column in (("m3", float, 0, 0), ("acre-ft", acre_feet, 2, 1)):
-        rows = [
-            (
-                name,
-                *(_rounded(convert(entry(account)), decimals) for entry in used.values()),
-                _residual(account)[column],
-            )
-            for name, account in accounts.items()
-        ]
-        yield table((unit, *used, "residual"), rows, width)
+    used["residual"] = lambda account: account.residual
+    is_metric = display.system is UnitSystem.metric
+    convert, decimals = (float, 0) if is_metric else (acre_feet, 2)
+    rows = [
+        (name, *(rounded(convert(entry(account)), decimals) for entry in used.values()))
+        for name, account in accounts.items()
+    ]
+    return table((FILE_UNITS["volume"][display.system], *used), rows, width)
 
 
 def escape_lines(spills: Sequence[EscapeSpill], clock: RunClock, display: Display, width: int) -> Iterator[str]:
-    """One line an escape: since when, how often, how much."""
+    """One line an escape that spilled: since when, how often, how much; the others together."""
     for spill in spills:
-        yield paragraph(f"{spill.escape}, {spill.pool}: {_spill_words(spill, clock, display)}", width)
+        if spill.spills:
+            words = f"{spill.escape}, {spill.pool}: {_spill_words(spill, clock, display)}"
+            yield paragraph(words, width, hanging=INDENT * 2)
+    if dry := [spill.escape for spill in spills if not spill.spills]:
+        yield paragraph(f"Did not spill: {', '.join(dry)}.", width)
     if spills:
         yield paragraph("Reckoned with the level at the middle of each crest; the dip along it is not modelled.", width)
 
 
 def _spill_words(spill: EscapeSpill, clock: RunClock, display: Display) -> str:
-    if not spill.spills:
-        return "did not spill."
     hours = "; ".join(clock.span(spell.start, spell.end) for spell in spill.spills[:3])
     more = f"; {counted(len(spill.spills), 'time')} in all" if len(spill.spills) > 3 else ""
     at = clock.at(spill.greatest.time)
@@ -75,9 +87,6 @@ def _spill_words(spill: EscapeSpill, clock: RunClock, display: Display) -> str:
     )
 
 
-def _residual(account: Account) -> tuple[str, str]:
-    return f"{account.residual:.1g}", f"{acre_feet(account.residual):.1g}"
-
-
-def _rounded(value: float, decimals: int) -> str:
+def rounded(value: float, decimals: int) -> str:
+    """A number with its thousands apart."""
     return f"{round(value, decimals) + 0.0:,.{decimals}f}"  # + 0.0 turns -0.0 into 0.0

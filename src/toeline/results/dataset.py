@@ -22,7 +22,7 @@ from toeline.results.encoding import (
     static_values,
     surface_names_of,
 )
-from toeline.results.provenance import SOURCE_PREFIX
+from toeline.results.provenance import ATTRIBUTES, SOURCE_PREFIX
 from toeline.results.variables import GROWING_DIMENSIONS, VARIABLES, growing
 
 CHUNK_CACHE = 2**18
@@ -82,7 +82,8 @@ class DatasetSink:
 def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
     """Open a run file, finished or .partial, values loaded when needed; close it after use, or open it in a `with`.
 
-    Attribute `outcome` says how the run ended. UsageError for a file that is missing or no run of Toeline.
+    Attribute `outcome` says how the run ended. UsageError for a file that is missing, no run of Toeline, or of a
+    version that wrote less. Values that turn out to be damaged when loaded raise RuntimeError; see `damage_told`.
     """
     file = Path(path)
     if not file.is_file():
@@ -95,6 +96,12 @@ def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
     if not str(run.attrs.get("source", "")).startswith(SOURCE_PREFIX):
         run.close()
         raise UsageError(f"{file} is not the file of a Toeline run")
+    missing = _missing(run)
+    if missing:
+        run.close()
+        raise UsageError(
+            f"{file} is of another version, {run.attrs['source']}: it has no {missing[0]}; run its day again to read it"
+        )
     return run
 
 
@@ -107,6 +114,23 @@ def read_apart(run: xr.Dataset) -> Iterator[xr.Dataset]:
         return
     with open_run(source) as apart:
         yield apart
+
+
+def _missing(run: xr.Dataset) -> list[str]:
+    """What every file of this version has and the run has not; the state at the end is there once it has ended."""
+    written = [variable.name for variable in VARIABLES.values() if not variable.is_state]
+    return [name for name in written if name not in run.variables] + [key for key in ATTRIBUTES if key not in run.attrs]
+
+
+@contextmanager
+def damage_told(path: str | os.PathLike[str]) -> Iterator[None]:
+    """UsageError that names the file where what is read of it inside the with block is damaged."""
+    try:
+        yield
+    except RuntimeError as error:
+        if not str(error).startswith("NetCDF: "):  # netCDF4 raises it for what HDF5 reports, and so may others
+            raise
+        raise UsageError(f"{path} is damaged and cannot be read: {error}") from error
 
 
 def _hint(file: Path) -> str:

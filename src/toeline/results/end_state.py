@@ -8,7 +8,7 @@ import numpy as np
 import xarray as xr
 
 from toeline.errors import UsageError
-from toeline.results.dataset import open_run, utc
+from toeline.results.dataset import damage_told, open_run, utc
 from toeline.results.provenance import COMPLETE
 from toeline.results.variables import CLOCK, end_state
 
@@ -30,7 +30,7 @@ def read_end_state(
     its gates, bays that move apart and offtakes, each from the head down. UsageError if the run is unfinished, ended at
     another time, or was of another canal.
     """
-    with open_run(path) as run:
+    with open_run(path) as run, damage_told(path):
         _check_finished(run, path)
         _check_time(run, path, start)
         _check_canal(run, path, chainage, bed_level, labels)

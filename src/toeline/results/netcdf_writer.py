@@ -10,7 +10,7 @@ from pathlib import Path
 import netCDF4
 import numpy as np
 
-from toeline.errors import RunError
+from toeline.errors import RunError, UsageError
 from toeline.results.encoding import (
     Rows,
     cf_attributes,
@@ -68,8 +68,11 @@ class NetcdfSink:
             self._file = netCDF4.Dataset(self._run_file.working_path, "w")
             try:
                 self._define(static_values(static), attributes)
-            except BaseException:
-                self._file.close()
+            except BaseException as error:
+                with suppress(RuntimeError):
+                    self._file.close()
+                if isinstance(error, RuntimeError):  # netCDF4 raises it for what HDF5 reports, such as a full disk
+                    raise UsageError(f"{self._run_file.path} cannot be written: {self._failure(error)}") from error
                 raise
         self._waiting = {dimension: self._buffer(dimension) for dimension in GROWING_DIMENSIONS}
         self._written = dict.fromkeys(GROWING_DIMENSIONS, 0)
@@ -218,12 +221,15 @@ class NetcdfSink:
             self._is_closed = True
             with suppress(OSError, RuntimeError):
                 self._file.close()
-            free = self._run_file.free_space() / 1e6
+            failure = self._failure(error)
             self._run_file.abandon()
             raise RunError(
-                f"writing {self._run_file.path} failed ({error}; {free:.1f} MB of disk are free); "
+                f"writing {self._run_file.path} failed ({failure}); "
                 f"what was safe before is in {self._run_file.partial_path}"
             ) from error
+
+    def _failure(self, error: OSError | RuntimeError) -> str:
+        return f"{error}; {self._run_file.free_space() / 1e6:.1f} MB of disk are free"
 
 
 class RowBuffer:

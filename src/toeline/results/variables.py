@@ -141,9 +141,9 @@ _GATE_SERIES = (
              "from the headwater to the tailwater where drowned"),
     Variable("jump_power", _GATES, "W", "power lost in the hydraulic jump"),
     Variable("surge_height_bound_upstream", _GATES, "m", "greatest height of the surge sent up the pool",
-             "of an instantaneous change as large as the last move of the gate; 0 when settled"),
+             "of an instantaneous change as large as the last move of the gate; 0 once it has run there and back"),
     Variable("surge_height_bound_downstream", _GATES, "m", "greatest height of the surge sent down the pool",
-             "of an instantaneous change as large as the last move of the gate; 0 when settled"),
+             "of an instantaneous change as large as the last move of the gate; 0 once it has run there and back"),
 )
 
 _BAY_SERIES = (
@@ -327,8 +327,8 @@ _END_STATE = (
     _state("end_motion_remaining", ("state_leaf",), "s", "time for which the leaf still moves"),
     _state("end_surge_upstream", ("state_gate",), "m", "bound of the surge up the pool of the last moves"),
     _state("end_surge_downstream", ("state_gate",), "m", "bound of the surge down the pool of the last moves"),
-    _state("end_surge_upstream_remaining", ("state_gate",), "s", "time until the pool above has settled"),
-    _state("end_surge_downstream_remaining", ("state_gate",), "s", "time until the pool below has settled"),
+    _state("end_surge_upstream_remaining", ("state_gate",), "s", "time for which it still stands"),
+    _state("end_surge_downstream_remaining", ("state_gate",), "s", "time for which it still stands"),
     _state("end_settling_remaining", ("state_pool",), "s", "time until the pool has settled"),
     _state("end_roughness_factor", ("state_pool",), "1", "factor on Manning's n at the end of the run"),
     _state("end_move_age", ("state_move",), "s", "time since a move of the last hour began"),

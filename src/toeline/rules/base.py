@@ -175,6 +175,10 @@ class Rule(ABC):
     def learn(self, answer: Answer, ordered: float) -> None:  # noqa: B027
         """Called after `decide` gave an opening: what became of it, and the opening [m] that is ordered now."""
 
+    def is_head_reversed(self, now: Present) -> bool:
+        """Whether the water below the gate stands higher, so that opening it would let more come back."""
+        return now.tailwater_level(self.gate) > now.headwater_level(self.gate)
+
     @property
     def gate(self) -> str:
         """The gate that the rule moves."""

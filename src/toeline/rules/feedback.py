@@ -3,8 +3,6 @@
 import math
 from typing import NamedTuple
 
-from toeline.rules.base import Answer
-
 DETUNING = 4.0
 """Reset time over the sum of closed-loop time and delay (Skogestad 2003, for integrating processes; from memory)."""
 
@@ -69,9 +67,11 @@ class Feedback:
         self.memory["base"] += self.step
         return self.memory["base"] + gains.proportional * beyond if beyond != 0.0 or is_pressed else None
 
-    def learn(self, answer: Answer, ordered: float) -> None:
-        """Keep the base from winding up while something stands in the way."""
-        if answer is Answer.limited:
+    def learn(self, ordered: float, lacking: float) -> None:
+        """Keep the base from winding up while something stands in the way: it is not moved further towards what is
+        still `lacking`, only back.
+        """
+        if self.step * lacking > 0.0:
             self.memory["base"] -= self.step
         self.memory["ordered"] = ordered
 

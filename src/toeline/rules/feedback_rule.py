@@ -7,6 +7,9 @@ from toeline.rules.base import Answer, CanalFacts, Present, Rule
 from toeline.rules.feedback import Feedback, Gains
 from toeline.rules.feedforward import Feedforward
 
+LEAST_LACKING = 1e-3
+"""Discharge [m³/s] from which a gate is said not to pass what is wanted."""
+
 
 class FeedbackRule(Rule):
     """Sets an opening, or the discharge that the gate should pass, by proportional-integral feedback, and adds known
@@ -18,7 +21,7 @@ class FeedbackRule(Rule):
         super().__init__(given, canal)
         self.feedback = Feedback(self.memory, given.band or 0.0, given.every)
         self.ahead = given.feedforward and Feedforward(self.memory, self.gate, given.feedforward, canal)
-        self.is_saturated = False
+        self.wanted_opening = self.lacking = 0.0
 
     @abstractmethod
     def error(self, now: Present) -> float:
@@ -34,6 +37,8 @@ class FeedbackRule(Rule):
         """Whether the quantity set is the opening, not the discharge."""
 
     def decide(self, now: Present) -> float | None:
+        if self.sets_opening and self.is_head_reversed(now):
+            return None
         gains, error, ordered = self.gains(now), self.error(now), now.ordered_opening(self.gate)
         if self.feedback.is_new(ordered):
             self.feedback.start(self._quantity(now, ordered), error, gains)
@@ -43,10 +48,14 @@ class FeedbackRule(Rule):
             self.memory["ahead"] = self.memory.get("ahead", 0.0) + self._in_quantity(now, ordered, change)
         ahead = self.memory.get("ahead", 0.0)
         wanted = self.feedback.wanted(error, gains, is_pressed=ahead != 0.0)
-        return None if wanted is None else self._opening(now, wanted + ahead)
+        if wanted is None:
+            return None
+        self.wanted_opening = self._opening(now, wanted + ahead)
+        return self.wanted_opening
 
     def learn(self, answer: Answer, ordered: float) -> None:
-        self.feedback.learn(Answer.limited if self.is_saturated else answer, ordered)
+        held_back = self.wanted_opening - ordered if answer is Answer.limited else 0.0
+        self.feedback.learn(ordered, self.lacking or held_back)
         if answer is Answer.moved:
             self.feedback.shift(self.memory.pop("ahead", 0.0))
 
@@ -60,9 +69,10 @@ class FeedbackRule(Rule):
         return now.opening_for(self.gate, now.discharge_at(self.gate, ordered) + change) - ordered
 
     def _opening(self, now: Present, quantity: float) -> float:
-        """The opening [m] of a quantity; one that cannot be had counts as limited, so that nothing winds up."""
+        """The opening [m] of a quantity, and what is lacking where no opening passes so much or so little."""
         if self.sets_opening:
             return quantity
         opening = now.opening_for(self.gate, quantity)
-        self.is_saturated = quantity < 0.0 or opening >= self.canal.gates[self.gate].max_opening
+        gap = quantity - now.discharge_at(self.gate, opening)
+        self.lacking = gap if abs(gap) > LEAST_LACKING else 0.0
         return opening

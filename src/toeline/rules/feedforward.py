@@ -36,11 +36,13 @@ class Feedforward:
         self.leads = leads_to_offtakes(gate, chosen, canal)
 
     def change(self, now: Present) -> float:
-        """Change of the sum [m³/s] since the decision before; zero at the first."""
+        """Change of the sum [m³/s] since the decision before; at the first from the demands of that time, so that what
+        should be on its way already goes out at once.
+        """
         for offtake, seconds in self.leads.items():
             self.memory.setdefault(_lead(offtake), seconds)
         known = sum(now.demand(name, now.time_ms + round(self.memory[_lead(name)] * 1000.0)) for name in self.leads)
-        before = self.memory.get("known demand", known)
+        before = self.memory.get("known demand", sum(now.demand(name, now.time_ms) for name in self.leads))
         self.memory["known demand"] = known
         return known - before
 

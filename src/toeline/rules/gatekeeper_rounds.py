@@ -11,7 +11,9 @@ ABOVE_GATE, BELOW_GATE = "above the gate", "below the gate"
 
 
 class GatekeeperRounds(Rule):
-    """At every visit, moves the gate by one step if the level is outside its band, and leaves it alone if not."""
+    """At every visit, moves the gate by one step if the level is outside its band, and leaves it alone if not, or while
+    the water below it stands higher.
+    """
 
     kind = "gatekeeper rounds"
     settings: ClassVar[Mapping[str, Setting]] = {
@@ -47,7 +49,7 @@ class GatekeeperRounds(Rule):
         is_above = self.given.where == ABOVE_GATE
         level = now.headwater_level(self.gate) if is_above else now.tailwater_level(self.gate)
         error = level - self._target(now) if is_above else self._target(now) - level
-        if abs(error) <= self.given.band:
+        if abs(error) <= self.given.band or self.is_head_reversed(now):
             return None
         step = self.given.step if error > 0.0 else -self.given.step
         return now.ordered_opening(self.gate) + step

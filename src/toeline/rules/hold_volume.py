@@ -34,8 +34,8 @@ class HoldVolume(FeedbackRule):
         "every": EVERY,
         "hours": HOURS,
         "within": duration(
-            "Time in which the discharge set would make a volume error good.", least=600.0, most=864_000.0,
-            default=7200.0,
+            "Time in which the discharge set would make a volume error good; not less than every.",
+            least=600.0, most=864_000.0, default=7200.0,
         ),
         "reset": duration(
             "Reset time: a lasting error is made good once more in it. Left out: four times within.", least=600.0,
@@ -52,6 +52,8 @@ class HoldVolume(FeedbackRule):
     def misfits(cls, given: SimpleNamespace, canal: CanalFacts) -> Iterator[tuple[str, str]]:
         if cls.gate_of(given, canal) is None:
             yield "by", f'"{given.pool}" has no {given.by}'
+        if given.within < given.every:
+            yield "within", 'shorter than "every": an error would be made good more than once between two decisions'
 
     def error(self, now: Present) -> float:
         volume = now.volume(self.given.pool)

@@ -102,7 +102,7 @@ class LevelRule(FeedbackRule):
             return gains
         raise RunError(
             f'rule "{self.kind}" of {self.gate}: no gain can be found from the state at the start, as where a pool is '
-            "dry or its water stands; give gain and reset in the day file"
+            "dry, its water stands or the gate hangs clear of it; give gain and reset in the day file"
         )
 
 

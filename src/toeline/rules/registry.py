@@ -4,10 +4,10 @@ import hashlib
 import importlib
 import importlib.util
 import inspect
-import math
 import sys
 import traceback
 from collections.abc import Callable, Iterable
+from contextlib import redirect_stdout
 from dataclasses import dataclass
 from datetime import datetime
 from importlib.metadata import EntryPoint, entry_points
@@ -17,14 +17,14 @@ from typing import TypeVar
 
 import numpy as np
 
-from toeline.errors import RunError, ToelineError
+from toeline.errors import RunError
+from toeline.rules.answers import are_settings, finite, is_memory, is_misfits, whole_times
 from toeline.rules.base import Answer, CanalFacts, Present, Rule
 from toeline.rules.gatekeeper_rounds import GatekeeperRounds
 from toeline.rules.hold_discharge import HoldDischarge
 from toeline.rules.hold_downstream_level import HoldDownstreamLevel
 from toeline.rules.hold_upstream_level import HoldUpstreamLevel
 from toeline.rules.hold_volume import HoldVolume
-from toeline.rules.setting import Setting
 
 Result = TypeVar("Result")
 
@@ -33,6 +33,9 @@ BUILT_IN: dict[str, type[Rule]] = {
 }
 ENTRY_POINTS = "toeline.rules"
 """Group of entry points in which an installed package announces rules, each under its kind."""
+
+LONGEST_SHOWN = 60
+"""Characters of an answer that a message repeats."""
 
 
 class UnknownRuleError(ValueError):
@@ -44,7 +47,8 @@ class FoundRule:
     """A kind of rule as a day file names it; `source` is the text of a file of somebody else's code that was run to
     make it, `file` where that is.
 
-    What goes wrong in such code becomes an UnknownRuleError, or a RunError once the run has begun, with the place.
+    What goes wrong in such code becomes an UnknownRuleError, or a RunError once the run has begun, with the place; so
+    does an answer that is none. What it prints goes to the error stream: the output of a command stays what it is.
     """
 
     kind: str
@@ -54,39 +58,63 @@ class FoundRule:
 
     def misfits(self, given: SimpleNamespace, canal: CanalFacts) -> list[tuple[str, str]]:
         """What the rule objects to; see `Rule.misfits`."""
-        return self._run(UnknownRuleError, lambda: list(self.rule.misfits(given, canal)))
+        found = self._run(UnknownRuleError, lambda: list(self.rule.misfits(given, canal)))
+        if not is_misfits(found):
+            raise UnknownRuleError(self._nonsense("objects with", found, "pairs of a key and a sentence"))
+        return found
 
     def gate_of(self, given: SimpleNamespace, canal: CanalFacts) -> str | None:
-        """The gate that the rule moves."""
-        return self._run(UnknownRuleError, lambda: self.rule.gate_of(given, canal))
+        """The gate that the rule moves, None where the canal has none such."""
+        gate = self._run(UnknownRuleError, lambda: self.rule.gate_of(given, canal))
+        return gate if gate in list(canal.gates) else None
 
     def decision_times(self, given: SimpleNamespace, start: datetime, length_ms: int) -> np.ndarray:
-        """When the rule decides; see `Rule.decision_times`."""
-        return self._run(RunError, lambda: self.rule.decision_times(given, start, length_ms))
+        """When the rule decides [ms from the start], in the period and rising; see `Rule.decision_times`."""
+        found = self._run(RunError, lambda: self.rule.decision_times(given, start, length_ms))
+        times = whole_times(found, length_ms)
+        if times is None:
+            raise RunError(self._nonsense("decides at", found, "an array of times in ms from the start"))
+        return times
 
     def make(self, given: SimpleNamespace, canal: CanalFacts) -> Rule:
-        """The rule of a run."""
-        return self._run(RunError, lambda: self.rule(given, canal))
+        """The rule of a run; it may do to its settings what it likes, those of the next run are as given."""
+        rule = self._run(RunError, lambda: self.rule(SimpleNamespace(**vars(given)), canal))
+        gate = self._run(RunError, lambda: rule.gate)
+        if gate not in list(canal.gates):
+            raise RunError(self._nonsense("moves", gate, "a gate of the canal"))
+        self._check_memory(rule)
+        return rule
 
     def decide(self, rule: Rule, now: Present) -> float | None:
         """The opening [m] that the rule wants now."""
-        opening = self._run(RunError, lambda: rule.decide(now))
-        if opening is not None and not (isinstance(opening, (int, float)) and math.isfinite(opening)):
-            raise RunError(f'rule "{self.kind}" wants an opening of {opening!r}; allowed: a number in m, or None')
+        wanted = self._run(RunError, lambda: rule.decide(now))
+        self._check_memory(rule)
+        opening = finite(wanted)
+        if wanted is not None and opening is None:
+            raise RunError(self._nonsense("wants an opening of", wanted, "a number in m, or None"))
         return opening
 
     def learn(self, rule: Rule, answer: Answer, ordered: float) -> None:
         """Tell the rule what became of its decision."""
         self._run(RunError, lambda: rule.learn(answer, ordered))
+        self._check_memory(rule)
+
+    def _check_memory(self, rule: Rule) -> None:
+        if self.file and not is_memory(memory := getattr(rule, "memory", None)):
+            raise RunError(self._nonsense("has the memory", memory, "numbers by name, from which the next day goes on"))
+
+    def _nonsense(self, what: str, found: object, allowed: str) -> str:
+        return f'rule "{self.kind}" {what} {_shown(found)}; allowed: {allowed}'
 
     def _run(self, kind_of_error: type[Exception], work: Callable[[], Result]) -> Result:
         if not self.file:
             return work()
         try:
-            return work()
-        except ToelineError:
+            with redirect_stdout(sys.stderr):
+                return work()
+        except RunError:
             raise
-        except Exception as error:
+        except (Exception, SystemExit) as error:
             raise kind_of_error(f'rule "{self.kind}" failed in {_place(error, self.file)}: {_words(error)}') from error
 
 
@@ -119,8 +147,9 @@ def _announced() -> dict[str, EntryPoint]:
 
 def _imported(module: str) -> ModuleType:
     try:
-        return importlib.import_module(module)
-    except Exception as error:
+        with redirect_stdout(sys.stderr):
+            return importlib.import_module(module)
+    except (Exception, SystemExit) as error:
         raise UnknownRuleError(f"{module} cannot be loaded: {_words(error)}") from error
 
 
@@ -129,6 +158,8 @@ def _module_of_file(path: Path) -> ModuleType:
         source = path.read_bytes()
     except OSError as error:
         raise UnknownRuleError(f"{path} cannot be read: {(error.strerror or str(error)).lower()}") from error
+    except ValueError as error:  # a character that no file name may have
+        raise UnknownRuleError(f"{path} cannot be read: {error}") from error
     name = f"toeline_rules_of_{path.stem}_{hashlib.sha256(str(path).encode() + source).hexdigest()[:12]}"
     if name in sys.modules:
         return sys.modules[name]
@@ -138,8 +169,9 @@ def _module_of_file(path: Path) -> ModuleType:
     module = importlib.util.module_from_spec(spec)
     sys.modules[name] = module
     try:
-        exec(compile(source, str(path), "exec"), module.__dict__)
-    except Exception as error:
+        with redirect_stdout(sys.stderr):
+            exec(compile(source, str(path), "exec"), module.__dict__)
+    except (Exception, SystemExit) as error:
         del sys.modules[name]
         raise UnknownRuleError(f"{path} cannot be loaded: {_words(error)}") from error
     return module
@@ -147,23 +179,34 @@ def _module_of_file(path: Path) -> ModuleType:
 
 def _of_module(kind: str, module: ModuleType, name: str, path: str = "") -> FoundRule:
     rule = getattr(module, name, None)
-    file = path or str(module.__file__ or module.__name__)
+    written = getattr(module, "__file__", None)
+    file = path or str(written or module.__name__)
     if not isinstance(rule, type) or not issubclass(rule, Rule):
         raise UnknownRuleError(f"{file} has no class {name} that derives from toeline.rules.Rule")
     if inspect.isabstract(rule):
         raise UnknownRuleError(f"{name} has no {' and no '.join(sorted(rule.__abstractmethods__))} in {file}")
-    if not all(isinstance(setting, Setting) for setting in rule.settings.values()):
-        raise UnknownRuleError(f"{name} in {file} has settings that are none; each is a toeline.rules.Setting")
-    source = Path(file).read_text(encoding="utf-8", errors="replace") if module.__file__ else ""
+    if not are_settings(rule.settings):
+        allowed = "a toeline.rules.Setting by key, any but kind"
+        raise UnknownRuleError(f"{name} in {file} has settings that are none; allowed: {allowed}")
+    source = Path(file).read_text(encoding="utf-8", errors="replace") if written else ""
     return FoundRule(kind, rule, file, source)
 
 
-def _place(error: Exception, file: str) -> str:
+def _place(error: BaseException, file: str) -> str:
     """The last line of the file on the way to an error, else the file."""
     lines = [frame.lineno for frame in traceback.extract_tb(error.__traceback__) if frame.filename == file]
     return f"{file}, line {lines[-1]}" if lines else file
 
 
-def _words(error: Exception) -> str:
-    line = f", line {error.lineno}" if isinstance(error, SyntaxError) else ""
-    return f"{type(error).__name__}: {error.msg if isinstance(error, SyntaxError) else error}{line}"
+def _words(error: BaseException) -> str:
+    """What went wrong, in one line."""
+    if isinstance(error, SyntaxError):
+        line = "" if error.lineno is None else f", line {error.lineno}"
+        return f"{type(error).__name__}: {error.msg}{line}"
+    return f"{type(error).__name__}: {' '.join(str(error).split())}".removesuffix(": ")
+
+
+def _shown(found: object) -> str:
+    """What code gave back, as it would be written in it, in one line that is not too long."""
+    text = " ".join(repr(found).split())
+    return text if len(text) <= LONGEST_SHOWN else f"{text[:LONGEST_SHOWN]}..."

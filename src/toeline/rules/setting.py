@@ -3,7 +3,7 @@
 import math
 from dataclasses import dataclass
 from enum import Enum
-from typing import Any, Literal
+from typing import Any, Literal, get_args
 
 from toeline.units import Dimension
 
@@ -34,6 +34,24 @@ class Setting:
     most: float = math.inf
     words: tuple[str, ...] = ()
     default: Any = Absent.required
+
+    def __post_init__(self) -> None:
+        """ValueError where nothing could be written for the key, or where its default is no such value."""
+        if self.takes not in get_args(Takes):
+            raise ValueError(f"found a setting that takes {self.takes!r}; allowed: {', '.join(get_args(Takes))}")
+        if self.dimension is not None and self.dimension not in get_args(Dimension):
+            raise ValueError(f"found the dimension {self.dimension!r}; allowed: {', '.join(get_args(Dimension))}")
+        if self.takes == "word" and not (self.words and all(isinstance(word, str) for word in self.words)):
+            raise ValueError(f"found the words {self.words!r}; allowed: one or more texts")
+        if math.isnan(self.above) or not self.least <= self.most:
+            raise ValueError(f"found bounds from {self.least} to {self.most}; allowed: two that leave room")
+        if self.takes in ("number", "duration") and self.default is not Absent.required and not self._fits_default:
+            raise ValueError(f"found the default {self.default!r}; allowed: a finite number in SI, or None")
+
+    @property
+    def _fits_default(self) -> bool:
+        is_number = isinstance(self.default, (int, float)) and not isinstance(self.default, bool)
+        return self.default is None or (is_number and math.isfinite(self.default))
 
     @property
     def is_required(self) -> bool:

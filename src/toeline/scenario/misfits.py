@@ -13,6 +13,9 @@ from toeline.units import UnitSystem, quantity_text
 LONGEST_SHOWN = 60
 """Characters of a value that a message repeats."""
 
+MOST_LISTED = 100
+"""Names that a message lists."""
+
 
 class Misfit(NamedTuple):
     """One thing wrong, at a key path counted from the value under test."""
@@ -73,6 +76,8 @@ def nearest(word: str, known: Iterable[str]) -> str:
         return f'did you mean "{by_lower_case[close[0]]}"?'
     if not by_lower_case:
         return "there is none here"
+    if len(by_lower_case) > MOST_LISTED:
+        return f"none of {len(by_lower_case)} known ones is like it"
     return "known: " + in_quotes(by_lower_case.values())
 
 

@@ -31,7 +31,7 @@ def picture(runs, metric):
 
 @pytest.mark.parametrize(
     ("column", "early", "late"),
-    [(HAZARD_FLOOR.word, [0.0, 1.0], [0.0, 0.0]), (HAZARD_PEOPLE.word, [4.0, 3.0], [4.0, 4.0])],
+    [(HAZARD_FLOOR.word, [0.0, 11.5 / 12], [0.0, 0.0]), (HAZARD_PEOPLE.word, [4.0, 3.0], [4.0, 4.0])],
 )
 def test_the_hours_of_both_hazards_stand_gate_by_gate(column, early, late, picture):
     axes = panel(picture.figure, column)
@@ -45,7 +45,7 @@ def test_plans_do_not_hide_one_another(picture):
 
 
 def test_a_short_hazard_is_written_out(picture):
-    assert "1 h" in texts(picture.figure)
+    assert "57 min" in texts(picture.figure)
 
 
 def test_through_the_day_it_follows_the_gate_with_the_least_margin(picture):
@@ -61,7 +61,7 @@ def test_levels_range_from_lowest_to_highest_from_the_target(picture):
 
 def test_tables_have_a_row_for_every_plan_and_place(picture):
     gates = picture.tables[""].csv_text().splitlines()
-    assert gates[2] == "plan early,Last check,1.0000,3.0000,-0.1000,2031-05-04T07:10:00+02:00,0.1000"
+    assert gates[2] == "plan early,Last check,0.9583,3.0000,-0.1000,2031-05-04T07:10:00+02:00,0.1000"
     assert len(gates) == 1 + 4
     assert picture.tables["pools"].csv_text().splitlines()[1] == "plan early,Upper pool,-0.2000,0.3000"
 

@@ -29,7 +29,7 @@ def test_asked_and_given_are_lines_and_the_lack_is_filled(short_of_water, metric
 
 def test_volume_and_worst_lack_are_told(short_of_water, metric):
     (picture,) = deliveries.pictures(short_of_water, metric)
-    assert "4000 m3 given; at worst 0.300 m3/s short" in texts(picture.figure)
+    assert "4,000 m3 given; at worst 0.300 m3/s short" in texts(picture.figure)
 
 
 def test_an_offtake_that_is_asked_for_nothing_says_so(invented_run, metric):

@@ -11,7 +11,7 @@ from toeline.findings.moves import SCHEDULE, GateMoves, gate_moves
 from toeline.report.bays import UNEVEN
 from toeline.report.clock import duration_text
 from toeline.report.page.table import Table
-from toeline.report.run_clock import RunClock, extreme_text
+from toeline.report.run_clock import RunClock, extreme_text, timed_text
 from toeline.units import Display
 
 
@@ -22,7 +22,7 @@ def margin_table(run: xr.Dataset, clock: RunClock, display: Display) -> Table:
             jumps.gate,
             extreme_text(jumps.protection_margin, clock, display),
             extreme_text(jumps.tailwater_margin, clock, display),
-            extreme_text(jumps.jump_end_distance, clock, display),
+            timed_text(display.distance(jumps.jump_end_distance.value), jumps.jump_end_distance, clock),
         )
         for jumps in gate_jumps(run)
     )

@@ -10,7 +10,7 @@ from toeline.findings.incidents import Incident
 from toeline.findings.jumps import GateJumps, gate_jumps
 from toeline.findings.series import is_any, names
 from toeline.report.clock import duration_text
-from toeline.report.incidents import incident_stories
+from toeline.report.incidents import gravity, incident_stories, worst_words
 from toeline.report.layout import counted
 from toeline.report.page.moments import Moments
 from toeline.report.run_clock import RunClock
@@ -69,15 +69,15 @@ def wrongs(run: xr.Dataset, found: Sequence[Incident], moments: Moments, display
 
 
 def headline(found: Sequence[Wrong]) -> str:
-    """The sum of the verdict, in one sentence."""
+    """The sum of the verdict, in a sentence or two."""
     if not found:
         return "No incident was found."
-    first = found[0]
-    told = f"{first.where}: {first.what}{f', {first.times}' if first.times else ''}."
+    gravest = min(found, key=lambda wrong: gravity(wrong.what))
+    told = f"{gravest.where}: {gravest.what}{f', {gravest.times}' if gravest.times else ''}."
     if len(found) == 1:
         return told
     places = len({wrong.where for wrong in found})
-    return f"{counted(len(found), 'thing')} go wrong at {counted(places, 'place')}. First {told}"
+    return f"{counted(len(found), 'thing')} go wrong at {counted(places, 'place')}. Gravest of all, {told}"
 
 
 def floor_hazard(run: xr.Dataset, display: Display) -> Hazard:
@@ -173,7 +173,7 @@ def _nearest(gates: Sequence[GateJumps], display: Display) -> str:
 
 
 def _worst(incident: Incident, clock: RunClock, display: Display) -> str:
-    value = value_text(incident.worst, incident.unit, display)
+    value = worst_words(incident, display)
     return value if value == "-" else f"{value} {clock.window(incident.worst_time, incident.window)}"
 
 

@@ -9,7 +9,7 @@ from toeline.findings.ledger import Account, Ledger, acre_feet, ledger
 from toeline.findings.series import names
 from toeline.report.page.table import Table
 from toeline.report.run_clock import RunClock, extreme_text
-from toeline.report.water import ENTRIES
+from toeline.report.water import ENTRIES, canal_entries, ledger_note, rounded
 from toeline.units import Display
 
 
@@ -20,24 +20,9 @@ def ledger_tables(run: xr.Dataset) -> list[Table]:
 
 
 def _canal_table(water: Ledger) -> Table:
-    canal = water.canal
-    entries = {
-        "taken in at the head": canal.inflow,
-        **{f"delivered, {offtake}": -volume for offtake, volume in canal.deliveries.items()},
-        **{f"spilled, {escape}": -volume for escape, volume in canal.escapes.items()},
-        **{f"lost in {pool}": -account.losses for pool, account in water.pools.items() if account.losses},
-        "let out at the tail": -canal.outflow,
-        **{f"kept in {pool}": -account.storage_change for pool, account in water.pools.items()},
-    }
-    rows = [(name, _rounded(volume, 0), _rounded(acre_feet(volume), 2)) for name, volume in entries.items()]
-    rows.append(("residual", f"{canal.residual:.1g}", f"{acre_feet(canal.residual):.1g}"))
-    return Table(
-        "Ledger of the canal",
-        ("", "m³", "acre-ft"),
-        tuple(rows),
-        note="The residual is what the other lines leave over: whether the computing lost water. Lost: seepage and "
-        "evaporation less rain.",
-    )
+    entries = canal_entries(water)
+    rows = [(name, rounded(volume, 0), rounded(acre_feet(volume), 2)) for name, volume in entries.items()]
+    return Table("Ledger of the canal", ("", "m³", "acre-ft"), tuple(rows), note=ledger_note(water))
 
 
 def _pool_table(water: Ledger) -> Table:
@@ -52,9 +37,8 @@ def _pool_table(water: Ledger) -> Table:
 
 
 def _account_cells(account: Account, used: list[str]) -> list[str]:
-    volumes = [ENTRIES[name](account) for name in used]
-    cells = [cell for volume in volumes for cell in (_rounded(volume, 0), _rounded(acre_feet(volume), 2))]
-    return [*cells, f"{account.residual:.1g}", f"{acre_feet(account.residual):.1g}"]
+    volumes = [*(ENTRIES[name](account) for name in used), account.residual]
+    return [cell for volume in volumes for cell in (rounded(volume, 0), rounded(acre_feet(volume), 2))]
 
 
 def escape_table(run: xr.Dataset, clock: RunClock, display: Display) -> Table:
@@ -101,7 +85,3 @@ def roughness_table(run: xr.Dataset) -> Table:
     )
     has_any = bool(np.any(factors != 1.0))
     return Table("Factors on Manning's n", ("pool", "at the start", "at the end", "greatest"), rows if has_any else ())
-
-
-def _rounded(value: float, decimals: int) -> str:
-    return f"{round(value, decimals) + 0.0:,.{decimals}f}"  # + 0.0 turns -0.0 into 0.0

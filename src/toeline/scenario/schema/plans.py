@@ -19,6 +19,9 @@ from toeline.scenario.schema.value_kinds import Moment, Quantity, ValueKind, Who
 from toeline.units import UnitSystem
 
 _ACTIONS = ("opening", "by", "discharge")
+MOST_DIGITS = 9
+"""Digits of a cell that is read as a whole number; a longer one is told as it stands."""
+
 _COLUMNS = Columns(("at", "gate"), ("bay", *_ACTIONS))
 
 
@@ -116,7 +119,7 @@ class StuckEntry(Table):
 
 def _cell(key: str, cell: str) -> Any:
     """The value in a cell of a row: a number where its column takes one."""
-    if key == "bay" and cell.isdecimal():
+    if key == "bay" and cell.isdecimal() and len(cell) <= MOST_DIGITS:
         return int(cell)
     return number_or_text(cell) if key in _ACTIONS else cell
 

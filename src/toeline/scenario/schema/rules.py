@@ -23,6 +23,7 @@ from toeline.units import UnitSystem, quantity_text
 
 KINDS_OF_LEAD = ("wave", "volume")
 _CLOCK_TIME = re.compile(r"(\d{1,2}):(\d{2})(?::(\d{2}))?")
+_FIELD = "setting_"
 _LONGEST_LEAD = Duration("0 s", "10 d")
 
 
@@ -137,14 +138,14 @@ def _annotation(setting: Setting) -> Any:
 
 @cache
 def table_of(found: FoundRule) -> type[Table]:
-    """The table of a kind of rule: its settings as fields."""
+    """The table of a kind of rule: its settings as fields, under names that no table has of its own."""
     fields: dict[str, Any] = {"kind": (Literal[found.kind], Field(description="The rule."))}
     for key, setting in found.rule.settings.items():
         default = ... if setting.is_required else setting.default
         annotation = _annotation(setting)
         if default is None:
             annotation = annotation | None
-        fields[key] = (annotation, Field(default, description=setting.description))
+        fields[_FIELD + key] = (annotation, Field(default, alias=key, description=setting.description))
     summary = " ".join((found.rule.__doc__ or "").split())
     table: type[Table] = create_model(found.rule.__name__, __base__=Table, __doc__=summary, **fields)
     return table
@@ -202,4 +203,5 @@ def _rule(item: Any, info: ValidationInfo) -> RuleChoice:
         read = table.model_validate(item, context=info.context)
     except ValidationError as error:
         raise MisfitsError(misfits_of(error, table)) from None
-    return RuleChoice(found_rule, SimpleNamespace(**{key: getattr(read, key) for key in found_rule.rule.settings}))
+    given = {key: getattr(read, _FIELD + key) for key in found_rule.rule.settings}
+    return RuleChoice(found_rule, SimpleNamespace(**given))
