@@ -12,6 +12,7 @@ import numpy as np
 import xarray as xr
 
 import toeline
+from toeline.engine.checkpoint import checkpoint_of, go_on_from
 from toeline.engine.run import Run
 from toeline.engine.settling import round_trip
 from toeline.engine.state import new_state
@@ -33,6 +34,8 @@ from toeline.results.provenance import (
     STUCK,
     run_attributes,
 )
+from toeline.results.thinning import Thinning
+from toeline.results.unfinished import read_unfinished
 from toeline.results.variables import GAUGE_SIDES
 from toeline.scenario import RuleChoice, Scenario
 from toeline.scenario.limits import limits_of
@@ -44,27 +47,59 @@ def simulate(
     output: str | os.PathLike[str] | None = None,
     *,
     overwrite: bool = False,
+    resume: bool = False,
     progress: Callable[[float], None] | None = None,
 ) -> xr.Dataset:
     """Step a day and return the run as a dataset; with `output` it is written there while it goes on.
 
-    `progress` is called with the fraction done. Raises ScenarioError where the day cannot start as asked, UsageError
-    where `output` exists and may not be overwritten, RunError where no step can be solved or a rule fails; what was
-    done until then, as after a KeyboardInterrupt, stays in `output`.partial.
+    `progress` is called with the fraction done. With `resume` the run goes on from the last checkpoint of an unfinished
+    one, to the same values as if it had not been stopped, and begins anew where there is none. Raises ScenarioError
+    where the day cannot start as asked, UsageError where `output` exists and may not be overwritten, or what is to go
+    on was begun with other inputs, RunError where no step can be solved or a rule fails; what was done until then, as
+    after a KeyboardInterrupt, stays in `output`.partial.
     """
     network, timetable, start = ready(scenario)
     level, discharge = levels_and_discharges(start)
-    description = static_values(network, level, discharge), attributes(scenario), scenario.day.period.start
-    sink = DatasetSink(*description) if output is None else NetcdfSink(output, *description, overwrite=overwrite)
+    static, about = static_values(network, level, discharge), attributes(scenario)
+    unfinished = read_unfinished(output, about) if resume and output is not None else None
+    if unfinished is not None:
+        about["history"] = f"{unfinished.history}\n{about['history']} resumed"
+    description = static, about, scenario.day.period.start
+    sink = (
+        DatasetSink(*description)
+        if output is None
+        else NetcdfSink(output, *description, overwrite=overwrite, unfinished=unfinished)
+    )
+    thinning = Thinning(sink, scenario.day.output.every_ms, scenario.day.output.events_within_ms)
     run = None
     try:
-        run = Run(network, timetable, sink, start)
-        run.go(progress)
+        run = Run(network, timetable, thinning if scenario.day.output.is_thinned else sink, start)
+        if unfinished is not None and unfinished.checkpoint is not None:
+            thinning.go_on_from(unfinished.checkpoint)
+            go_on_from(run, unfinished.checkpoint)
+        run.go(_at_stops(run, thinning, sink, progress))
     except BaseException as reason:
+        thinning.finish()
         sink.close(_stopped(scenario, run.time if run else 0, reason), {})
         raise
+    thinning.finish()
     sink.close(COMPLETE, run.end_state())
     return sink.dataset if isinstance(sink, DatasetSink) else open_run(sink.written_path)
+
+
+def _at_stops(
+    run: Run, thinning: Thinning, sink: DatasetSink | NetcdfSink, progress: Callable[[float], None] | None
+) -> Callable[[float], None]:
+    """What is done at every stop of a run: now and then all that was done so far is made safe."""
+
+    def at_stop(fraction: float) -> None:
+        if isinstance(sink, NetcdfSink) and sink.is_copy_due:
+            run.flush()
+            sink.save_copy(checkpoint_of(run) | thinning.checkpoint())
+        if progress is not None:
+            progress(fraction)
+
+    return at_stop
 
 
 def ready(scenario: Scenario) -> tuple[Network, Timetable, Start | dict[str, np.ndarray]]:

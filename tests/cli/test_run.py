@@ -15,6 +15,7 @@ from toeline import open_run
 from toeline.errors import RunError
 from toeline.findings.incidents import incidents
 from toeline.findings.limits import limits_of_run
+from toeline.results.netcdf_writer import NetcdfSink
 
 
 @pytest.fixture
@@ -118,7 +119,7 @@ def test_a_limit_that_is_passed_is_an_incident_and_the_file_carries_it(one_plan,
 def failing(error: BaseException, partial: str | None = None):
     """A simulation that fails, after it has written something if told so."""
 
-    def simulate(scenario, output, *, overwrite, progress):
+    def simulate(scenario, output, *, overwrite, resume, progress):
         if partial:
             Path(partial).touch()
         raise error
@@ -154,6 +155,54 @@ def test_ctrl_c_before_anything_is_written_says_so(one_plan, call, monkeypatch):
     assert call("run", "day.toml").stderr.endswith("Stopped by Ctrl-C. Nothing was written.\n")
 
 
+def stopped_after_a_checkpoint():
+    """The simulation, as if Ctrl-C came just after the first checkpoint."""
+    simulate = toeline.simulate
+
+    def simulate_until(*given, progress, **options):
+        def at_stop(fraction: float) -> None:
+            raise KeyboardInterrupt
+
+        return simulate(*given, progress=at_stop, **options)
+
+    return simulate_until
+
+
+def test_a_stopped_run_is_gone_on_with_when_told(one_plan, folder, call, monkeypatch):
+    with monkeypatch.context() as stopped:
+        stopped.setattr(toeline, "simulate", stopped_after_a_checkpoint())
+        stopped.setattr(NetcdfSink, "is_copy_due", True)
+        result = call("run", "day.toml")
+    assert result.stderr.splitlines()[-1].endswith("toeline describe day.nc.partial; go on with it with: --resume")
+    assert "go on with it with --resume" in call("run", "day.toml").stderr
+    resumed = call("run", "day.toml", "--resume")
+    assert (resumed.exit_code, files(folder)) == (0, {"day.nc"})
+    assert resumed.stdout == call("run", "day.toml", "--overwrite").stdout
+
+
+def test_plans_that_are_complete_are_shown_and_those_not_yet_begun_begin(folder, call):
+    call("run", "day.toml", "--plan", "raise")
+    before = (folder / "day.raise.nc").read_bytes()
+    result = call("run", "day.toml", "--resume")
+    assert (result.exit_code, files(folder)) == (0, {"day.hold.nc", "day.raise.nc"})
+    assert "day.raise.nc is complete." in result.stderr
+    assert result.stdout.index("plan hold;") < result.stdout.index("plan raise;")
+    assert (folder / "day.raise.nc").read_bytes() == before
+
+
+def test_a_complete_run_of_other_inputs_is_not_taken_for_the_one_to_go_on_with(one_plan, call):
+    call("run", "day.toml", "--set", 'period.length="30 min"')
+    result = call("run", "day.toml", "--resume")
+    assert (result.exit_code, result.stdout) == (2, "")
+    assert "day.nc was made from other inputs, and no run can go on from it with these" in result.stderr
+
+
+def test_going_on_and_beginning_anew_are_not_asked_for_together(one_plan, call):
+    result = call("run", "day.toml", "--resume", "--overwrite")
+    assert (result.exit_code, result.stdout) == (2, "")
+    assert "give one of them" in result.stderr
+
+
 def wait_for_rows(partial: Path, run: subprocess.Popen[str]) -> None:
     """Wait until the file has grown over what it is without rows, or the run has ended."""
     sizes: list[int] = []
@@ -175,7 +224,7 @@ def test_ctrl_c_leaves_a_file_that_can_be_described(one_plan, folder):
         [sys.executable, "-m", "toeline", "describe", "day.nc.partial"], capture_output=True, text=True, check=True
     )
     assert "run stopped early" in page.stdout
-    assert files(folder) == {"day.nc.partial"}
+    assert files(folder) == {"day.nc.partial", "day.nc.checkpoint"}
 
 
 def on_a_terminal(*arguments: str, **environment: str) -> str:

@@ -6,7 +6,6 @@ The number of time steps that are safe is printed after every block. BYTES limit
 would; the error it leads to is printed last.
 """
 
-import math
 import pickle
 import resource
 import sys
@@ -19,7 +18,6 @@ MINUTE = 60_000
 
 
 def main(pickle_path: str, path: str, limit: str = "") -> None:
-    netcdf_writer.COPY_EVERY, netcdf_writer.COPY_SHARE = 0.0, math.inf  # a copy after every block
     static, attributes, start, blocks = pickle.loads(Path(pickle_path).read_bytes())
     sink = netcdf_writer.NetcdfSink(path, static, attributes, start)
     if limit:
@@ -36,6 +34,7 @@ def write_on(sink: netcdf_writer.NetcdfSink, blocks: list) -> None:
     while True:
         for block in blocks:
             sink.write(block | {clock: block[clock] + shift * MINUTE for clock in ("time", "profile_time")})
+            sink.save_copy({})
             steps += len(block["time"])
             print(steps, flush=True)
         shift = steps

@@ -40,12 +40,16 @@ def test_blocks_of_any_length_give_the_same_file(invented_run, tmp_path, monkeyp
     xr.testing.assert_identical(written(run, tmp_path / "run.nc", rows=rows), collected(run))
 
 
-def test_copies_on_the_way_do_not_change_the_file(invented_run, tmp_path, monkeypatch):
+def test_copies_on_the_way_do_not_change_the_file(invented_run, tmp_path):
     run = invented_run()
     plain = written(run, tmp_path / "plain.nc")
-    monkeypatch.setattr(netcdf_writer, "COPY_EVERY", 0.0)
-    monkeypatch.setattr(netcdf_writer, "COPY_SHARE", np.inf)
-    xr.testing.assert_identical(written(run, tmp_path / "copied.nc", rows=9), plain)
+    sink = NetcdfSink(tmp_path / "copied.nc", run.static(), run.attributes, run.start)
+    for block in run.blocks(9):
+        sink.write(block)
+        sink.save_copy({})
+    sink.close("complete", run.end_state())
+    with open_run(tmp_path / "copied.nc") as copied:
+        xr.testing.assert_identical(copied.load(), plain)
 
 
 def test_two_runs_of_equal_input_give_equal_bytes(invented_run, tmp_path):

@@ -136,6 +136,13 @@ CASES = [
     ),
     (
         'every = "1 min"',
+        'every = "10 min"\nevents_every = "4 min"',
+        [
+            "day.toml:11: output events_every: found 4 min; allowed: a whole part of every, 10 min",
+        ],
+    ),
+    (
+        'every = "1 min"',
         'every = "1 min"\nprofiles_every = "24 h"\n[limits]',
         [
             'day.toml:12: limits: unknown key; known: "canal", "title", "units", "zone", "period", "output", '

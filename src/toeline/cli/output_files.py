@@ -32,7 +32,9 @@ def file_name(name: str) -> str:
     return re.sub(r"[^\w.-]+", "_", name)
 
 
-def refuse_outputs(outputs: Sequence[Path], scenarios: Sequence["Scenario"], overwrite: bool) -> None:
+def refuse_outputs(
+    outputs: Sequence[Path], scenarios: Sequence["Scenario"], overwrite: bool, resume: bool = False
+) -> None:
     """Raise UsageError, before any work is done, where writing an output would fail or lose something."""
     if len(set(outputs)) < len(outputs):
         raise UsageError("two plans would go to one file: rename a plan, or run one at a time with --plan.")
@@ -43,9 +45,15 @@ def refuse_outputs(outputs: Sequence[Path], scenarios: Sequence["Scenario"], ove
             raise UsageError(f"{output} is an input of this run and would be lost: name another file with -o.")
         if not output.parent.is_dir():
             raise UsageError(f"there is no directory {output.parent} to write {output.name} in.")
-        for standing in (output, shown_path(file.partial_path)):
-            if standing.exists() and not overwrite:
-                raise UsageError(f"{standing} exists: name another file with -o, or replace it with --overwrite.")
+        if resume or overwrite:
+            continue
+        if output.exists():
+            raise UsageError(f"{output} exists: name another file with -o, or replace it with --overwrite.")
+        if file.partial_path.exists():
+            raise UsageError(
+                f"{shown_path(file.partial_path)} exists: go on with it with --resume, name another file with -o, or "
+                "replace it with --overwrite."
+            )
 
 
 def refuse_page(output: Path, inputs: Iterable[Path], overwrite: bool) -> None:

@@ -11,9 +11,11 @@ from click.exceptions import Exit
 from toeline.cli.exit_status import ExitStatus
 from toeline.cli.input_files import INPUT_FILE, load_plans
 from toeline.cli.terminal import heeding_ctrl_c, note, page_width, progress_bar, show, shown_path
-from toeline.errors import RunError
+from toeline.errors import RunError, UsageError
 
 if TYPE_CHECKING:
+    from xarray import Dataset
+
     from toeline.scenario import Scenario
 
 
@@ -36,6 +38,12 @@ if TYPE_CHECKING:
     help="Change a value of the day file for this run, such as period.length='\"6 h\"'. May be repeated.",
 )
 @click.option("--overwrite", is_flag=True, help="Replace a file of results that exists.")
+@click.option(
+    "--resume",
+    is_flag=True,
+    help="Go on with a run that was stopped or killed, from FILE.partial and FILE.checkpoint, to the same results as "
+    "if it had not been. Plans that are complete are left as they are; those not yet begun begin.",
+)
 @click.option("--strict", is_flag=True, help="Exit with status 3 if there was an incident.")
 @click.pass_context
 def command(
@@ -45,20 +53,24 @@ def command(
     plan: str | None,
     overrides: tuple[str, ...],
     overwrite: bool,
+    resume: bool,
     strict: bool,
 ) -> None:
     """Step the canal of the file DAY through its schedule, and tell what goes wrong, where, when and by how much.
 
     While it goes on the results are written to FILE.partial, which becomes FILE when the run is complete. Stopped
-    by Ctrl-C (exit status 130), what was done so far stays in FILE.partial and can be described like a whole run.
+    by Ctrl-C (exit status 130), what was done so far stays in FILE.partial and can be described like a whole run, or
+    gone on with by --resume.
     """
     from toeline.cli.output_files import choose_outputs, refuse_outputs
 
+    if resume and overwrite:
+        raise UsageError("--resume goes on with a run and --overwrite begins it anew: give one of them.")
     scenarios = load_plans(day, plan, overrides)
     outputs = choose_outputs(scenarios, output)
-    refuse_outputs(outputs, scenarios, overwrite)
+    refuse_outputs(outputs, scenarios, overwrite, resume)
     tell_of_compiling()
-    ends = [run_plan(*pair, overwrite, strict) for pair in zip(scenarios, outputs, strict=True)]
+    ends = [run_plan(*pair, overwrite, resume, strict) for pair in zip(scenarios, outputs, strict=True)]
     if len(ends) > 1:
         show(plans_page(day, [scenario.plan or "" for scenario in scenarios], ends))
     statuses = {end.status for end in ends}
@@ -90,16 +102,15 @@ def tell_of_compiling() -> None:
         note("Compiling the equations for this machine: once, about a minute. Later runs start at once.")
 
 
-def run_plan(scenario: "Scenario", output: Path, overwrite: bool, strict: bool) -> PlanEnd:
+def run_plan(scenario: "Scenario", output: Path, overwrite: bool, resume: bool, strict: bool) -> PlanEnd:
     """Run one plan, show its page and return how it ended; a failed run tells why and what is left of it."""
-    from toeline import simulate
     from toeline.findings.incidents import incidents
     from toeline.report.incidents import incident_words
     from toeline.report.run_summary import run_summary
 
     try:
-        with progress_bar(scenario.plan or scenario.day_path.stem) as bar, heeding_ctrl_c(bar) as progress:
-            dataset = simulate(scenario, output, overwrite=overwrite, progress=progress)
+        is_there = resume and output.exists()
+        dataset = finished_run(scenario, output) if is_there else stepped(scenario, output, overwrite, resume)
     except KeyboardInterrupt:
         note(f"Stopped by Ctrl-C. {what_is_left(output)}")
         raise Exit(ExitStatus.INTERRUPTED) from None
@@ -113,10 +124,32 @@ def run_plan(scenario: "Scenario", output: Path, overwrite: bool, strict: bool) 
         return PlanEnd(ExitStatus.INCIDENT_FOUND if strict and found else ExitStatus.DONE, incident_words(found))
 
 
+def stepped(scenario: "Scenario", output: Path, overwrite: bool, resume: bool) -> "Dataset":
+    """Step a plan, with a bar that tells how far it is."""
+    from toeline import simulate
+
+    with progress_bar(scenario.plan or scenario.day_path.stem) as bar, heeding_ctrl_c(bar) as progress:
+        return simulate(scenario, output, overwrite=overwrite, resume=resume, progress=progress)
+
+
+def finished_run(scenario: "Scenario", output: Path) -> "Dataset":
+    """The run of a plan that needs not go on, because it is complete. UsageError where the file is of another run."""
+    from toeline.results.dataset import open_run
+    from toeline.results.unfinished import check_same_run
+    from toeline.simulate import attributes
+
+    run = open_run(output)
+    check_same_run(run.attrs, output, attributes(scenario))
+    note(f"{output} is complete.")
+    return run
+
+
 def what_is_left(output: Path) -> str:
     from toeline.results.run_file import RunFile
 
-    partial = shown_path(RunFile(output, overwrite=False).partial_path)
+    file = RunFile(output, overwrite=False)
+    partial = shown_path(file.partial_path)
     if not partial.exists():
         return "Nothing was written."
-    return f"What was done so far is in {partial}; see it with: toeline describe {partial}"
+    go_on = "; go on with it with: --resume" if file.checkpoint_path.exists() else ""
+    return f"What was done so far is in {partial}; see it with: toeline describe {partial}{go_on}"

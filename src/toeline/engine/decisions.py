@@ -1,7 +1,9 @@
 """The rules of a day: asked at their decision times, their answers carried out by the gates, their memory kept."""
 
+from array import array
 from collections.abc import Callable
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 
@@ -25,7 +27,7 @@ class RuleOfDay:
     found: FoundRule
     rule: Rule
     gate: str
-    times: list[int]
+    times: "array[int]"
     label: str
 
 
@@ -42,7 +44,8 @@ class Decisions:
         for choice, times in zip(timetable.rules, timetable.decisions, strict=True):
             rule = choice.found.make(choice.given, facts)
             label = self._label(f"{choice.kind}, {rule.gate}")
-            self.rules.append(RuleOfDay(choice.found, rule, rule.gate, times.tolist()[::-1], label))
+            to_come = array("q", times[::-1].astype(np.int64).tobytes())
+            self.rules.append(RuleOfDay(choice.found, rule, rule.gate, to_come, label))
 
     def act(self, time: int, move: Move) -> None:
         """Ask the rules whose decision is due at a stop [ms of the period]."""
@@ -67,6 +70,17 @@ class Decisions:
         for label, name, value in zip(end["end_rule"], end["end_rule_memory"], end["end_rule_value"], strict=True):
             if label in by_label:
                 by_label[label].memory[str(name)] = float(value)
+
+    def checkpoint(self) -> list[dict[str, Any]]:
+        """How many decisions are still to come and what is kept, by rule; fit for JSON."""
+        return [{"decisions_left": len(one.times), "memory": one.rule.memory} for one in self.rules]
+
+    def go_on_from(self, kept: list[dict[str, Any]]) -> None:
+        """Bring the rules of a new run of the same day to a checkpoint."""
+        for one, rule in zip(self.rules, kept, strict=True):
+            del one.times[rule["decisions_left"] :]
+            one.rule.memory.clear()  # parts of a rule share it
+            one.rule.memory.update(rule["memory"])
 
     def _label(self, name: str) -> str:
         """The name, numbered where a rule of the same kind moves the same gate at other hours."""

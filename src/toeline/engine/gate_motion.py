@@ -5,7 +5,7 @@ hour, avoided bands, marks and stuck leaves; and the record of what was done.
 import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
-from typing import NamedTuple
+from typing import Any, NamedTuple
 
 from toeline.network.timetable import HOUR_MS, Marks
 from toeline.scenario import Order, Stuck
@@ -17,6 +17,9 @@ SCHEDULE = "schedule"
 """Source of the orders of a plan; those of a rule carry its kind."""
 
 SAME_OPENING = 1e-9
+
+_OF_A_LEAF = ("opening", "target", "ordered", "since", "until", "moves")
+"""What changes of a leaf during a day, beside its order."""
 
 
 @dataclass
@@ -112,6 +115,17 @@ class GateMotion:
     def moves_within_an_hour(self, time: int) -> list[int]:
         """When the moves of the last hour began [ms]."""
         return [begun for begun in self.moves if begun > time - HOUR_MS]
+
+    def checkpoint(self, records: Sequence[OrderRecord]) -> dict[str, Any]:
+        """Where the leaf is and goes, and the place of its order among `records`; fit for JSON."""
+        order = next((place for place, record in enumerate(records) if record is self.current), None)
+        return {name: getattr(self, name) for name in _OF_A_LEAF} | {"order": order}
+
+    def go_on_from(self, kept: dict[str, Any], records: Sequence[OrderRecord]) -> None:
+        """Bring the leaf of a new run of the same day to a checkpoint."""
+        for name in _OF_A_LEAF:
+            setattr(self, name, kept[name])
+        self.current = None if kept["order"] is None else records[kept["order"]]
 
     def order(self, time: int, kind: str, value: float, wanted: float, note: str = "") -> OrderRecord:
         """Take an order whose wanted opening [m] is known; `note` says how it fell short already."""

@@ -1,6 +1,8 @@
 """What people and rules do at the stops of a day: orders to gates, and the record of what became of them."""
 
 import math
+from dataclasses import asdict
+from typing import Any
 
 import numpy as np
 
@@ -94,6 +96,23 @@ class Operations:
             "end_ordered_opening": np.array([motion.ordered for motion in self.motions]),
             "end_motion_remaining": np.array([motion.remaining(time) / 1000.0 for motion in self.motions]),
         }
+
+    def checkpoint(self) -> dict[str, Any]:
+        """Leaves, orders to come, records that may still change and what the rules keep; fit for JSON."""
+        return {
+            "orders_left": len(self.orders),
+            "records": [asdict(record) for record in self.records],
+            "leaves": [motion.checkpoint(self.records) for motion in self.motions],
+            "rules": self.decisions.checkpoint(),
+        }
+
+    def go_on_from(self, kept: dict[str, Any]) -> None:
+        """Bring the operations of a new run of the same day to a checkpoint."""
+        self.orders = self.orders[len(self.orders) - kept["orders_left"] :]
+        self.records = [OrderRecord(**record) for record in kept["records"]]
+        for motion, leaf in zip(self.motions, kept["leaves"], strict=True):
+            motion.go_on_from(leaf, self.records)
+        self.decisions.go_on_from(kept["rules"])
 
     def _carry_out(self, order: Order, time: int) -> None:
         for motion in self._moved_by(order):

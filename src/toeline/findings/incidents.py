@@ -4,7 +4,8 @@ An incident is one unbroken spell at one place. Where a margin runs through zero
 between output steps; elsewhere they are the steps at which the change is seen. No incident does not mean safe.
 """
 
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
+from functools import partial
 
 import numpy as np
 import xarray as xr
@@ -14,6 +15,7 @@ from toeline.findings.incident import Incident, Measure, Settling
 from toeline.findings.jump_incidents import jumps_beyond_protection, jumps_swept_out
 from toeline.findings.limit_incidents import limits_passed
 from toeline.findings.water_incidents import velocities_over_limit, water_above
+from toeline.results.dataset import read_apart
 from toeline.results.provenance import COMPLETE
 
 __all__ = ["Incident", "Measure", "incidents"]
@@ -22,17 +24,22 @@ __all__ = ["Incident", "Measure", "incidents"]
 def incidents(run: xr.Dataset) -> list[Incident]:
     """All incidents of a run, by their beginning."""
     settling = Settling(run)
-    found = [
-        *jumps_beyond_protection(run, settling),
-        *jumps_swept_out(run, settling),
-        *water_above("bank", run, settling),
-        *water_above("lining", run, settling),
-        *velocities_over_limit(run, settling),
-        *delivery_shortfalls(run, settling),
-        *limits_passed(run, settling),
-        *_early_stop(run),
-    ]
+    found = list(_early_stop(run))
+    for family in _FAMILIES:
+        with read_apart(run) as apart:
+            found += family(apart, settling)
     return sorted(found, key=lambda incident: (incident.start, incident.what, incident.where))
+
+
+_FAMILIES: tuple[Callable[[xr.Dataset, Settling], Iterator[Incident]], ...] = (
+    jumps_beyond_protection,
+    jumps_swept_out,
+    partial(water_above, "bank"),
+    partial(water_above, "lining"),
+    velocities_over_limit,
+    delivery_shortfalls,
+    limits_passed,
+)
 
 
 def _early_stop(run: xr.Dataset) -> Iterator[Incident]:

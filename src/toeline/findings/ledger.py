@@ -8,6 +8,19 @@ import xarray as xr
 from toeline.findings.series import names
 from toeline.units import SPELLINGS
 
+_NEEDED = (
+    "canal_inflow_volume",
+    "canal_outflow_volume",
+    "pool_inflow_volume",
+    "pool_outflow_volume",
+    "pool_loss_volume",
+    "pool_volume",
+    "delivery_volume",
+    "escape_volume",
+    "offtake_pool",
+    "escape_pool",
+)
+
 
 @dataclass(frozen=True)
 class Account:
@@ -50,6 +63,7 @@ class Ledger:
 
 def ledger(run: xr.Dataset) -> Ledger:
     """The ledger of a run, from its first output step to its last; all zero where it has no step."""
+    run = run[list(_NEEDED)].isel(time=[0, -1] if run.sizes["time"] else []).load()
     pools = {pool: _account_of_pool(run, pool) for pool in names(run["pool"])}
     canal = Account(
         inflow=float(_growth(run["canal_inflow_volume"])),

@@ -33,14 +33,17 @@ def water_above(edge: str, run: xr.Dataset, settling: Settling) -> Iterator[Inci
 
 def velocities_over_limit(run: xr.Dataset, settling: Settling) -> Iterator[Incident]:
     """At the times of the profiles, pool by pool, by the node furthest over the limit of its surface."""
-    times, limits, velocities = (run[name].values for name in ("profile_time", "velocity_limit", "velocity"))
-    margins = np.nan_to_num(limits - np.abs(velocities), nan=np.inf)
+    times, limits = run["profile_time"].values, run["velocity_limit"].values
+    if not np.isfinite(limits).any():
+        return
+    velocities = run["velocity"].values
     for pool, name in enumerate(names(run["pool"])):
         nodes = np.flatnonzero((run["node_pool"].values == pool) & np.isfinite(limits))
-        in_pool = margins[:, nodes].min(axis=1, initial=np.inf)
+        margins = np.nan_to_num(limits[nodes] - np.abs(velocities[:, nodes]), nan=np.inf)
+        in_pool = margins.min(axis=1, initial=np.inf)
         for spell in spells(in_pool < 0, times, in_pool):
             row = spell.first + int(np.argmin(in_pool[spell.rows]))
-            node = int(nodes[np.argmin(margins[row, nodes])])
+            node = int(nodes[np.argmin(margins[row])])
             surface = meanings(run["surface"])[int(run["surface"].values[node])]
             yield Incident(
                 "velocity over the limit of the surface",

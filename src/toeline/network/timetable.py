@@ -120,7 +120,7 @@ def timetable_of(scenario: Scenario, network: Network) -> Timetable:
         tolerance=period.level_tolerance,
         longest_step=period.longest_step_ms,
         local_inertia=period.local_inertia,
-        every=day.output.every_ms,
+        every=day.output.finest_ms,
         profiles_every=day.output.profiles_every_ms,
         series=_series(day, canal, network),
         roughness=roughness_changes(canal, period.start, period.length_ms),

@@ -7,6 +7,7 @@ from datetime import UTC, datetime, timedelta, timezone, tzinfo
 from pathlib import Path
 from zoneinfo import ZoneInfo
 
+import netCDF4
 import numpy as np
 import xarray as xr
 
@@ -23,6 +24,12 @@ from toeline.results.encoding import (
 )
 from toeline.results.provenance import ATTRIBUTES, SOURCE_PREFIX
 from toeline.results.variables import GROWING_DIMENSIONS, VARIABLES, growing
+
+CHUNK_CACHE = 2**18
+"""Bytes for each variable: a chunk or two; the default would keep what is read twice."""
+
+LONG_RUN = 100e6
+"""Bytes of a run from which it is not read as a whole."""
 
 
 class DatasetSink:
@@ -81,6 +88,7 @@ def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
     file = Path(path)
     if not file.is_file():
         raise UsageError(f"{file} is no file{_hint(file)}")
+    netCDF4.set_chunk_cache(CHUNK_CACHE)
     try:
         run = xr.open_dataset(file, engine="netcdf4")
     except (OSError, ValueError) as error:
@@ -95,6 +103,17 @@ def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
             f"{file} is of another version, {run.attrs['source']}: it has no {missing[0]}; run its day again to read it"
         )
     return run
+
+
+@contextmanager
+def read_apart(run: xr.Dataset) -> Iterator[xr.Dataset]:
+    """The run for one finding of many: what is read of a long run is let go at the end of the `with`, not kept."""
+    source = run.encoding.get("source")
+    if source is None or run.nbytes < LONG_RUN:
+        yield run
+        return
+    with open_run(source) as apart:
+        yield apart
 
 
 def _missing(run: xr.Dataset) -> list[str]:

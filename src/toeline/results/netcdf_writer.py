@@ -23,13 +23,14 @@ from toeline.results.encoding import (
 )
 from toeline.results.provenance import COMPLETE, UNFINISHED
 from toeline.results.run_file import RunFile
+from toeline.results.unfinished import Unfinished, checkpoint_bytes
 from toeline.results.variables import GROWING_DIMENSIONS, VARIABLES, Variable, growing
 
 TIME_CHUNK = 720
 ORDER_CHUNK = 64
 PROFILE_CHUNK_VALUES = 65_536
-CHUNK_CACHE = 2**20
-"""Bytes for each variable; the default of 64 MiB would fill the memory."""
+CHUNK_CACHE = 2**18
+"""Bytes for each variable: a chunk or two; the default of 64 MiB would fill the memory."""
 
 COPY_EVERY = 1.0
 COPY_SHARE = 0.2
@@ -50,13 +51,15 @@ class NetcdfSink:
         attributes: Mapping[str, str],
         start: datetime,
         overwrite: bool = False,
+        unfinished: Unfinished | None = None,
     ):
         """Create the file. UsageError, before anything is touched, if it may not or cannot be written.
 
         `static` holds the fixed variables by their registry names, `attributes` the global attributes; at `start`, an
-        aware time, the clocks of the blocks read 0.
+        aware time, the clocks of the blocks read 0. Of an `unfinished` run the rows up to its checkpoint are taken
+        over, as if they had been written.
         """
-        self._run_file = RunFile(path, overwrite)
+        self._run_file = RunFile(path, overwrite, goes_on=unfinished is not None)
         self._start = start
         self._surface_names = surface_names_of(attributes)
         self._sizes = sizes_of(static)
@@ -76,19 +79,37 @@ class NetcdfSink:
         self._is_closed = False
         self.written_path: Path = self._run_file.partial_path
         """Where the run can be read: PATH once it is complete and closed, PATH.partial until then."""
+        self._next_copy = 0.0
         with self._giving_up_on_failure():
-            self._save_copy()
+            if unfinished is None:
+                self._copy(None)
+            else:
+                self._take_over(unfinished)
+
+    @property
+    def is_copy_due(self) -> bool:
+        """Whether the last copy is old enough for the next."""
+        return time.monotonic() >= self._next_copy
+
+    def save_copy(self, checkpoint: Mapping[str, np.ndarray]) -> None:
+        """Make all rows written so far safe from a kill, and the checkpoint from which the run goes on after them.
+
+        RunError if they cannot be written; the last copy is then kept as PATH.partial, and no more is taken.
+        """
+        rows = {dimension: self._written[dimension] + self._waiting[dimension].count for dimension in self._written}
+        with self._giving_up_on_failure():
+            self._copy(checkpoint_bytes(rows, checkpoint))
 
     def write(self, block: Mapping[str, np.ndarray]) -> None:
         """Take the rows of a block, in any number.
 
         RunError if they cannot be written; the last copy is then kept as PATH.partial, and no more is taken.
         """
+        if self._is_closed:
+            return
         with self._giving_up_on_failure():
             for dimension, rows in rows_by_dimension(block).items():
                 self._gather(dimension, rows)
-            if time.monotonic() >= self._next_copy:
-                self._save_copy()
 
     def close(self, outcome: str, end_state: Mapping[str, np.ndarray] | None = None) -> None:
         """Write the rest and close. Closing again, or after a failed write, does nothing."""
@@ -168,11 +189,17 @@ class NetcdfSink:
         for dimension in GROWING_DIMENSIONS:
             self._flush(dimension)
 
-    def _save_copy(self) -> None:
+    def _take_over(self, unfinished: Unfinished) -> None:
+        """Write the rows of an unfinished run once more: a file that a kill may have left is not written into."""
+        for dimension, length in self._chunks.items():
+            for rows in unfinished.rows(dimension, length):
+                self._gather(dimension, rows)
+
+    def _copy(self, checkpoint: bytes | None) -> None:
+        begin = time.monotonic()
         self._flush_all()
         self._file.sync()
-        begin = time.monotonic()
-        self._run_file.save_copy()
+        self._run_file.save_copy(checkpoint)
         end = time.monotonic()
         self._next_copy = end + max(COPY_EVERY, (end - begin) / COPY_SHARE)
 

@@ -23,8 +23,9 @@ One flat NetCDF-4 file after the CF conventions, opened with `xarray.open_datase
 killed run never wrote left out, `toeline.results.dataset.open_run("run.nc")`. Everything is in SI units. Values along
 `time` and `profile_time` hold at the instant; none is a mean over the step. Times are UTC. Missing values are NaN.
 While a run goes on, and after one that stopped early, its file is named `run.nc.partial`; attribute `outcome` says how
-it ended. A killed run may also leave `run.nc.writing` or `run.nc.copying`: they are of no use, and the next run of that
-name removes them. No state in any file is safe to enter.
+it ended. `run.nc.checkpoint` beside it is what `toeline run --resume` needs to go on. A killed run may also leave
+`run.nc.writing` or `run.nc.copying`: they are of no use, and the next run of that name removes them. No state in any
+file is safe to enter.
 """
 
 

@@ -1,11 +1,13 @@
-"""Where a run is written: three names, so that a run killed at any moment leaves a file that opens.
+"""Where a run is written: four names, so that a run killed at any moment leaves a file that opens.
 
     PATH.writing    the file being written, locked by HDF5; worthless to others, and never left but by a kill
     PATH.partial    a whole copy of it, replaced in one step every second or so; what a run that stopped early leaves
+    PATH.checkpoint what a run that did not end needs, beside PATH.partial, to go on; replaced just after it
     PATH            the complete run
 
 HDF5 changes a file in many places when it writes a block: measured, one kill in a hundred at full writing speed left
 rows that could not be read. A copy taken between two blocks is whole, and stays so when the disk runs full.
+PATH.partial only ever gains rows, so that it holds all rows of its checkpoint, whichever of the two a kill left behind.
 Nothing a user has finished is touched before the new run is complete.
 """
 
@@ -27,28 +29,34 @@ _HDF5_SIGNATURE = b"\x89HDF\r\n\x1a\n"
 
 
 class RunFile:
-    """The file of one run under its three names."""
+    """The file of one run under its names."""
 
-    def __init__(self, path: str | os.PathLike[str], overwrite: bool):
-        """UsageError if `path` cannot be the name of a run file. Nothing is created yet."""
+    def __init__(self, path: str | os.PathLike[str], overwrite: bool, *, goes_on: bool = False):
+        """UsageError if `path` cannot be the name of a run file. Nothing is created yet.
+
+        A run that `goes_on` takes the place of PATH.partial, which stays until it holds as much.
+        """
         self.path = _resolved(path)
         self.partial_path = self.path.with_name(self.path.name + ".partial")
         self.working_path = self.path.with_name(self.path.name + ".writing")
+        self.checkpoint_path = self.path.with_name(self.path.name + ".checkpoint")
         self._copying_path = self.path.with_name(self.path.name + ".copying")
         self._overwrite = overwrite
+        self._goes_on = goes_on
 
     def check(self) -> None:
         """UsageError if one of the names is taken by what may not be overwritten, or another run is writing."""
-        for other in (self.partial_path, self.working_path):
+        for other in (self.partial_path, self.working_path, self.checkpoint_path):
             if other.exists() and not other.is_file():
                 raise UsageError(f"{other} is in the way and is no file")
         if self.working_path.exists() and _is_open_for_writing(self.working_path):
             raise UsageError(f"another run is writing {self.path}; wait for it, or choose another name")
         if self.path.exists():
             self._check_finished_run()
-        if self.partial_path.exists() and not self._overwrite:
+        if self.partial_path.exists() and not (self._overwrite or self._goes_on):
             raise UsageError(
-                f"{self.partial_path} holds an unfinished run and is kept; rename it, or allow it to be overwritten"
+                f"{self.partial_path} holds an unfinished run and is kept; go on with it, rename it, or allow it to be "
+                "overwritten"
             )
 
     @contextmanager
@@ -62,6 +70,8 @@ class RunFile:
             with _one_claim_at_a_time(self.path.parent):
                 self.check()
                 self._remove_left_overs()
+                if not self._goes_on:
+                    self.checkpoint_path.unlink(missing_ok=True)
                 os.close(os.open(self.working_path, os.O_CREAT | os.O_EXCL | os.O_WRONLY, 0o666))
                 try:
                     yield
@@ -72,11 +82,12 @@ class RunFile:
         except OSError as error:
             raise UsageError(f"{self.path} cannot be written: {self._reason(error)}") from error
 
-    def save_copy(self) -> None:
-        """Replace PATH.partial by what PATH.writing holds now. OSError if the disk is full."""
+    def save_copy(self, checkpoint: bytes | None = None) -> None:
+        """Replace PATH.partial by what PATH.writing holds now, then the checkpoint. OSError if the disk is full."""
         shutil.copyfile(self.working_path, self._copying_path)
-        with suppress(PermissionError):  # Windows, while somebody reads the last copy; the next one will do
-            self._copying_path.replace(self.partial_path)
+        if self._replace(self.partial_path) and checkpoint is not None:
+            self._copying_path.write_bytes(checkpoint)
+            self._replace(self.checkpoint_path)
 
     def finish(self) -> None:
         """Bring a complete, closed PATH.writing safely to the disk and to its own name, in one step.
@@ -91,6 +102,7 @@ class RunFile:
             self.working_path.replace(self.path)
             self._remove_left_overs()
             self.partial_path.unlink(missing_ok=True)
+            self.checkpoint_path.unlink(missing_ok=True)
         except OSError as error:
             raise RunError(f"the run is complete, but {self.path} cannot be written: {error}") from error
 
@@ -99,6 +111,7 @@ class RunFile:
         try:
             self._bring_to_disk()
             self.working_path.replace(self.partial_path)
+            self._remove_left_overs()
         except OSError as error:
             raise RunError(f"{self.partial_path} cannot be written: {error}") from error
 
@@ -119,6 +132,15 @@ class RunFile:
         with self.path.open("rb") as file:
             if file.read(len(_HDF5_SIGNATURE)) not in (_HDF5_SIGNATURE, b""):
                 raise UsageError(f"{self.path} is no NetCDF-4 file and is kept; only an earlier run is overwritten")
+
+    def _replace(self, path: Path) -> bool:
+        """Bring what was copied to the disk and to its name in one step; returns whether that could be done now."""
+        _to_disk(self._copying_path)
+        try:
+            self._copying_path.replace(path)
+        except PermissionError:  # Windows, while somebody reads the last copy; the next one will do
+            return False
+        return True
 
     def _remove_left_overs(self) -> None:
         self.working_path.unlink(missing_ok=True)
@@ -141,6 +163,14 @@ class RunFile:
         return error.strerror or str(error)
 
 
+def _to_disk(path: Path) -> None:
+    descriptor = os.open(path, os.O_RDWR)
+    try:
+        os.fsync(descriptor)
+    finally:
+        os.close(descriptor)
+
+
 def _resolved(path: str | os.PathLike[str]) -> Path:
     """The file to write, links followed."""
     given = Path(path)
@@ -154,7 +184,7 @@ def _resolved(path: str | os.PathLike[str]) -> Path:
         raise UsageError(f"{given} is a directory; give the name of a file")
     if is_taken and not is_file:
         raise UsageError(f"{given} is a pipe or device; a run is written into a file")
-    if resolved.suffix in (".partial", ".writing", ".copying"):
+    if resolved.suffix in (".partial", ".writing", ".copying", ".checkpoint"):
         raise UsageError(f"{given}: names ending in {resolved.suffix} are kept for unfinished runs; choose another")
     return resolved
 

@@ -78,7 +78,7 @@ def _passage_within(length: int, scenario: Scenario, changes: list[str]) -> Ramp
 
 def _start_of(quiet: Scenario) -> xr.Dataset:
     """The first minute of the quiet day. UsageError where nothing flows through the canal."""
-    minute = ['period.length="1 min"', 'output.every="1 min"', 'output.profiles_every="1 min"']
+    minute = ['period.length="1 min"', *sampled(60_000, 60_000)]
     start = simulate(with_changes(quiet, None, *minute)).isel(time=0)
     for way in ("inflow", "outflow"):
         if float(start[f"canal_{way}"]) < LEAST_FLOW:

@@ -15,7 +15,7 @@ from toeline.scenario.schema.plans import Plan
 from toeline.scenario.schema.table import OPENING, DischargeOrZero, FileName, Name, Table
 from toeline.scenario.schema.value_kinds import Duration, Quantity, Text, ValueKind
 from toeline.scenario.times import read_start, read_zone
-from toeline.units import UnitSystem
+from toeline.units import UnitSystem, quantity_text
 
 TO_HOLD_TARGETS = "to hold targets"
 
@@ -125,6 +125,30 @@ class Output(Table):
     profiles_every_ms: Annotated[int, Duration("1 s", "24 h")] = Field(
         600_000, alias="profiles_every", description="Time between long profiles of the whole canal."
     )
+    events_every_ms: Annotated[int, Duration("1 s", "24 h")] | None = Field(
+        None,
+        alias="events_every",
+        description="Shorter time between values around events: a leaf moves, the flow through a gate or its jump "
+        "changes its state, water passes a bank, a lining or the crest of an escape. Left out: as every.",
+    )
+    events_within_ms: Annotated[int, Duration("1 s", "24 h")] = Field(
+        1_800_000, alias="events_within", description="How long before and after an event events_every holds."
+    )
+
+    @property
+    def is_thinned(self) -> bool:
+        """Whether values are kept closer around events than elsewhere."""
+        return self.events_every_ms is not None
+
+    @property
+    def finest_ms(self) -> int:
+        """Time between values that are computed."""
+        return self.every_ms if self.events_every_ms is None else self.events_every_ms
+
+    def misfits(self, system: UnitSystem) -> Iterator[Misfit]:
+        if self.every_ms % self.finest_ms:
+            found, whole = (quantity_text(ms / 1000.0, "duration", system) for ms in (self.finest_ms, self.every_ms))
+            yield Misfit(("events_every",), f"found {found}; allowed: a whole part of every, {whole}")
 
 
 class Start(Table):
