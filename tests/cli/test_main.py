@@ -1,31 +1,66 @@
 """The command as a whole: how it opens, and how it ends."""
 
+import gc
 import subprocess
 import sys
+from pathlib import Path
 
 import click
 import pytest
 from click.testing import CliRunner
 
 import toeline
-from toeline.cli.main import COMMANDS, LazyGroup, main
+from toeline.cli.main import COMMANDS, OBJECTS_BETWEEN_COLLECTIONS, LazyGroup, main
 from toeline.errors import Fault, RunError, ScenarioError, UsageError
 
-HEAVY = {"numpy", "numba", "xarray", "netCDF4", "matplotlib", "pydantic", "scipy", "rich"}
+HEAVY = {"numpy", "numba", "xarray", "netCDF4", "matplotlib", "pydantic", "scipy", "rich", "bokeh", "fpdf", "icalendar"}
+DRAWING = {"matplotlib", "bokeh", "fpdf", "icalendar"}
+DEMO = str(Path(__file__).parents[2] / "scenarios" / "quillmere" / "morning_increase.toml")
 
 
 def imported_by(*arguments: str) -> set[str]:
-    """Names of the modules that a fresh interpreter imports for these arguments."""
+    """Names of the packages that a fresh interpreter imports for these arguments."""
     command = [sys.executable, "-X", "importtime", "-m", "toeline", *arguments]
     result = subprocess.run(command, capture_output=True, text=True, check=True)
-    return {line.rpartition("|")[2].strip() for line in result.stderr.splitlines() if line.startswith("import time:")}
+    modules = (line.rpartition("|")[2].strip() for line in result.stderr.splitlines() if "import time:" in line)
+    return {module.partition(".")[0] for module in modules}
 
 
-@pytest.mark.parametrize("arguments", [("--help",), ("--version",), ("run", "--help"), ("verify", "--help")])
+@pytest.mark.parametrize("arguments", [("--version",), *((*name, "--help") for name in [(), *zip(COMMANDS)])])
 def test_help_opens_without_heavy_imports(arguments):
-    packages = {module.partition(".")[0] for module in imported_by(*arguments)}
+    packages = imported_by(*arguments)
     assert "click" in packages
     assert not packages & HEAVY
+
+
+def test_checking_a_day_neither_compiles_nor_opens_results():
+    assert not imported_by("check", DEMO) & (DRAWING | {"numba", "xarray", "pandas", "netCDF4"})
+
+
+@pytest.mark.parametrize(
+    ("command", "needed"),
+    [("describe", set()), ("report", {"bokeh"}), ("orders", {"matplotlib", "fpdf", "icalendar"}), ("compare", set())],
+)
+def test_a_command_on_runs_imports_its_own_tools_alone(command, needed, folder, call):
+    assert call("run", "day.toml").exit_code == 0
+    runs = ["day.hold.nc", "day.raise.nc"] if command == "compare" else ["day.raise.nc"]
+    packages = imported_by(command, *runs)
+    assert packages & (DRAWING | {"numba", "pydantic"}) == needed
+
+
+def test_a_run_imports_nothing_that_draws(folder):
+    packages = imported_by("run", "day.toml", "--plan", "hold")
+    assert {"numba", "xarray"} <= packages
+    assert not packages & DRAWING
+
+
+def test_the_modules_of_libraries_are_not_searched_for_garbage_again_and_again(folder, call):
+    kept = gc.get_threshold()
+    try:
+        call("check", "day.toml")
+        assert gc.get_threshold()[0] == OBJECTS_BETWEEN_COLLECTIONS
+    finally:
+        gc.set_threshold(*kept)
 
 
 def test_help_names_every_command_and_exit_status_and_the_caution():

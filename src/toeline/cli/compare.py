@@ -114,14 +114,16 @@ class Source:
 
     @contextmanager
     def opened(self) -> Iterator["xr.Dataset"]:
-        from toeline import open_run, simulate
-        from toeline.results.dataset import damage_told
-
         if self.scenario is None:
+            from toeline import open_run
+            from toeline.results.dataset import damage_told
+
             with open_run(self.path) as opened, damage_told(self.path):
                 run = opened.load()
             yield run
             return
+        from toeline import simulate
+
         label = self.scenario.plan or self.path.stem
         try:
             with progress_bar(label) as progress:

@@ -3,6 +3,8 @@
 Nothing heavy is imported here or at the top of a command's file, so that `toeline --help` opens at once.
 """
 
+import atexit
+import gc
 from importlib import import_module
 
 import click
@@ -13,7 +15,12 @@ from toeline.cli.exit_status import ExitStatus
 from toeline.cli.terminal import note
 from toeline.errors import ScenarioError, ToelineError, UsageError
 
-COMMANDS = ("new", "check", "run", "describe", "report", "figures", "orders", "compare", "rating", "verify")
+OBJECTS_BETWEEN_COLLECTIONS = 100_000
+"""The modules of libraries are no garbage. Python's default of some hundreds searches them at every import, and all of
+them once more at the end (measured: 0.07 s and 0.24 s of a run of 1.4 s).
+"""
+
+COMMANDS = ("new", "check", "run", "describe", "report", "figures", "orders", "compare", "rating", "verify", "warm-up")
 
 
 class LazyGroup(click.Group):
@@ -28,7 +35,7 @@ class LazyGroup(click.Group):
     def get_command(self, ctx: click.Context, cmd_name: str) -> click.Command | None:
         if cmd_name not in COMMANDS:
             return None
-        command: click.Command = import_module(f"toeline.cli.{cmd_name}").command
+        command: click.Command = import_module(f"toeline.cli.{cmd_name.replace('-', '_')}").command
         return command
 
     def resolve_command(
@@ -80,3 +87,5 @@ def main() -> None:
     hydraulic jump below it stands against its apron. A planning aid: it commands nothing, a qualified
     engineer reviews its limits and results, and no state that it shows is safe to enter.
     """
+    gc.set_threshold(OBJECTS_BETWEEN_COLLECTIONS)
+    atexit.register(gc.freeze)

@@ -7,6 +7,7 @@ import click
 
 from toeline.cli.input_files import INPUT_FILE, is_day
 from toeline.cli.option_values import lengths
+from toeline.cli.run import tell_of_compiling
 from toeline.cli.terminal import note, page_width, show
 from toeline.errors import UsageError
 
@@ -65,6 +66,7 @@ def command(
     canal_file = load_canal(canal)
     check_gate(canal_file, gate)
     chosen = chosen_values(canal_file, gate, headwater, tailwater, opening)
+    tell_of_compiling("hydraulics.jump_location.protection_margin")
     rows = rating_table(canal_file, gate, *chosen)
     show(rating_page(rows, f"{gate}, {canal_file.canal.name}", Display(canal_file.units), page_width()))
     if csv_file is not None:

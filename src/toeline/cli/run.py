@@ -94,12 +94,12 @@ def plans_page(day: Path, plans: Sequence[str], ends: Sequence[PlanEnd]) -> str:
     return "\n".join([heading("All plans"), *told, next_step])
 
 
-def tell_of_compiling() -> None:
-    """Say why the first run on a machine is slow to start."""
-    from toeline.hydraulics.kernel import cache_is_warm
+def tell_of_compiling(kernel_name: str = "engine.advance.advance") -> None:
+    """Say why the first run on a machine is slow to start; `kernel_name` is the last that the command needs."""
+    from toeline.hydraulics.kernel import is_compiled
 
-    if not cache_is_warm():
-        note("Compiling the equations for this machine: once, about a minute. Later runs start at once.")
+    if not is_compiled(kernel_name):
+        note("Compiling the equations for this machine: once, up to a minute. Later runs start at once.")
 
 
 def run_plan(scenario: "Scenario", output: Path, overwrite: bool, resume: bool, strict: bool) -> PlanEnd:
