@@ -4,7 +4,7 @@ import math
 
 import numpy as np
 
-from toeline.engine.output import fill_profile, fill_row, sum_pools
+from toeline.engine.output import fill_profile, fill_row, set_courses, sum_pools
 from toeline.engine.step import accept, begin_leg, set_forcing, try_step
 from toeline.hydraulics.kernel import inner_kernel, kernel
 
@@ -103,7 +103,8 @@ def has_room(rows, pace):
 @inner_kernel
 def write_due(tables, before, middle, after, totals, watch, rows, pace, forcing, h, until):
     """Rows and profiles due from the start of the step until `until` milliseconds of the period, itself left out."""
-    if pace.due < until:
+    if pace.due < until or pace.profile_due < until:
+        set_courses(tables, before, after, h, watch.courses)
         sum_pools(tables, before, middle, after, watch.volumes)
     while pace.due < until:
         at = set_instant(pace, forcing, pace.due, h)

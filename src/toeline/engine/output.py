@@ -12,7 +12,7 @@ from toeline.hydraulics.cross_section import geometry
 from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH
 from toeline.hydraulics.kernel import inner_kernel
 from toeline.hydraulics.underflow_gate import CLEAR_OF_WATER, FREE, QUALITY_UNEVEN_BAYS
-from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, GATE, HEAD
+from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, HEAD
 
 JET_POINTS = 400
 """Most points of a jet's profile."""
@@ -46,8 +46,9 @@ class Watch(NamedTuple):
     roughness_factor: np.ndarray  # (p) 1
     start_storage: np.ndarray  # (1) m³ in the canal at the start of the day
     volumes: np.recarray  # (p) of POOL_VOLUMES, scratch
+    courses: np.ndarray  # (4, n) m, levels over the present step by powers of the fraction of it
     level: np.ndarray  # (all channel nodes) m, scratch
-    discharge: np.ndarray  # (n + 1) m³/s, scratch
+    discharge: np.ndarray  # (n + 1) m³/s, scratch; set at gates and ends of pools
     jet: np.ndarray  # (2, JET_POINTS) chainages and depths, scratch
     free_jets: np.recarray  # (g) of FREE_JET
 
@@ -67,21 +68,26 @@ def between(shares, start, middle, end):
 
 
 @inner_kernel
-def levels_at(tables, before, after, h, at, tail_level, level):
-    """Levels at a fraction of the step: cubic Hermite in wet nodes, linear in drying ones; level water beyond a tail
-    gate.
-    """
-    square, cube = at * at, at * at * at
-    end = 3.0 * square - 2.0 * cube
-    rate_start, rate_end = h * (cube - 2.0 * square + at), h * (cube - square)
-    count = before.nodes.size
-    for k in range(count):
+def set_courses(tables, before, after, h, courses):
+    """Levels over a step as cubics in the fraction of it, Hermite's by levels and rates; drying nodes have no rates."""
+    for k in range(before.nodes.size):
         old, new = before.nodes[k], after.nodes[k]
         dry = tables.channel.nodes[k].bed_level + 2.0 * DRY_DEPTH
-        z = old.level + end * (new.level - old.level)
+        rise, rate_start, rate_end = new.level - old.level, 0.0, 0.0
         if old.level > dry and new.level > dry:
-            z += rate_start * old.rate + rate_end * new.rate
-        level[k] = z
+            rate_start, rate_end = h * old.rate, h * new.rate
+        courses[0, k] = old.level
+        courses[1, k] = rate_start
+        courses[2, k] = 3.0 * rise - 2.0 * rate_start - rate_end
+        courses[3, k] = rate_start + rate_end - 2.0 * rise
+
+
+@inner_kernel
+def levels_at(tables, courses, at, tail_level, level):
+    """Levels at a fraction of the step by `set_courses`; level water beyond a tail gate."""
+    count = courses.shape[1]
+    for k in range(count):
+        level[k] = courses[0, k] + at * (courses[1, k] + at * (courses[2, k] + at * courses[3, k]))
     beyond = tail_level
     if level.size > count and tables.gates[tables.gates.size - 1].downstream_node < count:
         beyond = level[count - 1]
@@ -96,26 +102,25 @@ def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at,
     rows.filled[0] += 1
     shares = shares_at(at)
     head_level, tail_level = forcing[FORCING_HEAD].now, forcing[FORCING_TAIL].now
-    levels_at(tables, before, after, h, at, tail_level, watch.level)
-    for index in range(before.links.size):
-        watch.discharge[index] = between(
-            shares, before.links[index].discharge, middle.links[index].discharge, after.links[index].discharge
+    levels_at(tables, watch.courses, at, tail_level, watch.level)
+    for p in range(tables.pools.size + 1):
+        end = pool_end_link(tables, p)
+        watch.discharge[end] = between(
+            shares, before.links[end].discharge, middle.links[end].discharge, after.links[end].discharge
         )
-        link = tables.links[index]
-        if link.kind == GATE:
-            gate, out, guard = tables.gates[link.gate], rows.gates[row, link.gate], watch.gates[link.gate]
-            up, down = gate_levels(gate, watch.level, before.nodes.size, head_level, tail_level)
-            opening = ruling_opening(tables.channel.shapes, gate, up, down, forcing)
-            watch.discharge[index] = judge_gate(
-                tables.channel, gate, up, down, opening, leaves_move(forcing, gate), watch.level, watch.jet,
-                watch.free_jets[link.gate], out,
-            )  # fmt: skip
-            if gate.leaf_count > 1:
-                watch.discharge[index] = fill_bays(tables, gate, up, down, forcing, rows.bays[row], out)
-            out.surge_height_bound_upstream = guard.surge_upstream if time_ms < guard.surge_upstream_until else 0.0
-            out.surge_height_bound_downstream = (
-                guard.surge_downstream if time_ms < guard.surge_downstream_until else 0.0
-            )
+    for g in range(tables.gates.size):
+        gate, out, guard = tables.gates[g], rows.gates[row, g], watch.gates[g]
+        up, down = gate_levels(gate, watch.level, before.nodes.size, head_level, tail_level)
+        opening = ruling_opening(tables.channel.shapes, gate, up, down, forcing)
+        passed = judge_gate(
+            tables.channel, gate, up, down, opening, leaves_move(forcing, gate), watch.level, watch.jet,
+            watch.free_jets[g], out,
+        )  # fmt: skip
+        if gate.leaf_count > 1:
+            passed = fill_bays(tables, gate, up, down, forcing, rows.bays[row], out)
+        watch.discharge[gate.downstream_node] = passed
+        out.surge_height_bound_upstream = guard.surge_upstream if time_ms < guard.surge_upstream_until else 0.0
+        out.surge_height_bound_downstream = guard.surge_downstream if time_ms < guard.surge_downstream_until else 0.0
     left = fill_offtakes(tables, before, middle, after, totals, watch, rows.offtakes[row], h, shares, forcing)
     left += fill_escapes(before, middle, after, totals, rows.escapes[row], h, shares)
     fill_gauges(tables, watch.level, rows.gauges[row], head_level)
@@ -292,7 +297,7 @@ def fill_profile(tables, before, middle, after, watch, rows, time_ms, h, at, for
     rows.filled[1] += 1
     shares = shares_at(at)
     rows.profile_time[row] = time_ms
-    levels_at(tables, before, after, h, at, forcing[FORCING_TAIL].now, watch.level)
+    levels_at(tables, watch.courses, at, forcing[FORCING_TAIL].now, watch.level)
     for k in range(rows.profiles.shape[1]):
         above, below = before.links[k], before.links[k + 1]
         start = 0.5 * (above.discharge + below.discharge)

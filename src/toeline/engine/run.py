@@ -142,6 +142,7 @@ class Run:
             roughness_factor=np.ones(network.pool_count),
             start_storage=np.zeros(1),
             volumes=zeros(len(names.pools), POOL_VOLUMES),
+            courses=np.zeros((4, network.node_count)),
             level=np.zeros(self.tables.channel.nodes.size),
             discharge=np.zeros(network.node_count + 1),
             jet=np.zeros((2, JET_POINTS)),
