@@ -207,7 +207,7 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
             ["head" if up == HEAD else names.pools[node_pool[up]] for up in gates.upstream_node], object
         ),
         "gate_downstream_pool": np.array(
-            [beside[np.searchsorted(pools.last_node, down)] for down in gates.downstream_node], object
+            [beside[pool] for pool in network.pool_of(gates.downstream_node)], object
         ),
         "bay": np.array(names.bays, object),
         "bay_gate": np.array(

@@ -141,7 +141,7 @@ class Run:
             settled_at=np.zeros(network.pool_count, np.int64),
             roughness_factor=np.ones(network.pool_count),
             start_storage=np.zeros(1),
-            volumes=zeros(len(names.pools), POOL_VOLUMES),
+            volumes=zeros(network.pool_count, POOL_VOLUMES),
             courses=np.zeros((4, network.node_count)),
             level=np.zeros(self.tables.channel.nodes.size),
             discharge=np.zeros(network.node_count + 1),

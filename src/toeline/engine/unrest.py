@@ -44,10 +44,10 @@ class Unrest:
         if changed[FORCING_HEAD] and tables.links.gate[0] < 0:
             pools.add(0)
         if changed[FORCING_TAIL] and tables.links.kind[-1] == TAIL_LEVEL:
-            pools.add(len(network.names.pools) - 1)
+            pools.add(network.pool_count - 1)
         for k, node in enumerate(tables.offtakes.node):
             if changed[first + k] or changed[first + network.offtake_count + k]:
-                pools.add(int(np.searchsorted(tables.pools.last_node, node)))
+                pools.add(int(network.pool_of(node)))
         for pool in pools:
             self._unsettle(pool, self._settled_after(pool, time))
 

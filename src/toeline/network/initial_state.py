@@ -131,7 +131,7 @@ def _between(below: tuple[float, float], above: tuple[float, float], *, is_halve
 
 
 def _pool_above(network: Network, g: int) -> int:
-    return int(np.searchsorted(network.tables.pools.last_node, network.tables.gates.upstream_node[g]))
+    return int(network.pool_of(network.tables.gates.upstream_node[g]))
 
 
 class _Search:
@@ -179,8 +179,8 @@ class _Search:
         excess = discharge[0] - supply
         if excess > 1e-9:
             left = discharge - excess
-            pool = int(np.searchsorted(self.network.tables.pools.last_node, np.argmax(left < -1e-9) - 1))
-            name = self.network.names.pools[min(pool, len(self.network.names.pools) - 1)]
+            pool = int(self.network.pool_of(np.argmax(left < -1e-9) - 1))
+            name = self.network.names.pools[min(pool, self.network.pool_count - 1)]
             raise DeliveriesExceedInflowError(
                 f"no steady state: the deliveries down to {name}, with losses and escapes, exceed the inflow of "
                 f"{supply:.3f} m3/s"
@@ -237,7 +237,7 @@ class _Search:
         is_brink = node == self.network.node_count - 2 and links.kind[node + 2] == FREE_OVERFALL
         z, flag = upstream_level(self.network.channel, node, below, q, links.point_loss[node + 1], not is_brink)
         if flag != status.OK:
-            pool = int(np.searchsorted(self.network.tables.pools.last_node, node))
+            pool = int(self.network.pool_of(node))
             at = self.network.channel.nodes.chainage[node]
             raise UsageError(
                 f"no calm steady flow of {q:.3f} m3/s in {self.network.names.pools[pool]} at chainage {at:.0f} m: "

@@ -54,7 +54,7 @@ def pool_times(network: Network, level: np.ndarray, discharge: np.ndarray) -> Po
 
     `level` [m] by node and `discharge` [m³/s] by link are those at the start.
     """
-    times = [_times_of_pool(network, p, level, discharge) for p in range(len(network.names.pools))]
+    times = [_times_of_pool(network, p, level, discharge) for p in range(network.pool_count)]
     return PoolTimes(*np.array(times).T)
 
 

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from typing import Any, NamedTuple
 
 import numpy as np
+import numpy.typing as npt
 
 from toeline.hydraulics.gradually_varied_flow import Channel
 from toeline.hydraulics.underflow_gate import UnderflowGate
@@ -194,8 +195,8 @@ class Network:
         by_node[: self.canal_node_count] = factors[self.pool_of(np.arange(self.canal_node_count))]
         self.channel.nodes.roughness = self.clean_roughness * by_node
 
-    def pool_of(self, node: np.ndarray) -> np.ndarray:
-        """Index of the pool of a canal node."""
+    def pool_of(self, node: npt.ArrayLike) -> np.ndarray:
+        """Index of the pool of a canal node; that after the last for a node beyond a tail gate."""
         return np.searchsorted(self.tables.pools.last_node, node)
 
 
