@@ -67,7 +67,9 @@ def test_what_cannot_be_drawn_is_told_and_nothing_is_written(arguments, message,
 def test_another_file_is_no_run(folder, call):
     result = call("figures", "day.toml", "--to", "out")
     assert result.exit_code == 2
-    assert result.stderr == "Error: day.toml is not the file of a run: make one with toeline run.\n"
+    assert result.stderr == (
+        "Error: day.toml is no file of results: run its day first, then name what `toeline run` wrote.\n"
+    )
 
 
 def test_what_stands_is_kept_unless_it_may_be_replaced(folder, call, both_runs):

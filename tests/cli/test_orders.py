@@ -134,7 +134,7 @@ def test_nothing_is_left_half_written(run, folder, call, monkeypatch):
 def test_a_day_file_is_not_taken_for_a_run(folder, call):
     result = call("orders", "day.toml")
     assert (result.exit_code, result.stdout) == (2, "")
-    assert "is no run: run the day first" in result.stderr
+    assert "day.toml is no file of results: run its day first" in result.stderr
 
 
 @pytest.mark.parametrize(

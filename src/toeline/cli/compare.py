@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 import click
 
 from toeline.cli.exit_status import ExitStatus
-from toeline.cli.input_files import INPUT_FILE, is_run, load_plans
+from toeline.cli.input_files import INPUT_FILE, is_run, load_plans, refuse_twice
 from toeline.cli.run import tell_of_compiling
 from toeline.cli.terminal import WIDEST_PAGE, page_width, progress_bar
 from toeline.errors import RunError, UsageError
@@ -143,15 +143,6 @@ def sources_of(files: Sequence[Path], plans: Sequence[str], overrides: Sequence[
         raise UsageError(f"found {found} to compare; allowed: a day with several plans, or several runs.")
     refuse_twice([(source.path, source.plan) for source in sources])
     return sources
-
-
-def refuse_twice(given: Sequence[tuple[Path, str | None]]) -> None:
-    """Raise UsageError where one file, or one plan of a day, is named more than once."""
-    seen: set[tuple[Path, str | None]] = set()
-    for path, plan in given:
-        if (path.resolve(), plan) in seen:
-            raise UsageError(f"{path}{f', plan {plan},' if plan else ''} is named twice: name every run or plan once.")
-        seen.add((path.resolve(), plan))
 
 
 def _sources_in(file: Path, plans: Sequence[str], overrides: Sequence[str]) -> list[Source]:

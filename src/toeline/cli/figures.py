@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 import click
 
-from toeline.cli.input_files import INPUT_FILE, is_run
+from toeline.cli.input_files import INPUT_FILE, refuse_other_than_run
 from toeline.cli.terminal import show
 from toeline.errors import UsageError
 
@@ -62,8 +62,7 @@ def command(
     from toeline.report.figures.files import write_pictures
 
     for path in runs:
-        if not is_run(path):
-            raise UsageError(f"{path} is not the file of a run: make one with toeline run.")
+        refuse_other_than_run(path)
     check_names(wanted, len(runs))
     with ExitStack() as stack:
         pictures = drawn([(path.stem, opened(path, stack)) for path in runs], wanted, at)

@@ -1,4 +1,4 @@
-"""The files that commands are given: which kind one is, and a day loaded for each of its plans."""
+"""The files that commands are given: which kind one is, what is refused, and a day loaded for each of its plans."""
 
 import tomllib
 from collections.abc import Sequence
@@ -22,6 +22,21 @@ def is_run(path: Path) -> bool:
     """Whether the file is a finished or stopped run (NetCDF-4, by its signature)."""
     with path.open("rb") as file:
         return file.read(len(_HDF5_SIGNATURE)) == _HDF5_SIGNATURE
+
+
+def refuse_other_than_run(path: Path) -> None:
+    """Raise UsageError where a file is not that of a run."""
+    if not is_run(path):
+        raise UsageError(f"{path} is no file of results: run its day first, then name what `toeline run` wrote.")
+
+
+def refuse_twice(given: Sequence[tuple[Path, str | None]]) -> None:
+    """Raise UsageError where one file, or one plan of a day, is named more than once."""
+    seen: set[tuple[Path, str | None]] = set()
+    for path, plan in given:
+        if (path.resolve(), plan) in seen:
+            raise UsageError(f"{path}{f', plan {plan},' if plan else ''} is named twice: name every run or plan once.")
+        seen.add((path.resolve(), plan))
 
 
 def is_canal(path: Path) -> bool:

@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 
 import click
 
-from toeline.cli.input_files import INPUT_FILE, is_run
+from toeline.cli.input_files import INPUT_FILE, refuse_other_than_run
 from toeline.cli.option_values import lengths
 from toeline.cli.output_files import file_name, write_together
 from toeline.cli.terminal import note, page_width, show
@@ -85,8 +85,7 @@ def command(
     from toeline.report.order_sheet import order_sheets
     from toeline.results.dataset import damage_told, open_run
 
-    if not is_run(run):
-        raise UsageError(f"{run} is no run: run the day first, look at what goes wrong, then name its file of results.")
+    refuse_other_than_run(run)
     folder = output or Path(f"{run.stem}.orders")
     suffixes = [FORMATS[name] for name in formats or FORMATS]
     with open_run(run) as opened, damage_told(run):

@@ -5,8 +5,7 @@ from pathlib import Path
 
 import click
 
-from toeline.cli.input_files import INPUT_FILE, is_run
-from toeline.errors import UsageError
+from toeline.cli.input_files import INPUT_FILE, refuse_other_than_run, refuse_twice
 
 
 @click.command(short_help="Make one page of HTML from a run, or from several side by side.")
@@ -25,14 +24,13 @@ def command(runs: tuple[Path, ...], output: Path | None, overwrite: bool) -> Non
     Of several runs of one canal, such as two plans of a day, the page lays them side by side. It holds all it needs:
     any browser opens it, without a network.
     """
-    from toeline.cli.compare import refuse_twice, run_names
+    from toeline.cli.compare import run_names
     from toeline.cli.output_files import refuse_page, show_or_write
     from toeline.report.page.document import report_page
     from toeline.results.dataset import open_run
 
     for run in runs:
-        if not is_run(run):
-            raise UsageError(f"{run} is no file of results: name what `toeline run` wrote, such as DAY.nc.")
+        refuse_other_than_run(run)
     refuse_twice([(run, None) for run in runs])
     page = output or Path(f"{runs[0].name.removesuffix('.partial').removesuffix('.nc')}.html")
     refuse_page(page, runs, overwrite)
