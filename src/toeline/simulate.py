@@ -206,9 +206,7 @@ def static_values(network: Network, level: np.ndarray, discharge: np.ndarray) ->
         "gate_upstream_pool": np.array(
             ["head" if up == HEAD else names.pools[node_pool[up]] for up in gates.upstream_node], object
         ),
-        "gate_downstream_pool": np.array(
-            [beside[pool] for pool in network.pool_of(gates.downstream_node)], object
-        ),
+        "gate_downstream_pool": np.array([beside[pool] for pool in network.pool_of(gates.downstream_node)], object),
         "bay": np.array(names.bays, object),
         "bay_gate": np.array(
             [names.gates[g] for g in network.tables.leaves.gate[network.tables.leaves.bay >= 0]], object

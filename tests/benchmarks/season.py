@@ -1,6 +1,6 @@
 """A season in one process, its page at the end: seconds and peak memory of 30, 90 and 180 days, each in its own.
 
-    python -m tests.benchmarks.season
+python -m tests.benchmarks.season
 """
 
 import json

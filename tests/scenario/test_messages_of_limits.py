@@ -19,8 +19,7 @@ CASES = [
     (
         {"source": '""'},
         [
-            '+4 limits[1] source: found ""; allowed: text of one line, 1 to 400 characters, no blanks '
-            "around it",
+            '+4 limits[1] source: found ""; allowed: text of one line, 1 to 400 characters, no blanks around it',
         ],
     ),
     (

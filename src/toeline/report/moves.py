@@ -27,9 +27,7 @@ def move_lines(
         "moves": [str(gate.moves) for gate in gates],
         "by rules": [str(_by_rules(gate)) for gate in gates],
         "an hour": [f"{gate.moves / hours:.1f}" if hours > 0.0 else "-" for gate in gates],
-        "busiest hour": [
-            f"{gate.busiest} from {clock.at(gate.busiest_from)}" if gate.moves else "-" for gate in gates
-        ],
+        "busiest hour": [f"{gate.busiest} from {clock.at(gate.busiest_from)}" if gate.moves else "-" for gate in gates],
         "back and forth": [str(gate.reversals) for gate in gates],
         "travel": [display.length(gate.travel) for gate in gates],
     }
