@@ -15,12 +15,12 @@ def solve_many(tables, nodes, work, solves):
     """Repeat the two so many times; the matrix is that of unit storage and links."""
     for _ in range(solves):
         geometry_pass(tables, nodes, work)
-        pivot = right = 0.0
+        upper = right = 0.0
         for k in range(work.rows.size):
             row = work.rows[k]
-            row.upper = 0.25
-            row.pivot = pivot = 1.0 / (1.0 + 0.25 * pivot * 0.25)
-            row.x = right = 1.0 + 0.25 * pivot * right
+            row.pivot = 1.0 / (1.0 + 0.25 * upper)
+            row.upper = upper = 0.25 * row.pivot
+            row.x = right = (1.0 + 0.25 * right) * row.pivot
         back_substitute(work.rows)
     return work.rows[0].x
 

@@ -146,26 +146,26 @@ def assemble(tables, before, after, work, seconds, head_factor, inertial, forcin
     """
     geometry_pass(tables, after.nodes, work)
     count = after.nodes.size
-    pivot_before = upper_before = x_before = 0.0
+    pivot_before = x_before = 0.0
     for index in range(count + 1):
         q = after.links[index].discharge
         if tables.links[index].kind == REACH:
             left, by_up, by_q, by_down = reach_row(tables, before, after, work, index, seconds, head_factor, inertial)
         else:
             left, by_up, by_q, by_down = boundary_balance(tables, index, after.nodes, q, forcing, work, afresh)
-        row, factor = work.rows[2 * index], by_up * pivot_before
-        row.lower, row.upper = by_up, by_down
-        row.pivot = 1.0 / (by_q - factor * upper_before)
-        row.x = -left - factor * x_before
+        row, swept = work.rows[2 * index], by_q - by_up * seconds * pivot_before
+        row.pivot = 1.0 / swept
+        row.lower, row.upper = by_up, by_down * row.pivot
+        row.x = (-left - by_up * x_before) * row.pivot
         if index == count:
             break
-        node, below, factor = work.nodes[index], work.rows[2 * index + 1], -seconds * row.pivot
-        cell = tables.cells[index].length
+        node, below, cell = work.nodes[index], work.rows[2 * index + 1], tables.cells[index].length
         excess = cell * node.area - node.volume_base - seconds * (q - after.links[index + 1].discharge + node.source)
-        below.lower, below.upper = -seconds, seconds
-        below.pivot = 1.0 / (cell * node.width - seconds * node.source_slope - factor * by_down)
-        below.x = -excess - factor * row.x
-        pivot_before, upper_before, x_before = below.pivot, seconds, below.x
+        # The pivot of the link is multiplied out: its division and the node's do not wait for each other.
+        below.pivot = swept / ((cell * node.width - seconds * node.source_slope) * swept + seconds * by_down)
+        below.lower, below.upper = -seconds, seconds * below.pivot
+        below.x = (seconds * row.x - excess) * below.pivot
+        pivot_before, x_before = below.pivot, below.x
 
 
 @inner_kernel
@@ -174,11 +174,11 @@ def correct(tables, after, work):
     returns the largest change of a level [m] that counts.
     """
     last = after.nodes.size
-    x, largest = work.rows[2 * last].x * work.rows[2 * last].pivot, 0.0
+    x, largest = work.rows[2 * last].x, 0.0
     after.links[last].discharge += x
     for k in range(last - 1, -1, -1):
         node, row, above = after.nodes[k], work.rows[2 * k + 1], work.rows[2 * k]
-        x = (row.x - row.upper * x) * row.pivot
+        x = row.x - row.upper * x
         depth = node.level - tables.channel.nodes[k].bed_level
         most = max(0.5 * depth, 0.05)
         change = max(min(max(x, -most), most), LOWEST_DEPTH - depth)
@@ -188,7 +188,7 @@ def correct(tables, after, work):
         if depth < DRY_DEPTH:
             felt *= min(work.nodes[k].width / tables.cells[k].dry_width, 1.0)
         largest = max(largest, felt)
-        x = (above.x - above.upper * x) * above.pivot
+        x = above.x - above.upper * x
         after.links[k].discharge += x
     return largest
 

@@ -54,7 +54,7 @@ LINK_WORK = np.dtype(
 )
 
 MATRIX_ROW = np.dtype([("pivot", float), ("lower", float), ("upper", float), ("x", float)])
-"""Inverse pivot, coefficients and unknown of a row: link, node, link …"""
+"""Inverse pivot, coefficients and unknown of a row: link, node, link …; see `tridiagonal`."""
 
 FORCING = np.dtype([("value", float), ("rate", float), ("now", float)])
 """At the start of a leg, a second, and at the time of a stage; see network.tables for the order."""

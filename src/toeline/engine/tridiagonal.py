@@ -1,6 +1,7 @@
 """Solution with the factors of a tridiagonal matrix; the factors are made while the matrix is (`step.assemble`).
 
-Row k: lower[k]·x[k−1] + diagonal·x[k] + upper[k]·x[k+1] = right[k]. Rows keep inverse pivots. No pivoting: the matrix
+Row k: lower[k]·x[k−1] + diagonal·x[k] + upper[k]·x[k+1] = right[k]. Rows keep the inverse pivot and, once swept forward,
+upper and x times it, so that the second sweep is one multiplication and one subtraction a row. No pivoting: the matrix
 of storage and links is quasi-definite.
 """
 
@@ -13,13 +14,16 @@ def back_substitute(rows):
     after = 0.0
     for k in range(rows.size - 1, -1, -1):
         row = rows[k]
-        after = (row.x - row.upper * after) * row.pivot
+        after = row.x - row.upper * after
         row.x = after
 
 
 @inner_kernel
 def solve_with_factors(rows):
     """Both sweeps, in place, for another right side in x."""
-    for k in range(1, rows.size):
-        rows[k].x -= rows[k].lower * rows[k - 1].pivot * rows[k - 1].x
+    before = 0.0
+    for k in range(rows.size):
+        row = rows[k]
+        before = (row.x - row.lower * before) * row.pivot
+        row.x = before
     back_substitute(rows)
