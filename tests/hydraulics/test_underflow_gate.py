@@ -9,6 +9,7 @@ from hypothesis import strategies as st
 from toeline.constants import GRAVITY
 from toeline.hydraulics.critical_flow import specific_force
 from toeline.hydraulics.cross_section import area, rectangle, trapezoid
+from toeline.hydraulics.drowned_gate import jet_width
 from toeline.hydraulics.submerged_jump import jet_force
 from toeline.hydraulics.underflow_gate import (
     CLEAR_AND_DROWNED,
@@ -28,7 +29,6 @@ from toeline.hydraulics.underflow_gate import (
     free_jet,
     gate_discharge,
     gate_flow,
-    jet_width,
     modular_limit_depth,
     opening_for_discharge,
 )

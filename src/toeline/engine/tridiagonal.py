@@ -1,8 +1,8 @@
 """Solution with the factors of a tridiagonal matrix; the factors are made while the matrix is (`step.assemble`).
 
-Row k: lower[k]·x[k−1] + diagonal·x[k] + upper[k]·x[k+1] = right[k]. Rows keep the inverse pivot and, once swept forward,
-upper and x times it, so that the second sweep is one multiplication and one subtraction a row. No pivoting: the matrix
-of storage and links is quasi-definite.
+Row k: lower[k]·x[k−1] + diagonal·x[k] + upper[k]·x[k+1] = right[k]. Rows keep the inverse pivot and, once swept
+forward, upper and x times it, so that the second sweep is one multiplication and one subtraction a row. No pivoting:
+the matrix of storage and links is quasi-definite.
 """
 
 from toeline.hydraulics.kernel import inner_kernel

@@ -9,6 +9,7 @@ from typing import NamedTuple
 
 from toeline.constants import GRAVITY
 from toeline.hydraulics.cross_section import BETA, geometry, static_moment
+from toeline.hydraulics.drowned_gate import LIP_CONTACT, drowned_discharge, jet_width
 from toeline.hydraulics.kernel import inner_kernel, kernel
 from toeline.hydraulics.weir import weir_discharge_one_way
 
@@ -28,14 +29,8 @@ BLEND = 0.025
 """Half width of the blended range about the modular limit, in tail depths (choice)."""
 LINEAR_HEAD = 0.01
 """Head [m] below which the discharge falls linearly to zero (choice)."""
-LIP_CONTACT = 0.5
-"""Opening over upstream energy head from which the contraction begins to vanish (choice)."""
 VERY_DROWNED = 0.95
 """Tailwater over headwater, both above the sill, from which the discharge of a drowned gate is poorly known."""
-LEAST_LOSS = 0.3
-"""Least share of the velocity head in the throat that an approach as fast as the throat leaves to be supplied
-(choice).
-"""
 LEAST_HEAD = 1e-6
 """Head over the sill [m] below which nothing passes."""
 LEAST_OPENING = 1e-9
@@ -128,12 +123,6 @@ def _with_approach(gate, head, energy, opening, share):
 
 
 @kernel
-def jet_width(gate):
-    """Width of the jet [m]: the bays, with the site's discharge factor taken as a factor of the jet's area."""
-    return gate.discharge_factor * gate.width
-
-
-@kernel
 def modular_limit_depth(gate, downstream_section, jet, discharge):
     """Tail depth over the floor [m] at which the roller just reaches a free jet of the given thickness: the modular
     limit.
@@ -173,95 +162,6 @@ def _limit_from_above(section, flux, force, start):
         if step < 1e-12 * start:
             break
     return y
-
-
-@inner_kernel
-def _throat_loss(gate, thickness, approach_per_square):
-    """1/(2g(φbh)²) less the approach velocity head, both per Q² [s²/m⁵]."""
-    throat = jet_width(gate) * thickness
-    full = 1.0 / (2.0 * GRAVITY * throat * throat)
-    return max(full - approach_per_square, LEAST_LOSS * full)
-
-
-@kernel
-def drowned_discharge(gate, section, head_depth, tail_depth, energy, opening, lip, approach_per_square):
-    """Discharge [m³/s] and roller depth [m] of a drowned gate: energy to the throat and momentum over the floor
-    together.
-
-    `head_depth` is the headwater over the downstream floor, `energy` the upstream energy head over the sill, `lip` =
-    C_c·a. Where the roller does not reach the lip the throat is the water over the sill (an open throat); a lip that
-    dips into the surface passes no more than an open throat.
-    """
-    if head_depth <= tail_depth:
-        return 0.0, tail_depth
-    critical = energy * 2.0 / 3.0
-    if lip >= critical and not _reaches_lip(gate, section, head_depth, tail_depth, lip, approach_per_square):
-        return _drowned_open_throat(gate, section, head_depth, tail_depth, critical, lip, approach_per_square)
-    discharge, roller = _drowned_under_lip(gate, section, head_depth, tail_depth, lip, approach_per_square)
-    if opening > LIP_CONTACT * energy:
-        most, open_roller = _drowned_open_throat(
-            gate, section, head_depth, tail_depth, critical, math.inf, approach_per_square
-        )
-        if most < discharge:
-            return most, open_roller
-    return discharge, roller
-
-
-@inner_kernel
-def _reaches_lip(gate, section, head_depth, tail_depth, lip, approach_per_square):
-    """Whether the roller of a gate clear of water stands up to its lip: the jet under the lip has less force than the
-    tail.
-    """
-    least = lip + gate.sill_level - gate.floor_level
-    if least >= tail_depth:
-        return False
-    flux = section[BETA] / GRAVITY * (1.0 / (jet_width(gate) * lip) - 1.0 / geometry(section, tail_depth)[0])
-    squared = (head_depth - least) / _throat_loss(gate, lip, approach_per_square)
-    return static_moment(section, least) + flux * squared < static_moment(section, tail_depth)
-
-
-@inner_kernel
-def _drowned_under_lip(gate, section, head_depth, tail_depth, jet, approach_per_square):
-    """Newton in the roller depth from the tail depth down, where the residual is positive and convex."""
-    flux = section[BETA] / GRAVITY * (1.0 / (jet_width(gate) * jet) - 1.0 / geometry(section, tail_depth)[0])
-    loss = _throat_loss(gate, jet, approach_per_square)
-    tail_moment = static_moment(section, tail_depth)
-    least = jet + gate.sill_level - gate.floor_level
-    if flux <= 0.0 or tail_depth <= least:
-        return math.sqrt(max(head_depth - max(tail_depth, least), 0.0) / loss), max(tail_depth, least)
-    ratio = loss / flux
-    low, high, y = least, tail_depth, tail_depth
-    for _ in range(60):
-        residual = head_depth - y - ratio * (tail_moment - static_moment(section, y))
-        if residual > 0.0:
-            high = y
-        else:
-            low = y
-        slope = ratio * geometry(section, y)[0] - 1.0
-        step = residual / slope if slope > 0.0 else math.inf
-        if abs(step) < 1e-12 * tail_depth:
-            break
-        y = y - step if low < y - step <= high else 0.5 * (low + high)
-        if abs(step) < 1e-12 * tail_depth or high - low < 1e-13 * tail_depth:
-            break
-    return math.sqrt(max(head_depth - y, 0.0) / loss), y
-
-
-@inner_kernel
-def _drowned_open_throat(gate, section, head_depth, tail_depth, jet, lip, approach_per_square):
-    """Bisection in the roller depth between critical flow over the sill and the lip or the tailwater."""
-    step = gate.sill_level - gate.floor_level
-    low, high = min(jet + step, tail_depth), min(lip + step, tail_depth)
-    tail_area, tail_moment = geometry(section, tail_depth)[0], static_moment(section, tail_depth)
-    for _ in range(48):
-        y = 0.5 * (low + high)
-        squared = max(head_depth - y, 0.0) / _throat_loss(gate, y - step, approach_per_square)
-        flux = section[BETA] * squared / GRAVITY * (1.0 / (jet_width(gate) * (y - step)) - 1.0 / tail_area)
-        if static_moment(section, y) + flux > tail_moment:
-            high = y
-        else:
-            low = y
-    return math.sqrt(max(head_depth - y, 0.0) / _throat_loss(gate, y - step, approach_per_square)), y
 
 
 @inner_kernel

@@ -11,6 +11,7 @@ from typing import NamedTuple
 import numpy as np
 import xarray as xr
 
+from toeline.hydraulics.drowned_gate import jet_width
 from toeline.hydraulics.gradually_varied_flow import supercritical_profile
 from toeline.hydraulics.jump_location import Jet, drowning_depth, jet_on_floor, protection_margin
 from toeline.hydraulics.underflow_gate import (
@@ -18,7 +19,6 @@ from toeline.hydraulics.underflow_gate import (
     UnderflowGate,
     free_jet,
     gate_flow,
-    jet_width,
     modular_limit_depth,
 )
 from toeline.network.build import network_of
