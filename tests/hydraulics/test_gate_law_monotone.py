@@ -1,5 +1,5 @@
-"""Which way the discharge of a gate goes when a level or the opening rises, for any gate up to lip contact (a =
-E/2).
+"""Which way the discharge of a gate goes, and how fast, when a level or the opening rises, for any gate up to lip
+contact (a = E/2).
 """
 
 from itertools import pairwise
@@ -8,7 +8,12 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from toeline.hydraulics.cross_section import rectangle, trapezoid
-from toeline.hydraulics.underflow_gate import SHARP_EDGE_CONTRACTION, UnderflowGate, gate_discharge
+from toeline.hydraulics.underflow_gate import (
+    SHARP_EDGE_CONTRACTION,
+    UnderflowGate,
+    discharge_and_slopes,
+    gate_discharge,
+)
 
 ROUNDING = 1e-9
 
@@ -97,3 +102,21 @@ def test_as_narrow_as_its_pools():
     section, gate = rectangle(3.0), UnderflowGate(3.0, 0.0, 0.0, 0.0)
     discharges = [gate_discharge(gate, section, section, 2.0, 0.01 * k, 0.9) for k in range(200)]
     assert all(b <= a * (1.0 + ROUNDING) for a, b in pairwise(discharges))
+
+
+@given(sites(), shares, shares)
+def test_slopes_are_the_differences_on_one_side_or_between_both(site, opening, tail):
+    gate, approach, floor, head = site
+    down, opened, step = _tail(gate, head, tail), _opening(head, opening), 1e-6 * head
+    passed, by_up, by_down = discharge_and_slopes(gate, approach, floor, head, down, opened)
+    assert passed == gate_discharge(gate, approach, floor, head, down, opened)
+    for slope, up_share, down_share in ((by_up, 1.0, 0.0), (by_down, 0.0, 1.0)):
+        before, after = (
+            gate_discharge(
+                gate, approach, floor, head + sign * up_share * step, down + sign * down_share * step, opened
+            )
+            for sign in (-1.0, 1.0)
+        )
+        sides = (passed - before) / step, (after - passed) / step
+        allowed = 1e-3 * (abs(slope) + passed / head) + 2.0 * ROUNDING * passed / step
+        assert min(sides) - allowed <= slope <= max(sides) + allowed

@@ -6,7 +6,13 @@ from toeline.constants import GRAVITY
 from toeline.hydraulics.canal_tail import free_overfall_discharge, rating_discharge
 from toeline.hydraulics.gradually_varied_flow import LEAST_CONVEYANCE, link_conveyance
 from toeline.hydraulics.kernel import inner_kernel, kernel
-from toeline.hydraulics.underflow_gate import UnderflowGate, gate_discharge, gate_flow
+from toeline.hydraulics.underflow_gate import (
+    LEVEL_NUDGE,
+    UnderflowGate,
+    discharge_and_slopes,
+    gate_discharge,
+    gate_flow,
+)
 from toeline.hydraulics.uniform_flow import conveyance
 from toeline.network.tables import (
     FORCING_GATES,
@@ -18,9 +24,6 @@ from toeline.network.tables import (
     NORMAL_DEPTH,
     TAIL_LEVEL,
 )
-
-LEVEL_NUDGE = 1e-6
-"""Step [m] of the finite differences of the gate law."""
 
 
 @kernel
@@ -55,18 +58,6 @@ def gate_levels(gate, level, nodes, head_level, tail_level):
 
 
 @inner_kernel
-def leaves_discharge_at(shapes, gate, level_up, level_down, forcing):
-    """Discharge of a gate row [m³/s] with every leaf at its own opening: each passes its share of what the gate would
-    pass with all leaves there.
-    """
-    law, above, beside = law_of(gate), shapes[gate.upstream_section], shapes[gate.downstream_section]
-    total = gate_discharge(law, above, beside, level_up, level_down, leaf_opening(forcing, gate, 0))
-    for k in range(1, gate.leaf_count):
-        total += gate_discharge(law, above, beside, level_up, level_down, leaf_opening(forcing, gate, k))
-    return total / gate.leaf_count
-
-
-@inner_kernel
 def leaf_opening(forcing, gate, k):
     """Opening [m] of leaf k of a gate."""
     return forcing[FORCING_GATES + gate.first_leaf + k].now
@@ -76,16 +67,23 @@ def leaf_opening(forcing, gate, k):
 def gate_balance(shapes, gate, up, down, forcing, q, slopes, afresh):
     """Residual q − Q(levels) of a gate [m³/s] and its derivatives to the level above, q and the level below.
 
-    The derivatives are kept in `slopes`, a row of LINK_WORK, and found anew only `afresh`: over the last small
-    corrections of a stage they hardly change.
+    Every leaf is at its own opening, and passes its share of what the gate would pass with all leaves there. The
+    derivatives are kept in `slopes`, a row of LINK_WORK, and found anew only `afresh`: over the last small corrections
+    of a stage they hardly change.
     """
-    passed = leaves_discharge_at(shapes, gate, up, down, forcing)
+    law, above, beside = law_of(gate), shapes[gate.upstream_section], shapes[gate.downstream_section]
+    passed = by_up = by_down = 0.0
+    for k in range(gate.leaf_count):
+        opening = leaf_opening(forcing, gate, k)
+        if afresh:
+            discharge, slope_up, slope_down = discharge_and_slopes(law, above, beside, up, down, opening)
+            by_up, by_down = by_up + slope_up, by_down + slope_down
+        else:
+            discharge = gate_discharge(law, above, beside, up, down, opening)
+        passed += discharge
     if afresh:
-        above = leaves_discharge_at(shapes, gate, up + LEVEL_NUDGE, down, forcing)
-        below = leaves_discharge_at(shapes, gate, up, down + LEVEL_NUDGE, forcing)
-        slopes.by_up = max(above - passed, 0.0) / LEVEL_NUDGE
-        slopes.by_down = min(below - passed, 0.0) / LEVEL_NUDGE
-    return q - passed, -slopes.by_up, 1.0, -slopes.by_down
+        slopes.by_up, slopes.by_down = by_up / gate.leaf_count, by_down / gate.leaf_count
+    return q - passed / gate.leaf_count, -slopes.by_up, 1.0, -slopes.by_down
 
 
 @inner_kernel

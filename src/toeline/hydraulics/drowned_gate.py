@@ -111,3 +111,24 @@ def _drowned_open_throat(gate, section, head_depth, tail_depth, jet, lip, approa
         else:
             low = y
     return math.sqrt(max(head_depth - y, 0.0) / _throat_loss(gate, y - step, approach_per_square)), y
+
+
+@inner_kernel
+def drowned_slopes(gate, upstream_section, section, headwater_level, tail_depth, thickness, roller, discharge):
+    """Derivatives of the discharge of a drowned gate to headwater and tailwater level [m²/s], from its two equations.
+
+    Holds for a lip clear of the surface and a roller between jet and tailwater. With S = Q², throat loss L and momentum
+    flux F per Q²: S·L = H − y and F·S = M(y_t) − M(y), differentiated together.
+    """
+    area, width, _, _ = geometry(upstream_section, headwater_level - gate.upstream_bed_level)
+    approach = 1.0 / (2.0 * GRAVITY * area * area)
+    loss = _throat_loss(gate, thickness, approach)
+    loss_slope = 2.0 * approach * width / area if loss > LEAST_LOSS * (loss + approach) else 0.0
+    tail_area, tail_width, _, _ = geometry(section, tail_depth)
+    unit_flux = section[BETA] / GRAVITY
+    flux = unit_flux * (1.0 / (jet_width(gate) * thickness) - 1.0 / tail_area)
+    flux_slope = unit_flux * tail_width / (tail_area * tail_area)
+    roller_area, squared = geometry(section, roller)[0], discharge * discharge
+    share = 1.0 / (2.0 * discharge * (loss * roller_area - flux))
+    by_headwater = (1.0 - squared * loss_slope) * roller_area * share
+    return by_headwater, -(tail_area - squared * flux_slope) * share

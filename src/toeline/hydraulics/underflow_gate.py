@@ -9,7 +9,7 @@ from typing import NamedTuple
 
 from toeline.constants import GRAVITY
 from toeline.hydraulics.cross_section import BETA, geometry, static_moment
-from toeline.hydraulics.drowned_gate import LIP_CONTACT, drowned_discharge, jet_width
+from toeline.hydraulics.drowned_gate import LIP_CONTACT, drowned_discharge, drowned_slopes, jet_width
 from toeline.hydraulics.kernel import inner_kernel, kernel
 from toeline.hydraulics.weir import weir_discharge_one_way
 
@@ -36,6 +36,8 @@ LEAST_HEAD = 1e-6
 LEAST_OPENING = 1e-9
 """Opening [m] below which nothing passes."""
 APPROACH_PASSES = 4
+LEVEL_NUDGE = 1e-6
+"""Step [m] of finite differences of discharges to levels."""
 
 
 class UnderflowGate(NamedTuple):
@@ -251,6 +253,56 @@ def gate_discharge(gate, upstream_section, downstream_section, headwater_level, 
     return gate_flow(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening).discharge
 
 
+@kernel
+def discharge_and_slopes(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening):
+    """Discharge of a gate [m³/s] and its derivatives to headwater and tailwater level [m²/s].
+
+    Those of a jet below a lip clear of the surface, free or drowned, by its own equations; all others by differences
+    over a micrometre. The law never falls with the headwater nor rises with the tailwater; what rounding makes of that
+    is left out.
+    """
+    up, down = headwater_level, tailwater_level
+    flow = gate_flow(gate, upstream_section, downstream_section, up, down, opening)
+    if (flow.state != FREE and flow.state != DROWNED) or up - down < LINEAR_HEAD or _lip_is_near(flow, opening):
+        above = gate_discharge(gate, upstream_section, downstream_section, up + LEVEL_NUDGE, down, opening)
+        below = gate_discharge(gate, upstream_section, downstream_section, up, down + LEVEL_NUDGE, opening)
+        by_up, by_down = (above - flow.discharge) / LEVEL_NUDGE, (below - flow.discharge) / LEVEL_NUDGE
+        return flow.discharge, max(by_up, 0.0), min(by_down, 0.0)
+    by_up, by_down = _jet_slopes(gate, upstream_section, downstream_section, up, down, flow)
+    if gate.leakage > 0.0:
+        leaks = _leakage(gate, up, down)
+        by_up += (_leakage(gate, up + LEVEL_NUDGE, down) - leaks) / LEVEL_NUDGE
+        by_down += (_leakage(gate, up, down + LEVEL_NUDGE) - leaks) / LEVEL_NUDGE
+    return flow.discharge, max(by_up, 0.0), min(by_down, 0.0)
+
+
+@inner_kernel
+def _jet_slopes(gate, upstream_section, downstream_section, up, down, flow):
+    """Derivatives of the discharge of a free or drowned jet to the level above and below [m²/s]."""
+    tail_depth, lip = down - gate.floor_level, flow.jet_thickness + gate.sill_level - gate.floor_level
+    if flow.state == DROWNED and flow.underflow < flow.free_discharge and lip < flow.roller_depth < tail_depth:
+        return drowned_slopes(
+            gate, upstream_section, downstream_section, up, tail_depth, flow.jet_thickness, flow.roller_depth,
+            flow.underflow,
+        )  # fmt: skip
+    return _free_slope(gate, upstream_section, up, flow), 0.0
+
+
+@inner_kernel
+def _free_slope(gate, upstream_section, headwater_level, flow):
+    """Derivative of Q = φ·b·h·√(2g(E − h)) to the headwater level [m²/s]; the approach Q²/2gA² follows."""
+    area, width, _, _ = geometry(upstream_section, headwater_level - gate.upstream_bed_level)
+    fall, share = flow.energy_head - flow.jet_thickness, jet_width(gate) * flow.jet_thickness / area
+    still = max(1.0 - share * share, 0.05)
+    return 0.5 * flow.free_discharge / fall * (1.0 - 2.0 * fall * share * share * width / area) / still
+
+
+@inner_kernel
+def _lip_is_near(flow, opening):
+    """Whether the lip is so near to the surface upstream that the contraction vanishes."""
+    return opening > LIP_CONTACT * flow.energy_head
+
+
 @inner_kernel
 def _over_leaf(gate, crest, high, low):
     """Flow over the leaf, scaled linearly to zero over the last centimetre of head as below it."""
@@ -288,7 +340,7 @@ def _quality(gate, flow, headwater_level, tailwater_level, opening, sign):
     drowned = flow.state in (DROWNED, CLEAR_AND_DROWNED)
     if drowned and tailwater_level - gate.sill_level >= VERY_DROWNED * (headwater_level - gate.sill_level):
         return QUALITY_VERY_DROWNED
-    if opening > LIP_CONTACT * flow.energy_head:
+    if _lip_is_near(flow, opening):
         return QUALITY_LIP_NEAR_SURFACE
     return flow.quality
 
