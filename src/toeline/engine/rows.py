@@ -122,5 +122,6 @@ def filled_block(rows: Rows) -> dict[str, np.ndarray]:
     block = {"profile_time": rows.profile_time[:profile_count].copy()}
     by_row = (rows.canal, rows.gates, rows.bays, rows.pools, rows.offtakes, rows.escapes, rows.gauges)
     for table, size in (*((table, count) for table in by_row), (rows.profiles, profile_count)):
-        block |= {name: np.ascontiguousarray(table[:size][name]) for name in table.dtype.names or ()}
+        filled = np.asarray(table[:size])  # plain: a record array looks up every name anew
+        block |= {name: np.ascontiguousarray(filled[name]) for name in table.dtype.names or ()}
     return block
