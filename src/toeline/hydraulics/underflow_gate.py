@@ -135,20 +135,22 @@ def modular_limit_depth(gate, downstream_section, jet, discharge):
     flux = downstream_section[BETA] * discharge * discharge / GRAVITY
     force = static_moment(downstream_section, surface) + flux / (jet_width(gate) * jet)
     y = surface
-    while _tail_force(downstream_section, flux, y) <= force or not _is_subcritical(downstream_section, flux, y):
+    while not _pushes_back(downstream_section, flux, force, y):
         y *= 1.5
     return _limit_from_above(downstream_section, flux, force, y)
-
-
-@inner_kernel
-def _tail_force(section, flux, depth):
-    return static_moment(section, depth) + flux / geometry(section, depth)[0]
 
 
 @inner_kernel
 def _is_subcritical(section, flux, depth):
     area, width, _, _ = geometry(section, depth)
     return flux * width < area * area * area
+
+
+@inner_kernel
+def _pushes_back(section, flux, force, depth):
+    """Whether a tail depth is subcritical and has at least the given force."""
+    area, width, _, _ = geometry(section, depth)
+    return flux * width < area * area * area and static_moment(section, depth) + flux / area >= force
 
 
 @inner_kernel
@@ -176,15 +178,14 @@ def _underflow_one_way(gate, upstream_section, downstream_section, headwater_lev
         return GateFlow(free, free, free, jet, energy, math.nan, math.nan, state, QUALITY_GOOD)
     flux = downstream_section[BETA] * free * free / GRAVITY
     force = static_moment(downstream_section, jet + step) + flux / (jet_width(gate) * jet)
-    above = tail_depth / (1.0 - BLEND)
-    if not _is_subcritical(downstream_section, flux, above) or _tail_force(downstream_section, flux, above) <= force:
+    drowned = _pushes_back(downstream_section, flux, force, tail_depth / (1.0 + BLEND))
+    if not drowned and not _pushes_back(downstream_section, flux, force, tail_depth / (1.0 - BLEND)):
         return GateFlow(free, free, free, jet, energy, math.nan, math.nan, state, QUALITY_GOOD)
-    below, head_depth = tail_depth / (1.0 + BLEND), headwater_level - gate.floor_level
+    head_depth = headwater_level - gate.floor_level
     approach = (energy - (headwater_level - gate.sill_level)) / (free * free)
-    drowned = _is_subcritical(downstream_section, flux, below) and _tail_force(downstream_section, flux, below) >= force
     limit, depth = math.nan, tail_depth
     if not drowned:
-        limit = _limit_from_above(downstream_section, flux, force, above)
+        limit = _limit_from_above(downstream_section, flux, force, tail_depth / (1.0 - BLEND))
         depth = min((1.0 + BLEND) * limit, energy + step)
     q, roller = drowned_discharge(gate, downstream_section, head_depth, depth, energy, opening, lip, approach)
     q = min(q, free)
