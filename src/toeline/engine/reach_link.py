@@ -4,8 +4,18 @@ import math
 
 from toeline.constants import GRAVITY
 from toeline.hydraulics.cross_section import ALPHA, geometry
-from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH, LEAST_CONVEYANCE, WET_DEPTH, calm_share, link_conveyance
+from toeline.hydraulics.gradually_varied_flow import (
+    CALM_FROUDE,
+    DRY_DEPTH,
+    LEAST_CONVEYANCE,
+    WET_DEPTH,
+    calm_share,
+    link_conveyance,
+)
 from toeline.hydraulics.kernel import inner_kernel
+
+VELOCITY_HEAD = 0.5 / GRAVITY
+"""1/2g [s²/m], and a multiplication where a division would stand."""
 
 CONVECTIVE_TIME = 20.0
 """Time [s] in which the convective head follows the flow; from 5 s on nothing below a widening grows (choice)."""
@@ -47,7 +57,7 @@ def convective_time(inertial):
 @inner_kernel
 def convective_target(share, discharge, inverse_up, inverse_down):
     """Difference of velocity heads [m] that the convective head tends to: σ·Q²/2g·(α/A_i² − α/A_{i+1}²)."""
-    return share * discharge * discharge / (2.0 * GRAVITY) * (inverse_up - inverse_down)
+    return share * discharge * discharge * VELOCITY_HEAD * (inverse_up - inverse_down)
 
 
 @inner_kernel
@@ -78,7 +88,7 @@ def reach_balance(
         loss, loss_up, loss_down = loss + local, loss_up + local_up, loss_down + local_down
     if min(depth_up, depth_down) < DRY_DEPTH:
         return _dry_balance(level_up - level_down + head_base, loss, loss_up, loss_down, q)
-    flux, half = q * abs(q), head_share * q / (2.0 * GRAVITY)
+    flux, half = q * abs(q), head_share * q * VELOCITY_HEAD
     difference = up.inverse_area - down.inverse_area
     drive = level_up - level_down + head_base + half * q * difference
     size = abs(q)
@@ -118,11 +128,16 @@ def _local_losses(point_loss, transition_loss, up, down):
 
 @inner_kernel
 def convective_share(up, down, q):
-    """Weight σ of the convective head: 1 up to Fr 0.9, 0 from Fr 1 on, by the faster of both ends."""
-    head = q * q / GRAVITY
-    froude_up = head * up.inverse_area * up.width / up.area
-    froude_down = head * down.inverse_area * down.width / down.area
-    return calm_share(max(froude_up, froude_down))
+    """Weight σ of the convective head: 1 up to Fr 0.9, 0 from Fr 1 on, by the faster of both ends.
+
+    With Fr² = flux/A; calm flow, nearly all there is, is told without a division.
+    """
+    flux_up = 2.0 * VELOCITY_HEAD * q * q * up.inverse_area * up.width
+    flux_down = 2.0 * VELOCITY_HEAD * q * q * down.inverse_area * down.width
+    calm = CALM_FROUDE * CALM_FROUDE
+    if flux_up <= calm * up.area and flux_down <= calm * down.area:
+        return 1.0
+    return calm_share(max(flux_up / up.area, flux_down / down.area))
 
 
 @inner_kernel

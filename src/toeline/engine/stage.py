@@ -214,6 +214,7 @@ def solve_stage(tables, before, after, work, seconds, head_factor, inertial, for
 @inner_kernel
 def finish_stage(tables, before, after, work, seconds, head_factor, inertial, forcing):
     """Rates and volumes of a solved stage; areas follow the last correction to first order."""
+    pull = 1.0 / convective_time(inertial)
     set_sources(tables, after, forcing, work)
     for k in range(after.nodes.size):
         node, scratch, change = after.nodes[k], work.nodes[k], work.rows[2 * k + 1].x
@@ -231,7 +232,7 @@ def finish_stage(tables, before, after, work, seconds, head_factor, inertial, fo
             before.links[index].convective_share, link.discharge, up.inverse_area, down.inverse_area
         )
         link.convective_head = work.links[index].convective_base + head_factor * target
-        link.convective_rate = (target - link.convective_head) / convective_time(inertial)
+        link.convective_rate = (target - link.convective_head) * pull
         link.mean_area = 0.5 * (up.area + down.area)
         link.source_area = source_area(before.links[index].discharge, up, down)
         if inertial:

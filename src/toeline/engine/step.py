@@ -67,18 +67,19 @@ def momentum_rate(link):
 
 
 @inner_kernel
-def base_of_middle(before, work, seconds, scale):
+def base_of_middle(before, work, seconds, scale, inertial):
     """What the stage at γh starts from."""
     for k in range(before.nodes.size):
         work.nodes[k].volume_base = before.nodes[k].volume + seconds * before.nodes[k].net_inflow
     for k in range(1, before.nodes.size):
         link = before.links[k]
         work.links[k].convective_base = scale * (link.convective_head + seconds * link.convective_rate)
-        work.links[k].momentum_base = momentum_rate(link)
+        if inertial:
+            work.links[k].momentum_base = momentum_rate(link)
 
 
 @inner_kernel
-def base_of_end(before, middle, work, weight, scale):
+def base_of_end(before, middle, work, weight, scale, inertial):
     """What the stage at the end of the step starts from; `weight` = w·h."""
     for k in range(before.nodes.size):
         work.nodes[k].volume_base = before.nodes[k].volume + weight * (
@@ -88,7 +89,8 @@ def base_of_end(before, middle, work, weight, scale):
         link, inner = before.links[k], middle.links[k]
         rate = link.convective_rate + inner.convective_rate
         work.links[k].convective_base = scale * (link.convective_head + weight * rate)
-        work.links[k].momentum_base = WEIGHT / DIAGONAL * (momentum_rate(link) + momentum_rate(inner))
+        if inertial:
+            work.links[k].momentum_base = WEIGHT / DIAGONAL * (momentum_rate(link) + momentum_rate(inner))
 
 
 @inner_kernel
@@ -101,13 +103,13 @@ def try_step(tables, before, middle, after, work, forcing, start, h, inertial):
     seconds = DIAGONAL * h
     scale = 1.0 / (1.0 + seconds / convective_time(inertial))
     head_factor = 1.0 - scale
-    base_of_middle(before, work, seconds, scale)
+    base_of_middle(before, work, seconds, scale, inertial)
     set_forcing(forcing, start + GAMMA * h)
     predict(tables, before, middle, GAMMA * h)
     first = solve_stage(tables, before, middle, work, seconds, head_factor, inertial, forcing)
     if first == 0:
         return 0, math.inf
-    base_of_end(before, middle, work, WEIGHT * h, scale)
+    base_of_end(before, middle, work, WEIGHT * h, scale, inertial)
     set_forcing(forcing, start + h)
     extrapolate(tables, before, middle, after, h)
     second = solve_stage(tables, before, after, work, seconds, head_factor, inertial, forcing)
@@ -119,11 +121,11 @@ def try_step(tables, before, middle, after, work, forcing, start, h, inertial):
 @inner_kernel
 def step_error(tables, before, middle, after, work, h):
     """Largest error of a level [m] by the embedded third-order formula, filtered through the stage's factors."""
-    rows = work.rows
+    rows, third = work.rows, h / 3.0
     rows[rows.size - 1].x = 0.0
     for k in range(after.nodes.size):
         rows[2 * k].x = 0.0
-        rows[2 * k + 1].x = (h / 3.0) * (
+        rows[2 * k + 1].x = third * (
             (4.0 * WEIGHT - 1.0) * before.nodes[k].net_inflow
             - middle.nodes[k].net_inflow
             + 2.0 * DIAGONAL * after.nodes[k].net_inflow
@@ -131,8 +133,10 @@ def step_error(tables, before, middle, after, work, h):
     solve_with_factors(rows)
     largest = 0.0
     for k in range(after.nodes.size):
-        felt = min(after.nodes[k].width / tables.cells[k].dry_width, 1.0)
-        largest = max(largest, abs(rows[2 * k + 1].x) * felt)
+        felt, width, dry_width = abs(rows[2 * k + 1].x), after.nodes[k].width, tables.cells[k].dry_width
+        if width < dry_width:
+            felt *= width / dry_width
+        largest = max(largest, felt)
     return largest
 
 
@@ -216,6 +220,7 @@ def accept(tables, state, middle, after, work, totals, h):
     add_up(totals.delivery, state.delivery, middle.delivery, after.delivery, h)
     add_up(totals.escape, state.escape, middle.escape, after.escape, h)
     add_up(totals.loss, state.loss, middle.loss, after.loss, h)
+    regain = h / (h + convective_time(False))
     for k in range(state.nodes.size):
         state.nodes[k] = after.nodes[k]
     for index in range(state.links.size):
@@ -223,8 +228,8 @@ def accept(tables, state, middle, after, work, totals, h):
         if tables.links[index].kind == REACH:
             link, calm = state.links[index], calm_share(tables, state, work, index)
             link.source_area = source_area(link.discharge, work.nodes[index - 1], work.nodes[index])
-            regained = (calm - link.convective_share) * h / (h + convective_time(False))
-            link.convective_share = min(calm, link.convective_share + regained)
+            share = link.convective_share
+            link.convective_share = min(calm, share + regain * (calm - share))
 
 
 @inner_kernel
