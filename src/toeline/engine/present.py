@@ -65,11 +65,11 @@ class PresentCanal:
 
     def opening(self, gate: str) -> float:
         leaves = self.leaves[gate]
-        return sum(leaf.opening for leaf in leaves) / len(leaves)
+        return leaves[0].opening if len(leaves) == 1 else sum(leaf.opening for leaf in leaves) / len(leaves)
 
     def ordered_opening(self, gate: str) -> float:
         leaves = self.leaves[gate]
-        return sum(leaf.ordered for leaf in leaves) / len(leaves)
+        return leaves[0].ordered if len(leaves) == 1 else sum(leaf.ordered for leaf in leaves) / len(leaves)
 
     def discharge(self, gate: str) -> float:
         return float(self._discharge[self._links[self._gates[gate]]])

@@ -6,6 +6,7 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 from datetime import datetime
 from enum import Enum
+from functools import cached_property
 from types import SimpleNamespace
 from typing import ClassVar, Protocol
 
@@ -179,7 +180,7 @@ class Rule(ABC):
         """Whether the water below the gate stands higher, so that opening it would let more come back."""
         return now.tailwater_level(self.gate) > now.headwater_level(self.gate)
 
-    @property
+    @cached_property
     def gate(self) -> str:
         """The gate that the rule moves."""
         name = self.gate_of(self.given, self.canal)

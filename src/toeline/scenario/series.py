@@ -23,6 +23,8 @@ class Series:
 
     def at(self, ms: int) -> float:
         """Give the value at a time [ms from the start]; at a step it is the new value."""
+        if self.values.size == 1:
+            return float(self.values[0])
         if self.shape == "lines":
             return float(np.interp(ms, self.times, self.values))
         index = int(np.searchsorted(self.times, ms, side="right")) - 1
