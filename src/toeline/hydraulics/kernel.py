@@ -23,7 +23,15 @@ config: Any = numba.config
 P = ParamSpec("P")
 R = TypeVar("R")
 
-_FLAGS: dict[str, Any] = {"error_model": "numpy", "nogil": True, "fastmath": False, "_nrt": False}
+_OPTIONS: dict[str, Any] = {
+    "nopython": True,
+    "error_model": "numpy",
+    "nogil": True,
+    "fastmath": False,
+    "boundscheck": None,
+    "no_cfunc_wrapper": True,
+    "_nrt": False,
+}
 """`_nrt`: kernels allocate nothing, so that numba need not count references (measured: a run takes half the time)."""
 
 _SOURCES = ("hydraulics/*.py", "engine/*.py", "network/tables.py", "constants.py")
@@ -32,7 +40,7 @@ _SOURCES = ("hydraulics/*.py", "engine/*.py", "network/tables.py", "constants.py
 
 def _source_digest() -> str:
     package = Path(__file__).resolve().parent.parent
-    digest = hashlib.sha256(f"{numba.__version__} {sys.version} {sorted(_FLAGS.items())}".encode())
+    digest = hashlib.sha256(f"{numba.__version__} {sys.version} {sorted(_OPTIONS.items())}".encode())
     digest.update(str(config.BOUNDSCHECK).encode())
     for pattern in _SOURCES:
         for source in sorted(package.glob(pattern)):
@@ -71,8 +79,7 @@ def kernel(function: Callable[P, R]) -> Callable[P, R]:
     """Compile a function of scalars, arrays and named tuples; the plain function where NUMBA_DISABLE_JIT is set."""
     if config.DISABLE_JIT:
         return function
-    options = {**_FLAGS, "nopython": True, "boundscheck": None, "no_cfunc_wrapper": True}
-    compiled = _Kernel(py_func=function, targetoptions=options)
+    compiled = _Kernel(py_func=function, targetoptions=_OPTIONS)
     compiled.inner = inner_kernel(function)
     if FOLDER is not None:
         compiled._cache = KernelCache(FOLDER, f"{function.__module__.removeprefix('toeline.')}.{function.__name__}")
@@ -83,9 +90,10 @@ def inner_kernel(function: Callable[P, R]) -> Callable[P, R]:
     """A `kernel` that only kernels call: nothing is made for calls from Python, and no machine code but inside its
     callers (measured: nearly half of the compile time).
     """
-    without_faces = {"no_cpython_wrapper": True, "no_cfunc_wrapper": True, "pipeline_class": InnerCompiler}
-    compiled: Callable[P, R] = numba.njit(**_FLAGS, **without_faces)(function)
-    return compiled
+    if config.DISABLE_JIT:
+        return function
+    options = _OPTIONS | {"no_cpython_wrapper": True}
+    return CPUDispatcher(py_func=function, targetoptions=options, pipeline_class=InnerCompiler)
 
 
 def is_compiled(kernel_name: str) -> bool:
