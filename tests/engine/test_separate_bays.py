@@ -108,3 +108,23 @@ def test_rule_moves_all_bays_alike(tmp_path):
     assert run.gate_discharge[-1, 0] == pytest.approx(6.0, rel=0.05)
     assert np.abs(moved[:, 0] - moved[:, 1]).max() == 0.0
     assert set(run.order_bay.values.tolist()) == {1, 2}
+
+
+def test_a_stuck_bay_refuses_its_orders_and_the_other_moves(tmp_path):
+    stuck = [{"gate": "G0", "bay": 2, "from": "00:30", "until": "01:30"}]
+    orders = [order("01:00", "G0", by=0.1), order("01:30", "G0", bay=2, by=0.1)]
+    run = run_of(tmp_path, plans={"only": {"orders": orders, "stuck": stuck}})
+    assert (run.bay_opening[-1] - run.bay_opening[0]).values == pytest.approx([0.1, 0.1, 0.0, 0.0])
+    assert run.order_bay.values.tolist() == [1, 2, 2]
+    assert run.order_reason.values.tolist() == ["", "the leaf is stuck for another 30 min", ""]
+
+
+def test_under_a_rule_the_other_bays_make_up_for_a_stuck_one(tmp_path):
+    """Bay 2 stands at 0.50 m until 02:00: bay 1 gives twice what the gate needs, and both stand alike afterwards."""
+    rule = {"kind": "gatekeeper rounds", "gate": "G0", "target": 0.0, "step": 0.04}
+    stuck = [{"gate": "G0", "bay": 2, "from": "00:30", "until": "02:00"}]
+    plan = {"rules": [rule | {"visits": ["01:00", "02:30"]}], "stuck": stuck}
+    run = run_of(tmp_path, openings={"G0": 0.5, "G1": 0.5}, plans={"only": plan})
+    moves = run.bay_opening.sel(time=run.time[[70, 179]], bay=["G0, bay 1", "G0, bay 2"])
+    assert moves.values == pytest.approx(np.array([[0.58, 0.50], [0.58, 0.58]]))
+    assert run.order_reason.values.tolist() == ["", ""]

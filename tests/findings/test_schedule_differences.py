@@ -156,9 +156,13 @@ def test_rules_and_stuck_leaves_that_differ_are_found_by_kind_and_gate():
     rule = {"kind": "hold upstream level", "gate": "Mill check", "band": 0.02, "every": 300.0}
     measured = {"hold upstream level": {"band": "length", "every": "duration"}}
     first = run_of(settings={"rules": [rule], "rule_dimensions": measured})
-    stuck = [{"gate": "Mill check", "begin": 0, "end": 60_000}]
+    stuck = [
+        {"gate": "Mill check", "begin": 0, "end": 60_000, "bay": 0},
+        {"gate": "Mill check", "begin": 0, "end": 90_000, "bay": 2},
+    ]
     other = run_of(settings={"rules": [rule | {"band": 0.03}], "stuck": stuck, "rule_dimensions": measured})
     assert schedule_difference(first, other).beside_orders == (
         InputDifference(("rules", "hold upstream level", "Mill check", "band"), 0.02, 0.03, "length"),
         InputDifference(("stuck", "Mill check"), None, [[0, 60_000]], None),
+        InputDifference(("stuck", "Mill check, bay 2"), None, [[0, 90_000]], None),
     )

@@ -1,4 +1,4 @@
-"""Every message for a fault in orders to bays and in their openings at the start."""
+"""Every message for a fault in orders to bays, in stuck bays, and in their openings at the start."""
 
 from pathlib import Path
 
@@ -36,6 +36,21 @@ def test_message(folder, is_separate, old, new, message):
     found = folder.messages()
     assert len(found) == 1
     assert message in found[0]
+
+
+@pytest.mark.parametrize(
+    ("is_separate", "message"),
+    [
+        (True, 'bay: found 3; allowed: 1 to 2, the bays of "Upper check"'),
+        (False, 'bay: not used with "Upper check", whose bays move together; separate_bays = true in the canal file'),
+    ],
+)
+def test_message_of_a_stuck_bay(folder, is_separate, message):
+    if is_separate:
+        folder.replace("canal.toml", BAYS, f"{BAYS}\nseparate_bays = true")
+    stuck = '{ gate = "Upper check", bay = 3, from = "06:00", until = "07:00" }'
+    folder.replace("day.toml", "[plans.proposed]\n", f"[plans.proposed]\nstuck = [{stuck}]\n")
+    assert folder.messages() == [f"day.toml:28: plans proposed stuck[1] {message}"]
 
 
 def test_a_bay_of_too_many_digits_in_a_file_of_orders(folder):

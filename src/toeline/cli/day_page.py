@@ -79,7 +79,7 @@ def _water_row(name: str, series: "Series", write: Callable[[float], str]) -> tu
 
 def _stuck_words(stuck: "Stuck", start: datetime) -> str:
     begin, end = (later(start, moment / 1000) for moment in (stuck.begin, stuck.end))
-    return f"{stuck.gate} is stuck from {clock_text(begin, start)} to {clock_text(end, start)}."
+    return f"{stuck.place} is stuck from {clock_text(begin, start)} to {clock_text(end, start)}."
 
 
 def _order_row(order: "Order", scenario: "Scenario") -> tuple[str, ...]:

@@ -92,13 +92,17 @@ class GateMotion:
 
     def halt_if_stuck(self, time: int) -> None:
         """End a move that a stuck leaf does not let go on."""
-        if not self.is_moving or self._stuck_until(time) is None:
+        if not self.is_moving or not self.is_stuck(time):
             return
         self.target = self.ordered = self.opening
         if self.current is not None:
             self.current.status, self.current.after = TRIMMED, self.opening
             self.current.reason = _joined(self.current.reason, f"the leaf stuck at an opening of {self.opening:.3f} m")
         self._finish(time)
+
+    def is_stuck(self, time: int) -> bool:
+        """Whether the leaf cannot be moved at a time [ms]."""
+        return self._stuck_until(time) is not None
 
     def remaining(self, time: int) -> int:
         """Time [ms] for which the leaf still moves."""

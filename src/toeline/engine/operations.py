@@ -38,7 +38,8 @@ class Operations:
 
     def _motion(self, g: int, bay: int, opening: float) -> GateMotion:
         gate, marks = self.timetable.gates[g], self.timetable.marks[g]
-        return GateMotion(gate, opening, marks, [one for one in self.timetable.stuck if one.gate == gate.name], bay)
+        stuck = [one for one in self.timetable.stuck if one.gate == gate.name and one.bay in (0, bay)]
+        return GateMotion(gate, opening, marks, stuck, bay)
 
     def begin(self, end: dict[str, np.ndarray] | None = None) -> None:
         """Make the rules for the state at the start; go on from the end state of the run before, if there was one."""
@@ -121,11 +122,16 @@ class Operations:
             self._note(motion.order(time, order.kind, order.value, wanted, note), opening, motion)
 
     def _move(self, gate: str, kind: str, wanted: float) -> tuple[OrderRecord | None, bool]:
-        """Have all leaves of a gate carry out what a rule wants."""
+        """Have the leaves of a gate carry out the mean opening [m] that a rule wants: those that move make up for what
+        a stuck one beside them lacks.
+        """
+        time, leaves = self.present.time_ms, self.leaves[gate]
+        moved = [motion for motion in leaves if not motion.is_stuck(time)] or leaves
+        lacking = sum(wanted - motion.ordered for motion in leaves if motion not in moved) / len(moved)
         done, is_limited = None, False
-        for motion in self.leaves[gate]:
+        for motion in moved:
             opening = motion.opening
-            record, is_held_back = motion.propose(self.present.time_ms, kind, wanted)
+            record, is_held_back = motion.propose(time, kind, wanted + lacking)
             if record is not None:
                 self._note(record, opening, motion)
             done, is_limited = done or record, is_limited or is_held_back

@@ -44,7 +44,7 @@ def input_differences(first: xr.Dataset, other: xr.Dataset) -> list[InputDiffere
 
 
 def plan_differences(first: xr.Dataset, other: xr.Dataset) -> list[InputDifference]:
-    """What differs in the plans beside their orders: rules by kind and gate, and spells of stuck leaves by gate.
+    """What differs in the plans beside their orders: rules by kind and gate, and spells of stuck leaves by gate or bay.
 
     Durations of rules are in s, the spells [begin, end] in ms from the start of the period.
     """
@@ -71,7 +71,8 @@ def _rules(settings: Mapping[str, Any]) -> dict[str, dict[str, Any]]:
 def _stuck(settings: Mapping[str, Any]) -> dict[str, list[list[int]]]:
     spells: dict[str, list[list[int]]] = {}
     for spell in settings.get(STUCK, []):
-        spells.setdefault(spell["gate"], []).append([spell["begin"], spell["end"]])
+        place = f"{spell['gate']}, bay {spell['bay']}" if spell.get("bay") else spell["gate"]
+        spells.setdefault(place, []).append([spell["begin"], spell["end"]])
     return spells
 
 

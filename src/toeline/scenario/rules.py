@@ -23,8 +23,16 @@ class RuleChoice:
 
 @dataclass(frozen=True)
 class Stuck:
-    """A gate whose leaf cannot be moved from a time until before another [ms from the start]."""
+    """A gate, or a bay of it (from 1; 0 for all), that cannot be moved from a time until before another [ms from the
+    start].
+    """
 
     gate: str
     begin: int
     end: int
+    bay: int = 0
+
+    @property
+    def place(self) -> str:
+        """The gate, and the bay where it is one alone."""
+        return f"{self.gate}, bay {self.bay}" if self.bay else self.gate

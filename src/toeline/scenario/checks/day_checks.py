@@ -130,16 +130,17 @@ def misfits_of_orders(orders: list[Order], canal: Canal) -> Iterator[Misfit]:
             message = f"found {shown(order.gate)}, which is no gate of the canal; {nearest(order.gate, gates)}"
             yield Misfit((index, "gate"), message)
             continue
-        yield from _misfits_of_bay(index, order, gates[order.gate])
+        yield from misfits_of_bay(index, order.bay, gates[order.gate])
         bays = {order.bay} if order.bay else set(range(gates[order.gate].bays + 1))
         if any((order.at, order.gate, bay) in seen for bay in bays):
             yield Misfit((index, "at"), f"{shown(order.gate)} already has an order for that time")
         seen |= {(order.at, order.gate, bay) for bay in bays | {0}}
 
 
-def _misfits_of_bay(index: int, order: Order, gate: Gate) -> Iterator[Misfit]:
-    if order.bay and not gate.separate_bays:
+def misfits_of_bay(index: int, bay: int, gate: Gate) -> Iterator[Misfit]:
+    """Find a bay (0 for all) that does not move apart, or that the gate does not have."""
+    if bay and not gate.separate_bays:
         message = f"not used with {shown(gate.name)}, whose bays move together; separate_bays = true in the canal file"
         yield Misfit((index, "bay"), message)
-    elif order.bay > gate.bays:
-        yield Misfit((index, "bay"), f"found {order.bay}; allowed: 1 to {gate.bays}, the bays of {shown(gate.name)}")
+    elif bay > gate.bays:
+        yield Misfit((index, "bay"), f"found {bay}; allowed: 1 to {gate.bays}, the bays of {shown(gate.name)}")

@@ -7,6 +7,7 @@ from toeline.rules.base import CanalFacts
 from toeline.rules.decision_times import overlap
 from toeline.rules.registry import UnknownRuleError
 from toeline.scenario.canal_facts import canal_facts
+from toeline.scenario.checks.day_checks import misfits_of_bay
 from toeline.scenario.misfits import Misfit, nearest, shown
 from toeline.scenario.rules import RuleChoice
 from toeline.scenario.schema.canal import Canal
@@ -59,9 +60,11 @@ def _unknown_places(rule: RuleChoice, facts: CanalFacts) -> Iterator[Misfit]:
 
 
 def misfits_of_stuck(stuck: Sequence[StuckEntry], canal: Canal) -> Iterator[Misfit]:
-    """Find gates that the canal does not have; paths begin with the index of the entry."""
-    gates = [gate.name for gate in canal.gates]
+    """Find gates and bays that the canal does not have; paths begin with the index of the entry."""
+    gates = {gate.name: gate for gate in canal.gates}
     for index, entry in enumerate(stuck):
         if entry.gate not in gates:
             hint = nearest(entry.gate, gates)
             yield Misfit((index, "gate"), f"found {shown(entry.gate)}, which is no gate of the canal; {hint}")
+        else:
+            yield from misfits_of_bay(index, entry.bay or 0, gates[entry.gate])

@@ -18,6 +18,8 @@ from toeline.scenario.schema.toml_json_schema import TomlJsonSchema
 from toeline.scenario.schema.value_kinds import Moment, Quantity, ValueKind, WholeNumber
 from toeline.units import UnitSystem
 
+Bay = Annotated[int, WholeNumber(1, 50)]
+
 _ACTIONS = ("opening", "by", "discharge")
 MOST_DIGITS = 9
 """Digits of a cell that is read as a whole number; a longer one is told as it stands."""
@@ -30,9 +32,7 @@ class OrderEntry(Table):
 
     at: Annotated[int, Moment(before_end=True)] = Field(description="When the gate begins to move.")
     gate: Name = Field(description="Name of the gate.")
-    bay: Annotated[int, WholeNumber(1, 50)] | None = Field(
-        None, description="Bay that moves, of a gate with separate_bays. Left out: all bays."
-    )
+    bay: Bay | None = Field(None, description="Bay that moves, of a gate with separate_bays. Left out: all bays.")
     opening: SizeOrZero | None = Field(None, description="The opening to have.")
     by: Annotated[float, Quantity("length", least=-1000.0, most=1000.0)] | None = Field(
         None, description="The change from the opening last ordered; negative closes."
@@ -105,6 +105,7 @@ class StuckEntry(Table):
     """A leaf that cannot be moved for a time: orders to it are refused."""
 
     gate: Name = Field(description="Name of the gate.")
+    bay: Bay | None = Field(None, description="Bay that sticks, of a gate with separate_bays. Left out: all bays.")
     begin: Annotated[int, Moment()] = Field(alias="from", description="When it sticks; a move under way ends there.")
     until: Annotated[int, Moment()] = Field(description="When it can be moved again.")
 
@@ -114,7 +115,7 @@ class StuckEntry(Table):
 
     def stuck(self) -> Stuck:
         """Give the spell."""
-        return Stuck(self.gate, self.begin, self.until)
+        return Stuck(self.gate, self.begin, self.until, self.bay or 0)
 
 
 def _cell(key: str, cell: str) -> Any:
