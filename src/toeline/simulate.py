@@ -107,7 +107,7 @@ def ready(scenario: Scenario) -> tuple[Network, Timetable, Start | dict[str, np.
 
     Raises ScenarioError or UsageError where the day cannot start as asked.
     """
-    network = network_of(scenario.canal, scenario.day.period.spacing)
+    network = network_of(scenario.canal, scenario.day.period.spacing, scenario.day.losses.seepage)
     timetable = timetable_of(scenario, network)
     check_mild(scenario, timetable)
     return network, timetable, start_of(scenario, network, timetable)

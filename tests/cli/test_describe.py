@@ -86,9 +86,11 @@ def test_weather_and_orders_to_bays_are_described(tmp_path, call):
         canal.read_text().replace("bays = 1\nbay_width = 2.6", "bays = 2\nseparate_bays = true\nbay_width = 1.3")
     )
     text = day.read_text().replace('gate = "Upper check", by = 0.06', 'gate = "Upper check", bay = 2, by = 0.06')
-    day.write_text(text + '\n[losses]\nrain = [["00:00", 0.0], ["12:00", "20 mm/h"]]\n')
+    losses = 'rain = [["00:00", 0.0], ["12:00", "20 mm/h"]]\nseepage = { "Lower pool" = 40.0 }'
+    day.write_text(f"{text}\n[losses]\n{losses}\n")
     page = " ".join(call("describe", str(day)).stdout.split())
     assert "rain 0.0 mm/day 0.0 mm/day 480.0 mm/day" in page
+    assert "seepage, Lower pool 40.0 mm/day 40.0 mm/day 40.0 mm/day" in page
     assert "07:45 Upper check, bay 2 open by 0.06 m" in page
     assert "2 of 1.30 m, separate" in call("describe", str(canal)).stdout
 

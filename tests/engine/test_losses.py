@@ -45,6 +45,22 @@ def test_rain_and_evaporation_of_the_day_go_before_those_of_the_canal(tmp_path):
     assert run.pool_loss_volume[-1, 0] == pytest.approx(10.0 - 120.0, rel=1e-3)
 
 
+def test_seepage_of_the_day_goes_before_that_of_canal_and_surface(tmp_path):
+    """9 m of wetted perimeter over 1 km at 50 mm/day: 450 m³ a day, whatever lies on the bed."""
+    surfaces = {"lining": {"protected": False, "seepage": "40 mm/day"}}
+    measured = {"seepage": {"P0": "50 mm/day"}}
+    run = still_pool(tmp_path, {"seepage": "400 mm/day"}, measured, surfaces=surfaces)
+    assert run.pool_losses[0, 0] == pytest.approx(450.0 / DAY, rel=1e-4)
+    assert run.pool_loss_volume[-1, 0] == pytest.approx(112.5, rel=1e-3)
+
+
+def test_pools_that_the_day_does_not_name_seep_as_the_canal_says(tmp_path):
+    canal = stepped_canal(2, 1500.0, losses={"seepage": "400 mm/day"})
+    plain = simulate(scenario_of(tmp_path, canal, day(8.0, length="1 h")))
+    relined = simulate(scenario_of(tmp_path, canal, day(8.0, length="1 h", losses={"seepage": {"P1": 0.0}})))
+    assert relined.pool_losses[0].values == pytest.approx([float(plain.pool_losses[0, 0]), 0.0], rel=1e-3)
+
+
 def test_canal_gives_the_weather_where_the_day_does_not(tmp_path):
     run = still_pool(tmp_path, {"evaporation": "8 mm/day", "rain": "2 mm/day"})
     assert run.pool_losses[0, 0] == pytest.approx(30.0 / DAY, rel=1e-4)

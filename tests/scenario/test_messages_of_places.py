@@ -62,3 +62,10 @@ def test_weather_of_the_day_is_refused_with_its_line(folder):
     path.write_text(path.read_text(encoding="utf-8") + text, encoding="utf-8")
     assert "losses rain[2][1]: found" in folder.messages()[0]
     assert "times must rise" in folder.messages()[0]
+
+
+def test_seepage_of_the_day_in_a_pool_that_is_none(folder):
+    folder.replace("day.toml", "[start]\n", '[losses]\nseepage = { "Uper pool" = 20.0 }\n\n[start]\n')
+    assert folder.messages() == [
+        'day.toml:23: losses seepage "Uper pool": "Uper pool" is no pool of the canal; did you mean "Upper pool"?'
+    ]

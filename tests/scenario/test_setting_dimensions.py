@@ -17,6 +17,7 @@ from toeline.scenario.setting_dimensions import setting_dimensions
         ("day.period.length_ms", "duration"),
         ("day.inflow", "discharge"),
         ("day.deliveries.*", "discharge"),
+        ("day.losses.seepage.*", "rate of loss"),
         ("day.start.openings.*", "length"),
     ],
 )

@@ -8,6 +8,7 @@ from toeline.cli.rule_words import lead_time_lines, rule_words
 from toeline.report.clock import clock_text, duration_text, later, span_text
 from toeline.report.layout import INDENT, counted, heading, paragraph, table
 from toeline.report.order_words import order_words
+from toeline.scenario.series import constant
 
 if TYPE_CHECKING:
     from toeline.scenario import Order, Scenario, Series, Stuck
@@ -65,11 +66,12 @@ def _water_rows(scenario: "Scenario") -> list[tuple[str, ...]]:
     day, display = scenario.day, scenario.display
     discharges = {"inflow": day.inflow} | {f"asked at {name}": series for name, series in day.deliveries.items()}
     levels = {"level of the reservoir": day.head, "level at the tail": day.tail}
-    weather = {"evaporation": day.losses.evaporation, "rain": day.losses.rain}
+    seepage = {f"seepage, {pool}": constant(rate) for pool, rate in day.losses.seepage.items()}
+    losses = seepage | {"evaporation": day.losses.evaporation, "rain": day.losses.rain}
     return [
         *(_water_row(name, series, display.discharge) for name, series in discharges.items() if series is not None),
         *(_water_row(name, series, display.level) for name, series in levels.items() if series is not None),
-        *(_water_row(name, series, display.rate_of_loss) for name, series in weather.items() if series is not None),
+        *(_water_row(name, series, display.rate_of_loss) for name, series in losses.items() if series is not None),
     ]
 
 

@@ -1,6 +1,7 @@
 """From the scenario's pools, gates and offtakes to the tables of the time loop."""
 
 import math
+from collections.abc import Mapping
 
 import numpy as np
 
@@ -48,9 +49,10 @@ TAIL_KINDS = {"level": TAIL_LEVEL, "rating": RATING, "free overfall": FREE_OVERF
 OFFTAKE_KINDS = {"demand": offtake.DEMAND, "orifice": offtake.ORIFICE, "weir": offtake.WEIR}
 
 
-def network_of(canal: Canal, spacing: float) -> Network:
-    """Tables of a canal with nodes at most `spacing` metres apart."""
+def network_of(canal: Canal, spacing: float, seepage: Mapping[str, float] | None = None) -> Network:
+    """Tables of a canal with nodes at most `spacing` metres apart; `seepage` [m/s] by pool goes before the canal's."""
     lines = lay_out(canal, spacing)
+    seeping = _seepage(canal, lines, seepage or {})
     has_tail_gate = canal.gates and canal.gates[-1].downstream == "tail"
     has_basin = bool(has_tail_gate) and canal.tail.kind != "level"
     shapes = _Shapes(canal)
@@ -58,14 +60,14 @@ def network_of(canal: Canal, spacing: float) -> Network:
     canal_nodes = sum(len(line.nodes) for line in lines[: len(canal.pools)])
     tables = Tables(
         channel=channel,
-        cells=_cells(canal, lines, channel, canal_nodes, has_basin),
+        cells=_cells(lines, seeping, channel, canal_nodes, has_basin),
         links=_links(canal, lines, canal_nodes, has_basin),
         gates=_gates(canal, lines, channel, shapes),
         leaves=_leaves(canal),
         offtakes=_offtakes(canal, lines, channel),
         escapes=_escapes(canal, lines),
         gauges=_gauges(canal, lines, channel),
-        pools=_pools(canal, lines),
+        pools=_pools(lines[: len(canal.pools)], seeping[: len(canal.pools)]),
         tail_slope=np.array([canal.tail.slope or 0.0]),
         tail_rating=np.ascontiguousarray(np.array(canal.tail.rating or [(0.0, 0.0), (1.0, 1.0)], float).T),
     )
@@ -126,16 +128,17 @@ def _channel(lines: list[Line], shapes: _Shapes) -> Channel:
     return Channel(table, cross_section.packed(shapes.rows))
 
 
-def _cells(canal: Canal, lines: list[Line], channel: Channel, canal_nodes: int, has_basin: bool) -> np.recarray:
+def _cells(
+    lines: list[Line], seepage: list[list[float]], channel: Channel, canal_nodes: int, has_basin: bool
+) -> np.recarray:
     count = canal_nodes + int(has_basin)
     length, seeping = np.zeros(count), np.zeros(count)
-    for line in lines:
+    for line, rates in zip(lines, seepage, strict=True):
         last = min(line.last_index, canal_nodes - 1)
         half = 0.5 * np.diff(channel.nodes.chainage[line.first_index : last + 1])
-        rate = [_seepage(canal, node.surface) for node in line.nodes[: half.size]]
         for side in (slice(line.first_index, last), slice(line.first_index + 1, last + 1)):
             length[side] += half
-            seeping[side] += half * rate
+            seeping[side] += half * rates[: half.size]
     if has_basin:
         length[-1] = TAIL_BASIN_LENGTH
     at_dry = np.array([cross_section.geometry(row, DRY_DEPTH)[:3] for row in channel.shapes])
@@ -145,10 +148,17 @@ def _cells(canal: Canal, lines: list[Line], channel: Channel, canal_nodes: int, 
     )
 
 
-def _seepage(canal: Canal, surface: str) -> float:
-    """Seepage [m/s] over a surface; none beyond the last gate where no surface is named."""
-    own = canal.surfaces[surface].seepage if surface else 0.0
-    return canal.losses.seepage if own is None else own
+def _seepage(canal: Canal, lines: list[Line], of_day: Mapping[str, float]) -> list[list[float]]:
+    """Seepage [m/s] from every node on, by line: that of the day for the pool, of the surface, or of the canal; none
+    beyond the last gate where no surface is named.
+    """
+    of_surface = {name: surface.seepage for name, surface in canal.surfaces.items()} | {"": 0.0}
+    in_canal = {name: canal.losses.seepage if rate is None else rate for name, rate in of_surface.items()}
+    names = [pool.name for pool in canal.pools] + ["tail"]
+    return [
+        [of_day.get(name, in_canal[node.surface]) for node in line.nodes]
+        for line, name in zip(lines, names, strict=False)
+    ]
 
 
 def _links(canal: Canal, lines: list[Line], canal_nodes: int, has_basin: bool) -> np.recarray:
@@ -293,12 +303,11 @@ def _gauge_name(canal: Canal, gauge: Gauge) -> GaugeName:
     return GaugeName(gauge.name, gate.name, side, gate.upstream if side == "upstream" else gate.downstream)
 
 
-def _pools(canal: Canal, lines: list[Line]) -> np.recarray:
-    seepage = [[_seepage(canal, node.surface) for node in line.nodes] for line in lines[: len(canal.pools)]]
+def _pools(lines: list[Line], seepage: list[list[float]]) -> np.recarray:
     return records(
         POOL,
-        first_node=[line.first_index for line in lines[: len(canal.pools)]],
-        last_node=[line.last_index for line in lines[: len(canal.pools)]],
+        first_node=[line.first_index for line in lines],
+        last_node=[line.last_index for line in lines],
         seeps=[int(any(rates)) for rates in seepage],
     )
 

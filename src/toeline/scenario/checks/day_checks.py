@@ -17,6 +17,7 @@ def misfits_of_day(day: Day, canal: Canal, folder: Path, system: UnitSystem) -> 
     yield from _misfits_of_ends(day, canal)
     yield from _misfits_of_offtakes(day.deliveries, "deliveries", "demand", canal)
     yield from _misfits_of_offtakes(day.offtake_openings, "offtake_openings", "orifice", canal)
+    yield from _misfits_of_seepage(day, canal)
     yield from _misfits_of_output(day)
     yield from _misfits_of_start(day, canal, folder, system)
     yield from _misfits_of_rounding(day, canal)
@@ -41,6 +42,13 @@ def _misfits_of_offtakes(names: Iterable[str], key: str, kind: str, canal: Canal
             continue
         reason = f"is of kind {others[name]}, not {kind}" if name in others else "is no offtake of the canal"
         yield Misfit((key, name), f"{shown(name)} {reason}; {nearest(name, of_kind)}")
+
+
+def _misfits_of_seepage(day: Day, canal: Canal) -> Iterator[Misfit]:
+    pools = [pool.name for pool in canal.pools]
+    for name in day.losses.seepage:
+        if name not in pools:
+            yield Misfit(("losses", "seepage", name), f"{shown(name)} is no pool of the canal; {nearest(name, pools)}")
 
 
 def _misfits_of_output(day: Day) -> Iterator[Misfit]:

@@ -196,7 +196,7 @@ class Day(Table):
     offtake_openings: dict[str, OpeningSeries] = Field({}, description="Opening of orifice offtakes that are moved.")
     head: LevelSeries | None = Field(None, description="Level of the reservoir, where it changes during the day.")
     tail: LevelSeries | None = Field(None, description="Level beyond the end, where it changes during the day.")
-    losses: LossesOfDay = Field(default_factory=LossesOfDay, description="Evaporation and rain of the day.")
+    losses: LossesOfDay = Field(default_factory=LossesOfDay, description="Seepage, evaporation and rain of the day.")
     start: Start = Field(description="The state of the canal at the start.")
     round_openings: Literal["turns", "scale marks"] | None = Field(
         None,

@@ -5,7 +5,7 @@ from typing import Annotated
 from pydantic import Field
 
 from toeline.scenario.schema.day_series import SeriesKind
-from toeline.scenario.schema.table import Table
+from toeline.scenario.schema.table import Name, Table
 from toeline.scenario.schema.value_kinds import Quantity
 from toeline.scenario.series import Series
 
@@ -30,8 +30,13 @@ class Losses(Table):
 
 
 class LossesOfDay(Table):
-    """Weather of the day, in place of what the canal file gives."""
+    """Weather and seepage of the day, in place of what the canal file gives."""
 
+    seepage: dict[Name, Seepage] = Field(
+        {},
+        description="Seepage through the wetted perimeter of a pool, over all its surfaces, as measured lately or "
+        "after a repair. Pools left out: as the canal file gives it.",
+    )
     evaporation: SurfaceRateSeries | None = Field(
         None, description="Evaporation from the water surface. Left out: that of the canal file."
     )
