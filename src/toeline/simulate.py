@@ -16,7 +16,9 @@ from toeline.engine.checkpoint import checkpoint_of, go_on_from
 from toeline.engine.run import Run
 from toeline.engine.settling import round_trip
 from toeline.engine.state import new_state
+from toeline.errors import Fault
 from toeline.network.build import network_of
+from toeline.network.hunting import hunting_rules
 from toeline.network.initial_state import Start
 from toeline.network.lead_times import pool_times
 from toeline.network.start import check_mild, starting_state
@@ -111,6 +113,18 @@ def ready(scenario: Scenario) -> tuple[Network, Timetable, Start | dict[str, np.
     timetable = timetable_of(scenario, network)
     check_mild(scenario, timetable)
     return network, timetable, start_of(scenario, network, timetable)
+
+
+def cautions(scenario: Scenario) -> list[Fault]:
+    """What may come out other than it was meant, though the files hold no fault; each with its place. Raises as `ready`
+    does.
+    """
+    if not scenario.rules:
+        return []
+    network, timetable, start = ready(scenario)
+    level, _ = levels_and_discharges(start)
+    openings = start["end_opening"] if isinstance(start, dict) else start.opening
+    return list(hunting_rules(scenario, network, timetable, level, openings))
 
 
 def start_of(scenario: Scenario, network: Network, timetable: Timetable) -> Start | dict[str, np.ndarray]:

@@ -59,6 +59,19 @@ def test_rules_are_counted_and_code_of_ones_own_is_named(folder, call):
     assert "plan hold, 0 orders, 1 rule; plan raise, 1 order; rules of your own were run from idle.py" in result.stdout
 
 
+def test_a_dead_band_that_a_move_steps_over_is_told_by_check_and_by_run(folder, call):
+    canal, day = folder / "canal.toml", folder / "day.toml"
+    canal.write_text(canal.read_text().replace("sill_level = 49.10", "sill_level = 49.10\nsmallest_move = 0.02"))
+    rule = 'rules = [{ kind = "hold upstream level", gate = "Last check" }]'
+    day.write_text(day.read_text().replace("orders = []", f"{rule}\norders = []"))
+    checked, run = call("check", "day.toml"), call("run", "day.toml")
+    line, caution = checked.stdout.splitlines()
+    assert (checked.exit_code, run.exit_code) == (0, 0)
+    assert line.endswith("No faults found.")
+    assert caution.startswith("Caution: day.toml:19: plans hold rules[1] band: found 0.02 m; a smallest move of Last c")
+    assert run.stderr.splitlines() == [caution]
+
+
 def test_a_start_that_cannot_be_is_told_as_by_run(folder, call):
     day = folder / "day.toml"
     day.write_text(day.read_text().replace('values = [["06:00", 3.0]]', 'values = [["06:00", 300.0]]'))

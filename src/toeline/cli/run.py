@@ -1,7 +1,7 @@
 """`toeline run`: step the canal through the day."""
 
 import shlex
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING, NamedTuple
 
@@ -70,6 +70,8 @@ def command(
     outputs = choose_outputs(scenarios, output)
     refuse_outputs(outputs, scenarios, overwrite, resume)
     tell_of_compiling()
+    for line in caution_lines(scenarios):
+        note(line)
     ends = [run_plan(*pair, overwrite, resume, strict) for pair in zip(scenarios, outputs, strict=True)]
     if len(ends) > 1:
         show(plans_page(day, [scenario.plan or "" for scenario in scenarios], ends))
@@ -100,6 +102,14 @@ def tell_of_compiling(kernel_name: str = "engine.advance.advance") -> None:
 
     if not is_compiled(kernel_name):
         note("Compiling the equations for this machine: once, up to a minute. Later runs start at once.")
+
+
+def caution_lines(scenarios: Iterable["Scenario"]) -> list[str]:
+    """The cautions of the plans of a day, each told once."""
+    from toeline.simulate import cautions
+
+    found = dict.fromkeys(caution for scenario in scenarios for caution in cautions(scenario))
+    return [f"Caution: {caution}" for caution in found]
 
 
 def run_plan(scenario: "Scenario", output: Path, overwrite: bool, resume: bool, strict: bool) -> PlanEnd:

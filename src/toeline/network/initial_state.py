@@ -12,7 +12,7 @@ from toeline.hydraulics.canal_tail import rating_level
 from toeline.hydraulics.critical_flow import critical_depth
 from toeline.hydraulics.gradually_varied_flow import upstream_level
 from toeline.hydraulics.offtake import offtake_discharge
-from toeline.hydraulics.underflow_gate import UnderflowGate, gate_discharge, opening_for_discharge
+from toeline.hydraulics.underflow_gate import gate_discharge, opening_for_discharge
 from toeline.hydraulics.uniform_flow import conveyance, normal_depth
 from toeline.hydraulics.water_losses import loss_per_length
 from toeline.hydraulics.weir import side_weir_discharge
@@ -261,14 +261,9 @@ class _Search:
             return bed + critical_depth(section, q)[0]
         return bed + normal_depth(section, n, tables.tail_slope[0], q)[0]
 
-    def _law(self, g: int) -> tuple[UnderflowGate, np.ndarray, np.ndarray]:
-        row, shapes = self.network.tables.gates[g], self.network.channel.shapes
-        law = UnderflowGate(*(float(row[name]) for name in UnderflowGate._fields))
-        return law, shapes[row.upstream_section], shapes[row.downstream_section]
-
     def passed(self, g: int, up: float, down: float, openings: np.ndarray) -> float:
         """Discharge of a gate [m³/s] with the openings of all leaves [m]."""
-        law, above, beside = self._law(g)
+        law, above, beside = self.network.gate_law(g)
         leaves = self.network.leaves_of(g)
         return sum(gate_discharge(law, above, beside, up, down, openings[leaf]) for leaf in leaves) / len(leaves)
 
@@ -298,7 +293,7 @@ class _Search:
         q = discharge[link]
         if q <= 1e-12:
             return 0.0
-        law, above, beside = self._law(g)
+        law, above, beside = self.network.gate_law(g)
         found, passed = opening_for_discharge(law, above, beside, up, down, q, largest)
         if abs(passed - q) > 1e-6 * (1.0 + q):
             how = "fully open" if found > 0.0 else "closed"

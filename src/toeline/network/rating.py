@@ -16,7 +16,6 @@ from toeline.hydraulics.gradually_varied_flow import supercritical_profile
 from toeline.hydraulics.jump_location import Jet, drowning_depth, jet_on_floor, protection_margin
 from toeline.hydraulics.underflow_gate import (
     GateFlow,
-    UnderflowGate,
     free_jet,
     gate_flow,
     modular_limit_depth,
@@ -146,11 +145,9 @@ class _Site:
     def __init__(self, network: Network, gate_name: str):
         if gate_name not in network.names.gates:
             raise ValueError(f"no gate named {gate_name!r}")
-        self.gate = network.tables.gates[network.names.gates.index(gate_name)]
-        self.law = UnderflowGate(*(float(self.gate[name]) for name in UnderflowGate._fields))
-        self.channel = network.channel
-        self.above = self.channel.shapes[self.gate.upstream_section]
-        self.below = self.channel.shapes[self.gate.downstream_section]
+        g = network.names.gates.index(gate_name)
+        self.gate, self.channel = network.tables.gates[g], network.channel
+        self.law, self.above, self.below = network.gate_law(g)
 
     def flow(self, up: float, down: float, opening: float) -> GateFlow:
         return gate_flow(self.law, self.above, self.below, up, down, opening)

@@ -171,6 +171,12 @@ class Network:
         first = int(self.tables.gates.first_leaf[g])
         return range(first, first + int(self.tables.gates.leaf_count[g]))
 
+    def gate_law(self, g: int) -> tuple[UnderflowGate, np.ndarray, np.ndarray]:
+        """The law of a gate, and the sections above and below it."""
+        row, shapes = self.tables.gates[g], self.channel.shapes
+        law = UnderflowGate(*(float(row[name]) for name in UnderflowGate._fields))
+        return law, shapes[row.upstream_section], shapes[row.downstream_section]
+
     def places_of_leaves(self) -> list[tuple[int, int]]:
         """Gate and number of the bay of every leaf; 0 where it stands for all bays."""
         gates, leaves = self.tables.gates, self.tables.leaves

@@ -67,6 +67,11 @@ class LevelRule(FeedbackRule):
         if given.gain is None and given.discharge_gain is None and given.reset is not None:
             yield "reset", 'not used without "gain" or "discharge_gain": both are found from the pool'
 
+    @classmethod
+    def makes_good(cls, given: SimpleNamespace) -> bool:
+        """Whether a lasting error is made good, by a reset time that is given or found."""
+        return given.reset is not None or (given.gain is None and given.discharge_gain is None)
+
     @property
     def sets_opening(self) -> bool:
         return self.finds_opening_gain if self._is_found else self.given.gain is not None
