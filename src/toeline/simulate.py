@@ -40,6 +40,7 @@ from toeline.results.thinning import Thinning
 from toeline.results.unfinished import read_unfinished
 from toeline.results.variables import GAUGE_SIDES
 from toeline.scenario import RuleChoice, Scenario
+from toeline.scenario.cautions import unseen_ends
 from toeline.scenario.limits import limits_of
 from toeline.scenario.setting_dimensions import setting_dimensions
 
@@ -119,12 +120,13 @@ def cautions(scenario: Scenario) -> list[Fault]:
     """What may come out other than it was meant, though the files hold no fault; each with its place. Raises as `ready`
     does.
     """
-    if not scenario.rules:
-        return []
-    network, timetable, start = ready(scenario)
-    level, _ = levels_and_discharges(start)
-    openings = start["end_opening"] if isinstance(start, dict) else start.opening
-    return list(hunting_rules(scenario, network, timetable, level, openings))
+    found = list(unseen_ends(scenario))
+    if scenario.rules:
+        network, timetable, start = ready(scenario)
+        level, _ = levels_and_discharges(start)
+        openings = start["end_opening"] if isinstance(start, dict) else start.opening
+        found += hunting_rules(scenario, network, timetable, level, openings)
+    return found
 
 
 def start_of(scenario: Scenario, network: Network, timetable: Timetable) -> Start | dict[str, np.ndarray]:

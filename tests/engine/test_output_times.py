@@ -57,3 +57,11 @@ def test_gate_discharge_of_a_row_is_that_of_its_levels_and_opening(tmp_path):
         levels = (run[f"gate_{side}water_level"][k, 0] for side in ("head", "tail"))
         passed = gate_discharge_at(shapes, gate, *levels, run["gate_opening"][k, 0])
         assert run["gate_discharge"][k, 0] == pytest.approx(passed, rel=1e-12)
+
+
+def test_a_step_at_the_very_end_is_not_in_the_last_row(tmp_path):
+    take = {"name": "T0", "pool": "P0", "chainage": 500.0, "kind": "demand"}
+    asked = {"T0": [["00:00", 0.1], ["00:30", 0.2], ["01:00", 0.5]]}
+    made = day(8.0, length="1 h", deliveries=asked)
+    run = RecordedRun(scenario_of(tmp_path, stepped_canal(1, 1000.0, offtakes=[take]), made))
+    assert run["demand"][[29, 30, 60], 0].tolist() == [0.1, 0.2, 0.2]

@@ -22,6 +22,10 @@ Written from `results/variables.py` by `python -m toeline.results.reference_page
 One flat NetCDF-4 file after the CF conventions, opened with `xarray.open_dataset("run.nc")` or, with rows that a
 killed run never wrote left out, `toeline.results.dataset.open_run("run.nc")`. Everything is in SI units. Values along
 `time` and `profile_time` hold at the instant; none is a mean over the step. Times are UTC. Missing values are NaN.
+Output steps stand at whole multiples of `every` (or `events_every`), long profiles of `profiles_every`, from the start
+on: the last one is at the end of the period where they divide it, else before it, and the rest is stepped without being
+seen. Values that change at once are the new ones at that instant; but a change at the very end of the period belongs to
+the next day, and the last values are those before it. What the next day starts from is always of the very end.
 While a run goes on, and after one that stopped early, its file is named `run.nc.partial`; attribute `outcome` says how
 it ended. `run.nc.checkpoint` beside it is what `toeline run --resume` needs to go on. A killed run may also leave
 `run.nc.writing` or `run.nc.copying`: they are of no use, and the next run of that name removes them. No state in any
