@@ -51,6 +51,22 @@ def test_a_leaf_that_sticks_stops_in_mid_water(tmp_path):
     assert run["gate_opening"][-1, 0] == pytest.approx(run["order_opening_after"][0])
 
 
+def test_a_rule_shuts_its_gate_against_back_flow_and_opens_it_again(tmp_path):
+    """The level beyond the tail gate rises over the pool and falls again; without a rule the gate stays as it is."""
+    tail = [["00:00", 1.5], ["06:00", 1.5], ["08:00", 3.5], ["10:00", 3.5], ["12:00", 1.5]]
+    runs = []
+    for rules in ([], [{"kind": "hold upstream level", "gate": "G1", "gain": 0.3, "reset": "1 h"}]):
+        plan = {"only": {"rules": rules}}
+        keys = day(1.0, tail=tail, plans=plan, output={"every": "1 min"}, start={"state": "steady"})
+        runs.append(RecordedRun(scenario_of(tmp_path, stepped_canal(2, 800.0), keys)))
+    held, ruled = (run["gate_discharge"][:, 1] for run in runs)
+    came_back = [-60.0 * np.minimum(passed, 0.0).sum() for passed in (held, ruled)]
+    assert came_back[1] < 0.1 * came_back[0]
+    at_ten, late = (ruled[runs[1]["time"] == hour * HOUR * 1000.0] for hour in (10, 18))
+    assert at_ten == pytest.approx(0.0, abs=1e-9)
+    assert late == pytest.approx(1.0, rel=0.05)
+
+
 def test_rules_of_one_gate_by_day_and_by_night_keep_their_memories_apart(tmp_path):
     rule = {"kind": "hold upstream level", "gate": "G0"}
     run = run_of(tmp_path, rule | {"hours": ["06:00", "20:00"]}, rule | {"hours": ["20:00", "06:00"], "band": 0.05})

@@ -25,6 +25,10 @@ def test_the_step_ends_at_the_end_of_travel(bench):
     assert rule.record.reason == "travel is 0 to 1.500 m"
 
 
-def test_the_gate_is_left_alone_while_the_water_below_stands_higher(bench):
+def test_the_gate_is_shut_while_the_water_below_stands_higher_and_then_stands_as_before(bench):
     rule = bench(GatekeeperRounds, **SETTINGS)
-    assert rule.decide(0, headwater=103.80, tailwater=103.90) == 0.50
+    assert rule.decide(0, headwater=103.80, tailwater=103.805) == 0.50  # no staff is read so finely
+    assert rule.decide(180, tailwater=103.90) == 0.0
+    assert rule.decide(360) == 0.0
+    assert rule.decide(540, tailwater=103.70) == 0.50
+    assert rule.decide(720) == pytest.approx(0.55)

@@ -131,10 +131,45 @@ def test_what_cannot_pass_lets_the_base_come_back_when_the_level_has_turned(benc
     assert rule.rule.memory["base"] == pytest.approx(18.0 - 0.0225)
 
 
-def test_an_opening_is_left_alone_while_the_water_below_stands_higher(bench):
+def test_the_gate_is_shut_while_the_water_below_stands_higher_and_goes_on_from_where_it_stood(bench):
     rule = bench(HoldUpstreamLevel, **SETTINGS)
     rule.decide(0, headwater=103.60)
-    for minute in range(5, 65, 5):
-        assert rule.decide(minute, headwater=103.80, tailwater=103.90) == 0.50
-    # 0.18 beyond and nothing wound up: base 0.50 + 0.009, wanted 0.581
-    assert rule.decide(65, headwater=103.80, tailwater=101.20) == pytest.approx(0.581)
+    assert rule.decide(5, headwater=103.80, tailwater=103.805) == 0.50  # no gauge is read so finely
+    for minute in range(10, 65, 5):
+        assert rule.decide(minute, headwater=103.80, tailwater=103.90) == 0.0
+    # 0.18 beyond: as at a first decision at 0.50, base 0.50 − 0.072 + 0.009, wanted 0.509
+    assert rule.decide(65, headwater=103.80, tailwater=101.20) == pytest.approx(0.509)
+    assert rule.decide(70, headwater=103.60) == pytest.approx(0.509)
+    assert rule.rule.memory["base"] == pytest.approx(0.437)
+    assert "shut_from" not in rule.rule.memory
+
+
+def test_a_shut_gate_is_opened_again_inside_the_band_too(bench):
+    rule = bench(HoldUpstreamLevel, **SETTINGS)
+    assert rule.decide(0, headwater=103.60, tailwater=103.70) == 0.0  # the first decision of all
+    assert rule.decide(5, headwater=103.60, tailwater=103.60) == 0.50
+
+
+def test_a_gate_that_somebody_opens_against_the_head_is_shut_again_and_goes_on_from_there(bench):
+    rule = bench(HoldUpstreamLevel, **SETTINGS)
+    rule.decide(0, headwater=103.60, tailwater=103.70)
+    rule.motion.order(60_000, "opening", 0.30, 0.30)
+    assert rule.decide(5, headwater=103.60, tailwater=103.60) == 0.30
+    assert rule.decide(10, headwater=103.60, tailwater=103.70) == 0.0
+    assert rule.decide(15, headwater=103.60, tailwater=103.50) == 0.30
+
+
+def test_a_stuck_gate_is_opened_again_when_it_can_be(bench):
+    rule = bench(HoldUpstreamLevel, limits={"moves_per_hour": 1}, **SETTINGS)
+    assert rule.decide(0, headwater=103.60, tailwater=103.70) == 0.0
+    assert rule.decide(30, tailwater=103.50) == 0.0
+    assert rule.decide(60) == 0.50
+
+
+def test_what_is_known_ahead_waits_for_the_head(bench):
+    rule = bench(HoldUpstreamLevel, **SETTINGS, feedforward="volume")
+    rule.ask("Far lateral", [0, 180], [0.4, 0.9])
+    # 20 min before 03:00 the gate opens by 5 cm; reversed meanwhile, it opens from where it stood when the head is back
+    levels = {150: 101.20, 160: 103.70, 165: 101.20, 170: 101.20}
+    openings = [rule.decide(minute, headwater=103.60, tailwater=level) for minute, level in levels.items()]
+    assert openings == pytest.approx([0.50, 0.0, 0.55, 0.55])

@@ -18,6 +18,9 @@ from toeline.rules.setting import Setting
 HEAD, TAIL = "head", "tail"
 """What stands in place of a pool at the two ends of the canal."""
 
+LEAST_BACK_HEAD = 0.01
+"""By how much the water below a gate stands higher when it is shut [m]: what a gauge is read to (choice)."""
+
 
 @dataclass(frozen=True)
 class GateFacts:
@@ -179,6 +182,23 @@ class Rule(ABC):
     def is_head_reversed(self, now: Present) -> bool:
         """Whether the water below the gate stands higher, so that opening it would let more come back."""
         return now.tailwater_level(self.gate) > now.headwater_level(self.gate)
+
+    def against_back_flow(self, now: Present) -> float | None:
+        """Closed, as soon as the water below stands higher by what a gauge is read to; None until then, and where the
+        gate is closed. Where it stood before stays in `memory` as "shut_from", for `standing_opening`.
+        """
+        ordered = now.ordered_opening(self.gate)
+        if ordered == 0.0 or now.tailwater_level(self.gate) - now.headwater_level(self.gate) < LEAST_BACK_HEAD:
+            return None
+        self.memory.setdefault("shut_from", ordered)
+        return 0.0
+
+    def standing_opening(self, now: Present) -> float:
+        """The opening ordered [m]; of a gate that is shut against back flow, that which it had before."""
+        ordered = now.ordered_opening(self.gate)
+        if ordered > 0.0:
+            self.memory.pop("shut_from", None)
+        return self.memory.get("shut_from", ordered)
 
     @cached_property
     def gate(self) -> str:

@@ -21,7 +21,8 @@ class FeedbackRule(Rule):
         super().__init__(given, canal)
         self.feedback = Feedback(self.memory, given.band or 0.0, given.every)
         self.ahead = given.feedforward and Feedforward(self.memory, self.gate, given.feedforward, canal)
-        self.wanted_opening = self.lacking = 0.0
+        self.wanted_opening: float | None = None
+        self.lacking = 0.0
 
     @abstractmethod
     def error(self, now: Present) -> float:
@@ -37,9 +38,10 @@ class FeedbackRule(Rule):
         """Whether the quantity set is the opening, not the discharge."""
 
     def decide(self, now: Present) -> float | None:
+        self.wanted_opening = None
         if self.sets_opening and self.is_head_reversed(now):
-            return None
-        gains, error, ordered = self.gains(now), self.error(now), now.ordered_opening(self.gate)
+            return self.against_back_flow(now)
+        gains, error, ordered = self.gains(now), self.error(now), self.standing_opening(now)
         if self.feedback.is_new(ordered):
             self.feedback.start(self._quantity(now, ordered), error, gains)
             self.memory["ordered"] = ordered
@@ -47,13 +49,17 @@ class FeedbackRule(Rule):
         if change != 0.0:
             self.memory["ahead"] = self.memory.get("ahead", 0.0) + self._in_quantity(now, ordered, change)
         ahead = self.memory.get("ahead", 0.0)
-        wanted = self.feedback.wanted(error, gains, is_pressed=ahead != 0.0)
+        is_pressed = ahead != 0.0 or "shut_from" in self.memory
+        wanted = self.feedback.wanted(error, gains, is_pressed=is_pressed)
         if wanted is None:
             return None
         self.wanted_opening = self._opening(now, wanted + ahead)
         return self.wanted_opening
 
     def learn(self, answer: Answer, ordered: float) -> None:
+        if self.wanted_opening is None:
+            self.memory["ordered"] = ordered
+            return
         held_back = self.wanted_opening - ordered if answer is Answer.limited else 0.0
         self.feedback.learn(ordered, self.lacking or held_back)
         if answer is Answer.moved:

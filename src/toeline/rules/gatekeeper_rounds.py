@@ -11,8 +11,8 @@ ABOVE_GATE, BELOW_GATE = "above the gate", "below the gate"
 
 
 class GatekeeperRounds(Rule):
-    """At every visit, moves the gate by one step if the level is outside its band, and leaves it alone if not, or while
-    the water below it stands higher.
+    """At every visit, moves the gate by one step if the level is outside its band, and leaves it alone if not. While
+    the water below it stands higher the gate is kept shut; then it is opened again to where it stood.
     """
 
     kind = "gatekeeper rounds"
@@ -49,10 +49,15 @@ class GatekeeperRounds(Rule):
         is_above = self.given.where == ABOVE_GATE
         level = now.headwater_level(self.gate) if is_above else now.tailwater_level(self.gate)
         error = level - self._target(now) if is_above else self._target(now) - level
-        if abs(error) <= self.given.band or self.is_head_reversed(now):
+        if self.is_head_reversed(now):
+            return self.against_back_flow(now)
+        standing = self.standing_opening(now)
+        if standing != now.ordered_opening(self.gate):
+            return standing
+        if abs(error) <= self.given.band:
             return None
         step = self.given.step if error > 0.0 else -self.given.step
-        return now.ordered_opening(self.gate) + step
+        return standing + step
 
     def _target(self, now: Present) -> float:
         if self.given.target is not None:
