@@ -14,10 +14,12 @@ from toeline.hydraulics.surge import DOWNSTREAM, UPSTREAM
 GRAVITY = 9.80665
 
 
-def scenario(folder, *, inflow=8.0, orders=(), drop=0.3, **tables):
+def scenario(folder, *, inflow=8.0, orders=(), drop=0.3, canal_tables=None, **tables):
     """Three pools with output every second; a drop of 0.3 m leaves every gate drowned, one of 2.5 m free."""
     take = {"name": "T0", "pool": "P1", "chainage": 900.0, "kind": "demand", "sill_level": 2.0 * drop + 0.4}
-    canal = stepped_canal(3, 1500.0, drop=drop, gate={"hoist_speed": "10 m/min"}, offtakes=[take])
+    canal = stepped_canal(
+        3, 1500.0, drop=drop, gate={"hoist_speed": "10 m/min"}, offtakes=[take], **(canal_tables or {})
+    )
     made = day(inflow, length="3 h", orders=list(orders), output={"every": "1 s"}, **tables)
     return scenario_of(folder, canal, made)
 
@@ -43,14 +45,68 @@ def test_pools_on_both_sides_of_a_moved_gate_settle_for_one_wave_round_trip(tmp_
     assert run.settling.sum("time").values == pytest.approx([first, second, 0.0], abs=1.0)
 
 
-def test_step_of_inflow_leaves_the_first_pool_settling(tmp_path):
-    run = recorded(tmp_path, inflow={"shape": "steps", "values": [["00:00", 8.0], ["00:30", 9.0]]})
-    assert [seconds > 0 for seconds in settling_seconds(run)] == [True, False, False]
+def step(before, after):
+    """A change at half past twelve."""
+    return {"shape": "steps", "values": [["00:00", before], ["00:30", after]]}
 
 
-def test_change_of_a_delivery_leaves_its_pool_settling(tmp_path):
-    run = recorded(tmp_path, deliveries={"T0": [["00:00", 0.1], ["00:30", 0.5]]})
-    assert [seconds > 0 for seconds in settling_seconds(run)] == [False, True, False]
+@pytest.mark.parametrize(
+    ("tables", "round_trips"),
+    [
+        ({"inflow": step(8.0, 8.3)}, [1, 0, 0]),
+        ({"inflow": step(8.0, 10.0)}, [2, 2, 0]),
+        ({"inflow": step(8.0, 10.0), "drop": 2.5}, [1, 0, 0]),
+        ({"deliveries": {"T0": step(0.1, 0.5)}}, [0, 1, 0]),
+        ({"deliveries": {"T0": step(0.0, 6.0)}}, [2, 2, 2]),
+        ({"tail": step(1.5, 1.55)}, [0, 0, 1]),
+        ({"tail": step(1.5, 2.0)}, [0, 2, 2]),
+    ],
+    ids=str,
+)
+def test_pools_that_a_wave_of_a_change_reaches_settle_for_the_sum_of_their_round_trips(tmp_path, tables, round_trips):
+    """Three pools of one length. From a delivery a wave goes either way, each with the pools that it reaches."""
+    run = simulate(scenario(tmp_path, **tables))
+    one = float(run.pool_wave_round_trip.mean())
+    assert run.settling.sum("time").values == pytest.approx(one * np.array(round_trips), rel=0.05)
+
+
+def test_a_level_that_a_gate_does_not_feel_unsettles_no_pool(tmp_path):
+    low = {"tail": {"kind": "level", "level": -1.0, "floor_level": -2.0}}
+    run = recorded(tmp_path, canal_tables=low, tail=step(-1.0, -0.8))
+    assert settling_seconds(run) == [0, 0, 0]
+
+
+def test_a_leap_of_the_level_above_a_head_gate_unsettles_the_pools_that_its_wave_reaches(tmp_path):
+    canal = stepped_canal(2, 1500.0, head={"kind": "reservoir", "level": 5.2})
+    head_gate = canal["gates"][0] | {"name": "Head gate", "upstream": "head", "downstream": "P0", "sill_level": 1.2}
+    canal["gates"].insert(0, head_gate)
+    start = {"state": "steady", "inflow": 8.0}
+    settled = []
+    for level in (5.25, 7.0):
+        run = simulate(scenario_of(tmp_path, canal, day(length="3 h", start=start, head=step(5.2, level))))
+        settled.append((run.settling.sum("time").values > 0).tolist())
+    assert settled == [[True, False], [True, True]]
+
+
+def test_a_level_that_goes_on_a_line_unsettles_no_pool(tmp_path):
+    run = recorded(tmp_path, tail=[["00:00", 1.5], ["00:30", 1.7], ["01:00", 1.6], ["03:00", 1.6]])
+    assert settling_seconds(run) == [0, 0, 0]
+
+
+@pytest.mark.parametrize(
+    "tables", [{"inflow": step(8.0, 5.0)}, {"tail": step(1.5, 2.0)}, {"tail": step(1.5, 1.0)}], ids=str
+)
+def test_levels_once_settled_are_those_of_a_run_with_local_inertia(tmp_path, tables):
+    """To 1.2 cm; while settling some decimetre is missing in the pool where it begins."""
+    plain, inertial = (
+        simulate(scenario(tmp_path, **tables, period={"local_inertia": inertia, "level_tolerance": 0.001}))
+        for inertia in (False, True)
+    )
+    names = ("pool_head_level", "pool_tail_level")
+    apart = np.max([np.abs(plain[name] - inertial[name]).values for name in names], axis=0)
+    is_settling = plain.settling.values == 1
+    assert apart[is_settling].max() > 0.03
+    assert apart[~is_settling].max() < 0.012
 
 
 def test_surge_bounds_fulfil_the_equations_of_a_moving_front(tmp_path):

@@ -187,7 +187,7 @@ class Run:
         while self.roughness and self.roughness[0].time <= self.time:
             factors = self.roughness.pop(0).factors
             is_changed = not np.array_equal(factors, self.watch.roughness_factor)
-            self.unrest.note_roughness(self.time, factors / self.watch.roughness_factor)
+            self.unrest.note_roughness(self.time, factors / self.watch.roughness_factor, self._value[self._leaves])
             self.watch.roughness_factor[:] = factors
             self.network.set_roughness(factors)
         return is_changed

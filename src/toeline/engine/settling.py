@@ -1,5 +1,5 @@
-"""Until when a pool settles after a change, the surge that an instantaneous change could send, and what of a wave goes
-on through a gate.
+"""Until when pools settle after a change, whatever it is of; the surge that an instantaneous move could send; and what
+of a wave goes on through a gate.
 """
 
 import math
@@ -8,10 +8,12 @@ from toeline.constants import GRAVITY
 from toeline.engine.gate_link import gate_discharge_at
 from toeline.hydraulics.cross_section import geometry
 from toeline.hydraulics.kernel import inner_kernel, kernel
+from toeline.hydraulics.offtake import offtake_discharge
 from toeline.hydraulics.surge import DOWNSTREAM, UPSTREAM, surge_height, wave_speeds
+from toeline.network.tables import FORCING_HEAD, FORCING_TAIL, TAIL_LEVEL
 
 LEAST_CHANGE = 1e-9
-"""Change of a discharge [m³/s] below which nothing is said to settle."""
+"""Change of a discharge [m³/s], or of a level [m], below which nothing is said to settle."""
 
 LEAST_PASSED = 0.01
 """Height [m] from which a wave counts that goes on through a gate into the pool beyond: what a gauge is read to
@@ -58,13 +60,107 @@ def unsettle_by_move(tables, state, watch, g, levels, move, openings, time, move
     pool = pool_of(tables.pools, gate.upstream_node)
     if pool >= 0:
         guard.surge_upstream = joined_surge(guard.surge_upstream, guard.surge_upstream_until > time, up)
-        guard.surge_upstream_until = unsettle(tables, state, watch, pool, moved, never)
-        unsettle_beyond(tables, state, watch, g, pool, UPSTREAM, up, moved, openings)
+        guard.surge_upstream_until = unsettle_by_wave(
+            tables, state, watch, pool, UPSTREAM, up, openings, moved, never
+        )  # fmt: skip
     pool = pool_of(tables.pools, gate.downstream_node)
     if pool >= 0:
         guard.surge_downstream = joined_surge(guard.surge_downstream, guard.surge_downstream_until > time, down)
-        guard.surge_downstream_until = unsettle(tables, state, watch, pool, moved, never)
-        unsettle_beyond(tables, state, watch, g, pool, DOWNSTREAM, down, moved, openings)
+        guard.surge_downstream_until = unsettle_by_wave(
+            tables, state, watch, pool, DOWNSTREAM, down, openings, moved, never
+        )  # fmt: skip
+
+
+@kernel
+def unsettle_by_forcing(tables, state, watch, before, now, openings, time, never):
+    """Have pools settle after what leaps at `time` from the forcing `before` to that `now`: the inflow or the level of
+    the reservoir, the level at the tail, demands and openings of offtakes; `openings` [m] are those of all gates.
+    """
+    gates, last = tables.gates, tables.links[tables.links.size - 1]
+    if tables.links[0].gate < 0:
+        unsettle_by_source(tables, state, watch, 0, now[FORCING_HEAD] - before[FORCING_HEAD], openings, time, never)
+    else:
+        below = state.nodes[gates[0].downstream_node].level
+        levels, after = (before[FORCING_HEAD], below), (now[FORCING_HEAD], below)
+        unsettle_by_level(tables, state, watch, 0, levels, after, DOWNSTREAM, openings, time, never)
+    rise = now[FORCING_TAIL] - before[FORCING_TAIL]
+    if last.kind == TAIL_LEVEL and abs(rise) > LEAST_CHANGE:
+        unsettle_by_wave(tables, state, watch, tables.pools.size - 1, UPSTREAM, rise, openings, time, never)
+    elif last.gate >= 0:
+        above = state.nodes[gates[last.gate].upstream_node].level
+        levels, after = (above, before[FORCING_TAIL]), (above, now[FORCING_TAIL])
+        unsettle_by_level(tables, state, watch, last.gate, levels, after, UPSTREAM, openings, time, never)
+    first = before.size - 2 * tables.offtakes.size
+    for k in range(tables.offtakes.size):
+        change = taken(tables, state, before, first, k) - taken(tables, state, now, first, k)
+        unsettle_by_source(tables, state, watch, tables.offtakes[k].node, change, openings, time, never)
+
+
+@kernel
+def unsettle_by_roughness(tables, state, watch, pool, ratio, openings, time, never):
+    """Have pools settle after the roughness of one leaps by a `ratio`: its discharges leap by the inverse, beside gates
+    that pass as much as before.
+    """
+    ends, share = tables.pools[pool], 1.0 / ratio - 1.0
+    above, below = state.links[ends.first_node + 1].discharge, state.links[ends.last_node].discharge
+    unsettle_by_source(tables, state, watch, ends.first_node, -share * above, openings, time, never)
+    unsettle_by_source(tables, state, watch, ends.last_node, share * below, openings, time, never)
+
+
+@inner_kernel
+def taken(tables, state, forcing, first, k):
+    """What an offtake takes [m³/s] at the present level of its pool under a forcing whose demands begin at `first`."""
+    take = tables.offtakes[k]
+    demand, opening = forcing[first + k], forcing[first + tables.offtakes.size + k]
+    level = state.nodes[take.node].level
+    return offtake_discharge(take.kind, demand, take.sill_level, take.width, opening, take.coefficient, level)
+
+
+@inner_kernel
+def unsettle_by_source(tables, state, watch, node, change, openings, time, never):
+    """Have pools settle after a change [m³/s] of what comes in at a node: it goes off by two waves of one height, at
+    the head of the canal by one, as in the middle of their pool.
+    """
+    down, up = pool_admittances(tables.channel, middle_node(tables.pools, node), state)
+    both = down + (up if node > 0 else 0.0)
+    height = change / both if both > 0.0 else math.copysign(math.inf, change)
+    if abs(change) > LEAST_CHANGE:
+        pool = pool_of(tables.pools, node)
+        unsettle_by_wave(tables, state, watch, pool, DOWNSTREAM, height, openings, time, never)
+        unsettle_by_wave(tables, state, watch, pool, UPSTREAM, height, openings, time, never)
+
+
+@inner_kernel
+def unsettle_by_level(tables, state, watch, g, levels, after, way, openings, time, never):
+    """Have pools settle after a leap of the level beyond gate `g` at an end of the canal, from `levels` above and below
+    it to those `after` [m]: the wave in the pool inside goes the given `way`.
+    """
+    gate, opening = tables.gates[g], openings[g]
+    node = gate.downstream_node if way == DOWNSTREAM else gate.upstream_node
+    passed = gate_discharge_at(tables.channel.shapes, gate, after[0], after[1], opening)
+    change = passed - gate_discharge_at(tables.channel.shapes, gate, levels[0], levels[1], opening)
+    by_up, by_down = level_slopes(tables.channel.shapes, gate, after, opening)
+    down, up = pool_admittances(tables.channel, middle_node(tables.pools, node), state)
+    carried = down + by_down if way == DOWNSTREAM else up + by_up
+    height = way * change / carried if carried > 0.0 else math.copysign(math.inf, change)
+    if abs(change) > LEAST_CHANGE:
+        unsettle_by_wave(tables, state, watch, pool_of(tables.pools, node), way, height, openings, time, never)
+
+
+@inner_kernel
+def unsettle_by_wave(tables, state, watch, pool, way, height, openings, time, never):
+    """Have a pool settle for a round trip from a time on, and those beyond that a wave in it of a `height` [m] reaches
+    on its `way`; returns until when the round trip lasts [ms of the period].
+    """
+    ends = tables.pools[pool]
+    seconds = round_trip(tables.channel, ends.first_node, ends.last_node, state)
+    if seconds == math.inf:
+        watch.settled_at[pool] = max(watch.settled_at[pool], never)
+        return never
+    until = time + round(1000.0 * seconds)
+    watch.settled_at[pool] = max(watch.settled_at[pool], until)
+    unsettle_beyond(tables, state, watch, pool, way, height, openings, time, seconds)
+    return until
 
 
 @inner_kernel
@@ -89,24 +185,12 @@ def joined_surge(running, still_runs, height):
 
 
 @inner_kernel
-def unsettle(tables, state, watch, pool, time, never):
-    """Have a pool settle for a round trip from a time on; returns until when [ms of the period]."""
-    ends = tables.pools[pool]
-    seconds = round_trip(tables.channel, ends.first_node, ends.last_node, state)
-    until = time + round(1000.0 * seconds) if seconds < math.inf else never
-    watch.settled_at[pool] = max(watch.settled_at[pool], until)
-    return until
-
-
-@inner_kernel
-def unsettle_beyond(tables, state, watch, g, pool, way, height, moved, openings):
-    """Pools that a wave from gate `g` reaches through the gates beyond `pool`: all on its way settle until it has run
-    down and back through them.
+def unsettle_beyond(tables, state, watch, pool, way, height, openings, time, seconds):
+    """Pools that a wave in `pool` reaches through the gates on its `way`: all on it settle until it has run down and
+    back through them; `seconds` is the round trip of the first.
     """
     step = 1 if way == DOWNSTREAM else -1
-    ends, last = tables.pools[pool], pool
-    seconds = round_trip(tables.channel, ends.first_node, ends.last_node, state)
-    k = g + step
+    last, k = pool, gate_below(tables, pool) - (0 if way == DOWNSTREAM else 1)
     while 0 <= k < tables.gates.size:
         beyond = pool_of(tables.pools, tables.gates[k].downstream_node if step > 0 else tables.gates[k].upstream_node)
         if beyond < 0:
@@ -117,9 +201,15 @@ def unsettle_beyond(tables, state, watch, g, pool, way, height, moved, openings)
         if trip == math.inf or abs(height) < LEAST_PASSED:
             break
         seconds, last, k = seconds + trip, beyond, k + step
-    if last != pool and seconds < math.inf:
+    if last != pool:
         for p in range(min(pool, last), max(pool, last) + 1):
-            watch.settled_at[p] = max(watch.settled_at[p], moved + round(1000.0 * seconds))
+            watch.settled_at[p] = max(watch.settled_at[p], time + round(1000.0 * seconds))
+
+
+@inner_kernel
+def gate_below(tables, pool):
+    """The gate at the lower end of a pool, were there one: gates stand between neighbouring pools."""
+    return pool + 1 if tables.links[0].gate >= 0 else pool
 
 
 @inner_kernel
@@ -164,15 +254,21 @@ def passed_share(channel, gate, levels, opening, above, below, way):
 
     `levels` [m] are those above and below the gate, `above` and `below` pairs of `pool_admittances`.
     """
-    here = gate_discharge_at(channel.shapes, gate, levels[0], levels[1], opening)
-    by_up = gate_discharge_at(channel.shapes, gate, levels[0] + WAVE_NUDGE, levels[1], opening) - here
-    by_down = here - gate_discharge_at(channel.shapes, gate, levels[0], levels[1] + WAVE_NUDGE, opening)
-    near, far = max(by_up, 0.0) / WAVE_NUDGE, max(by_down, 0.0) / WAVE_NUDGE
+    near, far = level_slopes(channel.shapes, gate, levels, opening)
     coming, back, on = above[0], above[1], below[0]
     if way == UPSTREAM:
         near, far = far, near
         coming, back, on = below[1], below[0], above[1]
     return near * (1.0 / on + coming / (back * on)) / (1.0 + far / on + near / back)
+
+
+@inner_kernel
+def level_slopes(shapes, gate, levels, opening):
+    """Slopes [m²/s] of what a gate passes to the level above it and, falling, to that below; never negative."""
+    here = gate_discharge_at(shapes, gate, levels[0], levels[1], opening)
+    by_up = gate_discharge_at(shapes, gate, levels[0] + WAVE_NUDGE, levels[1], opening) - here
+    by_down = here - gate_discharge_at(shapes, gate, levels[0], levels[1] + WAVE_NUDGE, opening)
+    return max(by_up, 0.0) / WAVE_NUDGE, max(by_down, 0.0) / WAVE_NUDGE
 
 
 @inner_kernel

@@ -1,15 +1,14 @@
 """What a change leaves behind for a while: surge bounds beside the gates, and pools that settle."""
 
-import math
 from collections.abc import Sequence
 
 import numpy as np
 
 from toeline.engine.gate_motion import GateMotion
 from toeline.engine.output import Watch
-from toeline.engine.settling import LEAST_CHANGE, round_trip, unsettle_by_move
+from toeline.engine.settling import LEAST_CHANGE, unsettle_by_forcing, unsettle_by_move, unsettle_by_roughness
 from toeline.engine.state import State
-from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, TAIL_LEVEL, Network
+from toeline.network.tables import FORCING_GATES, Network
 
 LEAST_ROUGHENING = 0.01
 """Relative change of Manning's n at once from which a pool is said to settle (choice)."""
@@ -22,6 +21,7 @@ class Unrest:
 
     def __init__(self, network: Network, state: State, watch: Watch, length: int):
         self.network, self.state, self.watch, self.length = network, state, watch, length
+        self._leaves = slice(FORCING_GATES, FORCING_GATES + network.leaf_count)
 
     def note_move(
         self, time: int, g: int, levels: tuple[float, float], opening: float, motion: GateMotion,
@@ -36,25 +36,22 @@ class Unrest:
         )  # fmt: skip
 
     def note_changes(self, time: int, before: np.ndarray, now: np.ndarray) -> None:
-        """Pools that a change of inflow, of the tail level or of a delivery leaves settling."""
+        """Pools that a leap of the forcing leaves settling: inflow, levels beyond the ends, deliveries."""
         changed = np.abs(now - before) > LEAST_CHANGE
-        network, tables = self.network, self.network.tables
-        first = FORCING_GATES + network.leaf_count
-        pools = set()
-        if changed[FORCING_HEAD] and tables.links.gate[0] < 0:
-            pools.add(0)
-        if changed[FORCING_TAIL] and tables.links.kind[-1] == TAIL_LEVEL:
-            pools.add(network.pool_count - 1)
-        for k, node in enumerate(tables.offtakes.node):
-            if changed[first + k] or changed[first + network.offtake_count + k]:
-                pools.add(int(network.pool_of(node)))
-        for pool in pools:
-            self._unsettle(pool, self._settled_after(pool, time))
+        changed[self._leaves] = False
+        if changed.any():
+            openings = self._gate_openings(before[self._leaves])
+            unsettle_by_forcing(
+                self.network.tables, self.state, self.watch, before, now, openings, time, self.length + 1
+            )
 
-    def note_roughness(self, time: int, ratio: np.ndarray) -> None:
+    def note_roughness(self, time: int, ratio: np.ndarray, leaf_openings: np.ndarray) -> None:
         """Pools that a change of the roughness, new over old by pool, leaves settling."""
         for pool in np.flatnonzero(np.abs(ratio - 1.0) > LEAST_ROUGHENING).tolist():
-            self._unsettle(pool, self._settled_after(pool, time))
+            unsettle_by_roughness(
+                self.network.tables, self.state, self.watch, pool, float(ratio[pool]),
+                self._gate_openings(leaf_openings), time, self.length + 1,
+            )  # fmt: skip
 
     def end_state(self, time: int) -> dict[str, np.ndarray]:
         """What still runs at a time, by variable name."""
@@ -72,13 +69,9 @@ class Unrest:
             self.watch.gates[f"surge_{side}_until"] = np.round(end[f"end_surge_{side}_remaining"] * 1000.0)
         self.watch.settled_at[:] = np.round(end["end_settling_remaining"] * 1000.0)
 
-    def _unsettle(self, pool: int, until: int) -> None:
-        self.watch.settled_at[pool] = max(self.watch.settled_at[pool], until)
-
-    def _settled_after(self, pool: int, time: int) -> int:
-        ends = self.network.tables.pools[pool]
-        seconds = float(round_trip(self.network.channel, ends.first_node, ends.last_node, self.state))
-        return time + round(1000.0 * seconds) if math.isfinite(seconds) else self.length + 1
+    def _gate_openings(self, leaf_openings: np.ndarray) -> np.ndarray:
+        """Mean opening of every gate [m]."""
+        return np.array([leaf_openings[self.network.leaves_of(g)].mean() for g in range(self.network.gate_count)])
 
 
 def _seconds_left(until: np.ndarray, time: int) -> np.ndarray:

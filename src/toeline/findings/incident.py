@@ -24,7 +24,7 @@ class Measure:
 class Incident:
     """One incident. `worst` and `limit` are in `unit`; NaN and NaT where there is no number to give.
 
-    `settling` says that waves of a gate move were still travelling in a pool beside it at some time of the incident, so
+    `settling` says that waves of a change were still travelling in a pool beside it at some time of the incident, so
     that its levels are least trustworthy; `runs_to_end` that it still went on when the run ended. Where
     a limit holds in a rolling window, `window` is its length [s], and all three times are those at which windows end.
     """
@@ -46,7 +46,7 @@ class Incident:
 
 
 class Settling:
-    """When waves of a gate move still travelled in each pool."""
+    """When waves of a change still travelled in each pool."""
 
     def __init__(self, run: xr.Dataset):
         self._times = run["time"].values

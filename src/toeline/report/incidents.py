@@ -13,7 +13,7 @@ from toeline.report.values import value_text
 from toeline.units import Display
 
 SETTLING = (
-    "Settling: waves of a gate move still travel through a pool beside the place; levels are least trustworthy then."
+    "Settling: waves of a change still travel through a pool beside the place; levels are least trustworthy then."
 )
 NOTHING_FOUND = (
     "No incident. Looked for: jumps beyond the protected floor, water above bank or lining, velocities over the limit "

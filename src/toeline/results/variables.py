@@ -154,9 +154,10 @@ _BAY_SERIES = (
 )
 
 _POOL_SERIES = (
-    _flag("settling", _POOLS, "whether waves of the last move still travel in the pool", ("settled", "settling"),
+    _flag("settling", _POOLS, "whether waves of the last change still travel in the pool", ("settled", "settling"),
           standard_name="status_flag",
-          comment="one wave round trip after a move; until then the quasi-steady levels are least trustworthy"),
+          comment="a wave round trip after a move, or a leap of inflow, delivery or level, through all pools that the "
+          "wave reaches; until then the quasi-steady levels are least trustworthy"),
     Variable("pool_volume", _POOLS, "m3", "volume of water in the pool", dtype="f8"),
     Variable("pool_head_level", _POOLS, "m", "water level at the upper end of the pool", _LEVEL, _SURFACE,
              companions=("settling",), dtype="f8"),
