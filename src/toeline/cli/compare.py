@@ -115,12 +115,9 @@ class Source:
     @contextmanager
     def opened(self) -> Iterator["xr.Dataset"]:
         if self.scenario is None:
-            from toeline import open_run
-            from toeline.results.dataset import damage_told
+            from toeline.results.dataset import load_run
 
-            with open_run(self.path) as opened, damage_told(self.path):
-                run = opened.load()
-            yield run
+            yield load_run(self.path)
             return
         from toeline import simulate
 

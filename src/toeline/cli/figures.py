@@ -1,7 +1,6 @@
 """`toeline figures`: a run as figures for reports."""
 
 from collections.abc import Iterator, Sequence
-from contextlib import ExitStack
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -64,10 +63,9 @@ def command(
     for path in runs:
         refuse_other_than_run(path)
     check_names(wanted, len(runs))
-    with ExitStack() as stack:
-        pictures = drawn([(path.stem, opened(path, stack)) for path in runs], wanted, at)
-        folder.mkdir(parents=True, exist_ok=True)
-        written = write_pictures(pictures, folder, formats or ("png",), overwrite=overwrite)
+    pictures = drawn([(path.stem, loaded(path)) for path in runs], wanted, at)
+    folder.mkdir(parents=True, exist_ok=True)
+    written = write_pictures(pictures, folder, formats or ("png",), overwrite=overwrite)
     show("\n".join(str(path) for path in written))
 
 
@@ -82,11 +80,11 @@ def check_names(wanted: Sequence[str], runs: int) -> None:
         raise UsageError(f"--figure {PLANS}: compares two runs or more; name their files")
 
 
-def opened(path: Path, stack: ExitStack) -> "xr.Dataset":
+def loaded(path: Path) -> "xr.Dataset":
     """A run with at least one output step, its values in memory."""
-    from toeline.results.dataset import open_run
+    from toeline.results.dataset import load_run
 
-    run = stack.enter_context(open_run(path)).load()
+    run = load_run(path)
     if not run.sizes["time"]:
         raise UsageError(f"{path}: the run was stopped before anything reached the disk; there is nothing to draw")
     return run

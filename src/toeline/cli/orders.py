@@ -83,13 +83,12 @@ def command(
     """
     from toeline.report.order_calendar import issue
     from toeline.report.order_sheet import order_sheets
-    from toeline.results.dataset import damage_told, open_run
+    from toeline.results.dataset import load_run
 
     refuse_other_than_run(run)
     folder = output or Path(f"{run.stem}.orders")
     suffixes = [FORMATS[name] for name in formats or FORMATS]
-    with open_run(run) as opened, damage_told(run):
-        dataset = opened.load()
+    dataset = load_run(run)
     if not dataset.sizes["time"]:
         raise UsageError(f"{run} was stopped before anything reached the disk: there are no orders to write.")
     if not dataset.sizes["gate"]:

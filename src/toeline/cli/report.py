@@ -1,6 +1,5 @@
 """`toeline report`: a page to look at runs with."""
 
-from contextlib import ExitStack
 from pathlib import Path
 
 import click
@@ -27,15 +26,13 @@ def command(runs: tuple[Path, ...], output: Path | None, overwrite: bool) -> Non
     from toeline.cli.compare import run_names
     from toeline.cli.output_files import refuse_page, show_or_write
     from toeline.report.page.document import report_page
-    from toeline.results.dataset import open_run
+    from toeline.results.dataset import load_run
 
     for run in runs:
         refuse_other_than_run(run)
     refuse_twice([(run, None) for run in runs])
     page = output or Path(f"{runs[0].name.removesuffix('.partial').removesuffix('.nc')}.html")
     refuse_page(page, runs, overwrite)
-    with ExitStack() as stack:
-        opened = [stack.enter_context(open_run(run)) for run in runs]
-        names = run_names([(file, run.attrs["plan"]) for file, run in zip(runs, opened, strict=True)])
-        text = report_page(dict(zip(names, opened, strict=True)))
-    show_or_write(text, page)
+    loaded = [load_run(run) for run in runs]
+    names = run_names([(file, run.attrs["plan"]) for file, run in zip(runs, loaded, strict=True)])
+    show_or_write(report_page(dict(zip(names, loaded, strict=True))), page)

@@ -22,7 +22,8 @@ from toeline.results.encoding import (
     static_values,
     surface_names_of,
 )
-from toeline.results.provenance import ATTRIBUTES, SOURCE_PREFIX
+from toeline.results.provenance import SOURCE_PREFIX
+from toeline.results.soundness import misfit_of
 from toeline.results.variables import GROWING_DIMENSIONS, VARIABLES, growing
 
 CHUNK_CACHE = 2**18
@@ -82,8 +83,8 @@ class DatasetSink:
 def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
     """Open a run file, finished or .partial, values loaded when needed; close it after use, or open it in a `with`.
 
-    Attribute `outcome` says how the run ended. UsageError for a file that is missing, no run of Toeline, or of a
-    version that wrote less. Values that turn out to be damaged when loaded raise RuntimeError; see `damage_told`.
+    Attribute `outcome` says how the run ended. UsageError for a file that is missing, no run of Toeline, or not as this
+    version writes it. Values that turn out to be damaged when loaded raise RuntimeError; see `damage_told`.
     """
     file = Path(path)
     if not file.is_file():
@@ -91,18 +92,26 @@ def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
     netCDF4.set_chunk_cache(CHUNK_CACHE)
     try:
         run = xr.open_dataset(file, engine="netcdf4")
-    except (OSError, ValueError) as error:
+    except OSError as error:
         raise UsageError(f"{file} is no readable NetCDF file") from error
+    except ValueError as error:
+        raise UsageError(f"{file} is no readable NetCDF file: {str(error).partition('. ')[0]}") from error
     if not str(run.attrs.get("source", "")).startswith(SOURCE_PREFIX):
         run.close()
         raise UsageError(f"{file} is not the file of a Toeline run")
-    missing = _missing(run)
-    if missing:
+    misfit = misfit_of(run)
+    if misfit is not None:
         run.close()
         raise UsageError(
-            f"{file} is of another version, {run.attrs['source']}: it has no {missing[0]}; run its day again to read it"
+            f"{file} is spoilt or of another version, {run.attrs['source']}: {misfit}; run its day again to read it"
         )
     return run
+
+
+def load_run(path: str | os.PathLike[str]) -> xr.Dataset:
+    """A run file with all its values in memory. UsageError as for `open_run`, and where values are damaged."""
+    with open_run(path) as run, damage_told(path):
+        return run.load()
 
 
 @contextmanager
@@ -114,12 +123,6 @@ def read_apart(run: xr.Dataset) -> Iterator[xr.Dataset]:
         return
     with open_run(source) as apart:
         yield apart
-
-
-def _missing(run: xr.Dataset) -> list[str]:
-    """What every file of this version has and the run has not; the state at the end is there once it has ended."""
-    written = [variable.name for variable in VARIABLES.values() if not variable.is_state]
-    return [name for name in written if name not in run.variables] + [key for key in ATTRIBUTES if key not in run.attrs]
 
 
 @contextmanager

@@ -28,8 +28,9 @@ seen. Values that change at once are the new ones at that instant; but a change 
 the next day, and the last values are those before it. What the next day starts from is always of the very end.
 While a run goes on, and after one that stopped early, its file is named `run.nc.partial`; attribute `outcome` says how
 it ended. `run.nc.checkpoint` beside it is what `toeline run --resume` needs to go on. A killed run may also leave
-`run.nc.writing` or `run.nc.copying`: they are of no use, and the next run of that name removes them. No state in any
-file is safe to enter.
+`run.nc.writing` or `run.nc.copying`: they are of no use, and the next run of that name removes them. A file in which
+an attribute or a variable is missing or is not as below, because another version or a hand wrote it, is refused with
+its name, what was found and what is expected. No state in any file is safe to enter.
 """
 
 
