@@ -11,6 +11,8 @@ from tests.invariants.stopped_days import copies_by_count, full_day
 
 from toeline import open_run, simulate
 from toeline.errors import UsageError
+from toeline.results import unfinished
+from toeline.results.dataset import damage_told
 from toeline.results.netcdf_writer import NetcdfSink
 
 THINNED = {"every": "10 min", "events_every": "1 min"}
@@ -111,6 +113,52 @@ def test_damaged_checkpoint_is_refused(stopped):
     path.with_name("run.nc.checkpoint").write_bytes(b"PK damaged")
     with pytest.raises(UsageError, match=r"run\.nc\.checkpoint cannot be read"):
         simulate(scenario, path, resume=True)
+
+
+@pytest.mark.parametrize("place", [3, 40, 5000, -40])
+def test_checkpoint_of_which_a_byte_was_changed_is_refused(stopped, place):
+    scenario, path = stopped
+    checkpoint = path.with_name("run.nc.checkpoint")
+    content = bytearray(checkpoint.read_bytes())
+    content[place] ^= 1
+    checkpoint.write_bytes(content)
+    with pytest.raises(UsageError, match=r"run\.nc\.checkpoint cannot be read"):
+        simulate(scenario, path, resume=True)
+
+
+def test_run_of_edited_sources_is_refused_and_nothing_is_lost(stopped, monkeypatch):
+    scenario, path = stopped
+    before = {name: path.with_name(name).read_bytes() for name in ("run.nc.partial", "run.nc.checkpoint")}
+    monkeypatch.setattr(unfinished, "source_digest", lambda: "of other sources")
+    with pytest.raises(
+        UsageError, match=r"run\.nc\.checkpoint was made .* the source code of the program is not the same"
+    ):
+        simulate(scenario, path, resume=True)
+    assert before == {name: path.with_name(name).read_bytes() for name in before}
+
+
+def test_rows_that_the_checkpoint_counts_and_the_file_has_not_are_missed(stopped):
+    scenario, path = stopped
+    partial = path.with_name("run.nc.partial")
+    whole = partial.read_bytes()
+    with pytest.raises(KeyboardInterrupt):
+        simulate(scenario, path, overwrite=True, progress=stop_at(0.9))
+    partial.write_bytes(whole)
+    with pytest.raises(UsageError, match=r"run\.nc\.partial has \d+ rows along time, expected: \d+ or more"):
+        simulate(scenario, path, resume=True)
+
+
+def test_rows_that_cannot_be_read_are_told_and_nothing_is_left_half_written(stopped, tmp_path, monkeypatch):
+    scenario, path = stopped
+
+    def damaged(self, dimension, length):
+        with damage_told(self.path):
+            raise RuntimeError("NetCDF: HDF error")
+
+    monkeypatch.setattr(unfinished.Unfinished, "rows", damaged)
+    with pytest.raises(UsageError, match=r"run\.nc\.partial is damaged and cannot be read"):
+        simulate(scenario, path, resume=True)
+    assert sorted(found.name for found in tmp_path.glob("run.nc*")) == ["run.nc.checkpoint", "run.nc.partial"]
 
 
 def test_run_without_a_checkpoint_begins_anew(stopped, tmp_path):

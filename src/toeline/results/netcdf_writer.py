@@ -214,9 +214,13 @@ class NetcdfSink:
 
     @contextmanager
     def _giving_up_on_failure(self) -> Iterator[None]:
-        """Turn a failed write into RunError; the last copy stays."""
+        """Turn a failed write into RunError; the last copy stays, also where what is to be written cannot be read."""
         try:
             yield
+        except UsageError:
+            self._file.close()
+            self._run_file.abandon()
+            raise
         except (OSError, RuntimeError) as error:  # netCDF4 raises RuntimeError for what HDF5 reports
             self._is_closed = True
             with suppress(OSError, RuntimeError):
