@@ -116,9 +116,11 @@ def test_limits_of_the_chart_are_those_of_the_table(folder, call):
         (("--headwater", "51,51.1,51.2,51.3", "--chart", "middle.png"), "found 4 headwaters; allowed: up to 3"),
         (("--opening", "0", "--chart", "middle.png"), "found no opening above 0"),
         (("--tailwater", "52", "--headwater", "51", "--chart", "middle.png"), "all tailwaters stand above"),
+        (("--chart", "middle.png", "--csv", "middle.discharge.csv"), "the chart writes its own numbers there"),
+        (("--chart", "middle.png", "--csv", "nowhere/rating.csv"), "there is no directory nowhere"),
     ],
 )
 def test_a_chart_that_cannot_be_drawn_is_refused(arguments, message, folder, call):
     result = call("rating", "canal.toml", "Middle check", *arguments)
-    assert (result.exit_code, message in result.stderr) == (2, True)
+    assert (result.exit_code, result.stdout, message in result.stderr) == (2, "", True)
     assert not list(folder.glob("middle*"))

@@ -79,3 +79,49 @@ def test_the_canal_file_is_never_replaced(folder, call):
     before = (folder / "canal.toml").read_text()
     result = call("rating", "canal.toml", "Middle check", "--csv", "canal.toml", "--overwrite")
     assert (result.exit_code, (folder / "canal.toml").read_text()) == (2, before)
+
+
+@pytest.mark.parametrize(
+    ("option", "value", "found"),
+    [
+        ("--headwater", "1.4", "found 1.4 m"),
+        ("--headwater", "-5", "found -5 m"),
+        ("--headwater", "49.83", "found 49.83 m"),
+        ("--headwater", "51.4 mm", "found 0.0514 m"),
+        ("--headwater", "50,4", "found 4 m"),
+        ("--headwater", "1e300", "found 1e+300 m"),
+    ],
+)
+def test_a_headwater_at_which_no_water_reaches_the_gate_or_that_is_no_level_is_refused(
+    folder, call, option, value, found
+):
+    result = call("rating", "canal.toml", "Middle check", f"{option}={value}")
+    assert (result.exit_code, result.stdout) == (2, "")
+    allowed = "allowed: levels above the datum, from the sill of Middle check, 49.84 m, to 99.84 m"
+    assert result.stderr == f"Error: {option}: {found}; {allowed}\n"
+
+
+def test_a_tailwater_below_the_floor_is_refused(folder, call):
+    result = call("rating", "canal.toml", "Middle check", *LEVELS[:2], "--tailwater", "0.8,49.5")
+    assert (result.exit_code, result.stdout) == (2, "")
+    assert (
+        "--tailwater: found 0.8 m; allowed: levels above the datum, from the floor below Middle check, "
+        in result.stderr
+    )
+
+
+def test_nothing_flows_at_the_sill_and_water_flows_back_where_the_tailwater_is_higher(folder, call):
+    result = call(
+        "rating", "canal.toml", "Middle check", "--headwater", "49.84", "--tailwater", "49.3,51", "--opening", "0.2"
+    )
+    assert result.exit_code == 0
+    row = result.stdout.splitlines()[5].split()
+    assert (row[3], float(row[5]) < 0.0, row[6][0]) == ("0.000", True, "r")
+
+
+@pytest.mark.parametrize("value", ["nan", "inf", "", ",", "51.4 meter", "51.4m3", "51,4,"])
+@pytest.mark.parametrize("option", ["--headwater", "--tailwater", "--opening"])
+def test_what_is_no_finite_length_is_refused(folder, call, option, value):
+    result = call("rating", "canal.toml", "Middle check", option, value)
+    assert (result.exit_code, result.stdout) == (2, "")
+    assert f"Error: {option}: found " in result.stderr

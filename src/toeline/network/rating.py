@@ -29,6 +29,9 @@ SPACING = 100.0
 
 JET_POINTS = 400
 
+HIGHEST_HEAD = 50.0
+"""Highest level above the sill [m] that is rated (choice): above stand levels in another unit, not those of a canal."""
+
 STATES = (
     "closed", "free", "near_modular_limit", "drowned", "clear_of_water", "clear_and_drowned", "overtopped", "reverse",
 )  # fmt: skip
@@ -137,6 +140,16 @@ def default_rating_levels(canal: CanalFile, gate_name: str) -> tuple[np.ndarray,
     floor = _Site(network_of(canal.canal, SPACING), gate_name).law.floor_level
     tailwaters = np.linspace(floor, top, 6)[:-1]
     return headwaters, tailwaters, gate.max_opening * np.array([0.1, 0.2, 0.4, 0.6, 0.8, 1.0])
+
+
+def ratable_levels(canal: CanalFile, gate_name: str) -> tuple[tuple[float, float], tuple[float, float]]:
+    """Least and greatest headwater level, least and greatest tailwater level [m] at which a gate can be rated.
+
+    The headwater stands on the sill or above, the tailwater on the floor or above.
+    """
+    law = _Site(network_of(canal.canal, SPACING), gate_name).law
+    highest = law.sill_level + HIGHEST_HEAD
+    return (law.sill_level, highest), (law.floor_level, highest)
 
 
 class _Site:
