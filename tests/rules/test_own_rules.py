@@ -150,6 +150,42 @@ def test_decision_times_that_are_none_end_the_run(tmp_path, times):
     assert "allowed: an array of times in ms from the start" in ending("return None", tmp_path, more)
 
 
+def test_more_decisions_than_one_a_second_end_the_run(tmp_path):
+    more = "\n    @classmethod\n    def decision_times(cls, *_):\n        return list(range(20_000))\n"
+    assert "decides 20,000 times; allowed: once a second" in ending("return None", tmp_path, more)
+
+
+@pytest.mark.parametrize("bounds", ["least=0.0, most=86400.0", "least=0.001, most=86400.0, default=3600.0"])
+def test_a_time_between_decisions_below_a_second_is_refused_whatever_the_rule_allows(tmp_path, bounds):
+    source = WATCH.replace("least=60.0, most=86400.0, default=3600.0", bounds)
+    (tmp_path / "watch.py").write_text(source, encoding="utf-8")
+    with pytest.raises(ScenarioError, match=r'every: found "0.01 s"; allowed: from 1 s to 24 h'):
+        scenario(tmp_path, RULE | {"every": "0.01 s"})
+    assert scenario(tmp_path, RULE | {"every": "1 s"}).rules[0].given.every == 1.0
+
+
+def test_a_time_between_decisions_in_plain_seconds_has_the_same_bound(tmp_path):
+    source = WATCH.replace('duration("Time between decisions.", least=60.0', 'number(None, "Seconds.", least=0.0')
+    (tmp_path / "watch.py").write_text(source, encoding="utf-8")
+    with pytest.raises(ScenarioError, match=r"every: found 0.001; allowed: a number from 1 to 86400|from 1 to 86400"):
+        scenario(tmp_path, RULE | {"every": 0.001})
+
+
+@pytest.mark.parametrize("bounds", ["least=0.0, most=0.5", "least=0.0, most=60.0, default=0.001"])
+def test_a_rule_that_would_decide_too_often_by_itself_is_refused(tmp_path, bounds):
+    source = WATCH.replace("least=60.0, most=86400.0, default=3600.0", bounds)
+    (tmp_path / "watch.py").write_text(source, encoding="utf-8")
+    with pytest.raises(ScenarioError, match=r"Watch in .*watch.py decides too often by its setting every; allowed: a"):
+        scenario(tmp_path, RULE)
+
+
+def test_more_decisions_than_a_period_has_room_for_are_refused(tmp_path):
+    (tmp_path / "watch.py").write_text(WATCH.replace("least=60.0", "least=1.0"), encoding="utf-8")
+    keys = day(8.0, length="400 d", plans={"only": {"rules": [RULE | {"every": "2 s"}]}})
+    with pytest.raises(ScenarioError, match=r"rules\[1\] every: found 2 s, 17,280,000 times in the period of 9600 h"):
+        scenario_of(tmp_path, stepped_canal(2, 800.0), keys)
+
+
 def test_a_gate_that_is_none_ends_the_run(tmp_path):
     assert "moves 'G9'; allowed: a gate of the canal" in ending("return 0.1", tmp_path, "\n    gate = 'G9'\n")
 

@@ -135,6 +135,24 @@ CASES = [
         ],
     ),
     (
+        'length = "24 h"\nlongest_step = "10 min"\n\n[output]\nevery = "1 min"',
+        'length = "400 d"\nlongest_step = "1 s"\n\n[output]\nevery = "1 min"\nevents_every = "2 s"',
+        [
+            "day.toml:7: period longest_step: found 1 s, 34,560,000 times in the period of 9600 h; allowed: up to "
+            "10,000,000 times, here 4 s or longer",
+            "day.toml:11: output events_every: found 2 s, 17,280,000 times in the period of 9600 h; allowed: up to "
+            "10,000,000 times, here 4 s or longer",
+        ],
+    ),
+    (
+        'length = "24 h"\nlongest_step = "10 min"\n\n[output]\nevery = "1 min"',
+        'length = "5 d"\nspacing = 1.0\n\n[output]\nprofiles_every = "1 s"',
+        [
+            "day.toml:10: output profiles_every: found 1 s, 432,000 long profiles of 3,000 points, at the spacing of "
+            "1 m; allowed: up to 1,000,000,000 levels in all",
+        ],
+    ),
+    (
         'every = "1 min"',
         'every = "10 min"\nevents_every = "4 min"',
         [

@@ -11,6 +11,7 @@ import click
 from toeline.cli.exit_status import ExitStatus
 from toeline.cli.input_files import INPUT_FILE, is_run, load_plans, refuse_twice
 from toeline.cli.run import tell_of_compiling
+from toeline.cli.run_size import tell_of_large_runs
 from toeline.cli.terminal import WIDEST_PAGE, page_width, progress_bar
 from toeline.errors import RunError, UsageError
 
@@ -151,7 +152,9 @@ def _sources_in(file: Path, plans: Sequence[str], overrides: Sequence[str]) -> l
 @contextmanager
 def opened_runs(sources: Sequence[Source]) -> Iterator[dict[str, "xr.Dataset"]]:
     """All runs by name: files opened, plans run in memory."""
-    if any(source.scenario for source in sources):
+    scenarios = [source.scenario for source in sources if source.scenario]
+    if scenarios:
+        tell_of_large_runs(scenarios, "in memory")
         tell_of_compiling()
     with ExitStack() as stack:
         runs = [stack.enter_context(source.opened()) for source in sources]

@@ -63,12 +63,14 @@ def command(
     gone on with by --resume.
     """
     from toeline.cli.output_files import choose_outputs, refuse_outputs
+    from toeline.cli.run_size import tell_of_large_runs
 
     if resume and overwrite:
         raise UsageError("--resume goes on with a run and --overwrite begins it anew: give one of them.")
     scenarios = load_plans(day, plan, overrides)
     outputs = choose_outputs(scenarios, output)
     refuse_outputs(outputs, scenarios, overwrite, resume)
+    tell_of_large_runs(scenarios, "before they are compressed")
     tell_of_compiling()
     for line in caution_lines(scenarios):
         note(line)

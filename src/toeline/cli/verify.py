@@ -52,10 +52,12 @@ def command(
     """
     from toeline.cli.output_files import input_files, refuse_page, show_or_write
     from toeline.cli.run import tell_of_compiling
+    from toeline.cli.run_size import tell_of_large_runs
 
     scenarios = load_plans(day, plan, overrides)
     if output is not None:
         refuse_page(output, input_files(scenarios), overwrite)
+    tell_of_large_runs(scenarios, "in memory, several times over")
     tell_of_compiling()
     found = [(scenario, verification) for scenario in scenarios if (verification := verification_of(scenario))]
     if found:

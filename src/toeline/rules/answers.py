@@ -7,7 +7,7 @@ from typing import Any
 
 import numpy as np
 
-from toeline.rules.setting import Setting
+from toeline.rules.setting import EVERY_KEY, LEAST_EVERY, Setting
 
 KIND = "kind"
 """Key of an entry in a day file by which the rule itself is chosen."""
@@ -57,3 +57,12 @@ def are_settings(value: Any) -> bool:
     return isinstance(value, Mapping) and all(
         isinstance(key, str) and key != KIND and isinstance(setting, Setting) for key, setting in value.items()
     )
+
+
+def is_too_often(settings: Mapping[str, Setting]) -> bool:
+    """Whether the time between decisions is shorter than allowed where nothing is given, or whatever is given."""
+    every = settings.get(EVERY_KEY)
+    if every is None or every.takes not in ("number", "duration"):
+        return False
+    default = finite(every.default)
+    return every.most < LEAST_EVERY or (default is not None and default < LEAST_EVERY)

@@ -18,13 +18,14 @@ from typing import TypeVar
 import numpy as np
 
 from toeline.errors import RunError
-from toeline.rules.answers import are_settings, finite, is_memory, is_misfits, whole_times
+from toeline.rules.answers import are_settings, finite, is_memory, is_misfits, is_too_often, whole_times
 from toeline.rules.base import Answer, CanalFacts, Present, Rule
 from toeline.rules.gatekeeper_rounds import GatekeeperRounds
 from toeline.rules.hold_discharge import HoldDischarge
 from toeline.rules.hold_downstream_level import HoldDownstreamLevel
 from toeline.rules.hold_upstream_level import HoldUpstreamLevel
 from toeline.rules.hold_volume import HoldVolume
+from toeline.rules.setting import EVERY_KEY, LEAST_EVERY
 
 Result = TypeVar("Result")
 
@@ -74,6 +75,8 @@ class FoundRule:
         times = whole_times(found, length_ms)
         if times is None:
             raise RunError(self._nonsense("decides at", found, "an array of times in ms from the start"))
+        if times.size > length_ms / (1000.0 * LEAST_EVERY) + 1:
+            raise RunError(f'rule "{self.kind}" decides {times.size:,} times; allowed: once a second')
         return times
 
     def make(self, given: SimpleNamespace, canal: CanalFacts) -> Rule:
@@ -188,6 +191,9 @@ def _of_module(kind: str, module: ModuleType, name: str, path: str = "") -> Foun
     if not are_settings(rule.settings):
         allowed = "a toeline.rules.Setting by key, any but kind"
         raise UnknownRuleError(f"{name} in {file} has settings that are none; allowed: {allowed}")
+    if is_too_often(rule.settings):
+        allowed = f"a default, and bounds, of {LEAST_EVERY:g} s or more"
+        raise UnknownRuleError(f"{name} in {file} decides too often by its setting {EVERY_KEY}; allowed: {allowed}")
     source = Path(file).read_text(encoding="utf-8", errors="replace") if written else ""
     return FoundRule(kind, rule, file, source)
 

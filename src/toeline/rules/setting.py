@@ -88,6 +88,11 @@ def place(kind: Literal["gate", "pool"], description: str) -> Setting:
     return Setting(kind, description)
 
 
+EVERY_KEY = "every"
+LEAST_EVERY = 1.0
+"""Shortest time between decisions [s] that a setting named `every` may give, whatever its rule allows: a unit mistyped
+would make millions of decisions."""
+
 GATE = place("gate", "Name of the gate that the rule moves.")
 
 EVERY = duration(

@@ -11,7 +11,7 @@ from pydantic import ValidationError
 from toeline.errors import Fault, ScenarioError, UsageError
 from toeline.scenario.checks.canal_checks import misfits_of_canal
 from toeline.scenario.checks.day_checks import misfits_of_day, misfits_of_orders
-from toeline.scenario.checks.rule_checks import misfits_of_rules, misfits_of_stuck
+from toeline.scenario.checks.rule_checks import misfits_of_pace, misfits_of_rules, misfits_of_stuck
 from toeline.scenario.input_file import InputFile, read_input_file
 from toeline.scenario.messages import csv_faults_of, misfits_of
 from toeline.scenario.misfits import Misfit, in_quotes, nearest, shown
@@ -223,7 +223,7 @@ def _faults_between(
     for name, plan in plans.items():
         for misfit in misfits_of_orders(plan.orders, canal):
             yield _fault_of_order(misfit, name, plan.orders, source)
-        for misfit in misfits_of_rules(plan.rules, canal):
+        for misfit in (*misfits_of_rules(plan.rules, canal), *misfits_of_pace(plan.rules, day.period.length_ms)):
             yield source.fault(misfit.message, "plans", name, "rules", *misfit.path)
         for misfit in misfits_of_stuck(plan.stuck, canal):
             yield source.fault(misfit.message, "plans", name, "stuck", *misfit.path)

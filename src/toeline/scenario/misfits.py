@@ -2,7 +2,8 @@
 
 import difflib
 import json
-from collections.abc import Iterable
+import math
+from collections.abc import Iterable, Iterator
 from datetime import date, datetime, time
 from typing import Any, NamedTuple
 
@@ -12,6 +13,9 @@ from toeline.units import UnitSystem, quantity_text
 
 LONGEST_SHOWN = 60
 """Characters of a value that a message repeats."""
+
+MOST_TIMES = 10_000_000
+"""How often a thing may come in a period (choice): every 4 s in 400 days; more is a unit mistyped."""
 
 MOST_LISTED = 100
 """Names that a message lists."""
@@ -38,6 +42,18 @@ class CsvFaultsError(ValueError):
     def __init__(self, faults: Iterable[Fault]):
         self.faults = tuple(faults)
         super().__init__("; ".join(str(fault) for fault in self.faults))
+
+
+def too_often(path: KeyPath, every_ms: float, length_ms: int) -> Iterator[Misfit]:
+    """Say that a time between two things of a kind makes too many of them in the period."""
+    if length_ms <= MOST_TIMES * every_ms:
+        return
+    found, length, least = (
+        quantity_text(ms / 1000.0, "duration", UnitSystem.metric)
+        for ms in (every_ms, length_ms, math.ceil(length_ms / MOST_TIMES / 1000.0) * 1000)
+    )
+    times = f"{length_ms // every_ms:,.0f} times in the period of {length}"
+    yield Misfit(path, f"found {found}, {times}; allowed: up to {MOST_TIMES:,} times, here {least} or longer")
 
 
 def length_outside(path: KeyPath, found: float, allowed: str, limit: float, system: UnitSystem) -> Misfit:

@@ -64,8 +64,11 @@ rules whose `hours` do not overlap. Besides those below, a kind may be a rule of
 | `"canal_rules.night:NightWatch"` | the class in an installed package |
 | `"night watch"` | a rule of an installed package, its entry point of that name in the group `toeline.rules` |
 
-Its code is run by every command that reads the day file, `toeline check` too: use files that you trust. Its text enters
-the digest of the inputs; what it imports itself does not.
+Its settings are what its class declares, but one named `every`, the time between decisions, is never shorter than
+1 s. Its code is run by every command that reads the day file, `toeline check` too: use files that you trust. Its text
+enters the digest of the inputs; what it imports itself does not.
+
+A rule decides up to once a second, and by `every` up to 10,000,000 times in the period.
 """
 
 

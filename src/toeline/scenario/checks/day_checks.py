@@ -3,13 +3,16 @@
 from collections.abc import Iterable, Iterator
 from pathlib import Path
 
-from toeline.scenario.misfits import Misfit, length_outside, nearest, shown
+from toeline.scenario.misfits import Misfit, length_outside, nearest, shown, too_often
 from toeline.scenario.orders import Order
 from toeline.scenario.schema.canal import Canal
 from toeline.scenario.schema.day import MARKS_OF_ROUNDING, TO_HOLD_TARGETS, Day, OpeningOfGate
 from toeline.scenario.schema.gates import Gate
 from toeline.scenario.text_file import is_there
 from toeline.units import UnitSystem, quantity_text
+
+MOST_PROFILE_LEVELS = 1_000_000_000
+"""Levels of long profiles that a file may hold (choice): 20 GB before they are compressed, with what goes with them."""
 
 
 def misfits_of_day(day: Day, canal: Canal, folder: Path, system: UnitSystem) -> Iterator[Misfit]:
@@ -19,6 +22,7 @@ def misfits_of_day(day: Day, canal: Canal, folder: Path, system: UnitSystem) -> 
     yield from _misfits_of_offtakes(day.offtake_openings, "offtake_openings", "orifice", canal)
     yield from _misfits_of_seepage(day, canal)
     yield from _misfits_of_output(day)
+    yield from _misfits_of_size(day, canal, system)
     yield from _misfits_of_start(day, canal, folder, system)
     yield from _misfits_of_rounding(day, canal)
 
@@ -55,6 +59,21 @@ def _misfits_of_output(day: Day) -> Iterator[Misfit]:
     for key in ("every", "profiles_every"):
         if getattr(day.output, f"{key}_ms") > day.period.length_ms:
             yield Misfit(("output", key), "longer than the period; allowed: up to the length of the period")
+
+
+def _misfits_of_size(day: Day, canal: Canal, system: UnitSystem) -> Iterator[Misfit]:
+    """Find what makes a run endless, or a file that no disk holds."""
+    length, output = day.period.length_ms, day.output
+    yield from too_often(("output", "events_every" if output.is_thinned else "every"), output.finest_ms, length)
+    yield from too_often(("period", "longest_step"), day.period.longest_step_ms, length)
+    canal_length = sum(pool.length for pool in canal.pools)
+    points, profiles = canal_length / day.period.spacing, length / output.profiles_every_ms
+    if points * profiles > MOST_PROFILE_LEVELS:
+        spacing = quantity_text(day.period.spacing, "length", system)
+        every = quantity_text(output.profiles_every_ms / 1000.0, "duration", system)
+        found = f"found {every}, {profiles:,.0f} long profiles of {points:,.0f} points, at the spacing of {spacing}"
+        allowed = f"up to {MOST_PROFILE_LEVELS:,} levels in all"
+        yield Misfit(("output", "profiles_every"), f"{found}; allowed: {allowed}")
 
 
 def _misfits_of_start(day: Day, canal: Canal, folder: Path, system: UnitSystem) -> Iterator[Misfit]:

@@ -6,9 +6,10 @@ from itertools import combinations
 from toeline.rules.base import CanalFacts
 from toeline.rules.decision_times import overlap
 from toeline.rules.registry import UnknownRuleError
+from toeline.rules.setting import EVERY_KEY
 from toeline.scenario.canal_facts import canal_facts
 from toeline.scenario.checks.day_checks import misfits_of_bay
-from toeline.scenario.misfits import Misfit, nearest, shown
+from toeline.scenario.misfits import Misfit, nearest, shown, too_often
 from toeline.scenario.rules import RuleChoice
 from toeline.scenario.schema.canal import Canal
 from toeline.scenario.schema.plans import StuckEntry
@@ -29,6 +30,14 @@ def misfits_of_rules(rules: Sequence[RuleChoice], canal: Canal) -> Iterator[Misf
         if gate == other and overlap(*hours):
             message = f'"{gate}" already has a rule at these hours; allowed: one, or several whose hours do not overlap'
             yield Misfit((second,), message)
+
+
+def misfits_of_pace(rules: Sequence[RuleChoice], length_ms: int) -> Iterator[Misfit]:
+    """Find rules that decide too often in a period; paths begin with the index of the rule."""
+    for index, rule in enumerate(rules):
+        every = getattr(rule.given, EVERY_KEY, None)
+        if isinstance(every, float):
+            yield from too_often((index, EVERY_KEY), every * 1000.0, length_ms)
 
 
 def _misfits_of_rule(rule: RuleChoice, facts: CanalFacts) -> Iterator[Misfit]:

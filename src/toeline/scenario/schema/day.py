@@ -109,7 +109,7 @@ class Period(Table):
         100.0, description="Largest distance between two computed points along a pool."
     )
     longest_step_ms: Annotated[int, Duration("1 s", "6 h")] = Field(
-        900_000, alias="longest_step", description="Longest time step."
+        900_000, alias="longest_step", description="Longest time step; of which the period has up to 10,000,000."
     )
     local_inertia: bool = Field(
         False, description="Whether the inertia of the water is kept: to measure what the quasi-steady view leaves out."
@@ -117,7 +117,7 @@ class Period(Table):
 
 
 class Output(Table):
-    """How often results are written."""
+    """How often results are written: up to 10,000,000 rows, and 1,000,000,000 levels of long profiles in all."""
 
     every_ms: Annotated[int, Duration("1 s", "24 h")] = Field(
         60_000, alias="every", description="Time between values of gates, pools and offtakes."

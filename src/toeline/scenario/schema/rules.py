@@ -10,7 +10,7 @@ from typing import Annotated, Any, Literal
 from pydantic import Field, ValidationError, ValidationInfo, create_model
 
 from toeline.rules.registry import BUILT_IN, FoundRule, UnknownRuleError, find_rule, known_kinds
-from toeline.rules.setting import Setting
+from toeline.rules.setting import EVERY_KEY, LEAST_EVERY, Setting
 from toeline.scenario.messages import misfits_of
 from toeline.scenario.misfits import Misfit, MisfitsError, nearest, shown
 from toeline.scenario.reading import reading_of
@@ -114,15 +114,16 @@ class LeadTimesKind(ValueKind):
         return {"anyOf": [{"enum": list(KINDS_OF_LEAD)}, by_pool]}
 
 
-def _annotation(setting: Setting) -> Any:
-    quantity = Quantity(setting.dimension, least=setting.least, most=setting.most, above=setting.above)
+def _annotation(key: str, setting: Setting) -> Any:
+    least = max(setting.least, LEAST_EVERY) if key == EVERY_KEY else setting.least
+    quantity = Quantity(setting.dimension, least=least, most=setting.most, above=setting.above)
     match setting.takes:
         case "number":
             return Annotated[float, quantity]
         case "series":
             return Annotated[Any, SeriesKind(quantity, "lines")]
         case "duration":
-            bounds = (quantity_text(bound, "duration", UnitSystem.metric) for bound in (setting.least, setting.most))
+            bounds = (quantity_text(bound, "duration", UnitSystem.metric) for bound in (least, setting.most))
             return Annotated[float, Seconds(Duration(*bounds))]
         case "gate" | "pool":
             return Name
@@ -142,7 +143,7 @@ def table_of(found: FoundRule) -> type[Table]:
     fields: dict[str, Any] = {"kind": (Literal[found.kind], Field(description="The rule."))}
     for key, setting in found.rule.settings.items():
         default = ... if setting.is_required else setting.default
-        annotation = _annotation(setting)
+        annotation = _annotation(key, setting)
         if default is None:
             annotation = annotation | None
         fields[_FIELD + key] = (annotation, Field(default, alias=key, description=setting.description))
@@ -175,7 +176,10 @@ class RulesKind(ValueKind):
         tables = [table_of(FoundRule(kind, rule)) for kind, rule in BUILT_IN.items()]
         own = {
             "type": "object",
-            "properties": {"kind": {"type": "string", "not": {"enum": list(BUILT_IN)}}},
+            "properties": {
+                "kind": {"type": "string", "not": {"enum": list(BUILT_IN)}},
+                EVERY_KEY: {"description": f"Time between decisions: {LEAST_EVERY:g} s or longer."},
+            },
             "required": ["kind"],
         }
         built_in = [table.model_json_schema(schema_generator=TomlJsonSchema) for table in tables]
