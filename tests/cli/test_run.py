@@ -203,19 +203,17 @@ def test_going_on_and_beginning_anew_are_not_asked_for_together(one_plan, call):
     assert "give one of them" in result.stderr
 
 
-def wait_for_rows(partial: Path, run: subprocess.Popen[str]) -> None:
-    """Wait until the file has grown over what it is without rows, or the run has ended."""
-    sizes: list[int] = []
-    while run.poll() is None and (not sizes or sizes[-1] == sizes[0]):
+def wait_for_checkpoint(checkpoint: Path, run: subprocess.Popen[str]) -> None:
+    """Wait until rows are safe and the state after them too, or the run has ended."""
+    while run.poll() is None and not checkpoint.exists():
         time.sleep(0.05)
-        sizes += [partial.stat().st_size] if partial.exists() else []
 
 
 def test_ctrl_c_leaves_a_file_that_can_be_described(one_plan, folder):
     long_day = ("--set", 'period.length="60 d"', "--set", 'output.every="1 s"')
     command = [sys.executable, "-m", "toeline", "run", "day.toml", *long_day]
     run = subprocess.Popen(command, stdout=subprocess.PIPE, stderr=subprocess.PIPE, text=True)
-    wait_for_rows(folder / "day.nc.partial", run)
+    wait_for_checkpoint(folder / "day.nc.checkpoint", run)
     run.send_signal(signal.SIGINT)
     output, errors = run.communicate()
     assert (run.returncode, output) == (130, "")
