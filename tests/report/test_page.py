@@ -64,6 +64,21 @@ def test_the_verdict_comes_first_with_place_time_and_amount(bad_hour):
     assert "the jump ends up to 41.2 m from the gate; the floor is protected to 34.0 m" in verdict
 
 
+def test_what_gatekeepers_need_stands_before_the_figures_and_numbers_after_them(ordered_run):
+    text = words(report_page({"day": ordered_run(**PLACES)}))
+    order = [
+        text.index(heading)
+        for heading in (" Orders plan raise: 2 orders, by time", "Long profile", "Least margins: 2 rows")
+    ]
+    assert order == sorted(order)
+
+
+def test_a_long_table_is_folded_and_not_printed_a_short_one_stands(ordered_run):
+    few, many = (report_page({"day": ordered_run(count, **PLACES)}) for count in (5, 31))
+    assert '<details class="folded short" open><summary>plan raise: 5 orders' in few
+    assert '<details class="folded"><summary>plan raise: 31 orders' in many
+
+
 def test_both_hazards_stand_side_by_side(bad_hour):
     text = words(report_page({"day": bad_hour}))
     floor, people = text.index("Floor: jump beyond protection 58 min"), text.index("People: drowned roller 4 h")

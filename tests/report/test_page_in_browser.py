@@ -127,6 +127,7 @@ def test_the_traces_hold_every_output_step_of_the_file(page, early):
 def test_an_incident_leads_to_its_time_and_gate(page):
     move_to(page, 0)
     page.select_option("#gate", label="Head gate")
+    page.locator("nav a", has_text="Incidents").click()
     page.locator("table.incidents tr", has_text="jump beyond protection").locator("a").click()
     assert label(page) == "06:07"
     assert page.locator(".gate-name").first.inner_text() == GATE
@@ -152,6 +153,51 @@ def test_an_incident_can_be_reached_and_followed_by_keyboard(page):
     page.locator("#verdict ol a").first.focus()
     page.keyboard.press("Enter")
     assert label(page) == "06:07"
+
+
+def open_folds(page, where: str = "") -> int:
+    return page.locator(f"{where} details.folded[open]").count()
+
+
+def test_long_tables_are_folded_under_a_line_that_says_what_is_inside(browser, files):
+    page = open_page(browser, files["one"])
+    assert open_folds(page) == 0
+    assert page.locator("#orders summary").inner_text() == "plan early: 21 orders, by time, and what became of them"
+    assert page.locator("#numbers summary").first.inner_text() == "Least margins: 6 rows"
+    assert not page.locator("#numbers table").first.is_visible()
+
+
+def test_a_folded_table_opens_by_keyboard_and_all_by_a_button(browser, files):
+    page = open_page(browser, files["one"])
+    page.locator("#numbers summary").first.focus()
+    page.keyboard.press("Enter")
+    assert page.locator("#numbers table").first.is_visible()
+    page.locator("#unfold").focus()
+    page.keyboard.press("Enter")
+    assert open_folds(page, "#numbers") == page.locator("#numbers details").count() > 10
+    page.keyboard.press("Enter")
+    assert (open_folds(page), page.locator("#unfold").inner_text()) == (0, "Unfold all tables")
+
+
+def test_a_link_to_a_folded_table_opens_it(browser, files):
+    page = open_page(browser, files["one"])
+    page.locator("nav a", has_text="Orders").click()
+    assert page.locator("#orders table").is_visible()
+    assert open_folds(page) == 1
+
+
+def test_short_tables_are_printed_though_they_are_folded(browser, files):
+    page = open_page(browser, files["one"])
+    page.locator("#numbers summary").first.click()
+    page.evaluate("document.querySelector('#orders details').classList.remove('short')")
+    page.evaluate("dispatchEvent(new Event('beforeprint'))")
+    page.emulate_media(media="print")
+    assert open_folds(page) == page.locator("details.folded").count() - 1
+    assert page.locator("#numbers table").last.is_visible()
+    after = page.evaluate("getComputedStyle(document.querySelector('#orders summary'), '::after').content")
+    assert after == '" (folded, not printed)"'
+    page.evaluate("dispatchEvent(new Event('afterprint'))")
+    assert open_folds(page) == 1
 
 
 def test_where_less_motion_is_wanted_play_steps_once_a_second(browser, files):
@@ -181,10 +227,14 @@ def test_at_380_pixels_nothing_is_wider_than_the_screen(narrow, name):
     assert page.locator("#play").bounding_box()["height"] >= 24
 
 
+@pytest.mark.parametrize("folds", ["folded", "unfolded"])
 @pytest.mark.parametrize("name", ["one", "both"])
-def test_an_accessibility_checker_finds_no_serious_fault(narrow, name):
+def test_an_accessibility_checker_finds_no_serious_fault(narrow, name, folds):
     from axe_playwright_python.sync_playwright import Axe
 
+    narrow[name].evaluate(
+        "isOpen => document.querySelectorAll('details').forEach(each => { each.open = isOpen; })", folds == "unfolded"
+    )
     faults = Axe().run(narrow[name]).response["violations"]
     assert [
         (fault["id"], fault["nodes"][0]["html"]) for fault in faults if fault["impact"] in ("serious", "critical")

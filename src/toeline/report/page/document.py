@@ -20,6 +20,7 @@ from toeline.findings.series import meanings, names
 from toeline.report import style
 from toeline.report.comparison import contrast_words
 from toeline.report.incidents import NOTHING_FOUND, SETTLING
+from toeline.report.layout import counted
 from toeline.report.page.gate_tables import bay_table, hour_tables, margin_table, move_table
 from toeline.report.page.hazard_strips import hazard_strips, hours_of_strips
 from toeline.report.page.legend import hatch_patterns, legend
@@ -27,7 +28,7 @@ from toeline.report.page.measure_tables import indicator_tables, limit_tables
 from toeline.report.page.moments import Moments, moments_of
 from toeline.report.page.moving_figures import moving_figures
 from toeline.report.page.order_table import order_table
-from toeline.report.page.table import Table
+from toeline.report.page.table import MOST_PRINTED, Table
 from toeline.report.page.verdict import floor_hazard, headline, incident_rows, people_hazard, wrongs
 from toeline.report.page.water_tables import escape_table, gauge_table, ledger_tables, roughness_table
 from toeline.report.run_clock import RunClock
@@ -36,6 +37,9 @@ from toeline.units import Display, UnitSystem
 
 MOST_RUNS = 4
 """How many runs find room beside one another."""
+
+MOST_OPEN = 5
+"""Rows of incidents and orders that stand unfolded (choice); numbers are always folded at first."""
 
 TRACE_FIGURES = (
     ("strip", "Jump: from its toe to its end", "Distance of the jump from the gate against time"),
@@ -132,6 +136,9 @@ def _words(shown: Sequence[ShownRun], moments: Moments, display: Display) -> dic
         "strips": list(zip(*(hazard_strips(each.run, length) for each in shown), strict=True)),
         "hours": hours_of_strips(first.run, length),
         "nothing_found": NOTHING_FOUND,
+        "counted": counted,
+        "most_open": MOST_OPEN,
+        "most_printed": MOST_PRINTED,
         "settling": SETTLING,
         "last_moment": len(moments.labels) - 1,
         "number_parts": _number_parts(shown, display),
@@ -154,6 +161,7 @@ def _run_words(each: ShownRun, moments: Moments, display: Display) -> dict[str, 
         "floor": floor_hazard(each.run, display),
         "people": people_hazard(each.run),
         "incidents": incident_rows(each.run, each.found, moments, display),
+        "orders": order_table(each.run, each.clock, display),
         "facts": f"{about['title']}; {about['outcome']}; made by {about['history']}; input hash {about['input_hash']}",
         "day_file": about["day_file"],
         "canal_file": about["canal_file"],
@@ -164,13 +172,10 @@ def _run_words(each: ShownRun, moments: Moments, display: Display) -> dict[str, 
 def _number_parts(shown: Sequence[ShownRun], display: Display) -> list[tuple[str, list[list[Table]]]]:
     """Every part with its tables, run by run."""
     parts: dict[str, Callable[[ShownRun], list[Table]]] = {
-        "Margins and hours": lambda each: [
+        "Margins, hours and moves": lambda each: [
             margin_table(each.run, each.clock, display),
             *hour_tables(each.run),
             bay_table(each.run, each.clock, display),
-        ],
-        "Orders and moves": lambda each: [
-            order_table(each.run, each.clock, display),
             move_table(each.run, each.clock, display),
         ],
         "Limits": lambda each: limit_tables(each.run, each.clock, display),

@@ -2,6 +2,9 @@
 
 from dataclasses import dataclass
 
+MOST_PRINTED = 30
+"""Rows of a table that is printed though it is folded on the screen (choice): less than a sheet."""
+
 
 @dataclass(frozen=True)
 class Table:
@@ -12,3 +15,8 @@ class Table:
     rows: tuple[tuple[str, ...], ...]
     words: int = 1
     note: str = ""
+
+    @property
+    def is_short(self) -> bool:
+        """Whether it is printed though it is folded."""
+        return len(self.rows) <= MOST_PRINTED

@@ -416,13 +416,23 @@ function toeline(page) {
   at("after").addEventListener("click", () => { stop(); showMoment(state.moment + 1); });
   gateChoice.addEventListener("change", () => showGate(Number(gateChoice.value)));
   along.addEventListener("change", lookAlong);
-  document.querySelectorAll("details").forEach((each) => each.addEventListener("toggle", () => { if (each.open) { showTables(); runs.forEach(writeThrough); } }));
+  document.querySelectorAll("details.nodes, details.hours").forEach((each) => each.addEventListener("toggle", () => { if (each.open) { showTables(); runs.forEach(writeThrough); } }));
   document.querySelectorAll("a[data-moment]").forEach((link) => link.addEventListener("click", () => {
     stop();
     state.moment = Number(link.dataset.moment);
     showGate(Number(link.dataset.gate));
     slider.focus({ preventScroll: true });
   }));
+  document.querySelectorAll('a[href^="#"]:not([data-moment])').forEach((link) => link.addEventListener("click", () => {
+    document.querySelectorAll(`${link.getAttribute("href")} > details.folded`).forEach((fold) => { fold.open = true; });
+  }));
+  const unfold = at("unfold"), tables = document.querySelectorAll("#numbers details.folded");
+  unfold.hidden = false;
+  unfold.addEventListener("click", () => {
+    const all = Array.from(tables).every((fold) => fold.open);
+    tables.forEach((fold) => { fold.open = !all; });
+    unfold.textContent = all ? "Unfold all tables" : "Fold all tables";
+  });
   for (const figure of page.time_figures) figure.on_event("tap", (event) => { stop(); showMoment(momentNearest(event.x)); });
   profile.figure.on_event("tap", (event) => {
     let best = 0;
@@ -433,8 +443,13 @@ function toeline(page) {
   profile.figure.x_range.change.connect(nameGates);
   profile.figure.properties.inner_width.change.connect(fitWidth);
 
-  /* A printer gets pictures of the figures as they stand: figures themselves do not follow the width of the sheet. */
+  /* A printer gets the short tables unfolded, and pictures of the figures as they stand: figures themselves do not
+     follow the width of the sheet. */
+  const unfolded = [];
+  window.addEventListener("afterprint", () => unfolded.splice(0).forEach((fold) => { fold.open = false; }));
   window.addEventListener("beforeprint", () => {
+    unfolded.push(...document.querySelectorAll("details.short:not([open])"));
+    unfolded.forEach((fold) => { fold.open = true; });
     sight.clear();
     showMoment(state.moment);
     document.querySelectorAll(".plot").forEach((plot) => {
