@@ -99,3 +99,12 @@ def test_a_file_of_results_is_no_day(folder, call):
         result = call(command, "day.nc")
         assert (result.exit_code, result.stdout) == (2, "")
         assert "day.nc is a file of results: name the day file" in result.stderr
+
+
+def test_a_byte_order_mark_and_the_line_ends_of_other_systems_change_nothing(folder, call):
+    for name in ("canal.toml", "day.toml"):
+        before = call("check", name).stdout
+        text = (folder / name).read_bytes()
+        (folder / name).write_bytes(b"\xef\xbb\xbf" + text.replace(b"\n", b"\r\n"))
+        result = call("check", name)
+        assert (result.exit_code, result.stdout) == (0, before)

@@ -1,5 +1,6 @@
 """Where a run is written, and what must not be lost by it."""
 
+import errno
 import os
 from pathlib import Path
 
@@ -99,3 +100,37 @@ def test_a_page_that_cannot_be_written_is_named(tmp_path):
     with pytest.raises(OSError, match="No such file or directory") as raised:
         show_or_write("a page", tmp_path / "none" / "page.txt")
     assert raised.value.filename == str(tmp_path / "none" / "page.txt")
+
+
+READ_ONLY = [
+    ("run", "day.toml"),
+    ("report", "run.nc"),
+    ("figures", "run.nc", "--to", "some/figures"),
+    ("orders", "run.nc"),
+    ("compare", "day.toml", "-o", "page.txt"),
+    ("verify", "day.toml", "-o", "page.txt"),
+    ("rating", "canal.toml", "Middle check", "--csv", "rating.csv"),
+    ("rating", "canal.toml", "Middle check", "--chart", "rating.png"),
+]
+
+
+@pytest.mark.parametrize("arguments", READ_ONLY, ids=" ".join)
+def test_a_folder_that_cannot_be_written_in_is_told_before_any_work(folder, call, monkeypatch, arguments):
+    assert call("run", "day.toml", "--plan", "raise", "-o", "run.nc").exit_code == 0
+    monkeypatch.setattr(os, "access", lambda path, mode: mode == os.R_OK)
+    before = sorted(folder.iterdir())
+    result = call(*arguments)
+    assert (result.exit_code, result.stdout) == (2, "")
+    assert f" cannot be written: no permission in {folder}, or its disk is read-only.\n" in result.stderr
+    assert sorted(folder.iterdir()) == before
+
+
+def test_a_page_that_cannot_be_written_is_named_not_its_working_file(folder, monkeypatch):
+    def refuse(self, *_, **__):
+        raise OSError(errno.EROFS, "Read-only file system", str(self))
+
+    for name in ("write_bytes", "unlink"):
+        monkeypatch.setattr(Path, name, refuse)
+    with pytest.raises(OSError, match="Read-only") as refused:
+        show_or_write("text", Path("page.txt"))
+    assert refused.value.filename == str(folder / "page.txt")

@@ -4,10 +4,11 @@ import os
 import signal
 import subprocess
 import sys
+from pathlib import Path
 
 import pytest
 
-from toeline.cli.terminal import heeding_ctrl_c, page_width, progress_bar
+from toeline.cli.terminal import command_line, heeding_ctrl_c, page_width, progress_bar
 
 
 def test_a_page_for_a_pipe_is_80_columns_wide(capsys):
@@ -55,3 +56,8 @@ def test_ctrl_c_whose_exception_was_lost_stops_at_the_next_step():
         with pytest.raises(KeyboardInterrupt):
             progress(0.2)
     assert signal.getsignal(signal.SIGINT) is before
+
+
+def test_a_call_that_is_told_can_be_typed():
+    assert command_line("describe", Path("day.nc")) == "toeline describe day.nc"
+    assert command_line("describe", Path("early plan.nc")) == "toeline describe 'early plan.nc'"

@@ -63,10 +63,18 @@ def command(
     for path in runs:
         refuse_other_than_run(path)
     check_names(wanted, len(runs))
+    check_folder(folder)
     pictures = drawn([(path.stem, loaded(path)) for path in runs], wanted, at)
     folder.mkdir(parents=True, exist_ok=True)
     written = write_pictures(pictures, folder, formats or ("png",), overwrite=overwrite)
     show("\n".join(str(path) for path in written))
+
+
+def check_folder(folder: Path) -> None:
+    """UsageError where nothing can be written in the folder, or in that in which it is to be made."""
+    from toeline.cli.output_files import refuse_folder
+
+    refuse_folder(next(each for each in (folder, *folder.parents) if each.exists()), str(folder))
 
 
 def check_names(wanted: Sequence[str], runs: int) -> None:

@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 import click
 
+from toeline.cli.terminal import command_line
 from toeline.errors import UsageError
 
 if TYPE_CHECKING:
@@ -51,9 +52,11 @@ def is_day(path: Path) -> bool:
 
 def _top_keys(path: Path) -> set[str]:
     """Keys at the top of a TOML file; none where it cannot be read, which its loader explains."""
+    from toeline.scenario.text_file import UnreadableFileError, read_text
+
     try:
-        return set(tomllib.loads(path.read_text(encoding="utf-8")))
-    except (tomllib.TOMLDecodeError, UnicodeDecodeError):
+        return set(tomllib.loads(read_text(path)))
+    except (tomllib.TOMLDecodeError, UnreadableFileError):
         return set()
 
 
@@ -65,7 +68,8 @@ def load_plans(day: Path, plan: str | None = None, overrides: Sequence[str] = ()
     from toeline.scenario import load_scenario, plan_names
 
     if is_run(day):
-        raise UsageError(f"{day} is a file of results: name the day file, or see it with: toeline describe {day}")
+        see = command_line("describe", day)
+        raise UsageError(f"{day} is a file of results: name the day file, or see it with: {see}")
     if is_canal(day):
         raise UsageError(f"{day} is a canal file: name a day file, which says what happens on it.")
     names: Sequence[str | None] = (plan,) if plan is not None else plan_names(day) or (None,)

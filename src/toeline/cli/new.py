@@ -4,7 +4,7 @@ from pathlib import Path
 
 import click
 
-from toeline.cli.terminal import show
+from toeline.cli.terminal import command_line, show
 
 
 @click.command(short_help="Write a small canal and a day to start from.")
@@ -17,4 +17,4 @@ def command(directory: Path) -> None:
     from toeline.scenario import write_starter
 
     paths = [str(path) for path in write_starter(directory)]
-    show(f"Wrote {' and '.join(paths)}; all in them is invented. Try: toeline run {paths[-1]}")
+    show(f"Wrote {' and '.join(paths)}; all in them is invented. Try: {command_line('run', paths[-1])}")

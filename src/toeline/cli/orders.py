@@ -10,8 +10,8 @@ import click
 
 from toeline.cli.input_files import INPUT_FILE, refuse_other_than_run
 from toeline.cli.option_values import lengths
-from toeline.cli.output_files import file_name, write_together
-from toeline.cli.terminal import note, page_width, show
+from toeline.cli.output_files import file_name, refuse_folder, write_together
+from toeline.cli.terminal import command_line, note, page_width, show
 from toeline.errors import UsageError
 
 if TYPE_CHECKING:
@@ -133,8 +133,7 @@ def sheet_files(sheets: Sequence["Sheet"]) -> dict[str, str]:
 
 def refuse_files(folder: Path, stems: Collection[str], suffixes: Sequence[str], overwrite: bool) -> None:
     """Raise UsageError where writing a sheet would fail or lose something."""
-    if not folder.parent.is_dir():
-        raise UsageError(f"there is no directory {folder.parent} to make {folder.name} in.")
+    refuse_folder(folder if folder.is_dir() else folder.parent, folder.name)
     for path in (folder / (stem + suffix) for stem in stems for suffix in suffixes):
         if path.is_dir():
             raise UsageError(f"{path} is a directory and in the way: name another folder with -o.")
@@ -210,7 +209,7 @@ def tell_what_to_look_at(run: Path, dataset: "xr.Dataset") -> None:
     words = [counted(count, noun) for noun, count in found.items() if count]
     if words:
         given = " not carried out as given" if changed else ""
-        note(f"In the run: {', '.join(words)}{given}. Look before the sheets go out: toeline describe {run}")
+        note(f"In the run: {', '.join(words)}{given}. Look before the sheets go out: {command_line('describe', run)}")
 
 
 def tell_of_left_overs(folder: Path, stems: Collection[str]) -> None:

@@ -1,7 +1,9 @@
 """Where a run or its sheets are written, and what must not be lost by it."""
 
+import os
 import re
 from collections.abc import Iterable, Mapping, Sequence
+from contextlib import suppress
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -43,8 +45,7 @@ def refuse_outputs(
         file = RunFile(output, overwrite)
         if file.path in inputs:
             raise UsageError(f"{output} is an input of this run and would be lost: name another file with -o.")
-        if not output.parent.is_dir():
-            raise UsageError(f"there is no directory {output.parent} to write {output.name} in.")
+        refuse_folder(output.parent, output.name)
         if resume or overwrite:
             continue
         if output.exists():
@@ -64,12 +65,19 @@ def refuse_page(output: Path, inputs: Iterable[Path], overwrite: bool) -> None:
         raise UsageError(f"{output} cannot be a file name: {error}") from error
     if resolved in {path.resolve() for path in inputs}:
         raise UsageError(f"{output} is an input and would be lost: name another file with -o.")
-    if not resolved.parent.is_dir():
-        raise UsageError(f"there is no directory {output.parent} to write {output.name} in.")
+    refuse_folder(output.parent, output.name)
     if output.exists() and not output.is_file():
         raise UsageError(f"{output} is a pipe or device and would be replaced: name a file with -o.")
     if output.exists() and not overwrite:
         raise UsageError(f"{output} exists: name another file with -o, or replace it with --overwrite.")
+
+
+def refuse_folder(folder: Path, what: str) -> None:
+    """Raise UsageError where there is no such folder to write something in, or nothing can be written in it."""
+    if not folder.is_dir():
+        raise UsageError(f"there is no directory {folder} to write {what} in.")
+    if not os.access(folder, os.W_OK | os.X_OK):
+        raise UsageError(f"{what} cannot be written: no permission in {folder.resolve()}, or its disk is read-only.")
 
 
 def show_or_write(text: str, output: Path | None) -> None:
@@ -101,4 +109,5 @@ def write_together(files: Mapping[Path, bytes]) -> None:
         raise OSError(error.errno, error.strerror, str(path)) from error
     finally:
         for left in working.values():
-            left.unlink(missing_ok=True)
+            with suppress(OSError):
+                left.unlink(missing_ok=True)

@@ -8,6 +8,7 @@ import click
 
 from toeline.cli.input_files import INPUT_FILE, is_day
 from toeline.cli.option_values import lengths
+from toeline.cli.output_files import refuse_folder
 from toeline.cli.run import tell_of_compiling
 from toeline.cli.terminal import note, page_width, show
 from toeline.errors import UsageError
@@ -88,9 +89,10 @@ def command(
 def check_files(canal: Path, csv_file: Path | None, overwrite: bool) -> None:
     if is_day(canal):
         raise UsageError(f"{canal} is a day file: name the file of its canal.")
-    if csv_file is not None and not csv_file.parent.is_dir():
-        raise UsageError(f"there is no directory {csv_file.parent} to write {csv_file.name} in.")
-    if csv_file is not None and csv_file.exists():
+    if csv_file is None:
+        return
+    refuse_folder(csv_file.parent, csv_file.name)
+    if csv_file.exists():
         if csv_file.samefile(canal):
             raise UsageError(f"{csv_file} is the canal file and would be lost: name another file.")
         if not overwrite:
@@ -104,8 +106,7 @@ def check_chart(chart_file: Path | None, csv_file: Path | None, overwrite: bool)
         raise UsageError(f"--csv {csv_file}: the chart writes its own numbers there; name another file.")
     if chart_file.suffix.lower() not in CHART_ENDINGS:
         raise UsageError(f"--chart {chart_file}: the name must end in {', '.join(CHART_ENDINGS)}.")
-    if not chart_file.parent.is_dir():
-        raise UsageError(f"there is no directory {chart_file.parent} to write {chart_file.name} in.")
+    refuse_folder(chart_file.parent, chart_file.name)
     if chart_file.exists() and not overwrite:
         raise UsageError(f"{chart_file} exists: name another file, or replace it with --overwrite.")
 

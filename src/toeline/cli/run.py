@@ -1,6 +1,5 @@
 """`toeline run`: step the canal through the day."""
 
-import shlex
 from collections.abc import Iterable, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING, NamedTuple
@@ -10,7 +9,7 @@ from click.exceptions import Exit
 
 from toeline.cli.exit_status import ExitStatus
 from toeline.cli.input_files import INPUT_FILE, load_plans
-from toeline.cli.terminal import heeding_ctrl_c, note, page_width, progress_bar, show, shown_path
+from toeline.cli.terminal import command_line, heeding_ctrl_c, note, page_width, progress_bar, show, shown_path
 from toeline.errors import RunError, UsageError
 
 if TYPE_CHECKING:
@@ -94,7 +93,7 @@ def plans_page(day: Path, plans: Sequence[str], ends: Sequence[PlanEnd]) -> str:
 
     width = page_width()
     told = (paragraph(f"{plan}: {end.words}", width, hanging=INDENT * 2) for plan, end in zip(plans, ends, strict=True))
-    next_step = paragraph(f"Side by side: toeline compare {shlex.quote(str(day))}", width, hanging=INDENT * 2)
+    next_step = paragraph(f"Side by side: {command_line('compare', day)}", width, hanging=INDENT * 2)
     return "\n".join([heading("All plans"), *told, next_step])
 
 
@@ -164,4 +163,4 @@ def what_is_left(output: Path) -> str:
     if not partial.exists():
         return "Nothing was written."
     go_on = "; go on with it with: --resume" if file.checkpoint_path.exists() else ""
-    return f"What was done so far is in {partial}; see it with: toeline describe {partial}{go_on}"
+    return f"What was done so far is in {partial}; see it with: {command_line('describe', partial)}{go_on}"

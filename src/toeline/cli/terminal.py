@@ -1,6 +1,7 @@
 """What the commands say, and where: pages on standard output, everything else on the error stream."""
 
 import os
+import shlex
 import shutil
 import signal
 import sys
@@ -30,6 +31,11 @@ def note(line: str) -> None:
 def shown_path(path: Path) -> Path:
     """A path as people type it: from the working directory where it lies inside."""
     return path.relative_to(Path.cwd()) if path.is_relative_to(Path.cwd()) else path
+
+
+def command_line(*words: object) -> str:
+    """A call of toeline as it can be typed: what the shell would take apart is quoted."""
+    return shlex.join(["toeline", *map(str, words)])
 
 
 def page_width() -> int:
