@@ -7,6 +7,7 @@ import numpy as np
 import pytest
 
 from toeline.errors import UsageError
+from toeline.results import dataset as dataset_module
 from toeline.results.dataset import DatasetSink, damage_told, local_time, open_run, timezone_of, utc
 from toeline.results.netcdf_writer import NetcdfSink
 
@@ -90,6 +91,19 @@ def test_a_run_of_another_version_is_refused(invented_run, tmp_path):
         file.renameVariable("escape_volume", "spilled")
     with pytest.raises(UsageError, match=r"of another version, Toeline 0\.1\.0: it has no escape_volume; run its day"):
         open_run(written)
+
+
+@pytest.mark.parametrize("error", [RuntimeError("NetCDF: HDF error"), AttributeError("NetCDF: Can't open attribute")])
+def test_damage_met_while_opening_is_told_with_the_name_of_the_file(invented_run, tmp_path, monkeypatch, error):
+    run = invented_run()
+    path = run.write_to(NetcdfSink(tmp_path / "run.nc", run.static(), run.attributes, run.start)).written_path
+
+    def damaged(*_, **__):
+        raise error
+
+    monkeypatch.setattr(dataset_module.xr, "open_dataset", damaged)
+    with pytest.raises(UsageError, match=r"run\.nc is damaged and cannot be read: NetCDF: "):
+        open_run(path)
 
 
 def test_damage_inside_a_file_is_told_with_its_name():

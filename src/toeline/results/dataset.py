@@ -91,7 +91,8 @@ def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
         raise UsageError(f"{file} is no file{_hint(file)}")
     netCDF4.set_chunk_cache(CHUNK_CACHE)
     try:
-        run = xr.open_dataset(file, engine="netcdf4")
+        with damage_told(file):
+            run = xr.open_dataset(file, engine="netcdf4")
     except OSError as error:
         raise UsageError(f"{file} is no readable NetCDF file") from error
     except ValueError as error:
@@ -99,7 +100,8 @@ def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
     if not str(run.attrs.get("source", "")).startswith(SOURCE_PREFIX):
         run.close()
         raise UsageError(f"{file} is not the file of a Toeline run")
-    misfit = misfit_of(run)
+    with damage_told(file):
+        misfit = misfit_of(run)
     if misfit is not None:
         run.close()
         raise UsageError(
@@ -130,7 +132,7 @@ def damage_told(path: str | os.PathLike[str]) -> Iterator[None]:
     """UsageError that names the file where what is read of it inside the with block is damaged."""
     try:
         yield
-    except RuntimeError as error:
+    except (RuntimeError, AttributeError) as error:
         if not str(error).startswith("NetCDF: "):  # netCDF4 raises it for what HDF5 reports, and so may others
             raise
         raise UsageError(f"{path} is damaged and cannot be read: {error}") from error

@@ -30,8 +30,8 @@ SAME_RUN = {
     "canal_file": "canal file",
     "day_file": "day file",
     "plan": "plan",
-    "resolved_settings": "settings",
-    "input_hash": "inputs",
+    "resolved_settings": "value of a setting",
+    "input_hash": "digest of the inputs",
 }
 """Global attributes that must be equal for a run to go on, and what they say, the plainest first."""
 
