@@ -118,12 +118,14 @@ def load_run(path: str | os.PathLike[str]) -> xr.Dataset:
 
 @contextmanager
 def read_apart(run: xr.Dataset) -> Iterator[xr.Dataset]:
-    """The run for one finding of many: what is read of a long run is let go at the end of the `with`, not kept."""
+    """The run, as `open_run` gave it, for one finding of many: what is read of a long run is let go at the end of the
+    `with`, not kept.
+    """
     source = run.encoding.get("source")
     if source is None or run.nbytes < LONG_RUN:
         yield run
         return
-    with open_run(source) as apart:
+    with xr.open_dataset(source, engine="netcdf4") as apart:
         yield apart
 
 
