@@ -8,9 +8,7 @@ from toeline.constants import GRAVITY
 from toeline.engine.gate_link import gate_discharge_at
 from toeline.hydraulics.cross_section import geometry
 from toeline.hydraulics.kernel import inner_kernel, kernel
-from toeline.hydraulics.offtake import offtake_discharge
 from toeline.hydraulics.surge import DOWNSTREAM, UPSTREAM, surge_height, wave_speeds
-from toeline.network.tables import FORCING_HEAD, FORCING_TAIL, TAIL_LEVEL
 
 LEAST_CHANGE = 1e-9
 """Change of a discharge [m³/s], or of a level [m], below which nothing is said to settle."""
@@ -72,54 +70,10 @@ def unsettle_by_move(tables, state, watch, g, levels, move, openings, time, move
 
 
 @kernel
-def unsettle_by_forcing(tables, state, watch, before, now, openings, time, never):
-    """Have pools settle after what leaps at `time` from the forcing `before` to that `now`: the inflow or the level of
-    the reservoir, the level at the tail, demands and openings of offtakes; `openings` [m] are those of all gates.
-    """
-    gates, last = tables.gates, tables.links[tables.links.size - 1]
-    if tables.links[0].gate < 0:
-        unsettle_by_source(tables, state, watch, 0, now[FORCING_HEAD] - before[FORCING_HEAD], openings, time, never)
-    else:
-        below = state.nodes[gates[0].downstream_node].level
-        levels, after = (before[FORCING_HEAD], below), (now[FORCING_HEAD], below)
-        unsettle_by_level(tables, state, watch, 0, levels, after, DOWNSTREAM, openings, time, never)
-    rise = now[FORCING_TAIL] - before[FORCING_TAIL]
-    if last.kind == TAIL_LEVEL and abs(rise) > LEAST_CHANGE:
-        unsettle_by_wave(tables, state, watch, tables.pools.size - 1, UPSTREAM, rise, openings, time, never)
-    elif last.gate >= 0:
-        above = state.nodes[gates[last.gate].upstream_node].level
-        levels, after = (above, before[FORCING_TAIL]), (above, now[FORCING_TAIL])
-        unsettle_by_level(tables, state, watch, last.gate, levels, after, UPSTREAM, openings, time, never)
-    first = before.size - 2 * tables.offtakes.size
-    for k in range(tables.offtakes.size):
-        change = taken(tables, state, before, first, k) - taken(tables, state, now, first, k)
-        unsettle_by_source(tables, state, watch, tables.offtakes[k].node, change, openings, time, never)
-
-
-@kernel
-def unsettle_by_roughness(tables, state, watch, pool, ratio, openings, time, never):
-    """Have pools settle after the roughness of one leaps by a `ratio`: its discharges leap by the inverse, beside gates
-    that pass as much as before.
-    """
-    ends, share = tables.pools[pool], 1.0 / ratio - 1.0
-    above, below = state.links[ends.first_node + 1].discharge, state.links[ends.last_node].discharge
-    unsettle_by_source(tables, state, watch, ends.first_node, -share * above, openings, time, never)
-    unsettle_by_source(tables, state, watch, ends.last_node, share * below, openings, time, never)
-
-
-@inner_kernel
-def taken(tables, state, forcing, first, k):
-    """What an offtake takes [m³/s] at the present level of its pool under a forcing whose demands begin at `first`."""
-    take = tables.offtakes[k]
-    demand, opening = forcing[first + k], forcing[first + tables.offtakes.size + k]
-    level = state.nodes[take.node].level
-    return offtake_discharge(take.kind, demand, take.sill_level, take.width, opening, take.coefficient, level)
-
-
-@inner_kernel
 def unsettle_by_source(tables, state, watch, node, change, openings, time, never):
     """Have pools settle after a change [m³/s] of what comes in at a node: it goes off by two waves of one height, at
-    the head of the canal by one, as in the middle of their pool.
+    the head of the canal by one, as in the middle of their pool. `openings` [m] are those of all gates, `never` comes
+    after the end [ms of the period].
     """
     down, up = pool_admittances(tables.channel, middle_node(tables.pools, node), state)
     both = down + (up if node > 0 else 0.0)
@@ -130,7 +84,7 @@ def unsettle_by_source(tables, state, watch, node, change, openings, time, never
         unsettle_by_wave(tables, state, watch, pool, UPSTREAM, height, openings, time, never)
 
 
-@inner_kernel
+@kernel
 def unsettle_by_level(tables, state, watch, g, levels, after, way, openings, time, never):
     """Have pools settle after a leap of the level beyond gate `g` at an end of the canal, from `levels` above and below
     it to those `after` [m]: the wave in the pool inside goes the given `way`.
@@ -147,7 +101,7 @@ def unsettle_by_level(tables, state, watch, g, levels, after, way, openings, tim
         unsettle_by_wave(tables, state, watch, pool_of(tables.pools, node), way, height, openings, time, never)
 
 
-@inner_kernel
+@kernel
 def unsettle_by_wave(tables, state, watch, pool, way, height, openings, time, never):
     """Have a pool settle for a round trip from a time on, and those beyond that a wave in it of a `height` [m] reaches
     on its `way`; returns until when the round trip lasts [ms of the period].
