@@ -4,6 +4,7 @@ from collections.abc import Iterator, Sequence
 from contextlib import ExitStack, contextmanager
 from dataclasses import dataclass
 from pathlib import Path
+from tempfile import TemporaryDirectory
 from typing import TYPE_CHECKING
 
 import click
@@ -11,7 +12,7 @@ import click
 from toeline.cli.exit_status import ExitStatus
 from toeline.cli.input_files import INPUT_FILE, is_run, load_plans, refuse_twice
 from toeline.cli.run import tell_of_compiling
-from toeline.cli.run_size import tell_of_large_runs
+from toeline.cli.run_size import is_long_run, tell_of_large_runs
 from toeline.cli.terminal import WIDEST_PAGE, page_width, progress_bar
 from toeline.errors import RunError, UsageError
 
@@ -115,20 +116,29 @@ class Source:
 
     @contextmanager
     def opened(self) -> Iterator["xr.Dataset"]:
+        """The run: in memory, or in a file where it is long, of a plan in one that nobody sees."""
         if self.scenario is None:
-            from toeline.results.dataset import load_run
+            from toeline.results.dataset import read_run
 
-            yield load_run(self.path)
+            with read_run(self.path) as run:
+                yield run
             return
+        if is_long_run(self.scenario):
+            with TemporaryDirectory(prefix="toeline-") as folder, self._stepped(self.scenario, Path(folder)) as run:
+                yield run
+        else:
+            yield self._stepped(self.scenario)
+
+    def _stepped(self, scenario: "Scenario", folder: Path | None = None) -> "xr.Dataset":
         from toeline import simulate
 
-        label = self.scenario.plan or self.path.stem
+        label = scenario.plan or self.path.stem
+        output = None if folder is None else folder / f"{self.path.stem}.nc"
         try:
             with progress_bar(label) as progress:
-                run = simulate(self.scenario, progress=progress)
+                return simulate(scenario, output=output, progress=progress)
         except RunError as error:
             raise RunError(f"{label} of {self.path} cannot be compared: {error}") from error
-        yield run
 
 
 def sources_of(files: Sequence[Path], plans: Sequence[str], overrides: Sequence[str]) -> list[Source]:
@@ -152,11 +162,13 @@ def _sources_in(file: Path, plans: Sequence[str], overrides: Sequence[str]) -> l
 @contextmanager
 def opened_runs(sources: Sequence[Source]) -> Iterator[dict[str, "xr.Dataset"]]:
     """All runs by name: files opened, plans run in memory."""
+    from toeline.results.dataset import damage_told
+
     scenarios = [source.scenario for source in sources if source.scenario]
     if scenarios:
-        tell_of_large_runs(scenarios, "in memory")
+        tell_of_large_runs(scenarios, "before they are compressed, in a file that is removed at the end")
         tell_of_compiling()
-    with ExitStack() as stack:
+    with damage_told(" or ".join(str(source.path) for source in sources)), ExitStack() as stack:
         runs = [stack.enter_context(source.opened()) for source in sources]
         places = [(source.path, run.attrs["plan"]) for source, run in zip(sources, runs, strict=True)]
         yield dict(zip(run_names(places), runs, strict=True))

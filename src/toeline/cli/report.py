@@ -26,13 +26,15 @@ def command(runs: tuple[Path, ...], output: Path | None, overwrite: bool) -> Non
     from toeline.cli.compare import run_names
     from toeline.cli.output_files import refuse_page, show_or_write
     from toeline.report.page.document import report_page
-    from toeline.results.dataset import load_run
+    from toeline.results.dataset import damage_told, read_run
 
     for run in runs:
         refuse_other_than_run(run)
     refuse_twice([(run, None) for run in runs])
     page = output or Path(f"{runs[0].name.removesuffix('.partial').removesuffix('.nc')}.html")
     refuse_page(page, runs, overwrite)
-    loaded = [load_run(run) for run in runs]
-    names = run_names([(file, run.attrs["plan"]) for file, run in zip(runs, loaded, strict=True)])
-    show_or_write(report_page(dict(zip(names, loaded, strict=True))), page)
+    with damage_told(" or ".join(map(str, runs))), ExitStack() as stack:
+        opened = [stack.enter_context(read_run(run)) for run in runs]
+        names = run_names([(file, run.attrs["plan"]) for file, run in zip(runs, opened, strict=True)])
+        text = report_page(dict(zip(names, opened, strict=True)))
+    show_or_write(text, page)

@@ -28,6 +28,14 @@ def tell_of_large_runs(scenarios: Sequence["Scenario"], where: str) -> None:
     )
 
 
+def is_long_run(scenario: "Scenario") -> bool:
+    """Whether a run may become so long that nobody should hold all of it in memory."""
+    from toeline.results.dataset import LONG_RUN
+    from toeline.results.size import size_before_compression
+
+    return size_before_compression(sizes_of_run(scenario), rows_of_run(scenario)) >= LONG_RUN
+
+
 def sizes_of_run(scenario: "Scenario") -> dict[str, int]:
     """How many there are of each labelled thing; of nodes about."""
     canal = scenario.canal

@@ -5,7 +5,7 @@ All runs are compared over the time that every one of them covers. Better is nev
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
-from functools import cached_property
+from functools import cached_property, reduce
 from string import ascii_uppercase
 
 import numpy as np
@@ -173,7 +173,7 @@ def compare(runs: Mapping[str, xr.Dataset]) -> Comparison:
     by_elapsed_time = _have_no_common_time(list(runs.values()))
     first, *others = _cut([_moved(run, next(iter(runs.values()))) if by_elapsed_time else run for run in runs.values()])
     told = [_told(letter, *item) for letter, item in zip(ascii_uppercase, runs.items(), strict=False)]
-    common = [set(run["time"].values.tolist()) for run in (first, *others)]
+    steps = [run["time"].values for run in (first, *others)]
     return Comparison(
         canal=first.attrs["canal"],
         runs=tuple(told),
@@ -183,8 +183,8 @@ def compare(runs: Mapping[str, xr.Dataset]) -> Comparison:
         is_cut=any(
             cut.sizes["time"] < run.sizes["time"] for cut, run in zip((first, *others), runs.values(), strict=True)
         ),
-        steps=len(set.intersection(*common)),
-        own_steps=tuple(len(times) for times in common),
+        steps=reduce(np.intersect1d, steps).size,
+        own_steps=tuple(times.size for times in steps),
         contrasts=tuple(_contrast(run, first, other) for run, other in zip(told[1:], others, strict=True)),
         incidents=tuple(_incident_rows([incidents(run) for run in (first, *others)])),
         indicators=tuple(_indicator_rows((first, *others))),
@@ -224,7 +224,13 @@ def _cut(runs: Sequence[xr.Dataset]) -> list[xr.Dataset]:
 def _between(run: xr.Dataset, start: np.datetime64, end: np.datetime64) -> xr.Dataset:
     clocks = {"time": "time", "profile_time": "profile_time", "order": "order_time"}
     inside = {name: (run[clock].values >= start) & (run[clock].values <= end) for name, clock in clocks.items()}
-    return run.isel({name: np.flatnonzero(rows) for name, rows in inside.items() if not rows.all()})
+    return run.isel({name: _span(np.flatnonzero(rows)) for name, rows in inside.items() if not rows.all()})
+
+
+def _span(rows: np.ndarray) -> slice | np.ndarray:
+    """Rows as a slice where they follow one another: of a file it is read at once."""
+    follow = rows.size and rows[-1] - rows[0] == rows.size - 1
+    return slice(int(rows[0]), int(rows[-1]) + 1) if follow else rows
 
 
 def _told(letter: str, name: str, run: xr.Dataset) -> ComparedRun:

@@ -9,13 +9,20 @@ from toeline.findings.deliveries import SHORTFALL_FROM
 from toeline.findings.incident import Incident, Measure, Settling
 from toeline.findings.series import hours_of_rows, names
 from toeline.findings.spells import spells
+from toeline.results.dataset import in_parts
 
 VOLUME_LACKING = "volume not delivered"
+_NEEDED = ("demand", "delivery")
 
 
 def delivery_shortfalls(run: xr.Dataset, settling: Settling) -> Iterator[Incident]:
     """Nothing is interpolated over a change of the demand, which may come at once."""
-    times, demands, deliveries = (run[name].values for name in ("time", "demand", "delivery"))
+    for part in in_parts(run, "offtake", *_NEEDED):
+        yield from _shortfalls(part, settling)
+
+
+def _shortfalls(run: xr.Dataset, settling: Settling) -> Iterator[Incident]:
+    times, demands, deliveries = (run[name].values for name in ("time", *_NEEDED))
     lacking = demands - deliveries
     seconds = hours_of_rows(times) * 3600.0
     for offtake, (name, pool) in enumerate(zip(names(run["offtake"]), names(run["offtake_pool"]), strict=True)):

@@ -9,6 +9,7 @@ from toeline.findings.indicator import Indicator
 from toeline.findings.jumps import GateJumps, gate_jumps
 from toeline.findings.limits import avoided_openings
 from toeline.findings.series import is_any, names
+from toeline.results.dataset import in_parts
 
 SMALLEST_MOVE = 1e-9
 """Change of opening [m] below which an order moved nothing."""
@@ -80,10 +81,11 @@ def limit_crossings(is_free: np.ndarray, is_drowned: np.ndarray) -> int:
 
 def gate_indicators(run: xr.Dataset) -> Iterator[Indicator]:
     """Moves and travel, crossings of the modular limit, and the hours of both hazards, gate by gate."""
-    for column, jumps in enumerate(gate_jumps(run)):
-        yield from _movement_indicators(run, jumps.gate, column)
-        yield from _doubt_indicators(run, jumps, column)
-        yield from _hour_indicators(jumps)
+    for part in in_parts(run, "gate", "gate_opening", "gate_discharge", "gate_flow_state"):
+        for column, jumps in enumerate(gate_jumps(part)):
+            yield from _movement_indicators(part, jumps.gate, column)
+            yield from _doubt_indicators(part, jumps, column)
+            yield from _hour_indicators(jumps)
 
 
 def _movement_indicators(run: xr.Dataset, gate: str, column: int) -> Iterator[Indicator]:

@@ -6,6 +6,7 @@ import numpy as np
 import xarray as xr
 
 from toeline.findings.series import Extreme, greatest, least, meanings, names
+from toeline.results.dataset import values_at
 
 
 @dataclass(frozen=True)
@@ -21,18 +22,18 @@ class GaugeReadings:
 
 def gauge_readings(run: xr.Dataset) -> list[GaugeReadings]:
     """Every gauge of a run."""
-    times = run["time"].values
-    readings = run["gauge_reading"].values
-    return [
-        GaugeReadings(
-            gauge=gauge,
-            place=_place(run.isel(gauge=k)),
-            first=float(readings[0, k]) if times.size else np.nan,
-            least=least(readings[:, k], times),
-            greatest=greatest(readings[:, k], times),
-        )
-        for k, gauge in enumerate(names(run["gauge"]))
-    ]
+    return [_of_gauge(run, place) for place in range(run.sizes["gauge"])]
+
+
+def _of_gauge(run: xr.Dataset, place: int) -> GaugeReadings:
+    times, readings = run["time"].values, values_at(run, "gauge_reading", place)
+    return GaugeReadings(
+        gauge=names(run["gauge"])[place],
+        place=_place(run.isel(gauge=place)),
+        first=float(readings[0]) if times.size else np.nan,
+        least=least(readings, times),
+        greatest=greatest(readings, times),
+    )
 
 
 def _place(gauge: xr.Dataset) -> str:

@@ -26,8 +26,7 @@ def incidents(run: xr.Dataset) -> list[Incident]:
     settling = Settling(run)
     found = list(_early_stop(run))
     for family in _FAMILIES:
-        with read_apart(run) as apart:
-            found += family(apart, settling)
+        found += family(read_apart(run), settling)
     return sorted(found, key=lambda incident: (incident.start, incident.what, incident.where))
 
 

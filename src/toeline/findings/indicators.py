@@ -28,6 +28,5 @@ def place_indicators(run: xr.Dataset) -> list[Indicator]:
 def _of_families(run: xr.Dataset, *families: Callable[[xr.Dataset], Iterator[Indicator]]) -> list[Indicator]:
     found: list[Indicator] = []
     for family in families if run.sizes["time"] else ():
-        with read_apart(run) as apart:
-            found += family(apart)
+        found += family(read_apart(run))
     return found

@@ -9,19 +9,25 @@ from toeline.findings.incident import Incident, Measure, Settling, pools_beside_
 from toeline.findings.jumps import BEYOND_PROTECTION
 from toeline.findings.series import greatest, is_any, least
 from toeline.findings.spells import spells
+from toeline.results.dataset import in_parts
 
 JUMP_END = "end of the jump from the gate"
+_NEEDED = ("jump_state", "protection_margin", "jump_end_distance")
 
 
 def jumps_beyond_protection(run: xr.Dataset, settling: Settling) -> Iterator[Incident]:
-    is_beyond = is_any(run["jump_state"], *BEYOND_PROTECTION)
-    return _jump_incidents("jump beyond protection", is_beyond, run["protection_margin"].values, run, settling)
+    for part in in_parts(run, "gate", *_NEEDED):
+        is_beyond = is_any(part["jump_state"], *BEYOND_PROTECTION)
+        yield from _jump_incidents(
+            "jump beyond protection", is_beyond, part["protection_margin"].values, part, settling
+        )
 
 
 def jumps_swept_out(run: xr.Dataset, settling: Settling) -> Iterator[Incident]:
-    is_swept_out = is_any(run["jump_state"], "swept_out_of_pool")
-    no_margin = np.full(is_swept_out.shape, np.nan)
-    return _jump_incidents("jump swept out of the pool", is_swept_out, no_margin, run, settling)
+    for part in in_parts(run, "gate", *_NEEDED):
+        is_swept_out = is_any(part["jump_state"], "swept_out_of_pool")
+        no_margin = np.full(is_swept_out.shape, np.nan)
+        yield from _jump_incidents("jump swept out of the pool", is_swept_out, no_margin, part, settling)
 
 
 def _jump_incidents(

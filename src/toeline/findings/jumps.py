@@ -12,6 +12,7 @@ import xarray as xr
 
 from toeline.findings.series import Extreme, greatest, hours_in_each, hours_of_rows, is_any, least
 from toeline.findings.spells import Spell, spells
+from toeline.results.dataset import in_parts
 
 BEYOND_PROTECTION = ("beyond_protection", "swept_out_of_pool")
 """States of a jump that the floor does not bear."""
@@ -58,8 +59,8 @@ class GateJumps:
 
 def gate_jumps(run: xr.Dataset) -> list[GateJumps]:
     """All gates from the head down. Each output step stands for half of the time to its neighbours."""
-    needed = run[list(_NEEDED)].load()
-    return [_of_gate(needed.isel(gate=index)) for index in range(run.sizes["gate"])]
+    parts = (part[list(_NEEDED)].load() for part in in_parts(run, "gate", *_NEEDED))
+    return [_of_gate(part.isel(gate=index)) for part in parts for index in range(part.sizes["gate"])]
 
 
 def _of_gate(run: xr.Dataset) -> GateJumps:

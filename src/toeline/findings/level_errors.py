@@ -11,6 +11,7 @@ import xarray as xr
 
 from toeline.findings.indicator import Indicator
 from toeline.findings.series import names
+from toeline.results.dataset import in_parts
 
 STEADY_HOURS = 2.0
 """The last hours of a run over which the steady-state error is taken."""
@@ -33,23 +34,29 @@ def steady_state_error(last_depths: np.ndarray, target: float) -> float:
 
 def level_indicators(run: xr.Dataset) -> Iterator[Indicator]:
     """The errors of every pool with a target, as parts of its target depth; each output step is one sample."""
-    times, levels = run["time"].values, run["pool_tail_level"].values
-    if times.size < 2:
+    if run.sizes["time"] < 2:
         return
+    beds = dict(zip(names(run["pool"]), end_beds(run), strict=True))
+    for part in in_parts(run, "pool", "pool_tail_level"):
+        targets = zip(names(part["pool"]), part["pool_target_level"].values.tolist(), strict=True)
+        for column, (pool, target) in enumerate(targets):
+            if target - beds[pool] > 0.0:
+                depths = part["pool_tail_level"].values[:, column] - beds[pool]
+                yield from _errors(pool, depths, target - beds[pool], part["time"].values)
+
+
+def _errors(pool: str, depths: np.ndarray, target: float, times: np.ndarray) -> Iterator[Indicator]:
+    """The errors of one pool; `target` is a depth [m] too."""
     is_last = times >= times[-1] - np.timedelta64(round(STEADY_HOURS * 3600), "s")
     is_whole = times[-1] - times[0] >= np.timedelta64(round(STEADY_HOURS * 3600), "s")
-    for pool, (name, bed) in enumerate(zip(names(run["pool"]), end_beds(run), strict=True)):
-        depths, target = levels[:, pool] - bed, float(run["pool_target_level"].values[pool]) - bed
-        if not target > 0.0:
-            continue
-        note = f"part of the target depth at the lower end; samples: {times.size}"
-        yield Indicator("maximum absolute level error", name, greatest_error(depths, target), "1", "lower", note)
-        yield Indicator("integrated absolute level error", name, integrated_error(depths, target), "1", "lower", note)
-        if is_whole:
-            yield Indicator(
-                "steady-state level error", name, steady_state_error(depths[is_last], target), "1", "lower",
-                f"part of the target depth; mean of the last {STEADY_HOURS:g} h, samples: {int(is_last.sum())}",
-            )  # fmt: skip
+    note = f"part of the target depth at the lower end; samples: {times.size}"
+    yield Indicator("maximum absolute level error", pool, greatest_error(depths, target), "1", "lower", note)
+    yield Indicator("integrated absolute level error", pool, integrated_error(depths, target), "1", "lower", note)
+    if is_whole:
+        yield Indicator(
+            "steady-state level error", pool, steady_state_error(depths[is_last], target), "1", "lower",
+            f"part of the target depth; mean of the last {STEADY_HOURS:g} h, samples: {int(is_last.sum())}",
+        )  # fmt: skip
 
 
 def end_beds(run: xr.Dataset, *, first: bool = False) -> np.ndarray:

@@ -7,6 +7,7 @@ import numpy as np
 import xarray as xr
 
 from toeline.findings.series import names
+from toeline.results.dataset import in_parts
 
 
 @dataclass(frozen=True)
@@ -54,20 +55,20 @@ def result_differences(first: xr.Dataset, other: xr.Dataset) -> list[ResultDiffe
     Where only one of the runs has a value, as of a jump that the other has not, nothing is compared.
     """
     _, rows, other_rows = np.intersect1d(first["time"].values, other["time"].values, return_indices=True)
-    return [
-        difference
-        for watched in WATCHED
-        for difference in _of_series(watched, first.isel(time=rows), other.isel(time=other_rows))
-    ]
+    return [difference for watched in WATCHED for difference in _of_series(watched, first, other, rows, other_rows)]
 
 
-def _of_series(watched: Watched, first: xr.Dataset, other: xr.Dataset) -> Iterator[ResultDifference]:
-    places, other_places = names(first[watched.place]), names(other[watched.place])
-    before, after = first[watched.variable], other[watched.variable]
-    for column, place in enumerate(places):
-        if place in other_places:
-            pair = before.values[:, column], after.values[:, other_places.index(place)]
-            yield from _of_place(watched, place, str(before.attrs["units"]), *pair, first["time"].values)
+def _of_series(
+    watched: Watched, first: xr.Dataset, other: xr.Dataset, rows: np.ndarray, other_rows: np.ndarray
+) -> Iterator[ResultDifference]:
+    """`rows` and `other_rows` are those of the common times."""
+    times, unit = first["time"].values[rows], str(first[watched.variable].attrs["units"])
+    other_places = set(names(other[watched.place]))
+    for part in in_parts(first, watched.place, watched.variable):
+        places = [place for place in names(part[watched.place]) if place in other_places]
+        before, after = (of[watched.variable].sel({watched.place: places}).values for of in (part, other))
+        for column, place in enumerate(places):
+            yield from _of_place(watched, place, unit, before[rows, column], after[other_rows, column], times)
 
 
 def _of_place(

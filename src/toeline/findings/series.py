@@ -50,8 +50,9 @@ def meanings_seen(flags: xr.DataArray) -> list[str]:
 
 def is_any(flags: xr.DataArray, *wanted: str) -> np.ndarray:
     """Where a flag has one of the wanted meanings."""
-    known = meanings(flags)
-    return np.isin(flags.values, [known.index(meaning) for meaning in wanted])
+    known, values = meanings(flags), flags.values
+    holds: np.ndarray = np.logical_or.reduce([values == known.index(meaning) for meaning in wanted])
+    return holds
 
 
 def hours_in_each(flags: xr.DataArray, hours: np.ndarray) -> dict[str, float]:

@@ -3,6 +3,7 @@
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from functools import cached_property
+from typing import NamedTuple
 
 import numpy as np
 import xarray as xr
@@ -14,6 +15,7 @@ from toeline.findings.limits import Limit, avoided_openings, limits_of_run
 from toeline.findings.rolling import RollingWindow
 from toeline.findings.series import Extreme, greatest, least, names
 from toeline.findings.spells import Spell, spells
+from toeline.results.dataset import in_parts, values_at, values_at_nodes
 from toeline.results.encoding import surface_names_of
 
 SURGE_BOUND = "surge bound taken off"
@@ -60,18 +62,25 @@ def watches(run: xr.Dataset) -> Iterator[Watch]:
     """All watches of all limits, limit by limit. A place without a value to watch is left out."""
     places = _Places(run)
     for limit in limits_of_run(run):
-        for place in limit.places:
-            found = _WATCHED[limit.kind](limit, place, places)
+        for place in places.of(limit):
+            found = _WATCHED[limit.kind].watch(limit, place, places)
             yield from (watch for watch in found if np.isfinite(watch.values).any())
 
 
 class _Places:
-    """The run with what several limits need of it, each found once."""
+    """The run with what several limits need of it, each found once; of a long run a part of the places at a time."""
 
     def __init__(self, run: xr.Dataset):
         self.run = run
         self.times = run["time"].values
+        self._part = run
         self._windows: dict[float, RollingWindow] = {}
+
+    def of(self, limit: Limit) -> Iterator[str]:
+        """The places of a limit, one after the other; `column` is for the one that was given last."""
+        for part in in_parts(self.run, limit.dimension, *_WATCHED[limit.kind].variables):
+            self._part, listed = part, set(names(part[limit.dimension]))
+            yield from (place for place in limit.places if place in listed)
 
     def window(self, seconds: float) -> RollingWindow:
         if seconds not in self._windows:
@@ -80,9 +89,8 @@ class _Places:
 
     def column(self, variable: str, place: str) -> np.ndarray:
         """The values of a variable at one pool, gate or offtake: a series, or one value."""
-        values = self.run[variable]
-        dimension = values.dims[-1]
-        column: np.ndarray = values.values[..., names(self.run[dimension]).index(place)]
+        values = self._part[variable]
+        column: np.ndarray = values.values[..., names(values[values.dims[-1]]).index(place)]
         return column
 
     def pools_beside(self, gate: str) -> tuple[str, ...]:
@@ -98,7 +106,8 @@ class _Places:
         for gate, (above, below) in self._beside.items():
             for is_beside, side in ((below == pool, "downstream"), (above == pool, "upstream")):
                 if is_beside:
-                    bound += np.maximum(np.nan_to_num(self.column(f"surge_height_bound_{side}", gate)), 0.0)
+                    surge = values_at(self.run, f"surge_height_bound_{side}", names(self.run["gate"]).index(gate))
+                    bound += np.maximum(np.nan_to_num(surge), 0.0)
         return bound
 
     def bed(self, pool: str, end: str) -> float:
@@ -139,7 +148,7 @@ def _velocity(limit: Limit, pool: str, places: _Places) -> Iterator[Watch]:
     nodes = np.flatnonzero(of_pool & np.isin(run["surface"].values, surfaces))
     if not nodes.size or not run.sizes["profile_time"]:
         return
-    speeds = np.nan_to_num(np.abs(run["velocity"].values[:, nodes].astype(float)))
+    speeds = np.nan_to_num(np.abs(values_at_nodes(run, "velocity", nodes).astype(float)))
     fastest = speeds.argmax(axis=1)
     chainages = run["chainage"].values[nodes[fastest]]
     yield Watch(limit, pool, (pool,), run["profile_time"].values, speeds.max(axis=1), chainages=chainages)
@@ -171,15 +180,23 @@ def _seconds(limit: Limit, gate: str, places: _Places) -> Iterator[Watch]:
     yield Watch(limit, gate, places.pools_beside(gate), window.times, window.sums(totals))
 
 
-_WATCHED: dict[str, Callable[[Limit, str, _Places], Iterator[Watch]]] = {
-    "fall": _falls,
-    "rise": _falls,
-    "above": _levels,
-    "below": _levels,
-    "freeboard": _freeboard,
-    "velocity": _velocity,
-    "moves": _moves,
-    "head on offtake": _heads,
-    "avoided opening": _seconds,
-    "near modular limit": _seconds,
+class _Watched(NamedTuple):
+    """How a kind of limit is watched, and the series that are read of every place for it."""
+
+    watch: Callable[[Limit, str, _Places], Iterator[Watch]]
+    variables: tuple[str, ...]
+
+
+_BOTH_ENDS = tuple(ENDS.values())
+_WATCHED = {
+    "fall": _Watched(_falls, _BOTH_ENDS),
+    "rise": _Watched(_falls, _BOTH_ENDS),
+    "above": _Watched(_levels, _BOTH_ENDS[:1]),
+    "below": _Watched(_levels, _BOTH_ENDS[:1]),
+    "freeboard": _Watched(_freeboard, ("pool_bank_margin",)),
+    "velocity": _Watched(_velocity, ()),
+    "moves": _Watched(_moves, ()),
+    "head on offtake": _Watched(_heads, ("offtake_level",)),
+    "avoided opening": _Watched(_seconds, ("gate_opening",)),
+    "near modular limit": _Watched(_seconds, ()),
 }

@@ -2,10 +2,8 @@
 
 from collections.abc import Iterator, Sequence
 
-import xarray as xr
-
 from toeline.findings.gauges import GaugeReadings
-from toeline.findings.series import names
+from toeline.findings.roughness import PoolRoughness
 from toeline.report.layout import fits, paragraph, table
 from toeline.report.run_clock import RunClock, extreme_text
 from toeline.units import Display
@@ -37,17 +35,13 @@ def _with_places_where_they_fit(
     return narrow if fits(*narrow, width) and not fits(header, rows, width) else (header, rows)
 
 
-def roughness_lines(run: xr.Dataset, width: int) -> Iterator[str]:
+def roughness_lines(pools: Sequence[PoolRoughness], width: int) -> Iterator[str]:
     """Factors on Manning's n that the calendar gave: first, last and greatest; nothing where it gave none."""
-    factors = run["pool_roughness_factor"].values
-    if (factors == 1.0).all():
+    if not pools:
         return
-    rows = [
-        (pool, f"{first:.3f}", f"{last:.3f}", f"{most:.3f}")
-        for pool, first, last, most in zip(names(run["pool"]), factors[0], factors[-1], factors.max(0), strict=True)
-    ]
+    rows = [(pool.pool, f"{pool.first:.3f}", f"{pool.last:.3f}", f"{pool.greatest:.3f}") for pool in pools]
     yield table(("factor on Manning's n", "at the start", "at the end", "greatest"), rows, width)
-    if (factors != factors[0]).any():
+    if any(pool.changes for pool in pools):
         yield paragraph(
             "The factor changes at midnight, all at once. The wave that a large change sends through the pools is not "
             "real: cutting weeds takes days.",

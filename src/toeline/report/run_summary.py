@@ -1,7 +1,6 @@
 """A run on one page, for the planner: first what goes wrong, then the rest."""
 
-from collections.abc import Callable, Iterable
-from typing import TypeVar
+from collections.abc import Iterable
 
 import xarray as xr
 
@@ -14,6 +13,7 @@ from toeline.findings.jumps import gate_jumps
 from toeline.findings.ledger import ledger
 from toeline.findings.limit_incidents import limit_uses
 from toeline.findings.moves import gate_moves
+from toeline.findings.roughness import pool_roughness
 from toeline.report.bays import bay_lines
 from toeline.report.gates import hazard_lines, hour_lines, margin_lines
 from toeline.report.gauges import gauge_lines, roughness_lines
@@ -26,10 +26,7 @@ from toeline.report.orders import order_lines
 from toeline.report.run_clock import RunClock
 from toeline.report.run_identity import run_identity
 from toeline.report.water import escape_lines, ledger_lines
-from toeline.results.dataset import read_apart
 from toeline.units import Display
-
-T = TypeVar("T")
 
 
 def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
@@ -37,31 +34,25 @@ def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
     if not run.sizes["time"]:
         return paragraph("The run was stopped before anything reached the disk.", width, indent="")
     clock = RunClock(run)
-    gates = _apart(gate_jumps, run)
+    gates = gate_jumps(run)
     sections = [
         ("What goes wrong", incident_lines(incidents(run), clock, display, width)),
         ("Floor and people", hazard_lines(gates, clock, width) if gates else ()),
-        ("Limits", limit_lines(_apart(limit_uses, run), run, clock, display, width)),
+        ("Limits", limit_lines(limit_uses(run), run, clock, display, width)),
         ("Least margins", margin_lines(gates, clock, display, width) if gates else ()),
         ("Hours in each state", hour_lines(gates, width) if gates else ()),
-        ("Bays that move apart", bay_lines(_apart(uneven_bays, run), clock, display, width)),
+        ("Bays that move apart", bay_lines(uneven_bays(run), clock, display, width)),
         ("Orders", order_lines(run, clock, display, width)),
-        ("Moves", _apart(lambda apart: _moves(apart, clock, display, width), run)),
-        ("Escapes", escape_lines(_apart(escape_spills, run), clock, display, width)),
-        ("Staff gauges", gauge_lines(_apart(gauge_readings, run), clock, display, width)),
-        ("Roughness", _apart(lambda apart: roughness_lines(apart, width), run)),
+        ("Moves", _moves(run, clock, display, width)),
+        ("Escapes", escape_lines(escape_spills(run), clock, display, width)),
+        ("Staff gauges", gauge_lines(gauge_readings(run), clock, display, width)),
+        ("Roughness", roughness_lines(pool_roughness(run), width)),
         ("Indicators", indicator_lines(place_indicators(run), display, width)),
         ("Water ledger", ledger_lines(ledger(run), display, width)),
         ("Caution", [paragraph(run.attrs["comment"], width)]),
     ]
     shown = [(title, list(lines)) for title, lines in sections]
     return "\n\n".join([_title(run, width), *(_section(title, lines) for title, lines in shown if lines)])
-
-
-def _apart(finding: Callable[[xr.Dataset], Iterable[T]], run: xr.Dataset) -> list[T]:
-    """What a finding tells of a run; what it read of a long one is let go."""
-    with read_apart(run) as apart:
-        return list(finding(apart))
 
 
 def _moves(run: xr.Dataset, clock: RunClock, display: Display, width: int) -> Iterable[str]:

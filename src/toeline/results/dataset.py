@@ -32,6 +32,12 @@ CHUNK_CACHE = 2**18
 LONG_RUN = 100e6
 """Bytes of a run from which it is not read as a whole."""
 
+PART = 16e6
+"""Bytes of values that a finding reads of a long run at once (choice); half a year of minutes is 2e6 at one place."""
+
+KEPT = 2e6
+"""Bytes of a variable up to which all of it is kept where one place of it is asked for (choice)."""
+
 
 class DatasetSink:
     """Collects a run in memory; `dataset` is there once the run has closed the sink."""
@@ -110,23 +116,69 @@ def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
     return run
 
 
-def load_run(path: str | os.PathLike[str]) -> xr.Dataset:
-    """A run file with all its values in memory. UsageError as for `open_run`, and where values are damaged."""
-    with open_run(path) as run, damage_told(path):
-        return run.load()
-
-
 @contextmanager
-def read_apart(run: xr.Dataset) -> Iterator[xr.Dataset]:
-    """The run, as `open_run` gave it, for one finding of many: what is read of a long run is let go at the end of the
-    `with`, not kept.
+def read_run(path: str | os.PathLike[str]) -> Iterator[xr.Dataset]:
+    """A run file while the with block lasts, with all its values in memory; those of a long run are loaded when needed.
+
+    UsageError as for `open_run`, and where values that are loaded at once are damaged.
     """
-    source = run.encoding.get("source")
-    if source is None or run.nbytes < LONG_RUN:
+    with open_run(path) as run:
+        if not is_long(run):
+            with damage_told(path):
+                run.load()
+        yield run
+
+
+def is_long(run: xr.Dataset) -> bool:
+    """Whether a run is so long that nobody should hold all of it."""
+    return bool(run.nbytes >= LONG_RUN)
+
+
+def read_apart(run: xr.Dataset) -> xr.Dataset:
+    """The run for one finding of many: what is read of a long one is let go with what is returned, not kept."""
+    return run.isel({dimension: slice(None) for dimension in GROWING_DIMENSIONS}) if is_long(run) else run
+
+
+def in_parts(run: xr.Dataset, place: str, *variables: str) -> Iterator[xr.Dataset]:
+    """The run as a few neighbouring places at a time (gate, pool, offtake ...), in their order; a short run as a whole.
+
+    So few that what is in `variables` of them fits into `PART`; it is read anew for each part, and let go with it.
+    """
+    if not is_long(run):
         yield run
         return
-    with xr.open_dataset(source, engine="netcdf4") as apart:
-        yield apart
+    count = run.sizes[place]
+    taken = sum(run[name].nbytes for name in variables)
+    step = max(1, int(PART * count / max(taken, 1)))
+    for first in range(0, count, step):
+        yield run.isel({place: slice(first, first + step)})
+
+
+def values_at(run: xr.Dataset, name: str, places: int | slice) -> np.ndarray:
+    """A variable at some of the places along its last dimension; of a series so long that it is not kept, these alone
+    are read.
+    """
+    variable = run[name]
+    values: np.ndarray = variable[..., places].values if variable.nbytes > KEPT else variable.values[..., places]
+    return values
+
+
+def rows_at(run: xr.Dataset, name: str, rows: np.ndarray) -> np.ndarray:
+    """Rows of a variable along its first dimension, in rising order; of a long run read a block of rows at a time."""
+    dimension = str(run[name].dims[0])
+    picked, first = [], 0
+    for part in in_parts(run, dimension, name):
+        inside = rows[(rows >= first) & (rows < first + part.sizes[dimension])]
+        picked.append(part[name].values[inside - first])
+        first += part.sizes[dimension]
+    return np.concatenate(picked)
+
+
+def values_at_nodes(run: xr.Dataset, name: str, nodes: np.ndarray) -> np.ndarray:
+    """A variable along time at some nodes, in rising order; of a long series these and what lies between are read."""
+    if not nodes.size:
+        return np.empty((run.sizes[run[name].dims[0]], 0))
+    return values_at(run, name, slice(int(nodes[0]), int(nodes[-1]) + 1))[:, nodes - nodes[0]]
 
 
 @contextmanager

@@ -8,13 +8,13 @@ from typing import Any
 import numpy as np
 import xarray as xr
 
-from toeline.findings.series import is_any, meanings, names
+from toeline.findings.series import meanings, names
 from toeline.report.order_words import order_words
 from toeline.report.page.looks import MARKERS
 from toeline.report.page.moments import Moments, nearest_rows
 from toeline.report.run_clock import RunClock
 from toeline.report.style import ORDER_STATUSES, PAPER, shown_factor
-from toeline.results.dataset import local_time
+from toeline.results.dataset import local_time, rows_at
 from toeline.units import Dimension, Display
 
 GATE_SERIES: dict[str, tuple[str, Dimension]] = {
@@ -71,7 +71,7 @@ def run_arrays(run: xr.Dataset, moments: Moments, display: Display) -> RunArrays
         series=_gate_series(run, rows, display),
         rows=np.searchsorted(rows, at_moments).astype(np.int32),
         profile_elapsed=_milliseconds(profile_times[profiles] - times[0]),
-        water_level=_shown(run["water_level"].values[profiles], "length", display),
+        water_level=_shown(rows_at(run, "water_level", profiles), "length", display),
         profiles=np.where(of_profile < 0, -1, np.searchsorted(profiles, of_profile)).astype(np.int32),
         pools=_pools(run),
         steps_left_out=int(times.size - rows.size),
@@ -137,16 +137,16 @@ def _pools(run: xr.Dataset) -> list[tuple[int, int, int]]:
 
 def _gate_series(run: xr.Dataset, rows: np.ndarray, display: Display) -> dict[str, np.ndarray]:
     series = {
-        name: _shown(run[variable].values[rows], dimension, display)
+        name: _shown(rows_at(run, variable, rows), dimension, display)
         for name, (variable, dimension) in GATE_SERIES.items()
     }
-    flags = {name: run[name].values[rows].astype(np.int8).ravel() for name in ("jump_state", "gate_flow_state")}
-    return series | flags | {"settling": _settling_below(run)[rows].astype(np.int8).ravel()}
+    flags = {name: rows_at(run, name, rows).astype(np.int8).ravel() for name in ("jump_state", "gate_flow_state")}
+    return series | flags | {"settling": _settling_below(run, rows).astype(np.int8).ravel()}
 
 
-def _settling_below(run: xr.Dataset) -> np.ndarray:
-    """Whether the pool below each gate was settling, along time and gate; beyond the last pool nothing settles."""
-    settling = is_any(run["settling"], "settling")
+def _settling_below(run: xr.Dataset, rows: np.ndarray) -> np.ndarray:
+    """Whether the pool below each gate was settling, along rows and gate; beyond the last pool nothing settles."""
+    settling = rows_at(run, "settling", rows) == meanings(run["settling"]).index("settling")
     columns = {name: settling[:, column] for column, name in enumerate(names(run["pool"]))}
     beyond = np.zeros(settling.shape[0], dtype=bool)
     below: np.ndarray = np.stack([columns.get(name, beyond) for name in names(run["gate_downstream_pool"])], axis=1)

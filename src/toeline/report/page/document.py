@@ -33,6 +33,7 @@ from toeline.report.page.verdict import floor_hazard, headline, incident_rows, p
 from toeline.report.page.water_tables import escape_table, gauge_table, ledger_tables, roughness_table
 from toeline.report.run_clock import RunClock
 from toeline.report.run_identity import run_identity
+from toeline.results.dataset import is_long
 from toeline.units import Display, UnitSystem
 
 MOST_RUNS = 4
@@ -117,9 +118,12 @@ def _refuse(runs: Mapping[str, xr.Dataset]) -> None:
 
 
 def _shown_runs(runs: Mapping[str, xr.Dataset]) -> list[ShownRun]:
+    for run in runs.values():
+        if not is_long(run):
+            run.load()
     keys = [f"{letter}: " for letter in ascii_uppercase] if len(runs) > 1 else [""]
     return [
-        ShownRun(place, keys[place], name if len(runs) > 1 else run_identity(run).plan, run.load(), incidents(run))
+        ShownRun(place, keys[place], name if len(runs) > 1 else run_identity(run).plan, run, incidents(run))
         for place, (name, run) in enumerate(runs.items())
     ]
 

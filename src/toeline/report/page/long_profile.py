@@ -28,6 +28,7 @@ from toeline.report.style import (
     shown_factor,
     unit_text,
 )
+from toeline.results.dataset import in_parts
 from toeline.units import Display
 
 HEIGHT = 430
@@ -164,10 +165,16 @@ def _chainages(runs: Sequence[xr.Dataset], factor: float) -> Range1d:
     return Range1d(float(places.min()) - room, float(places.max()) + 3.0 * room)
 
 
+def _highest(run: xr.Dataset) -> float:
+    """The highest level of all long profiles [m]; minus infinity where there is none."""
+    return float(np.nanmax(run["water_level"].values, initial=-np.inf))
+
+
 def _levels(runs: Sequence[xr.Dataset], factor: float) -> Range1d:
-    edges = ("bank_level", "lining_level", "water_level", "pool_target_level")
-    tops = np.concatenate([run[name].values.ravel() for run in runs for name in edges])
-    floors = np.concatenate([run[name].values for run in runs for name in ("bed_level", "gate_floor_level")])
-    lowest, highest = float(np.nanmin(floors)) / factor, float(np.nanmax([*tops, *floors])) / factor
+    edges, beds = ("bank_level", "lining_level", "pool_target_level"), ("bed_level", "gate_floor_level")
+    tops = np.concatenate([run[name].values for run in runs for name in edges])
+    waters = [_highest(part) for run in runs for part in in_parts(run, "profile_time", "water_level")]
+    floors = np.concatenate([run[name].values for run in runs for name in beds])
+    lowest, highest = float(np.nanmin(floors)) / factor, float(np.nanmax([*tops, *waters, *floors])) / factor
     height = max(highest - lowest, 1.0)
     return Range1d(lowest - 0.06 * height, highest + (ROOM_FOR_NAMES + 0.07 * (len(runs) - 1)) * height)

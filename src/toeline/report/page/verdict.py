@@ -15,6 +15,7 @@ from toeline.report.layout import counted
 from toeline.report.page.moments import Moments
 from toeline.report.run_clock import RunClock
 from toeline.report.values import value_text
+from toeline.results.dataset import read_apart
 from toeline.units import Display
 
 GATES_NAMED = 4
@@ -115,7 +116,7 @@ def people_hazard(run: xr.Dataset) -> Hazard:
 
 def _in_states(run: xr.Dataset, gates: Sequence[GateJumps], *states: str) -> list[GateJumps]:
     """The gates whose jump was in one of the states at any step: an instant counts, though it lasts no time."""
-    held = is_any(run["jump_state"], *states)
+    held = is_any(read_apart(run)["jump_state"], *states)
     return [gate for place, gate in enumerate(gates) if held[:, place].any()]
 
 

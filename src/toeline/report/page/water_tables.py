@@ -1,12 +1,11 @@
 """The water of a run as tables: the ledger of canal and pools, escapes, staff gauges, roughness."""
 
-import numpy as np
 import xarray as xr
 
 from toeline.findings.escapes import EscapeSpill, escape_spills
 from toeline.findings.gauges import gauge_readings
 from toeline.findings.ledger import Account, Ledger, acre_feet, ledger
-from toeline.findings.series import names
+from toeline.findings.roughness import pool_roughness
 from toeline.report.page.table import Table
 from toeline.report.run_clock import RunClock, extreme_text
 from toeline.report.water import ENTRIES, canal_entries, ledger_note, rounded
@@ -78,10 +77,7 @@ def gauge_table(run: xr.Dataset, clock: RunClock, display: Display) -> Table:
 
 def roughness_table(run: xr.Dataset) -> Table:
     """Factors on Manning's n that the calendar gave; no rows where it gave none."""
-    factors = run["pool_roughness_factor"].values
     rows = tuple(
-        (pool, f"{first:.3f}", f"{last:.3f}", f"{most:.3f}")
-        for pool, first, last, most in zip(names(run["pool"]), factors[0], factors[-1], factors.max(0), strict=True)
+        (pool.pool, f"{pool.first:.3f}", f"{pool.last:.3f}", f"{pool.greatest:.3f}") for pool in pool_roughness(run)
     )
-    has_any = bool(np.any(factors != 1.0))
-    return Table("Factors on Manning's n", ("pool", "at the start", "at the end", "greatest"), rows if has_any else ())
+    return Table("Factors on Manning's n", ("pool", "at the start", "at the end", "greatest"), rows)
