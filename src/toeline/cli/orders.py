@@ -83,32 +83,32 @@ def command(
     """
     from toeline.report.order_calendar import issue
     from toeline.report.order_sheet import order_sheets
-    from toeline.results.dataset import load_run
+    from toeline.results.dataset import damage_told, read_run
 
     refuse_other_than_run(run)
     folder = output or Path(f"{run.stem}.orders")
     suffixes = [FORMATS[name] for name in formats or FORMATS]
-    dataset = load_run(run)
-    if not dataset.sizes["time"]:
-        raise UsageError(f"{run} was stopped before anything reached the disk: there are no orders to write.")
-    if not dataset.sizes["gate"]:
-        raise UsageError(f"{run} is of a canal without gates: there is nobody to write orders for.")
-    sheets = order_sheets(dataset, by, allowance=allowance_of(allow, dataset))
-    stems = sheet_files(sheets)
-    refuse_files(folder, stems.values(), [*suffixes, CALENDAR], overwrite)
-    issued = issue(dataset, sheets, earlier_calendars(folder, stems), timedelta(minutes=alarm) if alarm else None)
-    sheets = [replace(sheet, revision=issued.revision) for sheet in sheets]
-    contents = {
-        stems[sheet.whose] + suffix: content
-        for sheet in sheets
-        for suffix, content in sheet_contents(sheet, dataset, suffixes, paper)
-    }
-    contents |= {stems[whose] + CALENDAR: calendar.to_ical() for whose, calendar in issued.calendars.items()}
-    folder.mkdir(exist_ok=True)
-    write_together({folder / name: content for name, content in contents.items()})
-    show(issue_page(run, folder, sheets, stems, [*suffixes, CALENDAR]))
-    tell_what_to_look_at(run, dataset)
-    tell_of_left_overs(folder, stems.values())
+    with damage_told(run), read_run(run) as dataset:
+        if not dataset.sizes["time"]:
+            raise UsageError(f"{run} was stopped before anything reached the disk: there are no orders to write.")
+        if not dataset.sizes["gate"]:
+            raise UsageError(f"{run} is of a canal without gates: there is nobody to write orders for.")
+        sheets = order_sheets(dataset, by, allowance=allowance_of(allow, dataset))
+        stems = sheet_files(sheets)
+        refuse_files(folder, stems.values(), [*suffixes, CALENDAR], overwrite)
+        issued = issue(dataset, sheets, earlier_calendars(folder, stems), timedelta(minutes=alarm) if alarm else None)
+        sheets = [replace(sheet, revision=issued.revision) for sheet in sheets]
+        contents = {
+            stems[sheet.whose] + suffix: content
+            for sheet in sheets
+            for suffix, content in sheet_contents(sheet, dataset, suffixes, paper)
+        }
+        contents |= {stems[whose] + CALENDAR: calendar.to_ical() for whose, calendar in issued.calendars.items()}
+        folder.mkdir(exist_ok=True)
+        write_together({folder / name: content for name, content in contents.items()})
+        show(issue_page(run, folder, sheets, stems, [*suffixes, CALENDAR]))
+        tell_what_to_look_at(run, dataset)
+        tell_of_left_overs(folder, stems.values())
 
 
 def allowance_of(text: str | None, run: "xr.Dataset") -> float | None:

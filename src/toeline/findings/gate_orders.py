@@ -10,13 +10,16 @@ from functools import cached_property
 import numpy as np
 import xarray as xr
 
-from toeline.findings.series import is_any, meanings, names
+from toeline.findings.series import meanings, names
+from toeline.results.dataset import values_at
 
 EARLY_OR_LATE = 900.0
 """Seconds by which a reading may be taken early or late and still lie in its band (choice)."""
 
 FROM_SCHEDULE = "schedule"
 SIDES = ("upstream", "downstream")
+MOST_HELD = 8
+"""Series that are held at once: those of one gate, with its two pools and gauges."""
 SAME_OPENING = 1e-4
 """Change of an opening [m] that is none: a tenth of what a sheet shows."""
 
@@ -104,8 +107,11 @@ def gate_orders(run: xr.Dataset, allowance: float) -> list[GateOrder]:
     The band of a reading is the greatest change of the level within a quarter of an hour before it, and after it where
     the gate has not moved again, and the allowance on top, which is all that it holds for errors of the canal file.
     """
-    around = _Gates(run, allowance)
-    return [around.order(row) for row in around.rows if around.sources[row] == FROM_SCHEDULE]
+    around, gates = _Gates(run, allowance), names(run["gate"])
+    rows = [row for row in around.rows if around.sources[row] == FROM_SCHEDULE]
+    by_gate = sorted(rows, key=lambda row: gates.index(str(run["order_gate"].values[row])))
+    orders = {row: around.order(row) for row in by_gate}
+    return [orders[row] for row in rows]
 
 
 def rule_moves(run: xr.Dataset) -> list[RuleMoves]:
@@ -162,12 +168,26 @@ class _Gates:
         self.sources = _sources(run)
         self.rows: list[int] = np.argsort(run["order_time"].values, kind="stable").tolist()
         self._statuses = [meanings(run["order_status"])[value] for value in run["order_status"].values]
+        self._held: dict[tuple[str, int], np.ndarray] = {}
 
     @cached_property
     def _seconds(self) -> np.ndarray:
         times = self._run["time"].values
         seconds: np.ndarray = (times - times[0]) / np.timedelta64(1, "s")
         return seconds
+
+    def _series(self, name: str, place: int) -> np.ndarray:
+        """A series at one gate, pool or gauge; those last asked for are held, for the next order of the same gate."""
+        if (name, place) not in self._held:
+            if len(self._held) == MOST_HELD:
+                self._held.clear()
+            self._held[name, place] = values_at(self._run, name, place)
+        return self._held[name, place]
+
+    def _settling(self, pool: int) -> np.ndarray:
+        """Whether a pool was settling, by output step."""
+        holds: np.ndarray = self._series("settling", pool) == meanings(self._run["settling"]).index("settling")
+        return holds
 
     def _since_start(self, instant: np.datetime64) -> float:
         return float((instant - self._run["time"].values[0]) / np.timedelta64(1, "s"))
@@ -237,7 +257,7 @@ class _Gates:
         pools = names(self._run["pool"])
         beside = [pools.index(pool) for pool in self._pools(gate) if pool in pools]
         trip = np.max(self._run["pool_wave_round_trip"].values[beside], initial=0.0)
-        settling = is_any(self._run["settling"], "settling")[:, beside].any(axis=1)
+        settling = np.any([self._settling(pool) for pool in beside], axis=0)
         times = self._run["time"].values
         settled = times[(times >= stands) & ~settling]
         one_trip = [stands + np.timedelta64(round(float(trip)), "s")] if np.isfinite(trip) else []
@@ -248,7 +268,7 @@ class _Gates:
         stood = read_after if np.isnat(stands) else stands
         for side, pool in zip(SIDES, self._pools(gate), strict=True):
             gauge, levels = self._levels(gate, side)
-            bound = self._run[f"surge_height_bound_{side}"].values[:, gate]
+            bound = self._series(f"surge_height_bound_{side}", gate)
             yield Side(
                 side,
                 gauge,
@@ -261,9 +281,9 @@ class _Gates:
         """Name and readings of the staff gauge on a side of a gate; without one "" and the level there."""
         gauge, _ = gauge_beside(self._run, names(self._run["gate"])[gate], side)
         if gauge:
-            return gauge, self._run["gauge_reading"].values[:, names(self._run["gauge"]).index(gauge)]
+            return gauge, self._series("gauge_reading", names(self._run["gauge"]).index(gauge))
         level = "gate_headwater_level" if side == "upstream" else "gate_tailwater_level"
-        return "", self._run[level].values[:, gate]
+        return "", self._series(level, gate)
 
     def _rows_after(self, begin: np.datetime64, end: np.datetime64) -> np.ndarray:
         times = self._run["time"].values
@@ -286,4 +306,4 @@ class _Gates:
         if pool not in pools:
             return False
         row = np.searchsorted(self._run["time"].values, at, side="right") - 1
-        return bool(is_any(self._run["settling"], "settling")[row, pools.index(pool)])
+        return bool(self._settling(pools.index(pool))[row])

@@ -11,7 +11,7 @@ import xarray as xr
 from toeline.constants import CAUTION
 from toeline.errors import UsageError
 from toeline.findings.gate_orders import GateOrder, Reading, Side, gate_orders, gatekeepers, rule_moves
-from toeline.findings.incidents import incidents
+from toeline.findings.incidents import Incident, incidents
 from toeline.findings.limits_beside import LimitBeside, limits_beside
 from toeline.findings.rounds import rounds
 from toeline.findings.series import names
@@ -175,6 +175,10 @@ class _Maker:
     @cached_property
     def _orders(self) -> list[GateOrder]:
         return gate_orders(self._run, self._allowance)
+
+    @cached_property
+    def _incidents(self) -> list[Incident]:
+        return incidents(self._run)
 
     def sheets(self, by: By | None) -> list[Sheet]:
         keepers = gatekeepers(self._run)
@@ -344,7 +348,7 @@ class _Maker:
         """What goes wrong in the simulation at the gates and in the pools beside them."""
         rows = [place for place, gate in enumerate(self._run["gate"].values) if gate in gates]
         beside = {str(self._run[f"gate_{side}_pool"].values[row]) for row in rows for side in PLACES}
-        found = [one for one in incidents(self._run) if one.where in beside or one.where in gates]
+        found = [one for one in self._incidents if one.where in beside or one.where in gates]
         for incident in found[:INCIDENTS_TOLD]:
             yield f"{incident.where}: {incident.what}, {self._clock.span(incident.start, incident.end)}."
         if len(found) > INCIDENTS_TOLD:
