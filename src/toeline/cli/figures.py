@@ -1,6 +1,7 @@
 """`toeline figures`: a run as figures for reports."""
 
 from collections.abc import Iterator, Sequence
+from contextlib import ExitStack
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -59,14 +60,16 @@ def command(
     are written, or none. A figure is drawn in the units of the run's day, and its times are local.
     """
     from toeline.report.figures.files import write_pictures
+    from toeline.results.dataset import damage_told
 
     for path in runs:
         refuse_other_than_run(path)
     check_names(wanted, len(runs))
     check_folder(folder)
-    pictures = drawn([(path.stem, loaded(path)) for path in runs], wanted, at)
-    folder.mkdir(parents=True, exist_ok=True)
-    written = write_pictures(pictures, folder, formats or ("png",), overwrite=overwrite)
+    with damage_told(" or ".join(map(str, runs))), ExitStack() as stack:
+        pictures = drawn([(path.stem, opened(path, stack)) for path in runs], wanted, at)
+        folder.mkdir(parents=True, exist_ok=True)
+        written = write_pictures(pictures, folder, formats or ("png",), overwrite=overwrite)
     show("\n".join(str(path) for path in written))
 
 
@@ -88,11 +91,11 @@ def check_names(wanted: Sequence[str], runs: int) -> None:
         raise UsageError(f"--figure {PLANS}: compares two runs or more; name their files")
 
 
-def loaded(path: Path) -> "xr.Dataset":
-    """A run with at least one output step, its values in memory."""
-    from toeline.results.dataset import load_run
+def opened(path: Path, stack: ExitStack) -> "xr.Dataset":
+    """A run with at least one output step, its values in memory unless it is long."""
+    from toeline.results.dataset import read_run
 
-    run = load_run(path)
+    run = stack.enter_context(read_run(path))
     if not run.sizes["time"]:
         raise UsageError(f"{path}: the run was stopped before anything reached the disk; there is nothing to draw")
     return run

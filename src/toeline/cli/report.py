@@ -1,5 +1,6 @@
 """`toeline report`: a page to look at runs with."""
 
+from contextlib import ExitStack
 from pathlib import Path
 
 import click

@@ -1,6 +1,6 @@
 """Every limit of a run at every place it holds for: the value that it limits, all along the run."""
 
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Collection, Iterator
 from dataclasses import dataclass
 from functools import cached_property
 from typing import NamedTuple
@@ -58,13 +58,16 @@ class Watch:
         return extreme(self.values[rows], self.times[rows])
 
 
-def watches(run: xr.Dataset) -> Iterator[Watch]:
-    """All watches of all limits, limit by limit. A place without a value to watch is left out."""
+def watches(run: xr.Dataset, only: Collection[str] | None = None) -> Iterator[Watch]:
+    """All watches of all limits, limit by limit, or those at some places alone. A place without a value to watch is
+    left out.
+    """
     places = _Places(run)
     for limit in limits_of_run(run):
         for place in places.of(limit):
-            found = _WATCHED[limit.kind].watch(limit, place, places)
-            yield from (watch for watch in found if np.isfinite(watch.values).any())
+            if only is None or place in only:
+                found = _WATCHED[limit.kind].watch(limit, place, places)
+                yield from (watch for watch in found if np.isfinite(watch.values).any())
 
 
 class _Places:

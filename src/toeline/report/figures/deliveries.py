@@ -19,6 +19,7 @@ from toeline.report.figures.draw import (
     value_range,
     words_of,
 )
+from toeline.report.figures.drawn_steps import drawn_steps, steps_note, steps_words
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.sheet import Sheet, about_run, in_house_style
 from toeline.report.figures.time_axis import TimeAxis
@@ -28,6 +29,7 @@ from toeline.report.style import DELIVERY, DEMAND, SHORTFALL, SPILL, Line, axis_
 from toeline.units import Display
 
 NAME = "deliveries"
+SERIES = ("demand", "delivery", "escape_discharge")
 OUTLETS_ON_A_PAGE = 8
 PITCH, HEIGHT = 1.15, 0.8
 LEAST_TOP = 0.01
@@ -36,13 +38,16 @@ LEAST_TOP = 0.01
 
 @dataclass(frozen=True)
 class Outlet:
-    """An offtake or an escape: what was asked (None of an escape) and given [m³/s], by output step, and volume [m³]."""
+    """An offtake or an escape: what was asked (None of an escape) and given [m³/s], by output step, the volume [m³],
+    and what was lacking at the worst [m³/s].
+    """
 
     name: str
     pool: str
     demand: np.ndarray | None
     given: np.ndarray
     volume: float
+    worst: float = 0.0
 
     @property
     def line(self) -> Line:
@@ -55,33 +60,52 @@ class Outlet:
         given = f"{display.volume(self.volume)} given"
         if np.isnan(self.demand).all():
             return f"{given}; nothing is asked, it follows the level of its pool"
-        _, worst = value_range(self.demand - self.given)
-        return given if worst <= SHORTFALL_FROM else f"{given}; at worst {display.discharge(worst)} short"
+        return given if self.worst <= SHORTFALL_FROM else f"{given}; at worst {display.discharge(self.worst)} short"
 
 
-def outlets(run: xr.Dataset) -> list[Outlet]:
-    """All offtakes, then all escapes, from the head down."""
+def outlets(run: xr.Dataset, drawn: xr.Dataset) -> list[Outlet]:
+    """All offtakes, then all escapes, from the head down, with what is drawn of them."""
+    worst = [value_range(lacking)[1] for lacking in _lacking(run)[SHORTFALL.word].T]
     return [
-        *_listed(run, "offtake", "delivery", run["demand"].values),
-        *_listed(run, "escape", "escape_discharge", None),
-    ]
+        *(
+            Outlet(*facts)
+            for facts in zip(
+                names(run["offtake"]), names(run["offtake_pool"]), drawn["demand"].values.T, drawn["delivery"].values.T,
+                _growth(run["delivery_volume"]), worst, strict=True,
+            )
+        ),
+        *(
+            Outlet(name, pool, None, given, volume)
+            for name, pool, given, volume in zip(
+                names(run["escape"]), names(run["escape_pool"]), drawn["escape_discharge"].values.T,
+                _growth(run["escape_volume"]), strict=True,
+            )
+        ),
+    ]  # fmt: skip
 
 
-def _listed(run: xr.Dataset, place: str, given: str, demand: np.ndarray | None) -> Iterator[Outlet]:
-    total = "delivery_volume" if place == "offtake" else f"{place}_volume"
-    volumes = run[total].values[-1] - run[total].values[0]
-    pools = names(run[f"{place}_pool"])
-    for row, (name, pool) in enumerate(zip(names(run[place]), pools, strict=True)):
-        asked = None if demand is None else demand[:, row]
-        yield Outlet(name, pool, asked, run[given].values[:, row], float(volumes[row]))
+def _lacking(run: xr.Dataset) -> dict[str, np.ndarray]:
+    return {SHORTFALL.word: run["demand"].values - run["delivery"].values}
+
+
+def _growth(volumes: xr.DataArray) -> list[float]:
+    """Last less first value along time [m³], by place."""
+    growth: list[float] = (volumes[-1].values - volumes[0].values).tolist()
+    return growth
 
 
 def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
     """The deliveries of all offtakes and escapes, eight to a page."""
-    listed = outlets(run)
-    groups = pages(range(len(listed)), OUTLETS_ON_A_PAGE)
+    offtakes = run.sizes["offtake"]
+    groups = pages(range(offtakes + run.sizes["escape"]), OUTLETS_ON_A_PAGE)
     for page, places in enumerate(groups):
-        yield _page(run, [listed[place] for place in places], display, page_name(NAME, page, len(groups)))
+        first, after = (places[0], places[-1] + 1) if places else (0, 0)
+        here = run.isel(
+            offtake=slice(first, min(after, offtakes)),
+            escape=slice(max(first - offtakes, 0), max(after - offtakes, 0)),
+        )
+        drawn = drawn_steps(here, *SERIES, derived=_lacking)
+        yield _page(drawn, outlets(here, drawn), display, page_name(NAME, page, len(groups)))
 
 
 @in_house_style
@@ -89,7 +113,7 @@ def _page(run: xr.Dataset, listed: Sequence[Outlet], display: Display, name: str
     shown: list[Drawn] = [DELIVERY, DEMAND, SHORTFALL]
     shown += [SPILL] if any(outlet.demand is None for outlet in listed) else []
     count = max(len(listed), 1)
-    about = about_run(run_identity(run))
+    about = about_run(run_identity(run), steps_note(run))
     sheet = Sheet("Deliveries asked for and given", about, PITCH * count + 0.1, words_of(shown))
     time = TimeAxis(run)
     for row, axes in enumerate(time.rows(sheet, count, PITCH, HEIGHT)):
@@ -99,7 +123,7 @@ def _page(run: xr.Dataset, listed: Sequence[Outlet], display: Display, name: str
             empty_note(axes, "The canal has no offtakes.")
     sheet.side_title(axis_text("discharge", "discharge", display))
     sheet.legend([key(thing) for thing in shown])
-    return Picture(name, sheet.figure, {"": table(run, listed, display)}, words(listed, display))
+    return Picture(name, sheet.figure, {"": table(run, listed, display)}, words(listed, display) + steps_words(run))
 
 
 def _panel(axes: Axes, outlet: Outlet, time: TimeAxis, display: Display) -> None:

@@ -1,5 +1,6 @@
 """Figures as files: PNG, SVG or PDF, each with its numbers as CSV beside it; all of them appear, or none."""
 
+import gc
 from collections.abc import Iterable, Sequence
 from pathlib import Path
 from tempfile import TemporaryDirectory
@@ -13,6 +14,8 @@ from toeline.report.figures.sheet import in_house_style
 
 FORMATS = ("png", "svg", "pdf")
 DOTS_PER_INCH = 150
+LARGE = 100_000
+"""Numbers of a picture from which its memory is given back at once (choice): more than a day has."""
 _REPEATABLE = matplotlib.rc_context({"svg.hashsalt": "toeline", "pdf.fonttype": 42})
 
 
@@ -32,6 +35,10 @@ def write_pictures(
                     raise UsageError(f"two figures would go to {folder / name}: rename a run")
                 _refuse(folder / name, overwrite)
                 ready[name] = path
+            is_large = picture.size > LARGE
+            del picture
+            if is_large:
+                gc.collect()  # a figure is a ring of objects, which would wait with all of its points
         return [path.replace(folder / name) for name, path in ready.items()]
 
 

@@ -10,6 +10,7 @@ from toeline.findings.limits import avoided_openings
 from toeline.findings.moves import SCHEDULE
 from toeline.findings.series import is_any, meanings_seen, names
 from toeline.report.figures.draw import Drawn, area_look, draw_line, key, mark_look, panel_title, words_of
+from toeline.report.figures.drawn_steps import drawn_steps, steps_note, steps_words
 from toeline.report.figures.gate_moves import orders_of
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.sheet import NO_GATES, Sheet, about_run, in_house_style
@@ -37,6 +38,7 @@ Bands = list[list[float]]
 """Lower and upper ends of openings [m]."""
 
 NAME = "gate_openings"
+SERIES = ("gate_opening", "bay_opening", "gate_discharge", "gate_flow_state", "jump_state")
 GATES_ON_A_PAGE = 6
 PITCH, HEIGHT = 1.5, 0.85
 STRIP = 0.13
@@ -48,7 +50,9 @@ def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
     """The openings of all gates, six to a page."""
     groups = pages(range(run.sizes["gate"]), GATES_ON_A_PAGE)
     for page, gates in enumerate(groups):
-        yield _page(run.isel(gate=gates), display, page_name(NAME, page, len(groups)))
+        bays = np.flatnonzero(np.isin(run["bay_gate"].values, run["gate"].values[gates]))
+        here = drawn_steps(run.isel(gate=gates, bay=bays), *SERIES)
+        yield _page(here, display, page_name(NAME, page, len(groups)))
 
 
 @in_house_style
@@ -60,7 +64,7 @@ def _page(run: xr.Dataset, display: Display, name: str) -> Picture:
     shown: list[Drawn] = [*lines, *_marks_seen(run), *([AVOIDED] if avoided else []), *_areas_seen(run)]
     sheet = Sheet(
         "Gate openings, orders and flow",
-        about_run(run_identity(run)),
+        about_run(run_identity(run), steps_note(run)),
         PITCH * max(len(gates), 1) + 0.1,
         words_of(shown),
     )
@@ -73,7 +77,10 @@ def _page(run: xr.Dataset, display: Display, name: str) -> Picture:
     sheet.side_title(axis_text("opening, lip above sill", "length", display))
     sheet.legend([key(thing) for thing in shown])
     return Picture(
-        name, sheet.figure, {"": table(run, display), "orders": orders_table(run, display)}, words(run, display)
+        name,
+        sheet.figure,
+        {"": table(run, display), "orders": orders_table(run, display)},
+        words(run, display) + steps_words(run),
     )
 
 

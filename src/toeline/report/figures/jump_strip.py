@@ -11,6 +11,7 @@ from toeline.findings.series import is_any, meanings_seen, names
 from toeline.findings.settling import gates_settling
 from toeline.report.clock import duration_text
 from toeline.report.figures.draw import Drawn, area_look, draw_level, draw_line, key, margin_note, panel_title, words_of
+from toeline.report.figures.drawn_steps import drawn_steps, steps_note, steps_words
 from toeline.report.figures.gate_moves import MOVE, move_marks
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.sheet import NO_GATES, SMALL_SIZE, Sheet, about_run, in_house_style
@@ -34,6 +35,7 @@ from toeline.report.style import (
 from toeline.units import Display
 
 NAME = "jump_strip"
+SERIES = ("jump_toe_distance", "jump_end_distance", "jump_state", "settling")
 GATES_ON_A_PAGE = 6
 PITCH, HEIGHT, RISE = 1.67, 1.05, -0.17
 STATE_BOTTOM, STATE_HEIGHT = -0.16, 0.1
@@ -51,7 +53,8 @@ def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
     groups = pages(range(run.sizes["gate"]), GATES_ON_A_PAGE)
     jumps = gate_jumps(run)
     for page, gates in enumerate(groups):
-        yield _page(run.isel(gate=gates), [jumps[gate] for gate in gates], display, page_name(NAME, page, len(groups)))
+        here = drawn_steps(run.isel(gate=gates), *SERIES)
+        yield _page(here, [jumps[gate] for gate in gates], display, page_name(NAME, page, len(groups)))
 
 
 @in_house_style
@@ -59,7 +62,10 @@ def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) 
     states = [JUMP_STATES[state] for state in _states_seen(run)]
     shown: list[Drawn] = [*states, *FLOORS, APRON_END, PROTECTION_END, SETTLING, MOVE]
     sheet = Sheet(
-        "Where the jump stood", about_run(run_identity(run)), PITCH * max(len(jumps), 1) + 0.1, words_of(shown)
+        "Where the jump stood",
+        about_run(run_identity(run), steps_note(run)),
+        PITCH * max(len(jumps), 1) + 0.1,
+        words_of(shown),
     )
     time, settling = TimeAxis(run), gates_settling(run)
     for row, axes in enumerate(time.rows(sheet, len(jumps), PITCH, HEIGHT, first=RISE)):
@@ -69,7 +75,7 @@ def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) 
         sheet.say(NO_GATES)
     sheet.side_title(axis_text("distance below the gate", "length", display))
     sheet.legend([key(thing) for thing in shown])
-    return Picture(name, sheet.figure, {"": table(run, display)}, words(jumps))
+    return Picture(name, sheet.figure, {"": table(run, display)}, words(jumps) + steps_words(run))
 
 
 def _panel(

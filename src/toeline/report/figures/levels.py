@@ -20,6 +20,7 @@ from toeline.report.figures.draw import (
     value_range,
     words_of,
 )
+from toeline.report.figures.drawn_steps import drawn_steps, steps_note, steps_words
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.pool_limits import PoolLimits, limit_level, limits_by_pool, use_lines, used_share
 from toeline.report.figures.sheet import Panel, Sheet, about_run, in_house_style
@@ -43,6 +44,7 @@ from toeline.report.style import (
 from toeline.units import Display
 
 NAME = "levels"
+SERIES = ("pool_tail_level", "pool_lining_margin", "pool_bank_margin", "settling")
 POOLS_ON_A_PAGE = 6
 HEIGHT, ABOVE = 1.15, 0.5
 USE_HEIGHT, USE_GAP = 0.42, 0.12
@@ -56,10 +58,10 @@ NO_LIMITS = PoolLimits()
 def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
     """The levels of all pools, six to a page."""
     groups = pages(range(run.sizes["pool"]), POOLS_ON_A_PAGE)
-    limits = limits_by_pool(run)
     for page, pools in enumerate(groups):
-        here = run.isel(pool=pools)
+        here = drawn_steps(run.isel(pool=pools), *SERIES)
         edges = [pool_edges(run, pool) for pool in pools]
+        limits = limits_by_pool(run, names(here["pool"]), here["time"].values)
         of_page = [limits.get(pool, NO_LIMITS) for pool in names(here["pool"])]
         yield _page(here, edges, of_page, display, page_name(NAME, page, len(groups)))
 
@@ -79,7 +81,7 @@ def _page(
     shown += [LIMIT] if any(of_pool.levels for of_pool in limits) else []
     pitch = ABOVE + HEIGHT + (USE_GAP + USE_HEIGHT if uses else 0.0)
     title = "Water levels at the lower ends of the pools"
-    sheet = Sheet(title, about_run(run_identity(run)), pitch * len(edges) + 0.1, words_of(shown))
+    sheet = Sheet(title, about_run(run_identity(run), steps_note(run)), pitch * len(edges) + 0.1, words_of(shown))
     time, settling = TimeAxis(run), pools_settling(run)
     for row, (of_pool, of_edges) in enumerate(zip(limits, edges, strict=True)):
         axes = sheet.axes(Panel(row * pitch + ABOVE, HEIGHT))
@@ -92,7 +94,9 @@ def _page(
             time.apply(below, labelled=is_last)
     sheet.side_title(axis_text("level above datum", "length", display))
     sheet.legend([key(thing) for thing in shown])
-    return Picture(name, sheet.figure, {"": table(run, limits, display)}, words(run, limits, display))
+    return Picture(
+        name, sheet.figure, {"": table(run, limits, display)}, words(run, limits, display) + steps_words(run)
+    )
 
 
 def _panel(

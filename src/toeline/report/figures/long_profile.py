@@ -2,6 +2,7 @@
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from typing import NamedTuple
 
 import numpy as np
 import xarray as xr
@@ -30,6 +31,7 @@ from toeline.report.style import (
     axis_text,
     shown_factor,
 )
+from toeline.results.dataset import in_parts, rows_at
 from toeline.units import Display, UnitSystem
 
 NAME = "long_profile"
@@ -47,8 +49,9 @@ def pictures(run: xr.Dataset, display: Display, at: np.datetime64 | None = None)
     """The profile nearest to `at` (by itself that of the worst time), with six gates to a page."""
     groups = pages(range(run.sizes["gate"]), GATES_ON_A_PAGE)
     moment = nearest_moment(run, worst_time(run) if at is None else at)
+    water = _water(run, moment)
     for page, gates in enumerate(groups):
-        yield _page(run, gates, moment, display, page_name(NAME, page, len(groups)))
+        yield _page(run, gates, moment, water, display, page_name(NAME, page, len(groups)))
 
 
 @dataclass(frozen=True)
@@ -58,6 +61,30 @@ class Moment:
     time: np.datetime64
     profile: int | None
     step: int
+
+
+class _Water(NamedTuple):
+    """Levels by node [m]: at the moment, and the lowest and the highest of the run; NaN where it has no profile."""
+
+    now: np.ndarray
+    lowest: np.ndarray
+    highest: np.ndarray
+
+    def at(self, nodes: np.ndarray) -> "_Water":
+        return _Water(*(levels[nodes] for levels in self))
+
+
+def _water(run: xr.Dataset, moment: Moment) -> _Water:
+    nothing = np.full(run.sizes["node"], np.nan)
+    if moment.profile is None:
+        return _Water(nothing, nothing, nothing)
+    ranges = [
+        (part["water_level"].values.min(axis=0), part["water_level"].values.max(axis=0))
+        for part in in_parts(run, "profile_time", "water_level")
+    ]
+    lowest, highest = zip(*ranges, strict=True)
+    now = rows_at(run, "water_level", np.array([moment.profile]))[0]
+    return _Water(now, np.minimum.reduce(lowest), np.maximum.reduce(highest))
 
 
 def worst_time(run: xr.Dataset) -> np.datetime64:
@@ -77,14 +104,14 @@ def nearest_moment(run: xr.Dataset, time: np.datetime64) -> Moment:
 
 
 @in_house_style
-def _page(run: xr.Dataset, gates: list[int], moment: Moment, display: Display, name: str) -> Picture:
+def _page(run: xr.Dataset, gates: list[int], moment: Moment, water: _Water, display: Display, name: str) -> Picture:
     clock = RunClock(run)
     when, beside = clock.at(moment.time), clock.at(run["time"].values[moment.step])
     states = [JUMP_STATES[state] for state in _states_at(run.isel(gate=gates), moment) if state != "none"]
     shown: list[Drawn] = [WATER, DAY_RANGE, TARGET, LINING, BANK, BED, LEAF, *AREAS, *states]
     sheet = Sheet(f"Long profile at {when}", about_run(run_identity(run)), ROOM, words_of(shown))
     axes = sheet.axes(Panel(TOP, HEIGHT))
-    _profile(axes, run, gates, moment, display)
+    _profile(axes, run, gates, moment, water, display)
     for place, gate in enumerate(gates):
         width = 1.0 / max(len(gates), 4)
         view = sheet.axes(Panel(VIEW_TOP, VIEW_HEIGHT, place * width, width * 0.74))
@@ -93,20 +120,21 @@ def _page(run: xr.Dataset, gates: list[int], moment: Moment, display: Display, n
             view.set_ylabel(axis_text("level", "length", display))
     sheet.heading(VIEW_TOP - 0.36, f"The gates from the side at {beside}, heights stretched")
     sheet.legend([key(thing) for thing in shown])
-    tables = {"": table(run, moment, display), "gates": gates_table(run.isel(gate=gates), moment, display)}
+    tables = {"": table(run, moment, water, display), "gates": gates_table(run.isel(gate=gates), moment, display)}
     return Picture(name, sheet.figure, tables, words(run.isel(gate=gates), moment))
 
 
-def _profile(axes: Axes, run: xr.Dataset, gates: list[int], moment: Moment, display: Display) -> None:
+def _profile(axes: Axes, run: xr.Dataset, gates: list[int], moment: Moment, water: _Water, display: Display) -> None:
     far, per_far = FAR_UNITS[display.system]
     factor = shown_factor("length", display)
     nodes = _nodes_of_page(run, gates)
     here = run.isel(node=nodes)
     bottom = float(here["bed_level"].min()) / factor
-    top = float(np.nanmax([here["bank_level"].max(), here["lining_level"].max(), _highest(run, nodes)])) / factor
+    top = float(np.nanmax([here["bank_level"].max(), here["lining_level"].max(), _highest(water.at(nodes))])) / factor
     room = 0.06 * (top - bottom) + 0.1
     for pool in np.unique(here["node_pool"].values):
-        _pool(axes, run.isel(node=nodes[here["node_pool"].values == pool]), moment, display, bottom - room)
+        of_pool = nodes[here["node_pool"].values == pool]
+        _pool(axes, run.isel(node=of_pool), water.at(of_pool), display, bottom - room)
     _targets(axes, run, nodes, display)
     _gates(axes, run, gates, moment, display)
     axes.set_ylim(bottom - room, top + room)
@@ -131,12 +159,11 @@ def _nodes_of_page(run: xr.Dataset, gates: list[int]) -> np.ndarray:
     return np.flatnonzero(inside & np.isin(run["node_pool"].values, pools[counts > 1]))
 
 
-def _highest(run: xr.Dataset, nodes: np.ndarray) -> float:
-    levels = run["water_level"].values[:, nodes]
-    return float(np.nanmax(levels)) if np.isfinite(levels).any() else np.nan
+def _highest(water: _Water) -> float:
+    return float(np.nanmax(water.highest)) if np.isfinite(water.highest).any() else np.nan
 
 
-def _pool(axes: Axes, run: xr.Dataset, moment: Moment, display: Display, ground: float) -> None:
+def _pool(axes: Axes, run: xr.Dataset, water: _Water, display: Display, ground: float) -> None:
     """One pool: its ground and edges, the range of its water and the water line of the moment."""
     factor = shown_factor("length", display)
     x, bed = run["chainage"].values / FAR_UNITS[display.system][1], run["bed_level"].values / factor
@@ -144,12 +171,12 @@ def _pool(axes: Axes, run: xr.Dataset, moment: Moment, display: Display, ground:
     draw_line(axes, BED, x, bed)
     for line, edge in ((LINING, "lining_level"), (BANK, "bank_level")):
         draw_line(axes, line, x, run[edge].values / factor)
-    if moment.profile is None:
+    if not np.isfinite(water.now).any():
         return
-    levels = run["water_level"].values / factor
-    axes.fill_between(x, levels.min(axis=0), levels.max(axis=0), label=DAY_RANGE.word, **area_look(DAY_RANGE))
-    axes.fill_between(x, bed, levels[moment.profile], label=WATER_BODY.word, **area_look(WATER_BODY))
-    draw_line(axes, WATER, x, levels[moment.profile])
+    lowest, highest, now = water.lowest / factor, water.highest / factor, water.now / factor
+    axes.fill_between(x, lowest, highest, label=DAY_RANGE.word, **area_look(DAY_RANGE))
+    axes.fill_between(x, bed, now, label=WATER_BODY.word, **area_look(WATER_BODY))
+    draw_line(axes, WATER, x, now)
 
 
 def _targets(axes: Axes, run: xr.Dataset, nodes: np.ndarray, display: Display) -> None:
@@ -204,19 +231,16 @@ def words(run: xr.Dataset, moment: Moment) -> str:
     )
 
 
-def table(run: xr.Dataset, moment: Moment, display: Display) -> NumberTable:
+def table(run: xr.Dataset, moment: Moment, water: _Water, display: Display) -> NumberTable:
     """Bed, edges, water at the time and its lowest and highest level of the run, by node."""
-    water = run["water_level"].values
-    nothing = np.full(run.sizes["node"], np.nan)
-    is_there = moment.profile is not None
     levels = {
         "chainage": run["chainage"].values,
         "bed": run["bed_level"].values,
         "top of the lining": run["lining_level"].values,
         "top of the bank": run["bank_level"].values,
-        f"water level at {RunClock(run).at(moment.time)}": water[moment.profile] if is_there else nothing,
-        "lowest water level": water.min(axis=0) if is_there else nothing,
-        "highest water level": water.max(axis=0) if is_there else nothing,
+        f"water level at {RunClock(run).at(moment.time)}": water.now,
+        "lowest water level": water.lowest,
+        "highest water level": water.highest,
     }
     pools = [*names(run["pool"]), "tail"]
     where = text_column("pool", [pools[pool] for pool in run["node_pool"].values.tolist()])

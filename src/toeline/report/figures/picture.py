@@ -20,6 +20,11 @@ class Picture:
     tables: dict[str, NumberTable]
     words: str
 
+    @property
+    def size(self) -> int:
+        """How many numbers and words its tables hold."""
+        return sum(len(column.cells) for table in self.tables.values() for column in table.columns)
+
 
 def pages(places: Sequence[int], most: int) -> list[list[int]]:
     """Places spread over as few pages as hold at most so many each, as evenly as that goes; one empty page for none."""

@@ -13,12 +13,14 @@ from toeline.findings.jumps import GateJumps, gate_jumps
 from toeline.findings.series import names
 from toeline.report.clock import duration_text
 from toeline.report.figures.draw import draw_line, line_look, mark_look, panel_title
+from toeline.report.figures.drawn_steps import drawn_steps
 from toeline.report.figures.picture import Picture, page_count, page_name, spread
 from toeline.report.figures.sheet import NO_GATES, SMALL_SIZE, Panel, Sheet, about_run, in_house_style, shortened
 from toeline.report.figures.time_axis import TimeAxis
 from toeline.report.number_table import Column, NumberTable, number_column, quantity_column, text_column, time_column
 from toeline.report.run_identity import RunIdentity, run_identity
 from toeline.report.style import HAZARD_FLOOR, HAZARD_PEOPLE, INK, axis_text, plan_line, plan_mark, shown_factor
+from toeline.results.dataset import in_parts
 from toeline.units import Display
 
 NAME = "plans"
@@ -163,14 +165,23 @@ def _pool_rows(sheet: Sheet, runs: Sequence[xr.Dataset], pools: list[str], panel
 
 def level_range(run: xr.Dataset) -> tuple[np.ndarray, np.ndarray]:
     """Lowest and highest level at the lower end of each pool, from its target [m]; NaN where it has none."""
-    departure = run["pool_tail_level"].values - run["pool_target_level"].values
-    return departure.min(axis=0), departure.max(axis=0)
+    ends: list[tuple[np.ndarray, np.ndarray]] = []
+    for part in in_parts(run, "pool", "pool_tail_level"):
+        departure = part["pool_tail_level"].values - part["pool_target_level"].values
+        ends.append((departure.min(axis=0), departure.max(axis=0)))
+    lowest, highest = (np.concatenate(of_parts) for of_parts in zip(*ends, strict=True))
+    return lowest, highest
 
 
 def worst_gate(runs: Sequence[xr.Dataset]) -> int:
     """The gate that has the least protection margin of all plans; the first where no gate has any."""
-    least = np.min([np.nanmin(run["protection_margin"].values, axis=0, initial=np.inf) for run in runs], axis=0)
+    least = np.min([_least_margins(run) for run in runs], axis=0)
     return int(np.argmin(least)) if least.size else 0
+
+
+def _least_margins(run: xr.Dataset) -> np.ndarray:
+    parts = in_parts(run, "gate", "protection_margin")
+    return np.concatenate([np.nanmin(part["protection_margin"].values, axis=0, initial=np.inf) for part in parts])
 
 
 def _margin_through_time(sheet: Sheet, runs: Sequence[xr.Dataset], gate: int, panel: Panel, display: Display) -> None:
@@ -179,8 +190,9 @@ def _margin_through_time(sheet: Sheet, runs: Sequence[xr.Dataset], gate: int, pa
         return
     axes = sheet.axes(panel)
     for place, run in enumerate(runs):
-        margins = run["protection_margin"].values[:, gate] / shown_factor("length", display)
-        draw_line(axes, plan_line(place, str(place)), TimeAxis(run).steps, margins)
+        drawn = drawn_steps(run.isel(gate=[gate]), "protection_margin")
+        margins = drawn["protection_margin"].values[:, 0] / shown_factor("length", display)
+        draw_line(axes, plan_line(place, str(place)), TimeAxis(drawn).steps, margins)
     TimeAxis(max(runs, key=lambda run: run["time"].values[-1])).apply(axes)
     axes.axhline(0.0, color=INK, linewidth=0.8)
     axes.set_ylabel(axis_text("tailwater to spare", "length", display))

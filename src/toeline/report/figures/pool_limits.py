@@ -2,13 +2,14 @@
 rise was used.
 """
 
-from collections.abc import Sequence
+from collections.abc import Collection, Sequence
 from dataclasses import dataclass
 
 import numpy as np
 import xarray as xr
 
 from toeline.findings.watches import Watch, watches
+from toeline.report.figures.drawn_steps import shown_rows
 from toeline.report.style import FALL_USES, Line
 from toeline.report.values import value_text
 from toeline.units import Display
@@ -25,17 +26,27 @@ class PoolLimits:
     changes: tuple[Watch, ...] = ()
 
 
-def limits_by_pool(run: xr.Dataset) -> dict[str, PoolLimits]:
-    """The limits that are drawn with the levels of each pool, by its name.
+def limits_by_pool(run: xr.Dataset, pools: Collection[str], steps: np.ndarray) -> dict[str, PoolLimits]:
+    """The limits that are drawn with the levels of the pools, by their names, as far as the output steps need them.
 
     Of the two ends of a pool the one that came nearer to a limit on falls or rises is kept; levels that are watched at
     the upper end are not drawn.
     """
     found: dict[str, list[Watch]] = {}
-    for watch in watches(run):
+    is_thinned = steps.size < run.sizes["time"]
+    for watch in watches(run, pools):
         if watch.limit.kind in (*LEVEL_KINDS, *CHANGE_KINDS) and watch.limit.at != "upper end":
-            found.setdefault(watch.pools[0], []).append(watch)
+            found.setdefault(watch.pools[0], []).append(_thinned(watch, steps) if is_thinned else watch)
     return {pool: PoolLimits(_of_kind(listed, LEVEL_KINDS), _nearer_ends(listed)) for pool, listed in found.items()}
+
+
+def _thinned(watch: Watch, steps: np.ndarray) -> Watch:
+    """A watch at some of the output steps; one of a change also where it is least and greatest between them."""
+    times = steps
+    if watch.limit.kind in CHANGE_KINDS:
+        times = np.union1d(steps, watch.times[shown_rows(watch.values, watch.times)])
+    at, known = ((instants - steps[0]).astype(np.int64) for instants in (times, watch.times))
+    return Watch(watch.limit, watch.where, watch.pools, times, np.interp(at, known, watch.values))
 
 
 def _of_kind(listed: Sequence[Watch], kinds: Sequence[str]) -> tuple[Watch, ...]:

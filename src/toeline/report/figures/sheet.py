@@ -77,10 +77,10 @@ class About:
     version: str
 
 
-def about_run(run: RunIdentity) -> About:
-    """What a figure of a run says about it."""
+def about_run(run: RunIdentity, note: str = "") -> About:
+    """What a figure of a run says about it, and about itself."""
     outcome = "" if run.outcome == COMPLETE else f"; {run.outcome}"
-    return About(f"{run.canal}: {run.day}; {run.plan}", f"{run.period}, {run.zone}{outcome}", run.version)
+    return About(f"{run.canal}: {run.day}; {run.plan}", f"{run.period}, {run.zone}{outcome}{note}", run.version)
 
 
 class Sheet:

@@ -26,6 +26,7 @@ from toeline.report.figures.draw import (
     value_range,
     words_of,
 )
+from toeline.report.figures.drawn_steps import drawn_steps, steps_note, steps_words
 from toeline.report.figures.jump_strip import hazard_words
 from toeline.report.figures.picture import Picture, page_name, pages
 from toeline.report.figures.sheet import NO_GATES, Panel, Sheet, about_run, in_house_style
@@ -48,6 +49,10 @@ from toeline.report.style import (
 from toeline.units import Display
 
 NAME = "tailwater"
+SERIES = (
+    "gate_discharge", "gate_tailwater_level", "gate_modular_limit_level", "tailwater_margin", "protection_margin",
+    "jump_state", "settling",
+)  # fmt: skip
 GATES_ON_A_PAGE = 4
 PITCH, HEIGHT, RISE = 2.1, 1.5, -0.2
 THROUGH_TIME, IN_PLANE = (0.0, 0.62), (0.72, 0.28)
@@ -66,7 +71,8 @@ def pictures(run: xr.Dataset, display: Display) -> Iterator[Picture]:
     groups = pages(range(run.sizes["gate"]), GATES_ON_A_PAGE)
     jumps = gate_jumps(run)
     for page, gates in enumerate(groups):
-        yield _page(run.isel(gate=gates), [jumps[gate] for gate in gates], display, page_name(NAME, page, len(groups)))
+        here = drawn_steps(run.isel(gate=gates), *SERIES, derived=limit_levels)
+        yield _page(here, [jumps[gate] for gate in gates], display, page_name(NAME, page, len(groups)))
 
 
 def limit_levels(run: xr.Dataset) -> dict[str, np.ndarray]:
@@ -84,7 +90,7 @@ def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) 
     shown: list[Drawn] = [TAILWATER, *LIMITS, HAZARD_FLOOR, SETTLING, START, END]
     sheet = Sheet(
         "Tailwater and its limits",
-        about_run(run_identity(run)),
+        about_run(run_identity(run), steps_note(run)),
         PITCH * max(len(jumps), 1) + RISE + 0.25,
         words_of(shown),
     )
@@ -105,7 +111,7 @@ def _page(run: xr.Dataset, jumps: list[GateJumps], display: Display, name: str) 
         sheet.say(NO_GATES)
     sheet.side_title(axis_text("tailwater above datum", "length", display))
     sheet.legend([key(thing) for thing in shown])
-    return Picture(name, sheet.figure, {"": table(run, display)}, words(run, jumps, display))
+    return Picture(name, sheet.figure, {"": table(run, display)}, words(run, jumps, display) + steps_words(run))
 
 
 def _through_time(axes: Axes, run: xr.Dataset, settling: np.ndarray, time: TimeAxis, display: Display) -> None:
