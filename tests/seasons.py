@@ -6,10 +6,12 @@ from tests.canals import Table, day, stepped_canal
 POOLS = 20
 SPARING = {"every": "15 min", "events_every": "1 min", "events_within": "15 min", "profiles_every": "1 h"}
 """Output of a season: every quarter of an hour, and every minute around events."""
+EVERY_MINUTE = {"every": "1 min"}
+"""What makes it a season without thinning."""
 
 
-def season(days: int, **output: str) -> tuple[Table, Table]:
-    """Twenty pools of 4 km over so many days: canal and day file."""
+def season(days: int, move: float = 0.04, **output: str) -> tuple[Table, Table]:
+    """Twenty pools of 4 km over so many days, their gates moved by so much [m]: canal and day file."""
     takes = [{"name": f"T{k}", "pool": f"P{k}", "chainage": 3000.0, "kind": "demand"} for k in range(POOLS)]
     escapes = [
         {"name": f"E{k}", "pool": f"P{k}", "chainage": 3900.0, "crest_level": _bed_at_end(k) + 2.7, "length": 8.0}
@@ -25,7 +27,7 @@ def season(days: int, **output: str) -> tuple[Table, Table]:
     )  # fmt: skip
     keys = day(
         {"shape": "steps", "values": [[f"+{d} d", round(9.0 + 1.5 * np.sin(d / 20.0), 2)] for d in range(days)]},
-        length=f"{days} d", orders=_orders(days), output=SPARING | output, deliveries=_turns(days),
+        length=f"{days} d", orders=_orders(days, move), output=SPARING | output, deliveries=_turns(days),
     )  # fmt: skip
     return canal, keys
 
@@ -36,13 +38,13 @@ def _bed_at_end(pool: int) -> float:
     return (POOLS - pool) * (fall + 0.3) - fall
 
 
-def _orders(days: int) -> list[Table]:
+def _orders(days: int, move: float) -> list[Table]:
     """Four moves a day, opened in the morning and closed by as much in the evening, so that nothing drifts away."""
     orders: list[Table] = []
     for d in range(days):
         for hour, k in ((6, 2 * d), (8, 2 * d + 7)):
-            orders.append({"at": f"+{24 * d + hour} h", "gate": f"G{k % POOLS}", "by": 0.04})
-            orders.append({"at": f"+{24 * d + hour + 10} h", "gate": f"G{k % POOLS}", "by": -0.04})
+            orders.append({"at": f"+{24 * d + hour} h", "gate": f"G{k % POOLS}", "by": move})
+            orders.append({"at": f"+{24 * d + hour + 10} h", "gate": f"G{k % POOLS}", "by": -move})
     return orders
 
 

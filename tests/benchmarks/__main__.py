@@ -9,7 +9,7 @@ from tests.benchmarks.command import tell_imports, time_the_command
 from tests.benchmarks.growth import tell_memory, time_growth, time_the_season
 from tests.benchmarks.page import time_the_page
 from tests.benchmarks.rules import time_the_rules
-from tests.benchmarks.season import time_the_pages
+from tests.benchmarks.season import time_the_pages, time_the_reading
 from tests.benchmarks.standard_day import time_the_day, time_the_full_equations, time_the_integrator
 from tests.benchmarks.writer import time_the_writer
 
@@ -21,6 +21,7 @@ BENCHMARKS: dict[str, Callable[[Path], None]] = {
     "memory": tell_memory,
     "season": time_the_season,
     "season page": time_the_pages,
+    "season commands": time_the_reading,
     "writer": time_the_writer,
     "rules": time_the_rules,
     "command": time_the_command,

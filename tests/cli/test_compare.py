@@ -3,6 +3,7 @@
 import csv
 import json
 import re
+import tempfile
 from pathlib import Path
 
 import pytest
@@ -10,7 +11,6 @@ import pytest
 import toeline
 from toeline.cli.compare import run_names
 from toeline.errors import RunError
-
 
 @pytest.fixture
 def spilling(folder: Path) -> Path:
@@ -43,6 +43,15 @@ def test_picked_plans_are_compared_in_the_order_given(folder, call):
     result = call("compare", "day.toml", "--plan", "raise", "--plan", "hold")
     assert "  A  raise;" in result.stdout
     assert "B does not raise Middle check by 5 cm at 06:20" in result.stdout
+
+
+def test_long_plans_are_compared_from_files_of_which_none_is_left(folder, call, monkeypatch, tmp_path_factory):
+    in_memory, before = call("compare", "day.toml").stdout, set(folder.iterdir())
+    scratch = tmp_path_factory.mktemp("scratch")
+    monkeypatch.setattr("toeline.results.dataset.LONG_RUN", 0.0)
+    monkeypatch.setattr(tempfile, "tempdir", str(scratch))
+    assert call("compare", "day.toml").stdout == in_memory
+    assert (set(folder.iterdir()), set(scratch.iterdir())) == (before, set())
 
 
 def test_run_files_of_the_plans_say_the_same_as_the_day(folder, call):
