@@ -53,9 +53,7 @@ def test_the_ends_of_the_run_are_drawn(few):
     assert shown_rows(np.zeros(COUNT), TIMES)[[0, -1]].tolist() == [0, COUNT - 1]
 
 
-def test_a_figure_of_a_long_run_says_what_it_leaves_out_and_lists_what_it_draws(
-    few, invented_run, monkeypatch
-):
+def test_a_figure_of_a_long_run_says_what_it_leaves_out_and_lists_what_it_draws(few, invented_run, monkeypatch):
     monkeypatch.setattr(module, "COLUMNS", 4)
     toe = np.random.default_rng(4).uniform(0.0, 9.0, (49, 2))
     (picture,) = pictures(invented_run(jump_toe_distance=toe), Display(UnitSystem.metric))
