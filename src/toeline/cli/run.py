@@ -129,9 +129,9 @@ def run_plan(scenario: "Scenario", output: Path, overwrite: bool, resume: bool, 
         note(f"Error: {error}\n{what_is_left(output)}")
         return PlanEnd(ExitStatus.RUN_FAILED, "the run failed")
     with dataset:
-        show(run_summary(dataset, scenario.display, width=page_width()))
-        show(f"\nResults: {output}\n")
         found = incidents(dataset)
+        show(run_summary(dataset, scenario.display, width=page_width(), found=found))
+        show(f"\nResults: {output}\n")
         return PlanEnd(ExitStatus.INCIDENT_FOUND if strict and found else ExitStatus.DONE, incident_words(found))
 
 

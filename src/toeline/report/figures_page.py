@@ -21,7 +21,8 @@ otherwise), SVG or PDF, and writes the numbers of each figure beside it as CSV, 
 of one day it adds a figure that compares the plans. Where gates, pools or offtakes are many a figure goes over
 several files with numbers. Of more than 20,000 output steps a figure draws, and its CSV lists, those at which a
 series is least or greatest, or a state is met first, in each of the 1,250 points across a panel: no extreme is lost,
-and the line below the title says how many are drawn. All files are written, or none; nothing that stands is replaced without `--overwrite`.
+and the line below the title says how many are drawn. All files are written, or none; nothing that stands is
+replaced without `--overwrite`.
 The same run gives the same bytes. `toeline rating CANAL.toml GATE --chart FILE` draws the operating chart of a
 gate. [A guided day](guided_day.md) shows how to read them.
 

@@ -1,13 +1,13 @@
 """A run on one page, for the planner: first what goes wrong, then the rest."""
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 
 import xarray as xr
 
 from toeline.findings.bays import uneven_bays
 from toeline.findings.escapes import escape_spills
 from toeline.findings.gauges import gauge_readings
-from toeline.findings.incidents import incidents
+from toeline.findings.incidents import Incident, incidents
 from toeline.findings.indicators import place_indicators
 from toeline.findings.jumps import gate_jumps
 from toeline.findings.ledger import ledger
@@ -29,14 +29,17 @@ from toeline.report.water import escape_lines, ledger_lines
 from toeline.units import Display
 
 
-def run_summary(run: xr.Dataset, display: Display, *, width: int = 80) -> str:
-    """The page that ends `toeline run`, from the dataset alone, in the units of `display`."""
+def run_summary(run: xr.Dataset, display: Display, *, width: int = 80, found: Sequence[Incident] | None = None) -> str:
+    """The page that ends `toeline run`, from the dataset alone, in the units of `display`.
+
+    `found` are the incidents of the run, for those who know them already.
+    """
     if not run.sizes["time"]:
         return paragraph("The run was stopped before anything reached the disk.", width, indent="")
     clock = RunClock(run)
     gates = gate_jumps(run)
     sections = [
-        ("What goes wrong", incident_lines(incidents(run), clock, display, width)),
+        ("What goes wrong", incident_lines(incidents(run) if found is None else found, clock, display, width)),
         ("Floor and people", hazard_lines(gates, clock, width) if gates else ()),
         ("Limits", limit_lines(limit_uses(run), run, clock, display, width)),
         ("Least margins", margin_lines(gates, clock, display, width) if gates else ()),
