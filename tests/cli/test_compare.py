@@ -12,6 +12,7 @@ import toeline
 from toeline.cli.compare import run_names
 from toeline.errors import RunError
 
+
 @pytest.fixture
 def spilling(folder: Path) -> Path:
     """A day whose other plan leaves the East lateral short, where the first does not."""

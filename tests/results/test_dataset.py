@@ -8,7 +8,7 @@ import pytest
 
 from toeline.errors import UsageError
 from toeline.results import dataset as dataset_module
-from toeline.results.dataset import DatasetSink, damage_told, local_time, open_run, timezone_of, utc
+from toeline.results.dataset import DatasetSink, damage_told, in_parts, local_time, open_run, rows_at, timezone_of, utc
 from toeline.results.netcdf_writer import NetcdfSink
 
 
@@ -91,6 +91,26 @@ def test_a_run_of_another_version_is_refused(invented_run, tmp_path):
         file.renameVariable("escape_volume", "spilled")
     with pytest.raises(UsageError, match=r"of another version, Toeline 0\.1\.0: it has no escape_volume; run its day"):
         open_run(written)
+
+
+@pytest.mark.parametrize(("place", "count"), [("pool", 3), ("time", 100), ("bay", 0)])
+def test_parts_of_a_long_run_follow_one_another_and_leave_nothing_out(invented_run, monkeypatch, place, count):
+    run = invented_run()
+    dataset = run.write_to(DatasetSink(run.static(), run.attributes, run.start)).dataset.isel(bay=[])
+    monkeypatch.setattr("toeline.results.dataset.LONG_RUN", 0.0)
+    monkeypatch.setattr("toeline.results.dataset.PART", 1000.0)
+    parts = list(in_parts(dataset, place, "pool_volume"))
+    assert len(parts) > 1 or not count
+    np.testing.assert_array_equal(np.concatenate([part[place] for part in parts]), dataset[place])
+
+
+def test_rows_picked_block_by_block_are_those_of_the_whole(invented_run, monkeypatch):
+    run = invented_run()
+    dataset = run.write_to(DatasetSink(run.static(), run.attributes, run.start)).dataset
+    monkeypatch.setattr("toeline.results.dataset.LONG_RUN", 0.0)
+    monkeypatch.setattr("toeline.results.dataset.PART", 1000.0)
+    rows = np.array([0, 3, 41, 99])
+    np.testing.assert_array_equal(rows_at(dataset, "pool_volume", rows), dataset["pool_volume"].values[rows])
 
 
 @pytest.mark.parametrize("error", [RuntimeError("NetCDF: HDF error"), AttributeError("NetCDF: Can't open attribute")])

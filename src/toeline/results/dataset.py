@@ -150,7 +150,7 @@ def in_parts(run: xr.Dataset, place: str, *variables: str) -> Iterator[xr.Datase
     count = run.sizes[place]
     taken = sum(run[name].nbytes for name in variables)
     step = max(1, int(PART * count / max(taken, 1)))
-    for first in range(0, count, step):
+    for first in range(0, max(count, 1), step):
         yield run.isel({place: slice(first, first + step)})
 
 
