@@ -27,8 +27,9 @@ def test_a_large_run_is_announced_with_its_rows_and_their_size(folder, call, any
     assert told.startswith("A large run" + LINE.format(where="before they are compressed"))
 
 
-def test_what_is_compared_is_announced_as_kept_in_memory(folder, call, any_is_large):
-    assert call("compare", "day.toml").stderr.startswith("2 large runs, each" + LINE.format(where="in memory"))
+def test_what_is_compared_is_announced_as_kept_in_a_file_for_a_while(folder, call, any_is_large):
+    where = "before they are compressed, in a file that is removed at the end"
+    assert call("compare", "day.toml").stderr.startswith("2 large runs, each" + LINE.format(where=where))
 
 
 def test_what_is_announced_is_what_the_run_has(folder):
