@@ -104,3 +104,7 @@ def test_a_canal_without_gates_has_its_pages_and_no_sheets(tmp_path, monkeypatch
     sheets = call("orders", "day.nc")
     assert sheets.exit_code == 2
     assert "day.nc is of a canal without gates" in sheets.stderr
+    page = call("report", "day.nc")
+    assert page.exit_code == 2
+    assert "day is of a canal without gates" in page.stderr
+    assert call("figures", "day.nc", "--to", "pictures").exit_code == 0

@@ -176,7 +176,10 @@ class GateMotion:
         return ""
 
     def _stuck_until(self, time: int) -> int | None:
-        return next((spell.end for spell in self.stuck if spell.begin <= time < spell.end), None)
+        for spell in self.stuck:
+            if spell.begin <= time < spell.end:
+                return spell.end
+        return None
 
     def _refuse(self, time: int, kind: str, value: float, reason: str, source: str) -> OrderRecord:
         return OrderRecord(

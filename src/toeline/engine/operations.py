@@ -127,11 +127,12 @@ class Operations:
         """
         time, leaves = self.present.time_ms, self.leaves[gate]
         moved = [motion for motion in leaves if not motion.is_stuck(time)] or leaves
-        lacking = sum(wanted - motion.ordered for motion in leaves if motion not in moved) / len(moved)
+        if len(moved) < len(leaves):
+            wanted += sum(wanted - motion.ordered for motion in leaves if motion not in moved) / len(moved)
         done, is_limited = None, False
         for motion in moved:
             opening = motion.opening
-            record, is_held_back = motion.propose(time, kind, wanted + lacking)
+            record, is_held_back = motion.propose(time, kind, wanted)
             if record is not None:
                 self._note(record, opening, motion)
             done, is_limited = done or record, is_limited or is_held_back

@@ -78,7 +78,8 @@ def report_page(runs: Mapping[str, xr.Dataset]) -> str:
     """The page of one run, or of several of one canal side by side, as HTML that needs nothing beside itself.
 
     `runs` are by the name under which each is told, such as its file. Values are in the units in which the first run
-    is to be shown. UsageError where a run is empty, or the runs do not have the same gates, or are too many.
+    is to be shown. UsageError where a run is empty or without gates, or the runs do not have the same gates, or are too
+    many.
     """
     _refuse(runs)
     display = Display(UnitSystem(next(iter(runs.values())).attrs["units_for_display"]))
@@ -108,6 +109,11 @@ def _refuse(runs: Mapping[str, xr.Dataset]) -> None:
     for name, run in runs.items():
         if not run.sizes["time"]:
             raise UsageError(f"{name} was stopped before anything reached the disk: there is nothing to show.")
+        if not run.sizes["gate"]:
+            raise UsageError(
+                f"{name} is of a canal without gates, and the page is of what happens at gates: see it with toeline "
+                "describe and toeline figures."
+            )
     gates = {name: names(run["gate"]) for name, run in runs.items()}
     first, *others = gates
     for other in others:
