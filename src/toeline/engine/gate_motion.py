@@ -85,6 +85,8 @@ class GateMotion:
 
     def arrive(self, time: int) -> None:
         """Bring the leaf to where it is at a stop."""
+        if self.current is None and self.opening == self.target:
+            return
         self.opening = self.opening_at(time)
         self.since = max(self.since, time)
         if not self.is_moving:
