@@ -228,13 +228,14 @@ class GateMotion:
 def allowed_opening(gate: Gate, wanted: float, ordered: float, marks: Marks | None = None) -> Allowed:
     """The opening [m] at which a gate may be held nearest to the wanted one, `ordered` [m] being the one held now."""
     target, reasons = _within_reach(gate, wanted, ordered)
-    is_limited = bool(reasons)
-    reasons += [
-        f"openings between {low:.3f} and {high:.3f} m are not held" for low, high in _bands_around(gate, target)
-    ]
-    in_reach = [place for place in _places(gate, target, marks) if abs(place - ordered) <= _reach(gate) + SAME_OPENING]
-    held = min(in_reach, key=lambda place: abs(place - target), default=ordered)
-    rounding = ""
+    is_limited, held, rounding = bool(reasons), target, ""
+    if gate.avoid_openings or marks is not None:
+        reasons += [
+            f"openings between {low:.3f} and {high:.3f} m are not held" for low, high in _bands_around(gate, target)
+        ]
+        reach = _reach(gate) + SAME_OPENING
+        in_reach = [place for place in _places(gate, target, marks) if abs(place - ordered) <= reach]
+        held = min(in_reach, key=lambda place: abs(place - target), default=ordered)
     if marks is not None and abs(held - target) > SAME_OPENING:
         rounding = f"rounded to {marks.name} of {marks.spacing:.3f} m"
     move = abs(held - ordered)

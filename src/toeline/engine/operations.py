@@ -145,8 +145,7 @@ class Operations:
             return
         g = self.network.names.gates.index(record.gate)
         levels = self.present.headwater_level(record.gate), self.present.tailwater_level(record.gate)
-        openings = [self.present.opening(name) for name in self.network.names.gates]
-        self.unrest.note_move(record.time, g, levels, opening, motion, openings)
+        self.unrest.note_move(record.time, g, levels, opening, motion, self.present.openings())
 
     def _moved_by(self, order: Order) -> list[GateMotion]:
         return [motion for motion in self.leaves[order.gate] if order.bay in (0, motion.bay)]

@@ -64,8 +64,11 @@ class PresentCanal:
         return float(self._forcing[FORCING_TAIL] if node >= self._node_count else self._level[node])
 
     def opening(self, gate: str) -> float:
-        leaves = self.leaves[gate]
-        return leaves[0].opening if len(leaves) == 1 else sum(leaf.opening for leaf in leaves) / len(leaves)
+        return _mean_opening(self.leaves[gate])
+
+    def openings(self) -> list[float]:
+        """Where the leaves of all gates are [m]."""
+        return [_mean_opening(leaves) for leaves in self.leaves.values()]
 
     def ordered_opening(self, gate: str) -> float:
         leaves = self.leaves[gate]
@@ -96,3 +99,7 @@ class PresentCanal:
 
     def demand(self, offtake: str, time_ms: int) -> float:
         return self._demands[offtake].at(time_ms)
+
+
+def _mean_opening(leaves: list[GateMotion]) -> float:
+    return leaves[0].opening if len(leaves) == 1 else sum(leaf.opening for leaf in leaves) / len(leaves)
