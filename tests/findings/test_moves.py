@@ -4,7 +4,7 @@ import numpy as np
 import pytest
 import xarray as xr
 
-from toeline.findings.moves import gate_moves
+from toeline.findings.moves import gate_moves, moves_begun
 
 START = np.datetime64("2031-05-04T00:00:00", "ns")
 ACCEPTED, TRIMMED, REFUSED, REPLACED = range(4)
@@ -17,6 +17,7 @@ def run(*orders: tuple[str, float, float, float, int, str]) -> xr.Dataset:
     return xr.Dataset(
         {
             "gate": ("gate", ["Upper check", "Lower check"]),
+            "bay_gate": ("bay", np.array([], object)),
             "order_gate": ("order", gates),
             "order_bay": ("order", np.zeros(len(gates), np.int32)),
             "order_time": ("order", START + np.array(minutes) * np.timedelta64(60_000_000_000, "ns")),
@@ -61,3 +62,17 @@ def test_reversals_are_counted_leaf_by_leaf():
     )
     two_bays["order_bay"] = ("order", np.array([1, 2, 1], np.int32))
     assert gate_moves(two_bays)[0].reversals == 0
+
+
+def test_one_order_to_a_gate_whose_bays_move_apart_is_one_move_and_its_travel_that_of_a_leaf():
+    two_bays = run(
+        ("Upper check", 10, 0.30, 0.40, ACCEPTED, "schedule"),
+        ("Upper check", 10, 0.20, 0.30, ACCEPTED, "schedule"),
+        ("Upper check", 40, 0.40, 0.46, ACCEPTED, "schedule"),
+    )
+    two_bays["order_bay"] = ("order", np.array([1, 2, 1], np.int32))
+    two_bays["bay_gate"] = ("bay", ["Upper check", "Upper check"])
+    [upper, _] = gate_moves(two_bays)
+    assert (upper.moves, upper.busiest) == (2, 2)
+    assert upper.travel == pytest.approx((0.10 + 0.06 + 0.10) / 2)
+    assert moves_begun(two_bays, "Upper check").size == 2

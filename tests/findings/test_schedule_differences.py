@@ -41,6 +41,7 @@ def run_of(*orders: GateOrder, sources: list[str] | None = None, settings: dict 
     run["order_kind"] = ("order", kinds, {"flag_meanings": " ".join(ORDER_KINDS)})
     run["order_status"] = ("order", np.zeros(len(orders), dtype="i1"), {"flag_meanings": " ".join(ORDER_STATUSES)})
     run["order_opening_after"] = run["order_opening_before"] + 0.05
+    run["bay_gate"] = ("bay", np.array([], dtype=object))
     run["order_source"] = ("order", np.array(sources or ["schedule"] * len(orders), dtype=object))
     return run.assign_attrs(resolved_settings=json.dumps(settings or {}))
 

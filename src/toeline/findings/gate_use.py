@@ -8,8 +8,9 @@ import xarray as xr
 from toeline.findings.indicator import Indicator
 from toeline.findings.jumps import GateJumps, gate_jumps
 from toeline.findings.limits import avoided_openings
+from toeline.findings.moves import moves_begun
 from toeline.findings.series import is_any, names
-from toeline.results.dataset import in_parts
+from toeline.results.dataset import in_parts, values_at
 
 SMALLEST_MOVE = 1e-9
 """Change of opening [m] below which an order moved nothing."""
@@ -30,14 +31,6 @@ def integrated_change(values: np.ndarray) -> float:
 def travel(values: np.ndarray) -> float:
     """Σ|Δ|, the way an opening has gone in all."""
     return float(np.abs(np.diff(values)).sum())
-
-
-def moves(run: xr.Dataset, gate: str) -> np.ndarray:
-    """When a gate began to move (datetime64), order by order; orders that moved nothing are left out."""
-    change = np.abs(run["order_opening_after"].values - run["order_opening_before"].values)
-    is_refused = is_any(run["order_status"], "refused")
-    is_move = (run["order_gate"].values == gate) & ~is_refused & (change > SMALLEST_MOVE)
-    return np.sort(run["order_time"].values[is_move])
 
 
 def seconds_avoided(openings: np.ndarray, times: np.ndarray, bands: Sequence[Sequence[float]]) -> np.ndarray:
@@ -90,15 +83,22 @@ def gate_indicators(run: xr.Dataset) -> Iterator[Indicator]:
 
 def _movement_indicators(run: xr.Dataset, gate: str, column: int) -> Iterator[Indicator]:
     openings, discharges = run["gate_opening"].values[:, column], run["gate_discharge"].values[:, column]
-    beyond = "beyond the way from first to last value"
-    yield Indicator("gate moves", gate, moves(run, gate).size, "count", "lower")
-    yield Indicator("gate travel", gate, travel(openings), "m", "lower")
-    yield Indicator("integrated absolute gate movement", gate, integrated_change(openings), "m", "lower", beyond)
+    leaves, beyond = _leaf_openings(run, gate, openings), "beyond the way from first to last value"
+    restless = float(np.mean([integrated_change(leaf) for leaf in leaves]))
+    yield Indicator("gate moves", gate, moves_begun(run, gate).size, "count", "lower")
+    yield Indicator("gate travel", gate, float(np.mean([travel(leaf) for leaf in leaves])), "m", "lower")
+    yield Indicator("integrated absolute gate movement", gate, restless, "m", "lower", beyond)
     change = integrated_change(discharges)
     yield Indicator("integrated absolute discharge change", gate, change, "m3 s-1", "lower", beyond)
     if bands := avoided_openings(run).get(gate):
         hours = float(seconds_avoided(openings, run["time"].values, bands).sum()) / 3600.0
         yield Indicator("hours at avoided openings", gate, hours, "h", "lower", "passing counts too")
+
+
+def _leaf_openings(run: xr.Dataset, gate: str, openings: np.ndarray) -> list[np.ndarray]:
+    """Openings [m] of every bay that moves apart, else of the gate."""
+    bays = [place for place, name in enumerate(names(run["bay_gate"])) if name == gate]
+    return [values_at(run, "bay_opening", bay) for bay in bays] or [openings]
 
 
 def _doubt_indicators(run: xr.Dataset, jumps: GateJumps, column: int) -> Iterator[Indicator]:

@@ -8,10 +8,11 @@ from typing import NamedTuple
 import numpy as np
 import xarray as xr
 
-from toeline.findings.gate_use import moves, seconds_avoided, seconds_near_modular_limit
+from toeline.findings.gate_use import seconds_avoided, seconds_near_modular_limit
 from toeline.findings.incident import pools_beside_gates
 from toeline.findings.level_errors import end_beds
 from toeline.findings.limits import Limit, avoided_openings, limits_of_run
+from toeline.findings.moves import moves_begun
 from toeline.findings.rolling import RollingWindow
 from toeline.findings.series import Extreme, greatest, least, names
 from toeline.findings.spells import Spell, spells
@@ -159,7 +160,7 @@ def _velocity(limit: Limit, pool: str, places: _Places) -> Iterator[Watch]:
 
 def _moves(limit: Limit, gate: str, places: _Places) -> Iterator[Watch]:
     """A move counts from when it begins until one window later."""
-    begun, length = moves(places.run, gate), np.timedelta64(round(limit.window * 1e9), "ns")
+    begun, length = moves_begun(places.run, gate), np.timedelta64(round(limit.window * 1e9), "ns")
     times = np.unique(np.concatenate((places.times[[0, -1]], begun, begun + length)))
     times = times[times <= places.times[-1]]
     counts = np.searchsorted(begun, times, side="right") - np.searchsorted(begun, times - length, side="right")
