@@ -24,7 +24,7 @@ def time(clock: str) -> np.datetime64:
 
 
 def order(clock: str, kind: str = "opening", value: float = 0.5, gate: str = "Mill check") -> GateOrder:
-    return GateOrder(time(clock), gate, kind, value, 0.4)
+    return GateOrder(time(clock), gate, kind, value, 0.4, opening_after=0.4 + 0.05)
 
 
 def run_of(*orders: GateOrder, sources: list[str] | None = None, settings: dict | None = None) -> xr.Dataset:
@@ -147,7 +147,8 @@ def test_each_gate_is_compared_by_itself_from_the_head_down():
 def test_moves_by_rules_are_counted_and_are_no_orders():
     rule = "hold upstream level"
     first = run_of(order("06:00"), order("06:05"), sources=["schedule", rule])
-    other = run_of(order("06:00"), *[order("06:05")] * 3, sources=["schedule", rule, rule, rule])
+    times = ("06:05", "06:10", "06:15")
+    other = run_of(order("06:00"), *map(order, times), sources=["schedule", rule, rule, rule])
     difference = schedule_difference(first, other)
     assert (difference.orders, difference.alike) == ((), 1)
     assert difference.rule_moves == (RuleMoves(rule, "Mill check", 1, 3),)
@@ -167,3 +168,12 @@ def test_rules_and_stuck_leaves_that_differ_are_found_by_kind_and_gate():
         InputDifference(("stuck", "Mill check"), None, [[0, 60_000]], None),
         InputDifference(("stuck", "Mill check, bay 2"), None, [[0, 90_000]], None),
     )
+
+
+def test_an_order_that_one_run_refuses_is_no_order_alike():
+    first, other = run_of(order("06:00"), order("07:00")), run_of(order("06:00"), order("07:00"))
+    other["order_status"][1] = ORDER_STATUSES.index("refused")
+    difference = schedule_difference(first, other)
+    assert difference.alike == 1
+    [changed] = difference.orders
+    assert (changed.first.status, changed.other.status) == ("accepted", "refused")

@@ -1,5 +1,7 @@
 """How two schedules differ, in words."""
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 
@@ -54,6 +56,23 @@ def clock(invented_run) -> RunClock:
 )  # fmt: skip
 def test_a_difference_in_words(first, other, words, clock, metric):
     assert order_difference_words("B", OrderDifference(GATE, first, other), clock, metric) == words
+
+
+@pytest.mark.parametrize(
+    ("first", "other", "words"),
+    [
+        ({}, {"status": "refused"}, "B is to raise Mill check by 10 cm at 07:00 as well (refused in B)"),
+        ({"status": "refused"}, {}, "B is to raise Mill check by 10 cm at 07:00 as well (refused in the first)"),
+        (None, {"status": "refused"}, "B also raises Mill check by 10 cm at 07:00 (refused in B)"),
+        ({"status": "refused"}, None, "B does not raise Mill check by 10 cm at 07:00 (refused in the first)"),
+        (None, {"status": "trimmed", "opening_after": 0.42},
+         "B also raises Mill check by 10 cm at 07:00 (trimmed to 0.42 m)"),
+    ],
+)  # fmt: skip
+def test_what_was_not_done_as_ordered_is_told(first, other, words, clock, metric):
+    asked = order("07:00", "by", 0.10)
+    pair = (None if outcome is None else replace(asked, **outcome) for outcome in (first, other))
+    assert order_difference_words("B", OrderDifference(GATE, *pair), clock, metric) == words
 
 
 def test_us_customary_moves_are_in_hundredths_of_a_foot(clock):

@@ -23,8 +23,9 @@ nearer."""
 
 @dataclass(frozen=True)
 class GateOrder:
-    """One order: `value` is in m, or m³/s where `kind` is discharge; `opening_before` [m] is that when it came; `bay`
-    is 0 where all bays of the gate move.
+    """One order as it was asked: `value` is in m, or m³/s where `kind` is discharge; `opening_before` [m] is that when
+    it came; `bay` is 0 where all bays of the gate move. `status` says what became of it, `opening_after` [m] where it
+    left the leaf.
     """
 
     time: np.datetime64
@@ -33,6 +34,8 @@ class GateOrder:
     value: float
     opening_before: float
     bay: int = 0
+    status: str = "accepted"
+    opening_after: float = float("nan")
 
     @property
     def leaf(self) -> str:
@@ -45,6 +48,10 @@ class GateOrder:
         if self.kind == "by":
             return self.value
         return self.value - self.opening_before if self.kind == "opening" else float("nan")
+
+    @property
+    def is_refused(self) -> bool:
+        return self.status == "refused"
 
     def asks_as(self, other: "GateOrder") -> bool:
         """Whether another order asks for the same, at whatever time."""
@@ -151,17 +158,21 @@ def _hours_between(first: GateOrder, other: GateOrder) -> float:
 
 
 def _is_alike(first: GateOrder | None, other: GateOrder | None) -> bool:
-    return first is not None and other is not None and first.time == other.time and first.asks_as(other)
+    if first is None or other is None or first.is_refused != other.is_refused:
+        return False
+    return first.time == other.time and first.asks_as(other)
 
 
 def _orders(run: xr.Dataset) -> list[GateOrder]:
     """Orders of the schedule, without the moves that rules made."""
-    kinds = meanings(run["order_kind"])
+    kinds, statuses = meanings(run["order_kind"]), meanings(run["order_status"])
+    columns = ("value", "opening_before", "bay", "status", "opening_after")
     return [
-        GateOrder(time, gate, kinds[int(kind)], float(value), float(before), int(bay))
-        for time, gate, kind, value, before, bay, source in zip(
-            run["order_time"].values, names(run["order_gate"]), run["order_kind"].values, run["order_value"].values,
-            run["order_opening_before"].values, run["order_bay"].values, names(run["order_source"]), strict=True,
+        GateOrder(time, gate, kinds[int(kind)], float(value), float(before), int(bay), statuses[int(status)],
+                  float(after))
+        for time, gate, kind, source, value, before, bay, status, after in zip(
+            run["order_time"].values, names(run["order_gate"]), run["order_kind"].values, names(run["order_source"]),
+            *(run[f"order_{column}"].values for column in columns), strict=True,
         )
         if source == SCHEDULE
     ]  # fmt: skip

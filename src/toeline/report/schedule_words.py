@@ -17,6 +17,8 @@ from toeline.units import Display
 MOST_TOLD = 12
 """With more differences than this every gate is summed up in one line."""
 
+_SIDES = ("first", "other")
+
 HELD = 0.0005
 """Change of opening [m] below which an order holds a gate as it stands."""
 
@@ -35,7 +37,18 @@ def schedule_words(letter: str, difference: ScheduleDifference, clock: RunClock,
 
 
 def order_difference_words(letter: str, difference: OrderDifference, clock: RunClock, display: Display) -> str:
-    """What the run of this letter does instead of the first; `letter` begins the sentence."""
+    """What the run of this letter does instead of the first, as it was ordered, and where it was not done so; `letter`
+    begins the sentence.
+    """
+    first, other = difference.first, difference.other
+    outcomes = [f"refused in {letter}" if other is not None and other.is_refused else ""]
+    outcomes += ["refused in the first" if first is not None and first.is_refused else ""]
+    outcomes += [f"trimmed to {display.opening(other.opening_after)}" if other and other.status == "trimmed" else ""]
+    told = "; ".join(filter(None, outcomes))
+    return _asked_words(letter, difference, clock, display) + (f" ({told})" if told else "")
+
+
+def _asked_words(letter: str, difference: OrderDifference, clock: RunClock, display: Display) -> str:
     first, other, gate = difference.first, difference.other, difference.gate
     if other is None and first is not None:
         return f"{letter} does not {_Asked.by(first, display).infinitive(gate)} at {clock.at(first.time)}"
@@ -54,7 +67,8 @@ def _changed_words(gate: str, first: GateOrder, other: GateOrder, clock: RunCloc
         when = f" at {times[0]}" if first.time != other.time else ""
         return f"{told} {before.instead}{when}"
     if first.asks_as(other):
-        return f"{told} {times[0]}"
+        is_moved = first.time != other.time
+        return f"{told} {times[0]}" if is_moved else f"is to {after.infinitive(gate)} at {times[1]} as well"
     same_kind = before.preposition == after.preposition
     target = before.amount if same_kind else f"{before.preposition} {before.amount}"
     return f"{told} {target}" if first.time == other.time else f"{told} {target} at {times[0]}"
@@ -105,7 +119,11 @@ def _counts(differences: Sequence[OrderDifference]) -> Iterator[str]:
         yield f"{counted(len(moved), 'order')} {_shift_words(moved)}"
     if changed := sum(1 for first, other in pairs if not first.asks_as(other)):
         yield f"{counted(changed, 'order')} changed in what is asked"
-    added, dropped = (sum(1 for one in differences if getattr(one, side) is None) for side in ("first", "other"))
+    refused = [sum(1 for one in differences if (order := getattr(one, side)) and order.is_refused) for side in _SIDES]
+    for number, run in zip(refused, ("in the first run", "in this"), strict=True):
+        if number:
+            yield f"{number} refused {run}"
+    added, dropped = (sum(1 for one in differences if getattr(one, side) is None) for side in _SIDES)
     if added:
         yield f"{added} added"
     if dropped:
