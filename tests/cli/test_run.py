@@ -190,6 +190,14 @@ def test_plans_that_are_complete_are_shown_and_those_not_yet_begun_begin(folder,
     assert (folder / "day.raise.nc").read_bytes() == before
 
 
+def test_a_run_whose_checkpoint_is_lost_is_said_to_begin_anew(one_plan, call):
+    call("run", "day.toml")
+    Path("day.nc").rename("day.nc.partial")
+    result = call("run", "day.toml", "--resume")
+    assert result.exit_code == 0
+    assert "day.nc.partial has no day.nc.checkpoint beside it: its run begins anew." in result.stderr
+
+
 def test_a_complete_run_of_other_inputs_is_not_taken_for_the_one_to_go_on_with(one_plan, call):
     call("run", "day.toml", "--set", 'period.length="30 min"')
     result = call("run", "day.toml", "--resume")

@@ -79,7 +79,8 @@ def command(
 
     A sheet tells when to move which gate, from and to which opening, in how many turns, what the gauges should read
     before and after, and when to stop and call; it has blanks for what was read and who signs. With --overwrite, sheets
-    of the same plan and day are revised: the revision rises, and calendars that took in the old file take in the new.
+    of the same plan and day are revised: the revision rises where another run is issued, and calendars that took in the
+    old file take in the new.
     """
     from toeline.report.order_calendar import issue
     from toeline.report.order_sheet import order_sheets

@@ -73,6 +73,8 @@ def command(
     tell_of_compiling()
     for line in caution_lines(scenarios):
         note(line)
+    if resume:
+        tell_of_lost_checkpoints(outputs)
     ends = [run_plan(*pair, overwrite, resume, strict) for pair in zip(scenarios, outputs, strict=True)]
     if len(ends) > 1:
         show(plans_page(day, [scenario.plan or "" for scenario in scenarios], ends))
@@ -102,7 +104,20 @@ def tell_of_compiling(kernel_name: str = "engine.advance.advance") -> None:
     from toeline.hydraulics.kernel import is_compiled
 
     if not is_compiled(kernel_name):
-        note("Compiling the equations for this machine: once, up to a minute. Later runs start at once.")
+        note(
+            "Compiling the equations that are needed for the first time on this machine: up to a minute, once. toeline "
+            "warm-up compiles all of them."
+        )
+
+
+def tell_of_lost_checkpoints(outputs: Iterable[Path]) -> None:
+    """Say of which runs nothing can be gone on with, though something of them is there."""
+    from toeline.results.run_file import RunFile
+
+    for output in outputs:
+        file = RunFile(output, overwrite=False, goes_on=True)
+        if file.partial_path.exists() and not file.checkpoint_path.exists():
+            note(f"{file.partial_path} has no {file.checkpoint_path.name} beside it: its run begins anew.")
 
 
 def caution_lines(scenarios: Iterable["Scenario"]) -> list[str]:

@@ -242,7 +242,7 @@ def fill_offtakes(tables, before, middle, after, totals, watch, out, h, shares, 
         take, node = out[k], tables.offtakes[k].node
         take.offtake_level = max(watch.level[node], tables.channel.nodes[node].bed_level)
         take.demand = forcing[first_demand + k].now
-        take.delivery = between(shares, start, inner, end)
+        take.delivery = max(between(shares, start, inner, end), 0.0)
         take.delivery_volume = total_at(shares, h, totals.delivery[k], start, inner, end)
         delivered += take.delivery_volume
     return delivered

@@ -35,7 +35,9 @@ class OrderEntry(Table):
     bay: Bay | None = Field(None, description="Bay that moves, of a gate with separate_bays. Left out: all bays.")
     opening: SizeOrZero | None = Field(None, description="The opening to have.")
     by: Annotated[float, Quantity("length", least=-1000.0, most=1000.0)] | None = Field(
-        None, description="The change from the opening last ordered; negative closes."
+        None,
+        description="The change from the opening last ordered, as that order was carried out: one that was refused "
+        "does not count; negative closes.",
     )
     discharge: DischargeOrZero | None = Field(
         None, description="The discharge to pass then, by the gate law at the levels of that moment."
