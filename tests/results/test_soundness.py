@@ -7,7 +7,7 @@ import netCDF4
 import pytest
 
 from toeline.errors import UsageError
-from toeline.results.dataset import open_run
+from toeline.results.dataset import read_run
 from toeline.results.netcdf_writer import NetcdfSink
 from toeline.results.provenance import ATTRIBUTES
 from toeline.results.soundness import LIMIT_KINDS
@@ -33,8 +33,8 @@ def refusal(invented_run, tmp_path):
         path = run.write_to(NetcdfSink(tmp_path / "run.nc", run.static(), run.attributes, run.start)).written_path
         with netCDF4.Dataset(path, "a") as file:
             change(file)
-        with pytest.raises(UsageError) as refused:
-            open_run(path)
+        with pytest.raises(UsageError) as refused, read_run(path):
+            pass
         told = str(refused.value)
         path.unlink()
         assert told.startswith(str(path))
@@ -131,3 +131,12 @@ def test_a_variable_with_another_dimension_is_named(refusal, name):
 )
 def test_spoilt_attributes_of_variables_are_named(refusal, variable, attribute, text, expected):
     assert expected in refusal(lambda file: file[variable].setncattr(attribute, text))
+
+
+@pytest.mark.parametrize(("name", "value"), [("jump_state", 77), ("order_status", 9), ("settling", -1)])
+def test_a_flag_without_a_meaning_is_named(refusal, name, value):
+    def change(file):
+        file[name].set_auto_maskandscale(False)
+        file[name][:] = value
+
+    assert f"its variable {name} holds {value}, expected: 0 to {len(VARIABLES[name].flags) - 1}" in refusal(change)

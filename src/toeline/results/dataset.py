@@ -23,7 +23,7 @@ from toeline.results.encoding import (
     surface_names_of,
 )
 from toeline.results.provenance import SOURCE_PREFIX
-from toeline.results.soundness import misfit_of
+from toeline.results.soundness import flag_misfit_of, misfit_of
 from toeline.results.variables import GROWING_DIMENSIONS, VARIABLES, growing
 
 CHUNK_CACHE = 2**18
@@ -110,9 +110,7 @@ def open_run(path: str | os.PathLike[str]) -> xr.Dataset:
         misfit = misfit_of(run)
     if misfit is not None:
         run.close()
-        raise UsageError(
-            f"{file} is spoilt or of another version, {run.attrs['source']}: {misfit}; run its day again to read it"
-        )
+        raise _spoilt(file, run, misfit)
     return run
 
 
@@ -126,7 +124,14 @@ def read_run(path: str | os.PathLike[str]) -> Iterator[xr.Dataset]:
         if not is_long(run):
             with damage_told(path):
                 run.load()
+            if (misfit := flag_misfit_of(run)) is not None:
+                raise _spoilt(Path(path), run, misfit)
         yield run
+
+
+def _spoilt(file: Path, run: xr.Dataset, misfit: str) -> UsageError:
+    source = run.attrs["source"]
+    return UsageError(f"{file} is spoilt or of another version, {source}: {misfit}; run its day again to read it")
 
 
 def is_long(run: xr.Dataset) -> bool:

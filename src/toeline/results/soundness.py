@@ -8,6 +8,7 @@ from itertools import chain
 from typing import Any, TypeGuard
 from zoneinfo import ZoneInfo
 
+import numpy as np
 import xarray as xr
 
 from toeline.results.provenance import ATTRIBUTES, RULES, STUCK, shared_input_hash
@@ -37,6 +38,16 @@ def misfit_of(run: xr.Dataset) -> str | None:
     state at the end may be missing, as a run that stopped early has none.
     """
     return next(chain(_lacking(run), _attribute_misfits(run), _variable_misfits(run)), None)
+
+
+def flag_misfit_of(run: xr.Dataset) -> str | None:
+    """Which flag of a run in memory has a value that means nothing, as a clause; None where none has."""
+    for name, variable in VARIABLES.items():
+        values = run[name].values if variable.flags and name in run.variables else np.empty(0)
+        strange = values[(values < 0) | (values >= len(variable.flags))] if values.size else values
+        if strange.size:
+            return f"its variable {name} holds {strange[0]}, expected: 0 to {len(variable.flags) - 1}"
+    return None
 
 
 def _lacking(run: xr.Dataset) -> Iterator[str]:
