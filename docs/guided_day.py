@@ -64,7 +64,7 @@ One strip a gate: time to the right, distance from the gate upward, the floor be
 Until 06:00 the jump stands on the apron. Then the check is opened for water that has not come yet: the jet grows
 faster than the tailwater, and the jump runs out to {reach} at {worst_time}, where the protected floor ends at
 {floor}. Minutes later the pool below has filled and the roller reaches the gate: from a hazard to the floor to a
-hazard to people. The grey strip above it says when waves of a move still travel; places and levels are least
+hazard to people. The grey strip above it says when waves of a change still travel; places and levels are least
 trustworthy then.
 
 ## How much was missing

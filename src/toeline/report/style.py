@@ -99,7 +99,7 @@ UNPROTECTED = Area("beyond the protected floor", PAPER)
 LEAF = Area("gate leaf", INK)
 SHORTFALL = Area("not delivered", VERMILION, "\\", 0.8)
 OVER_EDGE = Area("water above the edge", VERMILION, "\\")
-SETTLING = Area("settling: waves of a move still travel, levels uncertain", FAINT_INK, "/", 0.25)
+SETTLING = Area("settling: waves of a change still travel, levels uncertain", FAINT_INK, "/", 0.25)
 
 CAME_IN = Area("taken in", BLUISH_GREEN)
 WENT_OUT = Area("delivered, spilled, lost or let out", SKY_BLUE, "/")
