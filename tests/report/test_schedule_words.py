@@ -106,6 +106,14 @@ def test_many_differences_are_summed_up_gate_by_gate(minutes, words, clock, metr
     assert list(schedule_words("B", difference, clock, metric)) == [f"{GATE}: {count} orders {words}"]
 
 
+def test_a_sum_tells_what_was_refused(clock, metric):
+    first, *others = shifted(MOST_TOLD + 1, [60])
+    refused = OrderDifference(GATE, first.first, replace(first.other, status="refused"))
+    difference = ScheduleDifference((refused, *others), 0, ())
+    [told] = schedule_words("B", difference, clock, metric)
+    assert told.endswith("; 1 refused in this run")
+
+
 def test_a_sum_names_what_was_changed_added_and_dropped(clock, metric):
     orders = (
         *shifted(MOST_TOLD, [10]),

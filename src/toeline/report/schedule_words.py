@@ -120,7 +120,7 @@ def _counts(differences: Sequence[OrderDifference]) -> Iterator[str]:
     if changed := sum(1 for first, other in pairs if not first.asks_as(other)):
         yield f"{counted(changed, 'order')} changed in what is asked"
     refused = [sum(1 for one in differences if (order := getattr(one, side)) and order.is_refused) for side in _SIDES]
-    for number, run in zip(refused, ("in the first run", "in this"), strict=True):
+    for number, run in zip(refused, ("in the first run", "in this run"), strict=True):
         if number:
             yield f"{number} refused {run}"
     added, dropped = (sum(1 for one in differences if getattr(one, side) is None) for side in _SIDES)
