@@ -12,7 +12,7 @@ import pytest
 
 from toeline.hydraulics import compiled_code
 from toeline.hydraulics.compiled_code import FORGOTTEN_AFTER, code_folder, others_beside
-from toeline.hydraulics.kernel import FOLDER, inner_kernel, kernel
+from toeline.hydraulics.kernel import FOLDER, kernel
 from toeline.hydraulics.kernel_cache import KernelCache
 
 STAMP, OTHER = "0123456789abcdef0123", "fedcba9876543210fedc"
@@ -34,7 +34,7 @@ def unused_for(seconds, folder, file="a.b-1.code"):
     return folder
 
 
-@inner_kernel
+@kernel
 def doubled(x):
     return x + x
 
@@ -42,6 +42,10 @@ def doubled(x):
 @kernel
 def doubled_and_one(x):
     return doubled(x) + 1
+
+
+def test_a_kernel_that_kernels_link_in_can_be_called_too():
+    assert (doubled_and_one(2.0), doubled(2.0)) == (5.0, 4.0)
 
 
 def test_a_new_version_removes_what_nobody_used_for_a_month(home):

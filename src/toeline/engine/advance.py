@@ -6,7 +6,7 @@ import numpy as np
 
 from toeline.engine.output import fill_profile, fill_row, set_courses, sum_pools
 from toeline.engine.step import accept, begin_leg, set_forcing, try_step
-from toeline.hydraulics.kernel import inner_kernel, kernel
+from toeline.hydraulics.kernel import kernel
 
 LEG_DONE, BLOCK_FULL, STEP_TOO_SMALL = range(3)
 
@@ -78,7 +78,7 @@ def advance(tables, state, middle, after, work, totals, forcing, watch, rows, pa
     return LEG_DONE
 
 
-@inner_kernel
+@kernel
 def step_towards(rest, wish):
     """The wished step [s], stretched or halved so that no sliver of the leg is left."""
     if wish >= rest - END_SLACK:
@@ -86,13 +86,13 @@ def step_towards(rest, wish):
     return wish if wish < 0.6 * rest else 0.5 * rest
 
 
-@inner_kernel
+@kernel
 def step_ratio(tolerance, error):
     """Ratio of the next step to this one for a third-order estimate of the error."""
     return 0.9 * (tolerance / max(error, 1e-12)) ** (1.0 / 3.0)
 
 
-@inner_kernel
+@kernel
 def has_room(rows, pace):
     """Whether the block can take the output of one more step of the longest kind."""
     longest = math.ceil(pace.longest_step * 1000.0)
@@ -100,7 +100,7 @@ def has_room(rows, pace):
     return rows.filled[0] + most <= rows.canal.size and rows.filled[1] + most_profiles <= rows.profile_time.size
 
 
-@inner_kernel
+@kernel
 def write_due(tables, before, middle, after, totals, watch, rows, pace, forcing, h, until):
     """Rows and profiles due from the start of the step until `until` milliseconds of the period, itself left out."""
     if pace.due < until or pace.profile_due < until:
@@ -116,7 +116,7 @@ def write_due(tables, before, middle, after, totals, watch, rows, pace, forcing,
         pace.profile_due += pace.profiles_every
 
 
-@inner_kernel
+@kernel
 def set_instant(pace, forcing, due, h):
     """Set the forcing to an instant of the step [ms of the period]; returns the fraction of the step."""
     seconds = (due - pace.leg_start) / 1000.0

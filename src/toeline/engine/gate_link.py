@@ -5,7 +5,7 @@ import math
 from toeline.constants import GRAVITY
 from toeline.hydraulics.canal_tail import free_overfall_discharge, rating_discharge
 from toeline.hydraulics.gradually_varied_flow import LEAST_CONVEYANCE, link_conveyance
-from toeline.hydraulics.kernel import inner_kernel, kernel
+from toeline.hydraulics.kernel import kernel
 from toeline.hydraulics.underflow_gate import (
     LEVEL_NUDGE,
     UnderflowGate,
@@ -57,13 +57,13 @@ def gate_levels(gate, level, nodes, head_level, tail_level):
     return up, down
 
 
-@inner_kernel
+@kernel
 def leaf_opening(forcing, gate, k):
     """Opening [m] of leaf k of a gate."""
     return forcing[FORCING_GATES + gate.first_leaf + k].now
 
 
-@inner_kernel
+@kernel
 def gate_balance(shapes, gate, up, down, forcing, q, slopes, afresh):
     """Residual q − Q(levels) of a gate [m³/s] and its derivatives to the level above, q and the level below.
 
@@ -86,7 +86,7 @@ def gate_balance(shapes, gate, up, down, forcing, q, slopes, afresh):
     return q - passed / gate.leaf_count, -slopes.by_up, 1.0, -slopes.by_down
 
 
-@inner_kernel
+@kernel
 def tail_discharge(tables, kind, node, level):
     """Discharge [m³/s] that leaves the last node over a free overfall, by a rating or at normal depth."""
     site = tables.channel.nodes[node]
@@ -98,7 +98,7 @@ def tail_discharge(tables, kind, node, level):
     return rating_discharge(tables.tail_rating[0], tables.tail_rating[1], level)
 
 
-@inner_kernel
+@kernel
 def tail_level_balance(tables, link, last, level, tail_level, q, inner):
     """Head left over in the last metre before a level beyond the tail, and its derivatives as in `reach_balance`.
 
@@ -128,7 +128,7 @@ def tail_level_balance(tables, link, last, level, tail_level, q, inner):
     return drive - q * abs(q) * loss, by_level, -2.0 * size * loss, 0.0
 
 
-@inner_kernel
+@kernel
 def boundary_balance(tables, index, nodes, q, forcing, work, afresh):
     """Residual of a link that is not a reach, and its derivatives to the level above, the discharge and the level
     below.

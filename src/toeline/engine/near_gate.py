@@ -28,7 +28,7 @@ from toeline.hydraulics.jump_location import (
     tail_depth_at,
     tail_over,
 )
-from toeline.hydraulics.kernel import inner_kernel
+from toeline.hydraulics.kernel import kernel
 from toeline.hydraulics.submerged_jump import roller_depth, roller_length, submergence
 from toeline.hydraulics.underflow_gate import (
     CLEAR_AND_DROWNED,
@@ -62,7 +62,7 @@ FREE_JET = np.dtype(
 """What is known of the free jet of a gate, kept from output to output."""
 
 
-@inner_kernel
+@kernel
 def judge_gate(channel, gate, up, down, opening, moves, level, jet, known, out):
     """Fill a gate's record of output from its two levels, its opening, whether that moves, and the levels along the
     channel.
@@ -87,7 +87,7 @@ def judge_gate(channel, gate, up, down, opening, moves, level, jet, known, out):
     return flow.discharge
 
 
-@inner_kernel
+@kernel
 def no_jump(out):
     """A record that says that there is no jump."""
     out.jump_state = JUMP_NONE
@@ -106,7 +106,7 @@ def no_jump(out):
     out.jump_power = math.nan
 
 
-@inner_kernel
+@kernel
 def jet_start(channel, gate, opening):
     """Chainage [m] of the contracted section, and how far that is from the first node below the gate to the next."""
     origin, following = channel.nodes[gate.downstream_node].chainage, channel.nodes[gate.downstream_node + 1].chainage
@@ -114,7 +114,7 @@ def jet_start(channel, gate, opening):
     return start, (start - origin) / (following - origin)
 
 
-@inner_kernel
+@kernel
 def fill_margins(channel, gate, section, up, opening, moves, level, jet, known, out):
     """How far the tailwater stands over the depths that the free jet asks for."""
     if moves:
@@ -142,7 +142,7 @@ class FreeJetNeeds(NamedTuple):
     sequent: float  # m, tail depth asked for there
 
 
-@inner_kernel
+@kernel
 def known_free_jet(channel, gate, section, up, opening, jet, known):
     """`FreeJetNeeds` at a headwater level, between those at two levels a grid step apart, which are worked out once.
 
@@ -169,7 +169,7 @@ def known_free_jet(channel, gate, section, up, opening, jet, known):
     )
 
 
-@inner_kernel
+@kernel
 def free_jet_needs(channel, gate, section, up, opening, jet):
     """`FreeJetNeeds` from the jet's profile as far as the protected floor goes."""
     law, above = law_of(gate), channel.shapes[gate.upstream_section]
@@ -190,7 +190,7 @@ def free_jet_needs(channel, gate, section, up, opening, jet):
     return FreeJetNeeds(limit, drowning_depth(section, free), toe, sequent)
 
 
-@inner_kernel
+@kernel
 def judge_jet(channel, gate, section, flow, level, opening, jet, out):
     """The free jump of the present discharge; returns whether the jump is drowned after all."""
     first, last = gate.downstream_node, gate.floor_last
@@ -212,7 +212,7 @@ def judge_jet(channel, gate, section, flow, level, opening, jet, out):
     return False
 
 
-@inner_kernel
+@kernel
 def fill_free_jump(gate, jump, origin, discharge, out):
     """A free jump, or a jet that leaves the channel."""
     if math.isnan(jump.chainage):
@@ -230,7 +230,7 @@ def fill_free_jump(gate, jump, origin, discharge, out):
     out.jump_power = WATER_DENSITY * GRAVITY * discharge * jump.energy_loss
 
 
-@inner_kernel
+@kernel
 def drowned_jump(shapes, gate, section, flow, up, down, out):
     """A roller at the gate: its depth over the jet, which keeps its thickness, its end and what it dissipates.
 
@@ -256,7 +256,7 @@ def drowned_jump(shapes, gate, section, flow, up, down, out):
     out.jump_power = WATER_DENSITY * GRAVITY * q * out.jump_energy_loss
 
 
-@inner_kernel
+@kernel
 def velocity_head(section, discharge, depth):
     """αQ²/(2gA²) [m]."""
     area = geometry(section, depth)[0]

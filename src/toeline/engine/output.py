@@ -10,7 +10,7 @@ from toeline.engine.near_gate import judge_gate
 from toeline.engine.step import DIAGONAL, GAMMA, pool_end_link, weighted
 from toeline.hydraulics.cross_section import geometry
 from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH
-from toeline.hydraulics.kernel import inner_kernel
+from toeline.hydraulics.kernel import kernel
 from toeline.hydraulics.underflow_gate import CLEAR_OF_WATER, FREE, QUALITY_UNEVEN_BAYS
 from toeline.network.tables import FORCING_GATES, FORCING_HEAD, FORCING_TAIL, HEAD
 
@@ -53,7 +53,7 @@ class Watch(NamedTuple):
     free_jets: np.recarray  # (g) of FREE_JET
 
 
-@inner_kernel
+@kernel
 def shares_at(at):
     """Weights of a step's start, its stage at γ and its end in the quadratic through all three, at a fraction of it."""
     by_start = (at - GAMMA) * (at - 1.0) / GAMMA
@@ -61,13 +61,13 @@ def shares_at(at):
     return by_start, by_middle, at * (at - GAMMA) / (1.0 - GAMMA)
 
 
-@inner_kernel
+@kernel
 def between(shares, start, middle, end):
     """Value inside a step by the weights of `shares_at`."""
     return shares[0] * start + shares[1] * middle + shares[2] * end
 
 
-@inner_kernel
+@kernel
 def set_courses(tables, before, after, h, courses):
     """Levels over a step as cubics in the fraction of it, Hermite's by levels and rates; drying nodes have no rates."""
     for k in range(before.nodes.size):
@@ -82,7 +82,7 @@ def set_courses(tables, before, after, h, courses):
         courses[3, k] = rate_start + rate_end - 2.0 * rise
 
 
-@inner_kernel
+@kernel
 def levels_at(tables, courses, at, tail_level, level):
     """Levels at a fraction of the step by `set_courses`; level water beyond a tail gate."""
     count = courses.shape[1]
@@ -95,7 +95,7 @@ def levels_at(tables, courses, at, tail_level, level):
         level[k] = beyond
 
 
-@inner_kernel
+@kernel
 def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at, forcing):
     """Fill the next row of output; `at` is the fraction of the step, `forcing` set to that time."""
     row = rows.filled[0]
@@ -130,7 +130,7 @@ def fill_row(tables, before, middle, after, totals, watch, rows, time_ms, h, at,
     fill_canal(watch, rows.pools[row], canal, left)
 
 
-@inner_kernel
+@kernel
 def leaves_move(forcing, gate):
     """Whether a leaf of the gate moves."""
     moving = 0
@@ -139,7 +139,7 @@ def leaves_move(forcing, gate):
     return moving > 0
 
 
-@inner_kernel
+@kernel
 def ruling_opening(shapes, gate, up, down, forcing):
     """Opening [m] of the bay with the largest unit discharge, by which the jump of the gate is judged."""
     ruling, most = leaf_opening(forcing, gate, 0), -1.0
@@ -153,7 +153,7 @@ def ruling_opening(shapes, gate, up, down, forcing):
     return ruling
 
 
-@inner_kernel
+@kernel
 def fill_bays(tables, gate, up, down, forcing, bays, out):
     """Fill the bays of a gate that move apart, and what the gate's record says of all of them: mean opening, discharge
     and the power of that discharge. Returns the discharge [m³/s].
@@ -177,7 +177,7 @@ def fill_bays(tables, gate, up, down, forcing, bays, out):
     return passed
 
 
-@inner_kernel
+@kernel
 def sum_pools(tables, before, middle, after, volumes):
     """Volumes of the pools at the start, the stage at γ and the end of a step."""
     for p in range(tables.pools.size):
@@ -189,7 +189,7 @@ def sum_pools(tables, before, middle, after, volumes):
         volumes[p].start, volumes[p].middle, volumes[p].end = start, inner, end
 
 
-@inner_kernel
+@kernel
 def fill_pools(tables, before, middle, after, totals, watch, out, time_ms, h, shares):
     """Fill a row of pools."""
     for p in range(tables.pools.size):
@@ -215,7 +215,7 @@ def fill_pools(tables, before, middle, after, totals, watch, out, time_ms, h, sh
         pool.pool_lining_margin = lining if lining < math.inf else math.nan
 
 
-@inner_kernel
+@kernel
 def passed_volume(tables, before, middle, after, totals, p, h, shares):
     """Volume [m³] that has passed the upper end of pool p, or of the last pool's lower end behind it."""
     end = pool_end_link(tables, p)
@@ -225,14 +225,14 @@ def passed_volume(tables, before, middle, after, totals, p, h, shares):
     )  # fmt: skip
 
 
-@inner_kernel
+@kernel
 def total_at(shares, h, total, start, middle, end):
     """A running total at a fraction of the step, consistent with the stored volumes there."""
     inner = total + DIAGONAL * h * (start + middle)
     return between(shares, total, inner, total + h * weighted(start, middle, end))
 
 
-@inner_kernel
+@kernel
 def fill_offtakes(tables, before, middle, after, totals, watch, out, h, shares, forcing):
     """Fill a row of offtakes; returns the volume delivered by all [m³]."""
     first_demand = FORCING_GATES + tables.leaves.size
@@ -248,7 +248,7 @@ def fill_offtakes(tables, before, middle, after, totals, watch, out, h, shares, 
     return delivered
 
 
-@inner_kernel
+@kernel
 def fill_escapes(before, middle, after, totals, out, h, shares):
     """Fill a row of escapes; returns the volume that all have let out [m³]."""
     escaped = 0.0
@@ -260,7 +260,7 @@ def fill_escapes(before, middle, after, totals, out, h, shares):
     return escaped
 
 
-@inner_kernel
+@kernel
 def fill_gauges(tables, level, out, head_level):
     """Fill a row of gauges; no reading where the bed beside the staff is dry."""
     for k in range(tables.gauges.size):
@@ -273,7 +273,7 @@ def fill_gauges(tables, level, out, head_level):
         out[k].gauge_reading = water - gauge.zero_level if water - gauge.bed_level > DRY_DEPTH else math.nan
 
 
-@inner_kernel
+@kernel
 def fill_canal(watch, pools, canal, left):
     """Fill what comes into, stays in and leaves the canal; `left` [m³] went to offtakes and over escapes."""
     last = pools.size - 1
@@ -290,7 +290,7 @@ def fill_canal(watch, pools, canal, left):
     canal.balance_residual = canal.canal_inflow_volume - canal.canal_outflow_volume - left - lost - change
 
 
-@inner_kernel
+@kernel
 def fill_profile(tables, before, middle, after, watch, rows, time_ms, h, at, forcing):
     """Fill the next row of the long profile."""
     row = rows.filled[1]

@@ -12,7 +12,7 @@ from toeline.hydraulics.gradually_varied_flow import (
     calm_share,
     link_conveyance,
 )
-from toeline.hydraulics.kernel import inner_kernel
+from toeline.hydraulics.kernel import kernel
 
 VELOCITY_HEAD = 0.5 / GRAVITY
 """1/2g [s²/m], and a multiplication where a division would stand."""
@@ -27,7 +27,7 @@ DRY_HEAD = 1e-4
 """Head [m] below which the discharge of a link with a dry end falls linearly to zero (choice)."""
 
 
-@inner_kernel
+@kernel
 def node_geometry(site, cell, section, level, work):
     """Fill storage area, conveyance and α/A² of a node and their derivatives to the level.
 
@@ -48,19 +48,19 @@ def node_geometry(site, cell, section, level, work):
     work.conveyance_slope = work.conveyance / 3.0 * (5.0 * width / area - 2.0 * perimeter_slope / perimeter)
 
 
-@inner_kernel
+@kernel
 def convective_time(inertial):
     """Time [s] in which the convective head follows the flow."""
     return INERTIAL_CONVECTIVE_TIME if inertial else CONVECTIVE_TIME
 
 
-@inner_kernel
+@kernel
 def convective_target(share, discharge, inverse_up, inverse_down):
     """Difference of velocity heads [m] that the convective head tends to: σ·Q²/2g·(α/A_i² − α/A_{i+1}²)."""
     return share * discharge * discharge * VELOCITY_HEAD * (inverse_up - inverse_down)
 
 
-@inner_kernel
+@kernel
 def reach_balance(
     link, transition_loss, up, down, level_up, level_down, depth_up, depth_down, q, head_base, head_share
 ):
@@ -100,7 +100,7 @@ def reach_balance(
     return drive - flux * loss, by_up, by_discharge, by_down
 
 
-@inner_kernel
+@kernel
 def _dry_balance(drive, loss, loss_up, loss_down, q):
     """The balance of a link with a dry end, solved for its discharge: q less drive/√(loss·(|drive| + 0.1 mm)).
 
@@ -114,7 +114,7 @@ def _dry_balance(drive, loss, loss_up, loss_down, q):
     return q - balanced, -by_drive - by_loss * loss_up, 1.0, by_drive - by_loss * loss_down
 
 
-@inner_kernel
+@kernel
 def _local_losses(point_loss, transition_loss, up, down):
     """k/(2gA²) of point losses and of a transition, per Q|Q|, and derivatives to both levels."""
     mean = 0.5 * (up.area + down.area)
@@ -126,7 +126,7 @@ def _local_losses(point_loss, transition_loss, up, down):
     return point + turn * difference, by_up, by_down
 
 
-@inner_kernel
+@kernel
 def convective_share(up, down, q):
     """Weight σ of the convective head: 1 up to Fr 0.9, 0 from Fr 1 on, by the faster of both ends.
 
@@ -140,14 +140,14 @@ def convective_share(up, down, q):
     return calm_share(max(flux_up / up.area, flux_down / down.area))
 
 
-@inner_kernel
+@kernel
 def wet_share(depth_up, depth_down):
     """1 in a wet link, 0 once the shallower node is dry."""
     s = min(max((min(depth_up, depth_down) - DRY_DEPTH) / (WET_DEPTH - DRY_DEPTH), 0.0), 1.0)
     return s * s * (3.0 - 2.0 * s)
 
 
-@inner_kernel
+@kernel
 def inertia_head(length, share, mean, source, q, earlier_flux, momentum_base, seconds):
     """Head that accelerates a link's water, less what earlier stages left, and its derivatives to discharge, mean area
     and source area.

@@ -7,7 +7,7 @@ import math
 from toeline.constants import GRAVITY
 from toeline.engine.gate_link import gate_discharge_at
 from toeline.hydraulics.cross_section import geometry
-from toeline.hydraulics.kernel import inner_kernel, kernel
+from toeline.hydraulics.kernel import kernel
 from toeline.hydraulics.surge import DOWNSTREAM, UPSTREAM, surge_height, wave_speeds
 
 LEAST_CHANGE = 1e-9
@@ -117,7 +117,7 @@ def unsettle_by_wave(tables, state, watch, pool, way, height, openings, time, ne
     return until
 
 
-@inner_kernel
+@kernel
 def pool_of(pools, node):
     """The pool of a node; -1 beyond the ends of the canal."""
     if node < 0 or node > pools[pools.size - 1].last_node:
@@ -128,7 +128,7 @@ def pool_of(pools, node):
     return pool
 
 
-@inner_kernel
+@kernel
 def joined_surge(running, still_runs, height):
     """Bound [m] of a surge and one that may still run: their sum where both go one way, else the higher."""
     if not still_runs:
@@ -138,7 +138,7 @@ def joined_surge(running, still_runs, height):
     return running if abs(running) >= abs(height) else height
 
 
-@inner_kernel
+@kernel
 def unsettle_beyond(tables, state, watch, pool, way, height, openings, time, seconds):
     """Pools that a wave in `pool` reaches through the gates on its `way`: all on it settle until it has run down and
     back through them; `seconds` is the round trip of the first.
@@ -160,13 +160,13 @@ def unsettle_beyond(tables, state, watch, pool, way, height, openings, time, sec
             watch.settled_at[p] = max(watch.settled_at[p], time + round(1000.0 * seconds))
 
 
-@inner_kernel
+@kernel
 def gate_below(tables, pool):
     """The gate at the lower end of a pool, were there one: gates stand between neighbouring pools."""
     return pool + 1 if tables.links[0].gate >= 0 else pool
 
 
-@inner_kernel
+@kernel
 def share_through(tables, state, g, opening, way):
     """`passed_share` of a gate between two pools, waves as in their middle; none where one of them is dry."""
     gate = tables.gates[g]
@@ -178,14 +178,14 @@ def share_through(tables, state, g, opening, way):
     return passed_share(tables.channel, gate, levels, opening, above, below, way)
 
 
-@inner_kernel
+@kernel
 def middle_node(pools, node):
     """The node in the middle of the pool of a node."""
     ends = pools[pool_of(pools, node)]
     return (ends.first_node + ends.last_node) // 2
 
 
-@inner_kernel
+@kernel
 def surge_bounds(shapes, gate, level_up, level_down, before, opening, opening_after):
     """Heights [m] of the surges up and down the pools if a leaf of a gate went from one opening to another at once, and
     the change of the gate's discharge from `before` [m³/s]."""
@@ -216,7 +216,7 @@ def passed_share(channel, gate, levels, opening, above, below, way):
     return near * (1.0 / on + coming / (back * on)) / (1.0 + far / on + near / back)
 
 
-@inner_kernel
+@kernel
 def level_slopes(shapes, gate, levels, opening):
     """Slopes [m²/s] of what a gate passes to the level above it and, falling, to that below; never negative."""
     here = gate_discharge_at(shapes, gate, levels[0], levels[1], opening)
@@ -225,7 +225,7 @@ def level_slopes(shapes, gate, levels, opening):
     return max(by_up, 0.0) / WAVE_NUDGE, max(by_down, 0.0) / WAVE_NUDGE
 
 
-@inner_kernel
+@kernel
 def pool_admittances(channel, node, state):
     """Discharge of a small wave over its height [m²/s], T(c + V) and T(c − V), beside a node; 0 where it is dry or
     critical.
@@ -239,7 +239,7 @@ def pool_admittances(channel, node, state):
     return width * with_flow, width * against
 
 
-@inner_kernel
+@kernel
 def is_carried(section, discharge, depth):
     """Whether a section with this discharge is calm, so that a surge can travel both ways."""
     area, width, _, _ = geometry(section, depth)

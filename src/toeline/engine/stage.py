@@ -5,7 +5,7 @@ import math
 from toeline.engine.gate_link import boundary_balance
 from toeline.engine.reach_link import convective_target, convective_time, inertia_head, node_geometry, reach_balance
 from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH
-from toeline.hydraulics.kernel import inner_kernel
+from toeline.hydraulics.kernel import kernel
 from toeline.hydraulics.offtake import offtake_discharge
 from toeline.hydraulics.water_losses import loss_per_length
 from toeline.hydraulics.weir import side_weir_discharge
@@ -22,7 +22,7 @@ DEMAND_NUDGE = 1e-5
 """Step [m] of the finite difference of a delivery or an escape."""
 
 
-@inner_kernel
+@kernel
 def set_sources(tables, state, forcing, work):
     """Deliveries, escapes and losses at the present levels: what they take from each node, with its derivative."""
     for node in range(state.nodes.size):
@@ -33,7 +33,7 @@ def set_sources(tables, state, forcing, work):
     set_losses(tables, state.nodes, forcing, work, state.loss)
 
 
-@inner_kernel
+@kernel
 def set_deliveries(tables, nodes, forcing, work, delivery):
     """Deliveries at the present levels, and what they take from each node."""
     count = tables.offtakes.size
@@ -51,7 +51,7 @@ def set_deliveries(tables, nodes, forcing, work, delivery):
         work.nodes[take.node].source_slope -= (nudged - q) / DEMAND_NUDGE
 
 
-@inner_kernel
+@kernel
 def set_escapes(tables, nodes, work, escape):
     """What flows over side weirs at the present levels, and takes from each node."""
     for k in range(tables.escapes.size):
@@ -66,7 +66,7 @@ def set_escapes(tables, nodes, work, escape):
         work.nodes[weir.node].source_slope -= (nudged - q) / DEMAND_NUDGE
 
 
-@inner_kernel
+@kernel
 def set_losses(tables, nodes, forcing, work, loss):
     """Losses of the pools at the present levels, and what they take from each node."""
     surface_rate = forcing[FORCING_EVAPORATION].now - forcing[FORCING_RAIN].now
@@ -84,7 +84,7 @@ def set_losses(tables, nodes, forcing, work, loss):
             work.nodes[k].source_slope -= cell.length * slope
 
 
-@inner_kernel
+@kernel
 def geometry_pass(tables, nodes, work):
     """Areas and conveyances of all nodes at their present levels."""
     for node in range(nodes.size):
@@ -93,7 +93,7 @@ def geometry_pass(tables, nodes, work):
         node_geometry(site, tables.cells[node], section, nodes[node].level, work.nodes[node])
 
 
-@inner_kernel
+@kernel
 def reach_row(tables, before, after, work, index, seconds, head_factor, inertial):
     """Residual and derivatives of a reach link in a stage."""
     link, site_up, site_down = tables.links[index], tables.channel.nodes[index - 1], tables.channel.nodes[index]
@@ -110,13 +110,13 @@ def reach_row(tables, before, after, work, index, seconds, head_factor, inertial
     return left, by_up, by_q, by_down
 
 
-@inner_kernel
+@kernel
 def is_wet(site_up, site_down, level_up, level_down):
     """Whether both ends of a reach link are deeper than the dry depth."""
     return min(level_up - site_up.bed_level, level_down - site_down.bed_level) >= DRY_DEPTH
 
 
-@inner_kernel
+@kernel
 def stage_inertia(tables, before, work, index, q, seconds):
     """`inertia_head` of a reach link at the present areas, and its derivatives to the level above, the discharge and
     the level below; it fades with the convective head (local partial inertia, Fread et al. 1996) and where a link
@@ -133,13 +133,13 @@ def stage_inertia(tables, before, work, index, q, seconds):
     return head, by_up, by_q, by_down + by_source * down.width
 
 
-@inner_kernel
+@kernel
 def source_area(discharge, up, down):
     """Area [m²] at the end of a link that its water comes from."""
     return up.area if discharge >= 0.0 else down.area
 
 
-@inner_kernel
+@kernel
 def assemble(tables, before, after, work, seconds, head_factor, inertial, forcing, afresh):
     """Fill the Newton matrix and right side at the present levels and discharges, and sweep it forward as it is
     made; with `afresh` the derivatives of the gates are found anew.
@@ -168,7 +168,7 @@ def assemble(tables, before, after, work, seconds, head_factor, inertial, forcin
         pivot_before, x_before = below.pivot, below.x
 
 
-@inner_kernel
+@kernel
 def correct(tables, after, work):
     """Second sweep of the solution, adding each correction as it is found, levels within half the depth or 5 cm;
     returns the largest change of a level [m] that counts.
@@ -193,7 +193,7 @@ def correct(tables, after, work):
     return largest
 
 
-@inner_kernel
+@kernel
 def solve_stage(tables, before, after, work, seconds, head_factor, inertial, forcing):
     """Newton's method for the levels and discharges in `after`; returns the number of solves, 0 where it failed."""
     last_change = math.inf
@@ -211,7 +211,7 @@ def solve_stage(tables, before, after, work, seconds, head_factor, inertial, for
     return 0
 
 
-@inner_kernel
+@kernel
 def finish_stage(tables, before, after, work, seconds, head_factor, inertial, forcing):
     """Rates and volumes of a solved stage; areas follow the last correction to first order."""
     pull = 1.0 / convective_time(inertial)

@@ -11,7 +11,7 @@ from toeline.engine.reach_link import convective_share, convective_target, conve
 from toeline.engine.stage import geometry_pass, set_sources, solve_stage, source_area
 from toeline.engine.tridiagonal import solve_with_factors
 from toeline.hydraulics.gradually_varied_flow import DRY_DEPTH
-from toeline.hydraulics.kernel import inner_kernel, kernel
+from toeline.hydraulics.kernel import kernel
 from toeline.network.tables import FREE_OVERFALL, REACH, TAIL_LEVEL
 
 GAMMA = 2.0 - math.sqrt(2.0)
@@ -29,7 +29,7 @@ def set_forcing(forcing, seconds):
         forcing[k].now = forcing[k].value + forcing[k].rate * seconds
 
 
-@inner_kernel
+@kernel
 def predict(tables, before, after, seconds):
     """First guess of the stage at γh: wet nodes follow their rate."""
     for k in range(before.nodes.size):
@@ -42,7 +42,7 @@ def predict(tables, before, after, seconds):
     after.links[last].discharge = before.links[last].discharge
 
 
-@inner_kernel
+@kernel
 def extrapolate(tables, start, middle, end, h):
     """First guess of the end stage: wet nodes on the cubic through the levels and rates of start and middle, no further
     than `PREDICTED` from the line through both levels; discharges on the line.
@@ -60,13 +60,13 @@ def extrapolate(tables, start, middle, end, h):
         end.links[k].discharge = here + ratio * (here - there)
 
 
-@inner_kernel
+@kernel
 def momentum_rate(link):
     """Imbalance of a reach link over the area that turns the rate of Q/A² into a head [1/m]."""
     return link.imbalance * link.mean_area / (link.source_area * link.source_area)
 
 
-@inner_kernel
+@kernel
 def base_of_middle(before, work, seconds, scale, inertial):
     """What the stage at γh starts from."""
     for k in range(before.nodes.size):
@@ -78,7 +78,7 @@ def base_of_middle(before, work, seconds, scale, inertial):
             work.links[k].momentum_base = momentum_rate(link)
 
 
-@inner_kernel
+@kernel
 def base_of_end(before, middle, work, weight, scale, inertial):
     """What the stage at the end of the step starts from; `weight` = w·h."""
     for k in range(before.nodes.size):
@@ -93,7 +93,7 @@ def base_of_end(before, middle, work, weight, scale, inertial):
             work.links[k].momentum_base = WEIGHT / DIAGONAL * (momentum_rate(link) + momentum_rate(inner))
 
 
-@inner_kernel
+@kernel
 def try_step(tables, before, middle, after, work, forcing, start, h, inertial):
     """One step of h seconds from `before` at `start` seconds of the leg into `after`.
 
@@ -118,7 +118,7 @@ def try_step(tables, before, middle, after, work, forcing, start, h, inertial):
     return first + second, step_error(tables, before, middle, after, work, h)
 
 
-@inner_kernel
+@kernel
 def step_error(tables, before, middle, after, work, h):
     """Largest error of a level [m] by the embedded third-order formula, filtered through the stage's factors."""
     rows, third = work.rows, h / 3.0
@@ -140,7 +140,7 @@ def step_error(tables, before, middle, after, work, h):
     return largest
 
 
-@inner_kernel
+@kernel
 def begin_leg(tables, state, work, forcing, inertial):
     """Evaluate everything that follows from levels, volumes, convective heads and reach discharges afresh.
 
@@ -172,7 +172,7 @@ def begin_leg(tables, state, work, forcing, inertial):
     return largest
 
 
-@inner_kernel
+@kernel
 def calm_share(tables, state, work, index):
     """How calm a reach link is: the weight of its convective head and inertia, none where an end is dry.
 
@@ -185,7 +185,7 @@ def calm_share(tables, state, work, index):
     return wet * convective_share(up, up if is_brink else down, state.links[index].discharge)
 
 
-@inner_kernel
+@kernel
 def restart_reach(state, work, index, inertial):
     """What a reach link's state implies at the present areas."""
     link, up, down = state.links[index], work.nodes[index - 1], work.nodes[index]
@@ -209,7 +209,7 @@ def start_from_levels(tables, state, work):
             )
 
 
-@inner_kernel
+@kernel
 def accept(tables, state, middle, after, work, totals, h):
     """Take `after` as the new state, add up what came and went, and judge anew how calm each reach link is."""
     for p in range(totals.passed.size):
@@ -232,7 +232,7 @@ def accept(tables, state, middle, after, work, totals, h):
             link.convective_share = min(calm, share + regain * (calm - share))
 
 
-@inner_kernel
+@kernel
 def add_up(totals, state, middle, after, h):
     """Add the volumes of a step to running totals, and take its end as the new state."""
     for k in range(totals.size):
@@ -240,13 +240,13 @@ def add_up(totals, state, middle, after, h):
         state[k] = after[k]
 
 
-@inner_kernel
+@kernel
 def pool_end_link(tables, p):
     """The link by which water enters pool p; behind the last pool that by which it leaves the canal."""
     return tables.pools[p].first_node if p < tables.pools.size else tables.pools[p - 1].last_node + 1
 
 
-@inner_kernel
+@kernel
 def weighted(start, middle, end):
     """Mean over a step by the weights of the method."""
     return WEIGHT * (start + middle) + DIAGONAL * end

@@ -5,10 +5,10 @@ forward, upper and x times it, so that the second sweep is one multiplication an
 the matrix of storage and links is quasi-definite.
 """
 
-from toeline.hydraulics.kernel import inner_kernel
+from toeline.hydraulics.kernel import kernel
 
 
-@inner_kernel
+@kernel
 def back_substitute(rows):
     """Second sweep, in place: x holds the right side after the first sweep."""
     after = 0.0
@@ -18,7 +18,7 @@ def back_substitute(rows):
         row.x = after
 
 
-@inner_kernel
+@kernel
 def solve_with_factors(rows):
     """Both sweeps, in place, for another right side in x."""
     before = 0.0

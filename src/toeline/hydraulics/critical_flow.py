@@ -5,7 +5,7 @@ import math
 from toeline.constants import GRAVITY
 from toeline.hydraulics import status
 from toeline.hydraulics.cross_section import ALPHA, BETA, OWN, TOP, TRAPEZOID, geometry, static_moment
-from toeline.hydraulics.kernel import inner_kernel, kernel
+from toeline.hydraulics.kernel import kernel
 
 ROUNDING = 1e-12
 """Relative shortfall of energy that still counts as critical flow."""
@@ -95,13 +95,13 @@ def supercritical_depth(section, discharge, energy):
     return y, status.NOT_CONVERGED
 
 
-@inner_kernel
+@kernel
 def is_rectangle(section):
     """Whether a section has upright sides."""
     return section[0] == TRAPEZOID and section[OWN + 1] == 0.0
 
 
-@inner_kernel
+@kernel
 def alternate_depth(flux, energy):
     """Supercritical root [m] of y + flux/y² = energy [m³, m], in closed form and polished; NaN where there is none."""
     cosine = 1.0 - 13.5 * flux / (energy * energy * energy) if energy > 0.0 else -2.0

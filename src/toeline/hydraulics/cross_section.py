@@ -15,7 +15,7 @@ from itertools import pairwise
 
 import numpy as np
 
-from toeline.hydraulics.kernel import inner_kernel, kernel
+from toeline.hydraulics.kernel import kernel
 
 TRAPEZOID = 0.0
 CIRCLE = 1.0
@@ -218,7 +218,7 @@ def geometry(section, depth):
     return _other_geometry(section, y)
 
 
-@inner_kernel
+@kernel
 def _other_geometry(section, y):
     """`geometry` above the top of a section, in circles and in surveyed lines."""
     above = y - section[TOP]
@@ -263,7 +263,7 @@ def static_moment(section, depth):
     return _other_moment(section, y)
 
 
-@inner_kernel
+@kernel
 def _other_moment(section, y):
     """`static_moment` above the top of a section, in circles and in surveyed lines."""
     above = y - section[TOP]
@@ -276,7 +276,7 @@ def _other_moment(section, y):
     return section[row + 6] + d * (section[row + 1] + d * (section[row + 2] / 2.0 + d * section[row + 3] / 6.0))
 
 
-@inner_kernel
+@kernel
 def _row_below(section, y):
     """Where the row starts whose depth interval holds y."""
     low, high = 0, int(section[OWN])
@@ -289,7 +289,7 @@ def _row_below(section, y):
     return OWN + 1 + ROW * low
 
 
-@inner_kernel
+@kernel
 def _circle_geometry(diameter, y):
     half_angle = math.acos(min(max(1.0 - 2.0 * y / diameter, -1.0), 1.0))
     half_width = math.sqrt(max(y * (diameter - y), 0.0))
@@ -298,7 +298,7 @@ def _circle_geometry(diameter, y):
     return area, 2.0 * half_width, diameter * half_angle, slope
 
 
-@inner_kernel
+@kernel
 def _circle_moment(diameter, y):
     """∫A dy = (y − r)·A + ⅔·(half width)³."""
     area, width, _, _ = _circle_geometry(diameter, y)

@@ -8,7 +8,7 @@ import math
 
 from toeline.constants import GRAVITY
 from toeline.hydraulics.cross_section import BETA, geometry, static_moment
-from toeline.hydraulics.kernel import inner_kernel, kernel
+from toeline.hydraulics.kernel import kernel
 
 LIP_CONTACT = 0.5
 """Opening over upstream energy head from which the contraction begins to vanish (choice)."""
@@ -24,7 +24,7 @@ def jet_width(gate):
     return gate.discharge_factor * gate.width
 
 
-@inner_kernel
+@kernel
 def _throat_loss(gate, thickness, approach_per_square):
     """1/(2g(φbh)²) less the approach velocity head, both per Q² [s²/m⁵]."""
     throat = jet_width(gate) * thickness
@@ -56,7 +56,7 @@ def drowned_discharge(gate, section, head_depth, tail_depth, energy, opening, li
     return discharge, roller
 
 
-@inner_kernel
+@kernel
 def _reaches_lip(gate, section, head_depth, tail_depth, lip, approach_per_square):
     """Whether the roller of a gate clear of water stands up to its lip: the jet under the lip has less force than the
     tail.
@@ -69,7 +69,7 @@ def _reaches_lip(gate, section, head_depth, tail_depth, lip, approach_per_square
     return static_moment(section, least) + flux * squared < static_moment(section, tail_depth)
 
 
-@inner_kernel
+@kernel
 def _drowned_under_lip(gate, section, head_depth, tail_depth, jet, approach_per_square):
     """Newton in the roller depth from the tail depth down, where the residual is positive and convex."""
     flux = section[BETA] / GRAVITY * (1.0 / (jet_width(gate) * jet) - 1.0 / geometry(section, tail_depth)[0])
@@ -96,7 +96,7 @@ def _drowned_under_lip(gate, section, head_depth, tail_depth, jet, approach_per_
     return math.sqrt(max(head_depth - y, 0.0) / loss), y
 
 
-@inner_kernel
+@kernel
 def _drowned_open_throat(gate, section, head_depth, tail_depth, jet, lip, approach_per_square):
     """Bisection in the roller depth between critical flow over the sill and the lip or the tailwater."""
     step = gate.sill_level - gate.floor_level
@@ -113,7 +113,7 @@ def _drowned_open_throat(gate, section, head_depth, tail_depth, jet, lip, approa
     return math.sqrt(max(head_depth - y, 0.0) / _throat_loss(gate, y - step, approach_per_square)), y
 
 
-@inner_kernel
+@kernel
 def drowned_slopes(gate, upstream_section, section, headwater_level, tail_depth, thickness, roller, discharge):
     """Derivatives of the discharge of a drowned gate to headwater and tailwater level [m²/s], from its two equations.
 

@@ -13,7 +13,7 @@ from toeline.constants import GRAVITY
 from toeline.hydraulics import status
 from toeline.hydraulics.critical_flow import critical_depth
 from toeline.hydraulics.cross_section import ALPHA, BETA, geometry, packed, static_moment
-from toeline.hydraulics.kernel import inner_kernel, kernel
+from toeline.hydraulics.kernel import kernel
 
 DEPTH_STEP = 0.04
 """Relative change of depth in one substep of a supercritical profile (choice: toe within 0.5 %)."""
@@ -121,7 +121,7 @@ def link_critical_depth(channel, node, weight, discharge):
     return y
 
 
-@inner_kernel
+@kernel
 def _friction(area, perimeter, roughness, discharge):
     """Friction slope of Manning from area and perimeter."""
     velocity = roughness * discharge / area
@@ -166,7 +166,7 @@ class _Point(NamedTuple):
     is_critical: bool
 
 
-@inner_kernel
+@kernel
 def _point(channel, node, x, y, discharge):
     span = channel.nodes[node + 1].chainage - channel.nodes[node].chainage
     weight = (x - channel.nodes[node].chainage) / span
@@ -175,7 +175,7 @@ def _point(channel, node, x, y, discharge):
     return _Point(x, y, head, 2.0 * head * width / area, _friction(area, perimeter, n, discharge), False)
 
 
-@inner_kernel
+@kernel
 def _substep(channel, node, here, discharge):
     """The point after one substep inside a link."""
     start, end = channel.nodes[node], channel.nodes[node + 1]
@@ -194,7 +194,7 @@ def _substep(channel, node, here, discharge):
     return _step_in_distance(channel, node, here, x_next, discharge)
 
 
-@inner_kernel
+@kernel
 def _step_in_depth(section, roughness, here, bed_slope, discharge):
     """The point where the depth has changed by 4 % the way the profile goes, or has become critical."""
     y = here.depth * (1.0 + DEPTH_STEP) if here.friction > bed_slope else here.depth / (1.0 + DEPTH_STEP)
@@ -210,7 +210,7 @@ def _step_in_depth(section, roughness, here, bed_slope, discharge):
     return _Point(here.chainage + moved, y, head, 2.0 * head * width / area, friction, critical)
 
 
-@inner_kernel
+@kernel
 def _step_in_distance(channel, node, here, x_next, discharge):
     """The point at a chainage by Newton's method on the energy balance, critical where that cannot be met.
 
@@ -287,7 +287,7 @@ def upstream_level(channel, node, level_down, discharge, point_loss, fades):
     return 0.5 * (low + high), status.OK
 
 
-@inner_kernel
+@kernel
 def _energy_gap(channel, node, level, level_down, discharge, point_loss, fades):
     """Energy upstream less energy downstream and losses [m]; with `fades` the velocity heads count by `calm_share`."""
     y_up, y_down = level - channel.nodes[node].bed_level, level_down - channel.nodes[node + 1].bed_level

@@ -8,7 +8,7 @@ from toeline.constants import GRAVITY
 from toeline.hydraulics import status
 from toeline.hydraulics.critical_flow import critical_depth, specific_energy, specific_force
 from toeline.hydraulics.cross_section import BETA, OWN, TRAPEZOID, geometry
-from toeline.hydraulics.kernel import inner_kernel, kernel
+from toeline.hydraulics.kernel import kernel
 
 NO_JUMP, UNDULAR, WEAK, OSCILLATING, STEADY, STRONG = 0, 1, 2, 3, 4, 5
 
@@ -55,14 +55,14 @@ def subcritical_depth_of_force(section, discharge, force):
     return _deeper_depth(section, discharge, force, critical, 0.5 * critical)
 
 
-@inner_kernel
+@kernel
 def _force_slope(section, discharge, depth):
     """dS/dy = A − βQ²T/(gA²)."""
     area, width, _, _ = geometry(section, depth)
     return area - section[BETA] * discharge * discharge * width / (GRAVITY * area * area)
 
 
-@inner_kernel
+@kernel
 def _deeper_depth(section, discharge, force, critical, shallow):
     """Newton from above; the first guess is the sequent of a rectangle with the section's hydraulic depth."""
     area, width, _, _ = geometry(section, shallow)
@@ -76,7 +76,7 @@ def _deeper_depth(section, discharge, force, critical, shallow):
     return (y, status.OK) if abs(step) < 1e-9 * y else (y, status.NOT_CONVERGED)
 
 
-@inner_kernel
+@kernel
 def _shallower_depth(section, discharge, force, critical):
     """Newton from the shallow side, where the force exceeds the wanted one."""
     y = 0.5 * critical

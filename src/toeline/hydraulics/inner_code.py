@@ -12,7 +12,7 @@ from numba.core.compiler import Compiler
 
 
 class _NoEnvironments:
-    """Takes the Python objects of a function, which inner kernels do not use."""
+    """Takes the Python objects of a function, which kernels do not use."""
 
     @staticmethod
     def set_env(env_name: str, env: Any) -> None:

@@ -18,7 +18,7 @@ from toeline.hydraulics.hydraulic_jump import (
     jump_length,
     subcritical_depth_of_force,
 )
-from toeline.hydraulics.kernel import inner_kernel, kernel
+from toeline.hydraulics.kernel import kernel
 from toeline.hydraulics.submerged_jump import jet_force
 
 JUMP_NONE, JUMP_DROWNED, JUMP_ON_APRON, JUMP_ON_PROTECTION, JUMP_BEYOND_PROTECTION, JUMP_SWEPT_OUT = range(6)
@@ -58,7 +58,7 @@ def jet_on_floor(section, jet_width, thickness, step, discharge):
     return Jet(discharge, jet_width, depth, full, froude, jet_force(section, discharge, jet_width, depth, depth))
 
 
-@inner_kernel
+@kernel
 def fallen_jet(jet_width, thickness, step, discharge):
     """Energy and depth [m] over the floor of a jet after its fall of `step` [m]."""
     flux = discharge * discharge / (2.0 * GRAVITY * jet_width * jet_width)
@@ -78,7 +78,7 @@ def tail_depth_at(channel, levels, node, weight, discharge):
     return link_critical_depth(channel, node, weight, discharge)
 
 
-@inner_kernel
+@kernel
 def _node_below(channel, first, last, chainage):
     node = first
     while node < last - 1 and channel.nodes[node + 1].chainage <= chainage:
@@ -94,7 +94,7 @@ def drowning_depth(section, jet):
     return subcritical_depth_of_force(section, jet.discharge, jet.force)[0]
 
 
-@inner_kernel
+@kernel
 def sequent_of_jet(section, jet_width, thickness, step, discharge):
     """`drowning_depth` of the jet of a gate after its fall of `step` [m] onto the floor."""
     _, depth = fallen_jet(jet_width, thickness, step, discharge)
@@ -129,7 +129,7 @@ def free_jump(channel, first, last, levels, jet, chainages, depths, count):
     return FreeJump(math.nan, math.nan, math.nan, math.nan, math.nan, LENGTH_NOT_DEFINED, math.nan)
 
 
-@inner_kernel
+@kernel
 def _jump_at(channel, first, last, levels, discharge, toe, depth):
     node, weight = _node_below(channel, first, last, toe)
     tail = tail_depth_at(channel, levels, node, weight, discharge)
@@ -178,7 +178,7 @@ def sequent_in_link(channel, node, weight, discharge, depth):
     return y
 
 
-@inner_kernel
+@kernel
 def _end_of_jump_from(channel, first, last, discharge, x, depth):
     """Where a jump with its toe at x would end (its toe where the length is not defined), and its sequent depth."""
     node, weight = _node_below(channel, first, last, x)
@@ -189,7 +189,7 @@ def _end_of_jump_from(channel, first, last, discharge, x, depth):
     return (x if math.isnan(length) else x + length), sequent
 
 
-@inner_kernel
+@kernel
 def last_protected_toe(channel, first, last, discharge, chainages, depths, count, protection_end):
     """Chainage of the toe whose jump ends at `protection_end` and its sequent depth [m], from the profile of a free
     jet; the first point of the profile where every jump would end further on, NaN where the jet turns critical before
@@ -228,7 +228,7 @@ def protection_margin(channel, first, last, levels, discharge, chainages, depths
     return tail_over(channel, first, last, levels, toe, sequent)
 
 
-@inner_kernel
+@kernel
 def tail_over(channel, first, last, levels, x, depth):
     """Height [m] of the tailwater over a depth at a chainage; NaN where there is none."""
     if math.isnan(x):

@@ -5,7 +5,7 @@ import math
 from toeline.constants import GRAVITY
 from toeline.hydraulics import status
 from toeline.hydraulics.cross_section import geometry, static_moment
-from toeline.hydraulics.kernel import inner_kernel, kernel
+from toeline.hydraulics.kernel import kernel
 
 DOWNSTREAM, UPSTREAM = 1.0, -1.0
 
@@ -41,7 +41,7 @@ def surge_height(section, discharge, depth, change, direction):
     return height, step / (geometry(section, depth + height)[0] - area), status.OK
 
 
-@inner_kernel
+@kernel
 def _surge_bracket(section, flow, depth, step):
     """Two heights between which the excess force rises through zero, the pair nearest to no surge, and whether it
     exists.
@@ -59,7 +59,7 @@ def _surge_bracket(section, flow, depth, step):
     return -depth, 0.0, False
 
 
-@inner_kernel
+@kernel
 def _excess_force(section, flow, depth, step, height):
     """Force behind a front of the given height less what its momentum needs; rises with the height."""
     area_1 = geometry(section, depth)[0]

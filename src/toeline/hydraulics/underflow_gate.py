@@ -10,7 +10,7 @@ from typing import NamedTuple
 from toeline.constants import GRAVITY
 from toeline.hydraulics.cross_section import BETA, geometry, static_moment
 from toeline.hydraulics.drowned_gate import LIP_CONTACT, drowned_discharge, drowned_slopes, jet_width
-from toeline.hydraulics.kernel import inner_kernel, kernel
+from toeline.hydraulics.kernel import kernel
 from toeline.hydraulics.weir import weir_discharge_one_way
 
 CLOSED, FREE, NEAR_MODULAR_LIMIT, DROWNED, CLEAR_OF_WATER, CLEAR_AND_DROWNED, OVERTOPPED, REVERSE = range(8)
@@ -114,7 +114,7 @@ def free_jet(gate, upstream_section, headwater_level, opening):
     return energy, jet, width * jet * math.sqrt(2.0 * GRAVITY * (energy - jet)), lip
 
 
-@inner_kernel
+@kernel
 def _with_approach(gate, head, energy, opening, share):
     """A better energy head [m] of free flow: head and velocity head of the approach; `share` = φ·b/A upstream."""
     jet = contraction_coefficient(gate, opening, energy) * opening
@@ -140,20 +140,20 @@ def modular_limit_depth(gate, downstream_section, jet, discharge):
     return _limit_from_above(downstream_section, flux, force, y)
 
 
-@inner_kernel
+@kernel
 def _is_subcritical(section, flux, depth):
     area, width, _, _ = geometry(section, depth)
     return flux * width < area * area * area
 
 
-@inner_kernel
+@kernel
 def _pushes_back(section, flux, force, depth):
     """Whether a tail depth is subcritical and has at least the given force."""
     area, width, _, _ = geometry(section, depth)
     return flux * width < area * area * area and static_moment(section, depth) + flux / area >= force
 
 
-@inner_kernel
+@kernel
 def _limit_from_above(section, flux, force, start):
     """Newton from a subcritical depth whose force is not below the wanted one; the force is convex there."""
     y = start
@@ -168,7 +168,7 @@ def _limit_from_above(section, flux, force, start):
     return y
 
 
-@inner_kernel
+@kernel
 def _underflow_one_way(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening):
     """Flow below the lip with the headwater higher than the tailwater by at least `LINEAR_HEAD`."""
     energy, jet, free, lip = free_jet(gate, upstream_section, headwater_level, opening)
@@ -198,7 +198,7 @@ def _underflow_one_way(gate, upstream_section, downstream_section, headwater_lev
     return GateFlow(q, q, free, jet, energy, roller, math.nan, DROWNED, QUALITY_GOOD)
 
 
-@inner_kernel
+@kernel
 def _underflow(gate, upstream_section, downstream_section, headwater_level, tailwater_level, opening):
     """`_underflow_one_way`, scaled linearly to zero over the last centimetre of head."""
     head = headwater_level - tailwater_level
@@ -277,7 +277,7 @@ def discharge_and_slopes(gate, upstream_section, downstream_section, headwater_l
     return flow.discharge, max(by_up, 0.0), min(by_down, 0.0)
 
 
-@inner_kernel
+@kernel
 def _jet_slopes(gate, upstream_section, downstream_section, up, down, flow):
     """Derivatives of the discharge of a free or drowned jet to the level above and below [m²/s]."""
     tail_depth, lip = down - gate.floor_level, flow.jet_thickness + gate.sill_level - gate.floor_level
@@ -289,7 +289,7 @@ def _jet_slopes(gate, upstream_section, downstream_section, up, down, flow):
     return _free_slope(gate, upstream_section, up, flow), 0.0
 
 
-@inner_kernel
+@kernel
 def _free_slope(gate, upstream_section, headwater_level, flow):
     """Derivative of Q = φ·b·h·√(2g(E − h)) to the headwater level [m²/s]; the approach Q²/2gA² follows."""
     area, width, _, _ = geometry(upstream_section, headwater_level - gate.upstream_bed_level)
@@ -298,13 +298,13 @@ def _free_slope(gate, upstream_section, headwater_level, flow):
     return 0.5 * flow.free_discharge / fall * (1.0 - 2.0 * fall * share * share * width / area) / still
 
 
-@inner_kernel
+@kernel
 def _lip_is_near(flow, opening):
     """Whether the lip is so near to the surface upstream that the contraction vanishes."""
     return opening > LIP_CONTACT * flow.energy_head
 
 
-@inner_kernel
+@kernel
 def _over_leaf(gate, crest, high, low):
     """Flow over the leaf, scaled linearly to zero over the last centimetre of head as below it."""
     lowered = min(low, high - LINEAR_HEAD)
@@ -312,7 +312,7 @@ def _over_leaf(gate, crest, high, low):
     return full * min((high - low) / LINEAR_HEAD, 1.0)
 
 
-@inner_kernel
+@kernel
 def _leakage(gate, headwater_level, tailwater_level):
     """Flow past the seals: leakage·√head, linear below a centimetre; none from water below the sill."""
     high, low = max(headwater_level, tailwater_level), min(headwater_level, tailwater_level)
@@ -323,7 +323,7 @@ def _leakage(gate, headwater_level, tailwater_level):
     return math.copysign(gate.leakage * size, headwater_level - tailwater_level)
 
 
-@inner_kernel
+@kernel
 def _state(state, opening, sign, over):
     if over != 0.0:
         return OVERTOPPED
@@ -332,7 +332,7 @@ def _state(state, opening, sign, over):
     return REVERSE if sign < 0.0 else state
 
 
-@inner_kernel
+@kernel
 def _quality(gate, flow, headwater_level, tailwater_level, opening, sign):
     if opening <= 0.0:
         return QUALITY_GOOD
